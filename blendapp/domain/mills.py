@@ -1,0 +1,110 @@
+"""The mill itself, its people, its documents: what a mill file holds besides feed."""
+
+from __future__ import annotations
+
+import datetime
+from dataclasses import dataclass
+from enum import StrEnum
+
+
+@dataclass(frozen=True)
+class MillInfo:
+    """One record per mill file, identifier 1.
+
+    currency: ISO 4217 code. ton_means: one of units.TON_MEANINGS, "" asks. cwt_means: one of units.CWT_MEANINGS, ""
+    is 100 lb in the exchange workbook and asks in price lists.
+    """
+
+    id: int = 1
+    name: str = ""
+    currency: str = "USD"
+    ton_means: str = ""
+    cwt_means: str = ""
+
+
+@dataclass(frozen=True)
+class Person:
+    """Somebody who edits, checks or approves. password_hash: "" until the person may approve."""
+
+    id: int
+    name: str
+    capacity: str = ""
+    password_hash: str = ""
+    active: bool = True
+
+
+class VersionState(StrEnum):
+    DRAFT = "draft"
+    APPROVED = "approved"
+    SUPERSEDED = "superseded"
+
+
+@dataclass(frozen=True)
+class FormulaVersion:
+    """A snapshot of a formula that does not change. snapshot: JSON of limits, composition, prices and result."""
+
+    id: int
+    formula_id: int
+    number: int
+    state: VersionState
+    snapshot: str
+    made: datetime.datetime
+    made_by: str = ""
+    approved: datetime.datetime | None = None
+    approved_by_id: int | None = None
+    capacity: str = ""
+    note: str = ""
+
+
+@dataclass(frozen=True)
+class PriceList:
+    """A price list that was applied. digest: SHA-256 of the file, in hexadecimal."""
+
+    id: int
+    file_name: str
+    digest: str
+    applied: datetime.datetime
+    rows: int
+    accepted: int
+    supplier_id: int | None = None
+    report: str = ""
+
+
+@dataclass(frozen=True)
+class Synonym:
+    """What a source calls an ingredient, or how it was answered: remembered for its next list."""
+
+    id: int
+    source: str
+    name: str
+    ingredient_id: int | None = None
+    per: str = ""
+
+
+@dataclass(frozen=True)
+class PrintedBatch:
+    """A batch sheet that was given a number. sheet: JSON of domain.batches.Batch, so that a copy prints alike."""
+
+    id: int
+    number: int
+    formula_id: int
+    version: str
+    order_kg: float
+    printed: datetime.datetime
+    printed_by: str = ""
+    accepted_reason: str = ""
+    accepted_by: str = ""
+    sheet: str = ""
+    copies: int = 0
+
+
+@dataclass(frozen=True)
+class Acknowledgement:
+    """A caution or an unsafe unknown that a person took on, for one version, with a reason."""
+
+    id: int
+    version_id: int
+    caution: str
+    reason: str
+    person_id: int
+    made: datetime.datetime

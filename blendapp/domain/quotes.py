@@ -1,0 +1,77 @@
+"""Prices: dated, sourced quotes, and the one rule for the quote in force."""
+
+from __future__ import annotations
+
+import datetime
+from collections.abc import Iterable
+from dataclasses import dataclass
+from enum import StrEnum
+
+from blendapp.domain import units
+from blendapp.domain.wording import _
+
+
+class QuoteKind(StrEnum):
+    REPLACEMENT = "replacement"
+    CONTRACT = "contract"
+    STOCK_AVERAGE = "stock average"
+
+
+class Terms(StrEnum):
+    EX_WORKS = "ex works"
+    DELIVERED = "delivered"
+
+
+@dataclass(frozen=True)
+class Quote:
+    """One price of one ingredient, kept as entered.
+
+    price: money of the mill per `per` as fed, None where the price was withdrawn (then it is unknown, never 0).
+    bushel_lb: mass of the bushel when the quote was made. valid_from, valid_to: inclusive, None is open.
+    recorded: when the mill took it. price_list_id: the price list it came with.
+    """
+
+    id: int
+    ingredient_id: int
+    price: float | None
+    per: str = "t"
+    bushel_lb: float | None = None
+    site_id: int | None = None
+    supplier_id: int | None = None
+    kind: QuoteKind = QuoteKind.REPLACEMENT
+    terms: Terms | None = None
+    valid_from: datetime.date | None = None
+    valid_to: datetime.date | None = None
+    recorded: datetime.date | None = None
+    source: str = ""
+    entered: str = ""
+    price_list_id: int | None = None
+
+    @property
+    def price_per_t(self) -> float | None:
+        """Money of the mill per tonne as fed."""
+        return None if self.price is None else units.price_per_t(self.price, self.per, self.bushel_lb)
+
+
+def rule() -> str:
+    """The rule of in_force, as a person reads it."""
+    return _(
+        "In force is the quote valid on the day whose first day of validity is latest; of two with the same first day, "
+        "the one recorded last. A quote of the site counts before one of the whole mill."
+    )
+
+
+def in_force(quotes: Iterable[Quote], on: datetime.date, site_id: int | None = None) -> Quote | None:
+    """The quote in force on a day at a site (None: the whole mill), or None. The rule is that of rule()."""
+    best: Quote | None = None
+    best_rank: tuple[bool, datetime.date, int] | None = None
+    for quote in quotes:
+        if quote.site_id is not None and quote.site_id != site_id:
+            continue
+        first = quote.valid_from or datetime.date.min
+        if first > on or (quote.valid_to is not None and quote.valid_to < on):
+            continue
+        rank = (quote.site_id is not None, first, quote.id)
+        if best_rank is None or rank > best_rank:
+            best, best_rank = quote, rank
+    return best
