@@ -85,12 +85,12 @@ def read_basis(text: str) -> tuple[LimitBasis, float | None]:
         return LimitBasis(plain), None
     found = _AT.fullmatch(plain)
     if not found:
-        raise ValueError(
-            _("The basis “{text}” is not known; write as fed, dry matter, at 88 % dry matter, or per day.").format(text=text)
-        )
+        sentence = _("The basis “{text}” is not known; write as fed, dry matter, at 88 % dry matter, or per day.")
+        raise ValueError(sentence.format(text=text))
     stated = float(found.group(1).replace(",", "."))
     if not 0 < stated <= 100:
-        raise ValueError(_("A stated dry matter must lie above 0 and at most 100 %; “{text}” does not.").format(text=text))
+        sentence = _("A stated dry matter must lie above 0 and at most 100 %; “{text}” does not.")
+        raise ValueError(sentence.format(text=text))
     return LimitBasis.AT_DRY_MATTER, stated
 
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-# Keys that a nutrient may carry, so that cautions match whatever a mill calls it. Total and added copper are two things.
+# Keys that a nutrient may carry, so that cautions match whatever a mill calls it. Total and added are two things.
 KEYS: tuple[str, ...] = (
     "crude protein",
     "npn crude protein",

@@ -52,10 +52,10 @@ class Problems:
 
     found: list[Problem] = field(default_factory=list)
 
-    def fault(self, text: str, place: Place = Place()) -> None:  # noqa: B008 - Place is frozen
+    def fault(self, text: str, place: Place = Place()) -> None:
         self.found.append(Problem(text, place))
 
-    def oddity(self, text: str, place: Place = Place()) -> None:  # noqa: B008
+    def oddity(self, text: str, place: Place = Place()) -> None:
         self.found.append(Problem(text, place, Severity.ODDITY))
 
     @property

@@ -8,7 +8,6 @@ import typing
 from collections.abc import Mapping
 from dataclasses import dataclass, fields
 from enum import Enum
-from functools import cache
 from typing import Any
 
 from blendapp.domain.formulas import Formula, Limit, Subject
@@ -68,7 +67,7 @@ class Change:
 
     @property
     def id(self) -> int:
-        record = self.after if self.after is not None else self.before
+        record: Record = self.after if self.after is not None else self.before
         return int(record.id)
 
     @property
@@ -92,11 +91,16 @@ def field_type(declared: Any) -> tuple[Any, bool]:
     return declared, False
 
 
-@cache
+_FIELD_TYPES: dict[type[Record], Mapping[str, tuple[Any, bool]]] = {}
+
+
 def field_types(cls: type[Record]) -> Mapping[str, tuple[Any, bool]]:
     """For each field of a record class, in order: its class and whether it may be None."""
-    hints = typing.get_type_hints(cls)
-    return {f.name: field_type(hints[f.name]) for f in fields(cls)}
+    found = _FIELD_TYPES.get(cls)
+    if found is None:
+        hints = typing.get_type_hints(cls)
+        found = _FIELD_TYPES[cls] = {f.name: field_type(hints[f.name]) for f in fields(cls)}
+    return found
 
 
 def to_plain(record: Record) -> dict[str, Any]:

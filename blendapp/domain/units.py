@@ -130,7 +130,8 @@ def convert(value: float, unit: str, to: str) -> float:
     """A concentration in another unit of its family. Raises ValueError if the families differ."""
     source, target = concentration(unit), concentration(to)
     if source.family is not target.family:
-        raise ValueError(_("{unit} cannot be turned into {to}; choose a unit of the same kind.").format(unit=unit, to=to))
+        text = _("{unit} cannot be turned into {to}; choose a unit of the same kind.")
+        raise ValueError(text.format(unit=unit, to=to))
     return value * (source.factor / target.factor)
 
 
@@ -138,7 +139,7 @@ def price_per_t(price: float, per: str, bushel_lb: float | None = None) -> float
     """Money per tonne from money per a stated mass. Raises ValueError for an unknown mass or an unknown bushel."""
     if per == BUSHEL:
         if not bushel_lb:
-            raise ValueError(_("A price per bushel needs the ingredient's bushel weight in lb; enter it under Bushel lb."))
+            raise ValueError(_("A price per bushel needs the weight of a bushel; enter it under Bushel lb."))
         return price * 1000.0 / (bushel_lb * LB_KG)
     try:
         return price * (1000.0 / PRICE_PER_KG[per])

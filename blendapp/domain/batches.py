@@ -1,0 +1,71 @@
+"""A batch as the mill weighs it."""
+
+from __future__ import annotations
+
+import datetime
+from dataclasses import dataclass
+
+from blendapp.domain.results import LimitResult, NutrientResult
+
+
+@dataclass(frozen=True)
+class BatchLine:
+    """One line of a batch sheet. share_kg: the exact share of the batch; target_kg: a multiple of step_kg.
+
+    scale: its name, "" in a mill without scales. drug, drug_level, drug_species, withdrawal: as entered, of a
+    medicated line.
+    """
+
+    ingredient_id: int
+    ingredient: str
+    scale: str
+    step_kg: float
+    share_kg: float
+    target_kg: float
+    hand_add: bool = False
+    drug: str = ""
+    drug_level: str = ""
+    drug_species: str = ""
+    withdrawal: str = ""
+
+
+@dataclass(frozen=True)
+class Batch:
+    """The whole batches of one order: every figure describes one of `batches` equal ones, as weighed.
+
+    limits: from the target kilograms; broken: indices of those that do not hold. cause: why no sheet can be made, or
+    None. residue_kg: target total less batch_kg. number: of the sheet once it was printed, None before.
+    """
+
+    formula_id: int
+    formula: str
+    version: str
+    mill: str
+    currency: str
+    made: datetime.date
+    order_kg: float
+    batches: int
+    batch_kg: float
+    lines: tuple[BatchLine, ...]
+    limits: tuple[LimitResult, ...]
+    nutrients: tuple[NutrientResult, ...]
+    broken: tuple[int, ...]
+    cautions: tuple[str, ...]
+    cause: str | None = None
+    number: int | None = None
+    copy: int = 0
+    accepted_reason: str = ""
+    accepted_by: str = ""
+
+    @property
+    def total_kg(self) -> float:
+        return round(sum(line.target_kg for line in self.lines), 9)
+
+    @property
+    def residue_kg(self) -> float:
+        return round(self.total_kg - self.batch_kg, 9)
+
+    @property
+    def fit_to_mix(self) -> bool:
+        """Whether it may be mixed: nothing is broken, or what is was accepted by name and with a reason."""
+        return not self.broken or bool(self.accepted_reason and self.accepted_by)
