@@ -1,0 +1,131 @@
+"""The frame of the window: header, three zones, and the caution that is in view at all times."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import QPoint, QRect, Qt, Signal
+from PySide6.QtGui import QPainter, QPaintEvent
+from PySide6.QtWidgets import (
+    QFrame,
+    QHBoxLayout,
+    QLabel,
+    QSplitter,
+    QSplitterHandle,
+    QStackedWidget,
+    QVBoxLayout,
+    QWidget,
+)
+
+from blendapp.desk.shell.header import Header
+from blendapp.desk.shell.zone import Elided, Zone
+from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font, tokens
+from blendapp.domain.wording import _
+
+
+def caution_text() -> str:
+    """The sentence that stands on every screen and every page."""
+    return _(
+        "A qualified nutritionist must review any ration before it is fed. Local law and licensed practice come first."
+    )
+
+
+class Rule(QFrame):
+    """A hairline across the window."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.setFixedHeight(1)
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        QPainter(self).fillRect(self.rect(), tokens().colour("hairline"))
+
+
+class Footer(QWidget):
+    """The caution on the left, the check of the answer on the right."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.setObjectName("footer")
+        self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
+        self.setFixedHeight(40)
+        self.caution = QLabel(caution_text())
+        self.caution.setFont(text_font(strong=True))
+        self.caution.setAccessibleName(caution_text())
+        self.check = Elided()
+        self.check.setObjectName("quiet")
+        self.check.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
+        row = QHBoxLayout(self)
+        row.setContentsMargins(MARGIN_PX, 0, MARGIN_PX, 0)
+        row.setSpacing(GAP_PX * 3)
+        row.addWidget(self.caution)
+        row.addWidget(self.check, 1)
+
+
+class _Handle(QSplitterHandle):
+    def paintEvent(self, event: QPaintEvent) -> None:
+        painter = QPainter(self)
+        painter.fillRect(
+            QRect(QPoint(self.width() // 2, MARGIN_PX // 2), QPoint(self.width() // 2, self.height())),
+            tokens().colour("hairline"),
+        )
+
+
+class _Zones(QSplitter):
+    def __init__(self) -> None:
+        super().__init__(Qt.Orientation.Horizontal)
+        self.setHandleWidth(1)
+        self.setChildrenCollapsible(False)
+
+    def createHandle(self) -> QSplitterHandle:
+        return _Handle(self.orientation(), self)
+
+
+class Frame(QWidget):
+    """The window before the mill is in it. painted: after the first paint, once."""
+
+    painted = Signal()
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.setWindowTitle("blendapp")
+        self.header = Header()
+        self.have = Zone(_("What we have"))
+        self.meet = Zone(_("What it must meet"))
+        self.mix = Zone(_("What to mix"))
+        self.zones = (self.have, self.meet, self.mix)
+        self.bench = _Zones()
+        for zone, least in zip(self.zones, (300, 380, 300), strict=True):
+            zone.setMinimumWidth(least)
+            self.bench.addWidget(zone)
+        self.bench.setSizes([468, 524, 448])
+        for place, zone in enumerate(self.zones):
+            zone.widen_asked.connect(lambda place=place: self.widen(None if self.wide == place else place))
+        self.middle = QStackedWidget()
+        self.middle.addWidget(self.bench)
+        self.footer = Footer()
+        column = QVBoxLayout(self)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(0)
+        for part in (self.header, Rule()):
+            column.addWidget(part)
+        column.addWidget(self.middle, 1)
+        for part in (Rule(), self.footer):
+            column.addWidget(part)
+        self.wide: int | None = None
+        self._is_painted = False
+        self.resize(1440, 900)
+
+    def widen(self, place: int | None) -> None:
+        """Give the zone at a place the whole window; None shows all three."""
+        self.wide = place
+        for here, zone in enumerate(self.zones):
+            zone.setVisible(place is None or place == here)
+            zone.show_wide(place == here)
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        super().paintEvent(event)
+        if not self._is_painted:
+            self._is_painted = True
+            from PySide6.QtCore import QTimer
+
+            # After this event, when all children have painted too.
+            QTimer.singleShot(0, self.painted.emit)
