@@ -1,0 +1,233 @@
+"""What is refused and what is odd about a record, wherever it comes from: typed, pasted or imported."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Any
+
+from blendapp.domain import limit_units, units
+from blendapp.domain.fields import fields_of
+from blendapp.domain.formulas import Amounts, Limit, LimitBasis, LimitKind, Subject, SubjectKind
+from blendapp.domain.ingredients import Value
+from blendapp.domain.library import Library
+from blendapp.domain.names import fold
+from blendapp.domain.nutrients import BUILT_IN, KEYS, Nutrient
+from blendapp.domain.plant import Mixer, Scale
+from blendapp.domain.quotes import Quote
+from blendapp.domain.records import KIND_OF, Record
+from blendapp.domain.wording import _
+
+# (field, sentence): the field is the attribute that the sentence is about.
+Finding = tuple[str, str]
+
+_NAMED = ("nutrient", "ingredient", "formula", "scale", "mixer", "site", "supplier", "person")
+
+
+def faults(record: Record, library: Library) -> list[Finding]:
+    """Everything for which a record is refused. library: what it would stand among, itself included or not."""
+    kind = KIND_OF[type(record)]
+    found: list[Finding] = []
+    for field in fields_of(kind):
+        value = getattr(record, field.name)
+        if isinstance(value, int | float) and not isinstance(value, bool):
+            sentence = field.fault(value)
+            if sentence:
+                found.append((field.name, sentence))
+    if kind in _NAMED:
+        found += _name_faults(kind, record, library)
+    check = _FAULTS.get(kind)
+    return found + (check(record, library) if check else [])
+
+
+def oddities(record: Record, library: Library) -> list[Finding]:
+    """What is let in but worth saying."""
+    check = _ODDITIES.get(KIND_OF[type(record)])
+    return check(record, library) if check else []
+
+
+def _name_faults(kind: str, record: Record, library: Library) -> list[Finding]:
+    if not record.name.strip():
+        return [("name", _("A name is needed here."))]
+    if kind == "nutrient" and fold(record.name) in map(fold, BUILT_IN):
+        return [("name", _("“{name}” is built in; choose another name.").format(name=record.name))]
+    wanted = fold(record.name)
+    for other in library.records[kind].values():
+        if other.id != record.id and fold(other.name) == wanted:
+            return [("name", _("The name “{name}” is taken; choose another one.").format(name=record.name))]
+    return []
+
+
+def _mill(record: Any, library: Library) -> list[Finding]:
+    found: list[Finding] = []
+    if not (len(record.currency) == 3 and record.currency.isascii() and record.currency.isupper()):
+        text = _("“{code}” is no currency code; write three capital letters of ISO 4217, for example USD.")
+        found.append(("currency", text.format(code=record.currency)))
+    for name, known in (("ton_means", units.TON_MEANINGS), ("cwt_means", units.CWT_MEANINGS)):
+        value = getattr(record, name)
+        if value and value not in known:
+            text = _("“{value}” is not known here; use one of {known}, or leave it blank.")
+            found.append((name, text.format(value=value, known=", ".join(known))))
+    return found
+
+
+def _nutrient(record: Nutrient, library: Library) -> list[Finding]:
+    found: list[Finding] = []
+    try:
+        units.concentration(record.unit)
+    except ValueError as error:
+        found.append(("unit", str(error)))
+    if record.key and record.key not in KEYS:
+        text = _("The key “{key}” is not known; leave it blank or use one of {known}.")
+        found.append(("key", text.format(key=record.key, known=", ".join(KEYS))))
+    return found
+
+
+def _value(record: Value, library: Library) -> list[Finding]:
+    nutrient = library.records["nutrient"].get(record.nutrient_id)
+    try:
+        unit = units.concentration(record.unit)
+    except ValueError as error:
+        return [("unit", str(error))]
+    if nutrient is not None and units.concentration(nutrient.unit).family is not unit.family:
+        text = _("{unit} does not measure {nutrient}, which is kept in {own}; use a unit of that kind.")
+        return [("unit", text.format(unit=record.unit, nutrient=nutrient.name, own=nutrient.unit or "/kg"))]
+    if nutrient is not None and nutrient.never_negative and record.amount < 0:
+        text = _("{nutrient} can never be negative; {value} is.")
+        return [("amount", text.format(nutrient=nutrient.name, value=f"{record.amount:g}"))]
+    return []
+
+
+def _odd_value(record: Value, library: Library) -> list[Finding]:
+    nutrient = library.nutrient(record.nutrient_id)
+    unit = units.concentration(record.unit)
+    if unit.family is units.Family.MASS and record.amount * unit.factor > 1 and "protein" not in nutrient.key:
+        text = _("{nutrient} of {value} {unit} is more than the whole; check the unit.")
+        return [("amount", text.format(nutrient=nutrient.name, value=f"{record.amount:g}", unit=record.unit))]
+    return []
+
+
+def _quote(record: Quote, library: Library) -> list[Finding]:
+    found: list[Finding] = []
+    if record.per not in units.PRICE_PER:
+        text = _("“{per}” is not known as the mass of a price; use one of {known}.")
+        found.append(("per", text.format(per=record.per, known=", ".join(units.PRICE_PER))))
+    elif record.per == units.BUSHEL and not record.bushel_lb:
+        found.append(("per", _("A price per bushel needs the weight of a bushel; enter it under Bushel lb.")))
+    if record.valid_from and record.valid_to and record.valid_from > record.valid_to:
+        found.append(("valid_to", _("The last day of a price lies before its first.")))
+    return found
+
+
+def _spread(record: Scale | Mixer, library: Library) -> list[Finding]:
+    if record.least_kg is not None and record.greatest_kg is not None and record.least_kg > record.greatest_kg:
+        text = _("The least load {least} kg is above the greatest {greatest} kg; correct one of them.")
+        return [("least_kg", text.format(least=f"{record.least_kg:g}", greatest=f"{record.greatest_kg:g}"))]
+    return []
+
+
+def _limit(record: Limit, library: Library) -> list[Finding]:
+    found: list[Finding] = []
+    formula = library.formula(record.formula_id)
+    if record.minimum is not None and record.maximum is not None and record.minimum > record.maximum:
+        text = _("The minimum {minimum} is above the maximum {maximum}; correct one of them.")
+        found.append(("minimum", text.format(minimum=f"{record.minimum:g}", maximum=f"{record.maximum:g}")))
+    try:
+        limit_units.factor(library, record, formula.amounts)
+    except ValueError as error:
+        found.append(("unit", str(error)))
+        return found
+    if record.kind is LimitKind.NUTRIENT:
+        found += _nutrient_limit(record, library, formula.amounts)
+    elif record.kind in (LimitKind.INGREDIENT, LimitKind.GROUP, LimitKind.PRACTICAL):
+        found += _inclusion_limit(record, library, formula.amounts)
+    elif record.kind is LimitKind.RATIO:
+        found += _ratio_limit(record)
+    else:
+        found += _count_limit(record, library)
+    return found
+
+
+def _nutrient_limit(record: Limit, library: Library, amounts: Amounts) -> list[Finding]:
+    if record.basis is LimitBasis.PER_DAY and amounts is Amounts.BLEND:
+        text = _("A blend has no amount per day; choose as fed or dry matter, or make the formula a ration.")
+        return [("basis", text)]
+    if record.subject.kind in (SubjectKind.DRY_MATTER, SubjectKind.MOISTURE) and record.basis in (
+        LimitBasis.DRY_MATTER,
+        LimitBasis.AT_DRY_MATTER,
+    ):
+        text = _("{name} is limited as fed or per day; per dry matter it says nothing.")
+        return [("basis", text.format(name=library.subject_name(record.subject)))]
+    return []
+
+
+def _inclusion_limit(record: Limit, library: Library, amounts: Amounts) -> list[Finding]:
+    found: list[Finding] = []
+    share = record.unit == units.SHARE_OF_DRY_MATTER
+    whole = amounts is Amounts.BLEND or share
+    factor = limit_units.factor(library, record, amounts)
+    for name in ("minimum", "maximum"):
+        bound = getattr(record, name)
+        if bound is None:
+            continue
+        if bound < 0:
+            found.append((name, _("An inclusion cannot be below 0; {value} is.").format(value=f"{bound:g}")))
+        elif whole and bound * factor > 1 + 1e-12:
+            unit = limit_units.shown_unit(library, record, amounts)
+            text = _("An inclusion cannot be above the whole; {value} {unit} is.")
+            found.append((name, text.format(value=f"{bound:g}", unit=unit)))
+    if record.kind is LimitKind.PRACTICAL and record.minimum is None:
+        found.append(("minimum", _("A practical minimum needs the least amount worth weighing under Minimum.")))
+    return found
+
+
+def _ratio_limit(record: Limit) -> list[Finding]:
+    if record.per is None:
+        return [("per", _("A ratio needs what it is over; name it under Per."))]
+    if record.subject.is_nutrient != record.per.is_nutrient:
+        return [("per", _("A ratio is of two nutrients or of two groups, not of one of each."))]
+    if record.minimum is not None and record.minimum < 0:
+        return [("minimum", _("A ratio cannot be below 0; {value} is.").format(value=f"{record.minimum:g}"))]
+    return []
+
+
+def _count_limit(record: Limit, library: Library) -> list[Finding]:
+    if record.maximum is None or record.maximum < 0 or record.maximum != int(record.maximum):
+        return [("maximum", _("A count needs a whole number, 0 or more, under Maximum."))]
+    members = len(library.members(record.subject))
+    if record.maximum > members:
+        text = _("The count {count} is above the {members} ingredients of its group; it would say nothing.")
+        return [("maximum", text.format(count=f"{record.maximum:g}", members=members))]
+    return []
+
+
+def _odd_limit(record: Limit, library: Library) -> list[Finding]:
+    if record.kind in (LimitKind.INGREDIENT, LimitKind.PRACTICAL, LimitKind.NUTRIENT):
+        return []
+    admitted = {i.id for i in library.admitted(library.formula(record.formula_id))}
+    found: list[Finding] = []
+    for name, subject in (("subject", record.subject), ("per", record.per)):
+        if subject is not None and not subject.is_nutrient:
+            found += [(name, sentence) for sentence in _not_admitted(subject, library, admitted)]
+    return found
+
+
+def _not_admitted(subject: Subject, library: Library, admitted: set[int]) -> list[str]:
+    text = _("{name} is not admitted by the formula and counts as 0 here.")
+    if subject.kind is SubjectKind.CLASS:
+        members = library.members(subject)
+        if any(member.id in admitted for member in members):
+            return []
+        return [_("No admitted ingredient has the class {name}; it counts as 0.").format(name=subject.class_name)]
+    return [text.format(name=member.name) for member in library.members(subject) if member.id not in admitted]
+
+
+_FAULTS: dict[str, Callable[[Any, Library], list[Finding]]] = {
+    "mill": _mill,
+    "nutrient": _nutrient,
+    "value": _value,
+    "quote": _quote,
+    "scale": _spread,
+    "mixer": _spread,
+    "limit": _limit,
+}
+_ODDITIES: dict[str, Callable[[Any, Library], list[Finding]]] = {"value": _odd_value, "limit": _odd_limit}
