@@ -1,0 +1,43 @@
+"""Pages: the batch sheet as PDF, and any PDF as pictures.
+
+The PDF library and the renderer load slowly and are imported when the first page is asked for, so that a window
+starts without them. The PDF that is made here is what the preview shows, the printer gets and the file keeps.
+"""
+
+from __future__ import annotations
+
+from blendapp.documents.paper import Paper
+from blendapp.domain.batches import Batch
+
+__all__ = ["Paper", "batch_sheet", "page_count", "page_text", "render_png"]
+
+
+def batch_sheet(batch: Batch, *, paper: Paper = Paper.A4) -> bytes:
+    """The batch sheet as a PDF. The same batch, paper, language and notation give the same bytes."""
+    from blendapp.documents import batch_page
+
+    return batch_page.draw(batch, paper)
+
+
+def render_png(pdf: bytes, dots_per_inch: float, page: int | None = None) -> list[bytes]:
+    """Every page as a PNG picture, or only the one at index `page` (from 0).
+
+    Raises ValueError for what is no PDF or a resolution that is not above 0, IndexError for a page that is not there.
+    """
+    from blendapp.documents import pictures
+
+    return pictures.render_png(pdf, dots_per_inch, page)
+
+
+def page_count(pdf: bytes) -> int:
+    """How many pages a PDF has. Raises ValueError if it is none."""
+    from blendapp.documents import pictures
+
+    return pictures.page_count(pdf)
+
+
+def page_text(pdf: bytes) -> list[str]:
+    """The text of each page as a PDF reader finds it. Raises ValueError if it is no PDF."""
+    from blendapp.documents import pictures
+
+    return pictures.page_text(pdf)
