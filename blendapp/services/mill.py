@@ -1,0 +1,271 @@
+"""An open mill: its library in memory, its file behind it, and the one way in which either changes."""
+
+from __future__ import annotations
+
+import datetime
+import getpass
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from blendapp.domain import checks
+from blendapp.domain.fields import field_of
+from blendapp.domain.formulas import SubjectKind
+from blendapp.domain.library import Library
+from blendapp.domain.problems import Place, Problem, Refused, Severity
+from blendapp.domain.records import KINDS, Change, Record
+from blendapp.domain.wording import _
+
+if TYPE_CHECKING:
+    from blendapp.optimise.build.composition import Composition
+    from blendapp.storage import Entry, Store
+
+
+@dataclass(frozen=True)
+class Edit:
+    """What one edit, undo or redo did: the entry of the change log and the records that changed."""
+
+    entry_id: int
+    what: str
+    changes: tuple[Change, ...]
+    oddities: tuple[Problem, ...] = ()
+
+    @property
+    def changed(self) -> frozenset[tuple[str, int]]:
+        """(kind, identifier) of every record that is not as it was."""
+        return frozenset((change.kind, change.id) for change in self.changes)
+
+    def touches(self, *kinds: str) -> bool:
+        return any(change.kind in kinds for change in self.changes)
+
+
+class Mill:
+    """One open mill file. Every change of it goes through apply, undo, redo or record.
+
+    library: always what the file holds. Not for use from two threads at once; a worker takes library.copy().
+    """
+
+    def __init__(self, store: Store, who: str = "") -> None:
+        self.store = store
+        self.who = who or _user()
+        self.library = Library.of(store.read_all())
+        self._next = store.next_ids()
+        self._composition: Composition | None = None
+        self._undoable: list[tuple[int, str]] | None = None
+        self._redoable: list[tuple[int, str]] = []
+
+    @property
+    def path(self) -> Path:
+        return self.store.path
+
+    @property
+    def writable(self) -> bool:
+        return self.store.writable
+
+    @property
+    def why_read_only(self) -> str | None:
+        return self.store.why_read_only
+
+    @property
+    def composition(self) -> Composition:
+        """The composition as arrays, kept up to date with the library."""
+        if self._composition is None:
+            from blendapp.optimise.build.composition import Composition
+
+            self._composition = Composition(self.library)
+        return self._composition
+
+    def close(self) -> None:
+        self.store.close()
+
+    def new_id(self, kind: str) -> int:
+        """An identifier for a record to be added; one is never used twice, whatever becomes of the record."""
+        taken = self._next.get(kind, 1)
+        self._next[kind] = taken + 1
+        return taken
+
+    # -- changing
+
+    def apply(self, what: str, changes: Sequence[Change]) -> Edit:
+        """Take an edit in, at once and whole: checked, stored with its log entry, and in the library.
+
+        what: the sentence that undo shows. Raises Refused with every fault, each with its record and field, and
+        storage.MillFileError if the file cannot take it; nothing has changed then.
+        """
+        real = [change for change in changes if change.before != change.after]
+        if not real:
+            return Edit(0, what, ())
+        self._history()
+        oddities = self._take_in(real)
+        entry = self._stored(real, what, "edit", None)
+        self._remember(entry.id, "edit", what)
+        return Edit(entry.id, what, tuple(real), tuple(oddities))
+
+    def record(self, what: str, changes: Sequence[Change]) -> Edit:
+        """As apply, for what a person cannot take back: a printed sheet, an approval."""
+        self._take_in(changes)
+        entry = self._stored(changes, what, "record", None)
+        return Edit(entry.id, what, tuple(changes))
+
+    def _take_in(self, changes: Sequence[Change]) -> list[Problem]:
+        if not self.writable:
+            raise Refused(self.why_read_only or _("This mill file is read-only here."))
+        self.library.apply(changes)
+        found = problems_of(changes, self.library)
+        faults = [p for p in found if p.severity is Severity.FAULT]
+        if faults:
+            self.library.apply(change.reversed for change in reversed(changes))
+            raise Refused(faults)
+        return [p for p in found if p.severity is Severity.ODDITY]
+
+    def _stored(self, changes: Sequence[Change], what: str, role: str, of: int | None) -> Entry:
+        try:
+            entry = self.store.write(what, changes, self.who, role, of)
+        except BaseException:
+            self.library.apply(change.reversed for change in reversed(changes))
+            raise
+        if self._composition is not None:
+            self._composition.refresh(self.library, changes)
+        return entry
+
+    # -- taking back
+
+    @property
+    def undo_text(self) -> str | None:
+        """What undo would take back, or None."""
+        undoable = self._history()
+        return undoable[-1][1] if undoable else None
+
+    @property
+    def redo_text(self) -> str | None:
+        self._history()
+        return self._redoable[-1][1] if self._redoable else None
+
+    def undo(self) -> Edit | None:
+        """Restore what the last edit changed; an entry of its own. None if there is nothing to undo."""
+        undoable = self._history()
+        return self._reverse(undoable[-1], "undo") if undoable else None
+
+    def redo(self) -> Edit | None:
+        """Take the last undo back. None if there is none, or an edit came after it."""
+        self._history()
+        return self._reverse(self._redoable[-1], "redo") if self._redoable else None
+
+    def _reverse(self, of: tuple[int, str], role: str) -> Edit:
+        entry_id, what = of
+        (entry,) = self.store.entries(after=entry_id - 1, last=entry_id)
+        changes = entry.changes if role == "redo" else tuple(c.reversed for c in reversed(entry.changes))
+        if not self.writable:
+            raise Refused(self.why_read_only or _("This mill file is read-only here."))
+        try:
+            self.library.apply(changes)
+        except KeyError:
+            raise Refused(_("“{what}” cannot be taken back: a later change stands on it.").format(what=what)) from None
+        done = self._stored(changes, what, role, entry_id)
+        self._remember(done.id, role, what)
+        return Edit(done.id, what, tuple(changes))
+
+    def _history(self) -> list[tuple[int, str]]:
+        """The edits that can be undone, oldest first; read from the log once."""
+        if self._undoable is None:
+            self._undoable = []
+            for entry in self.store.entries():
+                self._remember(entry.id, entry.role, entry.what)
+        return self._undoable
+
+    def _remember(self, entry_id: int, role: str, what: str) -> None:
+        undoable = self._history()
+        if role == "undo":
+            self._redoable.append(undoable.pop())
+        elif role == "redo":
+            undoable.append(self._redoable.pop())
+        elif role == "edit":
+            undoable.append((entry_id, what))
+            self._redoable.clear()
+
+
+def problems_of(changes: Iterable[Change], library: Library) -> list[Problem]:
+    """The faults and oddities of what edits have put into a library, and of the records that rest on them."""
+    found: list[Problem] = []
+    seen: set[tuple[str, int]] = set()
+    for change in changes:
+        for record in [change.after, *_resting_on(change, library)]:
+            if record is None:
+                continue
+            kind = kind_of(record)
+            if (kind, record.id) in seen:
+                continue
+            seen.add((kind, record.id))
+            for severity, findings in (
+                (Severity.FAULT, checks.faults(record, library)),
+                (Severity.ODDITY, checks.oddities(record, library)),
+            ):
+                found += [Problem(text, place_of(record, field, library), severity) for field, text in findings]
+    return found
+
+
+def kind_of(record: Record) -> str:
+    return next(kind for kind, cls in KINDS.items() if cls is type(record))
+
+
+def place_of(record: Record, field: str, library: Library) -> Place:
+    """Where a fault in a field of a record stands, in words."""
+    kind = kind_of(record)
+    try:
+        column = field_of(kind, field).label
+    except KeyError:
+        column = field
+    return Place(column=column, record=record_name(record, library))
+
+
+def record_name(record: Record, library: Library) -> str:
+    """What a person calls a record."""
+    kind = kind_of(record)
+    if kind == "value":
+        return f"{_name(library, 'ingredient', record.ingredient_id)}, {_name(library, 'nutrient', record.nutrient_id)}"
+    if kind == "quote":
+        return _name(library, "ingredient", record.ingredient_id)
+    if kind == "limit":
+        try:
+            return f"{_name(library, 'formula', record.formula_id)}, {library.subject_name(record.subject)}"
+        except KeyError:
+            return _name(library, "formula", record.formula_id)
+    return str(getattr(record, "name", ""))
+
+
+def _name(library: Library, kind: str, record_id: int) -> str:
+    record = library.records[kind].get(record_id)
+    return "" if record is None else str(record.name)
+
+
+def _resting_on(change: Change, library: Library) -> list[Record]:
+    """Records that a change of another one may have made faulty."""
+    if change.before is None or change.after is None:
+        return []
+    if change.kind == "formula" and change.before.amounts is not change.after.amounts:
+        return list(library.limits(change.id))
+    if change.kind == "nutrient" and (
+        change.before.unit != change.after.unit or change.before.never_negative != change.after.never_negative
+    ):
+        values = [v for v in library.records["value"].values() if v.nutrient_id == change.id]
+        limits = [
+            limit
+            for limit in library.records["limit"].values()
+            if any(s is not None and s.kind is SubjectKind.NUTRIENT and s.ids == (change.id,)
+                   for s in (limit.subject, limit.per))
+        ]
+        return values + limits
+    return []
+
+
+def _user() -> str:
+    try:
+        return getpass.getuser()
+    except (OSError, KeyError):
+        return ""
+
+
+def today() -> datetime.date:
+    """The day on which prices are taken to be in force."""
+    return datetime.date.today()
