@@ -2,25 +2,25 @@
 
 from __future__ import annotations
 
+import math
+import sys
 from collections.abc import Callable
 from typing import Any
 
-from blendapp.domain import limit_units, units
+from blendapp.domain import limit_units, making, units
 from blendapp.domain.fields import fields_of
 from blendapp.domain.formulas import Amounts, Limit, LimitBasis, LimitKind, Subject, SubjectKind
-from blendapp.domain.ingredients import Value
-from blendapp.domain.library import Library
+from blendapp.domain.ingredients import Ingredient, Value
+from blendapp.domain.library import NAMED_KINDS, Library
 from blendapp.domain.names import fold
 from blendapp.domain.nutrients import BUILT_IN, KEYS, Nutrient
 from blendapp.domain.plant import Mixer, Scale
 from blendapp.domain.quotes import Quote
-from blendapp.domain.records import KIND_OF, Record
+from blendapp.domain.records import KIND_OF, Change, Record
 from blendapp.domain.wording import _
 
 # (field, sentence): the field is the attribute that the sentence is about.
 Finding = tuple[str, str]
-
-_NAMED = ("nutrient", "ingredient", "formula", "scale", "mixer", "site", "supplier", "person")
 
 
 def faults(record: Record, library: Library) -> list[Finding]:
@@ -33,7 +33,7 @@ def faults(record: Record, library: Library) -> list[Finding]:
             sentence = field.fault(value)
             if sentence:
                 found.append((field.name, sentence))
-    if kind in _NAMED:
+    if kind in NAMED_KINDS:
         found += _name_faults(kind, record, library)
     check = _FAULTS.get(kind)
     return found + (check(record, library) if check else [])
@@ -50,11 +50,20 @@ def _name_faults(kind: str, record: Record, library: Library) -> list[Finding]:
         return [("name", _("A name is needed here."))]
     if kind == "nutrient" and fold(record.name) in map(fold, BUILT_IN):
         return [("name", _("“{name}” is built in; choose another name.").format(name=record.name))]
-    wanted = fold(record.name)
-    for other in library.records[kind].values():
-        if other.id != record.id and fold(other.name) == wanted:
-            return [("name", _("The name “{name}” is taken; choose another one.").format(name=record.name))]
+    if any(other.id != record.id for other in library.all_named(kind, record.name)):
+        return [("name", _("The name “{name}” is taken; choose another one.").format(name=record.name))]
     return []
+
+
+def quiet_range(nutrient: Nutrient, unit: str) -> tuple[float, float]:
+    """The least and greatest amount of a nutrient, in a unit of its family, about which nothing is to be said.
+
+    Within it faults() and oddities() of a Value find nothing in the amount; whole columns are read by it. Outside
+    they may or may not.
+    """
+    found = units.concentration(unit)
+    whole = 1 / found.factor if found.family is units.Family.MASS else math.inf
+    return (0.0 if nutrient.never_negative else -math.inf), min(whole, sys.float_info.max) * (1 - 1e-12)
 
 
 def _mill(record: Any, library: Library) -> list[Finding]:
@@ -80,6 +89,16 @@ def _nutrient(record: Nutrient, library: Library) -> list[Finding]:
         text = _("The key “{key}” is not known; leave it blank or use one of {known}.")
         found.append(("key", text.format(key=record.key, known=", ".join(KEYS))))
     return found
+
+
+def _ingredient(record: Ingredient, library: Library) -> list[Finding]:
+    if record.made_by_formula_id is None:
+        return []
+    if library.records["ingredient"].get(record.id) != record:
+        library = library.copy()
+        library.apply([Change(library.records["ingredient"].get(record.id), record)])
+    sentence = making.cycle_fault(library, record.id)
+    return [("made_by_formula_id", sentence)] if sentence else []
 
 
 def _value(record: Value, library: Library) -> list[Finding]:
@@ -224,6 +243,7 @@ def _not_admitted(subject: Subject, library: Library, admitted: set[int]) -> lis
 _FAULTS: dict[str, Callable[[Any, Library], list[Finding]]] = {
     "mill": _mill,
     "nutrient": _nutrient,
+    "ingredient": _ingredient,
     "value": _value,
     "quote": _quote,
     "scale": _spread,

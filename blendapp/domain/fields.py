@@ -6,6 +6,7 @@ The table editor, the import, the export and the pages read it; checks.py refuse
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cache
 
 from blendapp.domain.wording import _
 
@@ -139,6 +140,7 @@ def field_of(kind: str, name: str) -> Field:
     return _BY_NAME[kind, name]
 
 
+@cache
 def fields_of(kind: str) -> tuple[Field, ...]:
     """The fields of a record kind in their order."""
     return tuple(f for f in FIELDS if f.kind == kind)

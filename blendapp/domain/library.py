@@ -17,6 +17,9 @@ from blendapp.domain.records import KINDS, Change, Record
 
 ByKind = dict[str, dict[int, Record]]
 
+# Kinds that are looked up by name.
+NAMED_KINDS = frozenset({"nutrient", "ingredient", "formula", "scale", "mixer", "site", "supplier", "person"})
+
 
 @dataclass
 class Library:
@@ -26,6 +29,7 @@ class Library:
     _values: dict[int, dict[int, Value]] = field(default_factory=dict)
     _quotes: dict[int, dict[int, Quote]] = field(default_factory=dict)
     _limits: dict[int, dict[int, Limit]] = field(default_factory=dict)
+    _names: dict[str, dict[str, dict[int, Record]]] = field(default_factory=lambda: {kind: {} for kind in NAMED_KINDS})
 
     @staticmethod
     def of(records: Mapping[str, Iterable[Record]]) -> Library:
@@ -50,6 +54,7 @@ class Library:
             {key: dict(found) for key, found in self._values.items()},
             {key: dict(found) for key, found in self._quotes.items()},
             {key: dict(found) for key, found in self._limits.items()},
+            {kind: {name: dict(same) for name, same in found.items()} for kind, found in self._names.items()},
         )
 
     def _take(self, kind: str, record: Record) -> None:
@@ -60,6 +65,8 @@ class Library:
             self._quotes.setdefault(record.ingredient_id, {})[record.id] = record
         elif kind == "limit":
             self._limits.setdefault(record.formula_id, {})[record.id] = record
+        elif kind in NAMED_KINDS:
+            self._names[kind].setdefault(fold(record.name), {})[record.id] = record
 
     def _forget(self, kind: str, record: Record) -> None:
         del self.records[kind][record.id]
@@ -69,6 +76,8 @@ class Library:
             del self._quotes[record.ingredient_id][record.id]
         elif kind == "limit":
             del self._limits[record.formula_id][record.id]
+        elif kind in NAMED_KINDS:
+            del self._names[kind][fold(record.name)][record.id]
 
     # -- what there is, in the order of identifiers
 
@@ -125,8 +134,11 @@ class Library:
 
     def named(self, kind: str, name: str) -> Record | None:
         """The record of that name, case and spacing apart, or None."""
-        wanted = fold(name)
-        return next((r for r in self.records[kind].values() if fold(r.name) == wanted), None)
+        return next(iter(self.all_named(kind, name)), None)
+
+    def all_named(self, kind: str, name: str) -> list[Record]:
+        """Every record of a kind (one of NAMED_KINDS) that has that name; more than one is a fault elsewhere."""
+        return list(self._names[kind].get(fold(name), {}).values())
 
     # -- composition and prices
 

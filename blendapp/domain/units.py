@@ -101,6 +101,16 @@ PRICE_PER: tuple[str, ...] = (*PRICE_PER_KG, BUSHEL)
 LEGAL_BUSHEL_LB: dict[str, float] = {"maize": 56.0, "corn": 56.0, "wheat": 60.0, "soya": 60.0, "soybean": 60.0,
                                      "soybeans": 60.0, "barley": 48.0, "oats": 32.0}
 
+# Words that may stand beside the name of a grain without making it another good.
+_GRAIN_WORDS = frozenset({"grain", "grains", "whole"})
+
+
+def legal_bushel_lb(name: str) -> float | None:
+    """Mass of the legal bushel in lb of an ingredient that is one of those grains by name, else None."""
+    words = [word for word in name.casefold().replace(",", " ").split() if word not in _GRAIN_WORDS]
+    return LEGAL_BUSHEL_LB.get(words[0]) if len(words) == 1 else None
+
+
 TON_MEANINGS: dict[str, str] = {"short ton": "short ton", "long ton": "long ton", "t": "t"}
 CWT_MEANINGS: dict[str, float] = {"100 lb": 100 * LB_KG, "112 lb": 112 * LB_KG}
 
