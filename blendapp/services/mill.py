@@ -7,7 +7,7 @@ import getpass
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Literal
 
 from blendapp.domain import checks
 from blendapp.domain.fields import field_of
@@ -16,10 +16,14 @@ from blendapp.domain.library import Library
 from blendapp.domain.problems import Place, Problem, Refused, Severity
 from blendapp.domain.records import KINDS, Change, Record
 from blendapp.domain.wording import _
+from blendapp.storage import MillFileError
 
 if TYPE_CHECKING:
     from blendapp.optimise.build.composition import Composition
     from blendapp.storage import Entry, Store
+
+
+__all__ = ["Edit", "Mill", "MillFileError", "kind_of", "open_mill", "problems_of", "record_name", "today"]
 
 
 @dataclass(frozen=True)
@@ -52,8 +56,8 @@ class Mill:
         self.library = Library.of(store.read_all())
         self._next = store.next_ids()
         self._composition: Composition | None = None
-        self._undoable: list[tuple[int, str]] | None = None
-        self._redoable: list[tuple[int, str]] = []
+        self._undoable: list[Entry] | None = None
+        self._redoable: list[Entry] = []
 
     @property
     def path(self) -> Path:
@@ -85,6 +89,14 @@ class Mill:
         self._next[kind] = taken + 1
         return taken
 
+    def next_ids(self) -> dict[str, int]:
+        """The first free identifier of every kind, for a reader that numbers records itself."""
+        return dict(self._next)
+
+    def used_id(self, kind: str, record_id: int) -> None:
+        """Say that a reader gave out an identifier, so that new_id does not give it again."""
+        self._next[kind] = max(self._next.get(kind, 1), record_id + 1)
+
     # -- changing
 
     def apply(self, what: str, changes: Sequence[Change]) -> Edit:
@@ -99,7 +111,7 @@ class Mill:
         self._history()
         oddities = self._take_in(real)
         entry = self._stored(real, what, "edit", None)
-        self._remember(entry.id, "edit", what)
+        self._remember(entry)
         return Edit(entry.id, what, tuple(real), tuple(oddities))
 
     def record(self, what: str, changes: Sequence[Change]) -> Edit:
@@ -135,12 +147,12 @@ class Mill:
     def undo_text(self) -> str | None:
         """What undo would take back, or None."""
         undoable = self._history()
-        return undoable[-1][1] if undoable else None
+        return undoable[-1].what if undoable else None
 
     @property
     def redo_text(self) -> str | None:
         self._history()
-        return self._redoable[-1][1] if self._redoable else None
+        return self._redoable[-1].what if self._redoable else None
 
     def undo(self) -> Edit | None:
         """Restore what the last edit changed; an entry of its own. None if there is nothing to undo."""
@@ -152,37 +164,42 @@ class Mill:
         self._history()
         return self._reverse(self._redoable[-1], "redo") if self._redoable else None
 
-    def _reverse(self, of: tuple[int, str], role: str) -> Edit:
-        entry_id, what = of
-        (entry,) = self.store.entries(after=entry_id - 1, last=entry_id)
-        changes = entry.changes if role == "redo" else tuple(c.reversed for c in reversed(entry.changes))
+    def _reverse(self, of: Entry, role: Literal["undo", "redo"]) -> Edit:
+        changes = of.changes if role == "redo" else tuple(c.reversed for c in reversed(of.changes))
         if not self.writable:
             raise Refused(self.why_read_only or _("This mill file is read-only here."))
-        try:
-            self.library.apply(changes)
-        except KeyError:
-            raise Refused(_("“{what}” cannot be taken back: a later change stands on it.").format(what=what)) from None
-        done = self._stored(changes, what, role, entry_id)
-        self._remember(done.id, role, what)
-        return Edit(done.id, what, tuple(changes))
+        if any(self.library.records[c.kind].get(c.id) != c.before for c in changes):
+            text = _("“{what}” cannot be taken back: a later change stands on it.")
+            raise Refused(text.format(what=of.what))
+        self.library.apply(changes)
+        done = self._stored(changes, of.what, role, of.id)
+        self._remember(done)
+        return Edit(done.id, of.what, changes)
 
-    def _history(self) -> list[tuple[int, str]]:
+    def _history(self) -> list[Entry]:
         """The edits that can be undone, oldest first; read from the log once."""
         if self._undoable is None:
             self._undoable = []
             for entry in self.store.entries():
-                self._remember(entry.id, entry.role, entry.what)
+                self._remember(entry)
         return self._undoable
 
-    def _remember(self, entry_id: int, role: str, what: str) -> None:
+    def _remember(self, entry: Entry) -> None:
         undoable = self._history()
-        if role == "undo":
+        if entry.role == "undo":
             self._redoable.append(undoable.pop())
-        elif role == "redo":
+        elif entry.role == "redo":
             undoable.append(self._redoable.pop())
-        elif role == "edit":
-            undoable.append((entry_id, what))
+        elif entry.role == "edit":
+            undoable.append(entry)
             self._redoable.clear()
+
+
+def open_mill(path: Path | str, who: str = "") -> Mill:
+    """Open a mill file; read-only where another program holds it. Raises MillFileError with one sentence."""
+    from blendapp.storage import open_store
+
+    return Mill(open_store(path), who)
 
 
 def problems_of(changes: Iterable[Change], library: Library) -> list[Problem]:

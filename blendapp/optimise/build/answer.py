@@ -1,0 +1,161 @@
+"""A solution becomes a domain result again: figures as displayed, in the units of the limits."""
+
+from __future__ import annotations
+
+import datetime
+from collections.abc import Mapping, Sequence
+from dataclasses import replace
+
+import numpy as np
+
+from blendapp.domain import limit_units, units
+from blendapp.domain.formulas import Amounts, Formula, Limit, LimitKind, SubjectKind, write_basis
+from blendapp.domain.library import Library
+from blendapp.domain.results import (
+    Check,
+    IngredientResult,
+    LimitResult,
+    NutrientResult,
+    Result,
+    Side,
+    Status,
+    UnknownValue,
+)
+from blendapp.optimise.build.formula import FormulaProgram
+from blendapp.optimise.program import Array
+from blendapp.optimise.solution import LimitState, Solution
+
+# Below this share of the mix (or kg per day) an amount is numerical dust and is shown as none.
+_DUST = 1e-12
+
+
+def without_answer(
+    library: Library, formula: Formula, on: datetime.date, status: Status, cause: str | None,
+    built: FormulaProgram | None, unknown: Sequence[UnknownValue] = (), cautions: Sequence[str] = (),
+) -> Result:
+    """A result that shows no figure which could be read as an answer."""
+    limits = library.limits(formula.id)
+    ingredients = () if built is None else tuple(
+        IngredientResult(i.id, i.name, float(price))
+        for i, price in zip(built.ingredients, built.price_per_t, strict=True)
+    )
+    return Result(
+        formula_id=formula.id,
+        formula=formula.name,
+        amounts=formula.amounts,
+        status=status,
+        currency=library.mill.currency,
+        on=on,
+        ingredients=ingredients,
+        limits=tuple(blank_limit(library, formula, index, limit) for index, limit in enumerate(limits)),
+        nutrients=(),
+        unpriced=() if built is None else tuple(i.name for i in built.unpriced),
+        unknown=tuple(unknown),
+        cautions=tuple(cautions),
+        cause=cause,
+    )
+
+
+def answered(
+    library: Library, on: datetime.date, built: FormulaProgram, solution: Solution, check: Check,
+    unknown: Sequence[UnknownValue], cautions: Sequence[str],
+) -> Result:
+    """The result of a solution that has amounts: optimal, or the best found when time was up."""
+    assert solution.x is not None
+    blank = without_answer(library, built.formula, on, Status.OPTIMAL, None, built, unknown, cautions)
+    x = np.where(np.abs(solution.x) < _DUST, 0.0, solution.x)
+    money = x * built.program.cost
+    return replace(
+        blank,
+        status=Status.OPTIMAL if solution.status == "optimal" else Status.STOPPED,
+        ingredients=tuple(
+            replace(one, amount=float(amount), cost=float(cost))
+            for one, amount, cost in zip(blank.ingredients, x, money, strict=True)
+        ),
+        limits=tuple(
+            _limit(one, limit, factor, solution.limits.get(one.index))
+            for one, limit, factor in zip(blank.limits, built.limits, built.factors, strict=True)
+        ),
+        nutrients=nutrients_of(library, built, x),
+        cost=float(money.sum()),
+        gap=solution.gap,
+        given_ingredients=solution.given,
+        check=check,
+    )
+
+
+def blank_limit(library: Library, formula: Formula, index: int, limit: Limit) -> LimitResult:
+    """A limit as displayed, without a value."""
+    nutrient = limit.kind is LimitKind.NUTRIENT
+    return LimitResult(
+        index=index,
+        limit_id=limit.id,
+        kind=limit.kind,
+        name=library.subject_name(limit.subject),
+        per=None if limit.per is None else library.subject_name(limit.per),
+        basis=write_basis(limit.basis, limit.at_dry_matter_percent) if nutrient else None,
+        unit=limit_units.shown_unit(library, limit, formula.amounts),
+        minimum=limit.minimum,
+        maximum=limit.maximum,
+    )
+
+
+def _limit(blank: LimitResult, limit: Limit, factor: float, state: LimitState | None) -> LimitResult:
+    if state is None:
+        return blank
+    value = None if state.value is None else state.value / factor
+    binding = None if state.binding is None else Side(state.binding)
+    # At its bound a value is the bound, digit for digit: what is displayed must not look a hair outside.
+    if binding is not None and limit.kind is not LimitKind.PRACTICAL:
+        value = limit.minimum if binding is Side.MINIMUM else limit.maximum
+    shown = replace(blank, value=value, binding=binding, shadow_price_unique=state.unique)
+    if limit.kind is LimitKind.COUNT:
+        return shown
+    equal = limit.minimum is not None and limit.minimum == limit.maximum
+    if state.price is None:
+        return shown
+    price = state.price * factor
+    if equal:
+        return replace(shown, raise_cost=price + 0.0, lower_cost=-price + 0.0)
+    cost = abs(price) if binding is not None else 0.0
+    return replace(shown, tighten_cost=cost, relax_saving=cost)
+
+
+def nutrients_of(library: Library, built: FormulaProgram, x: Array) -> tuple[NutrientResult, ...]:
+    """Every nutrient of the library in a mix: per kg as fed of a blend, per day of a ration."""
+    limited = {
+        limit.subject.ids[0]
+        for limit in built.limits
+        if limit.kind is LimitKind.NUTRIENT and limit.subject.kind is SubjectKind.NUTRIENT
+    }
+    return mixed_nutrients(library, built.formula.amounts, built.columns, built.composition, x,
+                           [i.name for i in built.ingredients], limited)
+
+
+def mixed_nutrients(
+    library: Library, amounts: Amounts, columns: Mapping[int, int], composition: Array, x: Array,
+    names: Sequence[str], limited: set[int],
+) -> tuple[NutrientResult, ...]:
+    """composition: shape (ingredients, nutrients), NaN unknown; x: fractions of a blend, or kg per day."""
+    used = x > 0
+    lacking = np.isnan(composition)
+    totals = x @ np.where(lacking, 0.0, composition) if len(x) else np.zeros(composition.shape[1])
+    found = []
+    for nutrient in library.nutrients:
+        column = columns[nutrient.id]
+        missing = lacking[:, column] & used
+        nothing = bool(missing.sum() == used.sum())
+        if amounts is Amounts.BLEND:
+            unit, scale = nutrient.unit, units.concentration(nutrient.unit).factor
+        else:
+            unit = units.own_per_day(nutrient.unit)
+            scale = units.per_day(unit).factor
+        found.append(NutrientResult(
+            nutrient.id,
+            nutrient.name,
+            unit,
+            None if nothing else float(totals[column] / scale),
+            tuple(name for name, flag in zip(names, missing, strict=True) if flag),
+            nutrient.id in limited,
+        ))
+    return tuple(found)

@@ -1,0 +1,200 @@
+"""Making the whole batches of an order, and printing their sheet once, with a number."""
+
+from __future__ import annotations
+
+import datetime
+import json
+import math
+from dataclasses import replace
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from blendapp.domain import cautions
+from blendapp.domain.batches import Batch, BatchLine
+from blendapp.domain.formulas import Amounts
+from blendapp.domain.ingredients import Ingredient
+from blendapp.domain.library import Library
+from blendapp.domain.mills import PrintedBatch
+from blendapp.domain.plant import Mixer, Scale
+from blendapp.domain.problems import Refused
+from blendapp.domain.records import Change, added
+from blendapp.domain.results import Result
+from blendapp.domain.wording import _
+from blendapp.optimise.build import batch as weighing
+from blendapp.optimise.build.composition import Composition
+from blendapp.optimise.build.formula import build
+from blendapp.services import sheets
+from blendapp.services.formulate import formulate
+from blendapp.services.versions import current_version
+
+if TYPE_CHECKING:
+    from blendapp.services.mill import Mill
+
+# The step of every line in a mill that has entered no scales.
+UNSCALED_STEP_KG = 0.01
+
+
+def make_batch(
+    library: Library,
+    formula_id: int,
+    order_kg: float,
+    on: datetime.date,
+    composition: Composition | None = None,
+    *,
+    result: Result | None = None,
+) -> Batch:
+    """The equal whole batches of an order, each line on its scale, held against the limits as weighed.
+
+    result: the answer to weigh, worked out here unless given. Where there is no answer, no split or no scale, the batch
+    has no lines and `cause` says why. Raises Refused for an order that is no mass.
+    """
+    if not (math.isfinite(order_kg) and order_kg > 0):
+        raise Refused(_("An order must be above 0 kg; {mass} is not.").format(mass=f"{order_kg:g}"))
+    composition = composition or Composition(library)
+    answer = result or formulate(library, formula_id, on, composition)
+    formula = library.formula(formula_id)
+    empty = Batch(
+        formula_id=formula_id, formula=formula.name, version=current_version(library, formula_id),
+        mill=library.mill.name, currency=library.mill.currency, made=on, order_kg=order_kg, batches=1,
+        batch_kg=order_kg, lines=(), limits=answer.limits, nutrients=(), broken=(), cautions=answer.cautions,
+    )
+    if not answer.has_answer:
+        text = _("{formula} has no answer: {cause}")
+        return replace(empty, cause=text.format(formula=formula.name, cause=answer.cause or answer.status))
+    split = split_order(library.mixers, order_kg)
+    if split is None:
+        return replace(empty, cause=_no_split(library.mixers, order_kg))
+    empty = replace(empty, batches=split, batch_kg=order_kg / split)
+    used = answer.mix
+    unscaled = [library.ingredient(i.ingredient_id) for i in used if _scale(library, i.ingredient_id) is None]
+    if library.scales and unscaled:
+        return replace(empty, cause=_proposal(library, unscaled))
+    total = math.fsum(i.amount or 0.0 for i in used)
+    shares = [(i.amount or 0.0) / total * empty.batch_kg for i in used]
+    steps = [_step_kg(library, i.ingredient_id) for i in used]
+    targets = weighing.weigh(shares, steps, empty.batch_kg)
+    lines = [
+        _line(library, i.ingredient_id, step, share, target)
+        for i, step, share, target in zip(used, steps, shares, targets, strict=True)
+    ]
+    built = build(library, formula, on, composition)
+    kilograms = {line.ingredient_id: line.target_kg for line in lines}
+    limits, nutrients = weighing.weighed(library, built, kilograms, total)
+    mix = [(key, mass) for key, mass in kilograms.items() if mass > 0]
+    forbidden = cautions.forbidden_in_mix(formula, library, mix)
+    if forbidden is not None:
+        return replace(empty, cause=forbidden)
+    return replace(
+        empty,
+        lines=tuple(sorted(lines, key=lambda line: _order(library, line))),
+        limits=limits,
+        nutrients=nutrients,
+        broken=tuple(limit.index for limit in limits if weighing.broken_by(limit) is not None),
+        cautions=tuple(cautions.warnings(formula, library, mix, answer.unknown)),
+    )
+
+
+def split_order(mixers: list[Mixer], order_kg: float) -> int | None:
+    """How many equal batches an order becomes: the fewest that one mixer can hold and fill; None if none can."""
+    if not mixers:
+        return 1
+    found = []
+    for mixer in mixers:
+        count = 1 if mixer.greatest_kg is None else max(1, math.ceil(order_kg / mixer.greatest_kg - 1e-9))
+        if order_kg / count >= (mixer.least_kg or 0.0) - 1e-9:
+            found.append(count)
+    return min(found, default=None)
+
+
+def _no_split(mixers: list[Mixer], order_kg: float) -> str:
+    text = _("No equal batches of {order} kg fit a mixer: {mixers}. Order more, or less.")
+    span = _("{name} holds {least} to {greatest} kg")
+    said = [
+        span.format(
+            name=m.name, least=f"{m.least_kg or 0:g}",
+            greatest=_("any") if m.greatest_kg is None else f"{m.greatest_kg:g}",
+        )
+        for m in mixers
+    ]
+    return text.format(order=f"{order_kg:g}", mixers="; ".join(said))
+
+
+def _scale(library: Library, ingredient_id: int) -> Scale | None:
+    scale_id = library.ingredient(ingredient_id).scale_id
+    return None if scale_id is None else library.records["scale"].get(scale_id)
+
+
+def _step_kg(library: Library, ingredient_id: int) -> float:
+    scale = _scale(library, ingredient_id)
+    return UNSCALED_STEP_KG if scale is None else scale.step_kg
+
+
+def _proposal(library: Library, unscaled: list[Ingredient]) -> str:
+    finest = min(library.scales, key=lambda scale: scale.step_kg)
+    text = _("No scale weighs {ingredients}. Enter one under Scale, for example {scale} in steps of {step} kg.")
+    names = ", ".join(i.name for i in unscaled)
+    return text.format(ingredients=names, scale=finest.name, step=f"{finest.step_kg:g}")
+
+
+def _line(library: Library, ingredient_id: int, step_kg: float, share_kg: float, target_kg: float) -> BatchLine:
+    ingredient, scale = library.ingredient(ingredient_id), _scale(library, ingredient_id)
+    return BatchLine(
+        ingredient_id, ingredient.name, "" if scale is None else scale.name, step_kg, share_kg, target_kg,
+        scale is not None and scale.hand_add, ingredient.drug, ingredient.drug_level, ingredient.drug_species,
+        ingredient.withdrawal,
+    )
+
+
+def _order(library: Library, line: BatchLine) -> tuple[bool, float, str, float, str]:
+    """Coarse scales first, hand-adds last; on a scale the heaviest first."""
+    return (line.hand_add, -line.step_kg, line.scale, -line.target_kg, line.ingredient)
+
+
+# -- printing
+
+
+def print_sheet(mill: Mill, batch: Batch, path: Path, *, reason: str = "", by: str = "", paper: str = "A4") -> Batch:
+    """Give a batch the next number and write its sheet; the number and the record are stored with it or not at all.
+
+    reason, by: why and by whom broken limits are accepted; both or neither. The file is written before the number is
+    stored and takes its place only after, so that no sheet carries a number that the mill does not know.
+    Raises Refused for a batch without lines, or half an acceptance.
+    """
+    if batch.cause is not None:
+        raise Refused(batch.cause)
+    if bool(reason.strip()) != bool(by.strip()):
+        raise Refused(_("Accepting broken limits needs both a reason and a name."))
+    number = mill.store.next_batch_number()
+    printed = replace(batch, number=number, accepted_reason=reason.strip(), accepted_by=by.strip())
+    with sheets.unfinished(path, sheets.batch_pdf(printed, paper)) as finish:
+        record = PrintedBatch(
+            mill.new_id("batch"), number, batch.formula_id, batch.version, batch.order_kg,
+            datetime.datetime.now(datetime.UTC), mill.who, printed.accepted_reason, printed.accepted_by,
+            json.dumps(sheets.batch_to_plain(printed), ensure_ascii=False, allow_nan=False),
+        )
+        mill.record(_("Print batch sheet {number}").format(number=number), [added(record)])
+        finish()
+    return printed
+
+
+def print_copy(mill: Mill, batch_record_id: int, path: Path, *, paper: str = "A4") -> Batch:
+    """Write the sheet of a printed batch again, digit for digit, marked COPY with its count."""
+    record: PrintedBatch = mill.library.records["batch"][batch_record_id]
+    copies = record.copies + 1
+    batch = replace(sheets.batch_from_plain(json.loads(record.sheet)), copy=copies)
+    with sheets.unfinished(path, sheets.batch_pdf(batch, paper)) as finish:
+        what = _("Copy {count} of batch sheet {number}").format(count=copies, number=record.number)
+        mill.record(what, [Change(record, replace(record, copies=copies))])
+        finish()
+    return batch
+
+
+def usual_batch_kg(library: Library, formula_id: int) -> float:
+    """The batch that a formula usually makes: its own, else the greatest mixer's fill, else a tonne."""
+    formula = library.formula(formula_id)
+    fills = [mixer.greatest_kg for mixer in library.mixers if mixer.greatest_kg]
+    return formula.batch_kg or max(fills, default=1000.0)
+
+
+def is_ration(library: Library, formula_id: int) -> bool:
+    return library.formula(formula_id).amounts is Amounts.RATION

@@ -1,0 +1,135 @@
+"""Formulating: from a library to a checked result, with every reason why there is none."""
+
+from __future__ import annotations
+
+import datetime
+from collections.abc import Iterable, Sequence
+
+from blendapp.domain import cautions
+from blendapp.domain.formulas import Formula
+from blendapp.domain.library import Library
+from blendapp.domain.problems import Refused
+from blendapp.domain.results import Check, Result, Status, UnknownValue
+from blendapp.domain.wording import _
+from blendapp.optimise import certificate, rays
+from blendapp.optimise.build import answer
+from blendapp.optimise.build.composition import Composition
+from blendapp.optimise.build.formula import FormulaProgram, build, unknown_values
+from blendapp.optimise.program import Program
+from blendapp.optimise.solution import Solution
+from blendapp.optimise.solve import solve
+
+
+class FailedCertificate(Exception):
+    """An answer that the check without the solver found wrong. It is never shown."""
+
+
+def formulate(
+    library: Library,
+    formula_id: int,
+    on: datetime.date,
+    composition: Composition | None = None,
+    *,
+    site_id: int | None = None,
+    time_limit_s: float | None = None,
+) -> Result:
+    """The least-cost answer to a formula at the prices of a day, checked, or why there is none.
+
+    composition: kept between calls by the mill, for speed. time_limit_s: of a mixed-integer program. Raises
+    FailedCertificate where the solver's answer does not hold; no answer is shown then.
+    """
+    formula = library.formula(formula_id)
+    forbidden = cautions.forbidden_by_admission(formula, library.admitted(formula))
+    built = build(library, formula, on, composition, site_id)
+    unknown = unknown_values(library, built)
+    if forbidden is not None:
+        return _none(library, built, on, Status.CONFLICT, forbidden, unknown)
+    solution = _solve(built.program, time_limit_s)
+    if solution.status == "infeasible":
+        status, cause = _why_infeasible(library, built, on, composition, site_id, time_limit_s)
+        return _none(library, built, on, status, cause, unknown)
+    if solution.status == "unbounded":
+        return _none(library, built, on, Status.UNBOUNDED, _why_unbounded(built), unknown)
+    if solution.x is None:
+        return _none(library, built, on, Status.STOPPED, _("Time was up before any mix was found."), unknown)
+    return _answer(library, built, on, solution, unknown)
+
+
+def formulate_all(
+    library: Library, formula_ids: Iterable[int], on: datetime.date, composition: Composition | None = None
+) -> list[Result]:
+    """The results of several formulas, in their order."""
+    composition = composition or Composition(library)
+    return [formulate(library, formula_id, on, composition) for formula_id in formula_ids]
+
+
+def formulas_named(library: Library, names: Sequence[str]) -> list[Formula]:
+    """The formulas of these names, or all. Raises Refused with every name that is not one."""
+    if not names:
+        return library.formulas
+    found = [(name, library.named("formula", name)) for name in names]
+    missing = [name for name, formula in found if formula is None]
+    if missing:
+        from blendapp.domain.problems import Place, Problem
+
+        known = ", ".join(f.name for f in library.formulas) or _("none")
+        text = _("There is no formula “{name}”; the mill has: {known}.")
+        raise Refused([Problem(text.format(name=name, known=known), Place(record=name)) for name in missing])
+    return [formula for _name, formula in found if formula is not None]
+
+
+def _solve(program: Program, time_limit_s: float | None) -> Solution:
+    if program.size == 0:
+        empty = all(row.minimum is None or row.minimum <= 0 for row in program.rows)
+        return Solution("optimal" if empty and not program.rows else "infeasible")
+    return solve(program, time_limit_s)
+
+
+def _answer(
+    library: Library, built: FormulaProgram, on: datetime.date, solution: Solution, unknown: Sequence[UnknownValue]
+) -> Result:
+    try:
+        found = certificate.check(built.program, solution)
+    except certificate.FailedCheck as failure:
+        text = _("The answer to {formula} failed its check ({failure}) and is not shown.")
+        raise FailedCertificate(text.format(formula=built.formula.name, failure=failure)) from failure
+    assert solution.x is not None
+    mix = [(i.id, float(x)) for i, x in zip(built.ingredients, solution.x, strict=True) if x > 1e-12]
+    forbidden = cautions.forbidden_in_mix(built.formula, library, mix)
+    if forbidden is not None:
+        return _none(library, built, on, Status.CONFLICT, forbidden, unknown)
+    check = Check(found.largest_violation, found.duality_gap)
+    said = cautions.warnings(built.formula, library, mix, unknown)
+    return answer.answered(library, on, built, solution, check, unknown, said)
+
+
+def _none(
+    library: Library, built: FormulaProgram, on: datetime.date, status: Status, cause: str,
+    unknown: Sequence[UnknownValue],
+) -> Result:
+    said = cautions.warnings(built.formula, library, (), unknown)
+    return answer.without_answer(library, built.formula, on, status, cause, built, unknown, said)
+
+
+def _why_infeasible(
+    library: Library, built: FormulaProgram, on: datetime.date, composition: Composition | None, site_id: int | None,
+    time_limit_s: float | None,
+) -> tuple[Status, str]:
+    """Incomplete if the unpriced ingredients would make a mix possible, else a conflict."""
+    if built.unpriced:
+        whole = build(library, built.formula, on, composition, site_id, with_unpriced=True)
+        if _solve(whole.program, time_limit_s).status in ("optimal", "unbounded", "stopped"):
+            text = _("No mix without a price for {ingredients}; enter a price, and there is one.")
+            return Status.INCOMPLETE, text.format(ingredients=", ".join(i.name for i in built.unpriced))
+    if not built.ingredients:
+        return Status.CONFLICT, _("The formula admits no ingredient that has a price.")
+    return Status.CONFLICT, _("No mix of the admitted ingredients can meet all limits together.")
+
+
+def _why_unbounded(built: FormulaProgram) -> str:
+    """Names the ingredients of a ray along which the cost falls for ever, and what they lack."""
+    growing = rays.falling(built.program)
+    names = [(built.ingredients[j].name, float(built.price_per_t[j])) for j in growing]
+    below = [name for name, price in names if price < 0]
+    text = _("The cost can fall for ever: {ingredients} may grow without a maximum at a price below 0. Set a maximum.")
+    return text.format(ingredients=", ".join(below or [name for name, _price in names]))

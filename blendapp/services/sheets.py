@@ -1,0 +1,107 @@
+"""Pages as bytes, files that appear whole, and a batch as plain data, so that its sheet prints alike years later."""
+
+from __future__ import annotations
+
+import contextlib
+import datetime
+import os
+import tempfile
+from collections.abc import Callable, Iterator
+from dataclasses import asdict
+from pathlib import Path
+from typing import Any
+
+from blendapp.domain.batches import Batch, BatchLine
+from blendapp.domain.formulas import LimitKind
+from blendapp.domain.problems import Place, Problem, Refused
+from blendapp.domain.results import LimitResult, NutrientResult, Result, Side
+from blendapp.domain.wording import _
+
+
+def batch_pdf(batch: Batch, paper: str = "A4") -> bytes:
+    """The batch sheet as a PDF. paper: "A4" or "letter"."""
+    from blendapp import documents
+
+    return documents.batch_sheet(batch, paper=documents.Paper[paper.upper()])
+
+
+def report_pdf(result: Result, mill: str, version: str, paper: str = "A4") -> bytes:
+    """The report of an answer, or of why there is none, as a PDF."""
+    from blendapp import documents
+
+    return documents.formula_report(result, mill=mill, version=version, paper=documents.Paper[paper.upper()])
+
+
+def page_images(pdf: bytes, dots_per_inch: float) -> list[bytes]:
+    """Every page of a PDF as PNG, for the preview and the printer."""
+    from blendapp import documents
+
+    return documents.render_png(pdf, dots_per_inch)
+
+
+@contextlib.contextmanager
+def unfinished(path: Path, data: bytes) -> Iterator[Callable[[], None]]:
+    """Data written beside its path; calling what is yielded puts it in place, else it is gone after.
+
+    Raises Refused where the folder or the file cannot be written.
+    """
+    try:
+        handle, beside = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.")
+    except OSError as error:
+        raise _unwritable(path, error) from error
+    try:
+        try:
+            with os.fdopen(handle, "wb") as file:
+                file.write(data)
+                file.flush()
+                os.fsync(file.fileno())
+            if path.is_dir():
+                raise IsADirectoryError(_("it is a folder"))
+        except OSError as error:
+            raise _unwritable(path, error) from error
+        yield lambda: _put(beside, path)
+    finally:
+        with contextlib.suppress(FileNotFoundError):
+            os.unlink(beside)
+
+
+def _put(beside: str, path: Path) -> None:
+    try:
+        os.replace(beside, path)
+    except OSError as error:
+        raise _unwritable(path, error) from error
+
+
+def _unwritable(path: Path, error: OSError) -> Refused:
+    text = _("The file cannot be written ({reason}); choose another place.")
+    return Refused(Problem(text.format(reason=error.strerror or error), Place(file=str(path))))
+
+
+def batch_to_plain(batch: Batch) -> dict[str, Any]:
+    """A batch as JSON can hold it."""
+    plain = asdict(batch)
+    plain["made"] = batch.made.isoformat()
+    return plain
+
+
+def batch_from_plain(plain: dict[str, Any]) -> Batch:
+    """The batch behind its plain form."""
+    limits = tuple(
+        LimitResult(**{
+            **limit,
+            "kind": LimitKind(limit["kind"]),
+            "binding": None if limit["binding"] is None else Side(limit["binding"]),
+            "room": None if limit["room"] is None else tuple(limit["room"]),
+        })
+        for limit in plain["limits"]
+    )
+    nutrients = tuple(NutrientResult(**{**n, "missing": tuple(n["missing"])}) for n in plain["nutrients"])
+    return Batch(**{
+        **plain,
+        "made": datetime.date.fromisoformat(plain["made"]),
+        "lines": tuple(BatchLine(**line) for line in plain["lines"]),
+        "limits": limits,
+        "nutrients": nutrients,
+        "broken": tuple(plain["broken"]),
+        "cautions": tuple(plain["cautions"]),
+    })
