@@ -1,0 +1,165 @@
+"""Results as a person reads them in a terminal."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+
+from blendapp.domain.batches import Batch
+from blendapp.domain.formulas import Amounts
+from blendapp.domain.notation import notation
+from blendapp.domain.price_rows import Fate, PriceListReading
+from blendapp.domain.results import LimitResult, Result, Side
+from blendapp.domain.wording import _
+
+
+def table(heads: Sequence[str], rows: Iterable[Sequence[str]], right: Sequence[bool]) -> list[str]:
+    """Lines of a table with columns as wide as their widest cell; right: which columns end in line."""
+    listed = [list(heads), *map(list, rows)]
+    widths = [max(len(row[column]) for row in listed) for column in range(len(heads))]
+    return [
+        "  " + "  ".join(
+            cell.rjust(width) if end else cell.ljust(width)
+            for cell, width, end in zip(row, widths, right, strict=True)
+        ).rstrip()
+        for row in listed
+    ]
+
+
+def formula(result: Result) -> str:
+    """One formula: cost, mix, limits with their shadow prices, cautions; or why there is no answer."""
+    lines = [result.formula]
+    if result.cost is None:
+        lines.append(f"  {_('No answer')} ({_(result.status)}): {result.cause or ''}")
+    else:
+        lines += _mix(result)
+    if result.limits:
+        lines += ["", *_limits(result)]
+    if result.unpriced:
+        lines += ["", "  " + _("Left out for want of a price: {names}.").format(names=", ".join(result.unpriced))]
+    lines += ["", *(f"  ! {caution}" for caution in result.cautions)]
+    return "\n".join(lines)
+
+
+def _mix(result: Result) -> list[str]:
+    write, blend = notation().write, result.amounts is Amounts.BLEND
+    assert result.cost is not None
+    per = _("t") if blend else _("head and day")
+    lines = [f"  {write(result.cost, 2)} {result.currency}/{per}", ""]
+    heads = (_("Ingredient"), "%" if blend else _("kg/day"), f"{result.currency}/t", f"{result.currency}/{per}", "%")
+    rows = [
+        (
+            one.name,
+            write((one.amount or 0) * (100 if blend else 1), 3),
+            write(one.price_per_t, 2),
+            write(one.cost, 2),
+            write(100 * (one.cost or 0) / result.cost if result.cost else None, 1),
+        )
+        for one in result.mix
+    ]
+    lines += table(heads, rows, (False, True, True, True, True))
+    assert result.check.largest_violation is not None
+    assert result.check.duality_gap is not None
+    checked = _("checked: largest violation {violation:.0e}, gap {gap:.0e}")
+    lines.append("  " + checked.format(
+        violation=result.check.largest_violation, gap=result.check.duality_gap
+    ))
+    return lines
+
+
+def _limits(result: Result) -> list[str]:
+    short = notation().write_short
+    rows = [
+        (
+            limit_name(one),
+            short(one.minimum),
+            short(one.maximum),
+            "" if one.value is None else notation().write(one.value, 3),
+            one.unit,
+            price_words(one, result),
+        )
+        for one in result.limits
+    ]
+    heads = (_("Limit"), _("at least"), _("at most"), _("now"), _("unit"), _("shadow price"))
+    return table(heads, rows, (False, True, True, True, False, False))
+
+
+def limit_name(one: LimitResult) -> str:
+    """A limit in words: its name, what it is over, and its basis where that is not as fed."""
+    name = one.name if one.per is None else f"{one.name} : {one.per}"
+    return name if one.basis in (None, "as fed") else f"{name}, {one.basis}"
+
+
+def price_words(one: LimitResult, result: Result) -> str:
+    """What a working limit costs, in words; empty where it costs nothing."""
+    if one.binding is None:
+        return ""
+    if one.shadow_price_unique is False and one.tighten_cost is None and one.raise_cost is None:
+        return _("more than one price fits")
+    money = f"{result.currency}/{result.cost_per}"
+    unit = one.unit or _("unit")
+    write = notation().write
+    if one.raise_cost is not None:
+        return _("1 {unit} more costs {cost} {money}").format(unit=unit, cost=write(one.raise_cost, 2), money=money)
+    if not one.relax_saving:
+        return ""
+    if one.binding is Side.MINIMUM:
+        text = _("1 {unit} less saves {saving} {money}")
+    else:
+        text = _("1 {unit} more saves {saving} {money}")
+    return text.format(unit=unit, saving=write(one.relax_saving, 2), money=money)
+
+
+def prices(reading: PriceListReading, applied: bool) -> str:
+    """Every row with its fate, and the counts."""
+    write = notation().write
+    rows = [
+        (
+            row.sheet, str(row.row), _(row.fate), row.source_name, row.ingredient or "",
+            write(row.price_per_t, 2), write(row.old_price_per_t, 2), row.reason,
+        )
+        for row in reading.rows
+    ]
+    money = f"{reading.currency}/t"
+    heads = (_("sheet"), _("row"), _("fate"), _("name in the list"), _("ingredient"), money, _("was"), _("reason"))
+    lines = table(heads, rows, (False, True, False, False, False, True, True, False))
+    lines += [f"  {note}" for note in reading.notes]
+    counts = ", ".join(f"{_(fate)} {reading.count(fate)}" for fate in Fate)
+    lines += ["", f"  {counts}. " + (_("Recorded.") if applied else _("Nothing recorded."))]
+    return "\n".join(lines)
+
+
+def sheet(batch: Batch, pdf: str | None) -> str:
+    """The lines of one batch, what the weighing breaks, and where the sheet is."""
+    head = _("{formula}, {version}: order of {order} kg, {count} × {mass} kg")
+    short, write = notation().write_short, notation().write
+    lines = [head.format(
+        formula=batch.formula, version=batch.version, order=short(batch.order_kg), count=batch.batches,
+        mass=short(batch.batch_kg, 3),
+    )]
+    if batch.cause:
+        return "\n".join([*lines, f"  {batch.cause}"])
+    rows = [(line.ingredient, line.scale, short(line.step_kg), write(line.target_kg, 3)) for line in batch.lines]
+    lines += table((_("Ingredient"), _("scale"), _("step kg"), _("kg")), rows, (False, False, True, True))
+    lines.append("  " + _("Total {total} kg, residue {residue} kg").format(
+        total=write(batch.total_kg, 3), residue=write(batch.residue_kg, 3)
+    ))
+    lines += [f"  {line}" for line in broken_words(batch)]
+    lines += [f"  ! {caution}" for caution in batch.cautions]
+    if batch.broken and not batch.fit_to_mix:
+        lines.append("  " + _("NOT TO BE MIXED: the limits above are broken and not accepted."))
+    if pdf is not None:
+        lines.append("  " + _("Batch sheet {number} written to {pdf}.").format(number=batch.number, pdf=pdf))
+    return "\n".join(lines)
+
+
+def broken_words(batch: Batch) -> list[str]:
+    """One sentence for each limit that does not hold as weighed."""
+    text = _("As weighed, {name} is {value} {unit}, outside {minimum} to {maximum}.")
+    short = notation().write_short
+    return [
+        text.format(
+            name=limit_name(one), value=notation().write(one.value, 4), unit=one.unit,
+            minimum=short(one.minimum) or _("any"), maximum=short(one.maximum) or _("any"),
+        )
+        for one in (batch.limits[index] for index in batch.broken)
+    ]

@@ -1,0 +1,156 @@
+"""Each command: its service called, its result printed, its exit status."""
+
+from __future__ import annotations
+
+import argparse
+import datetime
+import os
+import sys
+from collections.abc import Callable, Sequence
+from pathlib import Path
+
+from blendapp.cli import as_json, as_text
+from blendapp.cli.parser import CallFault, make_parser
+from blendapp.domain.cautions import general_caution
+from blendapp.domain.price_rows import Fate
+from blendapp.domain.problems import Place, Problem, Refused
+from blendapp.domain.results import Status
+from blendapp.domain.wording import _, use_language
+from blendapp.services.mill import Mill, MillFileError, open_mill
+
+DONE, NO, UNUSABLE = 0, 1, 2
+
+
+def run(arguments: Sequence[str]) -> int:
+    """Run one command; returns the exit status. Every fault is one line on standard error."""
+    use_language(os.environ.get("BLENDAPP_LANGUAGE"))
+    try:
+        given = make_parser().parse_args(list(arguments))
+        return _COMMANDS[given.command](given)
+    except CallFault as fault:
+        return _unusable([str(fault)])
+    except Refused as refused:
+        return _unusable([str(problem) for problem in refused.problems])
+    except MillFileError as error:
+        return _unusable([str(error)])
+    except BrokenPipeError:
+        # Whoever read the output has gone; standard output is closed so that leaving does not complain again.
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        return UNUSABLE
+
+
+def _unusable(lines: Sequence[str]) -> int:
+    for line in lines:
+        print(" ".join(line.split()), file=sys.stderr)
+    return UNUSABLE
+
+
+def _print(text: str) -> None:
+    print(text)
+    sys.stdout.flush()
+
+
+def _new(given: argparse.Namespace) -> int:
+    from blendapp.services.workbook import new_mill
+
+    mill, warnings = new_mill(given.mill, given.workbook)
+    mill.close()
+    said = [str(problem) for problem in warnings]
+    if given.json:
+        _print(as_json.text_of({"mill": given.mill, "warnings": said}))
+    else:
+        lines = [f"  {warning}" for warning in said]
+        _print("\n".join([_("Made {mill}.").format(mill=given.mill), *lines, general_caution()]))
+    return DONE
+
+
+def _formulate(given: argparse.Namespace) -> int:
+    from blendapp.services.formulate import FailedCertificate, formulas_named, formulate_all
+
+    with _Open(given.mill) as mill:
+        chosen = formulas_named(mill.library, given.formulas)
+        try:
+            results = formulate_all(mill.library, [f.id for f in chosen], datetime.date.today(), mill.composition)
+        except FailedCertificate as failure:
+            raise Refused(Problem(str(failure), Place(file=given.mill))) from failure
+    if given.json:
+        _print(as_json.text_of(as_json.formulas(results)))
+    else:
+        _print("\n\n".join(map(as_text.formula, results)) if results else _("The mill has no formula."))
+    return DONE if all(result.status is Status.OPTIMAL for result in results) else NO
+
+
+def _prices(given: argparse.Namespace) -> int:
+    from blendapp.services.prices import apply_price_list, read_price_list
+
+    today = datetime.date.today()
+    with _Open(given.mill) as mill:
+        if given.apply and not mill.writable:
+            raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
+        reading = read_price_list(mill, given.list, today, given.sheet)
+        applied = bool(given.apply and reading.accepted)
+        if applied:
+            apply_price_list(mill, reading, today)
+    if given.json:
+        _print(as_json.text_of(as_json.prices(reading, applied)))
+    else:
+        _print(as_text.prices(reading, applied))
+    return NO if reading.count(Fate.QUESTION) or reading.count(Fate.REFUSED) else DONE
+
+
+def _sheet(given: argparse.Namespace) -> int:
+    from blendapp.services.batch import make_batch, print_sheet
+    from blendapp.services.formulate import FailedCertificate, formulas_named
+
+    if bool(given.accept) != bool(given.by):
+        raise CallFault(_("blendapp sheet: --accept and --by go together; give both or neither."))
+    with _Open(given.mill) as mill:
+        if not mill.writable:
+            raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
+        (formula,) = formulas_named(mill.library, [given.formula])
+        try:
+            batch = make_batch(mill.library, formula.id, given.batch_kg, datetime.date.today(), mill.composition)
+        except FailedCertificate as failure:
+            raise Refused(Problem(str(failure), Place(file=given.mill))) from failure
+        pdf = None
+        if batch.cause is None:
+            batch = print_sheet(mill, batch, Path(given.pdf), reason=given.accept or "", by=given.by or "")
+            pdf = given.pdf
+    _print(as_json.text_of(as_json.sheet(batch, pdf)) if given.json else as_text.sheet(batch, pdf))
+    return DONE if batch.cause is None and batch.fit_to_mix else NO
+
+
+def _export(given: argparse.Namespace) -> int:
+    from blendapp.services.workbook import export_workbook
+
+    with _Open(given.mill) as mill:
+        warnings = [str(p) for p in export_workbook(mill.library, given.workbook, datetime.date.today())]
+    if given.json:
+        _print(as_json.text_of({"workbook": given.workbook, "warnings": warnings}))
+    else:
+        lines = [f"  {warning}" for warning in warnings]
+        _print("\n".join([_("Wrote {workbook}.").format(workbook=given.workbook), *lines]))
+    return DONE
+
+
+class _Open:
+    """An open mill that is closed again."""
+
+    def __init__(self, path: str) -> None:
+        self.path = path
+
+    def __enter__(self) -> Mill:
+        self.mill = open_mill(self.path)
+        return self.mill
+
+    def __exit__(self, *_error: object) -> None:
+        self.mill.close()
+
+
+_COMMANDS: dict[str, Callable[[argparse.Namespace], int]] = {
+    "new": _new,
+    "formulate": _formulate,
+    "prices": _prices,
+    "sheet": _sheet,
+    "export": _export,
+}

@@ -1,0 +1,108 @@
+"""The grammar of the commands, with an example in the help of each."""
+
+from __future__ import annotations
+
+import argparse
+import math
+from typing import NoReturn
+
+from blendapp.domain.cautions import general_caution
+from blendapp.domain.wording import _
+
+
+class CallFault(Exception):
+    """A call that does not fit the grammar, in one sentence."""
+
+
+class _Parser(argparse.ArgumentParser):
+    def error(self, message: str) -> NoReturn:
+        text = _("{command}: {message}; see {command} --help.")
+        raise CallFault(text.format(command=self.prog, message=message))
+
+
+def _percent(text: str) -> float:
+    value = _number(text)
+    if value < 0:
+        raise argparse.ArgumentTypeError(_("“{text}” is below 0; give 0 or more").format(text=text))
+    return value
+
+
+def _mass(text: str) -> float:
+    value = _number(text)
+    if value <= 0:
+        raise argparse.ArgumentTypeError(_("“{text}” is not above 0; give a mass in kg").format(text=text))
+    return value
+
+
+def _number(text: str) -> float:
+    try:
+        value = float(text)
+    except ValueError:
+        value = math.nan
+    if not math.isfinite(value):
+        raise argparse.ArgumentTypeError(_("“{text}” is not a number; write it like 0.5").format(text=text))
+    return value
+
+
+def make_parser() -> argparse.ArgumentParser:
+    """The parser of every command; parse_args raises CallFault instead of leaving."""
+    parser = _Parser(
+        prog="blendapp",
+        description=_("Least-cost feed formulas, prices and batch sheets. Alone, or with a mill file, it opens a window."),
+        epilog=general_caution(),
+        allow_abbrev=False,
+    )
+    commands = parser.add_subparsers(dest="command", required=True, parser_class=_Parser, metavar=_("COMMAND"))
+
+    new = _command(commands, "new", _("make a mill file"), "blendapp new valley.mill --from valley.xlsx")
+    new.add_argument("mill", metavar="MILL", help=_("the file to make; it must not exist"))
+    new.add_argument("--from", dest="workbook", metavar="WORKBOOK", help=_("fill it from an exchange workbook"))
+
+    formulate = _command(
+        commands, "formulate", _("find the least-cost mix of formulas"), 'blendapp formulate valley.mill "Layer peak"'
+    )
+    formulate.add_argument("mill", metavar="MILL")
+    formulate.add_argument("formulas", metavar="FORMULA", nargs="*", help=_("names of formulas; all, if none is given"))
+    formulate.add_argument(
+        "--near", type=_percent, default=0.5, metavar="PERCENT",
+        help=_("near-optimal ranges: over all mixes at most this much dearer (0.5 unless said)"),
+    )
+    formulate.add_argument("--prove", action="store_true", help=_("prove each optimum in exact fractions as well"))
+
+    prices = _command(
+        commands, "prices", _("read a price list and show what becomes of each row"),
+        "blendapp prices valley.mill monday.xlsx --apply",
+    )
+    prices.add_argument("mill", metavar="MILL")
+    prices.add_argument("list", metavar="LIST", help=_("a workbook or a delimited text"))
+    prices.add_argument("--apply", action="store_true", help=_("record every accepted row"))
+    prices.add_argument("--sheet", metavar="NAME", help=_("read this sheet only; else every visible one"))
+
+    sheet = _command(
+        commands, "sheet", _("make the batches of an order and their sheet"),
+        'blendapp sheet valley.mill "Layer peak" --batch-kg 2000 -o layer.pdf',
+    )
+    sheet.add_argument("mill", metavar="MILL")
+    sheet.add_argument("formula", metavar="FORMULA")
+    sheet.add_argument("--batch-kg", type=_mass, required=True, metavar="KG", help=_("mass of the order"))
+    sheet.add_argument("-o", dest="pdf", required=True, metavar="PDF", help=_("the sheet to write"))
+    sheet.add_argument("--accept", metavar="REASON", help=_("why limits that the weighing breaks are accepted"))
+    sheet.add_argument("--by", metavar="NAME", help=_("who accepts them"))
+
+    export = _command(
+        commands, "export", _("write the exchange workbook"), "blendapp export valley.mill valley.xlsx"
+    )
+    export.add_argument("mill", metavar="MILL")
+    export.add_argument("workbook", metavar="WORKBOOK")
+    return parser
+
+
+def _command(
+    commands: argparse._SubParsersAction[_Parser], name: str, what: str, example: str
+) -> argparse.ArgumentParser:
+    made = commands.add_parser(
+        name, help=what, description=what[0].upper() + what[1:] + ".", allow_abbrev=False,
+        epilog=_("Example: {example}").format(example=example),
+    )
+    made.add_argument("--json", action="store_true", help=_("print one JSON object and nothing else"))
+    return made
