@@ -1,4 +1,4 @@
-"""Pages: the batch sheet as PDF, and any PDF as pictures.
+"""Pages: batch sheet and formula report as PDF, and any PDF as pictures.
 
 The PDF library and the renderer load slowly and are imported when the first page is asked for, so that a window
 starts without them. The PDF that is made here is what the preview shows, the printer gets and the file keeps.
@@ -8,8 +8,9 @@ from __future__ import annotations
 
 from blendapp.documents.paper import Paper
 from blendapp.domain.batches import Batch
+from blendapp.domain.results import Result
 
-__all__ = ["Paper", "batch_sheet", "page_count", "page_text", "render_png"]
+__all__ = ["Paper", "batch_sheet", "formula_report", "page_count", "page_text", "render_png"]
 
 
 def batch_sheet(batch: Batch, *, paper: Paper = Paper.A4) -> bytes:
@@ -17,6 +18,16 @@ def batch_sheet(batch: Batch, *, paper: Paper = Paper.A4) -> bytes:
     from blendapp.documents import batch_page
 
     return batch_page.draw(batch, paper)
+
+
+def formula_report(result: Result, *, mill: str = "", version: str = "", paper: Paper = Paper.A4) -> bytes:
+    """One formulated formula as a PDF, whatever its status; without an answer no amount, value or cost stands on it.
+
+    mill, version: as they stand on the page; "" leaves them out.
+    """
+    from blendapp.documents import report_page
+
+    return report_page.draw(result, mill, version, paper)
 
 
 def render_png(pdf: bytes, dots_per_inch: float, page: int | None = None) -> list[bytes]:

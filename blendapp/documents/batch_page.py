@@ -54,7 +54,7 @@ def _marks(batch: Batch) -> list[Mark]:
 def _blocks(batch: Batch, width: float) -> list[Block]:
     cautions = phrases.special(batch.cautions)
     blocks = _title(batch, width) + _no_sheet(batch, width) + _broken(batch, width)
-    if cautions:
+    if cautions and batch.lines:
         words = plural(
             "One caution stands after the lines of this sheet: read it before weighing.",
             "{count} cautions stand after the lines of this sheet: read them before weighing.",

@@ -11,7 +11,7 @@ from reportlab.lib.colors import HexColor
 from reportlab.pdfgen.canvas import Canvas
 
 from blendapp.documents import letters
-from blendapp.documents.flow import Block, Style, paginate
+from blendapp.documents.flow import Block, Style, paginate, paragraph
 from blendapp.documents.letters import BOLD
 from blendapp.documents.paper import MM, Paper
 from blendapp.documents.pen import INK, PAPER, SOFT, WASH, Pen
@@ -74,7 +74,7 @@ class Frame:
 
     def draw(self, blocks: Sequence[Block]) -> bytes:
         """The document. The same blocks give the same bytes."""
-        pages = paginate(blocks, self.height)
+        pages = paginate([*self._whole_owner(), *blocks], self.height)
         out = io.BytesIO()
         canvas = Canvas(out, pagesize=self.paper.size_pt, invariant=1, pageCompression=1)
         canvas.setTitle(self.title)
@@ -90,6 +90,13 @@ class Frame:
             canvas.showPage()
         canvas.save()
         return out.getvalue()
+
+    def _whole_owner(self) -> list[Block]:
+        """The owner's name once more, where the head of the first page is too short for it."""
+        kind = letters.width_of(letters.plain(self.kind), _HEAD.font, _HEAD.size)
+        if _HEAD.width(self.owner) <= self.width - kind - 16:
+            return []
+        return paragraph(self.owner, _HEAD, self.width)
 
     def _draw_head(self, pen: Pen, number: int) -> None:
         top = MARGIN - 12
@@ -131,7 +138,7 @@ class Frame:
         width, height = self.paper.size_pt
         texts = [letters.plain(mark.text) for mark in self.marks]
         widest = max(letters.width_of(text, BOLD, 1.0) for text in texts)
-        size = min(0.78 * math.hypot(width, height) / widest, 150.0, 300.0 / len(texts))
+        size = min(0.68 * math.hypot(width, height) / widest, 150.0, 300.0 / len(texts))
         canvas.saveState()
         canvas.translate(width / 2, height / 2)
         canvas.rotate(math.degrees(math.atan2(height, width)))

@@ -5,6 +5,7 @@ IBM Plex Sans has figures of equal width by default, so columns of numbers stand
 
 from __future__ import annotations
 
+import re
 import unicodedata
 from functools import cache
 from pathlib import Path
@@ -17,6 +18,8 @@ BOLD = "PageBold"
 ITALIC = "PageItalic"
 
 _FILES = {REGULAR: "IBMPlexSans-Regular.ttf", BOLD: "IBMPlexSans-SemiBold.ttf", ITALIC: "IBMPlexSans-Italic.ttf"}
+# Every run of white space but those that keep a figure and its unit on one line.
+_SPACES = re.compile("[^\\S\u00a0\u202f]+")
 _FOLDER = Path(__file__).resolve().parent.parent / "fonts"
 
 
@@ -33,20 +36,15 @@ def _letters() -> frozenset[int]:
 
 
 def plain(text: str) -> str:
-    """The text as the page can write it: one space between words, no invisible signs.
+    """The text as the page can write it: one space between words (one that joins stays), no invisible signs.
 
     A character without a letter in the fonts is written by its code in angle quotes, so that two names never look
     alike on paper because both are rows of empty boxes.
     """
     letters = _letters()
-    whole = " ".join(unicodedata.normalize("NFC", text).split())
-    signs = []
-    for sign in whole:
-        if ord(sign) in letters:
-            signs.append(sign)
-        elif unicodedata.category(sign) not in ("Cc", "Cf"):
-            signs.append(f"‹{ord(sign):04X}›")
-    return "".join(signs)
+    whole = _SPACES.sub(" ", unicodedata.normalize("NFC", text))
+    seen = (sign for sign in whole if unicodedata.category(sign) not in ("Cc", "Cf"))
+    return "".join(sign if ord(sign) in letters else f"‹{ord(sign):04X}›" for sign in seen).strip(" ")
 
 
 def width_of(text: str, font: str, size: float) -> float:

@@ -97,5 +97,5 @@ def missing_words(nutrients: Iterable[NutrientResult]) -> list[str]:
             nutrient=nutrient.name, ingredients=", ".join(nutrient.missing)
         )
         for nutrient in nutrients
-        if nutrient.missing
+        if nutrient.missing and nutrient.value is not None
     ]

@@ -6,7 +6,7 @@ import io
 from collections.abc import Iterator
 from contextlib import contextmanager
 
-import pypdfium2  # type: ignore[import-untyped]
+import pypdfium2
 
 from blendapp.domain.wording import _
 
@@ -47,4 +47,10 @@ def page_count(pdf: bytes) -> int:
 
 def page_text(pdf: bytes) -> list[str]:
     with _opened(pdf) as document:
-        return [document[index].get_textpage().get_text_bounded() for index in range(len(document))]
+        return [_text(document[index]) for index in range(len(document))]
+
+
+def _text(page: pypdfium2.PdfPage) -> str:
+    found: str = page.get_textpage().get_text_bounded()
+    # The reader marks a hyphen at the end of a line by this sign, as if it were not part of the word.
+    return found.replace("\x02", "-\n").replace("\r\n", "\n")

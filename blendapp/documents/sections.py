@@ -20,15 +20,20 @@ _FACT = Style(12, BOLD, leading=15)
 
 
 def facts(pairs: Sequence[tuple[str, str]], width: float, *, gap: float = 10.0) -> Block:
-    """A strip of labelled facts, each of equal width; long ones wrap."""
-    each = width / len(pairs)
-    cells = [(LABEL.wrap(label, each - 10), _FACT.wrap(value, each - 10)) for label, value in pairs]
+    """A strip of labelled facts; wide ones get more room, long ones wrap."""
+    wanted = [max(LABEL.width(label), min(_FACT.width(value), width / 4)) + 14 for label, value in pairs]
+    widths = [each * width / sum(wanted) for each in wanted]
+    lefts = [sum(widths[:place]) for place in range(len(widths))]
+    cells = [
+        (LABEL.wrap(label, each - 10), _FACT.wrap(value, each - 10))
+        for (label, value), each in zip(pairs, widths, strict=True)
+    ]
     label_lines = max(len(label) for label, _value in cells)
     lines = max(len(value) for _label, value in cells)
 
     def draw(pen: Pen, left: float, top: float) -> None:
         for place, (label, value) in enumerate(cells):
-            x = left + place * each
+            x = left + lefts[place]
             for number, line in enumerate(label):
                 pen.text(x, top + number * LABEL.line, line, LABEL)
             for number, line in enumerate(value):

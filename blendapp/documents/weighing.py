@@ -221,7 +221,7 @@ def _total(batch: Batch, columns: _Columns, decimals: int, head: Block) -> list[
     words = letters.plain(_("Total"))
 
     def draw(pen: Pen, left: float, top: float) -> None:
-        pen.rule(left, left + columns.width, top + 1.2, 1.2, INK)
+        pen.rule(left, left + columns.width, top, 1.2, INK)
         middle = top + _LEAST_LINE / 2
         pen.text(left + columns.name_left, middle - _GROUP.line / 2, words, _GROUP)
         pen.text_right(left + columns.target_right, middle - _TARGET.line / 2, total, _TARGET)

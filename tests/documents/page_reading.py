@@ -1,0 +1,53 @@
+"""What stands where on a page, read back from the PDF."""
+
+from __future__ import annotations
+
+import ctypes
+from dataclasses import dataclass
+
+import pypdfium2
+import pypdfium2.raw as raw
+
+
+@dataclass(frozen=True)
+class Piece:
+    """One run of text: its box in points from the bottom left, its size; across: turned, as only marks are."""
+
+    page: int
+    text: str
+    left: float
+    bottom: float
+    right: float
+    top: float
+    size: float
+    across: bool
+
+    def overlaps(self, other: Piece) -> bool:
+        return (
+            self.left < other.right - 0.2 and other.left < self.right - 0.2
+            and self.bottom < other.top - 0.2 and other.bottom < self.top - 0.2
+        )
+
+
+def pieces(pdf: bytes) -> list[Piece]:
+    document = pypdfium2.PdfDocument(pdf)
+    found = []
+    for number in range(len(document)):
+        page = document[number]
+        text_page = page.get_textpage()
+        for thing in page.get_objects(filter=[raw.FPDF_PAGEOBJ_TEXT]):
+            length = raw.FPDFTextObj_GetText(thing, text_page, None, 0)
+            buffer = ctypes.create_string_buffer(length)
+            raw.FPDFTextObj_GetText(thing, text_page, ctypes.cast(buffer, ctypes.POINTER(ctypes.c_ushort)), length)
+            text = buffer.raw.decode("utf-16-le").rstrip("\x00")
+            size = ctypes.c_float()
+            raw.FPDFTextObj_GetFontSize(thing, size)
+            matrix = thing.get_matrix()
+            found.append(Piece(number, text, *thing.get_bounds(), size.value, abs(matrix.b) > 1e-6))
+    document.close()
+    return found
+
+
+def squeezed(texts: list[str] | str) -> str:
+    """Text without white space, so that where a line was broken does not matter."""
+    return "".join("".join(texts).split())
