@@ -42,6 +42,7 @@ ABOUT: list[Row] = [
     ["No feed should be made from these formulas: a qualified nutritionist must review any ration before it is fed."],
     ["Composition: see the columns Origin and Source of the sheet Values; Ingredients repeats the same values."],
     ["Values from named handbooks are from memory and may differ from the printed tables."],
+    ["Values of one material come from several sources, so that its parts need not add up to its dry matter."],
     ["A blank value is unknown; 0 is a known absence."],
     ["Field peas have no price: they stay out of every mix until one is quoted."],
     ["Cane molasses has no analysis of copper, which matters in feed for sheep."],
