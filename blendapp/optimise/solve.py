@@ -18,6 +18,7 @@ from blendapp.optimise.solution import LimitState, Side, Solution
 
 _MOST_EXCLUDED = 20
 _NULL = 1e-8  # a price that moves less than this along the null space is fixed
+_TIED = 1e-9  # a reduced cost below this share of the largest cost is a tie
 _PRICE_NOISE = 1e-11  # duals below this share of the largest cost are rounding
 
 
@@ -124,6 +125,7 @@ def _limits(arrays: Arrays, face: Face, x: Array, y: Array, reduced: Array) -> d
     for position, k in enumerate(face.active.tolist()):
         sides.setdefault(int(arrays.row[k]), []).append(position)
     fixed_price = np.abs(face.null).max(axis=1, initial=0.0) <= _NULL
+    alone = _alone(arrays, face, y, reduced)
     for i, row in enumerate(program.rows):
         if row.limit is None:
             continue
@@ -139,11 +141,21 @@ def _limits(arrays: Arrays, face: Face, x: Array, y: Array, reduced: Array) -> d
             minimum = arrays.side[k] > 0 or (arrays.side[k] == 0 and y[k] >= 0.0)
             binding = "minimum" if minimum else "maximum"
             value = float(arrays.bound[k])
-            price = float(y[k] * arrays.factor[k]) * per if fixed_price[position] else None
+            # among several optimal mixes, what the bound multiplies may differ, and with it the two slopes
+            fixed = fixed_price[position] and (row.divisor is None or alone or y[k] == 0.0)
+            price = float(y[k] * arrays.factor[k]) * per if fixed else None
         limits[row.limit] = LimitState(value, binding, price is not None, price)
     if program.bounds:
         _column_limits(arrays, face, x, reduced, limits)
     return limits
+
+
+def _alone(arrays: Arrays, face: Face, y: Array, reduced: Array) -> bool:
+    """Whether no other mix costs the same, told by prices that are nowhere nought (so it may say no in vain)."""
+    noise = _TIED * float(np.abs(arrays.cost).max(initial=0.0))
+    idle = ~face.inside & (arrays.lower < arrays.upper)
+    held = face.active[face.active < arrays.inequalities]
+    return bool(face.spare == 0 and (np.abs(reduced[idle]) > noise).all() and (y[held] > noise).all())
 
 
 def _column_limits(arrays: Arrays, face: Face, x: Array, reduced: Array, limits: dict[int, LimitState]) -> None:
