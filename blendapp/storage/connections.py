@@ -11,7 +11,8 @@ from sqlalchemy import Connection, create_engine
 from sqlalchemy.exc import DBAPIError
 from sqlalchemy.pool import StaticPool
 
-from blendapp.storage.faults import from_sqlite
+from blendapp.domain.wording import _
+from blendapp.storage.faults import Cause, MillFileError, from_sqlite
 
 BUSY_S = 5.0  # how long to wait for another process that is reading or writing this moment
 
@@ -72,11 +73,21 @@ def told_of(path: Path) -> Iterator[None]:
         if told is None:
             raise
         raise told from error
+    except Unlinked as error:
+        text = _(
+            "The edit would leave a record in “{file}” that names one that is gone ({which}) and was not stored; "
+            "correct it and repeat."
+        )
+        raise MillFileError(text.format(file=path, which=error), Cause.INCONSISTENT, path) from error
     except sqlite3.Error as error:
         told = from_sqlite(error, path)
         if told is None:
             raise
         raise told from error
+
+
+class Unlinked(Exception):
+    """A transaction would leave a record that names one that does not exist."""
 
 
 @contextlib.contextmanager
@@ -86,8 +97,21 @@ def transaction(connection: Connection, writes: bool = True) -> Iterator[None]:
     try:
         yield
         connection.exec_driver_sql("COMMIT")
-    except BaseException:
+    except BaseException as error:
+        missing = _missing_link(connection, error)
         # SQLite may have rolled back on its own, as it does when the disk is full.
         if driver_of(connection).in_transaction:
             connection.exec_driver_sql("ROLLBACK")
+        if missing:
+            raise Unlinked(missing) from error
         raise
+
+
+def _missing_link(connection: Connection, error: BaseException) -> str:
+    """Which record names one that does not exist, where that is why a transaction could not end; else ""."""
+    cause = error.orig if isinstance(error, DBAPIError) else None
+    if getattr(cause, "sqlite_errorcode", None) != sqlite3.SQLITE_CONSTRAINT_FOREIGNKEY:
+        return ""
+    for table, row, target, _key in pragma(connection, "foreign_key_check"):
+        return f"{table} {row} > {target}"
+    return ""

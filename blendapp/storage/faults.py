@@ -116,7 +116,7 @@ def from_sqlite(error: BaseException | None, path: Path | str) -> MillFileError 
         return None
     cause = _CAUSE_OF_CODE.get(code & 0xFF)
     if cause is Cause.INCONSISTENT:
-        text = _("The edit does not fit what “{file}” holds ({reason}); nothing was changed.")
+        text = _("The edit does not fit what “{file}” holds and was not stored ({reason}); correct it and repeat.")
         return MillFileError(text.format(file=path, reason=error), cause, Path(path))
     return None if cause is None else fault(cause, path)
 

@@ -11,7 +11,8 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from pathlib import Path
 
-from blendapp.storage.faults import Cause, fault, from_system
+from blendapp.domain.wording import _
+from blendapp.storage.faults import Cause, MillFileError, fault, from_system
 from blendapp.storage.schema import APPLICATION_ID
 
 # SQLite's file format, https://www.sqlite.org/fileformat.html#the_database_header
@@ -29,8 +30,11 @@ _LOCAL_SYSTEMS = frozenset({
 def require_mill_file(path: Path) -> None:
     """Raises MillFileError for anything that is not a whole mill file, by its first bytes and its length."""
     try:
-        if path.is_dir():
+        kind = path.stat().st_mode
+        if stat.S_ISDIR(kind):
             raise fault(Cause.FOLDER, path)
+        if not stat.S_ISREG(kind):  # a pipe would never answer
+            raise fault(Cause.NOT_A_MILL_FILE, path)
         with path.open("rb") as file:
             header = file.read(_HEADER_BYTES)
         length = path.stat().st_size
@@ -124,6 +128,9 @@ def made_whole(path: Path) -> Iterator[Path]:
     """
     if os.path.lexists(path):
         raise fault(Cause.EXISTS, path)
+    if not path.parent.is_dir():
+        text = _("There is no folder “{folder}”; make it first, or choose another.")
+        raise MillFileError(text.format(folder=path.parent), Cause.MISSING, path)
     unfinished = path.with_name(f".{path.name}.{secrets.token_hex(4)}.unfinished")
     try:
         os.close(os.open(unfinished, os.O_CREAT | os.O_EXCL | os.O_RDWR, 0o666))

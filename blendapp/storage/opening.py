@@ -4,14 +4,14 @@ from __future__ import annotations
 
 import contextlib
 import os
-import threading
+import sqlite3
 import weakref
 from collections.abc import Callable, Sequence
 from pathlib import Path
 
 from filelock import FileLock, Timeout
 from sqlalchemy import Connection, text
-from sqlalchemy.exc import DBAPIError
+from sqlalchemy.exc import DBAPIError, OperationalError
 
 from blendapp.domain.records import Change
 from blendapp.domain.wording import _
@@ -20,12 +20,11 @@ from blendapp.storage.connections import connect, disconnect, pragma, told_of, t
 from blendapp.storage.entries import Role
 from blendapp.storage.faults import Cause, MillFileError, fault, from_system
 from blendapp.storage.files import log_beside, made_whole, may_write, on_local_disk, require_mill_file
-from blendapp.storage.store import Store, copy_into
+from blendapp.storage.store import Store, copy_into, registry
 
 # Files that this process has open, so that its windows share one connection and one lock: two connections of one
 # process would be two writers. Weak, so that a store nobody holds does not stay.
 _open: weakref.WeakValueDictionary[str, Store] = weakref.WeakValueDictionary()
-_registry = threading.RLock()
 
 
 def create(path: str | Path, changes: Sequence[Change] = (), what: str | None = None, who: str = "") -> Store:
@@ -37,7 +36,6 @@ def create(path: str | Path, changes: Sequence[Change] = (), what: str | None = 
     _refuse_address(path)
     target = Path(path)
     listed = tuple(changes)
-    writing.require_plain(listed)
     with told_of(target), made_whole(target) as unfinished:
         connection = connect(unfinished, writable=True)
         try:
@@ -66,7 +64,7 @@ def open_store(path: str | Path) -> Store:
     _refuse_address(path)
     given = Path(path)
     key = os.path.normcase(os.path.realpath(given))
-    with _registry:
+    with registry:
         if (shared := _open.get(key)) is not None:
             return shared._share()
         store = _open_file(given, Path(os.path.realpath(given)), lambda: _open.pop(key, None))
@@ -93,10 +91,9 @@ def _open_file(given: Path, path: Path, forget: Callable[[], object]) -> Store:
         undone.pop_all()
 
     def close() -> None:
-        with _registry:
-            forget()
-            if lock is not None:
-                lock.release()
+        forget()
+        if lock is not None:
+            lock.release()
 
     return Store(path, connection, read_only, close)
 
@@ -165,8 +162,10 @@ def _bring_up_to_date(connection: Connection, given: Path, path: Path, writable:
 def _revision(connection: Connection, given: Path) -> str:
     try:
         found = connection.execute(text("SELECT version_num FROM alembic_version")).scalar()
-    except DBAPIError as error:
-        raise fault(Cause.DAMAGED, given) from error
+    except OperationalError as error:
+        if getattr(error.orig, "sqlite_errorcode", None) != sqlite3.SQLITE_ERROR:
+            raise
+        found = None  # there is no such table
     if found is None:
         raise fault(Cause.DAMAGED, given)
     return str(found)

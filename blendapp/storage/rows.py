@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import datetime
 import json
+import math
 import typing
 from collections.abc import Callable, Mapping, Sequence
 from enum import Enum
@@ -25,7 +27,10 @@ DERIVED: dict[str, dict[str, Callable[[Record], float | None]]] = {
 
 
 def row_of(kind: str, record: Record) -> dict[str, Any]:
-    """The columns of a record, the derived ones included. Raises ValueError where its unit has no canonical value."""
+    """The columns of a record, the derived ones included.
+
+    Raises ValueError for a number that is not finite, a moment without a time zone, a unit without a canonical value.
+    """
     row = {name: _column(getattr(record, name)) for name in field_types(KINDS[kind])}
     for name, derive in DERIVED.get(kind, {}).items():
         row[name] = derive(record)
@@ -70,6 +75,10 @@ def _converter(declared: Any) -> Callable[[Any], Any] | None:
 
 
 def _column(value: Any) -> Any:
+    if isinstance(value, float) and not math.isfinite(value):
+        raise ValueError(f"A mill file keeps no number {value}.")
+    if isinstance(value, datetime.datetime) and value.tzinfo is None:
+        raise ValueError(f"A moment needs its time zone; {value.isoformat()} has none.")
     if isinstance(value, Subject):
         return value.encode()
     if isinstance(value, tuple):
@@ -78,7 +87,7 @@ def _column(value: Any) -> Any:
 
 
 def json_of(record: Record | None) -> str | None:
-    """A record as the log keeps it. Raises ValueError where a number is infinite or not a number."""
+    """A record as the log keeps it."""
     if record is None:
         return None
     return json.dumps(to_plain(record), ensure_ascii=False, allow_nan=False, separators=(",", ":"))

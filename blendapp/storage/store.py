@@ -10,6 +10,7 @@ from pathlib import Path
 from typing import Any
 
 from sqlalchemy import Connection
+from sqlalchemy.exc import DBAPIError
 
 from blendapp.domain.records import KINDS, Change, Record, to_plain
 from blendapp.domain.wording import _
@@ -20,6 +21,9 @@ from blendapp.storage.faults import Cause, MillFileError, fault
 from blendapp.storage.files import identity, made_whole
 from blendapp.storage.rows import record_of, select_of
 from blendapp.storage.schema import BATCH_NUMBER
+
+# Held while a file is opened or closed, so that no window gets a store that another is closing.
+registry = threading.RLock()
 
 
 class Store:
@@ -70,10 +74,13 @@ class Store:
         with self._reading():
             return writing.next_values(self._connection)[BATCH_NUMBER]
 
-    def entries(self, after: int = 0, last: int | None = None) -> list[Entry]:
-        """The change log above the identifier `after`, oldest first; with `last` only the newest so many entries."""
+    def entries(self, after: int = 0, last: int | None = None, with_changes: bool = True) -> list[Entry]:
+        """The change log above the identifier `after`, up to `last` included, oldest first.
+
+        with_changes: False leaves the changes of every entry empty, for a list of what can be undone.
+        """
         with self._reading():
-            return writing.entries(self._connection, after, last)
+            return writing.entries(self._connection, after, last, with_changes)
 
     def dump(self) -> dict[str, list[dict[str, Any]]]:
         """Every record in plain form, without the log: equal dumps are equal mills."""
@@ -86,12 +93,12 @@ class Store:
     ) -> Entry:
         """Store one edit, whole, with one entry of the log; when this returns the disk has it.
 
-        changes: in any order, each record once; every `before` must equal what the file holds. of: with role "undo" or
-        "redo" the entry that is undone or redone. Raises MillFileError, and ValueError for changes that no file could
-        take: a record twice, a number that is not finite, a moment without a time zone, an unknown unit.
+        changes: in any order of records; of one record in the order of their happening. Every `before` must equal what
+        the file holds. of: with role "undo" or "redo" the entry that is undone or redone. Raises MillFileError, and
+        ValueError for changes that no file could take: two of one record that do not follow each other, a number that
+        is not finite, a moment without a time zone, an unknown unit.
         """
         listed = tuple(changes)
-        writing.require_plain(listed)
         with self._turn:
             self._require_writable()
             try:
@@ -116,7 +123,7 @@ class Store:
 
     def close(self) -> None:
         """One window less; the last one puts the log into the file, removes it, and lets the file go."""
-        with self._turn:
+        with registry, self._turn:
             self._users -= 1
             if self._users == 0:
                 try:
@@ -159,6 +166,6 @@ def copy_into(connection: Connection, target: Path) -> None:
 def _merge_log(connection: Connection) -> None:
     """Put the write-ahead log into the file and remove it; if another process reads the file now, leave it empty."""
     pragma(connection, "busy_timeout = 100")
-    with contextlib.suppress(Exception):
+    with contextlib.suppress(DBAPIError):  # else the log stays beside the file, and the next opening takes it in
         pragma(connection, "wal_checkpoint(TRUNCATE)")
         pragma(connection, "journal_mode = DELETE")

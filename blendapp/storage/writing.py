@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 import datetime
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterable, Iterator
 from itertools import islice
 from typing import Any
 
-from sqlalchemy import Connection, bindparam, delete, insert, select, update
+from sqlalchemy import Connection, Delete, Select, Update, bindparam, delete, insert, select, update
 
 from blendapp.domain.records import KINDS, Change, Record
 from blendapp.storage.entries import Entry, Role
@@ -21,16 +21,24 @@ class ChangedElsewhere(Exception):
     """A row is not what the edit took it for."""
 
 
-def require_plain(changes: Sequence[Change]) -> None:
-    """Raises ValueError where a list of changes says two things about one record, or changes an identifier."""
-    seen: set[tuple[str, int]] = set()
+def net_of(changes: Iterable[Change]) -> dict[str, dict[int, tuple[Record | None, Record | None]]]:
+    """For each kind and identifier the record before and after all changes of a list.
+
+    Raises ValueError where two changes of one record do not follow each other, or one turns a record into another.
+    """
+    net: dict[str, dict[int, tuple[Record | None, Record | None]]] = {kind: {} for kind in KINDS}
     for change in changes:
         before, after = change.before, change.after
         if before is not None and after is not None and (type(before), before.id) != (type(after), after.id):
             raise ValueError(f"A change cannot turn {change.kind} {before.id} into another record.")
-        if (change.kind, change.id) in seen:
-            raise ValueError(f"One edit names {change.kind} {change.id} twice.")
-        seen.add((change.kind, change.id))
+        of_kind = net[change.kind]
+        if change.id in of_kind:
+            first, latest = of_kind[change.id]
+            if latest != before:
+                raise ValueError(f"One edit changes {change.kind} {change.id} twice from different states.")
+            before = first
+        of_kind[change.id] = (before, after)
+    return net
 
 
 def write(
@@ -40,27 +48,27 @@ def write(
 
     Raises ChangedElsewhere, ValueError, or what the database raises; the transaction must then be rolled back.
     """
-    by_kind = {kind: [change for change in changes if change.kind == kind] for kind in KINDS}
-    _compare(connection, by_kind)
+    net = net_of(changes)
+    _compare(connection, net)
     _move_counters(connection, changes)
     # Taking all rows out before putting any in lets two records swap a name that only one may have.
     for kind in reversed(KINDS):
-        gone = [change.id for change in by_kind[kind] if change.before is not None]
+        gone = [{"gone": id_} for id_, (before, _after) in net[kind].items() if before is not None]
         if gone:
-            connection.execute(_deletion(kind), [{"gone": id_} for id_ in gone])
+            connection.execute(deletion_of(kind), gone)
     for kind in KINDS:
-        rows = [row_of(kind, change.after) for change in by_kind[kind] if change.after is not None]
+        rows = [row_of(kind, after) for _before, after in net[kind].values() if after is not None]
         if rows:
             connection.execute(insert(table_of(kind)), rows)
     return _add_entry(connection, what, changes, who, role, of)
 
 
-def _compare(connection: Connection, by_kind: dict[str, list[Change]]) -> None:
-    for kind, changes in by_kind.items():
-        standing = records_by_id(connection, kind, (change.id for change in changes))
-        for change in changes:
-            if standing.get(change.id) != change.before:
-                raise ChangedElsewhere(f"{kind} {change.id}")
+def _compare(connection: Connection, net: dict[str, dict[int, tuple[Record | None, Record | None]]]) -> None:
+    for kind, of_kind in net.items():
+        standing = records_by_id(connection, kind, of_kind)
+        for id_, (before, _after) in of_kind.items():
+            if standing.get(id_) != before:
+                raise ChangedElsewhere(f"{kind} {id_}")
 
 
 def records_by_id(connection: Connection, kind: str, ids: Iterable[int]) -> dict[int, Record]:
@@ -74,7 +82,8 @@ def records_by_id(connection: Connection, kind: str, ids: Iterable[int]) -> dict
     return found
 
 
-def _deletion(kind: str) -> Any:
+def deletion_of(kind: str) -> Delete:
+    """Takes one record out; its identifier is the value `gone`."""
     table = table_of(kind)
     return delete(table).where(table.c.id == bindparam("gone"))
 
@@ -85,8 +94,16 @@ def next_values(connection: Connection) -> dict[str, int]:
     return {name: stored.get(name, 1) for name in (*KINDS, BATCH_NUMBER)}
 
 
+COUNTERS = select(counter.c.name, counter.c.next_value)
+
+
+def moved_counter(name: str) -> Update:
+    """Sets one counter to the value `next_value`."""
+    return update(counter).where(counter.c.name == name)
+
+
 def _counters(connection: Connection) -> dict[str, int]:
-    rows = connection.execute(select(counter.c.name, counter.c.next_value))
+    rows = connection.execute(COUNTERS)
     return {str(name): int(value) for name, value in rows}
 
 
@@ -109,7 +126,7 @@ def _move_counters(connection: Connection, changes: tuple[Change, ...]) -> None:
         if name not in stored:
             connection.execute(insert(counter), {"name": name, "next_value": value})
         elif value != stored[name]:
-            connection.execute(update(counter).where(counter.c.name == name), {"next_value": value})
+            connection.execute(moved_counter(name), {"next_value": value})
 
 
 def _add_entry(
@@ -132,22 +149,31 @@ def _add_entry(
     return entry
 
 
-def entries(connection: Connection, after: int, last: int | None) -> list[Entry]:
-    """The entries of the log above an identifier, oldest first; with `last` only the newest so many of them."""
-    wanted = select(log_entry).where(log_entry.c.id > after).order_by(log_entry.c.id.desc())
-    heads = connection.execute(wanted if last is None else wanted.limit(last)).all()[::-1]
-    if not heads:
-        return []
+def entries(connection: Connection, after: int, last: int | None, with_changes: bool) -> list[Entry]:
+    """The entries of the log above one identifier and up to another, oldest first."""
+    heads = connection.execute(heads_between(after, last)).all()
     changes: dict[int, list[Change]] = {head.id: [] for head in heads}
-    for entry_id, change in _changes(connection, heads[0].id):
-        changes[entry_id].append(change)
+    if heads and with_changes:
+        for entry_id, change in _changes(connection, heads[0].id, heads[-1].id):
+            changes[entry_id].append(change)
     return [
         Entry(head.id, head.made, head.who, head.what, Role(head.role), head.of_id, tuple(changes[head.id]))
         for head in heads
     ]
 
 
-def _changes(connection: Connection, first: int) -> Iterator[tuple[int, Change]]:
-    order = (log_change.c.entry_id, log_change.c.position)
-    for row in connection.execute(select(log_change).where(log_change.c.entry_id >= first).order_by(*order)):
+def heads_between(after: int, last: int | None) -> Select[Any]:
+    """Entries of the log above one identifier and up to another, without their changes."""
+    wanted = select(log_entry).where(log_entry.c.id > after).order_by(log_entry.c.id)
+    return wanted if last is None else wanted.where(log_entry.c.id <= last)
+
+
+def changes_between(first: int, last: int) -> Select[Any]:
+    """The changes of the entries from one identifier to another."""
+    wanted = select(log_change).where(log_change.c.entry_id.between(first, last))
+    return wanted.order_by(log_change.c.entry_id, log_change.c.position)
+
+
+def _changes(connection: Connection, first: int, last: int) -> Iterator[tuple[int, Change]]:
+    for row in connection.execute(changes_between(first, last)):
         yield row.entry_id, Change(record_from_json(row.kind, row.before), record_from_json(row.kind, row.after))
