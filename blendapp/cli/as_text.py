@@ -45,7 +45,13 @@ def _mix(result: Result) -> list[str]:
     assert result.cost is not None
     per = _("t") if blend else _("head and day")
     lines = [f"  {write(result.cost, 2)} {result.currency}/{per}", ""]
-    heads = (_("Ingredient"), "%" if blend else _("kg/day"), f"{result.currency}/t", f"{result.currency}/{per}", "%")
+    heads = (
+        _("Ingredient"),
+        "%" if blend else _("kg/day"),
+        _("price {currency}/t").format(currency=result.currency),
+        _("cost {currency}/{per}").format(currency=result.currency, per=per),
+        _("share of cost %"),
+    )
     rows = [
         (
             one.name,

@@ -48,7 +48,7 @@ def make_parser() -> argparse.ArgumentParser:
     """The parser of every command; parse_args raises CallFault instead of leaving."""
     parser = _Parser(
         prog="blendapp",
-        description=_("Least-cost feed formulas, prices and batch sheets. Alone, or with a mill file, it opens a window."),
+        description=_("Least-cost feed formulas, prices and batch sheets. Alone, or with a mill file, a window opens."),
         epilog=general_caution(),
         allow_abbrev=False,
     )

@@ -127,9 +127,15 @@ def _why_infeasible(
 
 
 def _why_unbounded(built: FormulaProgram) -> str:
-    """Names the ingredients of a ray along which the cost falls for ever, and what they lack."""
-    growing = rays.falling(built.program)
-    names = [(built.ingredients[j].name, float(built.price_per_t[j])) for j in growing]
-    below = [name for name, price in names if price < 0]
-    text = _("The cost can fall for ever: {ingredients} may grow without a maximum at a price below 0. Set a maximum.")
-    return text.format(ingredients=", ".join(below or [name for name, _price in names]))
+    """Names the ingredients that can grow for ever, and the price or the missing limit at fault."""
+    found = rays.ray(built.program)
+    if found is None:
+        return _("The cost can fall for ever.")
+    if found.at_fault:
+        text = _("The cost can fall for ever: nothing limits how much {ingredients} is fed, at a price below 0.")
+        columns = found.at_fault
+    else:
+        text = _("The cost can fall for ever: nothing limits how much of {ingredients} is fed together.")
+        columns = found.growing
+    names = [f"{built.ingredients[j].name} ({built.price_per_t[j]:g})" for j in columns]
+    return text.format(ingredients=", ".join(names)) + " " + _("Set a maximum, or correct the price.")
