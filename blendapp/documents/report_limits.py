@@ -16,9 +16,9 @@ def limits_section(result: Result, width: float) -> list[Block]:
     """All limits in their order; those that only admit an ingredient in one sentence below."""
     bounded = [limit for limit in result.limits if limit.minimum is not None or limit.maximum is not None]
     free = [limit for limit in result.limits if limit.minimum is None and limit.maximum is None]
-    columns = [Column(_("Limit"), share=1.0), Column(_("Asked"), share=0.8)]
+    columns = [Column(_("Limit"), share=1.0), Column(_("Asked"), share=0.62)]
     if result.has_answer:
-        columns += [Column(_("Comes to"), strong=True), Column(_("What it costs"), share=1.6)]
+        columns += [Column(_("Comes to"), strong=True), Column(_("What it costs"), share=2.0)]
     rows = []
     for limit in bounded:
         row = [limit_name(limit), phrases.bounds_words(limit)]

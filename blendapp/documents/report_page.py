@@ -129,8 +129,8 @@ def _mix(result: Result, width: float) -> list[Block]:
     columns = [
         Column(_("Ingredient"), share=1.0),
         Column(_("%") if blend else _("kg per day"), strong=True),
-        Column(_("Price per t")),
-        Column(_("Cost per t") if blend else _("Cost per day")),
+        Column(_("Price per\u00a0t")),
+        Column(_("Cost per\u00a0t") if blend else _("Cost per day")),
         Column(_("Share of cost, %")),
     ]
     columns += [Column(_("Mix holds at prices"), figure_most=96)] if ranges else []
@@ -177,7 +177,9 @@ def _left_out(result: Result, width: float) -> list[Block]:
     left_out = sorted((i for i in result.ingredients if not i.amount), key=lambda i: i.name)
     if not left_out:
         return []
-    columns = [Column(_("Ingredient"), share=1.0), Column(_("Price per t")), Column(_("Comes in below"), strong=True)]
+    columns = [
+        Column(_("Ingredient"), share=1.0), Column(_("Price per\u00a0t")), Column(_("Comes in below"), strong=True),
+    ]
     rows = [[i.name, write_price(i.price_per_t), write_price(i.break_even_price) or "–"] for i in left_out]
     return heading(_("Left out"), width) + table(columns, rows, width)
 

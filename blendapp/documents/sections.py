@@ -86,6 +86,7 @@ def nutrients(found: Sequence[NutrientResult], title: str, width: float) -> list
     ]
     half = (len(cells) + 1) // 2
     blocks = heading(title, width)
+    heads = heading(_("{heading}, continued").format(heading=title), width)
     for row in range(half):
         pair = [cells[row]] + ([cells[row + half]] if row + half < len(cells) else [])
         height = max(len(cell[0]) for cell in pair) * BODY.line + 4
@@ -104,7 +105,7 @@ def nutrients(found: Sequence[NutrientResult], title: str, width: float) -> list
                 pen.text(x + column - unit_width - 4, top + 2, unit, BODY)
                 pen.rule(x, x + column, top + height, 0.4)
 
-        blocks.append(Block(height, draw, keep_next=row == 0 and half > 1))
+        blocks.append(Block(height, draw, keep_next=row == 0 and half > 1, heads=heads))
     for number, sentence in enumerate(phrases.missing_words(found)):
         blocks += paragraph("* " + sentence, SMALL, width, gap=6 if number == 0 else 1)
     return blocks

@@ -101,19 +101,31 @@ def _columns(batch: Batch, width: float, running: Sequence[str], decimals: int) 
 
 
 def _head(columns: _Columns) -> Block:
-    ends = (columns.target_right, columns.running_right)
-    starts = (columns.name_left, columns.lot_left, columns.weighed_left, columns.initials_left)
-    rights = [letters.plain(text) for text in (_("Target kg"), _("Running kg"))]
-    lefts = [letters.plain(text) for text in (_("Ingredient"), _("Lot"), _("Weighed kg"), _("Initials"))]
+    """The heads of the columns; long ones wrap and stand on the line."""
+    name_right = columns.name_left + columns.name_width
+    run = columns.running_right - columns.target_right
+    figures = (
+        (_("Target kg"), columns.target_right, columns.target_right - name_right),
+        (_("Running kg"), columns.running_right, run - 6),
+    )
+    words = (
+        (_("Ingredient"), columns.name_left, columns.name_width - 6),
+        *((text, start, end - start) for text, (start, end) in zip(
+            (_("Lot"), _("Weighed kg"), _("Initials")), columns.fills, strict=True
+        )),
+    )
+    rights = [(LABEL.wrap(text, width), right) for text, right, width in figures]
+    lefts = [(LABEL.wrap(text, width), start) for text, start, width in words]
+    most = max(len(lines) for lines, _edge in (*rights, *lefts))
 
     def draw(pen: Pen, left: float, top: float) -> None:
-        for end, text in zip(ends, rights, strict=True):
-            pen.text_right(left + end, top, text, LABEL)
-        for start, text in zip(starts, lefts, strict=True):
-            pen.text(left + start, top, text, LABEL)
-        pen.rule(left, left + columns.width, top + LABEL.line + 3, 1, INK)
+        for cells, write in ((rights, pen.text_right), (lefts, pen.text)):
+            for lines, edge in cells:
+                for place, line in enumerate(lines):
+                    write(left + edge, top + (most - len(lines) + place) * LABEL.line, line, LABEL)
+        pen.rule(left, left + columns.width, top + most * LABEL.line + 3, 1, INK)
 
-    return Block(LABEL.line + 4, draw)
+    return Block(most * LABEL.line + 4, draw)
 
 
 def _group_words(line: BatchLine) -> str:

@@ -44,6 +44,20 @@ def test_no_text_overlaps_another_or_leaves_the_page(batch: Batch, paper: Paper)
     assert clashes == []
 
 
+@pytest.mark.parametrize("batch", CASES)
+def test_a_language_with_longer_words_overlaps_nothing(batch: Batch) -> None:
+    use_translator(lambda text: f"{text} {'n' * (len(text) // 2)}", lambda one, many, count: f"{many} nnnnn nnnnn")
+    try:
+        pdf = batch_sheet(batch, paper=Paper.LETTER)
+    finally:
+        use_language(None)
+    upright = [p for p in pieces(pdf) if not p.across]
+    assert all(p.left >= 12 * MM and p.right <= Paper.LETTER.size_pt[0] - 12 * MM for p in upright)
+    assert not [
+        (a.text, b.text) for a, b in itertools.combinations(upright, 2) if a.page == b.page and a.overlaps(b)
+    ]
+
+
 @pytest.mark.parametrize("paper", PAPERS)
 def test_every_line_of_forty_stands_on_the_sheet_with_its_whole_name_and_target(paper: Paper) -> None:
     text = words(made.MANY, paper)
