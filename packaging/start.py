@@ -45,6 +45,7 @@ SCREEN = {
     "libxcb-shape.so.0": "libxcb-shape0",
     "libxkbcommon-x11.so.0": "libxkbcommon-x11-0",
     "libwayland-cursor.so.0": "libwayland-cursor0",
+    "libwayland-egl.so.1": "libwayland-egl1",
     "libcups.so.2": "libcups2",
 }
 FONT = "fonts-dejavu-core"
@@ -184,8 +185,7 @@ def set_up() -> Path:
     stamp.unlink(missing_ok=True)
     say("Fetching and installing the pinned packages (about 200 MB the first time)")
     install_pins(python)
-    if call([python, "-m", "pip", "install", "-q", "--no-deps", "--no-build-isolation", "--no-index", "-e", "."]) != 0:
-        raise Stop("blendapp itself could not be installed into .venv; pip's words above say why.")
+    install_project(python)
     stamp.write_text(wanted, "utf-8")
     return python
 
@@ -198,6 +198,12 @@ def install_pins(python: Path) -> None:
                    f"{sys.version_info[0]}.{sys.version_info[1]}?).")
 
 
+def install_project(python: Path) -> None:
+    """Put blendapp itself into an environment, so that it runs from this folder as it stands. Raises Stop."""
+    if call([python, "-m", "pip", "install", "-q", "--no-deps", "--no-build-isolation", "--no-index", "-e", "."]) != 0:
+        raise Stop("blendapp itself could not be installed into the virtual environment; pip's words above say why.")
+
+
 # --- The main job
 
 
@@ -208,8 +214,8 @@ def names_a_screen(environ: Mapping[str, str], platform: str) -> bool:
     return bool(environ.get("DISPLAY") or environ.get("WAYLAND_DISPLAY"))
 
 
-def can_open_a_window(python: Path) -> bool:
-    """Whether Qt reaches the screen, tried in a process of its own because Qt ends the process where it does not."""
+def can_start_qt(python: Path) -> bool:
+    """Whether Qt loads and reaches the screen, tried in a process of its own because Qt ends it where it does not."""
     attempt = "import sys; from PySide6.QtGui import QGuiApplication; QGuiApplication(sys.argv)"
     return call([python, "-c", attempt], stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL) == 0
 
@@ -291,7 +297,6 @@ def first_solved(python: Path, mill: Path) -> str:
 
 def all_checks(python: Path, arguments: Sequence[str]) -> int:
     """Every check, also after one has failed; the tests come last, so that their summary is the last line."""
-    os.environ["QT_QPA_PLATFORM"] = "offscreen"
     failed = []
     for name, command in (
         ("ruff", ["-m", "ruff", "check", "."]),
@@ -319,12 +324,15 @@ def main(arguments: Sequence[str] | None = None) -> int:
     try:
         python = set_up()
         if asked.job == "tests":
+            os.environ["QT_QPA_PLATFORM"] = "offscreen"
             provide_libraries(on_screen=False)
+            if not can_start_qt(python):
+                raise Stop("Qt cannot start here, and many tests draw with it, so no check was run.")
             return all_checks(python, more)
         in_text = asked.text or not names_a_screen(os.environ, sys.platform)
         if not in_text:
             provide_libraries(on_screen=True)
-            if not can_open_a_window(python):
+            if not can_start_qt(python):
                 say("There should be a screen but Qt cannot open a window on it, so the job goes on in text.")
                 in_text = True
         return main_job(python, in_text)

@@ -131,7 +131,6 @@ def test_every_check_runs_and_the_exit_tells_of_any_failure(
             return int(failing is not None and failing in ran[-1])
 
         monkeypatch.setattr(start, "call", call)
-        monkeypatch.setenv("QT_QPA_PLATFORM", "offscreen")
         assert start.all_checks(Path("python"), []) == int(failing is not None)
         assert [next(name for name in ("ruff", "mypy", "importlinter", "pytest") if name in line) for line in ran] == [
             "ruff", "mypy", "importlinter", "pytest"]
