@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime
 from collections.abc import Mapping, Sequence
-from dataclasses import replace
+from typing import Any
 
 import numpy as np
 
@@ -47,7 +47,7 @@ def without_answer(
         currency=library.mill.currency,
         on=on,
         ingredients=ingredients,
-        limits=tuple(blank_limit(library, formula, index, limit) for index, limit in enumerate(limits)),
+        limits=tuple(limit_result(library, formula, index, limit) for index, limit in enumerate(limits)),
         nutrients=(),
         unpriced=() if built is None else tuple(i.name for i in built.unpriced),
         unknown=tuple(unknown),
@@ -62,21 +62,30 @@ def answered(
 ) -> Result:
     """The result of a solution that has amounts: optimal, or the best found when time was up."""
     assert solution.x is not None
-    blank = without_answer(library, built.formula, on, Status.OPTIMAL, None, built, unknown, cautions)
+    formula = built.formula
     x = np.where(np.abs(solution.x) < _DUST, 0.0, solution.x)
     money = x * built.program.cost
-    return replace(
-        blank,
+    return Result(
+        formula_id=formula.id,
+        formula=formula.name,
+        amounts=formula.amounts,
         status=Status.OPTIMAL if solution.status == "optimal" else Status.STOPPED,
+        currency=library.mill.currency,
+        on=on,
         ingredients=tuple(
-            replace(one, amount=float(amount), cost=float(cost))
-            for one, amount, cost in zip(blank.ingredients, x, money, strict=True)
+            IngredientResult(i.id, i.name, price, amount, cost)
+            for i, price, amount, cost in zip(
+                built.ingredients, built.price_per_t.tolist(), x.tolist(), money.tolist(), strict=True
+            )
         ),
         limits=tuple(
-            _limit(one, limit, factor, solution.limits.get(one.index))
-            for one, limit, factor in zip(blank.limits, built.limits, built.factors, strict=True)
+            limit_result(library, formula, index, limit, **_figures(limit, factor, solution.limits.get(index)))
+            for index, (limit, factor) in enumerate(zip(built.limits, built.factors, strict=True))
         ),
         nutrients=nutrients_of(library, built, x),
+        unpriced=tuple(i.name for i in built.unpriced),
+        unknown=tuple(unknown),
+        cautions=tuple(cautions),
         cost=float(money.sum()),
         gap=solution.gap,
         given_ingredients=solution.given,
@@ -84,41 +93,39 @@ def answered(
     )
 
 
-def blank_limit(library: Library, formula: Formula, index: int, limit: Limit) -> LimitResult:
-    """A limit as displayed, without a value."""
-    nutrient = limit.kind is LimitKind.NUTRIENT
+def limit_result(library: Library, formula: Formula, index: int, limit: Limit, **figures: Any) -> LimitResult:
+    """A limit as displayed; figures: the fields of LimitResult that an answer adds."""
     return LimitResult(
         index=index,
         limit_id=limit.id,
         kind=limit.kind,
         name=library.subject_name(limit.subject),
         per=None if limit.per is None else library.subject_name(limit.per),
-        basis=write_basis(limit.basis, limit.at_dry_matter_percent) if nutrient else None,
+        basis=write_basis(limit.basis, limit.at_dry_matter_percent) if limit.kind is LimitKind.NUTRIENT else None,
         unit=limit_units.shown_unit(library, limit, formula.amounts),
         minimum=limit.minimum,
         maximum=limit.maximum,
+        **figures,
     )
 
 
-def _limit(blank: LimitResult, limit: Limit, factor: float, state: LimitState | None) -> LimitResult:
+def _figures(limit: Limit, factor: float, state: LimitState | None) -> dict[str, Any]:
+    """Value, working side and prices of a limit at an answer, as displayed."""
     if state is None:
-        return blank
+        return {}
     value = None if state.value is None else state.value / factor
     binding = None if state.binding is None else Side(state.binding)
     # At its bound a value is the bound, digit for digit: what is displayed must not look a hair outside.
     if binding is not None and limit.kind is not LimitKind.PRACTICAL:
         value = limit.minimum if binding is Side.MINIMUM else limit.maximum
-    shown = replace(blank, value=value, binding=binding, shadow_price_unique=state.unique)
-    if limit.kind is LimitKind.COUNT:
-        return shown
-    equal = limit.minimum is not None and limit.minimum == limit.maximum
-    if state.price is None:
-        return shown
+    found = {"value": value, "binding": binding, "shadow_price_unique": state.unique}
+    if limit.kind is LimitKind.COUNT or state.price is None:
+        return found
     price = state.price * factor
-    if equal:
-        return replace(shown, raise_cost=price + 0.0, lower_cost=-price + 0.0)
+    if limit.minimum is not None and limit.minimum == limit.maximum:
+        return {**found, "raise_cost": price + 0.0, "lower_cost": -price + 0.0}
     cost = abs(price) if binding is not None else 0.0
-    return replace(shown, tighten_cost=cost, relax_saving=cost)
+    return {**found, "tighten_cost": cost, "relax_saving": cost}
 
 
 def nutrients_of(library: Library, built: FormulaProgram, x: Array) -> tuple[NutrientResult, ...]:
@@ -138,13 +145,15 @@ def mixed_nutrients(
 ) -> tuple[NutrientResult, ...]:
     """composition: shape (ingredients, nutrients), NaN unknown; x: fractions of a blend, or kg per day."""
     used = x > 0
+    count = int(used.sum())
     lacking = np.isnan(composition)
-    totals = x @ np.where(lacking, 0.0, composition) if len(x) else np.zeros(composition.shape[1])
+    totals = (x @ np.where(lacking, 0.0, composition)).tolist() if len(x) else [0.0] * composition.shape[1]
+    lacking &= used[:, None]
+    counts = lacking.sum(axis=0).tolist()
     found = []
     for nutrient in library.nutrients:
         column = columns[nutrient.id]
-        missing = lacking[:, column] & used
-        nothing = bool(missing.sum() == used.sum())
+        missing = counts[column]
         if amounts is Amounts.BLEND:
             unit, scale = nutrient.unit, units.concentration(nutrient.unit).factor
         else:
@@ -154,8 +163,8 @@ def mixed_nutrients(
             nutrient.id,
             nutrient.name,
             unit,
-            None if nothing else float(totals[column] / scale),
-            tuple(name for name, flag in zip(names, missing, strict=True) if flag),
+            None if missing == count else totals[column] / scale,
+            tuple(names[int(j)] for j in np.flatnonzero(lacking[:, column])) if missing else (),
             nutrient.id in limited,
         ))
     return tuple(found)

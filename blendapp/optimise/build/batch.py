@@ -11,7 +11,7 @@ import numpy as np
 from blendapp.domain.formulas import Amounts, LimitKind
 from blendapp.domain.library import Library
 from blendapp.domain.results import LimitResult, NutrientResult, Side
-from blendapp.optimise.build.answer import blank_limit, nutrients_of
+from blendapp.optimise.build.answer import limit_result, nutrients_of
 from blendapp.optimise.build.formula import FormulaProgram
 from blendapp.optimise.program import Array
 
@@ -61,7 +61,7 @@ def limits_of(library: Library, built: FormulaProgram, x: Array) -> tuple[LimitR
         if limit.kind is LimitKind.PRACTICAL:
             values[index] = float(sum(x[j] for j, i in enumerate(built.ingredients) if i.id == limit.subject.ids[0]))
     return tuple(
-        _placed(blank_limit(library, built.formula, index, limit), value, factor)
+        _placed(limit_result(library, built.formula, index, limit), value, factor)
         for index, (limit, value, factor) in enumerate(zip(built.limits, values, built.factors, strict=True))
     )
 

@@ -189,8 +189,11 @@ def unknown_values(library: Library, built: FormulaProgram) -> list[UnknownValue
                 unsafe[built.ingredients[position].name, DRY_MATTER] = True
         for subject in (limit.subject, limit.per):
             if subject is not None and subject.is_nutrient:
+                lacking = _lacking(built, subject, no_dry)
+                if not lacking.any():
+                    continue
                 name, harmless = _harmless(library, limit, subject)
-                for position in np.flatnonzero(_lacking(built, subject, no_dry)):
+                for position in np.flatnonzero(lacking):
                     key = (built.ingredients[position].name, name)
                     unsafe[key] = unsafe.get(key, False) or not harmless
     return [UnknownValue(ingredient, nutrient, flag) for (ingredient, nutrient), flag in sorted(unsafe.items())]
