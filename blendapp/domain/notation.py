@@ -30,18 +30,30 @@ class Notation:
         """A number without trailing zeros, as a person would type it."""
         if value is None:
             return ""
-        text = f"{value:.{most_decimals}f}".rstrip("0").rstrip(".") if abs(value) < 1e15 else f"{value:g}"
+        text = f"{value:.{most_decimals}f}" if abs(value) < 1e15 else f"{value:g}"
+        if "." in text and "e" not in text:
+            text = text.rstrip("0").rstrip(".")
         if value != 0 and float(text) == 0:
             text = f"{value:.3g}"
         if text == "-0":
             text = "0"
         return text.replace(".", self.decimal)
 
+    def write_exact(self, value: float | None) -> str:
+        """The shortest text that reads back as the very same number: what an editor opens with."""
+        if value is None:
+            return ""
+        text = repr(value + 0.0).removesuffix(".0")
+        mantissa, e, exponent = text.partition("e")
+        if e and -7 < int(exponent) < 0:
+            text = f"{value:.{len(mantissa.lstrip('-').replace('.', '')) - 1 - int(exponent)}f}"
+        return text.replace(".", self.decimal)
+
     def read(self, text: str) -> float:
         """The number in a typed text.
 
         Raises ValueError with one sentence for the person if it is not a number in this notation. Grouping is
-        taken only in groups of three, so that 12,5 is never read as 125.
+        taken only in groups of three after a digit other than 0, so that 12,5 is never read as 125 nor 0,950 as 950.
         """
         plain = text.strip().replace("\u2212", "-")
         for space in _SPACES:
@@ -51,7 +63,8 @@ class Notation:
         for group in (" ", "'", other):
             if group in whole:
                 head, *rest = whole.lstrip("+-").split(group)
-                if not (head.isdigit() and len(head) <= 3 and all(len(r) == 3 and r.isdigit() for r in rest)):
+                fits = head.isdigit() and len(head) <= 3 and all(len(r) == 3 and r.isdigit() for r in rest)
+                if not fits or head.startswith("0"):
                     raise ValueError(self._refusal(text))
                 whole = whole.replace(group, "")
                 break
