@@ -17,11 +17,10 @@ from blendapp.storage.faults import Cause, MillFileError, from_sqlite
 BUSY_S = 5.0  # how long to wait for another process that is reading or writing this moment
 
 
-def connect(path: Path, *, writable: bool, write_ahead: bool = False, immutable: bool = False) -> Connection:
-    """The connection of a mill file. Transactions are begun by transaction() alone.
+def connect(path: Path, *, writable: bool, immutable: bool = False) -> Connection:
+    """The connection of a mill file, which it does not change. Transactions are begun by transaction() alone.
 
-    write_ahead: keep a write-ahead log, for local disks; a rollback journal otherwise. immutable: the folder can take
-    no file beside, and nobody can change the file. Raises MillFileError.
+    immutable: the folder can take no file beside, and nobody can change the file. Raises MillFileError.
     """
     address = f"{path.absolute().as_uri()}?mode={'rw' if writable else 'ro'}{'&immutable=1' if immutable else ''}"
 
@@ -32,9 +31,7 @@ def connect(path: Path, *, writable: bool, write_ahead: bool = False, immutable:
     with told_of(path):
         connection = engine.connect()
         try:
-            if writable:
-                pragma(connection, f"journal_mode = {'WAL' if write_ahead else 'DELETE'}")
-                pragma(connection, "synchronous = FULL")
+            pragma(connection, "synchronous = FULL")
             pragma(connection, "foreign_keys = ON")
             pragma(connection, "trusted_schema = OFF")
         except BaseException:
@@ -47,6 +44,11 @@ def pragma(connection: Connection, text: str) -> list[tuple[object, ...]]:
     """The rows that one of SQLite's own statements answers."""
     result = connection.exec_driver_sql(f"PRAGMA {text}")
     return [tuple(row) for row in result] if result.returns_rows else []
+
+
+def keep_log(connection: Connection, write_ahead: bool) -> None:
+    """Choose how the file outlives a kill: a write-ahead log on local disks, a rollback journal elsewhere."""
+    pragma(connection, f"journal_mode = {'WAL' if write_ahead else 'DELETE'}")
 
 
 def disconnect(connection: Connection) -> None:

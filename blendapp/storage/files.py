@@ -60,15 +60,26 @@ def log_beside(path: Path) -> bool:
     return False
 
 
+def must_be_read_alone(path: Path) -> bool:
+    """Whether SQLite must be told to make no file beside: the file asks for a log, and the folder cannot take one.
+
+    Not where a log is there already: then another process has the file open, or was killed.
+    """
+    if _is_writable(path.parent) or any(os.path.exists(f"{path}{ending}") for ending in ("-wal", "-shm")):
+        return False
+    with path.open("rb") as file:
+        return file.read(20)[18:20] == b"\x02\x02"
+
+
 def may_write(path: Path) -> bool:
     """Whether the file and its folder may be written; a file marked read-only is kept so even for an administrator."""
     try:
-        return _may_write(path) and _may_write(path.parent)
+        return _is_writable(path) and _is_writable(path.parent)
     except OSError as error:
         raise from_system(error, path) from error
 
 
-def _may_write(path: Path) -> bool:
+def _is_writable(path: Path) -> bool:
     marks = stat.S_IWUSR | stat.S_IWGRP | stat.S_IWOTH
     return bool(path.stat().st_mode & marks) and os.access(path, os.W_OK)
 

@@ -9,17 +9,18 @@ import weakref
 from collections.abc import Callable, Sequence
 from pathlib import Path
 
+import sqlalchemy
 from filelock import FileLock, Timeout
-from sqlalchemy import Connection, text
+from sqlalchemy import Connection
 from sqlalchemy.exc import DBAPIError, OperationalError
 
 from blendapp.domain.records import Change
 from blendapp.domain.wording import _
 from blendapp.storage import schema, writing
-from blendapp.storage.connections import connect, disconnect, pragma, told_of, transaction
+from blendapp.storage.connections import connect, disconnect, keep_log, pragma, told_of, transaction
 from blendapp.storage.entries import Role
 from blendapp.storage.faults import Cause, MillFileError, fault, from_system
-from blendapp.storage.files import log_beside, made_whole, may_write, on_local_disk, require_mill_file
+from blendapp.storage.files import made_whole, may_write, must_be_read_alone, on_local_disk, require_mill_file
 from blendapp.storage.store import Store, copy_into, registry
 
 # Files that this process has open, so that its windows share one connection and one lock: two connections of one
@@ -83,11 +84,17 @@ def _open_file(given: Path, path: Path, forget: Callable[[], object]) -> Store:
         read_only, lock = _take_lock(given, path)
         if lock is not None:
             undone.callback(lock.release)
-        connection = _connect(path, read_only)
+        connection = connect(path, writable=read_only is None, immutable=must_be_read_alone(path))
         undone.callback(disconnect, connection)
         with told_of(given):
             _require_sound(connection, given)
-            _bring_up_to_date(connection, given, path, writable=read_only is None)
+            revision = _known_revision(connection, given)
+            if read_only is None:
+                keep_log(connection, write_ahead=on_local_disk(path))
+            if revision != schema.REVISION:
+                if read_only is not None:
+                    raise fault(Cause.OLDER, given)
+                _bring_up_to_date(connection, given, path, revision)
         undone.pop_all()
 
     def close() -> None:
@@ -118,21 +125,6 @@ def _take_lock(given: Path, path: Path) -> tuple[MillFileError | None, FileLock 
     return None, lock
 
 
-def _connect(path: Path, read_only: MillFileError | None) -> Connection:
-    if read_only is None:
-        return connect(path, writable=True, write_ahead=on_local_disk(path))
-    connection = connect(path, writable=False)
-    try:
-        pragma(connection, "schema_version")
-    except DBAPIError:
-        # A folder that takes no file beside: read the file by itself, if no log holds edits that it lacks.
-        disconnect(connection)
-        if may_write(path.parent) or log_beside(path):
-            raise fault(Cause.READ_ONLY, path) from None
-        return connect(path, writable=False, immutable=True)
-    return connection
-
-
 def _require_sound(connection: Connection, given: Path) -> None:
     if pragma(connection, "application_id") != [(schema.APPLICATION_ID,)]:
         raise fault(Cause.NOT_A_MILL_FILE, given)
@@ -140,34 +132,39 @@ def _require_sound(connection: Connection, given: Path) -> None:
         raise fault(Cause.DAMAGED, given)
 
 
-def _bring_up_to_date(connection: Connection, given: Path, path: Path, writable: bool) -> None:
-    revision = _revision(connection, given)
-    if revision == schema.REVISION:
-        return
-    if revision not in schema.REVISIONS:
-        raise fault(Cause.NEWER, given)
-    if not writable:
-        raise fault(Cause.OLDER, given)
+def _bring_up_to_date(connection: Connection, given: Path, path: Path, revision: str) -> None:
     from blendapp.storage.upgrading import upgrade
 
     keep_copy(connection, path, revision)
     pragma(connection, "foreign_keys = OFF")  # a table that is made anew would else take its links with it
-    with transaction(connection):
-        upgrade(connection)
-        if pragma(connection, "foreign_key_check"):
-            raise fault(Cause.DAMAGED, given)
+    try:
+        with transaction(connection):
+            upgrade(connection)
+            if pragma(connection, "foreign_key_check"):
+                raise fault(Cause.DAMAGED, given)
+    except (MillFileError, DBAPIError):
+        raise
+    except Exception as error:  # a step of this program that cannot deal with this file
+        text = _(
+            "“{file}” could not be upgraded ({reason}) and is left as it was; "
+            "go on with the version of this program that made it, and report this."
+        )
+        raise MillFileError(text.format(file=given, reason=error), Cause.OLDER, given) from error
     pragma(connection, "foreign_keys = ON")
 
 
-def _revision(connection: Connection, given: Path) -> str:
+def _known_revision(connection: Connection, given: Path) -> str:
+    """The revision of the file; raises MillFileError for one that this program does not know, or none."""
     try:
-        found = connection.execute(text("SELECT version_num FROM alembic_version")).scalar()
+        found = connection.execute(sqlalchemy.text("SELECT version_num FROM alembic_version")).scalar()
     except OperationalError as error:
         if getattr(error.orig, "sqlite_errorcode", None) != sqlite3.SQLITE_ERROR:
             raise
         found = None  # there is no such table
     if found is None:
         raise fault(Cause.DAMAGED, given)
+    if found not in schema.REVISIONS:
+        raise fault(Cause.NEWER, given)
     return str(found)
 
 

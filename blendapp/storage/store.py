@@ -164,8 +164,10 @@ def copy_into(connection: Connection, target: Path) -> None:
 
 
 def _merge_log(connection: Connection) -> None:
-    """Put the write-ahead log into the file and remove it; if another process reads the file now, leave it empty."""
+    """Put the write-ahead log into the file and remove it; if another process reads the file now, only empty it."""
     pragma(connection, "busy_timeout = 100")
-    with contextlib.suppress(DBAPIError):  # else the log stays beside the file, and the next opening takes it in
-        pragma(connection, "wal_checkpoint(TRUNCATE)")
+    try:
         pragma(connection, "journal_mode = DELETE")
+    except DBAPIError:
+        with contextlib.suppress(DBAPIError):  # else the log stays beside the file, and the next opening takes it in
+            pragma(connection, "wal_checkpoint(TRUNCATE)")
