@@ -6,6 +6,7 @@ import re
 from dataclasses import dataclass
 from enum import StrEnum
 
+from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
 
 
@@ -97,7 +98,7 @@ def read_basis(text: str) -> tuple[LimitBasis, float | None]:
 def write_basis(basis: LimitBasis, at_dry_matter_percent: float | None) -> str:
     """The basis as the workbook and JSON write it."""
     if basis is LimitBasis.AT_DRY_MATTER:
-        return f"at {at_dry_matter_percent:g} % dry matter"
+        return f"at {PLAIN.write_exact(at_dry_matter_percent)} % dry matter"
     return str(basis)
 
 

@@ -202,7 +202,9 @@ class Library:
 
 def join_names(names: Iterable[str]) -> str:
     """Ingredient names as one group name: joined by " + ", a name that holds " + " or a quote in double quotes."""
-    return " + ".join('"' + name.replace('"', '""') + '"' if " + " in name or '"' in name else name for name in names)
+    return " + ".join(
+        '"' + name.replace('"', '""') + '"' if " + " in f" {name} " or '"' in name else name for name in names
+    )
 
 
 def split_names(text: str) -> list[str]:
