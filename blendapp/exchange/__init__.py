@@ -1,0 +1,30 @@
+"""Other people's tables: the exchange workbook in and out, and price lists. Slow libraries are fetched when needed."""
+
+from __future__ import annotations
+
+import datetime
+from collections.abc import Mapping
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from blendapp.domain.library import Library
+from blendapp.domain.problems import Problem
+
+if TYPE_CHECKING:
+    from blendapp.exchange.workbook_read import WorkbookReading
+
+
+def read_workbook(
+    path: str | Path, library: Library, next_ids: Mapping[str, int], today: datetime.date
+) -> WorkbookReading:
+    """See workbook_read.read_workbook."""
+    from blendapp.exchange.workbook_read import read_workbook as read
+
+    return read(path, library, next_ids, today)
+
+
+def write_workbook(path: str | Path, library: Library, today: datetime.date) -> list[Problem]:
+    """See workbook_write.write_workbook."""
+    from blendapp.exchange.workbook_write import write_workbook as write
+
+    return write(path, library, today)

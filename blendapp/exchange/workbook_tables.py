@@ -1,0 +1,188 @@
+"""A library as the tables of the exchange workbook: plain rows of text, numbers and dates under their headings."""
+
+from __future__ import annotations
+
+import datetime
+
+from blendapp.domain import units
+from blendapp.domain.formulas import Limit, Subject, SubjectKind, write_basis
+from blendapp.domain.ingredients import Ingredient, Value
+from blendapp.domain.library import Library, join_names
+from blendapp.domain.problems import Place, Problems
+from blendapp.domain.quotes import Quote
+from blendapp.domain.wording import _
+from blendapp.exchange.workbook_layout import (
+    FORMULAS,
+    INGREDIENTS,
+    LIMITS,
+    MILL,
+    MILL_ITEMS,
+    MIXERS,
+    NUTRIENTS,
+    SCALES,
+    VALUES,
+)
+from blendapp.exchange.workbook_values import heading_of
+
+WrittenCell = str | float | datetime.date | None
+Table = list[list[WrittenCell]]
+
+
+def tables_of(library: Library, today: datetime.date, problems: Problems) -> dict[str, Table]:
+    """Each sheet by name, its headings first, records in the order of identifiers. problems takes what is odd."""
+    in_columns = {(v.ingredient_id, v.nutrient_id) for i in library.ingredients for v in _column_values(library, i)}
+    return {
+        MILL.name: _mill(library),
+        NUTRIENTS.name: _nutrients(library),
+        INGREDIENTS.name: _ingredients(library, today, in_columns),
+        VALUES.name: _values(library, in_columns),
+        SCALES.name: _scales(library),
+        MIXERS.name: _mixers(library),
+        FORMULAS.name: _formulas(library),
+        LIMITS.name: _limits(library, problems),
+    }
+
+
+def _mill(library: Library) -> Table:
+    rows: Table = [list(MILL.headings)]
+    return rows + [[item, getattr(library.mill, name)] for item, name in MILL_ITEMS.items()]
+
+
+def _yes(value: bool) -> str:
+    return "yes" if value else "no"
+
+
+def _free(text: str) -> str:
+    """A text that nothing but blanks fills is blank."""
+    return text if text.strip() else ""
+
+
+def _nutrients(library: Library) -> Table:
+    rows: Table = [list(NUTRIENTS.headings)]
+    for n in library.nutrients:
+        rows.append([n.name.strip(), n.unit, _yes(n.never_negative), n.key, _free(n.note)])
+    return rows
+
+
+def _column_values(library: Library, ingredient: Ingredient) -> list[Value]:
+    """The values that a plain column can say: own unit, own basis, and nothing known of where they come from."""
+    return [
+        value
+        for nutrient_id, value in library.values_of(ingredient.id).items()
+        if value.unit == library.nutrient(nutrient_id).unit
+        and value.basis == ingredient.basis
+        and value.origin is None
+        and value.date is None
+        and value.n is None
+        and value.sd is None
+        and not _free(value.source)
+    ]
+
+
+def _ingredients(library: Library, today: datetime.date, in_columns: set[tuple[int, int]]) -> Table:
+    nutrients = library.nutrients
+    rows: Table = [[*INGREDIENTS.headings, *(heading_of(n) for n in nutrients)]]
+    scales, formulas = library.records["scale"], library.records["formula"]
+    for i in library.ingredients:
+        price, per = _price(library, i, library.quote_in_force(i.id, today))
+        scale = scales.get(i.scale_id or 0)
+        formula = formulas.get(i.made_by_formula_id or 0)
+        values = library.values_of(i.id)
+        rows.append([
+            i.name.strip(), i.class_name.strip(), i.dry_matter_percent, price, per, str(i.basis), _free(i.note),
+            i.code.strip(), scale.name.strip() if scale else None, i.stock_kg, i.density_kg_per_l, i.bushel_lb,
+            ", ".join(i.tags), formula.name.strip() if formula else None, _free(i.drug), _free(i.drug_level),
+            _free(i.drug_species), _free(i.withdrawal),
+            *(values[n.id].amount if (i.id, n.id) in in_columns else None for n in nutrients),
+        ])
+    return rows
+
+
+def _price(library: Library, ingredient: Ingredient, quote: Quote | None) -> tuple[float | None, str | None]:
+    """The price as entered, unless the workbook would read its words otherwise; then the same price in other words."""
+    if quote is None or quote.price is None:
+        return None, None
+    if quote.per == units.BUSHEL:
+        weight = ingredient.bushel_lb or units.legal_bushel_lb(ingredient.name)
+        if weight != quote.bushel_lb:
+            return quote.price_per_t, "t"
+    if quote.per == "cwt" and library.mill.cwt_means == "112 lb":
+        return quote.price * 20, "short ton"
+    return quote.price, quote.per
+
+
+def _values(library: Library, in_columns: set[tuple[int, int]]) -> Table:
+    rows: Table = [list(VALUES.headings)]
+    for i in library.ingredients:
+        for n in library.nutrients:
+            v = library.value(i.id, n.id)
+            if v is not None and (i.id, n.id) not in in_columns:
+                rows.append([
+                    i.name.strip(), n.name.strip(), v.amount, v.unit or "/kg", str(v.basis),
+                    str(v.origin) if v.origin else None, _free(v.source), v.date, v.n, v.sd,
+                ])
+    return rows
+
+
+def _scales(library: Library) -> Table:
+    rows: Table = [list(SCALES.headings)]
+    for s in library.scales:
+        hand_add = "yes" if s.hand_add else None
+        rows.append([s.name.strip(), s.step_kg, s.least_kg, s.greatest_kg, s.tolerance_percent, hand_add])
+    return rows
+
+
+def _mixers(library: Library) -> Table:
+    rows: Table = [list(MIXERS.headings)]
+    return rows + [[m.name.strip(), m.least_kg, m.greatest_kg] for m in library.mixers]
+
+
+def _formulas(library: Library) -> Table:
+    rows: Table = [list(FORMULAS.headings)]
+    for f in library.formulas:
+        animal = str(f.animal) if f.animal else None
+        rows.append([
+            f.name.strip(), str(f.amounts), animal, _free(f.stage), f.batch_kg, str(f.admits), _free(f.note)
+        ])
+    return rows
+
+
+def _limits(library: Library, problems: Problems) -> Table:
+    limits = [(f, limit) for f in library.formulas for limit in library.limits(f.id)]
+    with_notes = any(_free(limit.note) for _f, limit in limits)
+    rows: Table = [list(LIMITS.headings if with_notes else LIMITS.headings[:-1])]
+    for formula, limit in limits:
+        name = subject_text(library, limit.subject)
+        per = subject_text(library, limit.per) if limit.per is not None else ""
+        if name is None or per is None:
+            text = _("A limit of “{formula}” on a class without ingredients has the name of one and was left out.")
+            problems.oddity(text.format(formula=formula.name), Place("", LIMITS.name))
+            continue
+        row: list[WrittenCell] = [
+            formula.name.strip(), str(limit.kind), name, per, limit.minimum, limit.maximum, limit.unit,
+            _basis(limit),
+        ]
+        rows.append([*row, _free(limit.note)] if with_notes else row)
+    return rows
+
+
+def _basis(limit: Limit) -> str | None:
+    return write_basis(limit.basis, limit.at_dry_matter_percent) if limit.subject.is_nutrient else None
+
+
+def subject_text(library: Library, subject: Subject) -> str | None:
+    """A subject as Limits names it; None if no name would be read back as the same.
+
+    A class that shares its name with an ingredient is written as its members, since the ingredient would win.
+    """
+    if subject.kind is SubjectKind.CLASS:
+        name = subject.class_name.strip()
+        if library.named("ingredient", name) is None:
+            return join_names([name])
+        members = [i.name.strip() for i in library.members(subject)]
+        return join_names(members) if members else None
+    if subject.kind is SubjectKind.INGREDIENTS:
+        return join_names(library.ingredient(key).name.strip() for key in subject.ids)
+    return library.subject_name(subject).strip()
+
+

@@ -1,0 +1,174 @@
+"""Writing the exchange workbook: a whole library as tables that read back equal."""
+
+from __future__ import annotations
+
+import datetime
+import os
+import re
+import tempfile
+from collections.abc import Iterable, Iterator
+from contextlib import suppress
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from blendapp.domain.library import Library
+from blendapp.domain.problems import Place, Problem, Problems, Refused
+from blendapp.domain.wording import _, plural
+from blendapp.exchange.workbook_layout import LAYOUTS, Layout
+from blendapp.exchange.workbook_tables import WrittenCell, tables_of
+
+if TYPE_CHECKING:
+    from openpyxl import Workbook
+    from openpyxl.cell.cell import Cell
+    from openpyxl.worksheet.worksheet import Worksheet
+
+LONGEST_TEXT = 32_767  # of one cell, a limit of the format
+_WIDEST, _NARROWEST = 42, 9
+_MARKED_AS_TEXT = ("=", "+", "-", "@")
+# What XML cannot hold, and text that would be taken for the escape of it (ISO/IEC 29500, ST_Xstring).
+_UNWRITABLE = re.compile("[\x00-\x08\x0b-\x0d\x0e-\x1f\ufffe\uffff]|_(?=x[0-9A-Fa-f]{4}_)")
+
+
+def write_workbook(path: str | Path, library: Library, today: datetime.date) -> list[Problem]:
+    """Writes the library to a workbook, whole or not at all; gives warnings of what a workbook does not carry.
+
+    Prices are those in force on `today`. Raises Refused if the file cannot be written; an older file then stays.
+    """
+    path = Path(path)
+    problems = Problems()
+    tables = tables_of(library, today, problems)
+    _say_not_carried(library, path.name, problems)
+    workbook = _workbook(tables, path.name, problems)
+    _replace_file(path, workbook)
+    return [Problem(p.text, Place(path.name, p.place.sheet, p.place.row, p.place.column, p.place.record), p.severity)
+            for p in problems]
+
+
+def _workbook(tables: dict[str, list[list[WrittenCell]]], file: str, problems: Problems) -> Workbook:
+    import openpyxl
+    from openpyxl.styles import Alignment, Border, Font, PatternFill, Side
+
+    workbook = openpyxl.Workbook()
+    workbook.remove(workbook.worksheets[0])
+    font, fill = Font(bold=True), PatternFill("solid", fgColor="FFE9EDF0")
+    border, alignment = Border(bottom=Side("thin", color="FF8A949C")), Alignment(wrap_text=True, vertical="top")
+    for layout in LAYOUTS:
+        sheet = workbook.create_sheet(layout.name)
+        rows = tables[layout.name]
+        for number, row in enumerate(rows, start=1):
+            for column, value in enumerate(row, start=1):
+                if value is not None and value != "":
+                    cell = sheet.cell(number, column)
+                    _fill(cell, value, layout, problems)
+        for cell in sheet[1]:
+            cell.font, cell.fill, cell.border, cell.alignment = font, fill, border, alignment
+        sheet.freeze_panes = "B2" if layout.name == "Ingredients" else "A2"
+        _set_widths(sheet, rows)
+    return workbook
+
+
+def _fill(cell: Cell, value: str | float | datetime.date, layout: Layout, problems: Problems) -> None:
+    if isinstance(value, datetime.date):
+        cell.value = value
+        cell.number_format = "yyyy-mm-dd"
+    elif isinstance(value, str):
+        if len(value) > LONGEST_TEXT:
+            text = _("The text is longer than a cell can hold and was cut after {count} characters.")
+            problems.oddity(text.format(count=LONGEST_TEXT), Place("", layout.name, cell.row))
+        _fill_text(cell, value[:LONGEST_TEXT])
+    else:
+        # Written out by hand, since the library rounds to 16 digits and a double may need 17.
+        cell.value = _digits(value)
+        cell.data_type = "n"
+
+
+def _fill_text(cell: Cell, text: str) -> None:
+    """A text that stays one: never a formula, an error or a date, whatever it begins with."""
+    cell.value = _UNWRITABLE.sub(lambda found: f"_x{ord(found[0]):04X}_", text)
+    cell.data_type = "s"
+    if text.startswith(_MARKED_AS_TEXT):
+        cell.quotePrefix = True  # so that it is still a text after somebody has edited the cell
+
+
+def _digits(value: float) -> str:
+    return str(int(value)) if value == int(value) and abs(value) < 1e15 else repr(float(value))
+
+
+def _set_widths(sheet: Worksheet, rows: list[list[WrittenCell]]) -> None:
+    from openpyxl.utils import get_column_letter
+
+    for column in range(len(rows[0])):
+        longest = max((len(str(row[column])) for row in rows[1:200] if row[column] is not None), default=0)
+        heading = max(len(word) for word in str(rows[0][column]).split(" ")) + 2
+        width = min(max(longest + 2, heading, _NARROWEST), _WIDEST)
+        sheet.column_dimensions[get_column_letter(column + 1)].width = width
+
+
+def _replace_file(path: Path, workbook: Workbook) -> None:
+    """Writes beside the file and puts it in its place when it is whole."""
+    temporary = ""
+    try:
+        if path.is_dir():
+            raise IsADirectoryError(0, _("it is a folder"))
+        handle, temporary = tempfile.mkstemp(".part", f".{path.name[:80]}.", path.parent)
+        with os.fdopen(handle, "wb") as stream:
+            workbook.save(stream)
+            stream.flush()
+            os.fsync(stream.fileno())
+        os.chmod(temporary, _mode_of(path))
+        os.replace(temporary, path)
+    except OSError as error:
+        if temporary:
+            with suppress(OSError):
+                os.unlink(temporary)
+        text = _("The workbook cannot be written: {reason}. Choose another place, or close it where it is open.")
+        raise Refused(Problem(text.format(reason=error.strerror or error), Place(file=path.name))) from None
+
+
+def _mode_of(path: Path) -> int:
+    """Permissions of the file in the place, or those that a new file gets."""
+    with suppress(OSError):
+        return path.stat().st_mode & 0o777
+    mask = os.umask(0)
+    os.umask(mask)
+    return 0o666 & ~mask
+
+
+def _say_not_carried(library: Library, file: str, problems: Problems) -> None:
+    sentences = list(_not_carried(library))
+    for sentence in sentences:
+        problems.oddity(sentence)
+
+
+def _not_carried(library: Library) -> Iterator[str]:
+    """What the mill knows and a workbook has no place for, one sentence each."""
+    older = sum(len(library.quotes_of(i.id)) > 1 for i in library.ingredients)
+    if older:
+        yield plural(
+            "{count} ingredient has several quotes; only its price in force is in the workbook.",
+            "{count} ingredients have several quotes; only their prices in force are in the workbook.",
+            older,
+        ).format(count=older)
+    detailed = sum(_has_detail(quotes) for quotes in (library.quotes_of(i.id) for i in library.ingredients))
+    if detailed:
+        yield plural(
+            "Dates, suppliers and terms of the price of {count} ingredient are not in the workbook.",
+            "Dates, suppliers and terms of the prices of {count} ingredients are not in the workbook.",
+            detailed,
+        ).format(count=detailed)
+    kept = {
+        _("sites"): "site", _("suppliers"): "supplier", _("people"): "person", _("lots"): "lot", _("bins"): "bin",
+        _("price lists"): "price_list", _("other names of ingredients"): "synonym",
+        _("formula versions"): "version", _("printed batches"): "batch",
+    }
+    left = [name for name, kind in kept.items() if library.records[kind]]
+    if left:
+        yield _("These stay in the mill file and are not in the workbook: {kinds}.").format(kinds=", ".join(left))
+
+
+def _has_detail(quotes: Iterable[object]) -> bool:
+    return any(
+        getattr(q, name) is not None
+        for q in quotes
+        for name in ("valid_from", "valid_to", "supplier_id", "site_id", "terms")
+    )

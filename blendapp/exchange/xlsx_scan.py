@@ -1,0 +1,180 @@
+"""What calamine does not tell of an .xlsx sheet: errors, formulas without a stored value, hidden rows, its extent."""
+
+from __future__ import annotations
+
+import io
+import posixpath
+import re
+import zipfile
+from dataclasses import dataclass, field
+from xml.parsers import expat
+
+from blendapp.exchange.tables import NO_STORED_VALUE, ErrorCell, NoStoredValue
+
+_REFERENCE = re.compile(r"([A-Z]{1,3})([0-9]{1,7})")
+_ROW = re.compile(r"[0-9]{1,7}")
+_COLUMNS: dict[str, int] = {}
+
+
+@dataclass
+class SheetScan:
+    """marks: cells, by (row, column) from 0, that hold no value. last_row, last_column: of cells that hold anything."""
+
+    marks: dict[tuple[int, int], ErrorCell | NoStoredValue] = field(default_factory=dict)
+    last_row: int = -1
+    last_column: int = -1
+    hidden_rows: set[int] = field(default_factory=set)
+    hidden_columns: set[int] = field(default_factory=set)
+
+    @property
+    def area(self) -> int:
+        """Cells of the rectangle from A1 to the last cell that holds anything."""
+        return (self.last_row + 1) * (self.last_column + 1)
+
+
+class ForbiddenEntities(Exception):
+    """A part of the file declares a document type."""
+
+
+def scan_sheets(data: bytes) -> dict[str, SheetScan]:
+    """Each sheet of an .xlsx file by name. Raises ForbiddenEntities, expat.ExpatError, KeyError, zipfile.BadZipFile."""
+    with zipfile.ZipFile(io.BytesIO(data)) as archive:
+        parts = {part.filename for part in archive.infolist()}
+        found: dict[str, SheetScan] = {}
+        for name, part in sheet_parts(archive).items():
+            found[name] = _scan(archive.read(part)) if part in parts else SheetScan()
+        return found
+
+
+def has_percent_format(data: bytes) -> bool:
+    """Whether any number format of the file shows a share as a percentage (0.12 as 12 %)."""
+    with zipfile.ZipFile(io.BytesIO(data)) as archive:
+        try:
+            styles = archive.read("xl/styles.xml")
+        except KeyError:
+            return False
+    return bool(re.search(rb"""numFmtId=["'](?:9|10)["']|formatCode=["'][^"']*%""", styles))
+
+
+def sheet_parts(archive: zipfile.ZipFile) -> dict[str, str]:
+    """The part of the archive behind each sheet name, in the order of the workbook."""
+    targets: dict[str, str] = {}
+    names: list[tuple[str, str]] = []
+
+    def relation(tag: str, attributes: dict[str, str]) -> None:
+        if _local(tag) == "Relationship":
+            targets[attributes["Id"]] = attributes["Target"]
+
+    def sheet(tag: str, attributes: dict[str, str]) -> None:
+        if _local(tag) == "sheet":
+            key = next((value for name, value in attributes.items() if _local(name) == "id"), "")
+            names.append((attributes.get("name", ""), key))
+
+    _parse(archive.read("xl/_rels/workbook.xml.rels"), relation)
+    _parse(archive.read("xl/workbook.xml"), sheet)
+    return {name: _resolved(targets[key]) for name, key in names if key in targets}
+
+
+def _resolved(target: str) -> str:
+    return posixpath.normpath(target.lstrip("/") if target.startswith("/") else "xl/" + target)
+
+
+def _local(tag: str) -> str:
+    return tag.rpartition(":")[2]
+
+
+def _parser() -> expat.XMLParserType:
+    def forbid(*_arguments: object) -> None:
+        raise ForbiddenEntities
+
+    parser = expat.ParserCreate()
+    parser.StartDoctypeDeclHandler = forbid
+    parser.EntityDeclHandler = forbid
+    parser.buffer_text = True
+    return parser
+
+
+def _parse(data: bytes, start: object) -> None:
+    parser = _parser()
+    parser.StartElementHandler = start  # type: ignore[assignment]
+    parser.Parse(data, True)
+
+
+def _column(letters: str) -> int:
+    found = _COLUMNS.get(letters)
+    if found is None:
+        found = 0
+        for letter in letters:
+            found = found * 26 + ord(letter) - 64
+        _COLUMNS[letters] = found = found - 1
+    return found
+
+
+class _Cells:
+    """The handlers of one sheet; a class, since the parser calls them a few hundred thousand times."""
+
+    def __init__(self) -> None:
+        self.scan = SheetScan()
+        self.row, self.column = -1, -1
+        self.kind = ""
+        self.formula = self.holds = self.in_value = False
+        self.text: list[str] = []
+
+    def start(self, tag: str, attributes: dict[str, str]) -> None:
+        if ":" in tag:
+            tag = tag.rpartition(":")[2]
+        if tag == "c":
+            place = attributes.get("r")
+            found = _REFERENCE.fullmatch(place) if place else None
+            if found:
+                self.column, self.row = _column(found[1]), int(found[2]) - 1
+            else:
+                self.column += 1
+            self.kind = attributes.get("t", "")
+            self.formula = self.holds = False
+            self.text.clear()
+        elif tag in ("v", "is"):
+            self.in_value = True
+        elif tag == "f":
+            self.formula = True
+        elif tag == "row":
+            number = attributes.get("r", "")
+            self.row = int(number) - 1 if _ROW.fullmatch(number) else self.row + 1
+            self.column = -1
+            if attributes.get("hidden") in ("1", "true"):
+                self.scan.hidden_rows.add(self.row)
+        elif tag == "col" and attributes.get("hidden") in ("1", "true"):
+            first, last = int(attributes.get("min", 1)), int(attributes.get("max", 1))
+            self.scan.hidden_columns.update(range(first - 1, min(last, 16384)))
+
+    def characters(self, text: str) -> None:
+        if self.in_value:
+            self.holds = True
+            if self.kind == "e":
+                self.text.append(text)
+
+    def end(self, tag: str) -> None:
+        if ":" in tag:
+            tag = tag.rpartition(":")[2]
+        if tag == "c":
+            if not self.holds and not self.formula:
+                return
+            scan = self.scan
+            scan.last_row = max(scan.last_row, self.row)
+            scan.last_column = max(scan.last_column, self.column)
+            if self.kind == "e":
+                scan.marks[self.row, self.column] = ErrorCell("".join(self.text).strip() or "#ERROR")
+            elif self.formula and not self.holds and self.kind != "str":
+                scan.marks[self.row, self.column] = NO_STORED_VALUE
+        elif tag in ("v", "is"):
+            self.in_value = False
+
+
+def _scan(data: bytes) -> SheetScan:
+    cells = _Cells()
+    parser = _parser()
+    parser.StartElementHandler = cells.start
+    parser.EndElementHandler = cells.end
+    parser.CharacterDataHandler = cells.characters
+    parser.Parse(data, True)
+    return cells.scan
