@@ -171,6 +171,11 @@ QPushButton#plain { border: 1px solid $hairline; }
 QPushButton#plain:hover, QPushButton#plain:focus { border: 1px solid $text; }
 QPushButton#first { background: $text; color: $ground; font-weight: 600; }
 QPushButton#first:focus { border: 2px solid $quiet; }
+QPushButton#left { text-align: left; padding: 4px 0; }
+QPushButton#set, QPushButton#order { color: $quiet; padding: 4px 6px; }
+QPushButton#set:checked { color: $text; border-bottom: 1px solid $text; border-radius: 0; }
+QLabel#page { background: #ffffff; border: 1px solid $hairline; }
+QListView#found { background: $raised; }
 QToolButton#quiet { color: $quiet; }
 QToolButton::menu-indicator { image: none; }
 QMenu { background: $raised; border: 1px solid $hairline; padding: 6px 0; }

@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QPoint, QRect, Qt, Signal
-from PySide6.QtGui import QPainter, QPaintEvent
+from PySide6.QtCore import QPoint, QRect, Qt, QTimer, Signal
+from PySide6.QtGui import QCloseEvent, QPainter, QPaintEvent
 from PySide6.QtWidgets import (
     QFrame,
     QHBoxLayout,
@@ -80,9 +80,10 @@ class _Zones(QSplitter):
 
 
 class Frame(QWidget):
-    """The window before the mill is in it. painted: after the first paint, once."""
+    """The window before the mill is in it. painted: after the first paint, once. closing: the person closes it."""
 
     painted = Signal()
+    closing = Signal()
 
     def __init__(self) -> None:
         super().__init__()
@@ -102,7 +103,7 @@ class Frame(QWidget):
         self.middle = QStackedWidget()
         self.middle.addWidget(self.bench)
         self.footer = Footer()
-        column = QVBoxLayout(self)
+        column = self._column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(0)
         for part in (self.header, Rule()):
@@ -113,6 +114,14 @@ class Frame(QWidget):
         self.wide: int | None = None
         self._is_painted = False
         self.resize(1440, 900)
+
+    def put_strip(self, strip: QWidget) -> None:
+        """Put the strip of messages under the header."""
+        self._column.insertWidget(2, strip)
+
+    def closeEvent(self, event: QCloseEvent) -> None:
+        self.closing.emit()
+        super().closeEvent(event)
 
     def widen(self, place: int | None) -> None:
         """Give the zone at a place the whole window; None shows all three."""
@@ -125,7 +134,5 @@ class Frame(QWidget):
         super().paintEvent(event)
         if not self._is_painted:
             self._is_painted = True
-            from PySide6.QtCore import QTimer
-
             # After this event, when all children have painted too.
             QTimer.singleShot(0, self.painted.emit)

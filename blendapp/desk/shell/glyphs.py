@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from PySide6.QtCore import QPointF, QRectF, QSize, Qt
-from PySide6.QtGui import QPainter, QPainterPath, QPaintEvent, QPen
+from PySide6.QtGui import QPainter, QPainterPath, QPaintEvent, QPen, QTransform
 from PySide6.QtWidgets import QStyle, QStyleOptionToolButton, QStylePainter, QToolButton, QWidget
 
 from blendapp.desk.theme import tokens
@@ -32,8 +32,6 @@ def _turn(mirrored: bool) -> QPainterPath:
     path.lineTo(6, 13.5)
     path.addPath(_lines((6, 3.5), (3, 6.5), (6, 9.5)))
     if mirrored:
-        from PySide6.QtGui import QTransform
-
         return QTransform(-1, 0, 0, 1, 16, 0).map(path)
     return path
 
@@ -94,7 +92,9 @@ class GlyphButton(QToolButton):
         painter = QStylePainter(self)
         painter.drawComplexControl(QStyle.ComplexControl.CC_ToolButton, option)
         name = "text" if self.isEnabled() and (self.underMouse() or self.hasFocus()) else "quiet"
-        pen = QPen(tokens().colour(name), 1.5, Qt.PenStyle.SolidLine, Qt.PenCapStyle.RoundCap, Qt.PenJoinStyle.RoundJoin)
+        pen = QPen(tokens().colour(name), 1.5)
+        pen.setCapStyle(Qt.PenCapStyle.RoundCap)
+        pen.setJoinStyle(Qt.PenJoinStyle.RoundJoin)
         if not self.isEnabled():
             painter.setOpacity(0.45)
         draw_glyph(painter, self.glyph, QRectF(self.rect()), pen)

@@ -2,10 +2,21 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QSize, Qt
-from PySide6.QtWidgets import QHBoxLayout, QLabel, QSizePolicy, QToolButton, QVBoxLayout, QWidget
+from PySide6.QtCore import QRectF, QSize, Qt
+from PySide6.QtGui import QPen
+from PySide6.QtWidgets import (
+    QHBoxLayout,
+    QLabel,
+    QSizePolicy,
+    QStyle,
+    QStyleOptionToolButton,
+    QStylePainter,
+    QToolButton,
+    QVBoxLayout,
+    QWidget,
+)
 
-from blendapp.desk.shell.glyphs import GlyphButton
+from blendapp.desk.shell.glyphs import GlyphButton, draw_glyph
 from blendapp.desk.shell.zone import Elided
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, large_font, tokens
 from blendapp.domain.wording import _
@@ -40,12 +51,6 @@ class FormulaButton(QToolButton):
         return QSize(80, 40)
 
     def paintEvent(self, _event: object) -> None:
-        from PySide6.QtCore import QRectF
-        from PySide6.QtGui import QPen
-        from PySide6.QtWidgets import QStyle, QStyleOptionToolButton, QStylePainter
-
-        from blendapp.desk.shell.glyphs import draw_glyph
-
         option = QStyleOptionToolButton()
         self.initStyleOption(option)
         option.text = ""

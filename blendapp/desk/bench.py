@@ -1,0 +1,202 @@
+"""The bench: fills the frame with its three zones and joins them to the work. Made once the slow rooms are there."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+from PySide6.QtCore import QObject, QSettings
+from PySide6.QtWidgets import QMenu, QWidget
+
+from blendapp.desk.commands import Commands
+from blendapp.desk.files import Files
+from blendapp.desk.finder.ask import Ask
+from blendapp.desk.finder.panel import Finder
+from blendapp.desk.finder.search import Found
+from blendapp.desk.formulas import Records
+from blendapp.desk.have.pane import HavePane
+from blendapp.desk.have.reading import NUTRIENT
+from blendapp.desk.head import Head
+from blendapp.desk.listing import command_list
+from blendapp.desk.meet.pane import MeetPane
+from blendapp.desk.mix.pane import MixPane
+from blendapp.desk.prices.pane import PricesPane
+from blendapp.desk.sheet.pane import SheetPane
+from blendapp.desk.shell.frame import Frame
+from blendapp.desk.strip import Strip
+from blendapp.desk.welcome import Welcome
+from blendapp.desk.work import Work
+from blendapp.domain.formulas import LimitKind
+from blendapp.domain.wording import _
+
+
+class Bench(QObject):
+    """One window's work. frame: what was painted first; settings: where recent files are remembered."""
+
+    def __init__(self, frame: Frame, settings: QSettings | None = None) -> None:
+        super().__init__(frame)
+        self.frame = frame
+        self.work = Work(self)
+        self.settings = settings or QSettings("blendapp", "blendapp")
+        self.strip = Strip()
+        frame.put_strip(self.strip)
+        self.files = Files(self.work, frame, self.settings)
+        self.finder = Finder(frame)
+        self.ask = Ask(frame)
+        self.records = Records(self.work, self.ask)
+        self.have = HavePane(self.work, frame.have)
+        self.meet = MeetPane(self.work, frame.meet)
+        self.mix = MixPane(self.work, frame.mix)
+        for zone, pane in zip(frame.zones, (self.have, self.meet, self.mix), strict=True):
+            zone.put(pane)
+        self.head = Head(self.work, frame)
+        self.welcome = Welcome(self.files)
+        self.prices = PricesPane(self.work)
+        self.sheet = SheetPane(self.work)
+        for page in (self.welcome, self.prices, self.sheet):
+            frame.middle.addWidget(page)
+        self.commands = Commands(frame, command_list(self))
+        self.menu = QMenu(frame)
+        self.recent_menu = QMenu(_("Opened last"), self.menu)
+        self._connect()
+
+    def _connect(self) -> None:
+        header = self.frame.header
+        header.undo.clicked.connect(self.work.undo)
+        header.redo.clicked.connect(self.work.redo)
+        header.find.clicked.connect(self.find_anything)
+        header.formula.clicked.connect(self.choose_formula)
+        header.menu.clicked.connect(self.open_menu)
+        self.have.add.clicked.connect(self.have.add_ingredient)
+        self.have.column_asked.connect(self._offer_column)
+        self.mix.limit_wanted.connect(lambda name: self.meet.adding.begin(LimitKind.INGREDIENT, name))
+        self.work.said.connect(self.strip.say)
+        self.files.said.connect(self.strip.say)
+        self.work.opened.connect(self._opened)
+        for page in (self.prices, self.sheet):
+            page.closed.connect(self.to_bench)
+            page.said.connect(self.strip.say)
+        self.frame.closing.connect(self.close)
+
+    # -- beginning and ending
+
+    def start(self, path: str | None) -> None:
+        """Open a mill file; without one, the last one that was open, else say that there is none."""
+        recent = self.files.recent()
+        if path is not None:
+            self.files.open_path(Path(path))
+        elif recent:
+            self.files.open_path(recent[0])
+        if not self.work.is_open:
+            self._opened()
+            self.head.say_all()
+            self.welcome.buttons[0].setFocus()
+        else:
+            self.have.table.setFocus()
+
+    def close(self) -> None:
+        """Let the mill file go."""
+        self.finder.hide()
+        self.work.close()
+
+    def _opened(self) -> None:
+        self.strip.clear()
+        self.to_bench()
+
+    # -- pages
+
+    def to_bench(self) -> None:
+        """Show the three zones, or the welcome without a mill."""
+        self.frame.middle.setCurrentWidget(self.frame.bench if self.work.is_open else self.welcome)
+        if self.work.is_open and self.frame.isVisible():
+            self.have.table.setFocus()
+
+    def show_page(self, page: QWidget) -> None:
+        """Show a page in place of the three zones; header and caution stay."""
+        self.frame.middle.setCurrentWidget(page)
+        page.setFocus()
+
+    def bring_in_prices(self, path: Path | None = None) -> None:
+        """Read a price list and show what would become of each row."""
+        chosen = path or self.files.ask_price_list()
+        if chosen is not None and self.prices.read(chosen):
+            self.show_page(self.prices)
+
+    def show_sheet(self) -> None:
+        """Show the batch sheet of the chosen formula as it would be printed."""
+        if self.work.formula_id is not None:
+            self.sheet.begin()
+            self.show_page(self.sheet)
+
+    def widen(self, place: int) -> None:
+        """Give a zone the whole window, or give it back, and put the keyboard there."""
+        self.to_bench()
+        self.frame.widen(None if self.frame.wide == place else place)
+        self.go_to_zone(place)
+
+    def go_to_zone(self, place: int) -> None:
+        """Put the keyboard into a zone."""
+        self.frame.middle.setCurrentWidget(self.frame.bench)
+        if self.frame.wide is not None and self.frame.wide != place:
+            self.frame.widen(place)
+        (self.have, self.meet, self.mix)[place].table.setFocus()
+
+    # -- finding
+
+    def open_menu(self) -> None:
+        """Open the menu under its button."""
+        self._fill_recent()
+        self.commands.fill(self.menu, {"open": self.recent_menu})
+        button = self.frame.header.menu
+        self.menu.popup(button.mapToGlobal(button.rect().bottomLeft()))
+
+    def _fill_recent(self) -> None:
+        self.recent_menu.clear()
+        for path in self.files.recent():
+            self.recent_menu.addAction(path.stem, lambda path=path: self.files.open_path(path)).setToolTip(str(path))
+        self.recent_menu.setEnabled(bool(self.files.recent()))
+
+    def choose_formula(self) -> None:
+        """Offer the formulas under the formula's name."""
+        if self.work.is_open:
+            things = [*self.records.formulas(), *(thing for thing in self.commands.found() if "ormula" in thing.words)]
+            self.finder.open(things, _("Formula"), self.frame.header.formula)
+
+    def find_anything(self) -> None:
+        """Offer every record and command."""
+        self.finder.open(self.things(), _("Ingredient, nutrient, limit, formula, or what to do"))
+
+    def things(self) -> list[Found]:
+        """Everything that can be found now."""
+        library = self.work.library
+        things = self.records.formulas()
+        things += [
+            Found(one.name, _("ingredient"), lambda key=one.id: self.to_ingredient(key)) for one in library.ingredients
+        ]
+        if self.work.formula is not None:
+            things += self.meet.found()
+        things += [
+            Found(one.name, _("nutrient"), lambda key=one.id: self.to_nutrient(key)) for one in library.nutrients
+        ]
+        return things + self.commands.found()
+
+    def to_ingredient(self, ingredient_id: int) -> None:
+        """Show an ingredient in the first zone."""
+        self.have.find.clear()
+        self.go_to_zone(0)
+        self.have.table.go_to(ingredient_id, "name")
+
+    def to_nutrient(self, nutrient_id: int) -> None:
+        """Show a nutrient's column in the first zone."""
+        self.have.show_set("composition")
+        self.go_to_zone(0)
+        if self.have.model.owners:
+            self.have.table.go_to(self.have.model.owners[0], f"{NUTRIENT}{nutrient_id}")
+
+    def _offer_column(self, nutrient_id: int, menu: QMenu) -> None:
+        nutrient = self.work.library.nutrient(nutrient_id)
+        menu.addAction(_("Rename {name}").format(name=nutrient.name), lambda: self.records.change_nutrient(nutrient_id))
+        turn = menu.addAction(_("Never negative"), lambda: self.records.turn_never_negative(nutrient_id))
+        turn.setCheckable(True)
+        turn.setChecked(nutrient.never_negative)
+        menu.addAction(_("Remove {name}").format(name=nutrient.name), lambda: self.records.remove_nutrient(nutrient_id))
+        menu.addAction(_("Add a nutrient…"), self.records.new_nutrient)

@@ -1,0 +1,1 @@
+"""Finding records and commands by typing."""

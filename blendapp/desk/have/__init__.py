@@ -1,0 +1,1 @@
+"""What we have: the ingredients as a table for work on data."""

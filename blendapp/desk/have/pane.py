@@ -1,0 +1,273 @@
+"""The body of the first zone: find, column sets, the table, and what to do with a row."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+from PySide6.QtCore import QModelIndex, QPoint, Qt, Signal
+from PySide6.QtWidgets import QButtonGroup, QHBoxLayout, QLineEdit, QMenu, QPushButton, QVBoxLayout, QWidget
+
+from blendapp.desk.have.model import HaveModel, column_sets
+from blendapp.desk.have.reading import NUTRIENT
+from blendapp.desk.rail.geometry import End
+from blendapp.desk.shell.glyphs import GlyphButton
+from blendapp.desk.shell.zone import Zone
+from blendapp.desk.table.frozen import FrozenTable
+from blendapp.desk.theme import GAP_PX
+from blendapp.desk.work import Work
+from blendapp.domain.problems import Refused
+from blendapp.domain.quotes import Quote
+from blendapp.domain.records import added
+from blendapp.domain.wording import _, plural
+from blendapp.services import edits
+from blendapp.services.mill import Edit
+
+
+class HavePane(QWidget):
+    """The ingredients of the mill. column_asked: the menu of a nutrient's column is wanted, to be filled."""
+
+    column_asked = Signal(int, QMenu)
+
+    def __init__(self, work: Work, zone: Zone) -> None:
+        super().__init__()
+        self.work = work
+        self.zone = zone
+        self.model = HaveModel(work, self)
+        self.table = FrozenTable(self.model, self)
+        self.table.setAccessibleName(_("Ingredients"))
+        self.find = QLineEdit()
+        self.find.setPlaceholderText(_("Show only…"))
+        self.find.setAccessibleName(_("Show only ingredients that hold this text"))
+        self.find.setClearButtonEnabled(True)
+        self.find.textChanged.connect(self._filter)
+        self.add = GlyphButton("add", _("Add an ingredient"))
+        zone.tools.addWidget(self.add)
+        row = QHBoxLayout()
+        row.setSpacing(2)
+        row.addWidget(self.find, 1)
+        row.addSpacing(GAP_PX)
+        self.sets = QButtonGroup(self)
+        self._buttons: dict[str, QPushButton] = {}
+        for key, words in column_sets().items():
+            button = QPushButton(words)
+            button.setCheckable(True)
+            button.setObjectName("set")
+            button.clicked.connect(lambda _checked, key=key: self.show_set(key))
+            self.sets.addButton(button)
+            self._buttons[key] = button
+            row.addWidget(button)
+        self._buttons[self.model.column_set].setChecked(True)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(GAP_PX)
+        column.addLayout(row)
+        column.addWidget(self.table, 1)
+        self.setFocusProxy(self.table)
+        self._connect()
+
+    def _connect(self) -> None:
+        work, table = self.work, self.table
+        work.opened.connect(self.model.rebuild)
+        work.edited.connect(self._edited)
+        work.chosen.connect(self._chosen)
+        work.answered.connect(self._answered)
+        table.pasted.connect(self._paste)
+        table.cleared.connect(self._clear)
+        table.grip.proposed.connect(self._propose)
+        table.grip.given.connect(self._give)
+        table.grip.taken_back.connect(self._take_back)
+        table.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
+        table.customContextMenuRequested.connect(self._offer)
+        for view in (table, table.names):
+            view.horizontalHeader().setSectionsClickable(True)
+            view.horizontalHeader().sectionClicked.connect(self._sort)
+        head = table.horizontalHeader()
+        head.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
+        head.customContextMenuRequested.connect(self._offer_column)
+        table.names.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
+        table.names.customContextMenuRequested.connect(self._offer)
+
+    # -- what is shown
+
+    def show_set(self, key: str) -> None:
+        """Show another set of columns."""
+        self.model.column_set = key
+        self._buttons[key].setChecked(True)
+        self.model.rebuild()
+
+    def _filter(self, text: str) -> None:
+        self.model.filter_text = text
+        self.model.rebuild()
+
+    def _sort(self, section: int) -> None:
+        key = self.model.headings[section].key
+        if self.model.sort_key != key:
+            self.model.sort_key, self.model.sort_down = key, False
+        elif not self.model.sort_down:
+            self.model.sort_down = True
+        else:
+            self.model.sort_key = None
+        self.model.rebuild()
+
+    def _edited(self, edit: Edit) -> None:
+        if edit.touches("ingredient", "nutrient", "mill", "scale", "formula"):
+            self._keep(self.model.rebuild)
+        else:
+            self.model.refresh()
+
+    def _keep(self, rebuild: Callable[[], None]) -> None:
+        """Rebuild with the keyboard on the same cell as before."""
+        index = self.table.currentIndex()
+        kept = (self.model.owner(index), self.model.key(index)) if index.isValid() else None
+        rebuild()
+        if kept is not None and not self.table.currentIndex().isValid():
+            at = self.model.cell(*kept)
+            if at.isValid():
+                self.table.setCurrentIndex(at)
+
+    def _chosen(self) -> None:
+        self._say()
+        self.model.refresh()
+
+    def _answered(self) -> None:
+        self._say()
+        if not self.work.trying or self.work.result is not self.work.stored_result:
+            self.model.refresh()
+
+    def _say(self) -> None:
+        count = len(self.work.library.ingredients)
+        if self.work.formula is None:
+            self.zone.remark.say(plural("{count} ingredient", "{count} ingredients", count).format(count=count))
+        else:
+            text = _("{admitted} admitted of {count}")
+            self.zone.remark.say(text.format(admitted=len(self.work.admitted_ids), count=count))
+
+    # -- blocks
+
+    def _paste(self, cells: list[tuple[int, str, str]], outside: list[str]) -> None:
+        usable = [cell for cell in cells if self.model.can_write(cell[1])]
+        skipped = [cell for cell in cells if not self.model.can_write(cell[1]) and cell[2].strip()]
+        self._write_block(usable, _("Paste"), outside + [cell[2].strip() for cell in skipped])
+
+    def _clear(self, cells: list[tuple[int, str]]) -> None:
+        names = [cell for cell in cells if cell[1] == "name"]
+        usable = [(owner, key, "") for owner, key in cells if key != "name" and self.model.can_write(key)]
+        if usable:
+            self._write_block(usable, _("Clear cells"), [])
+        elif len(names) == 1:
+            self.remove(names[0][0])
+
+    def _write_block(self, cells: list[tuple[int, str, str]], what: str, outside: list[str]) -> None:
+        try:
+            bad = self.model.write_block(cells, what)
+        except Refused as refusal:
+            self.work.said.emit(" ".join(problem.text for problem in refusal.problems), [])
+            return
+        for at, (owner, key, text) in enumerate(cells):
+            if at in bad:
+                self.model.refuse(owner, key, text, bad[at])
+            else:
+                self.model.forgive(owner, key)
+        if bad or outside:
+            self._tell(cells, bad, outside)
+
+    def _tell(self, cells: list[tuple[int, str, str]], bad: dict[int, str], outside: list[str]) -> None:
+        headings = {heading.key: heading.words for heading in self.model.headings}
+        lines = [
+            _("{ingredient}, {column}, “{text}”: {fault}").format(
+                ingredient=self.work.library.ingredient(cells[at][0]).name, column=headings[cells[at][1]],
+                text=cells[at][2], fault=sentence,
+            )
+            for at, sentence in bad.items()
+        ]
+        lines += [_("“{text}” fell where nothing is typed in.").format(text=text) for text in outside]
+        taken = len(cells) - len(bad)
+        words = plural("{taken} of {all} cell was taken; the others stand below.",
+                       "{taken} of {all} cells were taken; the others stand below.", taken)
+        self.work.said.emit(words.format(taken=taken, all=len(cells) + len(outside)), lines)
+
+    # -- a price by hand
+
+    def _propose(self, owner: tuple[int, str], _end: End, value: float) -> None:
+        self.model.try_price(owner[0], value)
+        on = self.work.on
+        trial = Quote(-1, owner[0], value, "t", valid_from=on, recorded=on)
+        old = self.work.library.quote_in_force(owner[0], on)
+        if old is not None:
+            # A quote of the same day would win by its identifier; the trial must stand above it.
+            trial = Quote(1 << 60, owner[0], value, "t", valid_from=max(on, old.valid_from or on), recorded=on)
+        self.work.try_changes([added(trial)])
+
+    def _give(self, owner: tuple[int, str], _end: End, value: float) -> None:
+        self.model.try_price(owner[0], None)
+        try:
+            self.work.do(lambda mill: edits.set_price_per_t(mill, owner[0], value, self.work.on))
+        except (Refused, ValueError) as fault:
+            self.work.end_trial()
+            self.work.said.emit(str(fault), [])
+
+    def _take_back(self, owner: tuple[int, str]) -> None:
+        self.model.try_price(owner[0], None)
+        self.work.end_trial()
+
+    # -- rows
+
+    def _offer(self, point: QPoint) -> None:
+        view = self.sender() if isinstance(self.sender(), QWidget) else self.table
+        index: QModelIndex = view.indexAt(point)  # type: ignore[union-attr]
+        if not index.isValid():
+            return
+        menu = self.row_menu(self.model.owner(index))
+        menu.popup(view.viewport().mapToGlobal(point))  # type: ignore[union-attr]
+
+    def _offer_column(self, point: QPoint) -> None:
+        section = self.table.horizontalHeader().logicalIndexAt(point)
+        if not 0 <= section < len(self.model.headings):
+            return
+        key = self.model.headings[section].key
+        if key.startswith(NUTRIENT):
+            menu = QMenu(self)
+            menu.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+            self.column_asked.emit(int(key.removeprefix(NUTRIENT)), menu)
+            menu.popup(self.table.horizontalHeader().mapToGlobal(point))
+
+    def row_menu(self, owner: int) -> QMenu:
+        """What can be done with an ingredient."""
+        menu = QMenu(self)
+        menu.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        name = self.work.library.ingredient(owner).name
+        if self.work.formula_id is not None and owner not in self.work.admitted_ids:
+            menu.addAction(_("Admit {name} to this formula").format(name=name), lambda: self.admit(owner))
+        menu.addAction(_("Rename"), lambda: self.rename(owner))
+        menu.addAction(_("Remove {name}").format(name=name), lambda: self.remove(owner))
+        return menu
+
+    def admit(self, owner: int) -> None:
+        """Admit an ingredient to the chosen formula without bounds."""
+        formula_id = self.work.formula_id
+        if formula_id is not None:
+            self._try(lambda: self.work.do(lambda mill: edits.admit(mill, formula_id, owner)))
+
+    def rename(self, owner: int) -> None:
+        """Open the name of an ingredient for typing."""
+        if self.table.go_to(owner, "name"):
+            self.table.edit(self.table.currentIndex())
+
+    def remove(self, owner: int) -> None:
+        """Remove an ingredient; undo brings it back whole."""
+        self._try(lambda: self.work.do(lambda mill: edits.remove_ingredient(mill, owner)))
+
+    def add_ingredient(self) -> None:
+        """Add an ingredient under a free name and open the name for typing."""
+        name = edits.free_name(self.work.library, "ingredient", _("New ingredient"))
+        self.find.clear()
+        edit = self._try(lambda: self.work.do(lambda mill: edits.add_ingredient(mill, name)))
+        if isinstance(edit, Edit) and edit.changes:
+            self.rename(edit.changes[0].id)
+
+    def _try(self, job: Callable[[], object]) -> object:
+        try:
+            return job()
+        except (Refused, ValueError) as fault:
+            self.work.said.emit(str(fault), [])
+            return None

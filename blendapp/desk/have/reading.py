@@ -1,0 +1,125 @@
+"""Typed texts of the ingredient table as changes of the mill: each column's way of being read. No Qt."""
+
+from __future__ import annotations
+
+import datetime
+import re
+from collections.abc import Callable
+
+from blendapp.domain import units
+from blendapp.domain.fields import field_of
+from blendapp.domain.ingredients import Basis, Ingredient, Tag
+from blendapp.domain.names import fold
+from blendapp.domain.notation import notation
+from blendapp.domain.records import Change
+from blendapp.domain.wording import _
+from blendapp.services import edits
+from blendapp.services.mill import Mill
+
+NUTRIENT = "nutrient "
+
+_NUMBERS = ("dry_matter_percent", "stock_kg", "density_kg_per_l", "bushel_lb")
+_DRY = re.compile(r"(.*?)\s*(dm|dry matter)$", re.IGNORECASE)
+_FED = re.compile(r"(.*?)\s*(as fed)$", re.IGNORECASE)
+
+
+def changes_of(mill: Mill, owner: int, key: str, text: str, on: datetime.date) -> list[Change]:
+    """The changes that a text typed into a cell asks for. Raises ValueError or Refused with the sentence."""
+    ingredient = mill.library.ingredient(owner)
+    plain = text.strip()
+    if key.startswith(NUTRIENT):
+        return _value(mill, owner, int(key.removeprefix(NUTRIENT)), plain)
+    if key in ("price", "quoted"):
+        return _price(mill, ingredient, plain, on, per="t" if key == "price" else None)
+    if key in _NUMBERS:
+        value = notation().read(plain) if plain else None
+        sentence = field_of("ingredient", key).fault(value)
+        if sentence:
+            raise ValueError(sentence)
+        return edits.field_changes(mill, ingredient, **{key: value})
+    return edits.field_changes(mill, ingredient, **{key: _READ.get(key, _text)(mill, plain)})
+
+
+def _text(_mill: Mill, text: str) -> str:
+    return text
+
+
+def _price(mill: Mill, ingredient: Ingredient, text: str, on: datetime.date, per: str | None) -> list[Change]:
+    if not text:
+        return edits.price_changes(mill, ingredient.id, None, on)
+    amount, stated = read_price(text)
+    old = mill.library.quote_in_force(ingredient.id, on)
+    chosen = stated or per or (old.per if old is not None else "t")
+    if chosen == units.BUSHEL:
+        units.price_per_t(amount, chosen, ingredient.bushel_lb)
+    return edits.price_changes(mill, ingredient.id, amount, on, per=chosen, entered=text)
+
+
+def read_price(text: str) -> tuple[float, str | None]:
+    """A price and the mass it is per: "452", "18.20 / cwt", "4.10 per bu". Raises ValueError with the mend."""
+    head, slash, tail = text.partition("/")
+    if not slash:
+        head, slash, tail = text.partition(" per ")
+    per = " ".join(tail.split()) if slash else None
+    if per is not None and per not in units.PRICE_PER:
+        raise ValueError(
+            _("A price can be per {masses}; “{per}” is none of them.").format(masses=", ".join(units.PRICE_PER), per=per)
+        )
+    return notation().read(head), per
+
+
+def _value(mill: Mill, ingredient_id: int, nutrient_id: int, text: str) -> list[Change]:
+    if not text:
+        return edits.value_changes(mill, ingredient_id, nutrient_id, None)
+    basis: Basis | None = None
+    for pattern, meant in ((_DRY, Basis.DRY_MATTER), (_FED, Basis.AS_FED)):
+        found = pattern.fullmatch(text)
+        if found:
+            text, basis = found.group(1), meant
+    unit = mill.library.nutrient(nutrient_id).unit
+    return edits.value_changes(mill, ingredient_id, nutrient_id, notation().read(text), unit=unit, basis=basis)
+
+
+def _scale(mill: Mill, text: str) -> int | None:
+    if not text:
+        return None
+    scale = mill.library.named("scale", text)
+    if scale is None:
+        names = ", ".join(one.name for one in mill.library.scales) or _("none yet")
+        raise ValueError(_("There is no scale “{name}”; the mill's scales are {names}.").format(name=text, names=names))
+    return int(scale.id)
+
+
+def _formula(mill: Mill, text: str) -> int | None:
+    if not text:
+        return None
+    formula = mill.library.named("formula", text)
+    if formula is None:
+        raise ValueError(_("There is no formula “{name}”; choose one of the mill's own.").format(name=text))
+    return int(formula.id)
+
+
+def _basis(_mill: Mill, text: str) -> Basis:
+    wanted = fold(text) if text else Basis.AS_FED
+    for basis in Basis:
+        if wanted == basis:
+            return basis
+    raise ValueError(_("The basis is as fed or dry matter; “{text}” is neither.").format(text=text))
+
+
+def _tags(_mill: Mill, text: str) -> tuple[Tag, ...]:
+    found: list[Tag] = []
+    for part in (fold(part) for part in text.split(",")):
+        if not part:
+            continue
+        if part not in set(Tag):
+            raise ValueError(
+                _("“{tag}” is no tag; use {tags}, joined by commas.").format(tag=part, tags=", ".join(Tag))
+            )
+        found.append(Tag(part))
+    return tuple(found)
+
+
+_READ: dict[str, Callable[[Mill, str], object]] = {
+    "scale_id": _scale, "made_by_formula_id": _formula, "basis": _basis, "tags": _tags,
+}

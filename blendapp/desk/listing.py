@@ -1,0 +1,112 @@
+"""The list of commands of the bench."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from PySide6.QtWidgets import QApplication
+
+from blendapp.desk.commands import Command
+from blendapp.desk.theme import dress
+from blendapp.domain.wording import _
+
+if TYPE_CHECKING:
+    from blendapp.desk.bench import Bench
+
+
+def command_list(bench: Bench) -> list[Command]:
+    """Every command, in the order of the menu."""
+    return [*_file(bench), *_edit(bench), *_formula(bench), *_paper(bench), *_view(bench)]
+
+
+def _file(bench: Bench) -> list[Command]:
+    files = bench.files
+
+    def is_open() -> bool:
+        return bench.work.is_open
+
+    def writable() -> bool:
+        return bench.work.is_open and bench.work.mill.writable
+
+    return [
+        Command("new", _("New mill file…"), "mill", files.new, "Ctrl+N"),
+        Command("new from", _("New mill file from a workbook…"), "mill", files.new_from),
+        Command("open", _("Open a mill file…"), "mill", files.open, "Ctrl+O"),
+        Command("copy file", _("Save a copy as…"), "mill", files.save_copy, "Ctrl+Shift+S", is_open),
+        Command("prices", _("Bring in a price list…"), "exchange", bench.bring_in_prices, "Ctrl+I", writable),
+        Command("import", _("Bring in a workbook…"), "exchange", files.import_workbook, "", writable),
+        Command("export", _("Write the workbook…"), "exchange", files.export_workbook, "Ctrl+E", is_open),
+    ]
+
+
+def _edit(bench: Bench) -> list[Command]:
+    work = bench.work
+
+    def writable() -> bool:
+        return work.is_open and work.mill.writable
+
+    return [
+        Command("undo", _("Undo"), "edit", work.undo, "Ctrl+Z", lambda: work.is_open and work.mill.undo_text is not None),
+        Command("redo", _("Redo"), "edit", work.redo, "Ctrl+Shift+Z | Ctrl+Y",
+                lambda: work.is_open and work.mill.redo_text is not None),
+        Command("find", _("Find anything"), "edit", bench.find_anything, "Ctrl+K", in_menu=False),
+        Command("filter", _("Show only some ingredients"), "edit", bench.have.find.setFocus, "Ctrl+F",
+                lambda: work.is_open, False),
+        Command("add ingredient", _("Add an ingredient"), "library", bench.have.add_ingredient, "", writable),
+        Command("add nutrient", _("Add a nutrient…"), "library", bench.records.new_nutrient, "", writable),
+    ]
+
+
+def _formula(bench: Bench) -> list[Command]:
+    work, records = bench.work, bench.records
+
+    def chosen() -> bool:
+        return work.formula is not None and work.mill.writable
+
+    return [
+        Command("choose formula", _("Choose a formula"), "formula", bench.choose_formula, "Ctrl+L",
+                lambda: work.is_open, False),
+        Command("new formula", _("New formula…"), "formula", records.new_formula, "",
+                lambda: work.is_open and work.mill.writable),
+        Command("copy formula", _("Copy this formula…"), "formula", records.copy_formula, "", chosen),
+        Command("rename formula", _("Rename this formula…"), "formula", records.rename_formula, "", chosen),
+        Command("about formula", _("What this formula is for"), "formula", bench.meet.about.begin, "", chosen),
+        Command("remove formula", _("Remove this formula"), "formula", records.remove_formula, "", chosen),
+        Command("add limit", _("Add a limit to this formula"), "formula", bench.meet.start_adding, "Ctrl+M", chosen),
+    ]
+
+
+def _paper(bench: Bench) -> list[Command]:
+    return [
+        Command("sheet", _("Batch sheet…"), "paper", bench.show_sheet, "Ctrl+P", lambda: bench.work.formula is not None),
+    ]
+
+
+def _view(bench: Bench) -> list[Command]:
+    titles = [zone.title.text() for zone in bench.frame.zones]
+
+    def set_scheme(dark: bool | None) -> None:
+        app = QApplication.instance()
+        assert isinstance(app, QApplication)
+        dress(app, dark=dark)
+        bench.settings.setValue("dark", "" if dark is None else "1" if dark else "0")
+
+    def is_open() -> bool:
+        return bench.work.is_open
+
+    commands = [
+        Command(f"zone {at}", _("Go to “{zone}”").format(zone=title), "view",
+                lambda at=at: bench.go_to_zone(at), f"Ctrl+{at + 1}", is_open, False)
+        for at, title in enumerate(titles)
+    ]
+    commands += [
+        Command(f"widen {at}", _("“{zone}” in the whole window").format(zone=title), "view",
+                lambda at=at: bench.widen(at), f"Ctrl+Shift+{at + 1}", is_open, False)
+        for at, title in enumerate(titles)
+    ]
+    return [
+        *commands,
+        Command("light", _("Light"), "view", lambda: set_scheme(False)),
+        Command("dark", _("Dark"), "view", lambda: set_scheme(True)),
+        Command("system scheme", _("Light or dark as the system"), "view", lambda: set_scheme(None)),
+    ]

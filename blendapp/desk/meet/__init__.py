@@ -1,0 +1,1 @@
+"""What it must meet: the limits of the chosen formula as one list of rails."""

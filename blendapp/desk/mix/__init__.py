@@ -1,0 +1,1 @@
+"""What to mix: the answer, or why there is none."""

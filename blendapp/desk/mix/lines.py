@@ -1,0 +1,257 @@
+"""The answer as lines, top to bottom: what stands in the third zone. No Qt."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from enum import Enum
+
+from blendapp.desk.table.look import fitting_decimals
+from blendapp.domain.figures import decimals_of, write_measure
+from blendapp.domain.formulas import Amounts
+from blendapp.domain.notation import notation
+from blendapp.domain.results import Conflict, IngredientResult, NutrientResult, Repair, Result, Side, Status
+from blendapp.domain.wording import _, plural
+
+
+class Part(Enum):
+    """What a line is."""
+
+    INGREDIENT = "ingredient"
+    RAIL = "rail"
+    TOTAL = "total"
+    HEADING = "heading"
+    PAIR = "pair"
+    FOLD = "fold"
+    SENTENCE = "sentence"
+    CAUTION = "caution"
+    ACTION = "action"
+
+
+@dataclass(frozen=True)
+class Line:
+    """One line. text: on its left; amount, cost: the two columns at its right; bar: share of the longest bar.
+
+    ingredient_id: of an ingredient or its rail. fold: what a fold opens. repair: what an action applies. lack: decimals
+    that the amount has less than the longest one.
+    """
+
+    part: Part
+    text: str = ""
+    amount: str = ""
+    cost: str = ""
+    bar: float | None = None
+    hint: str = ""
+    ingredient_id: int | None = None
+    fold: str = ""
+    repair: Repair | None = None
+    lack: int = 0
+
+
+NUTRIENTS, LEFT_OUT = "nutrients", "left out"
+CAUTIONS_SHOWN = 12
+
+
+def lines_of(result: Result, opened: frozenset[str], opened_ids: frozenset[int]) -> list[Line]:
+    """Every line of a result. opened: folds that are open; opened_ids: ingredients whose rail is shown.
+
+    Without an answer there is no figure that could be read as one.
+    """
+    lines: list[Line] = []
+    if result.has_answer:
+        lines += _mix(result, opened_ids)
+        lines += _left_out(result, opened)
+    else:
+        lines += _no_answer(result)
+    lines += _unpriced(result)
+    lines += _unknown(result)
+    lines += [Line(Part.CAUTION, text) for text in result.cautions[:CAUTIONS_SHOWN]]
+    if result.has_answer:
+        lines += _nutrients(result, opened)
+    return lines
+
+
+def amount_words(result: Result, amount: float) -> str:
+    """An amount as shown: % of a blend, kg per day of a ration; small ones with the decimals they need."""
+    shown = amount * 100 if result.amounts is Amounts.BLEND else amount
+    return notation().write(shown, max(2, min(decimals_of(shown, significant=2), 4)) if shown else 2)
+
+
+def _mix(result: Result, opened_ids: frozenset[int]) -> list[Line]:
+    lines: list[Line] = []
+    written = {one.ingredient_id: amount_words(result, one.amount or 0.0) for one in result.mix}
+    most = max((_decimals(text) for text in written.values()), default=2)
+    longest = max((one.amount or 0.0 for one in result.mix), default=1.0) or 1.0
+    for one in result.mix:
+        amount = one.amount or 0.0
+        lines.append(Line(
+            Part.INGREDIENT, one.name, written[one.ingredient_id], _cost(result, one.cost), amount / longest,
+            _share_words(result, one), one.ingredient_id, lack=most - _decimals(written[one.ingredient_id]),
+        ))
+        if one.ingredient_id in opened_ids:
+            lines.append(Line(Part.RAIL, one.name, ingredient_id=one.ingredient_id))
+    total = math.fsum(one.amount or 0.0 for one in result.mix)
+    if result.amounts is Amounts.BLEND:
+        text = _("{percent} % costs").format(percent=notation().write(total * 100, 2))
+    else:
+        text = _("{kg} kg per day costs").format(kg=notation().write(total, 2))
+    lines.append(Line(Part.TOTAL, text, cost=_cost(result, result.cost)))
+    if result.tie:
+        lines.append(Line(Part.SENTENCE, result.tie))
+    return lines
+
+
+def _decimals(text: str) -> int:
+    return len(text.replace(",", ".").partition(".")[2])
+
+
+def _cost(result: Result, cost: float | None) -> str:
+    return "" if cost is None else notation().write(cost, cost_decimals(result))
+
+
+def cost_decimals(result: Result) -> int:
+    """Decimals of money: two per tonne, four per head and day."""
+    return 2 if result.amounts is Amounts.BLEND else 4
+
+
+def _share_words(result: Result, one: IngredientResult) -> str:
+    price = notation().write(one.price_per_t, 2)
+    text = _("{name} at {price} {currency}/t").format(name=one.name, price=price, currency=result.currency)
+    if result.cost and one.cost is not None:
+        share = notation().write(100 * one.cost / result.cost, 1)
+        text += _(", {share} % of the cost").format(share=share)
+    if one.near_optimal is not None:
+        low, high = one.near_optimal
+        text += _("; other mixes at nearly this cost hold {low} to {high}").format(
+            low=amount_words(result, low), high=amount_words(result, high))
+    return text
+
+
+def _left_out(result: Result, opened: frozenset[str]) -> list[Line]:
+    out = [one for one in result.ingredients if not one.amount]
+    if not out:
+        return []
+    priced = sorted((one for one in out if one.break_even_price is not None),
+                    key=lambda one: (one.price_per_t - (one.break_even_price or 0.0)) / max(abs(one.price_per_t), 1e-9))
+    lines = []
+    if priced:
+        lines.append(Line(Part.HEADING, _("Would come in below")))
+        shown = priced if LEFT_OUT in opened else priced[:6]
+        for one in shown:
+            assert one.break_even_price is not None
+            lines.append(Line(Part.PAIR, one.name, cost=_("{break_even}, now {price}").format(
+                break_even=notation().write(one.break_even_price, 2), price=notation().write(one.price_per_t, 2))))
+        if len(priced) > 6:
+            text = _("Show fewer") if LEFT_OUT in opened else plural(
+                "{count} more", "{count} more", len(priced) - 6).format(count=len(priced) - 6)
+            lines.append(Line(Part.FOLD, text, fold=LEFT_OUT))
+        return lines
+    count = plural("{count} ingredient left out", "{count} ingredients left out", len(out)).format(count=len(out))
+    lines.append(Line(Part.FOLD, count, fold=LEFT_OUT))
+    if LEFT_OUT in opened:
+        for one in sorted(out, key=lambda one: one.name):
+            price = notation().write(one.price_per_t, 2)
+            lines.append(Line(Part.PAIR, one.name, cost=_("now {price}").format(price=price)))
+    return lines
+
+
+def _unpriced(result: Result) -> list[Line]:
+    if not result.unpriced:
+        return []
+    names = ", ".join(result.unpriced)
+    text = plural("{names} has no price in force and is left out.", "{names} have no price in force and are left out.",
+                  len(result.unpriced))
+    return [Line(Part.SENTENCE, text.format(names=names))]
+
+
+def _unknown(result: Result) -> list[Line]:
+    lines = []
+    for unsafe in (True, False):
+        by_nutrient: dict[str, list[str]] = {}
+        for one in result.unknown:
+            if one.unsafe is unsafe:
+                by_nutrient.setdefault(one.nutrient, []).append(one.ingredient)
+        for nutrient, ingredients in by_nutrient.items():
+            text = (
+                _("{nutrient} of {ingredients} is unknown and counts as 0, which is not safe here.")
+                if unsafe else _("{nutrient} of {ingredients} is unknown and counts as 0.")
+            )
+            names = ingredients if len(ingredients) <= 4 else [*ingredients[:3], _("{count} others").format(
+                count=len(ingredients) - 3)]
+            lines.append(Line(Part.CAUTION if unsafe else Part.SENTENCE, text.format(
+                nutrient=nutrient, ingredients=", ".join(names)), hint=", ".join(ingredients)))
+    return lines
+
+
+def _nutrients(result: Result, opened: frozenset[str]) -> list[Line]:
+    free = [one for one in result.nutrients if not one.limited]
+    if not free:
+        return []
+    text = plural("{count} nutrient of the mix that no limit names", "{count} nutrients of the mix that no limit names",
+                  len(free))
+    lines = [Line(Part.FOLD, text.format(count=len(free)), fold=NUTRIENTS)]
+    if NUTRIENTS in opened:
+        lines += [_nutrient(one) for one in free]
+    return lines
+
+
+def _nutrient(one: NutrientResult) -> Line:
+    hint = ""
+    if one.missing:
+        hint = _("Without {ingredients}, whose value is unknown.").format(ingredients=", ".join(one.missing))
+    value = "·" if one.value is None else f"{write_measure(one.value)} {one.unit}".strip()
+    return Line(Part.PAIR, one.name, cost=value, hint=hint)
+
+
+def _no_answer(result: Result) -> list[Line]:
+    title = {
+        Status.CONFLICT: _("No mix can meet all of this."),
+        Status.UNBOUNDED: _("There is no cheapest mix."),
+        Status.INCOMPLETE: _("A price is missing."),
+        Status.STOPPED: _("No mix was found in the time given."),
+    }.get(result.status, _("There is no answer."))
+    lines = [Line(Part.HEADING, title)]
+    if result.cause:
+        lines.append(Line(Part.SENTENCE, result.cause))
+    if result.conflict is not None:
+        lines += _conflict(result, result.conflict)
+    return lines
+
+
+def _conflict(result: Result, conflict: Conflict) -> list[Line]:
+    lines = []
+    for reach in conflict.reach:
+        limit = result.limits[reach.limit]
+        asked = notation().write_short(reach.asked)
+        if reach.reachable is None:
+            text = _("{name} cannot be reached at all; asked {asked}.").format(name=limit.name, asked=asked)
+        else:
+            text = _("{name} can reach {reachable} {unit}, asked {asked}.").format(
+                name=limit.name, reachable=write_measure(reach.reachable), unit=limit.unit, asked=asked)
+        lines.append(Line(Part.SENTENCE, text.replace("  ", " ")))
+    if len(conflict.members) > 1:
+        names = ", ".join(result.limits[index].name for index in conflict.members)
+        lines.append(Line(Part.SENTENCE, _("These cannot hold together, and without any one of them they can: {names}.")
+                          .format(names=names)))
+    repairs = [one for one in conflict.repairs if one.to is not None]
+    if repairs:
+        lines.append(Line(Part.HEADING, _("Any one of these makes it possible")))
+    lines += [Line(Part.ACTION, repair_words(result, one), repair=one) for one in repairs]
+    return lines
+
+
+def repair_words(result: Result, repair: Repair) -> str:
+    """What a repair does: "Lower the minimum of Lysine from 1.10 to 0.91 %"."""
+    assert repair.to is not None
+    limit = result.limits[repair.limit]
+    lower = repair.to < repair.frm
+    text = {
+        (Side.MINIMUM, True): _("Lower the minimum of {name} from {frm} to {to} {unit}"),
+        (Side.MINIMUM, False): _("Raise the minimum of {name} from {frm} to {to} {unit}"),
+        (Side.MAXIMUM, True): _("Lower the maximum of {name} from {frm} to {to} {unit}"),
+        (Side.MAXIMUM, False): _("Raise the maximum of {name} from {frm} to {to} {unit}"),
+    }[repair.bound, lower]
+    decimals = max(fitting_decimals(repair.frm, 0), min(decimals_of(repair.to), 4))
+    write = notation().write
+    return text.format(name=limit.name, frm=notation().write_short(repair.frm), to=write(repair.to, decimals),
+                       unit=limit.unit).strip()

@@ -1,0 +1,124 @@
+"""The page on which a price list is looked at before it is taken."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtGui import QKeyEvent
+from PySide6.QtWidgets import QCheckBox, QHBoxLayout, QLabel, QPushButton, QVBoxLayout, QWidget
+
+from blendapp.desk.prices.model import PriceRows
+from blendapp.desk.shell.zone import Elided
+from blendapp.desk.table.view import DeskTable
+from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
+from blendapp.desk.work import Work
+from blendapp.domain.price_rows import Fate, PriceListReading
+from blendapp.domain.problems import Refused
+from blendapp.domain.wording import _, plural
+from blendapp.services import prices
+
+
+class PricesPane(QWidget):
+    """closed: back to the bench. said: a sentence with what can be listed below it."""
+
+    closed = Signal()
+    said = Signal(str, list)
+
+    def __init__(self, work: Work) -> None:
+        super().__init__()
+        self.work = work
+        self.reading: PriceListReading | None = None
+        self.rows = PriceRows(self)
+        self.table = DeskTable(self.rows, self)
+        self.table.setAccessibleName(_("Rows of the price list"))
+        self.title = QLabel(_("Price list"))
+        self.title.setFont(text_font(strong=True))
+        self.remark = Elided()
+        self.remark.setObjectName("quiet")
+        self.ignored = QCheckBox(_("Show rows that are no price"))
+        self.ignored.toggled.connect(self._turn_ignored)
+        self.notes = QLabel()
+        self.notes.setObjectName("quiet")
+        self.notes.setWordWrap(True)
+        self.leave = QPushButton(_("Leave it"))
+        self.leave.setObjectName("plain")
+        self.leave.clicked.connect(self.closed)
+        self.take = QPushButton()
+        self.take.setObjectName("first")
+        self.take.clicked.connect(self.apply)
+        head = QHBoxLayout()
+        head.setSpacing(GAP_PX * 2)
+        head.addWidget(self.title)
+        head.addWidget(self.remark, 1)
+        head.addWidget(self.ignored)
+        head.addWidget(self.leave)
+        head.addWidget(self.take)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(MARGIN_PX, GAP_PX * 2, MARGIN_PX, 0)
+        column.setSpacing(GAP_PX)
+        column.addLayout(head)
+        column.addWidget(self.notes)
+        column.addWidget(self.table, 1)
+        self.setFocusProxy(self.table)
+
+    def read(self, path: Path) -> bool:
+        """Read a price list and show it; False where it cannot be read, which is said."""
+        try:
+            self.reading = prices.read_price_list(self.work.mill, path, self.work.on)
+        except Refused as refusal:
+            self.said.emit(str(refusal), [])
+            return False
+        self.ignored.setChecked(False)
+        self._show()
+        return True
+
+    def _turn_ignored(self, shown: bool) -> None:
+        self.rows.with_ignored = shown
+        if self.reading is not None:
+            self.rows.show(self.reading)
+
+    def _show(self) -> None:
+        reading = self.reading
+        assert reading is not None
+        self.rows.show(reading)
+        self.title.setText(reading.file_name)
+        accepted = reading.count(Fate.ACCEPTED)
+        parts = [plural("{count} price to take", "{count} prices to take", accepted).format(count=accepted)]
+        for fate, one, many in (
+            (Fate.QUESTION, _("{count} question"), _("{count} questions")),
+            (Fate.REFUSED, _("{count} refused"), _("{count} refused")),
+            (Fate.IGNORED, _("{count} left alone"), _("{count} left alone")),
+        ):
+            count = reading.count(fate)
+            if count:
+                parts.append((one if count == 1 else many).format(count=count))
+        self.remark.say(", ".join(parts))
+        self.notes.setText("\n".join(reading.notes))
+        self.notes.setVisible(bool(reading.notes))
+        self.take.setText(plural("Take {count} price", "Take {count} prices", accepted).format(count=accepted))
+        self.take.setEnabled(accepted > 0)
+
+    def apply(self) -> None:
+        """Record every accepted row as one undo, and go back to the bench."""
+        reading = self.reading
+        if reading is None:
+            return
+        try:
+            self.work.do(lambda mill: prices.apply_price_list(mill, reading, self.work.on))
+        except Refused as refusal:
+            self.said.emit(str(refusal), [])
+            return
+        count = reading.count(Fate.ACCEPTED)
+        self.closed.emit()
+        left = [f"{row.sheet} {row.row}, {row.source_name}: {row.reason}" for row in reading.rows
+                if row.fate in (Fate.QUESTION, Fate.REFUSED)]
+        text = plural("{count} price from {file} is in force; Ctrl+Z takes it back.",
+                      "{count} prices from {file} are in force; Ctrl+Z takes them back.", count)
+        self.said.emit(text.format(count=count, file=reading.file_name), left)
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            self.closed.emit()
+        else:
+            super().keyPressEvent(event)

@@ -1,0 +1,1 @@
+"""The batch sheet: how it will look, and the ways to paper."""

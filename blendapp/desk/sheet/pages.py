@@ -1,0 +1,115 @@
+"""Pages of a PDF drawn into the window, made on a thread so that typing never waits for them."""
+
+from __future__ import annotations
+
+import threading
+from collections.abc import Callable
+
+from PySide6.QtCore import QObject, QSize, Qt, Signal
+from PySide6.QtGui import QImage, QPixmap
+from PySide6.QtWidgets import QLabel, QScrollArea, QVBoxLayout, QWidget
+
+from blendapp.desk.theme import GAP_PX
+from blendapp.domain.problems import Refused
+from blendapp.domain.wording import _, plural
+from blendapp.services import sheets
+
+PAGE_WIDTH_IN = 8.27
+
+
+class PageView(QScrollArea):
+    """Shows the pages of a PDF. shown: after new pages are in view. failed: a sentence."""
+
+    shown = Signal()
+    failed = Signal(str)
+    _made = Signal(int, object, str)
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.pages: list[bytes] = []
+        self._asked = 0
+        self._running = False
+        self._next: Callable[[], bytes] | None = None
+        self.inside = QWidget()
+        self.column = QVBoxLayout(self.inside)
+        self.column.setContentsMargins(GAP_PX * 2, GAP_PX, GAP_PX * 2, GAP_PX * 2)
+        self.column.setSpacing(GAP_PX * 2)
+        self.column.addStretch(1)
+        self.setWidget(self.inside)
+        self.setWidgetResizable(True)
+        self.setAlignment(Qt.AlignmentFlag.AlignHCenter)
+        self.setAccessibleName(_("Preview of the page"))
+        self._made.connect(self._take)
+
+    def show_pdf(self, make: Callable[[], bytes]) -> None:
+        """Show the PDF that a function makes; it runs on a thread and must not touch the mill."""
+        self._asked += 1
+        self._next = make
+        if not self._running:
+            self._begin()
+
+    def _begin(self) -> None:
+        make, self._next = self._next, None
+        assert make is not None
+        self._running = True
+        asked = self._asked
+        dots = self.page_width() * self.devicePixelRatioF() / PAGE_WIDTH_IN
+
+        def run() -> None:
+            try:
+                self._made.emit(asked, sheets.page_images(make(), dots), "")
+            except (Refused, ValueError, OSError) as fault:
+                self._made.emit(asked, [], str(fault))
+
+        threading.Thread(target=run, daemon=True, name="pages").start()
+
+    def page_width(self) -> int:
+        """Pixels that a page takes in width."""
+        return max(min(self.viewport().width() - 4 * GAP_PX, 860), 320)
+
+    def _take(self, asked: int, images: list[bytes], fault: str) -> None:
+        self._running = False
+        if self._next is not None:
+            self._begin()
+            return
+        if asked != self._asked:
+            return
+        if fault:
+            self.failed.emit(fault)
+            return
+        self.pages = images
+        self._fill()
+        self.shown.emit()
+
+    def _fill(self) -> None:
+        self.clear(keep_pages=True)
+        ratio = self.devicePixelRatioF()
+        for number, data in enumerate(self.pages, 1):
+            pixmap = QPixmap.fromImage(QImage.fromData(data))
+            pixmap.setDevicePixelRatio(ratio)
+            page = QLabel()
+            page.setObjectName("page")
+            page.setPixmap(pixmap)
+            page.setFixedSize(QSize(round(pixmap.width() / ratio) + 2, round(pixmap.height() / ratio) + 2))
+            page.setAccessibleName(_("Page {number} of {count}").format(number=number, count=len(self.pages)))
+            self.column.insertWidget(self.column.count() - 1, page, 0, Qt.AlignmentFlag.AlignHCenter)
+
+    def clear(self, *, keep_pages: bool = False) -> None:
+        """Show nothing."""
+        if not keep_pages:
+            self.pages = []
+            self._asked += 1
+        while self.column.count() > 1:
+            item = self.column.takeAt(0)
+            widget = item.widget() if item is not None else None
+            if widget is not None:
+                widget.deleteLater()
+
+    def words(self) -> str:
+        """How many pages there are."""
+        return plural("{count} page", "{count} pages", len(self.pages)).format(count=len(self.pages))
+
+
+def images_for_printer(pdf: bytes, dots_per_inch: float, parent: QObject | None = None) -> list[QImage]:
+    """The pages at the printer's resolution."""
+    return [QImage.fromData(data) for data in sheets.page_images(pdf, dots_per_inch)]

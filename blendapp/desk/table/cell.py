@@ -1,0 +1,165 @@
+"""How a cell is painted and typed into."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import QEvent, QModelIndex, QObject, QPersistentModelIndex, QRect, QRectF, QSize, Qt
+from PySide6.QtGui import QFontMetricsF, QKeyEvent, QPainter, QPen
+from PySide6.QtWidgets import QComboBox, QLineEdit, QStyle, QStyledItemDelegate, QStyleOptionViewItem, QWidget
+
+from blendapp.desk.rail.paint import draw_rail
+from blendapp.desk.table.look import Look
+from blendapp.desk.table.roles import EDIT
+from blendapp.desk.theme import ROW_PX, Tokens, text_font, tokens
+
+PAD_PX = 6
+AnyIndex = QModelIndex | QPersistentModelIndex
+
+_SELECTED = QStyle.StateFlag.State_Selected
+_LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
+_RIGHT = Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
+_ELIDE = Qt.TextElideMode.ElideRight
+
+
+class CellDelegate(QStyledItemDelegate):
+    """Paints a Look and edits it as a line of text, or a choice. ruled: a hairline under each row.
+
+    Its parent is a DeskTable, which it asks for the held end of a rail and whether the keyboard is here.
+    """
+
+    def __init__(self, parent: QWidget, *, ruled: bool = True) -> None:
+        super().__init__(parent)
+        self.table = parent
+        self.ruled = ruled
+        self._fonts = {
+            (strong, italic): text_font(strong=strong, italic=italic)
+            for strong in (False, True)
+            for italic in (False, True)
+        }
+        metrics = QFontMetricsF(text_font())
+        self._digit = metrics.horizontalAdvance("0")
+        self._sign = metrics.horizontalAdvance(".")
+
+    def sizeHint(self, option: QStyleOptionViewItem, index: AnyIndex) -> QSize:
+        return QSize(80, ROW_PX)
+
+    def paint(self, painter: QPainter, option: QStyleOptionViewItem, index: AnyIndex) -> None:
+        look: Look = index.model().look(index.row(), index.column())  # type: ignore[attr-defined]
+        scheme = tokens()
+        rect = option.rect
+        painter.save()
+        if option.state & _SELECTED:
+            painter.fillRect(rect, scheme.colour("chosen"))
+        if self.ruled:
+            painter.fillRect(QRect(rect.left(), rect.bottom(), rect.width(), 1), scheme.colour("hairline"))
+        painter.save()
+        self.paint_inside(painter, QRectF(self.line_rect(rect)), look, scheme, index)
+        painter.restore()
+        painter.setBrush(Qt.BrushStyle.NoBrush)
+        if look.fault:
+            painter.setPen(QPen(scheme.colour("text"), 1, Qt.PenStyle.DashLine))
+            painter.drawRect(rect.adjusted(1, 1, -2, -2))
+        if self.table.is_current(index):  # type: ignore[attr-defined]
+            painter.setPen(QPen(scheme.colour("text"), 1))
+            painter.drawRect(self.line_rect(rect).adjusted(0, 0, -1, -1))
+        painter.restore()
+
+    def line_rect(self, rect: QRect) -> QRect:
+        """The part of a cell in which its line stands; a taller row has more below."""
+        return QRect(rect.left(), rect.top(), rect.width(), min(rect.height(), ROW_PX))
+
+    def paint_inside(self, painter: QPainter, rect: QRectF, look: Look, scheme: Tokens, index: AnyIndex) -> None:
+        """Paint what stands in the cell."""
+        if look.rail is not None and look.axis is not None:
+            held = self.table.held_end(index)  # type: ignore[attr-defined]
+            draw_rail(painter, rect, look.rail, look.axis, scheme, held=held)
+        elif look.bar is not None:
+            length = max(look.bar * (rect.width() - 2 * PAD_PX), 1.5)
+            painter.setOpacity(0.5 if look.stale else 1.0)
+            painter.fillRect(QRectF(rect.left() + PAD_PX, rect.center().y() - 4, length, 8), scheme.colour("band"))
+        else:
+            self.paint_text(painter, rect.adjusted(PAD_PX, 0, -PAD_PX, 0), look, scheme)
+
+    def paint_text(self, painter: QPainter, rect: QRectF, look: Look, scheme: Tokens) -> None:
+        """Paint a text with its unit, or a number on its decimal sign."""
+        if not look.text and not look.unit:
+            return
+        if look.stale:
+            painter.setOpacity(0.5)
+        painter.setFont(self._fonts[look.strong, look.italic])
+        painter.setPen(scheme.colour("accent" if look.accent else "quiet" if look.quiet else "text"))
+        metrics = painter.fontMetrics()
+        if look.number:
+            self._paint_number(painter, rect, look)
+            return
+        unit_width = QFontMetricsF(self._fonts[False, False]).horizontalAdvance(look.unit) + 6 if look.unit else 0.0
+        shown = metrics.elidedText(look.text, _ELIDE, int(rect.width() - unit_width) + 1)
+        painter.drawText(rect, _LEFT, shown)
+        if look.unit:
+            used = metrics.horizontalAdvance(shown)
+            painter.setFont(self._fonts[False, False])
+            painter.setPen(scheme.colour("quiet"))
+            painter.drawText(rect.adjusted(used + 6, 0, 0, 0), _LEFT, look.unit)
+
+    def _paint_number(self, painter: QPainter, rect: QRectF, look: Look) -> None:
+        metrics = painter.fontMetrics()
+        if look.lack:
+            whole = "." not in look.text and "," not in look.text
+            rect = rect.adjusted(0, 0, -(look.lack * self._digit + (self._sign if whole else 0)), 0)
+        if metrics.horizontalAdvance(look.text) > rect.width() + 1:
+            painter.drawText(rect, _LEFT, metrics.elidedText(look.text, _ELIDE, int(rect.width())))
+        else:
+            painter.drawText(rect, _RIGHT, look.text)
+
+    # -- typing
+
+    def createEditor(self, parent: QWidget, option: QStyleOptionViewItem, index: AnyIndex) -> QWidget:
+        look: Look = index.model().look(index.row(), index.column())  # type: ignore[attr-defined]
+        heading = str(index.model().headerData(index.column(), Qt.Orientation.Horizontal))
+        if look.choices:
+            box = QComboBox(parent)
+            box.addItems(list(look.choices))
+            box.setAccessibleName(heading)
+            box.activated.connect(lambda _at: self._chosen(box))
+            return box
+        field = QLineEdit(parent)
+        field.setObjectName("cell")
+        field.setAccessibleName(heading)
+        field.setAlignment(Qt.AlignmentFlag.AlignRight if look.number else Qt.AlignmentFlag.AlignLeft)
+        return field
+
+    def _chosen(self, box: QComboBox) -> None:
+        self.commitData.emit(box)
+        self.closeEditor.emit(box, QStyledItemDelegate.EndEditHint.NoHint)
+
+    def setEditorData(self, editor: QWidget, index: AnyIndex) -> None:
+        text = str(index.data(EDIT) or "")
+        if isinstance(editor, QComboBox):
+            editor.setCurrentText(text)
+        elif isinstance(editor, QLineEdit):
+            editor.setText(text)
+            editor.selectAll()
+
+    def setModelData(self, editor: QWidget, model: object, index: AnyIndex) -> None:
+        text = editor.currentText() if isinstance(editor, QComboBox) else editor.text()  # type: ignore[attr-defined]
+        model.setData(index, text, EDIT)  # type: ignore[attr-defined]
+
+    def updateEditorGeometry(self, editor: QWidget, option: QStyleOptionViewItem, index: AnyIndex) -> None:
+        rect = self.line_rect(option.rect)
+        if isinstance(editor, QComboBox):
+            rect.setWidth(max(rect.width(), editor.sizeHint().width()))
+        editor.setGeometry(rect)
+
+    def eventFilter(self, editor: QObject, event: QEvent) -> bool:
+        # Enter goes one row down, as in a spreadsheet; Qt's own filter would only close the editor.
+        if (
+            event.type() == QEvent.Type.KeyPress
+            and isinstance(event, QKeyEvent)
+            and isinstance(editor, QLineEdit)
+            and event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter, Qt.Key.Key_Down, Qt.Key.Key_Up)
+        ):
+            up = event.key() == Qt.Key.Key_Up or bool(event.modifiers() & Qt.KeyboardModifier.ShiftModifier)
+            self.commitData.emit(editor)
+            self.closeEditor.emit(editor, QStyledItemDelegate.EndEditHint.NoHint)
+            self.table.step_row(-1 if up else 1)  # type: ignore[attr-defined]
+            return True
+        return super().eventFilter(editor, event)

@@ -1,0 +1,292 @@
+"""What the window works on: the open mill, the chosen formula and its answer. The one place where the desk calls jobs.
+
+Every edit of the window goes through do() or apply(): the mill takes it, everyone is told what changed, and the
+answer follows. Small formulas are solved at once; one that has been slow is solved on a thread, and its old answer
+is stale until then.
+"""
+
+from __future__ import annotations
+
+import threading
+import time
+from collections.abc import Callable, Sequence
+from typing import TypeVar
+
+from PySide6.QtCore import QObject, Signal
+
+from blendapp.domain.formulas import Formula, LimitKind
+from blendapp.domain.library import Library
+from blendapp.domain.problems import Refused
+from blendapp.domain.records import Change
+from blendapp.domain.results import IngredientResult, Result
+from blendapp.domain.wording import _
+from blendapp.services.formulate import FailedCertificate, formulate
+from blendapp.services.mill import Edit, Mill, MillFileError, today
+
+SLOW_S = 0.06
+Done = TypeVar("Done")
+Extra = TypeVar("Extra")
+
+
+class Work(QObject):
+    """opened: another mill, or none. edited: an Edit was taken. chosen: another formula, or none.
+
+    answered: the result changed, or its staleness did; trying is true while a value is being tried and not stored.
+    said: a sentence for the person, with what can be listed below it.
+    """
+
+    opened = Signal()
+    edited = Signal(object)
+    chosen = Signal()
+    answered = Signal()
+    said = Signal(str, list)
+    _solved = Signal(int, object, object)
+
+    def __init__(self, parent: QObject | None = None) -> None:
+        super().__init__(parent)
+        self._mill: Mill | None = None
+        self._empty = Library()
+        self.on = today()
+        self.formula_id: int | None = None
+        self.result: Result | None = None
+        self.stored_result: Result | None = None
+        self.cost_before: float | None = None
+        self.stale = False
+        self.trying = False
+        self.admitted_ids: set[int] = set()
+        self.solve_s = 0.0
+        self._slow: set[int] = set()
+        self._asked = 0
+        self._running = False
+        self._by_id: dict[int, IngredientResult] = {}
+        self._trial_base: Library | None = None
+        self._solved.connect(self._take_solved)
+
+    # -- what is open
+
+    @property
+    def mill(self) -> Mill:
+        """The open mill. Only asked where there is one."""
+        assert self._mill is not None
+        return self._mill
+
+    @property
+    def is_open(self) -> bool:
+        return self._mill is not None
+
+    @property
+    def library(self) -> Library:
+        """The library of the open mill, an empty one without."""
+        return self._empty if self._mill is None else self._mill.library
+
+    @property
+    def formula(self) -> Formula | None:
+        """The chosen formula, or None."""
+        if self.formula_id is None:
+            return None
+        return self.library.records["formula"].get(self.formula_id)
+
+    def open(self, mill: Mill | None) -> None:
+        """Work on a mill from now on, and close the one before."""
+        before, self._mill = self._mill, mill
+        if before is not None and before is not mill:
+            before.close()
+        self._slow.clear()
+        self.formula_id = None
+        self.result = self.stored_result = None
+        self.opened.emit()
+        formulas = self.library.formulas
+        self.choose(formulas[0].id if formulas else None)
+
+    def close(self) -> None:
+        """Close the mill file."""
+        self._asked += 1
+        if self._mill is not None:
+            self._mill.close()
+            self._mill = None
+
+    def choose(self, formula_id: int | None) -> None:
+        """Work on another formula."""
+        self.formula_id = formula_id
+        self.cost_before = None
+        self.result = self.stored_result = None
+        self._by_id = {}
+        self._admit()
+        self.chosen.emit()
+        self.solve()
+
+    def _admit(self) -> None:
+        formula = self.formula
+        self.admitted_ids = set() if formula is None else {one.id for one in self.library.admitted(formula)}
+
+    # -- edits
+
+    def do(self, job: Callable[[Mill], Done]) -> Done:
+        """Run a job that edits the mill, tell everyone, and have the answer follow.
+
+        Raises Refused, also for a file that cannot take the edit.
+        """
+        self._forget_trial()
+        try:
+            done = job(self.mill)
+        except MillFileError as error:
+            raise Refused(str(error)) from error
+        edit = done if isinstance(done, Edit) else getattr(done, "edit", None)
+        if isinstance(edit, Edit):
+            self.took(edit)
+        return done
+
+    def do_with(self, job: Callable[[Mill], tuple[Edit, Extra]]) -> tuple[Edit, Extra]:
+        """As do, for a job that gives something besides its edit."""
+        kept: list[Extra] = []
+
+        def inner(mill: Mill) -> Edit:
+            edit, extra = job(mill)
+            kept.append(extra)
+            return edit
+
+        return self.do(inner), kept[0]
+
+    def apply(self, what: str, changes: Sequence[Change]) -> Edit:
+        """As do, for changes that are worked out already."""
+        return self.do(lambda mill: mill.apply(what, changes))
+
+    def took(self, edit: Edit) -> None:
+        """Tell everyone of an edit that the mill has taken."""
+        if not edit.changes:
+            self.answered.emit()
+            return
+        if self.formula_id is not None and self.formula is None:
+            remaining = self.library.formulas
+            self.formula_id = remaining[0].id if remaining else None
+            self.cost_before = None
+            self._admit()
+            self.edited.emit(edit)
+            self.chosen.emit()
+        else:
+            self._admit()
+            self.edited.emit(edit)
+        if edit.oddities:
+            self.said.emit(_("Taken, but unusual:"), [str(one) for one in edit.oddities])
+        self.solve()
+
+    def undo(self) -> None:
+        """Take the last edit back."""
+        self._reverse(lambda mill: mill.undo())
+
+    def redo(self) -> None:
+        """Take the last undo back."""
+        self._reverse(lambda mill: mill.redo())
+
+    def _reverse(self, job: Callable[[Mill], Edit | None]) -> None:
+        if self._mill is None:
+            return
+        try:
+            self.do(job)
+        except Refused as refusal:
+            self.said.emit(" ".join(problem.text for problem in refusal.problems), [])
+
+    # -- trying
+
+    def try_changes(self, changes: Sequence[Change]) -> None:
+        """Show the answer to changes that are not stored: what a hand on a rail sees."""
+        if self.formula_id is None or self.formula_id in self._slow or self._mill is None:
+            return
+        if self._trial_base is None:
+            self._trial_base = self.library.copy()
+        self._trial_base.apply(changes)
+        try:
+            found = formulate(self._trial_base, self.formula_id, self.on, self.mill.composition)
+        except (FailedCertificate, Refused, ValueError):
+            return
+        finally:
+            self._trial_base.apply([change.reversed for change in reversed(changes)])
+        self.trying = True
+        self._show(found)
+
+    def end_trial(self) -> None:
+        """Show the stored answer again."""
+        if self._forget_trial() and self.stored_result is not None:
+            self._show(self.stored_result)
+
+    def _forget_trial(self) -> bool:
+        was, self.trying, self._trial_base = self.trying, False, None
+        return was
+
+    # -- answers
+
+    def solve(self) -> None:
+        """Have the answer follow what the mill holds now."""
+        self._asked += 1
+        if self.formula_id is None or self._mill is None:
+            self.stored_result = None
+            self.stale = False
+            self._show(None)
+            return
+        if self._is_slow(self.formula_id):
+            self.stale = True
+            self.answered.emit()
+            self._solve_aside()
+            return
+        begun = time.perf_counter()
+        try:
+            found = formulate(self.library, self.formula_id, self.on, self.mill.composition)
+        except (FailedCertificate, Refused, ValueError) as fault:
+            self._take(None, fault)
+            return
+        self.solve_s = time.perf_counter() - begun
+        if self.solve_s > SLOW_S and self.stored_result is not None:
+            self._slow.add(self.formula_id)
+        self._take(found, None)
+
+    def _is_slow(self, formula_id: int) -> bool:
+        whole = (LimitKind.PRACTICAL, LimitKind.COUNT)
+        return formula_id in self._slow or any(one.kind in whole for one in self.library.limits(formula_id))
+
+    def _solve_aside(self) -> None:
+        if self._running:
+            return
+        self._running = True
+        asked, library, formula_id, on = self._asked, self.library.copy(), self.formula_id, self.on
+        assert formula_id is not None
+
+        def run() -> None:
+            begun = time.perf_counter()
+            try:
+                found: Result | None = formulate(library, formula_id, on, time_limit_s=10.0)
+                fault: Exception | None = None
+            except (FailedCertificate, Refused, ValueError) as failure:
+                found, fault = None, failure
+            self.solve_s = time.perf_counter() - begun
+            self._solved.emit(asked, found, fault)
+
+        threading.Thread(target=run, daemon=True, name="solve").start()
+
+    def _take_solved(self, asked: int, found: Result | None, fault: Exception | None) -> None:
+        self._running = False
+        if self._mill is None:
+            return
+        if asked != self._asked:
+            if self.stale:
+                self._solve_aside()
+            return
+        self._take(found, fault)
+
+    def _take(self, found: Result | None, fault: Exception | None) -> None:
+        if fault is not None:
+            self.said.emit(str(fault), [])
+        old = self.stored_result
+        if old is not None and found is not None and old.formula_id == found.formula_id:
+            self.cost_before = old.cost
+        self.stored_result = found
+        self.stale = False
+        self._show(found)
+
+    def _show(self, found: Result | None) -> None:
+        self.result = found
+        self._by_id = {} if found is None else {one.ingredient_id: one for one in found.ingredients}
+        self.answered.emit()
+
+    def ingredient_result(self, ingredient_id: int) -> IngredientResult | None:
+        """What the answer says of an ingredient, None where it says nothing."""
+        return self._by_id.get(ingredient_id)
