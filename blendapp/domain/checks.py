@@ -30,13 +30,19 @@ def faults(record: Record, library: Library) -> list[Finding]:
     for field in fields_of(kind):
         value = getattr(record, field.name)
         if isinstance(value, int | float) and not isinstance(value, bool):
-            sentence = field.fault(value)
+            sentence = field.fault(value) if math.isfinite(value) else _not_finite(field.label)
             if sentence:
                 found.append((field.name, sentence))
+    if any(isinstance(value, float) and not math.isfinite(value) for value in vars(record).values()):
+        return found
     if kind in NAMED_KINDS:
         found += _name_faults(kind, record, library)
     check = _FAULTS.get(kind)
     return found + (check(record, library) if check else [])
+
+
+def _not_finite(label: str) -> str:
+    return _("{label} must be a number that has an end; leave it blank where there is none.").format(label=label)
 
 
 def oddities(record: Record, library: Library) -> list[Finding]:
@@ -145,7 +151,9 @@ def _spread(record: Scale | Mixer, library: Library) -> list[Finding]:
 
 
 def _limit(record: Limit, library: Library) -> list[Finding]:
-    found: list[Finding] = []
+    found = _subject_faults(record)
+    if found:
+        return found
     formula = library.formula(record.formula_id)
     if record.minimum is not None and record.maximum is not None and record.minimum > record.maximum:
         text = _("The minimum {minimum} is above the maximum {maximum}; correct one of them.")
@@ -162,11 +170,35 @@ def _limit(record: Limit, library: Library) -> list[Finding]:
     elif record.kind is LimitKind.RATIO:
         found += _ratio_limit(record)
     else:
-        found += _count_limit(record, library)
+        found += _count_limit(record)
     return found
 
 
+def _subject_faults(record: Limit) -> list[Finding]:
+    """A limit that is not about what its kind is about; nothing more can be said of it."""
+    one = len(record.subject.ids) == 1
+    if record.kind is LimitKind.NUTRIENT and not record.subject.is_nutrient:
+        return [("subject", _("A nutrient limit names a nutrient, Dry matter or Moisture."))]
+    if record.kind in (LimitKind.INGREDIENT, LimitKind.PRACTICAL) and (
+        record.subject.kind is not SubjectKind.INGREDIENTS or not one
+    ):
+        return [("subject", _("A limit of this kind names one ingredient; use the kind group for several."))]
+    if record.kind in (LimitKind.GROUP, LimitKind.COUNT) and record.subject.is_nutrient:
+        return [("subject", _("A group names ingredients, or one class."))]
+    if record.kind is LimitKind.RATIO:
+        if record.per is None:
+            return [("per", _("A ratio needs what it is over; name it under Per."))]
+        if record.subject.is_nutrient != record.per.is_nutrient:
+            return [("per", _("A ratio is of two nutrients or of two groups, not of one of each."))]
+    elif record.per is not None:
+        return [("per", _("Only a ratio is over something; leave Per blank."))]
+    return []
+
+
 def _nutrient_limit(record: Limit, library: Library, amounts: Amounts) -> list[Finding]:
+    stated = record.at_dry_matter_percent
+    if record.basis is LimitBasis.AT_DRY_MATTER and (stated is None or not 0 < stated <= 100):
+        return [("basis", _("A stated dry matter must lie above 0 and at most 100 %; write it like 88 %."))]
     if record.basis is LimitBasis.PER_DAY and amounts is Amounts.BLEND:
         text = _("A blend has no amount per day; choose as fed or dry matter, or make the formula a ration.")
         return [("basis", text)]
@@ -194,36 +226,53 @@ def _inclusion_limit(record: Limit, library: Library, amounts: Amounts) -> list[
             unit = limit_units.shown_unit(library, record, amounts)
             text = _("An inclusion cannot be above the whole; {value} {unit} is.")
             found.append((name, text.format(value=f"{bound:g}", unit=unit)))
-    if record.kind is LimitKind.PRACTICAL and record.minimum is None:
+    if record.basis in (LimitBasis.DRY_MATTER, LimitBasis.AT_DRY_MATTER):
+        text = _("The amount of an ingredient has no basis; leave it blank and use the unit {unit}.")
+        found.append(("basis", text.format(unit=units.SHARE_OF_DRY_MATTER)))
+    if record.kind is LimitKind.PRACTICAL:
+        found += _practical_limit(record, share)
+    return found
+
+
+def _practical_limit(record: Limit, share: bool) -> list[Finding]:
+    found: list[Finding] = []
+    if record.minimum is None:
         found.append(("minimum", _("A practical minimum needs the least amount worth weighing under Minimum.")))
+    if record.maximum is not None:
+        found.append(("maximum", _("A practical minimum has no maximum; enter that as a limit of kind ingredient.")))
+    if share:
+        found.append(("unit", _("A practical minimum is an amount to be weighed; state it as fed, in kg/day.")))
     return found
 
 
 def _ratio_limit(record: Limit) -> list[Finding]:
-    if record.per is None:
-        return [("per", _("A ratio needs what it is over; name it under Per."))]
-    if record.subject.is_nutrient != record.per.is_nutrient:
-        return [("per", _("A ratio is of two nutrients or of two groups, not of one of each."))]
     if record.minimum is not None and record.minimum < 0:
         return [("minimum", _("A ratio cannot be below 0; {value} is.").format(value=f"{record.minimum:g}"))]
     return []
 
 
-def _count_limit(record: Limit, library: Library) -> list[Finding]:
+def _count_limit(record: Limit) -> list[Finding]:
+    found: list[Finding] = []
     if record.maximum is None or record.maximum < 0 or record.maximum != int(record.maximum):
-        return [("maximum", _("A count needs a whole number, 0 or more, under Maximum."))]
+        found.append(("maximum", _("A count needs a whole number, 0 or more, under Maximum.")))
+    if record.minimum is not None:
+        found.append(("minimum", _("A count has a maximum only; leave Minimum blank.")))
+    return found
+
+
+def _odd_count(record: Limit, library: Library) -> list[Finding]:
     members = len(library.members(record.subject))
-    if record.maximum > members:
-        text = _("The count {count} is above the {members} ingredients of its group; it would say nothing.")
-        return [("maximum", text.format(count=f"{record.maximum:g}", members=members))]
-    return []
+    if record.maximum is None or record.maximum < members:
+        return []
+    text = _("The group has {members} ingredients, so that at most {count} of them says nothing.")
+    return [("maximum", text.format(count=f"{record.maximum:g}", members=members))]
 
 
 def _odd_limit(record: Limit, library: Library) -> list[Finding]:
-    if record.kind in (LimitKind.INGREDIENT, LimitKind.PRACTICAL, LimitKind.NUTRIENT):
+    if record.kind in (LimitKind.INGREDIENT, LimitKind.NUTRIENT):
         return []
     admitted = {i.id for i in library.admitted(library.formula(record.formula_id))}
-    found: list[Finding] = []
+    found = [] if record.kind is not LimitKind.COUNT else _odd_count(record, library)
     for name, subject in (("subject", record.subject), ("per", record.per)):
         if subject is not None and not subject.is_nutrient:
             found += [(name, sentence) for sentence in _not_admitted(subject, library, admitted)]
