@@ -10,7 +10,7 @@ import shutil
 import sys
 from pathlib import Path
 
-from start import PROJECT, Stop, call, install_pins, install_project, make_environment, say
+from start import PROJECT, Stop, call, install_pins, install_project, make_environment, provide_libraries, say
 
 PYINSTALLER = "pyinstaller==6.22.3"
 FROZEN = PROJECT / "build" / "frozen"
@@ -41,6 +41,7 @@ def main() -> int:
         install_project(python)
         if call([python, "-m", "pip", "install", "-q", PYINSTALLER]) != 0:
             raise Stop("PyInstaller could not be installed; pip's words above say why.")
+        provide_libraries(on_screen=True)  # those found here are carried along
         say("Building; this takes some minutes")
         if freeze(python) != 0:
             raise Stop("PyInstaller failed; its words above say why.")
