@@ -28,7 +28,7 @@ _LOCAL_SYSTEMS = frozenset({
 
 
 def require_mill_file(path: Path) -> None:
-    """Raises MillFileError for anything that is not a whole mill file, by its first bytes and its length."""
+    """Raises MillFileError for anything that is not a mill file by its first bytes."""
     try:
         kind = path.stat().st_mode
         if stat.S_ISDIR(kind):
@@ -37,27 +37,12 @@ def require_mill_file(path: Path) -> None:
             raise fault(Cause.NOT_A_MILL_FILE, path)
         with path.open("rb") as file:
             header = file.read(_HEADER_BYTES)
-        length = path.stat().st_size
     except OSError as error:
         raise from_system(error, path) from error
     if len(header) < _HEADER_BYTES or not header.startswith(_MAGIC):
         raise fault(Cause.NOT_A_MILL_FILE, path)
     if int.from_bytes(header[68:72], "big") != APPLICATION_ID:
         raise fault(Cause.NOT_A_MILL_FILE, path)
-    page = int.from_bytes(header[16:18], "big")
-    expected = (65536 if page == 1 else page) * int.from_bytes(header[28:32], "big")
-    counted = header[24:28] == header[92:96]  # otherwise the count of pages is not to be trusted
-    if counted and length < expected and not log_beside(path):
-        raise fault(Cause.DAMAGED, path)
-
-
-def log_beside(path: Path) -> bool:
-    """Whether a log stands beside the file that holds edits which the file itself may lack."""
-    for ending in ("-wal", "-journal"):
-        with contextlib.suppress(OSError):
-            if os.stat(f"{path}{ending}").st_size > 0:
-                return True
-    return False
 
 
 def must_be_read_alone(path: Path) -> bool:

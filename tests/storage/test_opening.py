@@ -91,6 +91,16 @@ def test_pages_overwritten_in_the_middle_are_damaged(closed: Path) -> None:
     _refused(closed, Cause.DAMAGED)
 
 
+def test_one_spoilt_page_that_opening_does_not_need_is_found_all_the_same(closed: Path) -> None:
+    raw = sqlite3.connect(closed)
+    (page,) = raw.execute("SELECT rootpage FROM sqlite_schema WHERE name = 'ix_limit_formula_id'").fetchone()
+    raw.close()
+    content = bytearray(closed.read_bytes())
+    content[(page - 1) * 4096 : page * 4096] = b"\xa5" * 4096
+    closed.write_bytes(content)
+    _refused(closed, Cause.DAMAGED)
+
+
 def test_a_file_without_a_revision_is_damaged(closed: Path) -> None:
     _run(closed, "DELETE FROM alembic_version")
     _refused(closed, Cause.DAMAGED)
@@ -276,7 +286,7 @@ def test_the_journal_suits_the_disk(closed: Path, monkeypatch: pytest.MonkeyPatc
         assert pragma(opened._connection, "foreign_keys") == [(1,)]
         opened.write("edit", [added(Site(10 + local, f"Site {local}"))])
         opened.close()
-        assert not files.log_beside(closed)
+        assert {p.name for p in closed.parent.iterdir()} == {"north.mill", ".north.mill.lock"}
 
 
 MOUNTS = """\
