@@ -154,6 +154,7 @@ _SHEET = """
 #quiet { color: $quiet; }
 QAbstractScrollArea { border: 0; background: $ground; }
 QAbstractItemView { selection-background-color: $chosen; selection-color: $text; outline: 0; }
+QTableView { selection-background-color: transparent; }
 QHeaderView { background: $ground; border: 0; }
 QHeaderView::section { background: $ground; color: $quiet; border: 0; padding: 0 6px; }
 QTableCornerButton::section { background: $ground; border: 0; }
@@ -161,7 +162,9 @@ QLineEdit, QComboBox, QDoubleSpinBox, QPlainTextEdit { background: $raised; bord
   border-radius: 4px; padding: 4px 8px; selection-background-color: $chosen; selection-color: $text; }
 QLineEdit:focus, QComboBox:focus, QPlainTextEdit:focus { border: 1px solid $text; }
 QLineEdit#cell { border: 1px solid $text; border-radius: 0; padding: 0 5px; }
-QComboBox::drop-down { border: 0; width: 20px; }
+QComboBox { padding-left: 10px; }
+QComboBox::drop-down { border: 0; width: 22px; }
+QComboBox::down-arrow { image: none; }
 QPushButton, QToolButton { background: transparent; color: $text; border: 1px solid transparent;
   border-radius: 4px; padding: 4px 8px; }
 QPushButton:hover, QToolButton:hover { background: $chosen; }
@@ -188,6 +191,7 @@ QScrollBar:vertical { background: transparent; width: 10px; margin: 0; }
 QScrollBar:horizontal { background: transparent; height: 10px; margin: 0; }
 QScrollBar::handle { background: $hairline; border-radius: 3px; margin: 2px; min-height: 24px; min-width: 24px; }
 QScrollBar::handle:hover { background: $quiet; }
+QAbstractScrollArea::corner { background: transparent; border: 0; }
 QScrollBar::add-line, QScrollBar::sub-line { width: 0; height: 0; }
 QScrollBar::add-page, QScrollBar::sub-page { background: transparent; }
 QSplitter::handle { background: $hairline; }

@@ -23,7 +23,7 @@ if TYPE_CHECKING:
     from blendapp.desk.work import Work
 
 PRICES, COMPOSITION, KEEPING = "prices", "composition", "keeping"
-NAME_PX = 158
+NAME_PX = 148
 
 
 def column_sets() -> dict[str, str]:
@@ -42,12 +42,14 @@ class HaveModel(Grid):
         self.sort_key: str | None = None
         self.sort_down = False
         self._axes: dict[int, Axis] = {}
+        self._decimals: dict[int, int] = {}
         self._trial_price: tuple[int, float] | None = None
 
     # -- rows and columns
 
     def rebuild(self) -> None:
         """Show what the mill holds now."""
+        self._take_decimals()
         self.set_headings(self._headings())
         wanted = fold(self.filter_text)
         shown = [
@@ -61,6 +63,14 @@ class HaveModel(Grid):
             shown.sort(key=lambda one: self._sort_value(one, key)[0] if not self.sort_down else
                        not self._sort_value(one, key)[0])
         self.set_rows([one.id for one in shown])
+
+    def _take_decimals(self) -> None:
+        """The decimals of each nutrient's column: none where values run into hundreds, three where all are small."""
+        greatest: dict[int, float] = {}
+        for value in self.work.library.records["value"].values():
+            size = abs(value.amount)
+            greatest[value.nutrient_id] = max(greatest.get(value.nutrient_id, 0.0), size)
+        self._decimals = {key: 0 if size >= 1000 else 1 if size >= 200 else 2 for key, size in greatest.items()}
 
     def _headings(self) -> list[Heading]:
         money = self.work.library.mill.currency
@@ -78,9 +88,9 @@ class HaveModel(Grid):
             return [name, *(self._heading(key, width) for key, width in plain)]
         return [
             name,
-            Heading("price", _("Price {currency}/t").format(currency=money), 92, True, _("Money per tonne as fed")),
-            Heading("holds", _("holds from / to"), 112, False, _("Drag the mark to see at which price the mix turns")),
-            Heading("stock_kg", field_of("ingredient", "stock_kg").label, 76, True),
+            Heading("price", _("Price {currency}/t").format(currency=money), 88, True, _("Money per tonne as fed")),
+            Heading("holds", _("holds from / to"), 106, False, _("Drag the mark to see at which price the mix turns")),
+            Heading("stock_kg", field_of("ingredient", "stock_kg").label, 72, True),
             Heading("quoted", _("as quoted"), 110, True, _("The price in force, as it was given")),
             Heading("since", _("since"), 84), Heading("source", _("source"), 160),
         ]
@@ -151,10 +161,10 @@ class HaveModel(Grid):
         value = self.work.library.value(ingredient.id, nutrient_id)
         if value is None:
             words = _("{nutrient} of {ingredient} is unknown").format(nutrient=nutrient.name, ingredient=ingredient.name)
-            return number_look(None, 2, editable=True, words=words)
+            return number_look(None, self._decimals.get(nutrient_id, 2), editable=True, words=words)
         amount = round(units.convert(value.amount, value.unit, nutrient.unit), 10)
         plain = number_look(
-            amount, fitting_decimals(amount, 2, 4), editable=True, italic=value.origin is Origin.ESTIMATED,
+            amount, fitting_decimals(amount, self._decimals.get(nutrient_id, 2), 4), editable=True, italic=value.origin is Origin.ESTIMATED,
             hint=_about(value),
         )
         if value.basis is not ingredient.basis:

@@ -7,11 +7,11 @@ from collections.abc import Callable
 from PySide6.QtCore import QModelIndex, QPoint, Qt, Signal
 from PySide6.QtWidgets import QButtonGroup, QHBoxLayout, QLineEdit, QMenu, QPushButton, QVBoxLayout, QWidget
 
-from blendapp.desk.have.model import HaveModel, column_sets
+from blendapp.desk.have.model import PRICES, HaveModel, column_sets
 from blendapp.desk.have.reading import NUTRIENT
 from blendapp.desk.rail.geometry import End
 from blendapp.desk.shell.glyphs import GlyphButton
-from blendapp.desk.shell.zone import Zone
+from blendapp.desk.shell.zone import INSET_PX, Zone
 from blendapp.desk.table.frozen import FrozenTable
 from blendapp.desk.theme import GAP_PX
 from blendapp.desk.work import Work
@@ -43,6 +43,7 @@ class HavePane(QWidget):
         self.add = GlyphButton("add", _("Add an ingredient"))
         zone.tools.addWidget(self.add)
         row = QHBoxLayout()
+        row.setContentsMargins(INSET_PX, 0, 0, 0)
         row.setSpacing(2)
         row.addWidget(self.find, 1)
         row.addSpacing(GAP_PX)
@@ -67,10 +68,11 @@ class HavePane(QWidget):
 
     def _connect(self) -> None:
         work, table = self.work, self.table
-        work.opened.connect(self.model.rebuild)
+        work.opened.connect(self._opened)
         work.edited.connect(self._edited)
         work.chosen.connect(self._chosen)
         work.answered.connect(self._answered)
+        table.resized.connect(self._fit_name)
         table.pasted.connect(self._paste)
         table.cleared.connect(self._clear)
         table.grip.proposed.connect(self._propose)
@@ -89,11 +91,24 @@ class HavePane(QWidget):
 
     # -- what is shown
 
+    def _opened(self) -> None:
+        self.model.refusals.clear()
+        self.model.rebuild()
+        self._fit_name()
+
     def show_set(self, key: str) -> None:
         """Show another set of columns."""
         self.model.column_set = key
         self._buttons[key].setChecked(True)
         self.model.rebuild()
+        self._fit_name()
+
+    def _fit_name(self) -> None:
+        """Let the name take what the first figures leave, so that a narrow zone shows them whole."""
+        table, model = self.table, self.model
+        if model.column_set == PRICES and model.columnCount() > 3:
+            shown = sum(table.columnWidth(at) for at in (1, 2, 3))
+            table.setColumnWidth(0, min(max(table.viewport().width() - shown, 110), 200))
 
     def _filter(self, text: str) -> None:
         self.model.filter_text = text

@@ -6,8 +6,10 @@ from collections.abc import Callable
 
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QKeyEvent
-from PySide6.QtWidgets import QComboBox, QGridLayout, QLabel, QLineEdit, QPushButton, QWidget
+from PySide6.QtWidgets import QGridLayout, QLabel, QLineEdit, QPushButton, QWidget
 
+from blendapp.desk.choice import Choice
+from blendapp.desk.shell.zone import INSET_PX
 from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.theme import GAP_PX
 from blendapp.desk.work import Work
@@ -27,14 +29,14 @@ class AboutFormula(QWidget):
     def __init__(self, work: Work) -> None:
         super().__init__()
         self.work = work
-        self.animal = QComboBox()
+        self.animal = Choice()
         self.animal.addItem(_("not stated"), "")
         for animal in Animal:
             self.animal.addItem(_(str(animal)), str(animal))
-        self.amounts = QComboBox()
+        self.amounts = Choice()
         self.amounts.addItem(_("blend, in %"), str(Amounts.BLEND))
         self.amounts.addItem(_("ration, in kg per head and day"), str(Amounts.RATION))
-        self.admits = QComboBox()
+        self.admits = Choice()
         self.admits.addItem(_("every ingredient that may be used unlisted"), str(Admits.ALL))
         self.admits.addItem(_("only ingredients with a limit of their own"), str(Admits.LISTED))
         self.stage = QLineEdit()
@@ -44,7 +46,7 @@ class AboutFormula(QWidget):
         self.fault.setWordWrap(True)
         self.fault.hide()
         grid = QGridLayout(self)
-        grid.setContentsMargins(0, 0, 0, GAP_PX)
+        grid.setContentsMargins(INSET_PX, 0, 0, GAP_PX)
         grid.setHorizontalSpacing(GAP_PX)
         grid.setVerticalSpacing(6)
         grid.setColumnStretch(1, 1)

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import Qt, Signal
+from PySide6.QtCore import QStringListModel, Qt, Signal
 from PySide6.QtGui import QKeyEvent
-from PySide6.QtWidgets import QComboBox, QCompleter, QGridLayout, QHBoxLayout, QLabel, QLineEdit, QPushButton, QWidget
+from PySide6.QtWidgets import QCompleter, QGridLayout, QHBoxLayout, QLabel, QLineEdit, QPushButton, QWidget
 
+from blendapp.desk.choice import Choice
 from blendapp.desk.meet.subjects import limit_from, names_for, units_for
 from blendapp.desk.meet.words import kind_word
+from blendapp.desk.shell.zone import INSET_PX
 from blendapp.desk.theme import GAP_PX
 from blendapp.desk.work import Work
 from blendapp.domain.formulas import Amounts, LimitKind
@@ -26,16 +28,22 @@ class AddLimit(QWidget):
     def __init__(self, work: Work) -> None:
         super().__init__()
         self.work = work
-        self.kind = QComboBox()
+        self.kind = Choice()
         self.name = QLineEdit()
         self.per = QLineEdit()
-        self.basis = QComboBox()
-        self.unit = QComboBox()
+        self.basis = Choice()
+        self.unit = Choice()
         self.minimum = QLineEdit()
         self.maximum = QLineEdit()
         self.fault = QLabel()
         self.fault.setWordWrap(True)
         self.fault.hide()
+        self._names = QStringListModel(self)
+        for named in (self.name, self.per):
+            completer = QCompleter(self._names, named)
+            completer.setCaseSensitivity(Qt.CaseSensitivity.CaseInsensitive)
+            completer.setFilterMode(Qt.MatchFlag.MatchContains)
+            named.setCompleter(completer)
         for kind in LimitKind:
             self.kind.addItem(kind_word(kind), kind)
         self._lay()
@@ -45,49 +53,38 @@ class AddLimit(QWidget):
 
     def _lay(self) -> None:
         grid = QGridLayout(self)
-        grid.setContentsMargins(0, 0, 0, GAP_PX)
+        grid.setContentsMargins(INSET_PX, 0, 0, GAP_PX)
         grid.setHorizontalSpacing(GAP_PX)
         grid.setVerticalSpacing(4)
         self.per_label = QLabel(_("over"))
-        for column, (words, field) in enumerate((
-            (_("Kind"), self.kind), (_("Name"), self.name), (_("over"), self.per),
-        )):
+        places: tuple[tuple[str, QWidget, int, int, int], ...] = (
+            (_("Kind"), self.kind, 0, 0, 1), (_("Name"), self.name, 0, 1, 2), (_("over"), self.per, 0, 3, 1),
+            (_("at least"), self.minimum, 2, 0, 1), (_("at most"), self.maximum, 2, 1, 1), (_("in"), self.unit, 2, 2, 1),
+            (_("basis"), self.basis, 2, 3, 1),
+        )
+        for words, field, row, column, span in places:
             label = self.per_label if field is self.per else QLabel(words)
             label.setObjectName("quiet")
             label.setBuddy(field)
             field.setAccessibleName(words)
-            grid.addWidget(label, 0, column)
-            grid.addWidget(field, 1, column)
-        grid.setColumnStretch(1, 1)
-        second = QHBoxLayout()
-        second.setSpacing(GAP_PX)
-        for words, field, width in (
-            (_("at least"), self.minimum, 74), (_("at most"), self.maximum, 74), (_("in"), self.unit, 96),
-            (_("per"), self.basis, 132),
-        ):
-            label = QLabel(words)
-            label.setObjectName("quiet")
-            field.setAccessibleName(words)
-            field.setMinimumWidth(width)
-            second.addWidget(label)
-            second.addWidget(field)
-            if field in (self.minimum, self.maximum):
-                field.setFixedWidth(width)
-        second.addStretch(1)
+            field.setMinimumWidth(90)
+            grid.addWidget(label, row, column, 1, span)
+            grid.addWidget(field, row + 1, column, 1, span)
+        for column, stretch in enumerate((3, 2, 2, 3)):
+            grid.setColumnStretch(column, stretch)
         self.go = QPushButton(_("Add"))
         self.go.setObjectName("first")
         self.go.clicked.connect(self.add)
         self.leave = QPushButton(_("Leave"))
         self.leave.setObjectName("plain")
         self.leave.clicked.connect(self.close_form)
-        third = QHBoxLayout()
-        third.setSpacing(GAP_PX)
-        third.addWidget(self.fault, 1)
-        third.addStretch(0)
-        third.addWidget(self.leave)
-        third.addWidget(self.go)
-        grid.addLayout(second, 2, 0, 1, 3)
-        grid.addLayout(third, 3, 0, 1, 3)
+        last = QHBoxLayout()
+        last.setSpacing(GAP_PX)
+        last.addWidget(self.fault, 1)
+        last.addStretch(0)
+        last.addWidget(self.leave)
+        last.addWidget(self.go)
+        grid.addLayout(last, 4, 0, 1, 4)
 
     # -- opening and closing
 
@@ -135,14 +132,7 @@ class AddLimit(QWidget):
         self.basis.setEnabled(nutrient)
         self.minimum.setEnabled(kind is not LimitKind.COUNT)
         self.maximum.setEnabled(kind is not LimitKind.PRACTICAL)
-        for field in (self.name, self.per):
-            old = field.completer()
-            completer = QCompleter(names_for(self.work.library, kind), field)
-            completer.setCaseSensitivity(Qt.CaseSensitivity.CaseInsensitive)
-            completer.setFilterMode(Qt.MatchFlag.MatchContains)
-            field.setCompleter(completer)
-            if old is not None:
-                old.deleteLater()
+        self._names.setStringList(names_for(self.work.library, kind))
         hints = {
             LimitKind.GROUP: _("a class, or ingredients joined by “ + ”"),
             LimitKind.COUNT: _("a class, or ingredients joined by “ + ”"),
@@ -162,7 +152,9 @@ class AddLimit(QWidget):
         self.unit.addItems(offered)
         if before in offered:
             self.unit.setCurrentText(before)
-        self.unit.setEnabled(len(offered) > 1)
+        ratio = self.chosen_kind() is LimitKind.RATIO
+        self.unit.setEditable(ratio)
+        self.unit.setEnabled(ratio or len(offered) > 1)
 
     # -- taking
 

@@ -12,8 +12,8 @@ from blendapp.desk.rail.paint import TAG_PX, draw_tag, wall_x
 from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import ROW_PX, tokens
 
-TAGGED_PX = ROW_PX + int(TAG_PX) + 4
-_NAME_LEAST, _FIGURE_PX, _RAIL_LEAST = 120, 64, 96
+TAGGED_PX = ROW_PX + int(TAG_PX) - 1
+_NAME_LEAST, _FIGURE_PX, _RAIL_LEAST = 120, 66, 96
 
 
 class LimitTable(DeskTable):
@@ -72,7 +72,7 @@ class LimitTable(DeskTable):
             rect = self.visualRect(self.grid.index(row, column))
             if rect.bottom() < 0 or rect.top() > self.viewport().height():
                 continue
-            bounds = QRectF(8, rect.top() + ROW_PX - 1, self.viewport().width() - 12, TAG_PX)
+            bounds = QRectF(8, rect.top() + ROW_PX - 4, self.viewport().width() - 12, TAG_PX)
             line = QRectF(self.cells.line_rect(rect))
             plain = not cell.rail.working
             draw_tag(painter, bounds, wall_x(line, cell.rail, cell.axis), cell.rail.tag, look,

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 
-from blendapp.domain import limit_units
+from blendapp.domain import limit_units, units
 from blendapp.domain.figures import decimals_of
 from blendapp.domain.formulas import Amounts, Formula, Limit, LimitBasis, LimitKind
 from blendapp.domain.library import Library
@@ -22,7 +22,7 @@ def limit_name(library: Library, limit: Limit) -> str:
 
 
 def limit_unit(library: Library, limit: Limit, amounts: Amounts) -> str:
-    """The unit with the word that tells kinds apart: "%", "% DM", "% of mix", "% of mix, together"."""
+    """The unit with the word that tells kinds apart: "%", "% DM", "% of mix", "% of mix together"."""
     unit = limit_units.shown_unit(library, limit, amounts)
     if limit.kind is LimitKind.NUTRIENT:
         if limit.basis is LimitBasis.DRY_MATTER:
@@ -34,9 +34,9 @@ def limit_unit(library: Library, limit: Limit, amounts: Amounts) -> str:
         return unit or _("ratio")
     if limit.kind is LimitKind.COUNT:
         return _("how many")
-    said = _("% of mix") if unit == "%" else unit
+    said = _("% of mix") if unit == "%" else _("% of DM") if unit == units.SHARE_OF_DRY_MATTER else unit
     if limit.kind is LimitKind.GROUP:
-        return _("{unit}, together").format(unit=said)
+        return _("{unit} together").format(unit=said)
     if limit.kind is LimitKind.PRACTICAL:
         return _("{unit}, or none").format(unit=said)
     return said
@@ -174,13 +174,13 @@ def _holds(to: float | None, decimals: int) -> str:
 
 
 def cost_rank(found: LimitResult) -> float:
-    """What a hundredth of a limit costs, for the order of the list; 0 for one that does not bind."""
+    """The money of a limit's tag, for the order of the list; 0 for one that does not bind."""
     bound = found.minimum if found.binding is Side.MINIMUM else found.maximum
     if found.binding is None or bound is None:
         return 0.0
     prices = (found.relax_saving, found.tighten_cost, found.raise_cost, found.lower_cost)
     price = max((abs(one) for one in prices if one is not None), default=0.0)
-    return price * max(abs(bound), 1e-9) / 100 + 1e-12
+    return price * tag_step(bound, limit_decimals(bound), found.relax_holds_to) + 1e-12
 
 
 def per_of(formula: Formula) -> str:

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from enum import Enum
 
 from blendapp.desk.table.look import fitting_decimals
+from blendapp.domain.cautions import general_caution
 from blendapp.domain.figures import decimals_of, write_measure
 from blendapp.domain.formulas import Amounts
 from blendapp.domain.notation import notation
@@ -49,7 +50,6 @@ class Line:
 
 
 NUTRIENTS, LEFT_OUT = "nutrients", "left out"
-CAUTIONS_SHOWN = 12
 
 
 def lines_of(result: Result, opened: frozenset[str], opened_ids: frozenset[int]) -> list[Line]:
@@ -65,7 +65,8 @@ def lines_of(result: Result, opened: frozenset[str], opened_ids: frozenset[int])
         lines += _no_answer(result)
     lines += _unpriced(result)
     lines += _unknown(result)
-    lines += [Line(Part.CAUTION, text) for text in result.cautions[:CAUTIONS_SHOWN]]
+    # The general caution stands in the footer at all times, so it is not said twice.
+    lines += [Line(Part.CAUTION, text) for text in result.cautions if text != general_caution()]
     if result.has_answer:
         lines += _nutrients(result, opened)
     return lines

@@ -39,11 +39,12 @@ class MixModel(Grid):
         self.lines = [] if result is None else lines_of(result, self.opened, self.opened_ids)
         ration = result is not None and result.amounts is Amounts.RATION
         currency = "" if result is None else result.currency
+        amount = _("kg/day") if ration else "%"
+        cost = (_("{currency}/day") if ration else _("{currency}/t")).format(currency=currency)
+        answer = result is not None and result.has_answer
         self.set_headings([
-            Heading("name", "", 150), Heading("bar", "", 90),
-            Heading("amount", _("kg/day") if ration else "%", 64, True),
-            Heading("cost", _("{currency}/day").format(currency=currency) if ration
-                    else _("{currency}/t").format(currency=currency), 76, True),
+            Heading("name", "", 150), Heading("bar", "", 90), Heading("amount", amount if answer else "", 64, True),
+            Heading("cost", cost if answer else "", 76, True),
         ])
         self._line_of = {_owner(place, line): line for place, line in enumerate(self.lines)}
         self.set_rows(list(self._line_of))

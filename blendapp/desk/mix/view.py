@@ -14,6 +14,7 @@ from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import Tokens, text_font, tokens
 
 LINE_PX = 28
+WIDEST_PX = 820
 _WRAPPED = (Part.SENTENCE, Part.CAUTION, Part.ACTION)
 _WRAP = int(Qt.TextFlag.TextWordWrap)
 _TOP = int(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignTop)
@@ -108,6 +109,8 @@ class MixTable(DeskTable):
             return
         width = self.viewport().width()
         amount, cost = 66, 78
+        # In a wide zone the figures stay near their names.
+        width = min(width, WIDEST_PX)
         rest = width - amount - cost
         bar = max(60, min(int(rest * 0.36), 420))
         for at, one in enumerate((max(rest - bar, 80), bar, amount, cost)):

@@ -9,7 +9,6 @@ from pathlib import Path
 from PySide6.QtCore import Qt, QTimer, Signal
 from PySide6.QtGui import QKeyEvent, QPageSize, QPainter
 from PySide6.QtWidgets import (
-    QComboBox,
     QFileDialog,
     QFormLayout,
     QHBoxLayout,
@@ -21,6 +20,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from blendapp.desk.choice import Choice
 from blendapp.desk.sheet.pages import PageView, images_for_printer
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.desk.work import Work
@@ -49,7 +49,7 @@ class SheetPane(QWidget):
         self.ask_save: Callable[[str, str], str] = self._system_save
         self.print_pdf: Callable[[bytes], bool] = self._system_print
         self.order = QLineEdit()
-        self.paper = QComboBox()
+        self.paper = Choice()
         self.paper.addItems(["A4", "letter"])
         self.words = QLabel()
         self.words.setWordWrap(True)

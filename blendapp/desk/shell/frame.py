@@ -18,14 +18,8 @@ from PySide6.QtWidgets import (
 from blendapp.desk.shell.header import Header
 from blendapp.desk.shell.zone import Elided, Zone
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font, tokens
+from blendapp.domain.cautions import general_caution
 from blendapp.domain.wording import _
-
-
-def caution_text() -> str:
-    """The sentence that stands on every screen and every page."""
-    return _(
-        "A qualified nutritionist must review any ration before it is fed. Local law and licensed practice come first."
-    )
 
 
 class Rule(QFrame):
@@ -47,9 +41,9 @@ class Footer(QWidget):
         self.setObjectName("footer")
         self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
         self.setFixedHeight(40)
-        self.caution = QLabel(caution_text())
+        self.caution = QLabel(general_caution())
         self.caution.setFont(text_font(strong=True))
-        self.caution.setAccessibleName(caution_text())
+        self.caution.setAccessibleName(general_caution())
         self.check = Elided()
         self.check.setObjectName("quiet")
         self.check.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
@@ -97,7 +91,7 @@ class Frame(QWidget):
         for zone, least in zip(self.zones, (300, 380, 300), strict=True):
             zone.setMinimumWidth(least)
             self.bench.addWidget(zone)
-        self.bench.setSizes([468, 524, 448])
+        self.bench.setSizes([446, 574, 420])
         for place, zone in enumerate(self.zones):
             zone.widen_asked.connect(lambda place=place: self.widen(None if self.wide == place else place))
         self.middle = QStackedWidget()

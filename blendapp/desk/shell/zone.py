@@ -9,6 +9,8 @@ from blendapp.desk.shell.glyphs import GlyphButton
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.domain.wording import _
 
+INSET_PX = 6
+
 
 class Elided(QLabel):
     """A label that shortens its text instead of widening its neighbours; the whole text is its tool tip."""
@@ -58,13 +60,15 @@ class Zone(QWidget):
         self.tools = QHBoxLayout()
         self.tools.setSpacing(2)
         head = QHBoxLayout()
+        # Cells have a margin of their own; the title stands above their text.
+        head.setContentsMargins(INSET_PX, 0, 0, 0)
         head.setSpacing(GAP_PX * 2)
         head.addWidget(self.title)
         head.addWidget(self.remark, 1)
         head.addLayout(self.tools)
         head.addWidget(self.widen)
         self._whole = QVBoxLayout(self)
-        self._whole.setContentsMargins(MARGIN_PX, GAP_PX * 2, MARGIN_PX - GAP_PX, 0)
+        self._whole.setContentsMargins(MARGIN_PX - INSET_PX, GAP_PX * 2, MARGIN_PX - GAP_PX, 0)
         self._whole.setSpacing(GAP_PX)
         self._whole.addLayout(head)
         self.body: QWidget | None = None

@@ -47,8 +47,8 @@ class CellDelegate(QStyledItemDelegate):
         scheme = tokens()
         rect = option.rect
         painter.save()
-        if option.state & _SELECTED:
-            painter.fillRect(rect, scheme.colour("chosen"))
+        if option.state & _SELECTED and self.table.shows_selection():  # type: ignore[attr-defined]
+            painter.fillRect(self.line_rect(rect), scheme.colour("chosen"))
         if self.ruled:
             painter.fillRect(QRect(rect.left(), rect.bottom(), rect.width(), 1), scheme.colour("hairline"))
         painter.save()
@@ -92,19 +92,24 @@ class CellDelegate(QStyledItemDelegate):
             self._paint_number(painter, rect, look)
             return
         unit_width = QFontMetricsF(self._fonts[False, False]).horizontalAdvance(look.unit) + 6 if look.unit else 0.0
-        shown = metrics.elidedText(look.text, _ELIDE, int(rect.width() - unit_width) + 1)
+        # A long unit must not push the name out: the name has at least three fifths.
+        room = max(rect.width() - unit_width, rect.width() * 0.6)
+        shown = metrics.elidedText(look.text, _ELIDE, int(room) + 1)
         painter.drawText(rect, _LEFT, shown)
         if look.unit:
-            used = metrics.horizontalAdvance(shown)
+            rest = rect.adjusted(metrics.horizontalAdvance(shown) + 6, 0, 0, 0)
             painter.setFont(self._fonts[False, False])
             painter.setPen(scheme.colour("quiet"))
-            painter.drawText(rect.adjusted(used + 6, 0, 0, 0), _LEFT, look.unit)
+            unit = painter.fontMetrics().elidedText(look.unit, _ELIDE, int(rest.width()) + 1)
+            painter.drawText(rest, _LEFT, unit)
 
     def _paint_number(self, painter: QPainter, rect: QRectF, look: Look) -> None:
         metrics = painter.fontMetrics()
         if look.lack:
             whole = "." not in look.text and "," not in look.text
-            rect = rect.adjusted(0, 0, -(look.lack * self._digit + (self._sign if whole else 0)), 0)
+            shift = look.lack * self._digit + (self._sign if whole else 0)
+            spare = rect.width() - metrics.horizontalAdvance(look.text)
+            rect = rect.adjusted(0, 0, -max(min(shift, spare), 0), 0)
         if metrics.horizontalAdvance(look.text) > rect.width() + 1:
             painter.drawText(rect, _LEFT, metrics.elidedText(look.text, _ELIDE, int(rect.width())))
         else:

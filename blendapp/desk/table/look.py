@@ -53,8 +53,11 @@ def number_look(
     """
     if value is None:
         return Look(text=unknown, number=True, editable=editable, hint=hint, quiet=True, words=words, stale=stale,
-                    lack=decimals if widest is None else widest)
+                    lack=0 if unknown != DOT else decimals if widest is None else widest)
     write = notation()
+    if value == 0:
+        # Zero is 0, told from an unknown at a glance, and stands where whole numbers stand.
+        widest, decimals = (decimals if widest is None else widest), 0
     return Look(
         text=write.write(value, decimals), typed=write.write_short(value), number=True, editable=editable, hint=hint,
         italic=italic, strong=strong, quiet=quiet, accent=accent, stale=stale, words=words,

@@ -2,8 +2,19 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QEvent, QItemSelectionModel, QModelIndex, QPoint, QRect, QRectF, Qt, QTimer, Signal
-from PySide6.QtGui import QFocusEvent, QGuiApplication, QKeyEvent, QKeySequence, QMouseEvent
+from PySide6.QtCore import (
+    QEvent,
+    QItemSelection,
+    QItemSelectionModel,
+    QModelIndex,
+    QPoint,
+    QRect,
+    QRectF,
+    Qt,
+    QTimer,
+    Signal,
+)
+from PySide6.QtGui import QFocusEvent, QGuiApplication, QKeyEvent, QKeySequence, QMouseEvent, QResizeEvent
 from PySide6.QtWidgets import QAbstractItemView, QFrame, QHeaderView, QTableView, QWidget
 
 from blendapp.desk.rail.geometry import End, end_at
@@ -22,23 +33,25 @@ class DeskTable(QTableView):
     """A table view of a Grid.
 
     pasted: cells of a block as (owner, key, text), with the texts that fell outside the table. cleared: cells whose
-    content was deleted. asked: Enter or double click on a cell that is not typed into. grip: moves the rails.
+    content was deleted. asked: Enter or double click on a cell that is not typed into. resized: after the viewport has another size. grip: moves the rails.
     """
 
     pasted = Signal(list, list)
     cleared = Signal(list)
     asked = Signal(QModelIndex)
+    resized = Signal()
 
     def __init__(self, model: Grid, parent: QWidget | None = None, *, ruled: bool = True) -> None:
         super().__init__(parent)
         self.grid = model
-        self.setModel(model)
-        self.cells = CellDelegate(self, ruled=ruled)
-        self.setItemDelegate(self.cells)
         self.grip: RailGrip = RailGrip(self)
         self._chosen_end: End | None = None
         self._dragging = False
+        self._block = False
         self._note: Note | None = None
+        self.cells = CellDelegate(self, ruled=ruled)
+        self.setItemDelegate(self.cells)
+        self.setModel(model)
         self._dress()
         model.refused.connect(lambda index, _sentence: QTimer.singleShot(0, self, self._show_note))
         model.modelReset.connect(self._take_widths)
@@ -71,12 +84,25 @@ class DeskTable(QTableView):
         for at, heading in enumerate(self.grid.headings):
             self.setColumnWidth(at, heading.width)
 
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self.resized.emit()
+
     # -- where the keyboard is
 
     def has_keyboard(self) -> bool:
         """Whether keys come here, or to the editor of a cell."""
         focus = QGuiApplication.focusObject()
         return focus is self or (isinstance(focus, QWidget) and self.isAncestorOf(focus))
+
+    def shows_selection(self) -> bool:
+        """Whether selected cells are tinted: a block always, the current cell only under the keyboard."""
+        return self._block or self.has_keyboard()
+
+    def selectionChanged(self, selected: QItemSelection, deselected: QItemSelection) -> None:
+        super().selectionChanged(selected, deselected)
+        ranges = self.selectionModel().selection()
+        self._block = any(one.width() * one.height() > 1 for one in ranges) or len(ranges) > 1
 
     def is_current(self, index: AnyIndex) -> bool:
         """Whether a cell is the one that keys reach."""
