@@ -26,6 +26,7 @@ PROJECT = Path(__file__).resolve().parent.parent
 PINS = PROJECT / "packaging" / "pins.txt"
 ENVIRONMENT = PROJECT / ".venv"
 OLDEST = (3, 11)
+NO_ANSWER = "none"
 
 # Shared libraries that the Qt wheels load but do not carry, and the Debian package that holds each.
 # Measured with ldd in a minimal Debian 12.
@@ -235,14 +236,14 @@ def fresh_folder(parent: Path, name: str) -> Path:
 
 
 def main_job(python: Path, in_text: bool) -> int:
-    """The sample mill in the window or in text; the exit status."""
+    """The sample mill in the window or in text; the exit status. Raises Stop."""
     if not in_text:
         mill = PROJECT / "build" / "sample" / "sample.mill"
         if not mill.exists():
             mill.parent.mkdir(parents=True, exist_ok=True)
             make_sample_mill(python, mill)
         say(f"Opening {mill}")
-        return blendapp(python, mill)
+        return call([python, "-m", "blendapp", mill])
     folder = fresh_folder(PROJECT / "build", "sample-in-text")
     try:
         return job_in_text(python, folder)
@@ -251,22 +252,55 @@ def main_job(python: Path, in_text: bool) -> int:
 
 
 def job_in_text(python: Path, folder: Path) -> int:
-    """Solve every formula, apply the price list, solve one again and write its batch sheet; the exit status."""
+    """Solve every formula, apply the price list, show what it changed and write a batch sheet; the exit status.
+
+    Raises Stop where a step before the last gives no answer.
+    """
     mill, page = folder / "sample.mill", folder / "batch sheet.pdf"
     make_sample_mill(python, mill)
     solved = blendapp(python, "formulate", mill)
-    # Rows that ask a question or are refused make this 1; the others are applied all the same.
-    priced = blendapp(python, "prices", mill, PROJECT / "sample_data" / "price_list.xlsx", "--apply")
-    formula = first_solved(python, mill)
-    again = blendapp(python, "formulate", mill, formula)
+    before = costs(python, mill)
+    # Rows of the list that ask a question or are refused make its status 1; the others are applied all the same.
+    blendapp(python, "prices", mill, PROJECT / "sample_data" / "price_list.xlsx", "--apply")
+    after = costs(python, mill)
+    say("\nCost of each formula before and after the price list")
+    width = max(map(len, before))
+    for name, (cost, unit) in before.items():
+        say(f"  {name:{width}}  {cost}  {after[name][0]}  {unit}")
+    formula = next((name for name, (cost, _) in after.items() if cost.strip() != NO_ANSWER), None)
+    if formula is None:
+        raise Stop("No formula of the sample mill has an answer.")
     printed = blendapp(python, "sheet", mill, formula, "--batch-kg", "2000", "-o", page)
-    return int(solved != 0 or priced > 1 or again != 0 or printed != 0 or not page.exists())
+    return int(solved != 0 or printed != 0 or not page.exists())
+
+
+def costs(python: Path, mill: Path) -> dict[str, tuple[str, str]]:
+    """Cost as text and its unit, of each formula of a mill. Raises Stop."""
+    status, answer = ask(python, "formulate", mill, "--json")
+    if status > 1 or not answer:
+        raise Stop("The formulas of the sample mill could not be solved; the words above say why.")
+    return {one["formula"]: (f"{NO_ANSWER if one['cost'] is None else format(one['cost'], '.2f'):>9}",
+                             f"{one['currency']}/{one['cost_per']}") for one in json.loads(answer)["formulas"]}
 
 
 def blendapp(python: Path, *arguments: str | Path) -> int:
-    """Run one blendapp command, shown as a person would type it; its exit status."""
-    say("\n> blendapp " + " ".join(f'"{part}"' if " " in str(part) else str(part) for part in map(shown, arguments)))
-    return call([python, "-m", "blendapp", *arguments])
+    """Run one blendapp command, shown as a person would type it, and show its answer; its exit status, 0 or 1.
+
+    Raises Stop where the command could not be carried out, which its status or the lack of any answer tells.
+    """
+    say("\n> blendapp " + " ".join(f'"{part}"' if " " in part else part for part in map(shown, arguments)))
+    status, answer = ask(python, *arguments)
+    say(answer.rstrip())
+    if status > 1 or not answer:
+        raise Stop(f"\"blendapp {arguments[0]}\" could not be carried out; the words above say why.")
+    return status
+
+
+def ask(python: Path, *arguments: str | Path) -> tuple[int, str]:
+    """Exit status and standard output of one blendapp command."""
+    ran = subprocess.run([str(part) for part in (python, "-m", "blendapp", *arguments)], cwd=PROJECT, check=False,
+                         env=clean(os.environ), stdin=subprocess.DEVNULL, stdout=subprocess.PIPE, encoding="utf-8")
+    return ran.returncode, ran.stdout
 
 
 def shown(argument: str | Path) -> str:
@@ -279,17 +313,6 @@ def make_sample_mill(python: Path, mill: Path) -> None:
     """A mill file from the sample workbook. Raises Stop."""
     if blendapp(python, "new", mill, "--from", PROJECT / "sample_data" / "mill.xlsx") != 0:
         raise Stop("The sample mill could not be made; the words above say why.")
-
-
-def first_solved(python: Path, mill: Path) -> str:
-    """The first formula of the mill that has an answer. Raises Stop if none has."""
-    asked = subprocess.run([str(python), "-m", "blendapp", "formulate", str(mill), "--json"], cwd=PROJECT,
-                           env=clean(os.environ), stdin=subprocess.DEVNULL, capture_output=True, check=False)
-    if asked.returncode <= 1:
-        for formula in json.loads(asked.stdout)["formulas"]:
-            if formula["status"] == "optimal":
-                return str(formula["formula"])
-    raise Stop("No formula of the sample mill has an answer.")
 
 
 # --- The tests
@@ -346,4 +369,6 @@ def main(arguments: Sequence[str] | None = None) -> int:
 if __name__ == "__main__":
     if sys.version_info < OLDEST:
         sys.exit("blendapp needs Python 3.11 or newer; this is " + sys.version.split()[0] + ".")
+    for stream in (sys.stdout, sys.stderr):
+        stream.reconfigure(errors="replace")  # a console that lacks a sign shows another in its place
     sys.exit(main())

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import importlib.util
+import json
 import re
 import subprocess
 import sys
@@ -109,6 +110,60 @@ def test_a_run_in_text_never_uses_a_folder_that_is_there(tmp_path: Path) -> None
     assert (first.name, second.name) == ("sample-1", "sample-2")
     assert first.is_dir()
     assert second.is_dir()
+
+
+class Program:
+    """Stands in for blendapp's commands; the mill's first formula has no answer, its second costs less afterwards."""
+
+    def __init__(self, prices: int = 1, sheet: int = 0, silent: str = "") -> None:
+        self.prices, self.sheet, self.silent = prices, sheet, silent
+        self.calls: list[list[str]] = []
+
+    def ask(self, python: Path, *arguments: str | Path) -> tuple[int, str]:
+        self.calls.append([str(part) for part in arguments])
+        if self.silent and self.silent == arguments[0]:
+            return 1, ""
+        if "--json" in arguments:
+            cost = 200.0 if any(call[0] == "prices" for call in self.calls) else 210.5
+            both = [("Impossible", None), ("Layer", cost)]
+            return 1, json.dumps({"formulas": [
+                {"formula": name, "cost": cost, "currency": "USD", "cost_per": "t"} for name, cost in both]})
+        if arguments[0] == "sheet" and self.sheet == 0:
+            Path(arguments[-1]).write_bytes(b"%PDF-")
+        return {"prices": self.prices, "sheet": self.sheet, "formulate": 0}.get(str(arguments[0]), 0), "said\n"
+
+
+@pytest.fixture
+def python() -> Path:
+    return Path("python")
+
+
+def test_the_job_in_text_solves_prices_and_prints_the_first_formula_with_an_answer(
+        python: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]) -> None:
+    program = Program()
+    monkeypatch.setattr(start, "ask", program.ask)
+    assert start.job_in_text(python, tmp_path) == 0
+    assert [call[0] for call in program.calls] == ["new", "formulate", "formulate", "prices", "formulate", "sheet"]
+    assert program.calls[-1][2] == "Layer"
+    words = capsys.readouterr().out
+    assert re.search(r"Layer +210\.50 +200\.00  USD/t", words)
+    assert re.search(r"Impossible +none +none", words)
+
+
+@pytest.mark.parametrize("command", ["new", "formulate", "prices", "sheet"])
+def test_the_job_in_text_stops_at_a_command_that_gives_no_answer(
+        python: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch, command: str) -> None:
+    program = Program(silent=command)
+    monkeypatch.setattr(start, "ask", program.ask)
+    with pytest.raises(start.Stop, match=f"blendapp {command}"):
+        start.job_in_text(python, tmp_path)
+    assert program.calls[-1][0] == command
+
+
+def test_a_batch_sheet_that_was_not_written_makes_the_job_fail(
+        python: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(start, "ask", Program(sheet=1).ask)
+    assert start.job_in_text(python, tmp_path) == 1
 
 
 def test_without_venv_one_sentence_says_what_to_install(
