@@ -1,0 +1,259 @@
+"""The scenes of the pictures: each brings the window into a state that people meet, and lets it be photographed."""
+
+from __future__ import annotations
+
+import time
+from collections.abc import Callable
+from dataclasses import replace
+from pathlib import Path
+
+from PySide6.QtCore import QSettings
+from PySide6.QtWidgets import QApplication, QWidget
+
+from blendapp.desk.bench import Bench
+from blendapp.desk.rail.geometry import End
+from blendapp.desk.shell.frame import Frame
+from blendapp.desk.start import make_app
+from blendapp.desk.theme import dress
+from blendapp.domain.formulas import Amounts, LimitKind
+from blendapp.domain.price_rows import PriceListReading
+from blendapp.domain.results import Check, Conflict, Reach, Repair, Result, Side, Status
+from blendapp.services import edits, sheets
+from blendapp.services import workbook as workbooks
+
+WAIT_S = 20.0
+
+
+class Studio:
+    """Takes pictures of one window, light and dark."""
+
+    def __init__(self, out_dir: Path, scale: int) -> None:
+        self.app = make_app(["blendapp"])
+        self.out_dir = out_dir
+        self.scale = scale
+
+    def settle(self, until: Callable[[], bool] = lambda: True) -> None:
+        """Let the window come to rest."""
+        end = time.monotonic() + WAIT_S
+        for _turn in range(3):
+            self.app.processEvents()
+        while not until() and time.monotonic() < end:
+            self.app.processEvents()
+            time.sleep(0.01)
+        self.app.processEvents()
+
+    def take(self, widget: QWidget, name: str) -> None:
+        """One picture in each scheme."""
+        for dark, scheme in ((False, "light"), (True, "dark")):
+            dress(self.app, dark=dark)
+            self.settle()
+            widget.grab().save(str(self.out_dir / f"{name}-{scheme}-{self.scale}00.png"))
+
+
+def take_all(out_dir: Path, workbook: Path, price_list: Path, folder: Path, scale: int) -> None:
+    """Every scene of the window at one scale."""
+    studio = Studio(out_dir, scale)
+    settings = QSettings(str(folder / "settings.ini"), QSettings.Format.IniFormat)
+    frame = Frame()
+    frame.show()
+    studio.settle()
+    studio.take(frame, "01-first-paint")
+    bench = Bench(frame, settings)
+    bench.start(None)
+    studio.settle()
+    studio.take(frame, "02-no-mill-yet")
+    path = folder / "Sample mill.mill"
+    mill, _warnings = workbooks.new_mill(path, workbook)
+    mill.close()
+    bench.start(str(path))
+    frame.activateWindow()
+    for scene in (_bench, _hands, _wide, _forms, _faults, _finding, _formulas, _prices, _sheet):
+        scene(studio, bench, price_list)
+        bench.to_bench()
+        bench.strip.clear()
+        frame.widen(None)
+        studio.settle()
+    bench.close()
+    frame.close()
+
+
+def _bench(studio: Studio, bench: Bench, _price_list: Path) -> None:
+    bench.mix.table.setFocus()
+    studio.settle()
+    studio.take(bench.frame, "03-bench")
+
+
+def _hands(studio: Studio, bench: Bench, _price_list: Path) -> None:
+    """An end held by the keyboard, and a price being tried."""
+    table, model = bench.meet.table, bench.meet.model
+    owner = next((one for one in model.owners if model.limit(one).minimum is not None), None)  # type: ignore[union-attr]
+    if owner is None:
+        return
+    table.go_to(owner, "rail")
+    index = model.cell(owner, "rail")
+    look = model.look(index.row(), index.column())
+    assert look.rail is not None
+    assert look.axis is not None
+    table.grip.nudge((owner, "rail"), End.MINIMUM, look.rail, look.axis, -2)
+    studio.settle()
+    studio.take(bench.frame, "04-an-end-held")
+    table.grip.take_back()
+
+
+def _wide(studio: Studio, bench: Bench, _price_list: Path) -> None:
+    for key in ("prices", "composition", "keeping"):
+        bench.have.show_set(key)
+        bench.widen(0)
+        studio.settle()
+        studio.take(bench.frame, f"05-have-{key}")
+        bench.frame.widen(None)
+    bench.have.show_set("composition")
+    studio.settle()
+    studio.take(bench.frame, "05-have-composition-narrow")
+    bench.have.show_set("prices")
+    bench.widen(1)
+    studio.settle()
+    studio.take(bench.frame, "06-meet")
+    bench.frame.widen(None)
+    result = bench.work.result
+    if result is not None and result.mix:
+        bench.mix.model.opened = frozenset({"nutrients", "left out"})
+        bench.mix.model.opened_ids = frozenset({result.mix[0].ingredient_id, result.mix[2].ingredient_id})
+        bench.mix._answered()
+    bench.widen(2)
+    studio.settle()
+    studio.take(bench.frame, "07-mix")
+    bench.frame.widen(None)
+    bench.have.table.setFocus()
+    studio.settle()
+    studio.take(bench.frame, "07-mix-narrow")
+    bench.mix._forget()
+    bench.mix._answered()
+
+
+def _forms(studio: Studio, bench: Bench, _price_list: Path) -> None:
+    bench.meet.adding.begin(LimitKind.NUTRIENT, "Potassium")
+    studio.settle()
+    studio.take(bench.frame, "08-add-a-limit")
+    bench.meet.adding.begin(LimitKind.RATIO, "Calcium")
+    bench.meet.adding.add()
+    studio.settle()
+    studio.take(bench.frame, "08-add-a-ratio-refused")
+    bench.meet.adding.close_form()
+    bench.meet.about.begin()
+    studio.settle()
+    studio.take(bench.frame, "09-what-the-formula-is-for")
+    bench.meet.about.close_form()
+    bench.records.new_nutrient()
+    bench.ask.field.setText("Lysine (stone)")
+    bench.ask.take()
+    studio.settle()
+    studio.take(bench.frame, "10-a-name-refused")
+    bench.ask.leave()
+
+
+def _faults(studio: Studio, bench: Bench, _price_list: Path) -> None:
+    """A refused cell with its sentence, and a block of which some cells were refused."""
+    model, table = bench.have.model, bench.have.table
+    owners = model.owners
+    table.go_to(owners[2], "price")
+    model.setData(model.cell(owners[2], "price"), "cheap")
+    studio.settle()
+    studio.take(bench.frame, "11-a-price-refused")
+    table.setFocus()
+    model.forgive(owners[2], "price")
+    QApplication.clipboard().setText("201.5\t\t1900\n195\t\tplenty\n18x\t\t640\n")
+    table.go_to(owners[0], "price")
+    table.paste()
+    studio.settle()
+    studio.take(bench.frame, "12-a-block-partly-taken")
+    for owner in owners[:3]:
+        for key in ("price", "stock_kg"):
+            model.forgive(owner, key)
+    bench.work.undo()
+
+
+def _finding(studio: Studio, bench: Bench, _price_list: Path) -> None:
+    bench.find_anything()
+    studio.settle()
+    studio.take(bench.frame, "13-find-anything")
+    bench.finder.field.setText("ly")
+    studio.settle()
+    studio.take(bench.frame, "13-find-ly")
+    bench.finder.leave()
+    bench.choose_formula()
+    studio.settle()
+    studio.take(bench.frame, "14-choose-a-formula")
+    bench.finder.leave()
+    bench._fill_recent()
+    bench.commands.fill(bench.menu, {"open": bench.recent_menu})
+    bench.menu.resize(bench.menu.sizeHint())
+    studio.take(bench.menu, "15-menu")
+
+
+def _formulas(studio: Studio, bench: Bench, _price_list: Path) -> None:
+    """A ration, a conflict, a missing price, and an old answer while the new one is worked out."""
+    work = bench.work
+    first = work.formula_id
+    ration = next((one.id for one in work.library.formulas if one.amounts is Amounts.RATION), None)
+    if ration is not None:
+        work.choose(ration)
+        studio.settle(lambda: not work.stale)
+        studio.take(bench.frame, "16-a-ration")
+    work.choose(first)
+    studio.settle(lambda: not work.stale)
+    limit = next(one for one in work.library.limits(first or 0) if one.minimum and one.kind is LimitKind.NUTRIENT)
+    work.do(lambda mill: edits.change(mill, limit, minimum=limit.minimum * 3, maximum=None))
+    studio.settle()
+    studio.take(bench.frame, "17-conflict")
+    if work.result is not None and work.result.conflict is None:
+        work._show(_with_reasons(work.result, limit.id))
+        studio.settle()
+        studio.take(bench.frame, "18-conflict-with-its-repairs")
+    work.undo()
+    work.stale = True
+    work.answered.emit()
+    studio.settle()
+    studio.take(bench.frame, "19-stale")
+    work.stale = False
+    work.answered.emit()
+
+
+def _with_reasons(result: Result, limit_id: int) -> Result:
+    """The same conflict as the pages on conflicts describe it, with invented figures, to see how it reads."""
+    at = next(one.index for one in result.limits if one.limit_id == limit_id)
+    found = result.limits[at]
+    assert found.minimum is not None
+    other = next(one.index for one in result.limits if one.maximum is not None and one.index != at)
+    greatest = result.limits[other].maximum
+    assert greatest is not None
+    reach = (Reach(at, Side.MINIMUM, found.minimum, found.minimum * 0.6),)
+    repairs = (Repair(at, Side.MINIMUM, found.minimum, found.minimum * 0.6),
+               Repair(other, Side.MAXIMUM, greatest, greatest * 1.7))
+    return replace(result, status=Status.CONFLICT, check=Check(), conflict=Conflict(reach, (at, other), repairs))
+
+
+def _prices(studio: Studio, bench: Bench, price_list: Path) -> None:
+    if not price_list.is_file():
+        return
+    bench.bring_in_prices(price_list)
+    studio.settle()
+    reading: PriceListReading | None = bench.prices.reading
+    studio.take(bench.frame, "20-price-list")
+    if reading is not None and reading.accepted:
+        bench.prices.apply()
+        studio.settle()
+        studio.take(bench.frame, "21-prices-taken")
+        bench.work.undo()
+
+
+def _sheet(studio: Studio, bench: Bench, _price_list: Path) -> None:
+    bench.show_sheet()
+    studio.settle(lambda: bool(bench.sheet.pages.pages))
+    studio.take(bench.frame, "22-batch-sheet")
+    batch = bench.sheet.batch
+    if batch is not None:
+        for number, image in enumerate(sheets.page_images(sheets.batch_pdf(batch), 96.0 * studio.scale), 1):
+            (studio.out_dir / f"23-batch-sheet-page-{number}-{studio.scale}00.png").write_bytes(image)
+
+
