@@ -8,6 +8,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from blendapp.domain.library import Library
+from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.problems import Problem
 
 if TYPE_CHECKING:
@@ -28,3 +29,12 @@ def write_workbook(path: str | Path, library: Library, today: datetime.date) -> 
     from blendapp.exchange.workbook_write import write_workbook as write
 
     return write(path, library, today)
+
+
+def read_price_list(
+    path: str | Path, library: Library, today: datetime.date, sheet: str | None = None
+) -> PriceListReading:
+    """See price_list.read_price_list."""
+    from blendapp.exchange.price_list import read_price_list as read
+
+    return read(path, library, today, sheet)

@@ -1,0 +1,104 @@
+"""One cell of a price column: a price with what stands beside it, nothing, or something that is no price."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+from blendapp.domain.names import fold
+from blendapp.domain.notation import PLAIN
+from blendapp.domain.wording import _
+from blendapp.exchange.price_columns import PriceColumn
+from blendapp.exchange.price_numbers import (
+    NO_PRICE,
+    DecimalSign,
+    PriceText,
+    decide_decimal_sign,
+    read_price_text,
+    value_in_column,
+)
+from blendapp.exchange.price_words import NO_MONEY, Money, money_of_format
+from blendapp.exchange.tables import CellKind, CellValue, RawTable, column_letters, kind_of
+
+
+@dataclass(frozen=True)
+class PriceCell:
+    """value: the price, None where there is none or it is in doubt. empty: says that there is none. entered: as shown.
+
+    doubt: the question, "" without one. unit, money: what stands beside the number. as_text: a number stored as text.
+    """
+
+    value: float | None = None
+    empty: bool = False
+    entered: str = ""
+    doubt: str = ""
+    money: Money = NO_MONEY
+    unit: str = ""
+    as_text: bool = False
+    wordy: bool = False
+
+
+def column_sign(table: RawTable, column: int, rows: Iterable[int]) -> DecimalSign | None:
+    """The decimal sign of the texts of a column, decided over all of its rows."""
+    texts = (table.cell(row, column) for row in rows)
+    found = (read_price_text(text) for text in texts if isinstance(text, str) and fold(text) not in NO_PRICE)
+    return decide_decimal_sign([text for text in found if text is not None])
+
+
+def read_price_cell(table: RawTable, row: int, column: PriceColumn, sign: DecimalSign | None) -> PriceCell:
+    value = table.cell(row, column.index)
+    kind = kind_of(value)
+    if kind is CellKind.BLANK:
+        return PriceCell(empty=True)
+    if kind is CellKind.TEXT:
+        return _text_cell(str(value).strip(), sign, spreadsheet=bool(table.sheet))
+    if kind is CellKind.NUMBER:
+        assert isinstance(value, float | int)
+        number_format = table.formats.get((row, column.index), "")
+        doubt = ""
+        if "%" in number_format.replace('"%"', ""):
+            doubt = _("The cell {place} is formatted as a percentage; say what the price is.").format(
+                place=place(row, column.index)
+            )
+        money = money_of_format(number_format) if number_format else NO_MONEY
+        return PriceCell(float(value), entered=PLAIN.write_exact(float(value)), doubt=doubt, money=money)
+    text = _("The cell {place} holds a date, a time or a truth value and no price; say what the price is.")
+    return PriceCell(entered=str(value), doubt=text.format(place=place(row, column.index)))
+
+
+def _text_cell(text: str, sign: DecimalSign | None, spreadsheet: bool) -> PriceCell:
+    if fold(text) in NO_PRICE:
+        return PriceCell(empty=True, entered=text)
+    found = read_price_text(text)
+    if found is None:
+        wordy = not any(letter.isdigit() for letter in text)
+        return PriceCell(entered=text, doubt=_("“{text}” is not one price.").format(text=text), wordy=wordy)
+    value = value_in_column(found, sign)
+    if value is None:
+        return PriceCell(entered=text, doubt=_both_ways(text, found), money=found.money, unit=found.unit)
+    return PriceCell(value, entered=text, money=found.money, unit=found.unit, as_text=spreadsheet)
+
+
+def _both_ways(text: str, found: PriceText) -> str:
+    values = [PLAIN.write_exact(value) for value in found.readings.values()]
+    if len(values) == 2:
+        sentence = _("“{text}” may be {first} or {second}, and the column does not tell; say which.")
+        return sentence.format(text=text, first=values[0], second=values[1])
+    return _("“{text}” is not written as the other numbers of its column are; say what it is.").format(text=text)
+
+
+def place(row: int, column: int) -> str:
+    """A cell as the spreadsheet names it: row 0, column 1 is B1."""
+    return f"{column_letters(column)}{row + 1}"
+
+
+def error_in(value: CellValue, row: int, column: int) -> str:
+    """The sentence for a cell that holds an error or a formula without a stored value, or nothing."""
+    kind = kind_of(value)
+    if kind is CellKind.ERROR:
+        text = _("The cell {place} holds the error {error}; correct it in the list.")
+        return text.format(place=place(row, column), error=getattr(value, "text", ""))
+    if kind is CellKind.NO_STORED_VALUE:
+        text = _("The formula in the cell {place} has no stored result; open the list, let it calculate, and save it.")
+        return text.format(place=place(row, column))
+    return ""

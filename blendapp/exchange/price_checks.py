@@ -1,0 +1,75 @@
+"""What can be asked only when a whole price list is read: an ingredient that stands twice, a price that leaps."""
+
+from __future__ import annotations
+
+import math
+from collections import defaultdict
+from collections.abc import Sequence
+from dataclasses import replace
+
+from blendapp.domain.price_rows import Fate, PriceRow
+from blendapp.domain.wording import _
+
+LARGEST_USUAL_CHANGE = 0.30
+# A price this near to 10, 100 or 1000 times the old one has more likely lost its decimal sign or its unit.
+_NEAR_POWER = 0.35
+
+
+def ask_about_duplicates(rows: Sequence[PriceRow]) -> list[PriceRow]:
+    """Every row of an ingredient that several rows price becomes a question that names the others."""
+    places: dict[int, list[PriceRow]] = defaultdict(list)
+    for row in rows:
+        if row.ingredient_id is not None and row.fate in (Fate.ACCEPTED, Fate.QUESTION):
+            places[row.ingredient_id].append(row)
+    return [
+        _asked_about_twins(row, places[row.ingredient_id])
+        if row.fate in (Fate.ACCEPTED, Fate.QUESTION) and row.ingredient_id in places
+        and len(places[row.ingredient_id]) > 1
+        else row
+        for row in rows
+    ]
+
+
+def _asked_about_twins(row: PriceRow, twins: list[PriceRow]) -> PriceRow:
+    others = _(" and ").join(place_of(twin, row) for twin in twins if twin is not row)
+    text = _("“{name}” has another price in {others}; say which holds.").format(name=row.ingredient, others=others)
+    return asked(row, text)
+
+
+def place_of(row: PriceRow, seen_from: PriceRow) -> str:
+    """A row as the reader of another row finds it."""
+    if row.sheet == seen_from.sheet:
+        return _("row {row}").format(row=row.row)
+    return _("row {row} of the sheet “{sheet}”").format(row=row.row, sheet=row.sheet)
+
+
+def ask_about_leaps(rows: Sequence[PriceRow], largest_usual_change: float = LARGEST_USUAL_CHANGE) -> list[PriceRow]:
+    """An accepted price that differs from the old one by more than the usual change becomes a question.
+
+    largest_usual_change: as a fraction of the old price.
+    """
+    return [_asked_about_leap(row, largest_usual_change) if row.fate is Fate.ACCEPTED else row for row in rows]
+
+
+def _asked_about_leap(row: PriceRow, largest: float) -> PriceRow:
+    old, new = row.old_price_per_t, row.price_per_t
+    if old is None or new is None or old <= 0 or new <= 0 or abs(new - old) <= largest * old * (1 + 1e-9):
+        return row
+    power = round(math.log10(new / old))
+    times = 10.0 ** abs(power)
+    near = power != 0 and abs(power) <= 3 and abs(math.log(new / old / 10.0**power)) < _NEAR_POWER
+    prices = {"old": f"{old:.2f}", "new": f"{new:.2f}"}
+    if near and power > 0:
+        text = _("The price of {new} per t is about {times} times the old one of {old}; check the unit.")
+        return asked(row, text.format(times=f"{times:g}", **prices))
+    if near:
+        text = _("The price of {new} per t is about a {times}th of the old one of {old}; check the unit.")
+        return asked(row, text.format(times=f"{times:g}", **prices))
+    text = _("The price moves from {old} to {new} per t, by {change} %; confirm it.")
+    return asked(row, text.format(change=f"{(new - old) / old * 100:+.0f}", **prices))
+
+
+def asked(row: PriceRow, text: str) -> PriceRow:
+    """The row as a question, with one more reason."""
+    earlier = row.reason if row.fate is Fate.QUESTION else ""
+    return replace(row, fate=Fate.QUESTION, reason=f"{earlier} {text}".strip())

@@ -1,0 +1,180 @@
+"""Reading a price list in the plain form: every row that is not blank gets one fate, and no price is ever guessed."""
+
+from __future__ import annotations
+
+import datetime
+from collections.abc import Iterator
+from dataclasses import dataclass
+from pathlib import Path
+
+from blendapp.domain.library import Library
+from blendapp.domain.names import fold
+from blendapp.domain.notation import PLAIN
+from blendapp.domain.price_rows import Fate, PriceListReading, PriceRow
+from blendapp.domain.problems import Place, Problem, Refused
+from blendapp.domain.wording import _
+from blendapp.exchange.delimited import read_delimited
+from blendapp.exchange.files import Format, SourceFile, open_source
+from blendapp.exchange.price_cells import column_sign
+from blendapp.exchange.price_checks import ask_about_duplicates, ask_about_leaps
+from blendapp.exchange.price_columns import (
+    Role,
+    Table,
+    drop_empty_prices,
+    find_table,
+    read_headings,
+    settle_name_column,
+)
+from blendapp.exchange.price_names import NameFinder
+from blendapp.exchange.price_numbers import DateOrder, DecimalSign, decide_date_order
+from blendapp.exchange.price_row import read_row
+from blendapp.exchange.spreadsheets import read_spreadsheet
+from blendapp.exchange.suggestions import did_you_mean
+from blendapp.exchange.tables import CellKind, RawTable, kind_of
+
+
+@dataclass(frozen=True)
+class Segment:
+    """The rows of one table: from its heading row to the next one, with what was decided over its columns."""
+
+    table: Table
+    first: int
+    last: int
+    signs: dict[int, DecimalSign | None]
+    dates: dict[int, DateOrder | None]
+
+
+def read_price_list(
+    path: str | Path, library: Library, today: datetime.date, sheet: str | None = None
+) -> PriceListReading:
+    """Reads a price list against a library; nothing is written.
+
+    sheet: None reads every visible sheet. Each row that is not blank has one entry, in the order of the file.
+    Raises Refused with one sentence for a file that cannot be read, or that has no sheet of that name.
+    """
+    source = open_source(path)
+    notes: list[str] = []
+    tables = _chosen(_tables(source), sheet, source.name, notes)
+    if source.format in (Format.XLS, Format.XLSB, Format.ODS):
+        notes.append(_("Hidden rows and cells with errors cannot be told in this kind of file; check it by eye."))
+    names = NameFinder(library, source.name)
+    rows = [row for table in tables for row in read_table(table, library, names, today)]
+    rows = ask_about_leaps(ask_about_duplicates(rows))
+    return PriceListReading(source.name, source.digest, library.mill.currency, tuple(rows), tuple(notes))
+
+
+def _tables(source: SourceFile) -> list[RawTable]:
+    return [read_delimited(source)] if source.format is Format.TEXT else read_spreadsheet(source, formats=True)
+
+
+def _chosen(tables: list[RawTable], sheet: str | None, file: str, notes: list[str]) -> list[RawTable]:
+    if sheet is None:
+        hidden = [table.sheet for table in tables if not table.visible]
+        if hidden:
+            names = ", ".join(f"“{name}”" for name in hidden)
+            notes.append(_("These sheets are hidden and were not read: {names}.").format(names=names))
+        return [table for table in tables if table.visible]
+    found = [table for table in tables if table.sheet == sheet] or [
+        table for table in tables if fold(table.sheet) == fold(sheet)
+    ]
+    if not found:
+        text = _("There is no sheet “{sheet}”.").format(sheet=sheet)
+        known = [table.sheet for table in tables if table.sheet]
+        if not known:
+            text = _("The file is a text and has no sheets; leave the sheet out.")
+        elif not (likely := did_you_mean(sheet, known)):
+            text += " " + _("It has {names}.").format(names=", ".join(f"“{name}”" for name in known))
+        else:
+            text += likely
+        raise Refused(Problem(text, Place(file)))
+    return found[:1]
+
+
+def read_table(raw: RawTable, library: Library, names: NameFinder, today: datetime.date) -> Iterator[PriceRow]:
+    """The fate of every row of one sheet that is not blank."""
+    table = find_table(raw, names.is_known)
+    if table is None:
+        yield from _without_table(raw)
+        return
+    for segment in _segments(raw, table, names):
+        heading = segment.table.heading_row
+        for row in range(segment.first, segment.last):
+            if raw.is_blank(row):
+                continue
+            if row == heading:
+                yield PriceRow(raw.sheet, row + 1, Fate.IGNORED, _("Heading."))
+            elif heading is not None and row < heading:
+                yield PriceRow(raw.sheet, row + 1, Fate.IGNORED, _("Title above the table."), first_text(raw, row))
+            else:
+                yield read_row(raw, row, segment, library, names, today)
+
+
+def _segments(raw: RawTable, table: Table, names: NameFinder) -> Iterator[Segment]:
+    """The table, and every further one below it that has headings of its own."""
+    first, start = 0, 0 if table.heading_row is None else table.heading_row + 1
+    for row in range(start, len(raw.rows)):
+        found = read_headings(raw, row) if _may_be_heading(raw, row, table) else None
+        if found is None:
+            continue
+        settle_name_column(found, raw, names.is_known)
+        if found.name is None:
+            continue
+        drop_empty_prices(found, raw)
+        yield _segment(raw, table, first, row)
+        table, first = found, row
+    yield _segment(raw, table, first, len(raw.rows))
+
+
+def _may_be_heading(raw: RawTable, row: int, table: Table) -> bool:
+    """A quick look: a row whose cells are texts only, at least two, one of them where prices stand or will."""
+    filled = [kind_of(value) for value in raw.rows[row]]
+    filled = [kind for kind in filled if kind is not CellKind.BLANK]
+    if len(filled) < 2 or any(kind is not CellKind.TEXT for kind in filled):
+        return False
+    values = (raw.cell(row, column.index) for column in table.prices)
+    texts = [value for value in values if isinstance(value, str) and value.strip()]
+    return not texts or any(not any(letter.isdigit() for letter in text) or "/" in text for text in texts)
+
+
+def _segment(raw: RawTable, table: Table, first: int, last: int) -> Segment:
+    body = range(first if table.heading_row is None else table.heading_row + 1, last)
+    signs = {column.index: column_sign(raw, column.index, body) for column in table.prices}
+    dates = {}
+    for role in (Role.VALID_FROM, Role.VALID_TO):
+        index = table.first(role)
+        if index is not None:
+            values = (raw.cell(row, index) for row in body)
+            dates[index] = decide_date_order(value for value in values if isinstance(value, str))
+    return Segment(table, first, last, signs, dates)
+
+
+def _without_table(raw: RawTable) -> Iterator[PriceRow]:
+    """A sheet in which no table was found: rows of words are ignored, rows with a number are asked about."""
+    for row in range(len(raw.rows)):
+        if raw.is_blank(row):
+            continue
+        text = first_text(raw, row)
+        if any(_holds_number(value) for value in raw.rows[row]):
+            reason = _("No heading row with a name and a price was found; add one, with a unit.")
+            yield PriceRow(raw.sheet, row + 1, Fate.QUESTION, reason, text)
+        else:
+            yield PriceRow(raw.sheet, row + 1, Fate.IGNORED, _("No table of prices."), text)
+
+
+def _holds_number(value: object) -> bool:
+    kind = kind_of(value)  # type: ignore[arg-type]
+    if kind is CellKind.TEXT:
+        return any(letter.isdigit() for letter in str(value))
+    return kind not in (CellKind.BLANK, CellKind.BOOLEAN)
+
+
+def first_text(raw: RawTable, row: int) -> str:
+    """What stands first in a row, as the person sees it."""
+    for value in raw.rows[row]:
+        kind = kind_of(value)
+        if kind is CellKind.TEXT:
+            return " ".join(str(value).split())
+        if kind is CellKind.NUMBER:
+            assert isinstance(value, float | int)
+            return PLAIN.write_exact(float(value))
+    return ""

@@ -1,0 +1,96 @@
+"""Which ingredient a name in a price list is: exact after folding, then known synonyms, never by likeness alone."""
+
+from __future__ import annotations
+
+import re
+import unicodedata
+from dataclasses import dataclass
+
+from blendapp.domain.ingredients import Ingredient
+from blendapp.domain.library import Library
+from blendapp.domain.names import fold
+from blendapp.domain.wording import _
+from blendapp.exchange.suggestions import close_names
+
+LEAST_LIKENESS = 0.5
+MOST_LOOKED_FOR = 200
+_BETWEEN_DIGITS = re.compile(r"(?<=[0-9])[^0-9a-z%+]+(?=[0-9])")
+# Marks of what stood between two digits; a plus sign tells grades apart.
+_POINT, _GAP = "\x01", "\x02"
+_KEPT = frozenset({_POINT, _GAP, "+"})
+
+
+def match_key(name: str) -> str:
+    """A name without case, spaces, punctuation and accents. What stands between two digits stays: 1.5 is not 15."""
+    letters = unicodedata.normalize("NFKD", fold(name))
+    plain = "".join(letter for letter in letters if not unicodedata.combining(letter))
+    plain = _BETWEEN_DIGITS.sub(lambda found: _POINT if found[0].strip() in (".", ",") else _GAP, plain)
+    return "".join(letter for letter in plain if letter.isalnum() or letter in _KEPT)
+
+
+@dataclass(frozen=True)
+class Match:
+    """ingredient: None where nothing is known by that name; reason: then the question, else what is worth saying."""
+
+    ingredient: Ingredient | None
+    reason: str = ""
+    known: bool = True
+
+
+class NameFinder:
+    """Finds ingredients of a library by the names that a source gives them."""
+
+    def __init__(self, library: Library, source: str) -> None:
+        self.library = library
+        self._by_key: dict[str, list[Ingredient]] = {}
+        for ingredient in library.ingredients:
+            self._by_key.setdefault(match_key(ingredient.name), []).append(ingredient)
+        self._synonyms: dict[str, set[int]] = {}
+        own = [s for s in library.all("synonym") if s.ingredient_id is not None]
+        for synonym in sorted(own, key=lambda s: s.source != source):
+            ids = self._synonyms.setdefault(match_key(synonym.name), set())
+            if not ids or synonym.source != source:
+                ids.add(synonym.ingredient_id)
+        self._found: dict[str, Match] = {}
+        self._looked_for = 0
+
+    def is_known(self, name: str) -> bool:
+        key = match_key(name)
+        return bool(key) and (key in self._by_key or key in self._synonyms)
+
+    def find(self, name: str) -> Match:
+        folded = fold(name)
+        if folded not in self._found:
+            self._found[folded] = self._find(name)
+        return self._found[folded]
+
+    def _find(self, name: str) -> Match:
+        exact: Ingredient | None = self.library.named("ingredient", name)
+        if exact is not None:
+            return Match(exact)
+        key = match_key(name)
+        same = self._by_key.get(key, [])
+        if len(same) == 1:
+            return Match(same[0])
+        if same:
+            names = _(" or ").join(f"“{ingredient.name}”" for ingredient in same)
+            return Match(None, _("“{name}” may be {names}; say which.").format(name=name, names=names))
+        ids = sorted(self._synonyms.get(key, set()))
+        known = [self.library.ingredient(key) for key in ids if key in self.library.records["ingredient"]]
+        if len(known) == 1:
+            return Match(known[0], _("Known as “{name}” from an earlier list.").format(name=name))
+        if known:
+            names = _(" or ").join(f"“{ingredient.name}”" for ingredient in known)
+            return Match(None, _("“{name}” has been {names} before; say which.").format(name=name, names=names))
+        return Match(None, self._unknown(name), known=False)
+
+    def _unknown(self, name: str) -> str:
+        text = _("The mill has no ingredient “{name}”.").format(name=name)
+        self._looked_for += 1
+        candidates: list[str] = []
+        if self._looked_for <= MOST_LOOKED_FOR:
+            candidates = close_names(name, (i.name for i in self.library.ingredients), LEAST_LIKENESS)
+        if candidates:
+            names = _(" or ").join(f"“{candidate}”" for candidate in candidates)
+            return text + " " + _("Is it {names}?").format(names=names)
+        return text + " " + _("Say which ingredient it is, or add it.")
