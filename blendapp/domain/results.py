@@ -80,7 +80,7 @@ class NutrientResult:
     """A nutrient of the mix, per kg as fed in its own unit (blend) or in its own per-day unit (ration).
 
     value: None without an answer or if no ingredient of the mix has a value. missing: names of the ingredients in
-    the mix without a value, which count as 0 in `value`. limited: whether a limit of the formula names it.
+    the mix without a value, which count as 0 in `value`. limited: whether a limit of kind nutrient is about it.
     """
 
     nutrient_id: int

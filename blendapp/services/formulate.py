@@ -15,6 +15,7 @@ from blendapp.optimise import certificate, rays
 from blendapp.optimise.build import answer
 from blendapp.optimise.build.composition import Composition
 from blendapp.optimise.build.formula import FormulaProgram, build, unknown_values
+from blendapp.optimise.linear import FailedSolve
 from blendapp.optimise.program import Program
 from blendapp.optimise.solution import Solution
 from blendapp.optimise.solve import solve
@@ -79,10 +80,14 @@ def formulas_named(library: Library, names: Sequence[str]) -> list[Formula]:
 
 
 def _solve(program: Program, time_limit_s: float | None) -> Solution:
+    """Without an ingredient there is no mix, not even an empty one that needs nothing."""
     if program.size == 0:
-        empty = all(row.minimum is None or row.minimum <= 0 for row in program.rows)
-        return Solution("optimal" if empty and not program.rows else "infeasible")
-    return solve(program, time_limit_s)
+        return Solution("infeasible")
+    try:
+        return solve(program, time_limit_s)
+    except FailedSolve as failure:
+        text = _("The solver gave no clear answer ({failure}); nothing is shown.")
+        raise FailedCertificate(text.format(failure=failure)) from failure
 
 
 def _answer(

@@ -46,5 +46,5 @@ def test_a_group_is_read_as_people_write_it(text: str, names: list[str]) -> None
 
 @pytest.mark.parametrize("text", ['"Wheat', '"Wheat" Maize', '"Wheat" + "Maize'])
 def test_a_quote_left_open_or_followed_by_a_word_is_refused(text: str) -> None:
-    with pytest.raises(ValueError, match="Wheat|Maize"):
+    with pytest.raises(ValueError, match=r"Wheat|Maize"):
         split_names(text)

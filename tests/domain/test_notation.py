@@ -44,7 +44,7 @@ def test_an_exact_number_is_written_as_a_person_would_type_it(value: float | Non
 
 
 def test_a_comma_under_a_point_is_refused_and_never_125() -> None:
-    with pytest.raises(ValueError, match="“12,5” is not a number here; write it like 1234.5"):
+    with pytest.raises(ValueError, match=r"“12,5” is not a number here; write it like 1234\.5"):
         PLAIN.read("12,5")
 
 
