@@ -270,8 +270,9 @@ def job_in_text(python: Path, folder: Path) -> int:
     formula = next((name for name, (cost, _) in after.items() if cost.strip() != NO_ANSWER), None)
     if formula is None:
         raise Stop("No formula of the sample mill has an answer.")
-    printed = blendapp(python, "sheet", mill, formula, "--batch-kg", "2000", "-o", page)
-    return int(solved != 0 or printed != 0 or not page.exists())
+    # A sheet that names limits which rounding to the scales breaks has status 1; it is written all the same.
+    blendapp(python, "sheet", mill, formula, "--batch-kg", "2000", "-o", page)
+    return int(solved != 0 or not page.exists())
 
 
 def costs(python: Path, mill: Path) -> dict[str, tuple[str, str]]:

@@ -115,8 +115,8 @@ def test_a_run_in_text_never_uses_a_folder_that_is_there(tmp_path: Path) -> None
 class Program:
     """Stands in for blendapp's commands; the mill's first formula has no answer, its second costs less afterwards."""
 
-    def __init__(self, prices: int = 1, sheet: int = 0, silent: str = "") -> None:
-        self.prices, self.sheet, self.silent = prices, sheet, silent
+    def __init__(self, sheet_status: int = 1, has_page: bool = True, silent: str = "") -> None:
+        self.sheet_status, self.has_page, self.silent = sheet_status, has_page, silent
         self.calls: list[list[str]] = []
 
     def ask(self, python: Path, *arguments: str | Path) -> tuple[int, str]:
@@ -128,9 +128,9 @@ class Program:
             both = [("Impossible", None), ("Layer", cost)]
             return 1, json.dumps({"formulas": [
                 {"formula": name, "cost": cost, "currency": "USD", "cost_per": "t"} for name, cost in both]})
-        if arguments[0] == "sheet" and self.sheet == 0:
+        if arguments[0] == "sheet" and self.has_page:
             Path(arguments[-1]).write_bytes(b"%PDF-")
-        return {"prices": self.prices, "sheet": self.sheet, "formulate": 0}.get(str(arguments[0]), 0), "said\n"
+        return {"prices": 1, "sheet": self.sheet_status}.get(str(arguments[0]), 0), "said\n"
 
 
 @pytest.fixture
@@ -162,8 +162,17 @@ def test_the_job_in_text_stops_at_a_command_that_gives_no_answer(
 
 def test_a_batch_sheet_that_was_not_written_makes_the_job_fail(
         python: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
-    monkeypatch.setattr(start, "ask", Program(sheet=1).ask)
+    monkeypatch.setattr(start, "ask", Program(has_page=False).ask)
     assert start.job_in_text(python, tmp_path) == 1
+
+
+def test_a_batch_sheet_that_names_broken_limits_is_a_sheet(
+        python: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(start, "ask", Program(sheet_status=1).ask)
+    assert start.job_in_text(python, tmp_path) == 0
+    monkeypatch.setattr(start, "ask", Program(sheet_status=2, has_page=False).ask)
+    with pytest.raises(start.Stop, match="blendapp sheet"):
+        start.job_in_text(python, tmp_path / "other")
 
 
 def test_without_venv_one_sentence_says_what_to_install(
