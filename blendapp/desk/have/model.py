@@ -58,10 +58,9 @@ class HaveModel(Grid):
         ]
         if self.sort_key is not None:
             key = self.sort_key
-            shown.sort(key=lambda one: self._sort_value(one, key), reverse=self.sort_down)
+            shown.sort(key=lambda one: self._sort_value(one, key)[1], reverse=self.sort_down)
             # Unknown cells stand last whichever way the rest is ordered.
-            shown.sort(key=lambda one: self._sort_value(one, key)[0] if not self.sort_down else
-                       not self._sort_value(one, key)[0])
+            shown.sort(key=lambda one: self._sort_value(one, key)[0])
         self.set_rows([one.id for one in shown])
 
     def _take_decimals(self) -> None:

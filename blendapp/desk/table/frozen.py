@@ -47,7 +47,7 @@ class FrozenTable(DeskTable):
         names.setFocusProxy(self)
         names.setFrameShape(QFrame.Shape.NoFrame)
         names.setShowGrid(False)
-        names.setEditTriggers(QAbstractItemView.EditTrigger.DoubleClicked)
+        names.setEditTriggers(self.editTriggers())
         names.setSelectionMode(self.selectionMode())
         names.verticalHeader().hide()
         names.verticalHeader().setMinimumSectionSize(8)

@@ -164,9 +164,10 @@ class DeskTable(QTableView):
             assert look.rail is not None
             assert look.axis is not None
             owner = (self.grid.owner(index), self.grid.key(index))
-            taken = self.grip.press(owner, look.rail, look.axis, point.x() - track.left(), track.width())
+            # Moving the keyboard here gives what another rail still holds, so it comes first.
             self.setFocus()
             self.setCurrentIndex(index)
+            taken = self.grip.press(owner, look.rail, look.axis, point.x() - track.left(), track.width())
             if taken is not None:
                 self._chosen_end = taken
                 self._dragging = True

@@ -1,0 +1,189 @@
+"""The ingredient table: typed, refused, copied and pasted, undone."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QApplication
+from tests.desk.conftest import Hands
+
+from blendapp.desk.bench import Bench
+
+MAIZE, SOY, LIMESTONE, PEAS = 1, 2, 3, 4
+CONTROL = Qt.KeyboardModifier.ControlModifier
+
+
+def shown(bench: Bench, owner: int, key: str) -> str:
+    return str(bench.have.model.cell(owner, key).data())
+
+
+def test_a_typed_price_is_stored_and_the_cost_follows(bench: Bench, hands: Hands) -> None:
+    before = bench.frame.header.cost.figure.text()
+    hands.go(bench.have.table, MAIZE, "price")
+    hands.write("210")
+    hands.key(Qt.Key.Key_Return)
+    assert bench.work.library.price_per_t(MAIZE, bench.work.on) == 210
+    assert shown(bench, MAIZE, "price") == "210.00"
+    assert bench.frame.header.cost.figure.text() != before
+    assert bench.frame.header.cost.since_last.text().startswith("+")
+
+
+def test_enter_goes_on_to_the_cell_below(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, MAIZE, "price")
+    hands.write("210")
+    hands.key(Qt.Key.Key_Return)
+    hands.write("430")
+    hands.key(Qt.Key.Key_Return)
+    assert bench.work.library.price_per_t(SOY, bench.work.on) == 430
+
+
+def test_a_price_that_is_no_number_is_refused_beside_its_cell_and_escape_takes_it_back(
+    bench: Bench, hands: Hands
+) -> None:
+    table = bench.have.table
+    hands.go(table, MAIZE, "price")
+    hands.write("cheap")
+    hands.key(Qt.Key.Key_Tab)
+    assert bench.work.library.price_per_t(MAIZE, bench.work.on) == 200
+    assert shown(bench, MAIZE, "price") == "cheap"
+    hands.go(table, MAIZE, "price")
+    QApplication.processEvents()
+    assert table._note is not None
+    assert table._note.isVisible()
+    assert "cheap" in table._note.text()
+    hands.key(Qt.Key.Key_Escape)
+    assert shown(bench, MAIZE, "price") == "200.00"
+    assert not table._note.isVisible()
+
+
+def test_a_price_per_another_mass_is_turned_into_money_per_tonne(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, MAIZE, "price")
+    hands.write("20 / 100 kg")
+    hands.key(Qt.Key.Key_Return)
+    assert shown(bench, MAIZE, "price") == "200.00"
+    assert shown(bench, MAIZE, "quoted") == "20 per 100 kg"
+
+
+def test_a_cleared_price_is_unknown_and_never_zero(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, LIMESTONE, "price")
+    hands.key(Qt.Key.Key_Delete)
+    assert bench.work.library.price_per_t(LIMESTONE, bench.work.on) is None
+    assert shown(bench, LIMESTONE, "price") == "no price"
+
+
+def test_undo_and_redo_restore_a_price(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, MAIZE, "price")
+    hands.write("210")
+    hands.key(Qt.Key.Key_Return)
+    hands.key(Qt.Key.Key_Z, CONTROL)
+    assert shown(bench, MAIZE, "price") == "200.00"
+    hands.key(Qt.Key.Key_Z, CONTROL | Qt.KeyboardModifier.ShiftModifier)
+    assert shown(bench, MAIZE, "price") == "210.00"
+
+
+def test_an_unknown_value_is_a_dot_a_known_none_is_0_and_clearing_makes_it_unknown(bench: Bench, hands: Hands) -> None:
+    bench.have.show_set("composition")
+    assert shown(bench, PEAS, "nutrient 2") == "·"
+    assert shown(bench, LIMESTONE, "nutrient 2") == "0"
+    hands.go(bench.have.table, LIMESTONE, "nutrient 2")
+    hands.key(Qt.Key.Key_Delete)
+    assert shown(bench, LIMESTONE, "nutrient 2") == "·"
+    assert bench.work.library.value(LIMESTONE, 2) is None
+
+
+def test_a_pasted_block_keeps_every_good_cell_lists_every_bad_one_and_is_one_undo(bench: Bench, hands: Hands) -> None:
+    bench.have.show_set("composition")
+    table = bench.have.table
+    hands.go(table, MAIZE, "nutrient 1")
+    QApplication.clipboard().setText("9.5\t0.31\tlots\n47\tx\t0.33\n")
+    hands.key(Qt.Key.Key_V, CONTROL)
+    library = bench.work.library
+    assert library.value(MAIZE, 1).amount == 9.5  # type: ignore[union-attr]
+    assert library.value(SOY, 3).amount == 0.33  # type: ignore[union-attr]
+    assert library.value(SOY, 2).amount == 2.90  # type: ignore[union-attr]
+    assert "4 of 6" in bench.strip.words.text()
+    assert "lots" in bench.strip.list.text()
+    assert "“x”" in bench.strip.list.text()
+    assert shown(bench, SOY, "nutrient 2") == "x"
+    hands.key(Qt.Key.Key_Z, CONTROL)
+    assert library.value(MAIZE, 1).amount == 10.0  # type: ignore[union-attr]
+    assert library.value(SOY, 3).amount == 0.30  # type: ignore[union-attr]
+
+
+def test_cells_of_a_block_that_fall_outside_the_table_are_listed(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, PEAS, "stock_kg")
+    QApplication.clipboard().setText("5\n6\n7")
+    hands.key(Qt.Key.Key_V, CONTROL)
+    assert bench.work.library.ingredient(PEAS).stock_kg == 5
+    assert "6" in bench.strip.list.text()
+    assert "7" in bench.strip.list.text()
+
+
+def test_a_copied_block_pastes_back_equal(bench: Bench, hands: Hands) -> None:
+    bench.have.show_set("composition")
+    table = bench.have.table
+    hands.go(table, MAIZE, "nutrient 1")
+    for _step in range(2):
+        hands.key(Qt.Key.Key_Down, Qt.KeyboardModifier.ShiftModifier)
+    hands.key(Qt.Key.Key_C, CONTROL)
+    assert QApplication.clipboard().text() == "10\n46\n0"
+    values = dict(bench.work.library.records["value"])
+    hands.go(table, MAIZE, "nutrient 1")
+    hands.key(Qt.Key.Key_V, CONTROL)
+    assert dict(bench.work.library.records["value"]) == values
+
+
+def test_typing_in_the_find_field_shows_only_what_holds_it(bench: Bench, hands: Hands) -> None:
+    hands.key(Qt.Key.Key_F, CONTROL)
+    hands.write("me")
+    assert [bench.work.library.ingredient(owner).name for owner in bench.have.model.owners] == ["Soybean meal", "Limestone"]
+
+
+def test_an_ingredient_is_added_named_and_removed_again_with_undo(bench: Bench, hands: Hands) -> None:
+    hands.click(bench.have.add)
+    hands.write("Oats")
+    hands.key(Qt.Key.Key_Return)
+    oats = bench.work.library.named("ingredient", "Oats")
+    assert oats is not None
+    hands.go(bench.have.table, oats.id, "name")
+    hands.key(Qt.Key.Key_Delete)
+    assert bench.work.library.named("ingredient", "Oats") is None
+    hands.key(Qt.Key.Key_Z, CONTROL)
+    assert bench.work.library.named("ingredient", "Oats") is not None
+
+
+def test_two_ingredients_of_one_name_are_refused_where_it_is_typed(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, PEAS, "name")
+    hands.write("maize")
+    hands.key(Qt.Key.Key_Return)
+    assert bench.work.library.ingredient(PEAS).name == "Peas"
+    assert bench.have.model.look(*where(bench, PEAS, "name")).fault
+
+
+def where(bench: Bench, owner: int, key: str) -> tuple[int, int]:
+    index = bench.have.model.cell(owner, key)
+    return index.row(), index.column()
+
+
+def test_a_dragged_price_shows_its_cost_while_it_moves_and_is_one_undo(bench: Bench, hands: Hands) -> None:
+    before = bench.frame.header.cost.figure.text()
+    hands.drag_rail(bench.have.table, MAIZE, "holds", 200, 220, drop=False)
+    assert bench.frame.header.cost.figure.text() != before
+    assert bench.work.library.price_per_t(MAIZE, bench.work.on) == 200
+    hands.key(Qt.Key.Key_Escape)
+    assert bench.frame.header.cost.figure.text() == before
+    hands.drag_rail(bench.have.table, MAIZE, "holds", 200, 220)
+    price = bench.work.library.price_per_t(MAIZE, bench.work.on)
+    assert price is not None
+    assert 215 < price < 225
+    hands.key(Qt.Key.Key_Z, CONTROL)
+    assert bench.work.library.price_per_t(MAIZE, bench.work.on) == 200
+
+
+def test_headings_sort_and_unknown_prices_stand_last_both_ways(bench: Bench) -> None:
+    model = bench.have.model
+    section = model.column_of("price")
+    assert section is not None
+    bench.have._sort(section)
+    assert model.owners == [LIMESTONE, MAIZE, SOY, PEAS]
+    bench.have._sort(section)
+    assert model.owners == [SOY, MAIZE, LIMESTONE, PEAS]
