@@ -1,0 +1,253 @@
+"""The whole batch: total, limits, deviations, cost, in this order; an answer in time that says how good it is."""
+
+from __future__ import annotations
+
+import time
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, replace
+from fractions import Fraction
+from typing import Literal
+
+from blendapp.optimise.steps.integers import Found, Integers
+from blendapp.optimise.steps.problem import Order, Placed, Reason, Task, exact, place, place_fixed, task
+from blendapp.optimise.steps.start import start
+from blendapp.optimise.steps.totals import nearest_totals
+
+Aim = Literal["total", "limits", "deviation", "cost"]
+# Deviations or costs closer than this (relative above one) are equal.
+EQUAL = 1e-6
+_GUARD = 1e-5
+_MOST_GUARDED = 3
+_START_SHARE = 0.2  # of the time
+
+
+@dataclass(frozen=True)
+class Stage:
+    """What was reached for one aim, and what no batch can be below, given what the aims before it reached.
+
+    total: kg; limits: how many are broken; deviation: sum of those relative to what is allowed; cost: of the batch.
+    """
+
+    aim: Aim
+    value: float
+    bound: float
+    proven: bool
+
+    @property
+    def gap(self) -> float:
+        """value - bound, 0 where proven."""
+        return 0.0 if self.proven else max(self.value - self.bound, 0.0)
+
+
+@dataclass(frozen=True)
+class WholeBatch:
+    """steps, kilograms: one a line, exact. placed: on which scale and within what. broken: limits, ascending.
+    stages: in the order of the aims. seconds: what it took."""
+
+    placed: tuple[Placed, ...]
+    steps: tuple[int, ...]
+    kilograms: tuple[Fraction, ...]
+    total_kg: Fraction
+    error_kg: Fraction
+    broken: tuple[int, ...]
+    deviation: float
+    cost: float
+    stages: tuple[Stage, ...]
+    seconds: float
+
+    @property
+    def proven(self) -> bool:
+        """Whether no batch is better in any aim."""
+        return all(stage.proven for stage in self.stages)
+
+    def stage(self, aim: Aim) -> Stage:
+        """What was reached for an aim."""
+        return next(stage for stage in self.stages if stage.aim == aim)
+
+
+@dataclass(frozen=True)
+class NoBatch:
+    """No batch can be weighed; every reason."""
+
+    reasons: tuple[Reason, ...]
+
+
+def whole_batch(order: Order, time_limit_s: float = 1.5) -> WholeBatch | NoBatch:
+    """Whole steps for every line of one batch.
+
+    Hard: each line a multiple of its scale's step within its load and within max(step, tolerance x share) of its
+    share, or absent where its share is no more than a step. Then, each among the best of those before: least error
+    of the total, fewest limits broken (exactly, from the kilograms), least sum of deviations each over what it is
+    allowed, least cost. Batches that tie in all four may differ from another solver's.
+    """
+    began = time.perf_counter()
+    placed = _placed(order)
+    if isinstance(placed, NoBatch):
+        return placed
+    totals = nearest_totals(order, placed)
+    if totals is not None:
+        if not totals:
+            return NoBatch((Reason(None, "total"),))
+        worse = _fixed_spoils(order, totals)
+        if worse is not None:
+            return worse
+    return _Search(task(order, placed), totals, began, time_limit_s).run()
+
+
+def _placed(order: Order) -> tuple[Placed, ...] | NoBatch:
+    if not order.lines:
+        return NoBatch((Reason(None, "none"),))
+    found = [place(line) if line.fixed_kg is None else place_fixed(line) for line in order.lines]
+    reasons = [replace(one, line=j) for j, one in enumerate(found) if isinstance(one, Reason)]
+    return NoBatch(tuple(reasons)) if reasons else tuple(one for one in found if isinstance(one, Placed))
+
+
+def _fixed_spoils(order: Order, totals: Sequence[Fraction]) -> NoBatch | None:
+    """Where the fixed lines keep the total further from the batch than the same lines could come unfixed."""
+    if all(line.fixed_kg is None for line in order.lines):
+        return None
+    free = replace(order, lines=tuple(replace(line, fixed_kg=None) for line in order.lines))
+    placed = _placed(free)
+    best = None if isinstance(placed, NoBatch) else nearest_totals(free, placed)
+    wanted = exact(order.batch_kg)
+    if not best or abs(totals[0] - wanted) <= abs(best[0] - wanted):
+        return None
+    return NoBatch((Reason(None, "fixed total", totals[0]),))
+
+
+class _Search:
+    def __init__(self, task: Task, totals: list[Fraction] | None, began: float, time_limit_s: float) -> None:
+        self.task, self.began, self.ends = task, began, began + time_limit_s
+        self.wanted = exact(task.order.batch_kg)
+        self.totals = totals
+        self.best: tuple[int, ...] | None = None
+
+    def run(self) -> WholeBatch | NoBatch:
+        total = self._total()
+        if isinstance(total, NoBatch):
+            return total
+        assert self.totals is not None
+        self.best = start(self.task, self.totals, _START_SHARE * self._left())
+        self.programs = Integers(self.task, self.totals)
+        limits = self._limits()
+        deviation = self._deviation()
+        cost = self._cost()
+        assert self.best is not None
+        n = self.best
+        error = abs(self.task.total(n) - self.wanted)
+        if float(error) > total.value:
+            total = replace(total, value=float(error), proven=False)
+        return WholeBatch(
+            placed=self.task.placed,
+            steps=n,
+            kilograms=tuple(p.step * k for p, k in zip(self.task.placed, n, strict=True)),
+            total_kg=self.task.total(n),
+            error_kg=error,
+            broken=self.task.broken(n),
+            deviation=float(self.task.deviation(n)),
+            cost=self.task.money(n),
+            stages=(total, limits, deviation, cost),
+            seconds=time.perf_counter() - self.began,
+        )
+
+    def _left(self) -> float:
+        return max(self.ends - time.perf_counter(), 0.0)
+
+    def _total(self) -> Stage | NoBatch:
+        """The totals that the batch may come to; by the solver where there are too many sums to mark."""
+        if self.totals is not None:
+            error = float(abs(self.totals[0] - self.wanted))
+            return Stage("total", error, error, True)
+        found = Integers(self.task, [self.wanted]).nearest_total(0.4 * self._left())
+        if found.none:
+            return NoBatch((Reason(None, "total"),))
+        near = found.steps or tuple(p.nearest for p in self.task.placed)
+        self.totals = [self.task.total(near)]
+        error = float(abs(self.totals[0] - self.wanted))
+        return Stage("total", error, max(found.bound, 0.0), error <= found.bound + EQUAL * float(self.wanted) * 1e-6)
+
+    def _limits(self) -> Stage:
+        assert self.best is not None
+        fewest = self.programs.always
+        here = self._broken()
+        bound = float(fewest)
+        if here > fewest or not self._on_total(self.best):
+            bound = self._tried(lambda: self.programs.fewest_broken(0.45 * self._left()), bound)
+        here = self._broken()
+        return Stage("limits", here, min(bound, here), here <= bound)
+
+    def _deviation(self) -> Stage:
+        assert self.best is not None
+        most = self._broken()
+        now = float(self.task.deviation(self.best))
+        within = now if self._on_total(self.best) else None
+        bound = self._tried(lambda: self.programs.least_deviation(most, within, 0.75 * self._left()), 0.0)
+        now = float(self.task.deviation(self.best))
+        return Stage("deviation", now, min(max(bound, 0.0), now), _equal(now, bound))
+
+    def _cost(self) -> Stage:
+        assert self.best is not None
+        most, deviation = self._broken(), float(self.task.deviation(self.best))
+        least = sum(min(c * p.lo, c * p.hi, 0.0 if p.absent else c * p.lo)
+                    for c, p in zip(self.task.cost, self.task.placed, strict=True))
+        bound = self._tried(lambda: self.programs.least_cost(most, deviation, self._left()), least)
+        now = self.task.money(self.best)
+        return Stage("cost", now, min(bound, now), _equal(now, bound))
+
+    def _tried(self, solve: Callable[[], Found], bound: float) -> float:
+        """Solve, take the steps if they are better, and return the best bound.
+
+        The solver may take dust for holding a limit; then that limit is guarded and solved again. The bound of the
+        first, unguarded program stays valid, since guarding only shuts batches out.
+        """
+        first = True
+        for _ in range(_MOST_GUARDED):
+            if self._left() <= 0.0:
+                break
+            found = solve()
+            if found.none:
+                break
+            if first:
+                bound, first = max(bound, found.bound), False
+            if found.steps is None:
+                break
+            steps = self._admitted(found.steps)
+            if steps is None or not self._take(steps, found):
+                break
+        self.programs.guard.clear()
+        return bound
+
+    def _take(self, steps: tuple[int, ...], found: Found) -> bool:
+        """Keep steps that are better; whether to guard limits and solve again."""
+        assert self.best is not None
+        if self._key(steps) < self._key(self.best):
+            self.best = steps
+            return False
+        cheated = set(self.task.broken(steps)) - set(self.task.broken(self.best))
+        fresh = {limit for limit in cheated if limit not in self.programs.guard}
+        if not found.proven or len(self.task.broken(steps)) <= self._broken() or not fresh:
+            return False
+        self.programs.guard.update(dict.fromkeys(fresh, _GUARD))
+        return True
+
+    def _key(self, steps: tuple[int, ...]) -> tuple[Fraction, int, float, float]:
+        error = abs(self.task.total(steps) - self.wanted)
+        deviation = round(float(self.task.deviation(steps)) / EQUAL * 10)
+        return error, len(self.task.broken(steps)), deviation, self.task.money(steps)
+
+    def _admitted(self, steps: tuple[int, ...]) -> tuple[int, ...] | None:
+        inside = all(
+            p.lo <= n <= p.hi or (p.absent and n == 0) for n, p in zip(steps, self.task.placed, strict=True)
+        )
+        return steps if inside else None
+
+    def _on_total(self, steps: tuple[int, ...]) -> bool:
+        return self.totals is not None and self.task.total(steps) in self.totals
+
+    def _broken(self) -> int:
+        assert self.best is not None
+        return len(self.task.broken(self.best))
+
+
+def _equal(value: float, bound: float) -> bool:
+    return value <= bound + EQUAL * max(1.0, abs(bound))
