@@ -14,11 +14,11 @@ from blendapp.domain.library import Library
 from blendapp.domain.mills import MillInfo
 from blendapp.domain.names import fold
 from blendapp.domain.nutrients import Nutrient
-from blendapp.domain.problems import Problem, Refused, Severity
+from blendapp.domain.problems import Problem, Refused
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import Change, Record, added, removed
 from blendapp.domain.wording import _
-from blendapp.services.mill import Edit, Mill, kind_of, problems_of, record_name
+from blendapp.services.mill import Edit, Mill, kind_of, problems_in_place, record_name
 
 TYPED = "typed"
 
@@ -107,7 +107,7 @@ def price_changes(
         return []
     if old is None and price is None:
         return []
-    bushel = mill.library.ingredient(ingredient_id).bushel_lb if chosen == units.BUSHEL else None
+    bushel = _bushel_lb(mill.library, ingredient_id, old) if chosen == units.BUSHEL else None
     return [added(Quote(
         mill.new_id("quote"), ingredient_id, price, chosen, bushel, valid_from=on, recorded=on, source=source,
         entered=entered,
@@ -119,8 +119,14 @@ def set_price_per_t(mill: Mill, ingredient_id: int, price_per_t: float, on: date
     old = mill.library.quote_in_force(ingredient_id, on)
     if old is None or old.per == "t":
         return set_price(mill, ingredient_id, price_per_t, on, per="t")
-    per_t = units.price_per_t(1.0, old.per, old.bushel_lb)
+    per_t = units.price_per_t(1.0, old.per, _bushel_lb(mill.library, ingredient_id, old))
     return set_price(mill, ingredient_id, price_per_t / per_t, on, per=old.per)
+
+
+def _bushel_lb(library: Library, ingredient_id: int, last: Quote | None) -> float | None:
+    """The bushel of a new quote: the ingredient's own now, else that of its last quote."""
+    own = library.ingredient(ingredient_id).bushel_lb
+    return own if own is not None or last is None else last.bushel_lb
 
 
 # -- ingredients and nutrients
@@ -281,11 +287,7 @@ def many(mill: Mill, what: str, edits: Iterable[Callable[[], Sequence[Change]]])
 
 def _tried(mill: Mill, changes: list[Change]) -> list[Change]:
     """The changes, left standing in the library; raises Refused, with nothing changed, if they are faulty."""
-    mill.library.apply(changes)
-    faults = [p for p in problems_of(changes, mill.library) if p.severity is Severity.FAULT]
-    if faults:
-        mill.library.apply(c.reversed for c in reversed(changes))
-        raise Refused(faults)
+    problems_in_place(changes, mill.library)
     return changes
 
 

@@ -23,7 +23,9 @@ if TYPE_CHECKING:
     from blendapp.storage import Entry, Store
 
 
-__all__ = ["Edit", "Mill", "MillFileError", "kind_of", "open_mill", "problems_of", "record_name", "today"]
+__all__ = [
+    "Edit", "Mill", "MillFileError", "kind_of", "open_mill", "problems_in_place", "problems_of", "record_name", "today",
+]
 
 
 @dataclass(frozen=True)
@@ -123,12 +125,7 @@ class Mill:
     def _take_in(self, changes: Sequence[Change]) -> list[Problem]:
         if not self.writable:
             raise Refused(self.why_read_only or _("This mill file is read-only here."))
-        self.library.apply(changes)
-        found = problems_of(changes, self.library)
-        faults = [p for p in found if p.severity is Severity.FAULT]
-        if faults:
-            self.library.apply(change.reversed for change in reversed(changes))
-            raise Refused(faults)
+        found = problems_in_place(changes, self.library)
         return [p for p in found if p.severity is Severity.ODDITY]
 
     def _stored(self, changes: Sequence[Change], what: str, role: str, of: int | None) -> Entry:
@@ -202,18 +199,34 @@ def open_mill(path: Path | str, who: str = "") -> Mill:
     return Mill(open_store(path), who)
 
 
+def problems_in_place(changes: Sequence[Change], library: Library) -> list[Problem]:
+    """Take changes into a library and tell what is odd; where anything is wrong with them they are taken out again.
+
+    Raises Refused with every fault.
+    """
+    library.apply(changes)
+    try:
+        found = problems_of(changes, library)
+        faults = [p for p in found if p.severity is Severity.FAULT]
+        if faults:
+            raise Refused(faults)
+    except BaseException:
+        library.apply(change.reversed for change in reversed(changes))
+        raise
+    return found
+
+
 def problems_of(changes: Iterable[Change], library: Library) -> list[Problem]:
     """The faults and oddities of what edits have put into a library, and of the records that rest on them."""
     found: list[Problem] = []
     seen: set[tuple[str, int]] = set()
-    for change in changes:
-        for record in [change.after, *_resting_on(change, library)]:
-            if record is None:
-                continue
-            kind = kind_of(record)
-            if (kind, record.id) in seen:
-                continue
-            seen.add((kind, record.id))
+    changes = list(changes)
+    touched = [record for change in changes for record in (change.after, *_resting_on(change, library))]
+    if any(map(_may_admit_more, changes)):
+        touched += [i for i in library.records["ingredient"].values() if i.made_by_formula_id is not None]
+    for record in touched:
+        if record is not None and (kind_of(record), record.id) not in seen:
+            seen.add((kind_of(record), record.id))
             for severity, findings in (
                 (Severity.FAULT, checks.faults(record, library)),
                 (Severity.ODDITY, checks.oddities(record, library)),
@@ -274,6 +287,16 @@ def _resting_on(change: Change, library: Library) -> list[Record]:
         ]
         return values + limits
     return []
+
+
+def _may_admit_more(change: Change) -> bool:
+    """Whether a formula may use an ingredient after a change that it did not use before."""
+    before, after = change.before, change.after
+    if change.kind == "ingredient":
+        return after is not None and (before is None or before.tags != after.tags)
+    if change.kind == "formula":
+        return before is not None and after is not None and before.admits is not after.admits
+    return change.kind == "limit"
 
 
 def _user() -> str:
