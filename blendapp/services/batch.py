@@ -66,6 +66,10 @@ def make_batch(
         return replace(empty, cause=_no_split(library.mixers, order_kg))
     empty = replace(empty, batches=split, batch_kg=order_kg / split)
     used = answer.mix
+    if not used:
+        return replace(empty, cause=_("{formula} is a mix of nothing; there is nothing to weigh.").format(
+            formula=formula.name
+        ))
     unscaled = [library.ingredient(i.ingredient_id) for i in used if _scale(library, i.ingredient_id) is None]
     if library.scales and unscaled:
         return replace(empty, cause=_proposal(library, unscaled))

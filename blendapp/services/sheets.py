@@ -5,7 +5,7 @@ from __future__ import annotations
 import contextlib
 import datetime
 import os
-import tempfile
+import secrets
 from collections.abc import Callable, Iterator
 from dataclasses import asdict
 from pathlib import Path
@@ -45,27 +45,25 @@ def unfinished(path: Path, data: bytes) -> Iterator[Callable[[], None]]:
 
     Raises Refused where the folder or the file cannot be written.
     """
-    try:
-        handle, beside = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.")
-    except OSError as error:
-        raise _unwritable(path, error) from error
+    if path.is_dir():
+        raise _unwritable(path, IsADirectoryError(_("it is a folder")))
+    # Not a private temporary file: the sheet is for whoever the folder lets read.
+    beside = path.with_name(f".{path.name}.{secrets.token_hex(4)}")
     try:
         try:
-            with os.fdopen(handle, "wb") as file:
+            with open(beside, "xb") as file:
                 file.write(data)
                 file.flush()
                 os.fsync(file.fileno())
-            if path.is_dir():
-                raise IsADirectoryError(_("it is a folder"))
         except OSError as error:
             raise _unwritable(path, error) from error
         yield lambda: _put(beside, path)
     finally:
-        with contextlib.suppress(FileNotFoundError):
-            os.unlink(beside)
+        with contextlib.suppress(OSError):
+            beside.unlink()
 
 
-def _put(beside: str, path: Path) -> None:
+def _put(beside: Path, path: Path) -> None:
     try:
         os.replace(beside, path)
     except OSError as error:

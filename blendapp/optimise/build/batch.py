@@ -1,9 +1,9 @@
-"""A mix becomes kilograms on scales, and kilograms are held against the limits again."""
+"""Kilograms as weighed are held against the limits of their formula again."""
 
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Collection, Mapping
 from dataclasses import replace
 
 import numpy as np
@@ -15,38 +15,20 @@ from blendapp.optimise.build.answer import limit_result, nutrients_of
 from blendapp.optimise.build.formula import FormulaProgram
 from blendapp.optimise.program import Array
 
-# A limit counts as broken, or as binding, beyond this share of its bound: above the dust of adding kilograms.
+# A value this close to its bound, as a share of it, stands at it: above the dust of adding kilograms. Of a bound of 0
+# the share is of one, in the numbers of the program.
 _CLOSE = 1e-9
+_NOUGHT = 1e-12
+_DUST = 1e-13
 
 
-def weigh(shares_kg: Sequence[float], steps_kg: Sequence[float], batch_kg: float) -> list[float]:
-    """Targets in kg: each share at its scale's nearest step, the rest put where it disturbs least.
-
-    The rest goes to the line with the finest step among those over a fifth of the batch, or to the largest line where
-    there is none, in whole steps of its scale; what is smaller than half a step stays as residue.
-    """
-    targets = [_steps(share, step) * step for share, step in zip(shares_kg, steps_kg, strict=True)]
-    large = [j for j, share in enumerate(shares_kg) if share > batch_kg / 5]
-    if large:
-        taker = min(large, key=lambda j: (steps_kg[j], -shares_kg[j], j))
-    elif targets:
-        taker = max(range(len(targets)), key=lambda j: (shares_kg[j], -j))
-    else:
-        return []
-    rest = batch_kg - math.fsum(targets)
-    targets[taker] = max(0.0, targets[taker] + _steps(rest, steps_kg[taker]) * steps_kg[taker])
-    return [round(target, 9) for target in targets]
-
-
-def _steps(mass_kg: float, step_kg: float) -> int:
-    """The nearest whole number of steps; a half goes up. The nudge undoes what dividing decimals in binary loses."""
-    return math.floor(mass_kg / step_kg + 0.5 + 1e-9)
-
-
-def limits_of(library: Library, built: FormulaProgram, x: Array) -> tuple[LimitResult, ...]:
+def limits_of(
+    library: Library, built: FormulaProgram, x: Array, broken: Collection[int] = ()
+) -> tuple[LimitResult, ...]:
     """Every limit of a formula at given amounts, recomputed from the composition; no prices.
 
-    x: shape (n,), fractions of a blend or kg per day, one per column of built.
+    x: shape (n,), fractions of a blend or kg per day, one per column of built. broken: indices of limits that are
+    known not to hold, exactly; none of them is shown at its bound.
     """
     values: list[float | None] = [None] * len(built.limits)
     program = built.program
@@ -61,7 +43,7 @@ def limits_of(library: Library, built: FormulaProgram, x: Array) -> tuple[LimitR
         if limit.kind is LimitKind.PRACTICAL:
             values[index] = float(sum(x[j] for j, i in enumerate(built.ingredients) if i.id == limit.subject.ids[0]))
     return tuple(
-        _placed(limit_result(library, built.formula, index, limit), value, factor)
+        _placed(limit_result(library, built.formula, index, limit), value, factor, index in broken)
         for index, (limit, value, factor) in enumerate(zip(built.limits, values, built.factors, strict=True))
     )
 
@@ -74,13 +56,13 @@ def _quotient(numerator: Array, divisor: Array | None, x: Array) -> float | None
     return None if bottom == 0 else top / bottom
 
 
-def _placed(blank: LimitResult, value: float | None, factor: float) -> LimitResult:
+def _placed(blank: LimitResult, value: float | None, factor: float, broken: bool) -> LimitResult:
     if value is None:
         return blank
     shown = value / factor
     binding = None
     for side, bound in ((Side.MINIMUM, blank.minimum), (Side.MAXIMUM, blank.maximum)):
-        if bound is not None and abs(shown - bound) <= _CLOSE * max(1.0, abs(bound)):
+        if bound is not None and abs(shown - bound) <= max(_CLOSE * abs(bound), _DUST / factor):
             binding, shown = side, bound
             break
     if blank.kind is LimitKind.PRACTICAL and shown == 0:
@@ -101,14 +83,15 @@ def broken_by(limit: LimitResult) -> float | None:
 
 
 def weighed(
-    library: Library, built: FormulaProgram, kilograms: dict[int, float], amount_total: float
+    library: Library, built: FormulaProgram, kilograms: Mapping[int, float], amount_total: float,
+    broken: Collection[int] = (),
 ) -> tuple[tuple[LimitResult, ...], tuple[NutrientResult, ...]]:
     """Limits and nutrients of a batch as weighed.
 
     kilograms: by ingredient identifier. amount_total: what they stand for in the program's amounts: 1 for a blend,
-    the kg per day of a ration.
+    the kg per day of a ration. broken: as in limits_of.
     """
     total = math.fsum(kilograms.values())
     x = np.array([kilograms.get(i.id, 0.0) for i in built.ingredients])
     x = x * ((1.0 if built.formula.amounts is Amounts.BLEND else amount_total) / total) if total else x
-    return limits_of(library, built, x), nutrients_of(library, built, x)
+    return limits_of(library, built, x, broken), nutrients_of(library, built, x)

@@ -6,7 +6,6 @@ from collections.abc import Iterable, Sequence
 
 import numpy as np
 
-from blendapp.domain import units
 from blendapp.domain.ingredients import Basis, Ingredient
 from blendapp.domain.library import Library
 from blendapp.domain.records import Change
@@ -57,7 +56,7 @@ class Composition:
         row = np.full(len(self.columns), np.nan)
         dry = ingredient.dry_matter_fraction
         for nutrient_id, value in library.values_of(ingredient.id).items():
-            canonical = value.amount * units.CONCENTRATION[value.unit or "/kg"].factor
+            canonical = value.canonical
             if value.basis is Basis.DRY_MATTER:
                 canonical = np.nan if dry is None else canonical * dry
             row[self.columns[nutrient_id]] = canonical
