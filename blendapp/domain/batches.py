@@ -13,7 +13,8 @@ class BatchLine:
     """One line of a batch sheet. share_kg: the exact share of the batch; target_kg: a multiple of step_kg.
 
     scale: its name, "" in a mill without scales. drug, drug_level, drug_species, withdrawal: as entered, of a
-    medicated line.
+    medicated line. tolerance_kg: how far target_kg may lie from share_kg, None in a batch that did not keep it. fixed:
+    whether a person set target_kg.
     """
 
     ingredient_id: int
@@ -27,6 +28,8 @@ class BatchLine:
     drug_level: str = ""
     drug_species: str = ""
     withdrawal: str = ""
+    tolerance_kg: float | None = None
+    fixed: bool = False
 
 
 @dataclass(frozen=True)
@@ -34,7 +37,9 @@ class Batch:
     """The whole batches of one order: every figure describes one of `batches` equal ones, as weighed.
 
     limits: from the target kilograms; broken: indices of those that do not hold. cause: why no sheet can be made, or
-    None. residue_kg: target total less batch_kg. number: of the sheet once it was printed, None before.
+    None. residue_kg: target total less batch_kg. number: of the sheet once it was printed, None before. unproven: the
+    first aim ("total", "limits", "deviation" or "cost", in this order) in which a better batch may exist, "" where
+    none does; gap: by how much it could at most be better (kg, limits, sum of relative deviations, money), else None.
     """
 
     formula_id: int
@@ -56,6 +61,8 @@ class Batch:
     copy: int = 0
     accepted_reason: str = ""
     accepted_by: str = ""
+    unproven: str = ""
+    gap: float | None = None
 
     @property
     def total_kg(self) -> float:
@@ -64,6 +71,16 @@ class Batch:
     @property
     def residue_kg(self) -> float:
         return round(self.total_kg - self.batch_kg, 9)
+
+    @property
+    def proven(self) -> bool:
+        """Whether no batch of the same lines and scales is better in any aim."""
+        return not self.unproven
+
+    @property
+    def deviation(self) -> float:
+        """Sum over the lines of |target - share|, each divided by its tolerance."""
+        return sum(abs(line.target_kg - line.share_kg) / line.tolerance_kg for line in self.lines if line.tolerance_kg)
 
     @property
     def fit_to_mix(self) -> bool:

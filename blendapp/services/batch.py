@@ -5,6 +5,7 @@ from __future__ import annotations
 import datetime
 import json
 import math
+from collections.abc import Mapping
 from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -16,13 +17,13 @@ from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
 from blendapp.domain.mills import PrintedBatch
 from blendapp.domain.plant import Mixer, Scale
-from blendapp.domain.problems import Refused
+from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.records import Change, added
 from blendapp.domain.results import Result
 from blendapp.domain.wording import _
-from blendapp.optimise.build import batch as weighing
 from blendapp.optimise.build.composition import Composition
 from blendapp.optimise.build.formula import build
+from blendapp.optimise.build.weigh import FixedRefused, NotWeighable, WeighedLine, weigh
 from blendapp.services import sheets
 from blendapp.services.formulate import formulate
 from blendapp.services.versions import current_version
@@ -30,8 +31,8 @@ from blendapp.services.versions import current_version
 if TYPE_CHECKING:
     from blendapp.services.mill import Mill
 
-# The step of every line in a mill that has entered no scales.
-UNSCALED_STEP_KG = 0.01
+# How long the search for the best whole batch may take: an answer is there within 2 s, and says whether it is proven.
+SEARCH_S = 1.5
 
 
 def make_batch(
@@ -42,11 +43,15 @@ def make_batch(
     composition: Composition | None = None,
     *,
     result: Result | None = None,
+    fixed: Mapping[int, float] | None = None,
+    time_limit_s: float = SEARCH_S,
 ) -> Batch:
-    """The equal whole batches of an order, each line on its scale, held against the limits as weighed.
+    """The equal whole batches of an order: the best in whole steps of the scales (see optimise.steps.search).
 
-    result: the answer to weigh, worked out here unless given. Where there is no answer, no split or no scale, the batch
-    has no lines and `cause` says why. Raises Refused for an order that is no mass.
+    result: the answer to weigh, worked out here unless given. fixed: kg of one batch by ingredient identifier, set by
+    a person; the rest is solved around them. Where there is no answer, no split, no scale or no batch in whole steps,
+    the batch has no lines and `cause` says why. Raises Refused for an order that is no mass, and for fixed lines that
+    no scale shows, that the mix does not hold, or that keep the batch from its total.
     """
     if not (math.isfinite(order_kg) and order_kg > 0):
         raise Refused(_("An order must be above 0 kg; {mass} is not.").format(mass=f"{order_kg:g}"))
@@ -73,28 +78,30 @@ def make_batch(
     unscaled = [library.ingredient(i.ingredient_id) for i in used if _scale(library, i.ingredient_id) is None]
     if library.scales and unscaled:
         return replace(empty, cause=_proposal(library, unscaled))
-    total = math.fsum(i.amount or 0.0 for i in used)
-    shares = [(i.amount or 0.0) / total * empty.batch_kg for i in used]
-    steps = [_step_kg(library, i.ingredient_id) for i in used]
-    targets = weighing.weigh(shares, steps, empty.batch_kg)
-    lines = [
-        _line(library, i.ingredient_id, step, share, target)
-        for i, step, share, target in zip(used, steps, shares, targets, strict=True)
-    ]
-    built = build(library, formula, on, composition)
-    kilograms = {line.ingredient_id: line.target_kg for line in lines}
-    limits, nutrients = weighing.weighed(library, built, kilograms, total)
-    mix = [(key, mass) for key, mass in kilograms.items() if mass > 0]
+    least_kg, greatest_kg = _held(library.mixers, empty.batch_kg)
+    try:
+        weighing = weigh(
+            library, build(library, formula, answer.on, composition),
+            {i.ingredient_id: i.amount or 0.0 for i in used}, empty.batch_kg,
+            fixed=fixed, least_kg=least_kg, greatest_kg=greatest_kg, time_limit_s=time_limit_s,
+        )
+    except FixedRefused as refused:
+        raise Refused([Problem(text, Place(record=formula.name)) for text in refused.sentences]) from refused
+    except NotWeighable as none:
+        return replace(empty, cause=str(none))
+    mix = [(line.ingredient.id, line.target_kg) for line in weighing.lines if line.target_kg > 0]
     forbidden = cautions.forbidden_in_mix(formula, library, mix)
     if forbidden is not None:
         return replace(empty, cause=forbidden)
     return replace(
         empty,
-        lines=tuple(sorted(lines, key=lambda line: _order(library, line))),
-        limits=limits,
-        nutrients=nutrients,
-        broken=tuple(limit.index for limit in limits if weighing.broken_by(limit) is not None),
-        cautions=tuple(cautions.warnings(formula, library, mix, answer.unknown)),
+        lines=tuple(sorted(map(_line, weighing.lines), key=_order)),
+        limits=weighing.limits,
+        nutrients=weighing.nutrients,
+        broken=weighing.broken,
+        cautions=(*cautions.warnings(formula, library, mix, answer.unknown), *weighing.notes),
+        unproven=weighing.unproven,
+        gap=weighing.gap,
     )
 
 
@@ -108,6 +115,17 @@ def split_order(mixers: list[Mixer], order_kg: float) -> int | None:
         if order_kg / count >= (mixer.least_kg or 0.0) - 1e-9:
             found.append(count)
     return min(found, default=None)
+
+
+def _held(mixers: list[Mixer], batch_kg: float) -> tuple[float | None, float | None]:
+    """Between which totals a batch of this mass stays in the mixers that take it; None where nothing bounds it."""
+    taking = [
+        m for m in mixers
+        if (m.least_kg or 0.0) <= batch_kg + 1e-9 and (m.greatest_kg is None or batch_kg <= m.greatest_kg + 1e-9)
+    ]
+    least = min((m.least_kg or 0.0 for m in taking), default=0.0)
+    open_end = not taking or any(m.greatest_kg is None for m in taking)
+    return least or None, None if open_end else max(m.greatest_kg or 0.0 for m in taking)
 
 
 def _no_split(mixers: list[Mixer], order_kg: float) -> str:
@@ -128,11 +146,6 @@ def _scale(library: Library, ingredient_id: int) -> Scale | None:
     return None if scale_id is None else library.records["scale"].get(scale_id)
 
 
-def _step_kg(library: Library, ingredient_id: int) -> float:
-    scale = _scale(library, ingredient_id)
-    return UNSCALED_STEP_KG if scale is None else scale.step_kg
-
-
 def _proposal(library: Library, unscaled: list[Ingredient]) -> str:
     finest = min(library.scales, key=lambda scale: scale.step_kg)
     text = _("No scale weighs {ingredients}. Enter one under Scale, for example {scale} in steps of {step} kg.")
@@ -140,16 +153,16 @@ def _proposal(library: Library, unscaled: list[Ingredient]) -> str:
     return text.format(ingredients=names, scale=finest.name, step=f"{finest.step_kg:g}")
 
 
-def _line(library: Library, ingredient_id: int, step_kg: float, share_kg: float, target_kg: float) -> BatchLine:
-    ingredient, scale = library.ingredient(ingredient_id), _scale(library, ingredient_id)
+def _line(line: WeighedLine) -> BatchLine:
+    ingredient, scale = line.ingredient, line.scale
     return BatchLine(
-        ingredient_id, ingredient.name, "" if scale is None else scale.name, step_kg, share_kg, target_kg,
-        scale is not None and scale.hand_add, ingredient.drug, ingredient.drug_level, ingredient.drug_species,
-        ingredient.withdrawal,
+        ingredient.id, ingredient.name, "" if scale is None else scale.name, line.step_kg, line.share_kg,
+        line.target_kg, scale is not None and scale.hand_add, ingredient.drug, ingredient.drug_level,
+        ingredient.drug_species, ingredient.withdrawal, line.tolerance_kg, line.fixed,
     )
 
 
-def _order(library: Library, line: BatchLine) -> tuple[bool, float, str, float, str]:
+def _order(line: BatchLine) -> tuple[bool, float, str, float, str]:
     """Coarse scales first, hand-adds last; on a scale the heaviest first."""
     return (line.hand_add, -line.step_kg, line.scale, -line.target_kg, line.ingredient)
 

@@ -18,7 +18,6 @@ from blendapp.optimise.program import Array
 # A value this close to its bound, as a share of it, stands at it: above the dust of adding kilograms. Of a bound of 0
 # the share is of one, in the numbers of the program.
 _CLOSE = 1e-9
-_NOUGHT = 1e-12
 _DUST = 1e-13
 
 
@@ -62,7 +61,7 @@ def _placed(blank: LimitResult, value: float | None, factor: float, broken: bool
     shown = value / factor
     binding = None
     for side, bound in ((Side.MINIMUM, blank.minimum), (Side.MAXIMUM, blank.maximum)):
-        if bound is not None and abs(shown - bound) <= max(_CLOSE * abs(bound), _DUST / factor):
+        if bound is not None and not broken and abs(shown - bound) <= max(_CLOSE * abs(bound), _DUST / factor):
             binding, shown = side, bound
             break
     if blank.kind is LimitKind.PRACTICAL and shown == 0:

@@ -1,0 +1,218 @@
+"""A mix and a mill's scales become an order in whole steps, and the whole batch becomes lines of a sheet again."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from blendapp.domain.formulas import Amounts, LimitKind
+from blendapp.domain.ingredients import Ingredient, Tag
+from blendapp.domain.library import Library
+from blendapp.domain.notation import notation
+from blendapp.domain.plant import Scale
+from blendapp.domain.results import LimitResult, NutrientResult
+from blendapp.domain.wording import _
+from blendapp.optimise.build import no_batch
+from blendapp.optimise.build.batch import broken_by, weighed
+from blendapp.optimise.build.formula import FormulaProgram
+from blendapp.optimise.program import Row
+from blendapp.optimise.steps.problem import LeastIfUsed, Line, Load, Order
+from blendapp.optimise.steps.search import NoBatch, WholeBatch, whole_batch
+
+# The step of every line in a mill that has entered no scales.
+UNSCALED_STEP_KG = 0.01
+USUAL_TOLERANCE = 0.02
+CLOSE_TOLERANCE = 0.01  # of hand-adds and medicated lines
+# A share below this part of the batch is the dust of solving.
+_DUST = 1e-9
+
+
+@dataclass(frozen=True)
+class WeighedLine:
+    """scale: None in a mill without scales. tolerance_kg: how far target_kg may lie from share_kg."""
+
+    ingredient: Ingredient
+    scale: Scale | None
+    step_kg: float
+    share_kg: float
+    target_kg: float
+    tolerance_kg: float
+    fixed: bool
+
+
+@dataclass(frozen=True)
+class Weighing:
+    """A whole batch held against its formula.
+
+    broken: indices of the limits that do not hold, from the kilograms. notes: sentences on lines left out and on fixed
+    lines outside their tolerance. unproven: the first aim of "total", "limits", "deviation", "cost" not proven best,
+    "" if all are; gap: by how much it could at most be better, None if all are proven.
+    """
+
+    lines: tuple[WeighedLine, ...]
+    limits: tuple[LimitResult, ...]
+    nutrients: tuple[NutrientResult, ...]
+    broken: tuple[int, ...]
+    notes: tuple[str, ...]
+    unproven: str
+    gap: float | None
+
+
+class FixedRefused(ValueError):
+    """Fixed lines that cannot be; sentences: one a fault."""
+
+    def __init__(self, sentences: Sequence[str]) -> None:
+        self.sentences = list(sentences)
+        super().__init__(" ".join(sentences))
+
+
+class NotWeighable(ValueError):
+    """No batch in whole steps exists; the text says why and what would mend it."""
+
+
+def weigh(
+    library: Library,
+    built: FormulaProgram,
+    amounts: Mapping[int, float],
+    batch_kg: float,
+    *,
+    fixed: Mapping[int, float] | None = None,
+    least_kg: float | None = None,
+    greatest_kg: float | None = None,
+    time_limit_s: float = 1.5,
+) -> Weighing:
+    """The best whole batch of a mix.
+
+    amounts: of the mix by ingredient identifier, fractions or kg per day, in the order in which lines are wanted.
+    fixed: kg by ingredient identifier. least_kg, greatest_kg: what the mixer holds. Every ingredient has a scale,
+    or the mill has none. Raises FixedRefused, NotWeighable.
+    """
+    total = math.fsum(amounts.values())
+    shares = {key: amount / total * batch_kg for key, amount in amounts.items() if amount > _DUST * total}
+    fixed = fixed or {}
+    ingredients = [library.ingredient(key) for key in shares]
+    faults = no_batch.not_in_mix(library, built.formula, fixed, shares)
+    scales = [scales_for(library, ingredient) for ingredient in ingredients]
+    order = _order(library, built, ingredients, scales, shares, batch_kg, total, fixed, (least_kg, greatest_kg))
+    found = whole_batch(order, time_limit_s)
+    if isinstance(found, NoBatch):
+        sentences = no_batch.sentences(order, found, ingredients, scales)
+        of_fixed = [text for reason, text in sentences if reason.why.startswith("fixed")]
+        if faults or of_fixed:
+            raise FixedRefused(faults + of_fixed)
+        raise NotWeighable(" ".join(text for _reason, text in sentences))
+    if faults:
+        raise FixedRefused(faults)
+    return _result(library, built, ingredients, scales, found, total)
+
+
+def tolerance_of(scale: Scale | None, ingredient: Ingredient) -> float:
+    """The fraction of its share by which a line may differ."""
+    if scale is not None and scale.tolerance_percent is not None:
+        return scale.tolerance_percent / 100
+    close = is_medicated(ingredient) or (scale is not None and scale.hand_add)
+    return CLOSE_TOLERANCE if close else USUAL_TOLERANCE
+
+
+def is_medicated(ingredient: Ingredient) -> bool:
+    return Tag.MEDICATED in ingredient.tags or bool(ingredient.drug.strip())
+
+
+def scales_for(library: Library, ingredient: Ingredient) -> list[Scale | None]:
+    """The scales that may weigh an ingredient, its own first, then the coarsest; hand-adds last, but first for what
+    is a hand-add itself. [None] in a mill without scales."""
+    if not library.scales:
+        return [None]
+    own: Scale | None = None if ingredient.scale_id is None else library.records["scale"].get(ingredient.scale_id)
+    by_hand = own is not None and own.hand_add
+    others = [scale for scale in library.scales if own is None or scale.id != own.id]
+    others.sort(key=lambda scale: (scale.hand_add != by_hand, -scale.step_kg, scale.id))
+    return [*others] if own is None else [own, *others]
+
+
+def _order(
+    library: Library, built: FormulaProgram, ingredients: Sequence[Ingredient],
+    scales: Sequence[Sequence[Scale | None]], shares: Mapping[int, float], batch_kg: float, total: float,
+    fixed: Mapping[int, float], ends: tuple[float | None, float | None],
+) -> Order:
+    column = {ingredient.id: j for j, ingredient in enumerate(built.ingredients)}
+    columns = [column[ingredient.id] for ingredient in ingredients]
+    place = {j: at for at, j in enumerate(columns)}
+    lines = tuple(
+        Line(
+            shares[ingredient.id],
+            tuple(_load(scale, ingredient) for scale in tried),
+            float(built.price_per_t[j]) / 1000,
+            fixed.get(ingredient.id),
+            is_medicated(ingredient),
+        )
+        for ingredient, tried, j in zip(ingredients, scales, columns, strict=True)
+    )
+    rows = [
+        Row(row.numerator[columns], row.minimum, row.maximum, None if row.divisor is None else row.divisor[columns],
+            row.limit)
+        for row in built.program.rows
+        if row.limit is not None
+    ]
+    for bound in built.program.bounds:
+        unit = np.zeros(len(columns))
+        if bound.column in place:
+            unit[place[bound.column]] = 1.0
+        rows.append(Row(unit, bound.minimum, bound.maximum, None, bound.limit))
+    least = [
+        LeastIfUsed(place[column[limit.subject.ids[0]]], limit.minimum * factor, index)
+        for index, (limit, factor) in enumerate(zip(built.limits, built.factors, strict=True))
+        if limit.kind is LimitKind.PRACTICAL and limit.minimum and column.get(limit.subject.ids[0], -1) in place
+    ]
+    amount = 1.0 if built.formula.amounts is Amounts.BLEND else total
+    return Order(batch_kg, lines, tuple(rows), tuple(least), amount, *ends)
+
+
+def _load(scale: Scale | None, ingredient: Ingredient) -> Load:
+    tolerance = tolerance_of(scale, ingredient)
+    if scale is None:
+        return Load(UNSCALED_STEP_KG, tolerance=tolerance)
+    return Load(scale.step_kg, scale.least_kg, scale.greatest_kg, tolerance)
+
+
+def _result(
+    library: Library, built: FormulaProgram, ingredients: Sequence[Ingredient],
+    scales: Sequence[Sequence[Scale | None]], found: WholeBatch, total: float,
+) -> Weighing:
+    lines = tuple(
+        WeighedLine(
+            ingredient, tried[p.load], float(p.step), float(p.share), float(kg), float(p.allowed), p.fixed,
+        )
+        for ingredient, tried, p, kg in zip(ingredients, scales, found.placed, found.kilograms, strict=True)
+    )
+    kilograms = {line.ingredient.id: line.target_kg for line in lines}
+    limits, nutrients = weighed(library, built, kilograms, total, found.broken)
+    counts = (one.index for one in limits if one.kind is LimitKind.COUNT and broken_by(one) is not None)
+    first = next((stage for stage in found.stages if not stage.proven), None)
+    return Weighing(
+        lines, limits, nutrients, tuple(sorted({*found.broken, *counts})), tuple(_notes(lines)),
+        "" if first is None else first.aim, None if first is None else first.gap,
+    )
+
+
+def _notes(lines: Sequence[WeighedLine]) -> list[str]:
+    """What the lines alone do not say plainly enough."""
+    short = notation().write_short
+    found = []
+    for line in lines:
+        name, share = line.ingredient.name, short(line.share_kg)
+        off = abs(line.target_kg - line.share_kg)
+        if line.fixed and off > line.tolerance_kg * (1 + 1e-9):
+            text = _("{ingredient} is fixed at {kg} kg; its share is {share} kg and its tolerance {tolerance} kg.")
+            found.append(text.format(
+                ingredient=name, kg=short(line.target_kg), share=share, tolerance=short(line.tolerance_kg)
+            ))
+        elif not line.target_kg:
+            text = _("{ingredient} is left out: its share of {share} kg is less than a step of {step} kg.")
+            if line.fixed:
+                text = _("{ingredient} is left out: it is fixed at 0 kg; its share is {share} kg.")
+            found.append(text.format(ingredient=name, share=share, step=short(line.step_kg)))
+    return found
