@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import sys
 from pathlib import Path
+from types import TracebackType
 
 from PySide6.QtCore import QObject, QSettings
 from PySide6.QtWidgets import QMenu, QWidget
@@ -87,7 +89,7 @@ class Bench(QObject):
         elif recent:
             self.files.open_path(recent[0])
         if not self.work.is_open:
-            self._opened()
+            self.to_bench()
             self.head.say_all()
             self.welcome.buttons[0].setFocus()
         else:
@@ -97,6 +99,12 @@ class Bench(QObject):
         """Let the mill file go."""
         self.finder.hide()
         self.work.close()
+
+    def tell_of_fault(self, kind: type[BaseException], fault: BaseException, trace: TracebackType | None) -> None:
+        """Say on the strip that the program has failed in something, and leave the trace on standard error."""
+        sys.__excepthook__(kind, fault, trace)
+        text = _("The program failed in what it was just doing ({fault}). What was stored before is safe.")
+        self.strip.say(text.format(fault=f"{kind.__name__}: {fault}"))
 
     def _opened(self) -> None:
         self.strip.clear()
@@ -124,8 +132,9 @@ class Bench(QObject):
     def show_sheet(self) -> None:
         """Show the batch sheet of the chosen formula as it would be printed."""
         if self.work.formula_id is not None:
-            self.sheet.begin()
+            # Shown first, so that the page is drawn at the size it has room for.
             self.show_page(self.sheet)
+            self.sheet.begin()
 
     def widen(self, place: int) -> None:
         """Give a zone the whole window, or give it back, and put the keyboard there."""

@@ -8,17 +8,17 @@ from __future__ import annotations
 import os
 import sys
 import threading
-import time
 from collections.abc import Sequence
+from typing import Any
 
-from PySide6.QtCore import QLocale, QObject, Signal
+from PySide6.QtCore import QLocale, QObject, QSettings, Signal
 from PySide6.QtWidgets import QApplication
 
 from blendapp.desk.shell.frame import Frame
 from blendapp.desk.theme import dress, follow_system, load_fonts
 from blendapp.domain.notation import Notation, use_notation
 
-# When set, the program prints the seconds since this clock reading of time.time() until "painted" or "ready", and ends.
+# When this is "painted" or "ready", the program ends as soon as it is that far; the benchmark of the start sets it.
 MEASURE = "BLENDAPP_MEASURE_START"
 
 
@@ -49,9 +49,14 @@ def make_app(argv: Sequence[str]) -> QApplication:
     app.setApplicationName("blendapp")
     app.setApplicationDisplayName("blendapp")
     load_fonts()
-    dress(app)
+    dress(app, dark=_chosen_scheme())
     follow_system(app)
     return app
+
+
+def _chosen_scheme() -> bool | None:
+    """The scheme that was set by hand, None to follow the system."""
+    return {"1": True, "0": False}.get(str(QSettings("blendapp", "blendapp").value("dark", "")))
 
 
 def run(paths: Sequence[str] = ()) -> int:
@@ -61,29 +66,28 @@ def run(paths: Sequence[str] = ()) -> int:
     frame = Frame()
     measured = os.environ.get(MEASURE, "")
     fetch = _Fetch()
+    opened: list[Any] = []
 
     def painted() -> None:
         if measured.startswith("painted"):
-            _tell(app, measured)
+            app.quit()
             return
         fetch.begin()
 
     def fetched() -> None:
         from blendapp.desk.bench import Bench
 
-        frame.bench_object = Bench(frame)  # type: ignore[attr-defined]
-        frame.bench_object.start(paths[0] if paths else None)  # type: ignore[attr-defined]
+        bench = Bench(frame)
+        opened.append(bench)
+        sys.excepthook = bench.tell_of_fault
+        bench.start(paths[0] if paths else None)
         if measured.startswith("ready"):
-            _tell(app, measured)
+            app.quit()
 
     frame.painted.connect(painted)
     fetch.done.connect(fetched)
     frame.show()
-    return app.exec()
-
-
-def _tell(app: QApplication, measured: str) -> None:
-    begun = float(measured.partition(" ")[2] or "nan")
-    sys.stdout.write(f"{time.time() - begun:.4f}\n")
-    sys.stdout.flush()
-    app.quit()
+    status = app.exec()
+    for bench in opened:
+        bench.close()
+    return status

@@ -7,13 +7,13 @@ is stale until then.
 
 from __future__ import annotations
 
-import threading
 import time
 from collections.abc import Callable, Sequence
 from typing import TypeVar
 
 from PySide6.QtCore import QObject, Signal
 
+from blendapp.desk.aside import Aside
 from blendapp.domain.formulas import Formula, LimitKind
 from blendapp.domain.library import Library
 from blendapp.domain.problems import Refused
@@ -40,7 +40,6 @@ class Work(QObject):
     chosen = Signal()
     answered = Signal()
     said = Signal(str, list)
-    _solved = Signal(int, object, object)
 
     def __init__(self, parent: QObject | None = None) -> None:
         super().__init__(parent)
@@ -56,11 +55,10 @@ class Work(QObject):
         self.admitted_ids: set[int] = set()
         self.solve_s = 0.0
         self._slow: set[int] = set()
-        self._asked = 0
-        self._running = False
         self._by_id: dict[int, IngredientResult] = {}
         self._trial_base: Library | None = None
-        self._solved.connect(self._take_solved)
+        self._aside = Aside(self, (FailedCertificate, Refused, ValueError))
+        self._aside.done.connect(self._take_solved)
 
     # -- what is open
 
@@ -100,7 +98,7 @@ class Work(QObject):
 
     def close(self) -> None:
         """Close the mill file."""
-        self._asked += 1
+        self._aside.forget()
         if self._mill is not None:
             self._mill.close()
             self._mill = None
@@ -217,7 +215,7 @@ class Work(QObject):
 
     def solve(self) -> None:
         """Have the answer follow what the mill holds now."""
-        self._asked += 1
+        self._aside.forget()
         if self.formula_id is None or self._mill is None:
             self.stored_result = None
             self.stale = False
@@ -244,33 +242,21 @@ class Work(QObject):
         return formula_id in self._slow or any(one.kind in whole for one in self.library.limits(formula_id))
 
     def _solve_aside(self) -> None:
-        if self._running:
-            return
-        self._running = True
-        asked, library, formula_id, on = self._asked, self.library.copy(), self.formula_id, self.on
+        library, formula_id, on = self.library.copy(), self.formula_id, self.on
         assert formula_id is not None
 
-        def run() -> None:
+        def solve() -> tuple[Result, float]:
             begun = time.perf_counter()
-            try:
-                found: Result | None = formulate(library, formula_id, on, time_limit_s=10.0)
-                fault: Exception | None = None
-            except (FailedCertificate, Refused, ValueError) as failure:
-                found, fault = None, failure
-            self.solve_s = time.perf_counter() - begun
-            self._solved.emit(asked, found, fault)
+            return formulate(library, formula_id, on, time_limit_s=10.0), time.perf_counter() - begun
 
-        threading.Thread(target=run, daemon=True, name="solve").start()
+        self._aside.ask(solve)
 
-    def _take_solved(self, asked: int, found: Result | None, fault: Exception | None) -> None:
-        self._running = False
+    def _take_solved(self, given: tuple[Result, float] | None, fault: Exception | None) -> None:
         if self._mill is None:
             return
-        if asked != self._asked:
-            if self.stale:
-                self._solve_aside()
-            return
-        self._take(found, fault)
+        if given is not None:
+            self.solve_s = given[1]
+        self._take(None if given is None else given[0], fault)
 
     def _take(self, found: Result | None, fault: Exception | None) -> None:
         if fault is not None:

@@ -10,7 +10,6 @@ import pytest
 from PySide6.QtCore import QSettings, Qt
 from PySide6.QtTest import QAbstractItemModelTester, QTest
 from PySide6.QtWidgets import QApplication, QWidget
-from tests.mills import Maker
 
 from blendapp.desk.bench import Bench
 from blendapp.desk.shell.frame import Frame
@@ -22,6 +21,7 @@ from blendapp.domain.library import Library
 from blendapp.domain.notation import PLAIN, use_notation
 from blendapp.domain.plant import Scale
 from blendapp.domain.records import KINDS, added
+from tests.mills import Maker
 
 
 def small_mill() -> Library:

@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QApplication
-from tests.desk.conftest import Hands
 
 from blendapp.desk.bench import Bench
+from tests.desk.conftest import Hands
 
 MAIZE, SOY, LIMESTONE, PEAS = 1, 2, 3, 4
 CONTROL = Qt.KeyboardModifier.ControlModifier

@@ -5,11 +5,11 @@ from __future__ import annotations
 import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtTest import QTest
-from tests.desk.conftest import Hands
 
 from blendapp.desk.bench import Bench
 from blendapp.desk.rail.grip import SETTLE_MS
 from blendapp.domain.formulas import LimitBasis, LimitKind
+from tests.desk.conftest import Hands
 
 PROTEIN, CALCIUM, MAIZE_LIMIT = 1, 2, 3
 CONTROL = Qt.KeyboardModifier.ControlModifier

@@ -151,8 +151,9 @@ class HaveModel(Grid):
             text = "" if value is None else self.work.library.formula(value).name
             return Look(text=text, typed=text, editable=True, choices=("", *names))
         if key == "basis":
-            return Look(text=_(str(value)), typed=str(value), editable=True, choices=tuple(str(one) for one in Basis))
-        text = ", ".join(value) if isinstance(value, tuple) else str(value)
+            words = _(str(value))
+            return Look(text=words, typed=words, editable=True, choices=tuple(_(str(one)) for one in Basis))
+        text = ", ".join(_(str(one)) for one in value) if isinstance(value, tuple) else str(value)
         return Look(text=text, typed=text, editable=True)
 
     def _value_look(self, ingredient: Ingredient, nutrient_id: int) -> Look:

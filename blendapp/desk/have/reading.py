@@ -100,23 +100,24 @@ def _formula(mill: Mill, text: str) -> int | None:
 
 
 def _basis(_mill: Mill, text: str) -> Basis:
-    wanted = fold(text) if text else Basis.AS_FED
+    if not text:
+        return Basis.AS_FED
     for basis in Basis:
-        if wanted == basis:
+        if fold(text) in (basis, fold(_(str(basis)))):
             return basis
     raise ValueError(_("The basis is as fed or dry matter; “{text}” is neither.").format(text=text))
 
 
 def _tags(_mill: Mill, text: str) -> tuple[Tag, ...]:
+    known = {fold(_(str(tag))): tag for tag in Tag} | {str(tag): tag for tag in Tag}
     found: list[Tag] = []
-    for part in (fold(part) for part in text.split(",")):
-        if not part:
+    for part in text.split(","):
+        if not part.strip():
             continue
-        if part not in set(Tag):
-            raise ValueError(
-                _("“{tag}” is no tag; use {tags}, joined by commas.").format(tag=part, tags=", ".join(Tag))
-            )
-        found.append(Tag(part))
+        if fold(part) not in known:
+            tags = ", ".join(_(str(tag)) for tag in Tag)
+            raise ValueError(_("“{tag}” is no tag; use {tags}, joined by commas.").format(tag=part.strip(), tags=tags))
+        found.append(known[fold(part)])
     return tuple(found)
 
 

@@ -91,11 +91,14 @@ class AddLimit(QWidget):
     def begin(self, kind: LimitKind = LimitKind.NUTRIENT, name: str = "") -> None:
         """Open the form, empty but for a kind and a name."""
         self.basis.clear()
-        self.basis.addItems(["as fed", "dry matter", "at 88 % dry matter"])
-        self.basis.setEditable(True)
         formula = self.work.formula
-        if formula is not None and formula.amounts is Amounts.RATION:
-            self.basis.addItem("per day")
+        ration = formula is not None and formula.amounts is Amounts.RATION
+        for words, plain in (
+            (_("as fed"), "as fed"), (_("dry matter"), "dry matter"), (_("at 88 % dry matter"), "at 88 % dry matter"),
+            *([(_("per day"), "per day")] if ration else []),
+        ):
+            self.basis.addItem(words, plain)
+        self.basis.setEditable(True)
         self.kind.setCurrentIndex(self.kind.findData(kind))
         self.name.setText(name)
         for field in (self.per, self.minimum, self.maximum):
@@ -119,6 +122,11 @@ class AddLimit(QWidget):
             super().keyPressEvent(event)
 
     # -- what is offered
+
+    def chosen_basis(self) -> str:
+        """The basis as the workbook writes it: one of those offered, or what was typed."""
+        at = self.basis.findText(self.basis.currentText())
+        return self.basis.currentText() if at < 0 else str(self.basis.itemData(at))
 
     def chosen_kind(self) -> LimitKind:
         """The kind that stands in the form."""
@@ -145,7 +153,7 @@ class AddLimit(QWidget):
         before = self.unit.currentText()
         formula = self.work.formula
         offered = [] if formula is None else units_for(
-            self.work.library, self.chosen_kind(), self.name.text(), self.basis.currentText(), formula.amounts)
+            self.work.library, self.chosen_kind(), self.name.text(), self.chosen_basis(), formula.amounts)
         if [self.unit.itemText(at) for at in range(self.unit.count())] == offered:
             return
         self.unit.clear()
@@ -166,7 +174,7 @@ class AddLimit(QWidget):
         kind = self.chosen_kind()
         try:
             subject, fields = limit_from(
-                self.work.library, kind, self.name.text(), self.per.text(), self.basis.currentText(),
+                self.work.library, kind, self.name.text(), self.per.text(), self.chosen_basis(),
                 self.unit.currentText(), self.minimum.text(), self.maximum.text(),
             )
             edit: Edit = self.work.do(lambda mill: edits.add_limit(mill, formula.id, kind, subject, **fields))

@@ -31,11 +31,12 @@ class PriceRows(Grid):
         self._looks.clear()
         per_t = _("{currency}/t").format(currency=reading.currency)
         self.set_headings([
-            Heading("fate", "", 84), Heading("source_name", _("in the list"), 210),
-            Heading("ingredient", _("Ingredient"), 170), Heading("entered", _("price as listed"), 120, True),
-            Heading("price", per_t, 90, True), Heading("old", _("was"), 90, True),
-            Heading("change", _("change"), 76, True), Heading("from", _("from"), 92), Heading("reason", _("why"), 420),
-            Heading("place", _("row"), 120),
+            Heading("fate", "", 82), Heading("place", _("row"), 88), Heading("source_name", _("in the list"), 170),
+            Heading("ingredient", _("Ingredient"), 170), Heading("entered", _("price as listed"), 110, True),
+            Heading("price", per_t, 82, True), Heading("old", _("was"), 82, True),
+            Heading("change", _("change"), 72, True),
+            *([Heading("from", _("from"), 92)] if any(row.valid_from for row in reading.rows) else []),
+            Heading("reason", _("why"), 420),
         ])
         order = {Fate.REFUSED: 0, Fate.QUESTION: 1, Fate.ACCEPTED: 2, Fate.IGNORED: 3}
         shown = [at for at, row in enumerate(reading.rows) if self.with_ignored or row.fate is not Fate.IGNORED]

@@ -9,8 +9,8 @@ from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import QCheckBox, QHBoxLayout, QLabel, QPushButton, QVBoxLayout, QWidget
 
 from blendapp.desk.prices.model import PriceRows
+from blendapp.desk.prices.view import PriceTable
 from blendapp.desk.shell.zone import Elided
-from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.desk.work import Work
 from blendapp.domain.price_rows import Fate, PriceListReading
@@ -30,7 +30,7 @@ class PricesPane(QWidget):
         self.work = work
         self.reading: PriceListReading | None = None
         self.rows = PriceRows(self)
-        self.table = DeskTable(self.rows, self)
+        self.table = PriceTable(self.rows, self)
         self.table.setAccessibleName(_("Rows of the price list"))
         self.title = QLabel(_("Price list"))
         self.title.setFont(text_font(strong=True))
@@ -44,7 +44,7 @@ class PricesPane(QWidget):
         self.leave = QPushButton(_("Leave it"))
         self.leave.setObjectName("plain")
         self.leave.clicked.connect(self.closed)
-        self.take = QPushButton()
+        self.take = QPushButton(_("Take the prices"))
         self.take.setObjectName("first")
         self.take.clicked.connect(self.apply)
         head = QHBoxLayout()

@@ -2,19 +2,20 @@
 
 from __future__ import annotations
 
-import threading
 from collections.abc import Callable
 
-from PySide6.QtCore import QObject, QSize, Qt, Signal
-from PySide6.QtGui import QImage, QPixmap
+from PySide6.QtCore import QObject, QSize, Qt, QTimer, Signal
+from PySide6.QtGui import QImage, QPixmap, QResizeEvent
 from PySide6.QtWidgets import QLabel, QScrollArea, QVBoxLayout, QWidget
 
+from blendapp.desk.aside import Aside
 from blendapp.desk.theme import GAP_PX
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _, plural
 from blendapp.services import sheets
 
 PAGE_WIDTH_IN = 8.27
+REST_MS = 150
 
 
 class PageView(QScrollArea):
@@ -22,14 +23,14 @@ class PageView(QScrollArea):
 
     shown = Signal()
     failed = Signal(str)
-    _made = Signal(int, object, str)
 
     def __init__(self) -> None:
         super().__init__()
         self.pages: list[bytes] = []
-        self._asked = 0
-        self._running = False
-        self._next: Callable[[], bytes] | None = None
+        self._making: Callable[[], bytes] | None = None
+        self._width = 0
+        self._rest = QTimer(self, singleShot=True, interval=REST_MS)
+        self._rest.timeout.connect(self._again)
         self.inside = QWidget()
         self.column = QVBoxLayout(self.inside)
         self.column.setContentsMargins(GAP_PX * 2, GAP_PX, GAP_PX * 2, GAP_PX * 2)
@@ -39,43 +40,32 @@ class PageView(QScrollArea):
         self.setWidgetResizable(True)
         self.setAlignment(Qt.AlignmentFlag.AlignHCenter)
         self.setAccessibleName(_("Preview of the page"))
-        self._made.connect(self._take)
+        self._aside = Aside(self, (Refused, ValueError, OSError))
+        self._aside.done.connect(self._take)
 
     def show_pdf(self, make: Callable[[], bytes]) -> None:
         """Show the PDF that a function makes; it runs on a thread and must not touch the mill."""
-        self._asked += 1
-        self._next = make
-        if not self._running:
-            self._begin()
-
-    def _begin(self) -> None:
-        make, self._next = self._next, None
-        assert make is not None
-        self._running = True
-        asked = self._asked
+        self._making = make
+        self._width = self.page_width()
         dots = self.page_width() * self.devicePixelRatioF() / PAGE_WIDTH_IN
+        self._aside.ask(lambda: sheets.page_images(make(), dots))
 
-        def run() -> None:
-            try:
-                self._made.emit(asked, sheets.page_images(make(), dots), "")
-            except (Refused, ValueError, OSError) as fault:
-                self._made.emit(asked, [], str(fault))
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        if self._making is not None and self.page_width() != self._width:
+            self._rest.start()
 
-        threading.Thread(target=run, daemon=True, name="pages").start()
+    def _again(self) -> None:
+        if self._making is not None:
+            self.show_pdf(self._making)
 
     def page_width(self) -> int:
         """Pixels that a page takes in width."""
         return max(min(self.viewport().width() - 4 * GAP_PX, 860), 320)
 
-    def _take(self, asked: int, images: list[bytes], fault: str) -> None:
-        self._running = False
-        if self._next is not None:
-            self._begin()
-            return
-        if asked != self._asked:
-            return
-        if fault:
-            self.failed.emit(fault)
+    def _take(self, images: list[bytes] | None, fault: Exception | None) -> None:
+        if fault is not None or images is None:
+            self.failed.emit(str(fault))
             return
         self.pages = images
         self._fill()
@@ -98,7 +88,8 @@ class PageView(QScrollArea):
         """Show nothing."""
         if not keep_pages:
             self.pages = []
-            self._asked += 1
+            self._making = None
+            self._aside.forget()
         while self.column.count() > 1:
             item = self.column.takeAt(0)
             widget = item.widget() if item is not None else None

@@ -50,7 +50,8 @@ class SheetPane(QWidget):
         self.print_pdf: Callable[[bytes], bool] = self._system_print
         self.order = QLineEdit()
         self.paper = Choice()
-        self.paper.addItems(["A4", "letter"])
+        for words, paper in ((_("A4"), "A4"), (_("US letter"), "letter")):
+            self.paper.addItem(words, paper)
         self.words = QLabel()
         self.words.setWordWrap(True)
         self.reason = QLineEdit()
@@ -155,7 +156,7 @@ class SheetPane(QWidget):
             return
         self.batch = found
         self._say(_batch_words(found), ready=True)
-        paper = self.paper.currentText()
+        paper = str(self.paper.currentData())
         self.pages.show_pdf(lambda: sheets.batch_pdf(found, paper))
 
     def _say(self, words: str, *, ready: bool) -> None:
@@ -217,14 +218,14 @@ class SheetPane(QWidget):
         """Keep a printed sheet again, marked as a copy."""
         path = self.ask_save(_("Keep the copy as"), _("copy") + ".pdf")
         if path:
-            self._try(lambda: batches.print_copy(self.work.mill, record_id, _pdf(path), paper=self.paper.currentText()))
+            self._try(lambda: batches.print_copy(self.work.mill, record_id, _pdf(path), paper=str(self.paper.currentData())))
             self._fill_copies()
 
     def _print_to(self, path: Path) -> Batch | None:
         batch = self.batch
         assert batch is not None
         done = self._try(lambda: batches.print_sheet(
-            self.work.mill, batch, path, reason=self.reason.text(), by=self.by.text(), paper=self.paper.currentText()))
+            self.work.mill, batch, path, reason=self.reason.text(), by=self.by.text(), paper=str(self.paper.currentData())))
         self._fill_copies()
         return done
 
@@ -239,7 +240,7 @@ class SheetPane(QWidget):
         from PySide6.QtPrintSupport import QPrintDialog, QPrinter
 
         self._printer = QPrinter(QPrinter.PrinterMode.HighResolution)
-        size = QPageSize.PageSizeId.A4 if self.paper.currentText() == "A4" else QPageSize.PageSizeId.Letter
+        size = QPageSize.PageSizeId.A4 if str(self.paper.currentData()) == "A4" else QPageSize.PageSizeId.Letter
         self._printer.setPageSize(QPageSize(size))
         self._printer.setFullPage(True)
         return bool(QPrintDialog(self._printer, self).exec())
@@ -272,8 +273,9 @@ def _batch_words(batch: Batch) -> str:
     lines = [plural("{count} batch of {kg} kg", "{count} equal batches of {kg} kg", batch.batches).format(
         count=batch.batches, kg=write(batch.batch_kg, 3))]
     if batch.residue_kg:
-        lines.append(_("The lines add up to {total} kg, {residue} kg from the batch.").format(
-            total=write(batch.total_kg, 3), residue=write(batch.residue_kg, 3)))
+        text = _("The lines come to {kg} kg less than the batch.") if batch.residue_kg < 0 else _(
+            "The lines come to {kg} kg more than the batch.")
+        lines.append(text.format(kg=write(abs(batch.residue_kg), 3)))
     if batch.broken:
         names = ", ".join(batch.limits[at].name for at in batch.broken)
         lines.append(_("Rounding to the scales breaks: {names}. It may be mixed only if somebody accepts that.").format(

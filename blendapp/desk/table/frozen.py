@@ -59,7 +59,10 @@ class FrozenTable(DeskTable):
         names.setVerticalScrollMode(QAbstractItemView.ScrollMode.ScrollPerPixel)
         names.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         names.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        names.setAccessibleName(self.accessibleName())
+
+    def setAccessibleName(self, name: str) -> None:
+        super().setAccessibleName(name)
+        self.names.setAccessibleName(name)
 
     def _only_first(self) -> None:
         for column in range(1, self.grid.columnCount()):

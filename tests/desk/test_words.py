@@ -1,0 +1,108 @@
+"""Texts and small readings of the desk that need no window."""
+
+from __future__ import annotations
+
+import pytest
+from hypothesis import given
+from hypothesis import strategies as st
+
+from blendapp.desk.finder.search import Found, best
+from blendapp.desk.formulas import read_nutrient
+from blendapp.desk.have.reading import read_price
+from blendapp.desk.meet.words import cost_rank, tag_step, tag_words
+from blendapp.desk.table.block import read_block, write_block
+from blendapp.desk.table.look import fitting_decimals, number_look
+from blendapp.domain.formulas import LimitKind
+from blendapp.domain.notation import COMMA, PLAIN, use_notation
+from blendapp.domain.results import LimitResult, Side
+
+cells = st.text(st.characters(exclude_categories=("Cs",), exclude_characters="\r\x0b\x0c\x1c\x1d\x1e\x85\u2028\u2029\x00"))
+
+
+@given(st.integers(1, 4).flatmap(lambda width: st.lists(st.lists(cells, min_size=width, max_size=width), min_size=1)))
+def test_a_block_is_read_as_it_was_written(rows: list[list[str]]) -> None:
+    text = write_block(rows)
+    if text and not text.endswith("\n"):
+        assert read_block(text) == rows
+
+
+def test_a_block_of_a_spreadsheet_ends_with_a_line_break_that_is_no_row() -> None:
+    assert read_block("1\t2\r\n3\t\r\n") == [["1", "2"], ["3", ""]]
+
+
+def test_an_unknown_number_is_a_dot_zero_is_0_and_figures_keep_their_decimal_sign() -> None:
+    use_notation(COMMA)
+    try:
+        assert number_look(None, 2).text == "·"
+        assert number_look(0.0, 2).text == "0"
+        assert number_look(12.5, 2).text == "12,50"
+        assert number_look(12.5, 2).typed == "12,5"
+    finally:
+        use_notation(PLAIN)
+
+
+def test_a_value_shows_the_decimals_it_was_entered_with() -> None:
+    assert fitting_decimals(0.125, 2) == 3
+    assert fitting_decimals(12.0, 2) == 2
+    assert fitting_decimals(None, 2) == 2
+
+
+def limit(**fields: object) -> LimitResult:
+    plain = {"index": 0, "limit_id": 1, "kind": LimitKind.NUTRIENT, "name": "Lysine", "per": None, "basis": None,
+             "unit": "%", "minimum": None, "maximum": None, "value": None}
+    return LimitResult(**{**plain, **fields})  # type: ignore[arg-type]
+
+
+def test_a_tag_says_step_money_and_how_far() -> None:
+    found = limit(minimum=18.5, value=18.5, binding=Side.MINIMUM, shadow_price_unique=True, relax_saving=24.0,
+                  tighten_cost=24.0, relax_holds_to=18.4)
+    assert tag_words(found, 1, "t") == "0.1 less saves 2.40 /t, to 18.4"
+    found = limit(maximum=25.0, value=25.0, binding=Side.MAXIMUM, shadow_price_unique=True, relax_saving=0.19)
+    assert tag_words(found, 1, "t") == "1.0 more saves 0.19 /t"
+
+
+def test_a_tag_never_shows_a_figure_where_more_than_one_price_fits() -> None:
+    found = limit(minimum=18.5, value=18.5, binding=Side.MINIMUM, shadow_price_unique=False)
+    assert tag_words(found, 1, "t") == "more than one price fits"
+
+
+def test_a_side_that_saves_nothing_says_what_the_other_costs() -> None:
+    found = limit(minimum=0.95, value=0.95, binding=Side.MINIMUM, shadow_price_unique=True, relax_saving=0.0,
+                  tighten_cost=10.787)
+    assert tag_words(found, 2, "t") == "0.01 more costs 0.11 /t"
+
+
+def test_a_target_tells_the_side_that_saves() -> None:
+    found = limit(minimum=2.0, maximum=2.0, value=2.0, binding=Side.MINIMUM, shadow_price_unique=True, raise_cost=-3.0,
+                  lower_cost=3.0)
+    assert tag_words(found, 2, "t") == "0.10 more saves 0.30 /t"
+
+
+def test_a_slack_limit_ranks_last_and_a_step_is_round() -> None:
+    assert cost_rank(limit(minimum=1.0, value=2.0)) == 0.0
+    assert tag_step(11.5, 2) == pytest.approx(0.1)
+    assert tag_step(0.4, 2) == pytest.approx(0.01)
+    assert tag_step(25.0, 1) == pytest.approx(1.0)
+
+
+def test_prices_are_read_with_the_mass_they_are_per() -> None:
+    assert read_price("452") == (452.0, None)
+    assert read_price("18.20 / cwt") == (18.2, "cwt")
+    assert read_price("4.10 per bu") == (4.1, "bu")
+    with pytest.raises(ValueError, match="stone"):
+        read_price("4 / stone")
+
+
+def test_a_nutrient_is_read_with_its_unit() -> None:
+    assert read_nutrient("Copper (mg/kg)") == ("Copper", "mg/kg")
+    assert read_nutrient("Lysine") == ("Lysine", "%")
+    with pytest.raises(ValueError, match="stone"):
+        read_nutrient("Lysine (stone)")
+    with pytest.raises(ValueError, match="name"):
+        read_nutrient("  ")
+
+
+def test_what_begins_with_the_typed_text_is_found_first() -> None:
+    things = [Found(words, "", lambda: None) for words in ("Soya oil", "Fish oil", "Oil, mixed", "Maize")]
+    assert [one.words for one in best(things, "oil")] == ["Oil, mixed", "Soya oil", "Fish oil"]
+    assert [one.words for one in best(things, "fi oi")] == ["Fish oil"]
