@@ -16,6 +16,7 @@ _linprog: Any = scipy.optimize.linprog  # its overloads know neither arrays of b
 _FIRST = {"presolve": False, "primal_feasibility_tolerance": 1e-10, "dual_feasibility_tolerance": 1e-10}
 _SECOND = {"presolve": True, "primal_feasibility_tolerance": 1e-9, "dual_feasibility_tolerance": 1e-9}
 _THIRD: dict[str, Any] = {"presolve": True}
+_SHORT = 1e-9
 _OPTIMAL, _LIMIT, _INFEASIBLE, _UNBOUNDED = 0, 1, 2, 3
 
 
@@ -66,10 +67,27 @@ def optimum(
         if result.status in verdicts and result.status in (_INFEASIBLE, _UNBOUNDED):
             return ("infeasible" if result.status == _INFEASIBLE else "unbounded"), None
         verdicts.append(result.status)
-    if objective.any():
-        idle = _linprog(np.zeros_like(objective), options=_SECOND, **call)
-        if idle.status == _INFEASIBLE:
-            return "infeasible", None
-        if idle.status == _OPTIMAL and _UNBOUNDED in verdicts:
-            return "unbounded", None
+    short = shortage(arrays)
+    if short is not None and short > _SHORT:
+        return "infeasible", None
+    if short is not None and _UNBOUNDED in verdicts:
+        return "unbounded", None
     raise FailedSolve(f"the solver gave no clear answer: {result.message}")
+
+
+def shortage(arrays: Arrays) -> float | None:
+    """The least sum of scaled shortfalls with which all rows can be met: 0 where the program is feasible. Always has
+    an answer, unless the solver fails (None)."""
+    k, (count, n) = arrays.inequalities, arrays.a.shape
+    more = np.hstack((arrays.a, np.eye(count), np.vstack((np.zeros((k, count - k)), -np.eye(count - k)))))
+    bounds = np.zeros((more.shape[1], 2))
+    bounds[:n, 0], bounds[:n, 1] = arrays.lower, arrays.upper
+    bounds[n:, 1] = np.inf
+    cost = np.concatenate((np.zeros(n), np.ones(more.shape[1] - n)))
+    call: dict[str, Any] = {"bounds": bounds, "method": "highs-ds", "options": _SECOND}
+    if k:
+        call["A_ub"], call["b_ub"] = -more[:k], -arrays.b[:k]
+    if count > k:
+        call["A_eq"], call["b_eq"] = more[k:], arrays.b[k:]
+    result = _linprog(cost, **call)
+    return float(result.fun) if result.status == _OPTIMAL else None

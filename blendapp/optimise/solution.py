@@ -40,7 +40,8 @@ class Solution:
     of either sign, in minimum_price.
     limits: state of each limit by its index. priced: the linear program that the prices belong to: the program
     itself, or, of a mixed-integer one, the linear program with the choice fixed (given is then true).
-    arrays, face: the solver arrays of priced and the face on which x lies, for sensitivity. seconds: time it took.
+    arrays, face, duals: the solver arrays of priced, the face on which x lies and the prices of the arrays' rows
+    (shape (m,), >= 0 for inequalities), for sensitivity. seconds: time it took.
     """
 
     status: Status
@@ -56,4 +57,5 @@ class Solution:
     given: bool = False
     arrays: Arrays | None = None
     face: Face | None = None
+    duals: Array | None = None
     seconds: float = 0.0

@@ -68,6 +68,7 @@ def _snapshot(arrays: Arrays, vertex: Vertex, started: float) -> Solution:
         priced=arrays.program,
         arrays=arrays,
         face=face,
+        duals=y,
         seconds=time.perf_counter() - started,
     )
 
@@ -188,7 +189,7 @@ def _column_limits(arrays: Arrays, face: Face, x: Array, reduced: Array, limits:
         if fixed and face.degree:
             moves = arrays.a[face.active, j] @ face.null
             fixed = bool(np.abs(moves).max() <= _NULL)
-        limits[bound.limit] = LimitState(float(x[j]), binding, fixed, d if fixed else None)
+        limits[bound.limit] = LimitState(float(x[j]), binding, bool(fixed), d if fixed else None)
 
 
 def _solve_whole(program: Program, time_limit_s: float | None, started: float) -> Solution:

@@ -23,11 +23,13 @@ def order(
     six has both sides, one in twenty is an equality, one in six is a ratio and one in ten bounds a single line.
     """
     random = np.random.default_rng(seed)
-    shares = np.concatenate((
-        random.uniform(3.0, 30.0, max(2, lines // 3)),
-        random.uniform(0.2, 3.0, lines // 3),
-        10 ** random.uniform(-2.3, -0.7, lines - lines // 3 - max(2, lines // 3)),
-    ))[:lines]
+    shares = np.concatenate(
+        (
+            random.uniform(3.0, 30.0, max(2, lines // 3)),
+            random.uniform(0.2, 3.0, lines // 3),
+            10 ** random.uniform(-2.3, -0.7, lines - lines // 3 - max(2, lines // 3)),
+        )
+    )[:lines]
     shares /= shares.sum()
     mass = float(random.choice([500, 1000, 1825, 2000, 3000])) if batch_kg is None else batch_kg
     price = np.round(random.uniform(150.0, 3000.0, lines), 2)

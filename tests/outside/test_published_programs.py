@@ -14,6 +14,7 @@ import pytest
 from blendapp.optimise.certificate import check
 from blendapp.optimise.program import Program, Row
 from blendapp.optimise.rays import ray
+from blendapp.optimise.sensitivity import LimitPrices, sensitivity
 from blendapp.optimise.solve import solve
 
 DATA = Path(__file__).parent / "data"
@@ -113,3 +114,124 @@ def test_the_unbounded_example_is_unbounded_along_its_second_column() -> None:
     found = ray(program)
     assert found is not None
     assert [program.names[j] for j in found.at_fault] == ["x2"]
+
+
+SENSITIVE = [n for n in OPTIMAL if "rhs_range" in EXAMPLES[n]["computed"]]
+
+
+def sided(example: dict[str, Any], name: str, i: int, prices: LimitPrices, found: Program) -> list[tuple[float, float]]:
+    """(slope to the left, slope to the right) of the minimised cost, as found; infinite where it cannot be moved."""
+    row = found.rows[i]
+    if row.minimum is not None and row.minimum == row.maximum:
+        left = -np.inf if prices.lower_cost is None else -prices.lower_cost
+        return [(left, np.inf if prices.raise_cost is None else prices.raise_cost)]
+    assert prices.relax_saving is not None
+    tighten = np.inf if prices.tighten_cost is None else prices.tighten_cost
+    if name.endswith(":lo"):
+        return [(prices.relax_saving, tighten) if prices.binding == "minimum" else (0.0, 0.0)]
+    return [(-tighten, -prices.relax_saving) if prices.binding == "maximum" else (0.0, 0.0)]
+
+
+@pytest.mark.parametrize("name", SENSITIVE)
+def test_both_sides_of_every_shadow_price_are_the_computed_ones(name: str) -> None:
+    """left_right_shadow_price in the data is by re-solving at relative steps of 1e-5, printed to six decimals."""
+    example = EXAMPLES[name]
+    program = read(example)
+    found = sensitivity(solve(program))
+    names = [row["name"] for row in example["rows"]]
+    sign = 1.0 if example["sense"] == "min" else -1.0
+    for key, (left, right) in example["computed"].get("left_right_shadow_price", {}).items():
+        i = names.index(key.split(":")[0])
+        if left is None or right is None:
+            continue
+        for down, up in sided(example, key, i, found.limits[i], program):
+            assert sign * down == pytest.approx(left, abs=2e-6, rel=1e-5), key
+            assert sign * up == pytest.approx(right, abs=2e-6, rel=1e-5), key
+
+
+@pytest.mark.parametrize("name", SENSITIVE)
+def test_price_ranges_hold_the_ranges_of_the_basis(name: str) -> None:
+    """The data gives the range over which the basis stays optimal. By amounts a range is the same where the optimum
+    is not degenerate, wider where it is (manual_diet_degenerate, degenerate_vertex, multi_period_blend)."""
+    example = EXAMPLES[name]
+    program = read(example)
+    solution = solve(program)
+    found = sensitivity(solution)
+    computed = example["computed"]
+    if computed.get("alternative_optima"):
+        return  # which of several optimal mixes is ranged is the reader's choice
+    for j, column in enumerate(program.names):
+        ends = [None if end is None else exact(end) for end in computed["cost_range"][column]]
+        if example["sense"] == "max":
+            ends = [None if end is None else -end for end in reversed(ends)]
+        low = -np.inf if ends[0] is None else ends[0]
+        high = np.inf if ends[1] is None else ends[1]
+        if computed["primal_degenerate"]:
+            assert found.price_low[j] <= low or found.price_low[j] == pytest.approx(low, rel=1e-9, abs=1e-9)
+            assert found.price_high[j] >= high or found.price_high[j] == pytest.approx(high, rel=1e-9, abs=1e-9)
+        else:
+            assert found.price_low[j] == pytest.approx(low, rel=1e-9, abs=1e-9)
+            assert found.price_high[j] == pytest.approx(high, rel=1e-9, abs=1e-9)
+
+
+@pytest.mark.parametrize("name", [n for n in SENSITIVE if EXAMPLES[n]["computed"]["primal_degenerate"] is False])
+def test_prices_hold_to_the_published_ends_of_their_ranges(name: str) -> None:
+    """rhs_range of an active row is where its basis stays feasible. Where the optimum has alternatives a slope goes on
+    past that end; and the data does not clip a range at the row's own other side, which is where this
+    program's limit would contradict itself."""
+    example = EXAMPLES[name]
+    program = read(example)
+    found = sensitivity(solve(program))
+    if example["computed"].get("alternative_optima"):
+        return
+    for i, row in enumerate(example["rows"]):
+        ranged = example["computed"]["rhs_range"][row["name"]]
+        if ranged["active"] is None:
+            continue
+        low, high = (None if end is None else exact(end) for end in ranged["range"])
+        prices = found.limits[i]
+        if row["lo"] is not None and row["lo"] == row["hi"]:
+            pairs = [(prices.lower_holds_to, low), (prices.raise_holds_to, high)]
+        elif ranged["active"] == "lo":
+            other = np.inf if row["hi"] is None else row["hi"]
+            high = None if high is None and other == np.inf else min(np.inf if high is None else high, other)
+            pairs = [(prices.relax_holds_to, low), (prices.tighten_holds_to, high)]
+        else:
+            other = -np.inf if row["lo"] is None else row["lo"]
+            low = None if low is None and other == -np.inf else max(-np.inf if low is None else low, other)
+            pairs = [(prices.tighten_holds_to, low), (prices.relax_holds_to, high)]
+        for ours, theirs in pairs:
+            if theirs is None:
+                assert ours is None, (row["name"], ours)
+            else:
+                assert ours == pytest.approx(theirs, rel=1e-9, abs=1e-9), row["name"]
+
+
+def test_the_published_sensitivity_report_of_the_scrap_blend_is_reproduced() -> None:
+    """GLPK 5.0 reference manual, section 3.4.1: marginals, right-hand-side and cost ranges as printed there."""
+    example = EXAMPLES["scrap_blend_range_rows"]
+    program = read(example)
+    solution = solve(program)
+    found = sensitivity(solution)
+    published = example["published"]
+    assert solution.objective == pytest.approx(published["objective"], rel=1e-9)
+    names = [row["name"] for row in example["rows"]]
+    for key, value in published["marginal"].items():
+        if key in names:
+            assert solution.limits[names.index(key)].price == pytest.approx(value, abs=1e-5)
+        else:
+            j = program.names.index(key)
+            assert program.cost[j] - found.price_low[j] == pytest.approx(value, abs=1e-5)
+            assert found.break_even[j] == found.price_low[j]
+    for key, (low, high) in published["rhs_range"].items():
+        prices = found.limits[names.index(key)]
+        ends = [
+            e
+            for e in (prices.tighten_holds_to, prices.relax_holds_to, prices.raise_holds_to, prices.lower_holds_to)
+            if e is not None
+        ]
+        assert sorted(ends) == pytest.approx([low, high], abs=1e-4)
+    for key, (low, high) in published["cost_range"].items():
+        j = program.names.index(key)
+        assert found.price_low[j] == pytest.approx(low, abs=1e-5)
+        assert found.price_high[j] == pytest.approx(high, abs=1e-5)
