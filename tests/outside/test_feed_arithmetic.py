@@ -150,7 +150,7 @@ def test_a_megajoule_is_239_006_kilocalories() -> None:
 
 
 def test_range_cubes_with_8_percent_protein_from_urea_hold_2_85_percent_urea() -> None:
-    """Nebraska beef FAQ 2010: 37 % crude protein, 8 of it from urea at 281 % (the page prints 31 natural, 29 is right)."""
+    """Nebraska beef FAQ 2010: 37 % crude protein, 8 of it from urea at 281 % (29 natural; the page prints 31)."""
     share = CHECKS["urea_share"]
     make = Maker()
     make.nutrient("Crude protein", key="crude protein")
