@@ -1,0 +1,72 @@
+"""The batch sheet: looked at as it will be printed, numbered when it is kept or printed, and copied as a copy."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import pytest
+from PySide6.QtCore import Qt
+from pytestqt.qtbot import QtBot
+
+from blendapp.desk.bench import Bench
+from tests.desk.conftest import Hands
+
+
+@pytest.fixture
+def sheet(bench: Bench, qtbot: QtBot) -> Bench:
+    """The window with the sheet of the usual batch in view."""
+    with qtbot.waitSignal(bench.sheet.pages.shown, timeout=20000):
+        bench.show_sheet()
+    return bench
+
+
+def test_the_preview_shows_the_pages_of_the_usual_batch(sheet: Bench) -> None:
+    assert sheet.sheet.order.text() == "1000"
+    assert sheet.sheet.pages.pages
+    assert sheet.sheet.pages.pages[0].startswith(b"\x89PNG")
+    assert sheet.frame.footer.caution.isVisible()
+
+
+def test_another_order_is_worked_out_as_it_is_typed(sheet: Bench, hands: Hands, qtbot: QtBot) -> None:
+    with qtbot.waitSignal(sheet.sheet.pages.shown, timeout=20000):
+        sheet.sheet.order.setFocus()
+        sheet.sheet.order.selectAll()
+        hands.write("500")
+    assert sheet.sheet.batch is not None
+    assert sheet.sheet.batch.order_kg == 500
+
+
+def test_an_order_that_is_no_mass_says_so_and_cannot_be_printed(sheet: Bench) -> None:
+    sheet.sheet.order.setText("plenty")
+    sheet.sheet.make()
+    assert "plenty" in sheet.sheet.words.text()
+    assert not sheet.sheet.print_button.isEnabled()
+    assert not sheet.sheet.pages.pages
+
+
+def test_keeping_the_sheet_gives_it_a_number_and_a_copy_is_counted(sheet: Bench, tmp_path: Path) -> None:
+    pane = sheet.sheet
+    if pane.batch is not None and pane.batch.broken:
+        pane.reason.setText("trial")
+        pane.by.setText("Ann")
+    pane.ask_save = lambda _title, _name: str(tmp_path / "sheet")
+    pane.to_file()
+    (record,) = sheet.work.library.all("batch")
+    assert record.number == 1
+    assert (tmp_path / "sheet.pdf").read_bytes().startswith(b"%PDF")
+    assert "1" in sheet.strip.words.text()
+    pane.ask_save = lambda _title, _name: str(tmp_path / "copy.pdf")
+    pane.copy_to_file(record.id)
+    (record,) = sheet.work.library.all("batch")
+    assert record.copies == 1
+    assert (tmp_path / "copy.pdf").is_file()
+
+
+def test_a_formula_without_an_answer_has_no_sheet(bench: Bench, hands: Hands) -> None:
+    for owner in (1, 2):
+        hands.go(bench.have.table, owner, "price")
+        hands.key(Qt.Key.Key_Delete)
+    bench.show_sheet()
+    assert bench.sheet.batch is None
+    assert not bench.sheet.print_button.isEnabled()
+    assert bench.sheet.words.text()
