@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 
-from blendapp.domain.batches import Batch
+from blendapp.domain.batches import Batch, proof_words
 from blendapp.domain.formulas import Amounts
 from blendapp.domain.notation import notation
 from blendapp.domain.price_rows import Fate, PriceListReading
@@ -149,7 +149,7 @@ def sheet(batch: Batch, pdf: str | None) -> str:
     lines.append("  " + _("Total {total} kg, residue {residue} kg").format(
         total=write(batch.total_kg, 3), residue=write(batch.residue_kg, 3)
     ))
-    lines += [f"  {line}" for line in broken_words(batch)]
+    lines += [f"  {line}" for line in (*broken_words(batch), proof_words(batch)) if line]
     lines += [f"  ! {caution}" for caution in batch.cautions]
     if batch.broken and not batch.fit_to_mix:
         lines.append("  " + _("NOT TO BE MIXED: the limits above are broken and not accepted."))

@@ -5,7 +5,9 @@ from __future__ import annotations
 import datetime
 from dataclasses import dataclass
 
+from blendapp.domain.notation import notation
 from blendapp.domain.results import LimitResult, NutrientResult
+from blendapp.domain.wording import _
 
 
 @dataclass(frozen=True)
@@ -86,3 +88,20 @@ class Batch:
     def fit_to_mix(self) -> bool:
         """Whether it may be mixed: nothing is broken, or what is was accepted by name and with a reason."""
         return not self.broken or bool(self.accepted_reason and self.accepted_by)
+
+
+def proof_words(batch: Batch) -> str:
+    """How much better another batch could at most be where time was up before it was known; "" if it is the best."""
+    short = notation().write_short
+    if batch.proven:
+        return ""
+    if batch.unproven == "total":
+        text = _("Time was up before it was proven best: its total may come up to {kg} kg nearer.")
+        return text.format(kg=short(batch.gap, 3))
+    if batch.unproven == "limits":
+        text = _("Time was up before it was proven best: up to {count} fewer limits may be broken.")
+        return text.format(count=short(batch.gap, 0))
+    if batch.unproven == "deviation":
+        return _("Time was up before it was proven best: its lines may keep closer to their shares.")
+    text = _("Time was up before it was proven best: it may be up to {money} {currency} cheaper.")
+    return text.format(money=short(batch.gap, 2), currency=batch.currency)
