@@ -12,7 +12,8 @@ class MillInfo:
     """One record per mill file, identifier 1.
 
     currency: ISO 4217 code. ton_means: one of units.TON_MEANINGS, "" asks. cwt_means: one of units.CWT_MEANINGS, ""
-    is 100 lb in the exchange workbook and asks in price lists.
+    is 100 lb in the exchange workbook and asks in price lists. one_person_approves: whether who prepared a version may
+    also approve it; it stands in no workbook, so that no import can loosen it.
     """
 
     id: int = 1
@@ -20,6 +21,7 @@ class MillInfo:
     currency: str = "USD"
     ton_means: str = ""
     cwt_means: str = ""
+    one_person_approves: bool = False
 
 
 @dataclass(frozen=True)
@@ -41,7 +43,12 @@ class VersionState(StrEnum):
 
 @dataclass(frozen=True)
 class FormulaVersion:
-    """A snapshot of a formula that does not change. snapshot: JSON of limits, composition, prices and result."""
+    """A snapshot of a formula that does not change once it is approved.
+
+    number: from 1 within a formula. snapshot: JSON of versions.Snapshot. made, made_by: when and by whom it was
+    prepared. approved_by, made_by: names as they were then. capacity: in which the approver approved. seal: of an
+    approved version and its acknowledgements (versions.seal), "" before.
+    """
 
     id: int
     formula_id: int
@@ -50,10 +57,13 @@ class FormulaVersion:
     snapshot: str
     made: datetime.datetime
     made_by: str = ""
+    made_by_id: int | None = None
     approved: datetime.datetime | None = None
+    approved_by: str = ""
     approved_by_id: int | None = None
     capacity: str = ""
     note: str = ""
+    seal: str = ""
 
 
 @dataclass(frozen=True)
@@ -100,7 +110,7 @@ class PrintedBatch:
 
 @dataclass(frozen=True)
 class Acknowledgement:
-    """A caution or an unsafe unknown that a person took on, for one version, with a reason."""
+    """A caution or an unsafe unknown that a person took on, for one version, with a reason. by: the name as it was."""
 
     id: int
     version_id: int
@@ -108,3 +118,4 @@ class Acknowledgement:
     reason: str
     person_id: int
     made: datetime.datetime
+    by: str = ""

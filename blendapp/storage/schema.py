@@ -103,7 +103,7 @@ def _table(kind: str, *columns: Any) -> Table:
 
 
 _table(
-    "mill", _text("name"), _text("currency"), _text("ton_means"), _text("cwt_means"),
+    "mill", _text("name"), _text("currency"), _text("ton_means"), _text("cwt_means"), _mark("one_person_approves"),
     CheckConstraint("id = 1", name="one_mill"),
 )
 _table("person", _text("name", unique=True), _text("capacity"), _text("password_hash"), _mark("active"))
@@ -168,12 +168,13 @@ _table(
 )
 _table(
     "version", _link("formula_id", "formula"), _count("number"), _text("state"), _text("snapshot"), _moment("made"),
-    _text("made_by"), _moment("approved", optional=True), _link("approved_by_id", "person", optional=True),
-    _text("capacity"), _text("note"), UniqueConstraint("formula_id", "number"),
+    _text("made_by"), _link("made_by_id", "person", optional=True), _moment("approved", optional=True),
+    _text("approved_by"), _link("approved_by_id", "person", optional=True), _text("capacity"), _text("note"),
+    _text("seal"), UniqueConstraint("formula_id", "number"),
 )
 _table(
     "acknowledgement", _link("version_id", "version"), _text("caution"), _text("reason"), _link("person_id", "person"),
-    _moment("made"),
+    _moment("made"), _text("by"),
 )
 _table(
     "batch", _count("number", unique=True), _link("formula_id", "formula"), _text("version"),

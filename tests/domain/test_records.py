@@ -47,7 +47,8 @@ def test_every_kind_names_one_class_of_frozen_records_with_an_identifier() -> No
 def test_a_record_refers_only_to_kinds_above_its_own() -> None:
     refers = {"formula_id": "formula", "ingredient_id": "ingredient", "nutrient_id": "nutrient", "site_id": "site",
               "scale_id": "scale", "lot_id": "lot", "version_id": "version", "supplier_id": "supplier",
-              "price_list_id": "price_list", "person_id": "person", "approved_by_id": "person"}
+              "price_list_id": "price_list", "person_id": "person", "approved_by_id": "person",
+              "made_by_id": "person"}
     order = list(KINDS)
     for kind, cls in KINDS.items():
         for field in dataclasses.fields(cls):

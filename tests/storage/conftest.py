@@ -66,8 +66,10 @@ def records() -> list[Record]:
             2, 1, LimitKind.RATIO, Subject.ingredients(1, 2), Subject.of_class("Cereals, whole"), 0.1, None, "",
             LimitBasis.AT_DRY_MATTER, 88.0, "kept",
         ),
-        FormulaVersion(1, 1, 1, VersionState.APPROVED, "{}", MOMENT, "Ann", MOMENT, 1, "nutritionist"),
-        Acknowledgement(1, 1, "unknown lysine", "known to be low", 1, MOMENT),
+        FormulaVersion(
+            1, 1, 1, VersionState.APPROVED, "{}", MOMENT, "Ann", 1, MOMENT, "Ann Miller", 1, "nutritionist", "n", "ab" * 32
+        ),
+        Acknowledgement(1, 1, "unknown lysine", "known to be low", 1, MOMENT, "Ann Miller"),
         PrintedBatch(1, 1, 1, "1", 2000.0, MOMENT, "Ann", sheet='{"lines": []}', copies=1),
     ]
 

@@ -8,11 +8,12 @@ CREATE TABLE acknowledgement (
 	reason TEXT NOT NULL, 
 	person_id INTEGER NOT NULL, 
 	made DATETIME NOT NULL, 
+	"by" TEXT NOT NULL, 
 	CONSTRAINT pk_acknowledgement PRIMARY KEY (id), 
 	CONSTRAINT fk_acknowledgement_version_id FOREIGN KEY(version_id) REFERENCES version (id) DEFERRABLE INITIALLY DEFERRED, 
 	CONSTRAINT fk_acknowledgement_person_id FOREIGN KEY(person_id) REFERENCES person (id) DEFERRABLE INITIALLY DEFERRED
 );
-INSERT INTO "acknowledgement" VALUES(1,1,'unknown lysine','known to be low',1,'2026-03-02 08:15:30.123456');
+INSERT INTO "acknowledgement" VALUES(1,1,'unknown lysine','known to be low',1,'2026-03-02 08:15:30.123456','Ann Miller');
 CREATE TABLE alembic_version (
 	version_num VARCHAR(32) NOT NULL, 
 	CONSTRAINT alembic_version_pkc PRIMARY KEY (version_num)
@@ -141,7 +142,7 @@ CREATE TABLE log_change (
 	CONSTRAINT pk_log_change PRIMARY KEY (entry_id, position), 
 	CONSTRAINT fk_log_change_entry_id FOREIGN KEY(entry_id) REFERENCES log_entry (id) DEFERRABLE INITIALLY DEFERRED
 );
-INSERT INTO "log_change" VALUES(1,0,'mill',1,NULL,'{"id":1,"name":"Mühle am Bach","currency":"EUR","ton_means":"t","cwt_means":""}');
+INSERT INTO "log_change" VALUES(1,0,'mill',1,NULL,'{"id":1,"name":"Mühle am Bach","currency":"EUR","ton_means":"t","cwt_means":"","one_person_approves":false}');
 INSERT INTO "log_change" VALUES(1,1,'person',1,NULL,'{"id":1,"name":"Ann Miller","capacity":"nutritionist","password_hash":"$hash$","active":true}');
 INSERT INTO "log_change" VALUES(1,2,'site',1,NULL,'{"id":1,"name":"North yard"}');
 INSERT INTO "log_change" VALUES(1,3,'supplier',1,NULL,'{"id":1,"name":"Bay Grain","note":"pays in 30 days"}');
@@ -167,8 +168,8 @@ INSERT INTO "log_change" VALUES(1,22,'quote',2,NULL,'{"id":2,"ingredient_id":2,"
 INSERT INTO "log_change" VALUES(1,23,'synonym',1,NULL,'{"id":1,"source":"Bay Grain","name":"corn no 2","ingredient_id":1,"per":"bu"}');
 INSERT INTO "log_change" VALUES(1,24,'limit',1,NULL,'{"id":1,"formula_id":1,"kind":"nutrient","subject":"nutrient 1","per":null,"minimum":16.0,"maximum":18.0,"unit":"","basis":"as fed","at_dry_matter_percent":null,"note":""}');
 INSERT INTO "log_change" VALUES(1,25,'limit',2,NULL,'{"id":2,"formula_id":1,"kind":"ratio","subject":"ingredients 1 2","per":"class Cereals, whole","minimum":0.1,"maximum":null,"unit":"","basis":"at dry matter","at_dry_matter_percent":88.0,"note":"kept"}');
-INSERT INTO "log_change" VALUES(1,26,'version',1,NULL,'{"id":1,"formula_id":1,"number":1,"state":"approved","snapshot":"{}","made":"2026-03-02T08:15:30.123456+00:00","made_by":"Ann","approved":"2026-03-02T08:15:30.123456+00:00","approved_by_id":1,"capacity":"nutritionist","note":""}');
-INSERT INTO "log_change" VALUES(1,27,'acknowledgement',1,NULL,'{"id":1,"version_id":1,"caution":"unknown lysine","reason":"known to be low","person_id":1,"made":"2026-03-02T08:15:30.123456+00:00"}');
+INSERT INTO "log_change" VALUES(1,26,'version',1,NULL,'{"id":1,"formula_id":1,"number":1,"state":"approved","snapshot":"{}","made":"2026-03-02T08:15:30.123456+00:00","made_by":"Ann","made_by_id":1,"approved":"2026-03-02T08:15:30.123456+00:00","approved_by":"Ann Miller","approved_by_id":1,"capacity":"nutritionist","note":"n","seal":"abababababababababababababababababababababababababababababababab"}');
+INSERT INTO "log_change" VALUES(1,27,'acknowledgement',1,NULL,'{"id":1,"version_id":1,"caution":"unknown lysine","reason":"known to be low","person_id":1,"made":"2026-03-02T08:15:30.123456+00:00","by":"Ann Miller"}');
 INSERT INTO "log_change" VALUES(1,28,'batch',1,NULL,'{"id":1,"number":1,"formula_id":1,"version":"1","order_kg":2000.0,"printed":"2026-03-02T08:15:30.123456+00:00","printed_by":"Ann","accepted_reason":"","accepted_by":"","sheet":"{\"lines\": []}","copies":1}');
 CREATE TABLE log_entry (
 	id INTEGER NOT NULL PRIMARY KEY AUTOINCREMENT, 
@@ -179,7 +180,7 @@ CREATE TABLE log_entry (
 	of_id INTEGER, 
 	CONSTRAINT fk_log_entry_of_id FOREIGN KEY(of_id) REFERENCES log_entry (id) DEFERRABLE INITIALLY DEFERRED
 );
-INSERT INTO "log_entry" VALUES(1,'2026-12-01 13:32:19.662997','','New mill','record',NULL);
+INSERT INTO "log_entry" VALUES(1,'2026-12-01 13:54:15.395345','','New mill','record',NULL);
 CREATE TABLE lot (
 	id INTEGER NOT NULL, 
 	ingredient_id INTEGER NOT NULL, 
@@ -214,10 +215,11 @@ CREATE TABLE mill (
 	currency TEXT NOT NULL, 
 	ton_means TEXT NOT NULL, 
 	cwt_means TEXT NOT NULL, 
+	one_person_approves BOOLEAN NOT NULL, 
 	CONSTRAINT pk_mill PRIMARY KEY (id), 
 	CONSTRAINT ck_mill_ck_mill_ck_mill_one_mill CHECK (id = 1)
 );
-INSERT INTO "mill" VALUES(1,'Mühle am Bach','EUR','t','');
+INSERT INTO "mill" VALUES(1,'Mühle am Bach','EUR','t','',0);
 CREATE TABLE mixer (
 	id INTEGER NOT NULL, 
 	name TEXT NOT NULL, 
@@ -359,16 +361,20 @@ CREATE TABLE version (
 	snapshot TEXT NOT NULL, 
 	made DATETIME NOT NULL, 
 	made_by TEXT NOT NULL, 
+	made_by_id INTEGER, 
 	approved DATETIME, 
+	approved_by TEXT NOT NULL, 
 	approved_by_id INTEGER, 
 	capacity TEXT NOT NULL, 
 	note TEXT NOT NULL, 
+	seal TEXT NOT NULL, 
 	CONSTRAINT pk_version PRIMARY KEY (id), 
 	CONSTRAINT uq_version_formula_id_number UNIQUE (formula_id, number), 
 	CONSTRAINT fk_version_formula_id FOREIGN KEY(formula_id) REFERENCES formula (id) DEFERRABLE INITIALLY DEFERRED, 
+	CONSTRAINT fk_version_made_by_id FOREIGN KEY(made_by_id) REFERENCES person (id) DEFERRABLE INITIALLY DEFERRED, 
 	CONSTRAINT fk_version_approved_by_id FOREIGN KEY(approved_by_id) REFERENCES person (id) DEFERRABLE INITIALLY DEFERRED
 );
-INSERT INTO "version" VALUES(1,1,1,'approved','{}','2026-03-02 08:15:30.123456','Ann','2026-03-02 08:15:30.123456',1,'nutritionist','');
+INSERT INTO "version" VALUES(1,1,1,'approved','{}','2026-03-02 08:15:30.123456','Ann',1,'2026-03-02 08:15:30.123456','Ann Miller',1,'nutritionist','n','abababababababababababababababababababababababababababababababab');
 CREATE INDEX ix_log_entry_of_id ON log_entry (of_id);
 CREATE INDEX ix_batch_formula_id ON batch (formula_id);
 CREATE INDEX ix_limit_formula_id ON "limit" (formula_id);
@@ -377,6 +383,7 @@ CREATE INDEX ix_price_list_supplier_id ON price_list (supplier_id);
 CREATE INDEX ix_scale_site_id ON scale (site_id);
 CREATE INDEX ix_version_approved_by_id ON version (approved_by_id);
 CREATE INDEX ix_version_formula_id ON version (formula_id);
+CREATE INDEX ix_version_made_by_id ON version (made_by_id);
 CREATE INDEX ix_acknowledgement_person_id ON acknowledgement (person_id);
 CREATE INDEX ix_acknowledgement_version_id ON acknowledgement (version_id);
 CREATE INDEX ix_ingredient_made_by_formula_id ON ingredient (made_by_formula_id);

@@ -56,6 +56,7 @@ def upgrade() -> None:
         sa.Column("currency", sa.Text(), nullable=False),
         sa.Column("ton_means", sa.Text(), nullable=False),
         sa.Column("cwt_means", sa.Text(), nullable=False),
+        sa.Column("one_person_approves", sa.Boolean(), nullable=False),
         sa.PrimaryKeyConstraint("id", name="pk_mill"),
         sa.CheckConstraint("id = 1", name="ck_mill_ck_mill_one_mill"),
     )
@@ -185,15 +186,19 @@ def upgrade() -> None:
         sa.Column("snapshot", sa.Text(), nullable=False),
         sa.Column("made", sa.DateTime(timezone=True), nullable=False),
         sa.Column("made_by", sa.Text(), nullable=False),
+        _link("made_by_id", "person", "fk_version_made_by_id", nullable=True),
         sa.Column("approved", sa.DateTime(timezone=True), nullable=True),
+        sa.Column("approved_by", sa.Text(), nullable=False),
         _link("approved_by_id", "person", "fk_version_approved_by_id", nullable=True),
         sa.Column("capacity", sa.Text(), nullable=False),
         sa.Column("note", sa.Text(), nullable=False),
+        sa.Column("seal", sa.Text(), nullable=False),
         sa.PrimaryKeyConstraint("id", name="pk_version"),
         sa.UniqueConstraint("formula_id", "number", name="uq_version_formula_id_number"),
     )
     op.create_index("ix_version_approved_by_id", "version", ["approved_by_id"])
     op.create_index("ix_version_formula_id", "version", ["formula_id"])
+    op.create_index("ix_version_made_by_id", "version", ["made_by_id"])
     op.create_table(
         "acknowledgement",
         sa.Column("id", sa.Integer(), autoincrement=False, nullable=False),
@@ -202,6 +207,7 @@ def upgrade() -> None:
         sa.Column("reason", sa.Text(), nullable=False),
         _link("person_id", "person", "fk_acknowledgement_person_id", nullable=False),
         sa.Column("made", sa.DateTime(timezone=True), nullable=False),
+        sa.Column("by", sa.Text(), nullable=False),
         sa.PrimaryKeyConstraint("id", name="pk_acknowledgement"),
     )
     op.create_index("ix_acknowledgement_person_id", "acknowledgement", ["person_id"])
