@@ -17,6 +17,7 @@ from blendapp.optimise.build.composition import Composition
 from blendapp.optimise.build.formula import FormulaProgram, build, unknown_values
 from blendapp.optimise.linear import FailedSolve
 from blendapp.optimise.program import Program
+from blendapp.optimise.sensitivity import sensitivity
 from blendapp.optimise.solution import Solution
 from blendapp.optimise.solve import solve
 
@@ -33,11 +34,13 @@ def formulate(
     *,
     site_id: int | None = None,
     time_limit_s: float | None = None,
+    prices: bool = True,
 ) -> Result:
     """The least-cost answer to a formula at the prices of a day, checked, or why there is none.
 
-    composition: kept between calls by the mill, for speed. time_limit_s: of a mixed-integer program. Raises
-    FailedCertificate where the solver's answer does not hold; no answer is shown then.
+    composition: kept between calls by the mill, for speed. time_limit_s: of a mixed-integer program. prices: whether
+    both-sided shadow prices and price ranges are worked out. Raises FailedCertificate where the solver's answer does
+    not hold; no answer is shown then.
     """
     formula = library.formula(formula_id)
     forbidden = cautions.forbidden_by_admission(formula, library.admitted(formula))
@@ -53,7 +56,7 @@ def formulate(
         return _none(library, built, on, Status.UNBOUNDED, _why_unbounded(built), unknown)
     if solution.x is None:
         return _none(library, built, on, Status.STOPPED, _("Time was up before any mix was found."), unknown)
-    return _answer(library, built, on, solution, unknown)
+    return _answer(library, built, on, solution, unknown, prices)
 
 
 def formulate_all(
@@ -91,7 +94,8 @@ def _solve(program: Program, time_limit_s: float | None) -> Solution:
 
 
 def _answer(
-    library: Library, built: FormulaProgram, on: datetime.date, solution: Solution, unknown: Sequence[UnknownValue]
+    library: Library, built: FormulaProgram, on: datetime.date, solution: Solution, unknown: Sequence[UnknownValue],
+    prices: bool,
 ) -> Result:
     try:
         found = certificate.check(built.program, solution)
@@ -105,7 +109,8 @@ def _answer(
         return _none(library, built, on, Status.CONFLICT, forbidden, unknown)
     check = Check(found.largest_violation, found.duality_gap)
     said = cautions.warnings(built.formula, library, mix, unknown)
-    return answer.answered(library, on, built, solution, check, unknown, said)
+    worth = sensitivity(solution) if prices and solution.status == "optimal" else None
+    return answer.answered(library, on, built, solution, check, unknown, said, worth)
 
 
 def _none(

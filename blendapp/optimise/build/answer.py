@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime
+import math
 from collections.abc import Mapping, Sequence
 from typing import Any
 
@@ -23,6 +24,7 @@ from blendapp.domain.results import (
 )
 from blendapp.optimise.build.formula import FormulaProgram
 from blendapp.optimise.program import Array
+from blendapp.optimise.sensitivity import LimitPrices, Sensitivity
 from blendapp.optimise.solution import LimitState, Solution
 
 # Below this share of the mix (or kg per day) an amount is numerical dust and is shown as none.
@@ -58,13 +60,17 @@ def without_answer(
 
 def answered(
     library: Library, on: datetime.date, built: FormulaProgram, solution: Solution, check: Check,
-    unknown: Sequence[UnknownValue], cautions: Sequence[str],
+    unknown: Sequence[UnknownValue], cautions: Sequence[str], sensitivity: Sensitivity | None = None,
 ) -> Result:
-    """The result of a solution that has amounts: optimal, or the best found when time was up."""
+    """The result of a solution that has amounts: optimal, or the best found when time was up.
+
+    sensitivity: what its prices come from; without one they are the solver's, and none where more than one fits.
+    """
     assert solution.x is not None
     formula = built.formula
     x = np.where(np.abs(solution.x) < _DUST, 0.0, solution.x)
     money = x * built.program.cost
+    worth: Mapping[int, LimitPrices] = {} if sensitivity is None else sensitivity.limits
     return Result(
         formula_id=formula.id,
         formula=formula.name,
@@ -73,13 +79,17 @@ def answered(
         currency=library.mill.currency,
         on=on,
         ingredients=tuple(
-            IngredientResult(i.id, i.name, price, amount, cost)
-            for i, price, amount, cost in zip(
-                built.ingredients, built.price_per_t.tolist(), x.tolist(), money.tolist(), strict=True
+            IngredientResult(i.id, i.name, price, amount, cost, prices, even)
+            for i, price, amount, cost, prices, even in zip(
+                built.ingredients, built.price_per_t.tolist(), x.tolist(), money.tolist(),
+                *_price_ranges(built, sensitivity), strict=True,
             )
         ),
         limits=tuple(
-            limit_result(library, formula, index, limit, **_figures(limit, factor, solution.limits.get(index)))
+            limit_result(
+                library, formula, index, limit,
+                **_figures(limit, factor, solution.limits.get(index), worth.get(index)),
+            )
             for index, (limit, factor) in enumerate(zip(built.limits, built.factors, strict=True))
         ),
         nutrients=nutrients_of(library, built, x),
@@ -109,7 +119,24 @@ def limit_result(library: Library, formula: Formula, index: int, limit: Limit, *
     )
 
 
-def _figures(limit: Limit, factor: float, state: LimitState | None) -> dict[str, Any]:
+def _price_ranges(
+    built: FormulaProgram, sensitivity: Sensitivity | None
+) -> tuple[list[tuple[float | None, float | None] | None], list[float | None]]:
+    """For each column its price range and its break-even price, per tonne."""
+    n = len(built.ingredients)
+    if sensitivity is None:
+        return [None] * n, [None] * n
+    per_t = 1.0 if built.formula.amounts is Amounts.BLEND else 1e3
+    low, high, even = (
+        [value * per_t if math.isfinite(value) else None for value in ends.tolist()]
+        for ends in (sensitivity.price_low, sensitivity.price_high, sensitivity.break_even)
+    )
+    return list(zip(low, high, strict=True)), even
+
+
+def _figures(
+    limit: Limit, factor: float, state: LimitState | None, prices: LimitPrices | None
+) -> dict[str, Any]:
     """Value, working side and prices of a limit at an answer, as displayed."""
     if state is None:
         return {}
@@ -119,13 +146,30 @@ def _figures(limit: Limit, factor: float, state: LimitState | None) -> dict[str,
     if binding is not None and limit.kind is not LimitKind.PRACTICAL:
         value = limit.minimum if binding is Side.MINIMUM else limit.maximum
     found = {"value": value, "binding": binding, "shadow_price_unique": state.unique}
-    if limit.kind is LimitKind.COUNT or state.price is None:
+    if limit.kind is LimitKind.COUNT:
+        return found
+    if prices is not None:
+        return {**found, "binding": prices.binding and Side(prices.binding), **_both_sided(prices, factor)}
+    if state.price is None:
         return found
     price = state.price * factor
     if limit.minimum is not None and limit.minimum == limit.maximum:
         return {**found, "raise_cost": price + 0.0, "lower_cost": -price + 0.0}
     cost = abs(price) if binding is not None else 0.0
     return {**found, "tighten_cost": cost, "relax_saving": cost}
+
+
+def _both_sided(prices: LimitPrices, factor: float) -> dict[str, Any]:
+    """Slopes per displayed unit, and the displayed bound up to which each holds."""
+    slopes = ("tighten_cost", "relax_saving", "raise_cost", "lower_cost")
+    found: dict[str, Any] = {
+        name: None if (slope := getattr(prices, name)) is None else slope * factor + 0.0 for name in slopes
+    }
+    for name in ("tighten_holds_to", "relax_holds_to"):
+        end = getattr(prices, name)
+        found[name] = None if end is None else end / factor
+    found["shadow_price_unique"] = prices.unique
+    return found
 
 
 def nutrients_of(library: Library, built: FormulaProgram, x: Array) -> tuple[NutrientResult, ...]:
