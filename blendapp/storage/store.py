@@ -148,9 +148,12 @@ class Store:
             try:
                 with transaction(self._connection, writes=False):
                     yield
-            except (ValueError, KeyError, TypeError) as error:
+            except (ValueError, KeyError, TypeError, DBAPIError) as error:
+                if isinstance(error, DBAPIError) and getattr(error.orig, "sqlite_errorcode", 0) != sqlite3.SQLITE_ERROR:
+                    raise  # told_of says what the file system did; this branch is a table or column that is not there
                 text = _("“{file}” holds something that cannot be read ({reason}); open a copy of it that you saved.")
-                raise MillFileError(text.format(file=self.path, reason=error), Cause.DAMAGED, self.path) from error
+                reason = getattr(error, "orig", error)
+                raise MillFileError(text.format(file=self.path, reason=reason), Cause.DAMAGED, self.path) from error
 
 
 def copy_into(connection: Connection, target: Path) -> None:
