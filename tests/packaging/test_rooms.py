@@ -33,6 +33,7 @@ HOMES = {
     "filelock": {"storage"},
     "reportlab": {"documents"},
     "pypdfium2": {"documents"},
+    "argon2": {"services"},
 }
 # May be used by any room but these two.
 ELSEWHERE = {"platformdirs": {"domain", "optimise"}}
@@ -108,6 +109,7 @@ BREACHES = [
     ("tables", "blendapp.storage.bad", "import pandas"),
     ("mill-file", "blendapp.services.bad", "from sqlalchemy import select"),
     ("paper", "blendapp.desk.bad", "import pypdfium2"),
+    ("passwords", "blendapp.storage.bad", "from argon2 import PasswordHasher"),
 ]
 
 
