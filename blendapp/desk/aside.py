@@ -1,4 +1,4 @@
-"""Work on a thread beside the window: one at a time, the last asked for wins, nothing is delivered to a closed window."""
+"""Work on a thread beside the window: the last asked for wins, and a closed window gets nothing."""
 
 from __future__ import annotations
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import sys
+from functools import partial
 from pathlib import Path
 from types import TracebackType
 
@@ -65,7 +66,7 @@ class Bench(QObject):
         header = self.frame.header
         header.undo.clicked.connect(self.work.undo)
         header.redo.clicked.connect(self.work.redo)
-        header.find.clicked.connect(self.find_anything)
+        header.finder.clicked.connect(self.find_anything)
         header.formula.clicked.connect(self.choose_formula)
         header.menu.clicked.connect(self.open_menu)
         self.have.add.clicked.connect(self.have.add_ingredient)
@@ -161,7 +162,7 @@ class Bench(QObject):
     def _fill_recent(self) -> None:
         self.recent_menu.clear()
         for path in self.files.recent():
-            self.recent_menu.addAction(path.stem, lambda path=path: self.files.open_path(path)).setToolTip(str(path))
+            self.recent_menu.addAction(path.stem, partial(self.files.open_path, path)).setToolTip(str(path))
         self.recent_menu.setEnabled(bool(self.files.recent()))
 
     def choose_formula(self) -> None:
@@ -179,18 +180,18 @@ class Bench(QObject):
         library = self.work.library
         things = self.records.formulas()
         things += [
-            Found(one.name, _("ingredient"), lambda key=one.id: self.to_ingredient(key)) for one in library.ingredients
+            Found(one.name, _("ingredient"), partial(self.to_ingredient, one.id)) for one in library.ingredients
         ]
         if self.work.formula is not None:
             things += self.meet.found()
         things += [
-            Found(one.name, _("nutrient"), lambda key=one.id: self.to_nutrient(key)) for one in library.nutrients
+            Found(one.name, _("nutrient"), partial(self.to_nutrient, one.id)) for one in library.nutrients
         ]
         return things + self.commands.found()
 
     def to_ingredient(self, ingredient_id: int) -> None:
         """Show an ingredient in the first zone."""
-        self.have.find.clear()
+        self.have.filter.clear()
         self.go_to_zone(0)
         self.have.table.go_to(ingredient_id, "name")
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
+from functools import partial
 
 from PySide6.QtGui import QAction, QKeySequence
 from PySide6.QtWidgets import QMenu, QWidget
@@ -38,7 +39,7 @@ class Commands:
             action = QAction(command.words, window)
             if command.keys:
                 action.setShortcuts([QKeySequence(keys) for keys in command.keys.split(" | ")])
-            action.triggered.connect(lambda _checked=False, key=command.key: self.run(key))
+            action.triggered.connect(partial(self._triggered, command.key))
             window.addAction(action)
             self.actions[command.key] = action
 
@@ -47,6 +48,9 @@ class Commands:
         command = self.by_key[key]
         if command.able():
             command.run()
+
+    def _triggered(self, key: str, _checked: bool = False) -> None:
+        self.run(key)
 
     def fill(self, menu: QMenu, before: dict[str, QMenu] | None = None) -> None:
         """Put the commands into a menu, a line between groups; before: submenus set after a command's key."""
@@ -73,7 +77,7 @@ class Commands:
     def found(self) -> list[Found]:
         """The commands that can be done now, as things to find."""
         return [
-            Found(command.words.rstrip("…"), _("command"), lambda key=key: self.run(key), _shown(command.keys))
+            Found(command.words.rstrip("…"), _("command"), partial(self.run, key), _shown(command.keys))
             for key, command in self.by_key.items()
             if command.able()
         ]

@@ -97,7 +97,8 @@ class Files(QObject):
 
         def job() -> None:
             mill.store.backup(target)
-            self.said.emit(_("A copy is in {file}. You go on working in {mill}.").format(file=target, mill=mill.path.name), [])
+            text = _("A copy is in {file}. You go on working in {mill}.")
+            self.said.emit(text.format(file=target, mill=mill.path.name), [])
 
         self._try(job)
 
@@ -132,7 +133,8 @@ class Files(QObject):
 
     def ask_price_list(self) -> Path | None:
         """Choose a price list."""
-        kinds = _("Price lists ({patterns});;All files (*)").format(patterns="*.xlsx *.xlsm *.xls *.xlsb *.ods *.csv *.txt *.tsv")
+        patterns = "*.xlsx *.xlsm *.xls *.xlsb *.ods *.csv *.txt *.tsv"
+        kinds = _("Price lists ({patterns});;All files (*)").format(patterns=patterns)
         path = self.ask_open(_("Bring in a price list"), kinds)
         return Path(path) if path else None
 
@@ -141,7 +143,7 @@ class Files(QObject):
     def recent(self) -> list[Path]:
         """The mill files opened last, the latest first, those that are still there."""
         stored = self.settings.value(RECENT, [])
-        names = [stored] if isinstance(stored, str) else list(stored or [])
+        names = [stored] if isinstance(stored, str) else stored if isinstance(stored, list) else []
         return [Path(name) for name in names if Path(name).is_file()]
 
     def _remember(self, path: Path) -> None:
@@ -158,7 +160,8 @@ class Files(QObject):
             if len(lines) == 1:
                 self.said.emit(lines[0], [])
             else:
-                self.said.emit(_("Nothing was taken; {count} things must be mended first:").format(count=len(lines)), lines)
+                text = _("Nothing was taken; {count} things must be mended first:")
+                self.said.emit(text.format(count=len(lines)), lines)
         except (MillFileError, OSError) as error:
             self.said.emit(str(error), [])
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Callable
+from functools import partial
 
 from PySide6.QtCore import QObject
 
@@ -35,7 +36,8 @@ class Records(QObject):
             edit = self.work.do(lambda mill: edits.add_formula(mill, name))
             self.work.choose(edit.changes[0].id)
 
-        self.ask.open(_("New formula"), edits.free_name(self.work.library, "formula", _("New formula")), _("Make it"), take)
+        begin = edits.free_name(self.work.library, "formula", _("New formula"))
+        self.ask.open(_("New formula"), begin, _("Make it"), take)
 
     def copy_formula(self) -> None:
         """Ask for a name and copy the chosen formula with its limits."""
@@ -69,7 +71,7 @@ class Records(QObject):
         """Every formula, as things to find."""
         return [
             Found(one.name, ", ".join(part for part in (_(str(one.animal)) if one.animal else "", one.stage) if part)
-                  or _("formula"), lambda key=one.id: self.work.choose(key))
+                  or _("formula"), partial(self.work.choose, one.id))
             for one in sorted(self.work.library.formulas, key=lambda one: one.name.casefold())
         ]
 
@@ -114,7 +116,7 @@ class Records(QObject):
 
 
 def read_nutrient(text: str, unit: str = "%") -> tuple[str, str]:
-    """A nutrient's name and unit from "Lysine (%)"; without brackets the given unit. Raises ValueError with the mend."""
+    """A nutrient's name and unit from "Lysine (%)"; without brackets the given unit. Raises ValueError."""
     found = _UNIT.fullmatch(text.strip())
     name = text.strip()
     if found and (not found.group(2).strip() or found.group(2).strip() in units.CONCENTRATION):

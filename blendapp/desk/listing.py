@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from functools import partial
 from typing import TYPE_CHECKING
 
 from PySide6.QtWidgets import QApplication
@@ -46,11 +47,12 @@ def _edit(bench: Bench) -> list[Command]:
         return work.is_open and work.mill.writable
 
     return [
-        Command("undo", _("Undo"), "edit", work.undo, "Ctrl+Z", lambda: work.is_open and work.mill.undo_text is not None),
+        Command("undo", _("Undo"), "edit", work.undo, "Ctrl+Z",
+                lambda: work.is_open and work.mill.undo_text is not None),
         Command("redo", _("Redo"), "edit", work.redo, "Ctrl+Shift+Z | Ctrl+Y",
                 lambda: work.is_open and work.mill.redo_text is not None),
         Command("find", _("Find anything"), "edit", bench.find_anything, "Ctrl+K", in_menu=False),
-        Command("filter", _("Show only some ingredients"), "edit", bench.have.find.setFocus, "Ctrl+F",
+        Command("filter", _("Show only some ingredients"), "edit", bench.have.filter.setFocus, "Ctrl+F",
                 lambda: work.is_open, False),
         Command("add ingredient", _("Add an ingredient"), "library", bench.have.add_ingredient, "", writable),
         Command("add nutrient", _("Add a nutrient…"), "library", bench.records.new_nutrient, "", writable),
@@ -78,7 +80,8 @@ def _formula(bench: Bench) -> list[Command]:
 
 def _paper(bench: Bench) -> list[Command]:
     return [
-        Command("sheet", _("Batch sheet…"), "paper", bench.show_sheet, "Ctrl+P", lambda: bench.work.formula is not None),
+        Command("sheet", _("Batch sheet…"), "paper", bench.show_sheet, "Ctrl+P",
+                lambda: bench.work.formula is not None),
     ]
 
 
@@ -96,12 +99,12 @@ def _view(bench: Bench) -> list[Command]:
 
     commands = [
         Command(f"zone {at}", _("Go to “{zone}”").format(zone=title), "view",
-                lambda at=at: bench.go_to_zone(at), f"Ctrl+{at + 1}", is_open, False)
+                partial(bench.go_to_zone, at), f"Ctrl+{at + 1}", is_open, False)
         for at, title in enumerate(titles)
     ]
     commands += [
         Command(f"widen {at}", _("“{zone}” in the whole window").format(zone=title), "view",
-                lambda at=at: bench.widen(at), f"Ctrl+Shift+{at + 1}", is_open, False)
+                partial(bench.widen, at), f"Ctrl+Shift+{at + 1}", is_open, False)
         for at, title in enumerate(titles)
     ]
     return [

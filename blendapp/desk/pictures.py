@@ -34,8 +34,10 @@ def main(arguments: list[str] | None = None) -> int:
         return 0
     for scale in SCALES:
         environment = {**os.environ, "QT_QPA_PLATFORM": "offscreen", "QT_SCALE_FACTOR": str(scale)}
-        command = [sys.executable, "-m", "blendapp.desk.pictures", str(asked.out_dir), "--workbook", str(asked.workbook),
-                   "--price-list", str(asked.price_list), "--scale", str(scale)]
+        command = [
+            sys.executable, "-m", "blendapp.desk.pictures", str(asked.out_dir), "--workbook", str(asked.workbook),
+            "--price-list", str(asked.price_list), "--scale", str(scale),
+        ]
         done = subprocess.run(command, env=environment, check=False)
         if done.returncode:
             return done.returncode

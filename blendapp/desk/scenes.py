@@ -203,7 +203,7 @@ def _formulas(studio: Studio, bench: Bench, _price_list: Path) -> None:
     work.choose(first)
     studio.settle(lambda: not work.stale)
     limit = next(one for one in work.library.limits(first or 0) if one.minimum and one.kind is LimitKind.NUTRIENT)
-    work.do(lambda mill: edits.change(mill, limit, minimum=limit.minimum * 3, maximum=None))
+    work.do(lambda mill: edits.change(mill, limit, minimum=(limit.minimum or 0.0) * 3, maximum=None))
     studio.settle()
     studio.take(bench.frame, "17-conflict")
     if work.result is not None and work.result.conflict is None:

@@ -28,10 +28,10 @@ class Strip(QWidget):
         self.list.setWordWrap(True)
         self.list.setAlignment(Qt.AlignmentFlag.AlignTop | Qt.AlignmentFlag.AlignLeft)
         self.list.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
-        self.scroll = QScrollArea()
-        self.scroll.setWidget(self.list)
-        self.scroll.setWidgetResizable(True)
-        self.scroll.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+        self.listing = QScrollArea()
+        self.listing.setWidget(self.list)
+        self.listing.setWidgetResizable(True)
+        self.listing.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.offers = QHBoxLayout()
         self.offers.setSpacing(GAP_PX)
         self.shut = GlyphButton("close", _("Close this message"))
@@ -45,7 +45,7 @@ class Strip(QWidget):
         inside.setContentsMargins(MARGIN_PX, GAP_PX, MARGIN_PX - GAP_PX, GAP_PX)
         inside.setSpacing(4)
         inside.addLayout(head)
-        inside.addWidget(self.scroll)
+        inside.addWidget(self.listing)
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(0)
@@ -54,15 +54,17 @@ class Strip(QWidget):
         self.setSizePolicy(QSizePolicy.Policy.Preferred, QSizePolicy.Policy.Maximum)
         self.hide()
 
-    def say(self, words: str, listed: Sequence[str] = (), offers: Sequence[tuple[str, Callable[[], object]]] = ()) -> None:
+    def say(
+        self, words: str, listed: Sequence[str] = (), offers: Sequence[tuple[str, Callable[[], object]]] = ()
+    ) -> None:
         """Show a sentence, a list below it, and buttons beside it."""
         self._drop_offers()
         self.words.setText(words)
         self.words.setAccessibleName(words)
         self.list.setText("\n".join(listed))
-        self.scroll.setVisible(bool(listed))
+        self.listing.setVisible(bool(listed))
         height = self.list.fontMetrics().lineSpacing() * max(len(listed), 1) + 6
-        self.scroll.setFixedHeight(min(height, LIST_PX))
+        self.listing.setFixedHeight(min(height, LIST_PX))
         for text, run in offers:
             button = QPushButton(text)
             button.setObjectName("plain")

@@ -1,6 +1,7 @@
 """Window start to first paint, and until the sample mill can be edited, against a bare window that imports numpy.
 
-Whole processes, the two in turn, so that both meet the same load; medians of ratios. Run: python tests/benchmarks/bench_start.py
+Whole processes, the two in turn, so that both meet the same load; medians of ratios.
+Run: python tests/benchmarks/bench_start.py --mill MILL
 """
 
 from __future__ import annotations

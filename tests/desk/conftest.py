@@ -32,7 +32,8 @@ def small_mill() -> Library:
     make.nutrient("Lysine")
     make.nutrient("Calcium")
     for name, price, protein, lysine, calcium in (
-        ("Maize", 200.0, 10.0, 0.30, 0.02), ("Soybean meal", 420.0, 46.0, 2.90, 0.30), ("Limestone", 50.0, 0.0, 0.0, 38.0),
+        ("Maize", 200.0, 10.0, 0.30, 0.02), ("Soybean meal", 420.0, 46.0, 2.90, 0.30),
+        ("Limestone", 50.0, 0.0, 0.0, 38.0),
     ):
         values = {"Crude protein": protein, "Lysine": lysine, "Calcium": calcium}
         make.ingredient(name, price, values, scale_id=1)

@@ -7,6 +7,7 @@ from pathlib import Path
 import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QAbstractButton, QApplication, QComboBox, QLineEdit, QTableView
+from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
 from blendapp.desk.mix.lines import Part
@@ -41,8 +42,11 @@ def test_the_mill_opened_last_is_opened_again_and_listed(bench: Bench, mill_file
 
 
 def test_the_caution_and_the_cost_stay_on_every_page_and_in_every_zone(bench: Bench) -> None:
-    for show in (lambda: bench.widen(0), lambda: bench.widen(1), lambda: bench.widen(2), bench.show_sheet, bench.to_bench):
-        show()
+    for place in (0, 1, 2, None):
+        if place is None:
+            bench.show_sheet()
+        else:
+            bench.widen(place)
         QApplication.processEvents()
         assert bench.frame.footer.caution.isVisible()
         assert bench.frame.header.cost.figure.isVisible()
@@ -178,18 +182,20 @@ def test_an_incomplete_formula_shows_no_figure(bench: Bench, hands: Hands) -> No
     assert all(not line.amount and not line.cost for line in bench.mix.model.lines)
 
 
-def test_a_slow_formula_is_solved_aside_and_says_stale_until_then(bench: Bench, hands: Hands, qtbot: object) -> None:
+def test_a_slow_formula_is_solved_aside_and_says_stale_until_then(bench: Bench, hands: Hands, qtbot: QtBot) -> None:
     assert bench.work.formula_id is not None
     bench.work._slow.add(bench.work.formula_id)
+    states: list[tuple[bool, str]] = []
+    bench.work.answered.connect(lambda: states.append((bench.work.stale, bench.frame.header.cost.since_last.text())))
+    old = bench.work.result
     hands.go(bench.have.table, 1, "price")
     hands.write("230")
     hands.key(Qt.Key.Key_Return)
-    assert bench.work.stale
-    assert "stale" in bench.frame.header.cost.since_last.text()
-    old = bench.work.result
-    qtbot.waitUntil(lambda: not bench.work.stale, timeout=10000)  # type: ignore[attr-defined]
+    qtbot.waitUntil(lambda: not bench.work.stale, timeout=10000)
+    assert [stale for stale, _words in states] == [True, False]
+    assert "stale" in states[0][1]
+    assert "stale" not in states[1][1]
     assert bench.work.result is not old
-    assert "stale" not in bench.frame.header.cost.since_last.text()
 
 
 def test_undo_says_what_it_takes_back(bench: Bench, hands: Hands) -> None:

@@ -135,7 +135,8 @@ def test_a_copied_block_pastes_back_equal(bench: Bench, hands: Hands) -> None:
 def test_typing_in_the_find_field_shows_only_what_holds_it(bench: Bench, hands: Hands) -> None:
     hands.key(Qt.Key.Key_F, CONTROL)
     hands.write("me")
-    assert [bench.work.library.ingredient(owner).name for owner in bench.have.model.owners] == ["Soybean meal", "Limestone"]
+    names = [bench.work.library.ingredient(owner).name for owner in bench.have.model.owners]
+    assert names == ["Soybean meal", "Limestone"]
 
 
 def test_an_ingredient_is_added_named_and_removed_again_with_undo(bench: Bench, hands: Hands) -> None:

@@ -16,7 +16,8 @@ from blendapp.domain.formulas import LimitKind
 from blendapp.domain.notation import COMMA, PLAIN, use_notation
 from blendapp.domain.results import LimitResult, Side
 
-cells = st.text(st.characters(exclude_categories=("Cs",), exclude_characters="\r\x0b\x0c\x1c\x1d\x1e\x85\u2028\u2029\x00"))
+NO_CELL = "\r\x0b\x0c\x1c\x1d\x1e\x85\u2028\u2029\x00"
+cells = st.text(st.characters(exclude_categories=("Cs",), exclude_characters=NO_CELL))
 
 
 @given(st.integers(1, 4).flatmap(lambda width: st.lists(st.lists(cells, min_size=width, max_size=width), min_size=1)))

@@ -21,6 +21,7 @@ class Ask(QFrame):
 
     def __init__(self, window: QWidget) -> None:
         super().__init__(window)
+        self.inside = window
         self._take: Callable[[str], object] = str
         self.title = QLabel()
         self.title.setFont(text_font(strong=True))
@@ -51,7 +52,7 @@ class Ask(QFrame):
         self.hide()
 
     def open(self, title: str, begin: str, go: str, take: Callable[[str], object], hint: str = "") -> None:
-        """Ask for a text. take: what is done with it; where it raises Refused or ValueError the panel stays and says so."""
+        """Ask for a text. take: what is done with it; where it raises Refused or ValueError the panel says so."""
         self._take = take
         self.title.setText(title)
         self.field.setAccessibleName(title)
@@ -67,7 +68,7 @@ class Ask(QFrame):
         self.field.setFocus()
 
     def _lay(self) -> None:
-        window = self.parentWidget()
+        window = self.inside
         self.setFixedWidth(min(WIDTH_PX, window.width() - 32))
         self.adjustSize()
         self.move((window.width() - self.width()) // 2, 96)

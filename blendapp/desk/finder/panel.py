@@ -94,6 +94,7 @@ class Finder(QFrame):
 
     def __init__(self, window: QWidget) -> None:
         super().__init__(window)
+        self.inside = window
         self.things: list[Found] = []
         self.field = QLineEdit()
         self.field.setAccessibleName(_("Find"))
@@ -127,7 +128,7 @@ class Finder(QFrame):
         self.field.setPlaceholderText(prompt)
         self.field.clear()
         self._narrow("")
-        window = self.parentWidget()
+        window = self.inside
         width = min(WIDTH_PX, window.width() - 32)
         left = (window.width() - width) // 2
         top = 72

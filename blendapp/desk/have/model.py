@@ -160,12 +160,13 @@ class HaveModel(Grid):
         nutrient = self.work.library.nutrient(nutrient_id)
         value = self.work.library.value(ingredient.id, nutrient_id)
         if value is None:
-            words = _("{nutrient} of {ingredient} is unknown").format(nutrient=nutrient.name, ingredient=ingredient.name)
+            words = _("{nutrient} of {ingredient} is unknown")
+            words = words.format(nutrient=nutrient.name, ingredient=ingredient.name)
             return number_look(None, self._decimals.get(nutrient_id, 2), editable=True, words=words)
         amount = round(units.convert(value.amount, value.unit, nutrient.unit), 10)
+        decimals = fitting_decimals(amount, self._decimals.get(nutrient_id, 2), 4)
         plain = number_look(
-            amount, fitting_decimals(amount, self._decimals.get(nutrient_id, 2), 4), editable=True, italic=value.origin is Origin.ESTIMATED,
-            hint=_about(value),
+            amount, decimals, editable=True, italic=value.origin is Origin.ESTIMATED, hint=_about(value),
         )
         if value.basis is not ingredient.basis:
             plain = replace(plain, typed=f"{plain.typed} {'DM' if value.basis is Basis.DRY_MATTER else 'as fed'}")
@@ -179,8 +180,9 @@ class HaveModel(Grid):
         if trial is not None and trial[0] == ingredient.id:
             price = trial[1]
         if key == "price":
-            return number_look(price, 2, editable=True, unknown=_("no price"), strong=trial is not None and price is not None
-                               and trial[0] == ingredient.id, hint=self._price_hint(ingredient))
+            tried = trial is not None and trial[0] == ingredient.id
+            return number_look(price, 2, editable=True, unknown=_("no price"), strong=tried,
+                               hint=self._price_hint(ingredient))
         if key == "holds":
             return self._rail_look(ingredient, price)
         if quote is None or quote.price is None:

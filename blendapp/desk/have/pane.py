@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from functools import partial
 
-from PySide6.QtCore import QModelIndex, QPoint, Qt, Signal
-from PySide6.QtWidgets import QButtonGroup, QHBoxLayout, QLineEdit, QMenu, QPushButton, QVBoxLayout, QWidget
+from PySide6.QtCore import QPoint, Qt, Signal
+from PySide6.QtWidgets import QButtonGroup, QHBoxLayout, QLineEdit, QMenu, QPushButton, QTableView, QVBoxLayout, QWidget
 
 from blendapp.desk.have.model import PRICES, HaveModel, column_sets
 from blendapp.desk.have.reading import NUTRIENT
@@ -35,17 +36,17 @@ class HavePane(QWidget):
         self.model = HaveModel(work, self)
         self.table = FrozenTable(self.model, self)
         self.table.setAccessibleName(_("Ingredients"))
-        self.find = QLineEdit()
-        self.find.setPlaceholderText(_("Show only…"))
-        self.find.setAccessibleName(_("Show only ingredients that hold this text"))
-        self.find.setClearButtonEnabled(True)
-        self.find.textChanged.connect(self._filter)
+        self.filter = QLineEdit()
+        self.filter.setPlaceholderText(_("Show only…"))
+        self.filter.setAccessibleName(_("Show only ingredients that hold this text"))
+        self.filter.setClearButtonEnabled(True)
+        self.filter.textChanged.connect(self._narrow)
         self.add = GlyphButton("add", _("Add an ingredient"))
         zone.tools.addWidget(self.add)
         row = QHBoxLayout()
         row.setContentsMargins(INSET_PX, 0, 0, 0)
         row.setSpacing(2)
-        row.addWidget(self.find, 1)
+        row.addWidget(self.filter, 1)
         row.addSpacing(GAP_PX)
         self.sets = QButtonGroup(self)
         self._buttons: dict[str, QPushButton] = {}
@@ -78,16 +79,14 @@ class HavePane(QWidget):
         table.grip.proposed.connect(self._propose)
         table.grip.given.connect(self._give)
         table.grip.taken_back.connect(self._take_back)
-        table.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
-        table.customContextMenuRequested.connect(self._offer)
         for view in (table, table.names):
+            view.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
+            view.customContextMenuRequested.connect(partial(self._offer, view))
             view.horizontalHeader().setSectionsClickable(True)
             view.horizontalHeader().sectionClicked.connect(self._sort)
         head = table.horizontalHeader()
         head.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
         head.customContextMenuRequested.connect(self._offer_column)
-        table.names.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
-        table.names.customContextMenuRequested.connect(self._offer)
 
     # -- what is shown
 
@@ -110,7 +109,7 @@ class HavePane(QWidget):
             shown = sum(table.columnWidth(at) for at in (1, 2, 3))
             table.setColumnWidth(0, min(max(table.viewport().width() - shown, 110), 200))
 
-    def _filter(self, text: str) -> None:
+    def _narrow(self, text: str) -> None:
         self.model.filter_text = text
         self.model.rebuild()
 
@@ -227,13 +226,10 @@ class HavePane(QWidget):
 
     # -- rows
 
-    def _offer(self, point: QPoint) -> None:
-        view = self.sender() if isinstance(self.sender(), QWidget) else self.table
-        index: QModelIndex = view.indexAt(point)  # type: ignore[union-attr]
-        if not index.isValid():
-            return
-        menu = self.row_menu(self.model.owner(index))
-        menu.popup(view.viewport().mapToGlobal(point))  # type: ignore[union-attr]
+    def _offer(self, view: QTableView, point: QPoint) -> None:
+        index = view.indexAt(point)
+        if index.isValid():
+            self.row_menu(self.model.owner(index)).popup(view.viewport().mapToGlobal(point))
 
     def _offer_column(self, point: QPoint) -> None:
         section = self.table.horizontalHeader().logicalIndexAt(point)
@@ -275,7 +271,7 @@ class HavePane(QWidget):
     def add_ingredient(self) -> None:
         """Add an ingredient under a free name and open the name for typing."""
         name = edits.free_name(self.work.library, "ingredient", _("New ingredient"))
-        self.find.clear()
+        self.filter.clear()
         edit = self._try(lambda: self.work.do(lambda mill: edits.add_ingredient(mill, name)))
         if isinstance(edit, Edit) and edit.changes:
             self.rename(edit.changes[0].id)

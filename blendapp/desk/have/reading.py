@@ -62,9 +62,8 @@ def read_price(text: str) -> tuple[float, str | None]:
         head, slash, tail = text.partition(" per ")
     per = " ".join(tail.split()) if slash else None
     if per is not None and per not in units.PRICE_PER:
-        raise ValueError(
-            _("A price can be per {masses}; “{per}” is none of them.").format(masses=", ".join(units.PRICE_PER), per=per)
-        )
+        masses = ", ".join(units.PRICE_PER)
+        raise ValueError(_("A price can be per {masses}; “{per}” is none of them.").format(masses=masses, per=per))
     return notation().read(head), per
 
 

@@ -1,8 +1,9 @@
-"""What a formula is for: animal, stage, amounts, usual batch, and which ingredients it admits. Stored as it is changed."""
+"""What a formula is for: animal, stage, amounts, usual batch, what it admits. Stored as it is changed."""
 
 from __future__ import annotations
 
 from collections.abc import Callable
+from typing import Any
 
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QKeyEvent
@@ -113,10 +114,10 @@ class AboutFormula(QWidget):
 
         self._try(take)
 
-    def _set(self, **fields: object) -> None:
+    def _set(self, **fields: Any) -> None:
         self._try(lambda: self._store(**fields))
 
-    def _store(self, **fields: object) -> None:
+    def _store(self, **fields: Any) -> None:
         formula = self.work.formula
         if formula is not None and any(getattr(formula, name) != value for name, value in fields.items()):
             self.work.do(lambda mill: edits.change(mill, formula, **fields))

@@ -59,8 +59,8 @@ class AddLimit(QWidget):
         self.per_label = QLabel(_("over"))
         places: tuple[tuple[str, QWidget, int, int, int], ...] = (
             (_("Kind"), self.kind, 0, 0, 1), (_("Name"), self.name, 0, 1, 2), (_("over"), self.per, 0, 3, 1),
-            (_("at least"), self.minimum, 2, 0, 1), (_("at most"), self.maximum, 2, 1, 1), (_("in"), self.unit, 2, 2, 1),
-            (_("basis"), self.basis, 2, 3, 1),
+            (_("at least"), self.minimum, 2, 0, 1), (_("at most"), self.maximum, 2, 1, 1),
+            (_("in"), self.unit, 2, 2, 1), (_("basis"), self.basis, 2, 3, 1),
         )
         for words, field, row, column, span in places:
             label = self.per_label if field is self.per else QLabel(words)

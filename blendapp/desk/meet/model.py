@@ -109,8 +109,9 @@ class MeetModel(Grid):
             return self._rail_look(limit, found, decimals)
         value = None if found is None else found.value
         shown = decimals if value is None else max(decimals, 1 if abs(value) < 100 else 0)
+        binds = found is not None and found.binding is not None
         return number_look(
-            value, min(shown, 3), widest=max(self._widest, shown), strong=found is not None and found.binding is not None,
+            value, min(shown, 3), widest=max(self._widest, shown), strong=binds,
             stale=self.work.stale, unknown="", words=self._now_words(limit, value, decimals),
         )
 
@@ -168,7 +169,7 @@ class MeetModel(Grid):
         )
         trial = self._trial
         if trial is not None and trial[0] == owner:
-            state = replace(state, **{trial[1].value: trial[2]})
+            state = state.with_end(trial[1], trial[2])
         return state
 
     def _rail_look(self, limit: Limit, found: LimitResult | None, decimals: int) -> Look:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
+from functools import partial
 
 from PySide6.QtCore import QModelIndex, QPoint, Qt
 from PySide6.QtWidgets import QLabel, QMenu, QPushButton, QVBoxLayout, QWidget
@@ -10,6 +10,7 @@ from PySide6.QtWidgets import QLabel, QMenu, QPushButton, QVBoxLayout, QWidget
 from blendapp.desk.finder.search import Found
 from blendapp.desk.meet.about import AboutFormula
 from blendapp.desk.meet.adding import AddLimit
+from blendapp.desk.meet.bounds import with_bound
 from blendapp.desk.meet.model import MeetModel
 from blendapp.desk.meet.view import LimitTable
 from blendapp.desk.meet.words import limit_name, limit_unit
@@ -137,7 +138,7 @@ class MeetPane(QWidget):
             return
         self.model.try_bound(owner[0], end, value)
         self.model.set_axis(owner[0], self.table.grip.axis)
-        self.work.try_changes([Change(limit, replace(limit, **{end.value: value}))])
+        self.work.try_changes([Change(limit, with_bound(limit, end, value))])
         self.model.refresh([owner[0]])
 
     def _give(self, owner: tuple[int, str], end: End, value: float) -> None:
@@ -156,8 +157,8 @@ class MeetPane(QWidget):
     # -- blocks
 
     def _paste(self, cells: list[tuple[int, str, str]], outside: list[str]) -> None:
-        bad = []
-        good = []
+        bad: list[tuple[int, str, str]] = []
+        good: list[tuple[int, str, str]] = []
         for owner, key, text in cells:
             (good if key in ("minimum", "maximum") else bad).append((owner, key, text))
         self._write_block(good, _("Paste limits"))
@@ -200,12 +201,12 @@ class MeetPane(QWidget):
         named = {limit.subject for limit in limits}
         things = [
             Found(f"{limit_name(library, limit)}, {limit_unit(library, limit, formula.amounts)}", _("limit"),
-                  lambda key=limit.id: self.table.go_to(key, "rail"))
+                  partial(self.table.go_to, limit.id, "rail"))
             for limit in limits
         ]
         things += [
             Found(_("Limit {name}").format(name=one.name), _("new limit"),
-                  lambda name=one.name: self.adding.begin(LimitKind.NUTRIENT, name))
+                  partial(self.adding.begin, LimitKind.NUTRIENT, one.name))
             for one in library.nutrients
             if Subject.nutrient(one.id) not in named
         ]

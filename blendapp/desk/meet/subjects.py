@@ -79,7 +79,8 @@ def limit_from(
     if kind is LimitKind.NUTRIENT:
         subject = nutrient_subject(library, name)
         if subject is None:
-            raise ValueError(_("There is no nutrient “{name}”; choose one of the names offered.").format(name=name.strip()))
+            text = _("There is no nutrient “{name}”; choose one of the names offered.")
+            raise ValueError(text.format(name=name.strip()))
         fields["basis"], fields["at_dry_matter_percent"] = read_basis(basis)
         return subject, fields
     if kind is LimitKind.RATIO:

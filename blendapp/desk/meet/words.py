@@ -118,16 +118,17 @@ def _relax_words(found: LimitResult, bound: float, decimals: int, per: str) -> s
 
 def _target_words(found: LimitResult, bound: float, decimals: int, per: str) -> str:
     step = tag_step(bound, decimals)
-    parts = []
+    parts: list[tuple[bool, str]] = []
     for cost, costs, saves in (
         (found.raise_cost, _("{step} more costs {money}"), _("{step} more saves {money}")),
         (found.lower_cost, _("{step} less costs {money}"), _("{step} less saves {money}")),
     ):
         if cost:
             text = costs if cost > 0 else saves
-            parts.append(text.format(step=_figure(step, decimals), money=money(abs(cost) * step, per)))
-    saving = [part for part, cost in zip(parts, (found.raise_cost, found.lower_cost), strict=False) if cost and cost < 0]
-    return saving[0] if saving else parts[0] if parts else ""
+            words = text.format(step=_figure(step, decimals), money=money(abs(cost) * step, per))
+            # What saves is said before what costs.
+            parts.append((cost > 0, words))
+    return min(parts)[1] if parts else ""
 
 
 def price_sentence(found: LimitResult, name: str, decimals: int, currency: str, per: str) -> str:

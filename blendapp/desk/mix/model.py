@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
 from typing import TYPE_CHECKING, Any
 
 from blendapp.desk.mix.lines import Line, Part, lines_of
@@ -130,7 +129,7 @@ class MixModel(Grid):
         trial = self._trial
         held = trial is not None and trial[0] == limit.id
         if held and trial is not None:
-            state = replace(state, **{trial[1].value: trial[2]})
+            state = state.with_end(trial[1], trial[2])
         axis = self._axes.get(limit.id)
         if axis is None or not held:
             axis = self._axes[limit.id] = axis_for(state, axis)

@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
-
 from PySide6.QtCore import QModelIndex, Signal
 from PySide6.QtWidgets import QLabel, QVBoxLayout, QWidget
 
+from blendapp.desk.meet.bounds import with_bound
 from blendapp.desk.mix.lines import Line, Part
 from blendapp.desk.mix.model import MixModel
 from blendapp.desk.mix.view import MixTable
@@ -100,7 +99,7 @@ class MixPane(QWidget):
         if limit is None:
             return
         self.model.try_bound(limit.id, end, value)
-        self.work.try_changes([Change(limit, replace(limit, **{end.value: value}))])
+        self.work.try_changes([Change(limit, with_bound(limit, end, value))])
         self.model.refresh()
 
     def _give(self, owner: tuple[int, str], end: End, value: float) -> None:

@@ -49,7 +49,13 @@ class RailState:
 
     def moved(self, end: End, value: float) -> RailState:
         """The same rail with one end elsewhere, kept between floor and ceiling and on its own side of the other."""
-        return _replace(self, end, self.kept(end, value))
+        return self.with_end(end, self.kept(end, value))
+
+    def with_end(self, end: End, value: float) -> RailState:
+        """The same rail with one end elsewhere, wherever that is."""
+        if end is End.MINIMUM:
+            return replace(self, minimum=value)
+        return replace(self, maximum=value) if end is End.MAXIMUM else replace(self, mark=value)
 
     def kept(self, end: End, value: float) -> float:
         """A proposed value, rounded to what is displayed and kept where the end may stand."""
@@ -64,10 +70,6 @@ class RailState:
         if low is not None:
             value = max(value, low)
         return value
-
-
-def _replace(state: RailState, end: End, value: float) -> RailState:
-    return replace(state, **{end.value: value})
 
 
 @dataclass(frozen=True)

@@ -37,7 +37,7 @@ COPIES_SHOWN = 5
 
 
 class SheetPane(QWidget):
-    """closed: back to the bench. said: a sentence with what can be listed below it. ask_save can be replaced by a test."""
+    """closed: back to the bench. said: a sentence with a list below it. ask_save can be replaced by a test."""
 
     closed = Signal()
     said = Signal(str, list)
@@ -156,7 +156,7 @@ class SheetPane(QWidget):
             return
         self.batch = found
         self._say(_batch_words(found), ready=True)
-        paper = str(self.paper.currentData())
+        paper = self._paper()
         self.pages.show_pdf(lambda: sheets.batch_pdf(found, paper))
 
     def _say(self, words: str, *, ready: bool) -> None:
@@ -177,11 +177,14 @@ class SheetPane(QWidget):
             head.setObjectName("quiet")
             self.copies.addWidget(head)
         for record in reversed(printed[-COPIES_SHOWN:]):
-            text = _("Copy of sheet {number}, {day}…").format(number=record.number, day=record.printed.date().isoformat())
-            button = QPushButton(text)
+            text = _("Copy of sheet {number}, {day}…")
+            button = QPushButton(text.format(number=record.number, day=record.printed.date().isoformat()))
             button.setObjectName("left")
             button.clicked.connect(lambda _checked=False, key=record.id: self.copy_to_file(key))
             self.copies.addWidget(button)
+
+    def _paper(self) -> str:
+        return str(self.paper.currentData())
 
     # -- to paper
 
@@ -218,14 +221,14 @@ class SheetPane(QWidget):
         """Keep a printed sheet again, marked as a copy."""
         path = self.ask_save(_("Keep the copy as"), _("copy") + ".pdf")
         if path:
-            self._try(lambda: batches.print_copy(self.work.mill, record_id, _pdf(path), paper=str(self.paper.currentData())))
+            self._try(lambda: batches.print_copy(self.work.mill, record_id, _pdf(path), paper=self._paper()))
             self._fill_copies()
 
     def _print_to(self, path: Path) -> Batch | None:
         batch = self.batch
         assert batch is not None
         done = self._try(lambda: batches.print_sheet(
-            self.work.mill, batch, path, reason=self.reason.text(), by=self.by.text(), paper=str(self.paper.currentData())))
+            self.work.mill, batch, path, reason=self.reason.text(), by=self.by.text(), paper=self._paper()))
         self._fill_copies()
         return done
 
@@ -240,7 +243,7 @@ class SheetPane(QWidget):
         from PySide6.QtPrintSupport import QPrintDialog, QPrinter
 
         self._printer = QPrinter(QPrinter.PrinterMode.HighResolution)
-        size = QPageSize.PageSizeId.A4 if str(self.paper.currentData()) == "A4" else QPageSize.PageSizeId.Letter
+        size = QPageSize.PageSizeId.A4 if self._paper() == "A4" else QPageSize.PageSizeId.Letter
         self._printer.setPageSize(QPageSize(size))
         self._printer.setFullPage(True)
         return bool(QPrintDialog(self._printer, self).exec())

@@ -100,11 +100,11 @@ class Frame(QWidget):
         column = self._column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(0)
-        for part in (self.header, Rule()):
-            column.addWidget(part)
+        column.addWidget(self.header)
+        column.addWidget(Rule())
         column.addWidget(self.middle, 1)
-        for part in (Rule(), self.footer):
-            column.addWidget(part)
+        column.addWidget(Rule())
+        column.addWidget(self.footer)
         self.wide: int | None = None
         self._is_painted = False
         self.resize(1440, 900)

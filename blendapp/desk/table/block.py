@@ -8,7 +8,7 @@ from collections.abc import Iterable, Sequence
 
 
 def read_block(text: str) -> list[list[str]]:
-    """The cells of a block. Cells that hold a tab or a line break stand in double quotes, as spreadsheets write them."""
+    """The cells of a block. Cells with a tab or a line break stand in double quotes."""
     plain = text.replace("\r\n", "\n").replace("\r", "\n")
     if plain.endswith("\n"):
         plain = plain[:-1]

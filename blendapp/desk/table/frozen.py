@@ -7,7 +7,7 @@ from PySide6.QtGui import QPainter, QPaintEvent, QResizeEvent
 from PySide6.QtWidgets import QAbstractItemView, QFrame, QHeaderView, QTableView, QWidget
 
 from blendapp.desk.table.cell import CellDelegate
-from blendapp.desk.table.grid import Grid
+from blendapp.desk.table.grid import AnyIndex, Grid
 from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import ROW_PX, tokens
 
@@ -15,9 +15,13 @@ from blendapp.desk.theme import ROW_PX, tokens
 class _Names(QTableView):
     """The column that stays: a second view of the same model and selection, laid over the first."""
 
+    def __init__(self, table: DeskTable) -> None:
+        super().__init__(table)
+        self.table = table
+
     def paintEvent(self, event: QPaintEvent) -> None:
         super().paintEvent(event)
-        if self.parent().horizontalScrollBar().value() > 0:  # type: ignore[attr-defined]
+        if self.table.horizontalScrollBar().value() > 0:
             painter = QPainter(self.viewport())
             rect = self.viewport().rect()
             painter.fillRect(QRect(rect.right(), 0, 1, rect.height()), tokens().colour("hairline"))
@@ -93,7 +97,7 @@ class FrozenTable(DeskTable):
             self._lay()
 
     def scrollTo(
-        self, index: QModelIndex, hint: QAbstractItemView.ScrollHint = QAbstractItemView.ScrollHint.EnsureVisible
+        self, index: AnyIndex, hint: QAbstractItemView.ScrollHint = QAbstractItemView.ScrollHint.EnsureVisible
     ) -> None:
         super().scrollTo(index, hint)
         if index.column() > 0:

@@ -16,6 +16,7 @@ class Note(QLabel):
 
     def __init__(self, window: QWidget) -> None:
         super().__init__(window)
+        self.inside = window
         self.setWordWrap(True)
         self.setContentsMargins(12, 8, 12, 8)
         self.setAttribute(Qt.WidgetAttribute.WA_TransparentForMouseEvents)
@@ -23,7 +24,7 @@ class Note(QLabel):
 
     def beside(self, view: QWidget, cell: QRect, sentence: str) -> None:
         """Show a sentence under a cell of a viewport, or above it where there is no room."""
-        window = self.parentWidget()
+        window = self.inside
         self.setText(sentence)
         self.setAccessibleName(sentence)
         self.setFixedWidth(min(WIDTH_PX, max(window.width() - 16, 80)))

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 from PySide6.QtCore import (
-    QEvent,
     QItemSelection,
     QItemSelectionModel,
     QModelIndex,
@@ -14,7 +15,7 @@ from PySide6.QtCore import (
     QTimer,
     Signal,
 )
-from PySide6.QtGui import QFocusEvent, QGuiApplication, QKeyEvent, QKeySequence, QMouseEvent, QResizeEvent
+from PySide6.QtGui import QFocusEvent, QGuiApplication, QHideEvent, QKeyEvent, QKeySequence, QMouseEvent, QResizeEvent
 from PySide6.QtWidgets import QAbstractItemView, QFrame, QHeaderView, QTableView, QWidget
 
 from blendapp.desk.rail.geometry import End, end_at
@@ -26,14 +27,15 @@ from blendapp.desk.table.grid import AnyIndex, Grid
 from blendapp.desk.table.note import Note
 from blendapp.desk.theme import ROW_PX
 
-_ARROWS = {Qt.Key.Key_Left: -1, Qt.Key.Key_Right: 1}
+_ARROWS: dict[int, int] = {Qt.Key.Key_Left: -1, Qt.Key.Key_Right: 1}
 
 
 class DeskTable(QTableView):
     """A table view of a Grid.
 
     pasted: cells of a block as (owner, key, text), with the texts that fell outside the table. cleared: cells whose
-    content was deleted. asked: Enter or double click on a cell that is not typed into. resized: after the viewport has another size. grip: moves the rails.
+    content was deleted. asked: Enter on a cell that is not typed into. resized: the viewport has another size.
+    grip: moves the rails.
     """
 
     pasted = Signal(list, list)
@@ -101,8 +103,7 @@ class DeskTable(QTableView):
 
     def selectionChanged(self, selected: QItemSelection, deselected: QItemSelection) -> None:
         super().selectionChanged(selected, deselected)
-        ranges = self.selectionModel().selection()
-        self._block = any(one.width() * one.height() > 1 for one in ranges) or len(ranges) > 1
+        self._block = len(self.selectionModel().selectedIndexes()) > 1
 
     def is_current(self, index: AnyIndex) -> bool:
         """Whether a cell is the one that keys reach."""
@@ -255,7 +256,7 @@ class DeskTable(QTableView):
     def type_end(self, index: QModelIndex, end: End, event: QKeyEvent) -> None:
         """Open the cell in which an end is typed; a table whose rails have such cells says which."""
 
-    def currentChanged(self, current: QModelIndex, previous: QModelIndex) -> None:
+    def currentChanged(self, current: AnyIndex, previous: AnyIndex) -> None:
         if self.grip.moving and not self._dragging:
             self.grip.let_go()
         super().currentChanged(current, previous)
@@ -334,12 +335,12 @@ class DeskTable(QTableView):
         if self._note is not None:
             self._note.hide()
 
-    def dataChanged(self, top: QModelIndex, bottom: QModelIndex, roles: list[int] = ()) -> None:  # type: ignore[assignment]
+    def dataChanged(self, top: AnyIndex, bottom: AnyIndex, roles: Sequence[int] = ()) -> None:
         super().dataChanged(top, bottom, roles)
         if self._note is not None and self._note.isVisible():
             self._show_note()
 
-    def hideEvent(self, event: QEvent) -> None:  # type: ignore[override]
-        super().hideEvent(event)  # type: ignore[arg-type]
+    def hideEvent(self, event: QHideEvent) -> None:
+        super().hideEvent(event)
         self._hide_note()
 
