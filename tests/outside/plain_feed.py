@@ -21,7 +21,7 @@ WORTH = {
 }
 OF_THE_DAY = {
     "%": "kg/day", "g/kg": "g/day", "mg/kg": "mg/day", "ug/kg": "mg/day", "ppm": "mg/day", "ppb": "mg/day",
-    "g/t": "mg/day", "g/short ton": "g/day", "mg/lb": "mg/day", "IU/kg": "IU/day", "IU/lb": "IU/day",
+    "g/t": "g/day", "g/short ton": "g/day", "mg/lb": "mg/day", "IU/kg": "IU/day", "IU/lb": "IU/day",
     "mEq/kg": "mEq/day", "MJ/kg": "MJ/day", "kJ/kg": "MJ/day", "kcal/kg": "kcal/day", "kcal/lb": "kcal/day",
     "Mcal/kg": "Mcal/day", "": "/day", "/kg": "/day",
 }

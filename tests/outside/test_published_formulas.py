@@ -1,4 +1,4 @@
-"""Published diets and mixes as feed formulas: ingredients with prices, nutrients with units, limits per day or of a mix.
+"""Published diets and mixes as feed formulas: ingredients with prices, nutrients with units, limits per day or not.
 
 Sources stand beside each example in data/linear_programs.json, data/stigler_1945.json and data/pearson_square.json. A
 published program is a ration: a unit of a column is a kg, what a row counts of it is a nutrient in a bare number.
