@@ -7,6 +7,7 @@ import datetime
 import os
 import sys
 from collections.abc import Callable, Sequence
+from dataclasses import replace
 from pathlib import Path
 
 from blendapp.cli import as_json, as_text
@@ -24,19 +25,26 @@ DONE, NO, UNUSABLE = 0, 1, 2
 def run(arguments: Sequence[str]) -> int:
     """Run one command; returns the exit status. Every fault is one line on standard error."""
     use_language(os.environ.get("BLENDAPP_LANGUAGE"))
+    mill = ""
     try:
         given = make_parser().parse_args(list(arguments))
+        mill = given.mill
         return _COMMANDS[given.command](given)
     except CallFault as fault:
         return _unusable([str(fault)])
     except Refused as refused:
-        return _unusable([str(problem) for problem in refused.problems])
+        return _unusable([str(_in_file(problem, mill)) for problem in refused.problems])
     except MillFileError as error:
         return _unusable([str(error)])
     except BrokenPipeError:
         # Whoever read the output has gone; standard output is closed so that leaving does not complain again.
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         return UNUSABLE
+
+
+def _in_file(problem: Problem, mill: str) -> Problem:
+    """A problem that names no file is about what the mill file holds."""
+    return problem if problem.place.file else replace(problem, place=replace(problem.place, file=mill))
 
 
 def _unusable(lines: Sequence[str]) -> int:
