@@ -78,14 +78,11 @@ class Integers:
         found = self._solve(aim, [], time_limit_s)
         return found._replace(bound=self.always + math.ceil(found.bound - 1e-6))
 
-    def least_deviation(self, most_broken: int, within: float | None, time_limit_s: float) -> Found:
-        """The least sum of relative deviations; within: one that is known to be reachable."""
+    def least_deviation(self, most_broken: int, time_limit_s: float) -> Found:
+        """The least sum of relative deviations."""
         aim = np.zeros(self.columns)
         aim[self.size : 2 * self.size] = _SCALE
-        rows = [self._broken_row(most_broken)]
-        if within is not None:
-            rows.append((aim, -np.inf, _SCALE * within * (1 + 1e-9) + 1e-6))
-        found = self._solve(aim, rows, time_limit_s)
+        found = self._solve(aim, [self._broken_row(most_broken)], time_limit_s)
         return found._replace(bound=found.bound / _SCALE)
 
     def least_cost(self, most_broken: int, deviation: float, time_limit_s: float) -> Found:
@@ -144,7 +141,11 @@ class Integers:
         integrality = np.ones(self.columns)
         integrality[n : 2 * n] = 0.0
         matrix = scipy.sparse.csr_array(np.array(rows))
-        return self._run(aim, matrix, np.array(low), np.array(high), lower, upper, integrality, time_limit_s)
+        ends = np.array(low), np.array(high), lower, upper
+        found = self._run(aim, matrix, *ends, integrality, time_limit_s)
+        if found.bound == -math.inf:  # time was up before the solver had any batch, and then it tells no bound
+            found = found._replace(bound=self._run(aim, matrix, *ends, 0.0 * integrality, time_limit_s).bound)
+        return found
 
     def _rows(self) -> tuple[list[Array], list[float], list[float]]:
         """The total; deviations; presence; limits."""

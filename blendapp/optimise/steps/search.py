@@ -179,9 +179,8 @@ class _Search:
     def _deviation(self) -> Stage:
         assert self.best is not None
         most = self._broken()
-        now = float(self.task.deviation(self.best))
-        within = now if self._on_total(self.best) else None
-        bound = self._tried(lambda: self.programs.least_deviation(most, within, 0.75 * self._left()), 0.0)
+        least = float(self.task.deviation([p.nearest for p in self.task.placed]))
+        bound = self._tried(lambda: self.programs.least_deviation(most, 0.75 * self._left()), least)
         now = float(self.task.deviation(self.best))
         return Stage("deviation", now, min(max(bound, 0.0), now), _equal(now, bound))
 
