@@ -90,7 +90,7 @@ class HaveModel(Grid):
             Heading("price", _("Price {currency}/t").format(currency=money), 88, True, _("Money per tonne as fed")),
             Heading("holds", _("holds from / to"), 106, False, _("Drag the mark to see at which price the mix turns")),
             Heading("stock_kg", field_of("ingredient", "stock_kg").label, 72, True),
-            Heading("quoted", _("as quoted"), 110, True, _("The price in force, as it was given")),
+            Heading("quoted", _("as quoted"), 136, True, _("The price in force, as it was given")),
             Heading("since", _("since"), 84), Heading("source", _("source"), 160),
         ]
 

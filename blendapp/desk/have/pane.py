@@ -16,12 +16,15 @@ from blendapp.desk.shell.zone import INSET_PX, Zone
 from blendapp.desk.table.frozen import FrozenTable
 from blendapp.desk.theme import GAP_PX
 from blendapp.desk.work import Work
+from blendapp.domain.formulas import LimitKind
 from blendapp.domain.problems import Refused
 from blendapp.domain.quotes import Quote
-from blendapp.domain.records import added
+from blendapp.domain.records import added, removed
 from blendapp.domain.wording import _, plural
 from blendapp.services import edits
 from blendapp.services.mill import Edit
+
+WIDE_PX = 800
 
 
 class HavePane(QWidget):
@@ -105,7 +108,9 @@ class HavePane(QWidget):
     def _fit_name(self) -> None:
         """Let the name take what the first figures leave, so that a narrow zone shows them whole."""
         table, model = self.table, self.model
-        if model.column_set == PRICES and model.columnCount() > 3:
+        if model.column_set == PRICES and model.columnCount() > 6:
+            wide = table.viewport().width() > WIDE_PX
+            table.setColumnWidth(2, 320 if wide else model.headings[2].width)
             shown = sum(table.columnWidth(at) for at in (1, 2, 3))
             table.setColumnWidth(0, min(max(table.viewport().width() - shown, 110), 200))
 
@@ -249,6 +254,8 @@ class HavePane(QWidget):
         name = self.work.library.ingredient(owner).name
         if self.work.formula_id is not None and owner not in self.work.admitted_ids:
             menu.addAction(_("Admit {name} to this formula").format(name=name), lambda: self.admit(owner))
+        elif self.work.formula_id is not None and owner in self.work.library.listed_ids(self.work.formula_id):
+            menu.addAction(_("Take {name} off this formula's list").format(name=name), lambda: self.unlist(owner))
         menu.addAction(_("Rename"), lambda: self.rename(owner))
         menu.addAction(_("Remove {name}").format(name=name), lambda: self.remove(owner))
         return menu
@@ -258,6 +265,13 @@ class HavePane(QWidget):
         formula_id = self.work.formula_id
         if formula_id is not None:
             self._try(lambda: self.work.do(lambda mill: edits.admit(mill, formula_id, owner)))
+
+    def unlist(self, owner: int) -> None:
+        """Remove the inclusion limits that list an ingredient in the chosen formula, as one undo."""
+        limits = [one for one in self.work.library.limits(self.work.formula_id or 0)
+                  if one.kind is LimitKind.INGREDIENT and one.subject.ids == (owner,)]
+        what = _("Take {name} off the list").format(name=self.work.library.ingredient(owner).name)
+        self._try(lambda: self.work.apply(what, [removed(one) for one in limits]))
 
     def rename(self, owner: int) -> None:
         """Open the name of an ingredient for typing."""

@@ -13,7 +13,8 @@ from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import ROW_PX, tokens
 
 TAGGED_PX = ROW_PX + int(TAG_PX) - 1
-_NAME_LEAST, _FIGURE_PX, _RAIL_LEAST = 120, 66, 96
+_FIGURE_PX, _TIGHT_FIGURE_PX, _TIGHT_PX = 66, 54, 430
+_NAME_LEAST, _RAIL_LEAST, _MOST = 90, 84, 420
 
 
 class LimitTable(DeskTable):
@@ -33,10 +34,12 @@ class LimitTable(DeskTable):
     def fit(self) -> None:
         """Lay out columns and rows for what is shown now."""
         if self.grid.columnCount() == 5:
-            rest = self.viewport().width() - 3 * _FIGURE_PX
-            rail = max(_RAIL_LEAST, min(int(rest * 0.44), 420))
-            name = max(_NAME_LEAST, min(rest - rail, 420))
-            for at, width in enumerate((name, _FIGURE_PX, _FIGURE_PX, rail, _FIGURE_PX)):
+            width = self.viewport().width()
+            figure = _FIGURE_PX if width >= _TIGHT_PX else _TIGHT_FIGURE_PX
+            rest = width - 3 * figure
+            rail = max(_RAIL_LEAST, min(int(rest * 0.44), _MOST))
+            name = max(_NAME_LEAST, min(rest - rail, _MOST))
+            for at, width in enumerate((name, figure, figure, rail, figure)):
                 self.setColumnWidth(at, width)
         self._fit_heights()
 

@@ -74,7 +74,10 @@ def tag_step(bound: float, decimals: int, holds_to: float | None = None) -> floa
     step = 10.0 ** round(math.log10(size)) if size > 0 else 10.0**-decimals
     step = max(step, 10.0**-decimals)
     if holds_to is not None and 0 < abs(holds_to - bound) < step:
-        return abs(holds_to - bound)
+        room = abs(holds_to - bound)
+        # Down to what can be shown, so that the money is that of the step as it is read.
+        shown = math.floor(room * 10.0**decimals + 1e-9) / 10.0**decimals
+        return shown or room
     return step
 
 

@@ -34,7 +34,8 @@ class Line:
     """One line. text: on its left; amount, cost: the two columns at its right; bar: share of the longest bar.
 
     ingredient_id: of an ingredient or its rail. fold: what a fold opens. repair: what an action applies. lack: decimals
-    that the amount has less than the longest one.
+    that the amount has less than the longest one. bar_range: near-optimal, as bar. price, share: further columns where
+    there is room.
     """
 
     part: Part
@@ -47,6 +48,9 @@ class Line:
     fold: str = ""
     repair: Repair | None = None
     lack: int = 0
+    bar_range: tuple[float, float] | None = None
+    price: str = ""
+    share: str = ""
 
 
 NUTRIENTS, LEFT_OUT = "nutrients", "left out"
@@ -82,12 +86,16 @@ def _mix(result: Result, opened_ids: frozenset[int]) -> list[Line]:
     lines: list[Line] = []
     written = {one.ingredient_id: amount_words(result, one.amount or 0.0) for one in result.mix}
     most = max((_decimals(text) for text in written.values()), default=2)
-    longest = max((one.amount or 0.0 for one in result.mix), default=1.0) or 1.0
+    reaches = [max(one.amount or 0.0, one.near_optimal[1] if one.near_optimal else 0.0) for one in result.mix]
+    longest = max(reaches, default=1.0) or 1.0
     for one in result.mix:
         amount = one.amount or 0.0
         lines.append(Line(
             Part.INGREDIENT, one.name, written[one.ingredient_id], _cost(result, one.cost), amount / longest,
             _share_words(result, one), one.ingredient_id, lack=most - _decimals(written[one.ingredient_id]),
+            bar_range=None if one.near_optimal is None else (
+                one.near_optimal[0] / longest, one.near_optimal[1] / longest),
+            price=notation().write(one.price_per_t, 2), share=_share(result, one),
         ))
         if one.ingredient_id in opened_ids:
             lines.append(Line(Part.RAIL, one.name, ingredient_id=one.ingredient_id))
@@ -96,7 +104,7 @@ def _mix(result: Result, opened_ids: frozenset[int]) -> list[Line]:
         text = _("{percent} % costs").format(percent=notation().write(total * 100, 2))
     else:
         text = _("{kg} kg per day costs").format(kg=notation().write(total, 2))
-    lines.append(Line(Part.TOTAL, text, cost=_cost(result, result.cost)))
+    lines.append(Line(Part.TOTAL, text, cost=_cost(result, result.cost), share=notation().write(100, 1)))
     if result.tie:
         lines.append(Line(Part.SENTENCE, result.tie))
     return lines
@@ -115,12 +123,15 @@ def cost_decimals(result: Result) -> int:
     return 2 if result.amounts is Amounts.BLEND else 4
 
 
+def _share(result: Result, one: IngredientResult) -> str:
+    return "" if not result.cost or one.cost is None else notation().write(100 * one.cost / result.cost, 1)
+
+
 def _share_words(result: Result, one: IngredientResult) -> str:
     price = notation().write(one.price_per_t, 2)
     text = _("{name} at {price} {currency}/t").format(name=one.name, price=price, currency=result.currency)
-    if result.cost and one.cost is not None:
-        share = notation().write(100 * one.cost / result.cost, 1)
-        text += _(", {share} % of the cost").format(share=share)
+    if _share(result, one):
+        text += _(", {share} % of the cost").format(share=_share(result, one))
     if one.near_optimal is not None:
         low, high = one.near_optimal
         text += _("; other mixes at nearly this cost hold {low} to {high}").format(

@@ -26,6 +26,7 @@ class MixModel(Grid):
         self.work = work
         self.lines: list[Line] = []
         self._line_of: dict[int, Line] = {}
+        self.wide = False
         self.opened: frozenset[str] = frozenset()
         self.opened_ids: frozenset[int] = frozenset()
         self._axes: dict[int, Axis] = {}
@@ -41,9 +42,13 @@ class MixModel(Grid):
         amount = _("kg/day") if ration else "%"
         cost = (_("{currency}/day") if ration else _("{currency}/t")).format(currency=currency)
         answer = result is not None and result.has_answer
+        price = _("price {currency}/t").format(currency=currency)
+        further = [Heading("price", price if answer else "", 110, True),
+                   Heading("share", _("% of cost") if answer else "", 86, True)]
         self.set_headings([
             Heading("name", "", 150), Heading("bar", "", 90), Heading("amount", amount if answer else "", 64, True),
             Heading("cost", cost if answer else "", 76, True),
+            *(further if self.wide else []),
         ])
         self._line_of = {_owner(place, line): line for place, line in enumerate(self.lines)}
         self.set_rows(list(self._line_of))
@@ -81,7 +86,8 @@ class MixModel(Grid):
         if line.part is Part.TOTAL:
             if key == "name":
                 return Look(text=line.text, strong=True, stale=stale)
-            return Look(text=line.cost, strong=True, number=True, stale=stale) if key == "cost" else EMPTY
+            text = {"cost": line.cost, "share": line.share}.get(key, "")
+            return Look(text=text, strong=True, number=True, stale=stale)
         if line.part is Part.PAIR:
             if key == "name":
                 return Look(text=line.text, hint=line.hint, words=f"{line.text}: {line.cost}", stale=stale)
@@ -97,10 +103,11 @@ class MixModel(Grid):
             words = _("{name}: {amount}, costs {cost}").format(name=line.text, amount=line.amount, cost=line.cost)
             return Look(text=line.text, words=words, hint=line.hint, stale=stale)
         if key == "bar":
-            return Look(bar=line.bar, words=line.amount, hint=line.hint, stale=stale)
+            return Look(bar=line.bar, bar_range=line.bar_range, words=line.amount, hint=line.hint, stale=stale)
         if key == "amount":
             return Look(text=line.amount, number=True, strong=True, stale=stale, lack=line.lack)
-        return Look(text=line.cost, number=True, quiet=True, stale=stale)
+        text = {"cost": line.cost, "price": line.price, "share": line.share}[key]
+        return Look(text=text, number=True, quiet=True, stale=stale)
 
     def limit_of(self, line: Line | None) -> Limit | None:
         """The inclusion limit of an ingredient in the chosen formula, or None."""

@@ -14,7 +14,9 @@ from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import Tokens, text_font, tokens
 
 LINE_PX = 28
-WIDEST_PX = 820
+WIDEST_PX = 960
+WIDE_PX = 700
+TIGHT_PX = 320
 _WRAPPED = (Part.SENTENCE, Part.CAUTION, Part.ACTION)
 _WRAP = int(Qt.TextFlag.TextWordWrap)
 _TOP = int(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignTop)
@@ -105,15 +107,19 @@ class MixTable(DeskTable):
 
     def lay(self) -> None:
         """Lay out columns, spans and heights for the lines shown now."""
-        if self.grid.columnCount() != 4:
-            return
         width = self.viewport().width()
-        amount, cost = 66, 78
+        if (width > WIDE_PX) is not self.lines.wide:
+            self.lines.wide = width > WIDE_PX
+            self.lines.rebuild()
+        if self.grid.columnCount() < 4:
+            return
+        amount, cost = (66, 78) if width > TIGHT_PX else (58, 66)
+        further = [heading.width for heading in self.grid.headings[4:]]
         # In a wide zone the figures stay near their names.
         width = min(width, WIDEST_PX)
-        rest = width - amount - cost
-        bar = max(60, min(int(rest * 0.36), 420))
-        for at, one in enumerate((max(rest - bar, 80), bar, amount, cost)):
+        rest = width - amount - cost - sum(further)
+        bar = max(40, min(int(rest * 0.36), 420))
+        for at, one in enumerate((max(rest - bar, 80), bar, amount, cost, *further)):
             self.setColumnWidth(at, one)
         metrics = QFontMetrics(text_font())
         self.clearSpans()
@@ -123,7 +129,7 @@ class MixTable(DeskTable):
             elif line.part is Part.TOTAL:
                 self.setSpan(row, 0, 1, 3)
             elif line.part is not Part.INGREDIENT:
-                self.setSpan(row, 0, 1, 4)
+                self.setSpan(row, 0, 1, self.grid.columnCount())
             height = self._height(line.part, line.text, width, metrics)
             if self.rowHeight(row) != height:
                 self.setRowHeight(row, height)

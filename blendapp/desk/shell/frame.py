@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QPoint, QRect, Qt, QTimer, Signal
+from PySide6.QtCore import QPoint, QRect, QSize, Qt, QTimer, Signal
 from PySide6.QtGui import QCloseEvent, QPainter, QPaintEvent
 from PySide6.QtWidgets import (
     QFrame,
@@ -20,6 +20,8 @@ from blendapp.desk.shell.zone import Elided, Zone
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font, tokens
 from blendapp.domain.cautions import general_caution
 from blendapp.domain.wording import _
+
+WIDTH_PX, HEIGHT_PX, LEAST_PX = 1440, 900, 1024
 
 
 class Rule(QFrame):
@@ -107,7 +109,15 @@ class Frame(QWidget):
         column.addWidget(self.footer)
         self.wide: int | None = None
         self._is_painted = False
-        self.resize(1440, 900)
+        self._take_size()
+
+    def _take_size(self) -> None:
+        """As large as the sketch of the bench, or as the screen allows."""
+        screen = self.screen().availableSize() if self.screen() is not None else QSize(WIDTH_PX, HEIGHT_PX)
+        if screen.width() < LEAST_PX:
+            # Too small for the three zones whatever is done; the person will move the window about.
+            screen = QSize(WIDTH_PX + 40, HEIGHT_PX + 60)
+        self.resize(min(WIDTH_PX, screen.width() - 40), min(HEIGHT_PX, screen.height() - 60))
 
     def put_strip(self, strip: QWidget) -> None:
         """Put the strip of messages under the header."""

@@ -73,11 +73,19 @@ class CellDelegate(QStyledItemDelegate):
             held = self.table.held_end(index)  # type: ignore[attr-defined]
             draw_rail(painter, rect, look.rail, look.axis, scheme, held=held)
         elif look.bar is not None:
-            length = max(look.bar * (rect.width() - 2 * PAD_PX), 1.5)
-            painter.setOpacity(0.5 if look.stale else 1.0)
-            painter.fillRect(QRectF(rect.left() + PAD_PX, rect.center().y() - 4, length, 8), scheme.colour("band"))
+            self._paint_bar(painter, rect, look, scheme)
         else:
             self.paint_text(painter, rect.adjusted(PAD_PX, 0, -PAD_PX, 0), look, scheme)
+
+    @staticmethod
+    def _paint_bar(painter: QPainter, rect: QRectF, look: Look, scheme: Tokens) -> None:
+        whole, left, middle = rect.width() - 2 * PAD_PX, rect.left() + PAD_PX, rect.center().y()
+        painter.setOpacity(0.5 if look.stale else 1.0)
+        length = max((look.bar or 0.0) * whole, 1.5)
+        painter.fillRect(QRectF(left, middle - 4, length, 8), scheme.colour("band"))
+        if look.bar_range is not None:
+            low, high = (min(max(one, 0.0), 1.0) * whole for one in look.bar_range)
+            painter.fillRect(QRectF(left + low, middle + 5.5, max(high - low, 1.5), 2), scheme.colour("quiet"))
 
     def paint_text(self, painter: QPainter, rect: QRectF, look: Look, scheme: Tokens) -> None:
         """Paint a text with its unit, or a number on its decimal sign."""

@@ -15,8 +15,9 @@ class Look:
     """One cell. text: as shown; typed: as an editor opens on it; words: for a screen reader, text if empty.
 
     unit: shown in quiet ink after the text. lack: decimals that the cell has less than its column, so that decimal
-    signs stand under each other. bar: share of the cell's width that is filled, 0 to 1. fault: the sentence about a
-    refused text. choices: what an editor offers, where only those are taken.
+    signs stand under each other. bar: share of the cell's width that is filled, 0 to 1; bar_range: the stretch of it
+    that is as good, drawn under it. fault: the sentence about a refused text. choices: what an editor offers, where
+    only those are taken.
     """
 
     text: str = ""
@@ -34,6 +35,7 @@ class Look:
     editable: bool = False
     lack: int = 0
     bar: float | None = None
+    bar_range: tuple[float, float] | None = None
     rail: RailState | None = None
     axis: Axis | None = None
     choices: tuple[str, ...] = ()
