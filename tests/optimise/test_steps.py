@@ -203,6 +203,14 @@ def test_a_share_is_weighed_on_its_own_scale_unless_it_is_too_small_for_it() -> 
     assert on(5.05, first=HAND) is HAND
 
 
+def test_a_share_too_small_for_its_scale_goes_where_it_is_within_tolerance_before_where_it_is_not() -> None:
+    own, coarse, fine = Load(5.0, 20.0), Load(5.0), Load(0.5)
+    assert made(whole_batch(Order(12.0, (Line(12.0, (own, coarse, fine)),)))).placed[0].load == 2
+    assert made(whole_batch(Order(12.0, (Line(12.0, (own, coarse)),)))).placed[0].load == 1
+    assert made(whole_batch(Order(12.0, (Line(12.0, (coarse, fine)),)))).placed[0].load == 0
+    assert made(whole_batch(Order(17.0, (Line(17.0, (own,)),)))).kilograms == (20,)
+
+
 def test_a_share_that_no_scale_can_hold_says_whether_it_is_too_small_or_too_large() -> None:
     for share, load, why in (
         (2.0, Load(5.0, 20.0), "small"),

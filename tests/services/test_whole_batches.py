@@ -187,11 +187,13 @@ def test_fixed_lines_that_cannot_be_are_refused_all_at_once_each_with_its_mend()
     library.apply([added(replace(library.ingredient(key["Maize"]), id=other, name="Oats"))])
     with pytest.raises(Refused) as refused:
         batch_of(made, 1000.0, fixed={
-            key["Maize"]: 601.2345, key["Salt"]: 0.0005, key["Meal"]: 3000.0, key["Drugged"]: 0.3, other: 5.0,
+            key["Maize"]: 601.2345, key["Salt"]: 0.0005, key["Meal"]: 3000.0, key["Drugged"]: 0.3,
+            other: 5.0, key["Wheat"]: math.inf,
         })
     said = [str(problem) for problem in refused.value.problems]
-    assert len(said) == 5
+    assert len(said) == 6
     for words in (
+        "Wheat is fixed at a mass without end; enter kilograms.",
         "Oats is not in the mix of Feed",
         "Maize is fixed at 601.2345 kg, no multiple of a scale's step; fix 600 or 605 kg.",
         "Salt is fixed at 0.0005 kg, no multiple of a scale's step; fix 0 or 0.5 kg.",

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping, Sequence
 
 from blendapp.domain.formulas import Formula
@@ -14,14 +15,20 @@ from blendapp.optimise.steps.problem import Line, Load, Order, Reason
 from blendapp.optimise.steps.search import NoBatch
 
 
-def not_in_mix(
+def not_fixable(
     library: Library, formula: Formula, fixed: Mapping[int, float], shares: Mapping[int, float]
 ) -> list[str]:
-    """One sentence for each fixed ingredient that the mix does not hold."""
-    text = _("{ingredient} is not in the mix of {formula}; only lines of the batch can be fixed.")
-    return [
-        text.format(ingredient=library.ingredient(key).name, formula=formula.name) for key in fixed if key not in shares
-    ]
+    """One sentence for each fixed ingredient that the mix does not hold, and for each mass that is no number."""
+    found = []
+    for key, mass in fixed.items():
+        name = library.ingredient(key).name
+        if key not in shares:
+            text = _("{ingredient} is not in the mix of {formula}; only lines of the batch can be fixed.")
+            found.append(text.format(ingredient=name, formula=formula.name))
+        elif not math.isfinite(mass):
+            text = _("{ingredient} is fixed at a mass without end; enter kilograms.")
+            found.append(text.format(ingredient=name))
+    return found
 
 
 def sentences(

@@ -92,9 +92,10 @@ def weigh(
     """
     total = math.fsum(amounts.values())
     shares = {key: amount / total * batch_kg for key, amount in amounts.items() if amount > _DUST * total}
-    fixed = fixed or {}
+    asked = fixed or {}
     ingredients = [library.ingredient(key) for key in shares]
-    faults = no_batch.not_in_mix(library, built.formula, fixed, shares)
+    faults = no_batch.not_fixable(library, built.formula, asked, shares)
+    fixed = {key: mass for key, mass in asked.items() if key in shares and math.isfinite(mass)}
     scales = [scales_for(library, ingredient) for ingredient in ingredients]
     order = _order(library, built, ingredients, scales, shares, batch_kg, total, fixed, (least_kg, greatest_kg))
     found = whole_batch(order, time_limit_s)

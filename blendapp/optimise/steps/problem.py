@@ -41,8 +41,8 @@ class Load:
 
 @dataclass(frozen=True)
 class Line:
-    """share_kg (> 0): the exact share of the batch. loads: in order of preference; the first that can hold the share
-    is taken. fixed_kg: set by a person. must_stay: the line may not be left out however small it is."""
+    """share_kg (> 0): the exact share of the batch. loads: the line's own scale first, then others in the order in
+    which they are to be tried; see place. fixed_kg: set by a person. must_stay: the line may not be left out."""
 
     share_kg: float
     loads: tuple[Load, ...]
@@ -126,25 +126,27 @@ class Placed(NamedTuple):
 
 
 def place(line: Line) -> Placed | Reason:
-    """The line on the first scale that holds its share well, else on the first that holds it at all.
+    """The line on the scale that serves it best; the reason's line is left for the caller to set.
 
-    A scale holds a share well where a load within what is allowed exists, and the share is no smaller than a step and
-    the least load, or that load is within the tolerance proper. The reason's line is left for the caller to set.
+    Its own scale (the first) unless the share is too small for it: less than a step or the least load, and no load
+    within the tolerance proper. Then the first with a load within the tolerance proper; then the first for which it is
+    not too small; and last, unless the line must stay, the first that can hold it at all, absent perhaps.
     """
     if any(not load.step_kg > 0 for load in line.loads):
         return Reason(None, "step")
-    tries = [_on(index, load, line) for index, load in enumerate(line.loads)]
-    for placed, well in tries:
-        if well and placed is not None:
-            return placed
-    if not line.must_stay:
-        for placed, _well in tries:
-            if placed is not None:
-                return placed
-    return Reason(None, _why_not(line))
+    tries = [(rank, index, placed) for index, load in enumerate(line.loads) for rank, placed in _on(index, load, line)]
+    if line.must_stay:
+        tries = [one for one in tries if one[0] <= _NOT_SMALL]
+    if not tries:
+        return Reason(None, _why_not(line))
+    return min(tries, key=lambda one: one[:2])[2]
 
 
-def _on(index: int, load: Load, line: Line) -> tuple[Placed | None, bool]:
+_OWN, _CLOSE_ENOUGH, _NOT_SMALL, _AT_ALL = range(4)
+
+
+def _on(index: int, load: Load, line: Line) -> list[tuple[int, Placed]]:
+    """The line on one scale and how well that serves it; nothing where no load is within what is allowed."""
     step, share = exact(load.step_kg), Fraction(line.share_kg)
     proper = exact(load.tolerance) * share
     allowed = max(step, proper)
@@ -155,12 +157,13 @@ def _on(index: int, load: Load, line: Line) -> tuple[Placed | None, bool]:
     if greatest is not None:
         hi = min(hi, greatest)
     if lo > hi:
-        return None, False
-    absent = share <= step + edge and not line.must_stay
-    placed = Placed(index, step, share, allowed, lo, hi, absent)
+        return []
+    placed = Placed(index, step, share, allowed, lo, hi, share <= step + edge and not line.must_stay)
     small = share < step - edge or (load.least_kg is not None and share < exact(load.least_kg))
-    miss = min(abs(n * step - share) for n in (lo, hi, placed.nearest) if n)
-    return placed, not small or miss <= proper
+    close = min(abs(n * step - share) for n in (lo, hi, placed.nearest) if n) <= proper
+    if index == 0 and (close or not small):
+        return [(_OWN, placed)]
+    return [(_CLOSE_ENOUGH if close else _AT_ALL if small else _NOT_SMALL, placed)]
 
 
 def _ends(load: Load, step: Fraction) -> tuple[int, int | None]:
