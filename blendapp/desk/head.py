@@ -2,17 +2,21 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QObject
+from PySide6.QtCore import QObject, QTimer
 
 from blendapp.desk.mix.lines import cost_decimals
 from blendapp.desk.shell.frame import Frame
 from blendapp.desk.work import Work
 from blendapp.domain.figures import write_tiny
 from blendapp.domain.formulas import Amounts
+from blendapp.domain.mills import VersionState
 from blendapp.domain.notation import notation
 from blendapp.domain.results import Result, Status
+from blendapp.domain.versions import in_state
 from blendapp.domain.wording import _
-from blendapp.services.versions import current_version
+from blendapp.services.versions import approved_result, approved_version, standing
+
+STANDING_MS = 30
 
 
 class Head(QObject):
@@ -22,6 +26,10 @@ class Head(QObject):
         super().__init__(frame)
         self.work = work
         self.frame = frame
+        self._approved: tuple[object, float | None] = (None, None)
+        # What a formula stands as is found by comparing, which must not hold up an edit.
+        self._rest = QTimer(self, singleShot=True, interval=STANDING_MS)
+        self._rest.timeout.connect(self._say_standing)
         work.opened.connect(self.say_all)
         work.chosen.connect(self.say_all)
         work.edited.connect(lambda _edit: self.say_all())
@@ -33,13 +41,46 @@ class Head(QObject):
         formula = work.formula
         header.formula.say(formula.name if formula is not None else _("No formula") if work.is_open else "")
         header.formula.setVisible(work.is_open)
-        header.state.say("" if formula is None else current_version(work.library, formula.id))
+        if formula is None:
+            header.state.say("")
+        self._rest.start()
         self._say_undo()
         name = work.library.mill.name if work.is_open else ""
         file = work.mill.path.name if work.is_open else ""
         title = " – ".join(part for part in (formula.name if formula is not None else "", name or file) if part)
         self.frame.setWindowTitle(title or "blendapp")
         self.say_answer()
+
+    def _say_standing(self) -> None:
+        work, state = self.work, self.frame.header.state
+        formula = work.formula
+        if formula is None or work.trying:
+            return
+        found = standing(work.library, formula.id, work.on)
+        approved = approved_version(work.library, formula.id)
+        if found.draft and approved is not None:
+            text = _("{draft}, from approved {number}").format(draft=found.text, number=approved.number)
+        else:
+            text = ", ".join(part for part in (found.text, found.approved_by) if part)
+        state.say(text)
+
+    def _approved_cost(self) -> float | None:
+        """The cost of the approved version, looked up again only when another one is approved."""
+        formula = self.work.formula
+        version = None if formula is None else in_state(self.work.library, formula.id, VersionState.APPROVED)
+        if version is not self._approved[0]:
+            result = None if version is None else approved_result(self.work.library, version.formula_id)
+            self._approved = (version, None if result is None else result.cost)
+        return self._approved[1]
+
+    def _since_approved(self, result: Result) -> str:
+        approved = self._approved_cost()
+        if approved is None or result.cost is None:
+            return ""
+        decimals = cost_decimals(result)
+        if abs(result.cost - approved) < 0.5 * 10.0**-decimals:
+            return _("as approved")
+        return _("{change} since approved").format(change=signed(result.cost - approved, decimals))
 
     def _say_undo(self) -> None:
         work, header = self.work, self.frame.header
@@ -62,7 +103,7 @@ class Head(QObject):
             cost.say(no_answer_word(result), stale=self.work.stale)
             check.say("")
             return
-        cost.say(cost_words(result), self._since_last(result), stale=self.work.stale)
+        cost.say(cost_words(result), self._since_last(result), self._since_approved(result), stale=self.work.stale)
         check.say(self._check_words(result))
 
     def _since_last(self, result: Result) -> str:
