@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING, Literal
 
-from blendapp.domain import checks
+from blendapp.domain import checks, versions
 from blendapp.domain.fields import field_of
 from blendapp.domain.formulas import SubjectKind
 from blendapp.domain.library import Library
@@ -123,10 +123,17 @@ class Mill:
         return Edit(entry.id, what, tuple(changes))
 
     def _take_in(self, changes: Sequence[Change]) -> list[Problem]:
-        if not self.writable:
-            raise Refused(self.why_read_only or _("This mill file is read-only here."))
+        self._refuse(changes)
         found = problems_in_place(changes, self.library)
         return [p for p in found if p.severity is Severity.ODDITY]
+
+    def _refuse(self, changes: Sequence[Change]) -> None:
+        """Raises Refused where the file can only be read, or an edit would change what was approved."""
+        if not self.writable:
+            raise Refused(self.why_read_only or _("This mill file is read-only here."))
+        sentence = versions.forbidden(changes, self.library.records["version"].get)
+        if sentence is not None:
+            raise Refused(sentence)
 
     def _stored(self, changes: Sequence[Change], what: str, role: str, of: int | None) -> Entry:
         try:
@@ -163,8 +170,7 @@ class Mill:
 
     def _reverse(self, of: Entry, role: Literal["undo", "redo"]) -> Edit:
         changes = of.changes if role == "redo" else tuple(c.reversed for c in reversed(of.changes))
-        if not self.writable:
-            raise Refused(self.why_read_only or _("This mill file is read-only here."))
+        self._refuse(changes)
         if any(self.library.records[c.kind].get(c.id) != c.before for c in changes):
             text = _("“{what}” cannot be taken back: a later change stands on it.")
             raise Refused(text.format(what=of.what))

@@ -96,7 +96,7 @@ class Store:
         changes: in any order of records; of one record in the order of their happening. Every `before` must equal what
         the file holds. of: with role "undo" or "redo" the entry that is undone or redone. Raises MillFileError, and
         ValueError for changes that no file could take: two of one record that do not follow each other, a number that
-        is not finite, a moment without a time zone, an unknown unit.
+        is not finite, a moment without a time zone, an unknown unit, a change of an approved version.
         """
         listed = tuple(changes)
         with self._turn:

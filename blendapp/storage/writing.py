@@ -9,6 +9,7 @@ from typing import Any
 
 from sqlalchemy import Connection, Delete, Select, Update, bindparam, delete, insert, select, update
 
+from blendapp.domain import versions
 from blendapp.domain.records import KINDS, Change, Record
 from blendapp.storage.entries import Entry, Role
 from blendapp.storage.rows import json_of, record_from_json, record_of, row_of, select_of
@@ -50,6 +51,7 @@ def write(
     """
     net = net_of(changes)
     _compare(connection, net)
+    _keep_approved(connection, changes)
     _move_counters(connection, changes)
     # Taking all rows out before putting any in lets two records swap a name that only one may have.
     for kind in reversed(KINDS):
@@ -69,6 +71,18 @@ def _compare(connection: Connection, net: dict[str, dict[int, tuple[Record | Non
         for id_, (before, _after) in of_kind.items():
             if standing.get(id_) != before:
                 raise ChangedElsewhere(f"{kind} {id_}")
+
+
+def _keep_approved(connection: Connection, changes: tuple[Change, ...]) -> None:
+    """Raises ValueError for an edit that would change an approved version: whoever asks, the file does not take it."""
+    if any(change.kind in ("version", "acknowledgement") for change in changes):
+        ids = {
+            record.version_id for change in changes if change.kind == "acknowledgement"
+            for record in (change.before, change.after) if record is not None
+        }
+        sentence = versions.forbidden(changes, records_by_id(connection, "version", ids).get)
+        if sentence is not None:
+            raise ValueError(sentence)
 
 
 def records_by_id(connection: Connection, kind: str, ids: Iterable[int]) -> dict[int, Record]:
