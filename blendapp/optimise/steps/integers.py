@@ -2,11 +2,8 @@
 
 from __future__ import annotations
 
-import contextlib
 import math
-import os
-import sys
-from collections.abc import Iterator, Sequence
+from collections.abc import Sequence
 from fractions import Fraction
 from typing import Any, NamedTuple
 
@@ -15,6 +12,7 @@ import scipy.optimize
 import scipy.sparse
 
 from blendapp.optimise.program import Array
+from blendapp.optimise.quiet import quiet
 from blendapp.optimise.steps.problem import Task
 
 _milp: Any = scipy.optimize.milp
@@ -214,22 +212,3 @@ class Integers:
             return Found(None, bound, False)
         moved = np.round(result.x[: self.size]).astype(int).tolist()
         return Found(tuple(m + k for m, k in zip(self.origin, moved, strict=True)), bound, result.status == 0)
-
-
-@contextlib.contextmanager
-def quiet() -> Iterator[None]:
-    """Send what the solver's own code prints nowhere: it can print a line though told not to."""
-    try:
-        sys.stdout.flush()
-        kept = os.dup(1)
-    except (OSError, ValueError, AttributeError):  # a program without a standard output
-        yield
-        return
-    nowhere = os.open(os.devnull, os.O_WRONLY)
-    try:
-        os.dup2(nowhere, 1)
-        yield
-    finally:
-        os.dup2(kept, 1)
-        os.close(kept)
-        os.close(nowhere)
