@@ -18,7 +18,7 @@ from blendapp.exchange.price_numbers import (
     value_in_column,
 )
 from blendapp.exchange.price_words import NO_MONEY, Money, money_of_format
-from blendapp.exchange.tables import CellKind, CellValue, RawTable, column_letters, kind_of
+from blendapp.exchange.tables import CellKind, CellValue, PercentCell, RawTable, column_letters, kind_of
 
 
 @dataclass(frozen=True)
@@ -55,15 +55,11 @@ def read_price_cell(table: RawTable, row: int, column: PriceColumn, sign: Decima
     if kind is CellKind.NUMBER:
         assert isinstance(value, float | int)
         number_format = table.formats.get((row, column.index), "")
-        doubt = ""
-        if "%" in number_format.replace('"%"', ""):
-            doubt = _("The cell {place} is formatted as a percentage; say what the price is.").format(
-                place=place(row, column.index)
-            )
         money = money_of_format(number_format) if number_format else NO_MONEY
-        return PriceCell(float(value), entered=PLAIN.write_exact(float(value)), doubt=doubt, money=money)
-    text = _("The cell {place} holds a date, a time or a truth value and no price; say what the price is.")
-    return PriceCell(entered=str(value), doubt=text.format(place=place(row, column.index)))
+        return PriceCell(float(value), entered=PLAIN.write_exact(float(value)), money=money)
+    text = _("The cell {place} holds a date, a time, a percentage or a truth value; say what the price is.")
+    entered = f"{value.amount:%}" if isinstance(value, PercentCell) else str(value)
+    return PriceCell(entered=entered, doubt=text.format(place=place(row, column.index)))
 
 
 def _text_cell(text: str, sign: DecimalSign | None, spreadsheet: bool) -> PriceCell:

@@ -10,10 +10,10 @@ from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
 from blendapp.domain.names import fold
 from blendapp.domain.wording import _
-from blendapp.exchange.suggestions import close_names
+from blendapp.exchange.suggestions import Suggester
 
 LEAST_LIKENESS = 0.5
-MOST_LOOKED_FOR = 200
+MOST_LOOKED_FOR = 100
 _BETWEEN_DIGITS = re.compile(r"(?<=[0-9])[^0-9a-z%+]+(?=[0-9])")
 # Marks of what stood between two digits; a plus sign tells grades apart.
 _POINT, _GAP = "\x01", "\x02"
@@ -53,6 +53,7 @@ class NameFinder:
                 ids.add(synonym.ingredient_id)
         self._found: dict[str, Match] = {}
         self._looked_for = 0
+        self._suggester: Suggester | None = None
 
     def is_known(self, name: str) -> bool:
         key = match_key(name)
@@ -89,7 +90,9 @@ class NameFinder:
         self._looked_for += 1
         candidates: list[str] = []
         if self._looked_for <= MOST_LOOKED_FOR:
-            candidates = close_names(name, (i.name for i in self.library.ingredients), LEAST_LIKENESS)
+            if self._suggester is None:
+                self._suggester = Suggester((i.name for i in self.library.ingredients), LEAST_LIKENESS)
+            candidates = self._suggester.close_names(name)
         if candidates:
             names = _(" or ").join(f"“{candidate}”" for candidate in candidates)
             return text + " " + _("Is it {names}?").format(names=names)

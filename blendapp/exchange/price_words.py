@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 from dataclasses import dataclass
+from functools import lru_cache
 
 from blendapp.exchange.price_units import is_price_unit, plain_words
 
@@ -87,6 +88,7 @@ def _without_code(text: str) -> str:
     return re.sub(rf"\b{code}\b", " ", text) if code else text
 
 
+@lru_cache(1024)
 def read_unit_words(text: str) -> Words:
     """The words of a cell that holds a unit, or of what stands beside a number: "USD / short ton"."""
     money, rest = split_money(text)

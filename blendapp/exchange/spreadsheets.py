@@ -11,7 +11,7 @@ from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _
 from blendapp.exchange import xlsx_scan
 from blendapp.exchange.files import Format, SourceFile, entities_sentence, refusal
-from blendapp.exchange.tables import CellValue, RawTable
+from blendapp.exchange.tables import CellValue, PercentCell, RawTable
 
 # calamine lays a sheet out as a full rectangle, so a cell far out costs memory for everything before it.
 GREATEST_AREA = 5_000_000
@@ -23,7 +23,8 @@ _ODS_REPEAT = re.compile(rb'number-(?:rows|columns)-repeated="([0-9]+)"')
 def read_spreadsheet(source: SourceFile, formats: bool = False) -> list[RawTable]:
     """Every sheet of a workbook in its order.
 
-    formats: whether number formats are wanted too, which takes as long again and works for .xlsx and .xlsm only.
+    formats: whether number formats are wanted, which takes as long again; they are known for .xlsx and .xlsm only, where
+    percentages are told apart in any case.
     Raises Refused with one sentence if the file cannot be read.
     """
     if source.format is not Format.XLSX:
@@ -40,7 +41,7 @@ def read_spreadsheet(source: SourceFile, formats: bool = False) -> list[RawTable
         table.hidden_columns = frozenset(scan.hidden_columns)
         for (row, column), mark in scan.marks.items():
             _place(table.rows, row, column, mark)
-    if formats:
+    if formats or xlsx_scan.has_percent_format(source.data):
         _add_formats(source, tables)
     return tables
 
@@ -124,8 +125,22 @@ def _add_formats(source: SourceFile, tables: list[RawTable]) -> None:
                 for cell in sheet._cells.values()  # sparse: iterating rows would fill in every blank cell
                 if cell.data_type in ("n", "f") and cell.value is not None and cell.number_format != "General"
             }
+            for (row, column), number_format in table.formats.items():
+                if _shows_percent(number_format):
+                    _mark_percent(table.rows, row, column)
     except Exception:  # a broken file makes the parser raise anything
         raise _unreadable(source) from None
+
+
+def _shows_percent(number_format: str) -> bool:
+    """Whether a format shows 0.12 as 12 %; a percent sign in quotes or behind a backslash is only printed."""
+    return "%" in re.sub(r'"[^"]*"|\\.', "", number_format)
+
+
+def _mark_percent(rows: list[list[CellValue]], row: int, column: int) -> None:
+    value = rows[row][column] if row < len(rows) and column < len(rows[row]) else None
+    if isinstance(value, float):
+        rows[row][column] = PercentCell(value)
 
 
 def _unreadable(source: SourceFile) -> Refused:

@@ -20,10 +20,17 @@ class NoStoredValue:
     """A cell with a formula whose result was never stored in the file."""
 
 
+@dataclass(frozen=True)
+class PercentCell:
+    """A number that the sheet shows as a percentage: 0.12 stored, 12 % shown."""
+
+    amount: float
+
+
 NO_STORED_VALUE = NoStoredValue()
 
 # What stands in a cell; blank is None. Whole numbers and fractions are both float.
-CellValue = float | str | bool | datetime.date | datetime.datetime | ErrorCell | NoStoredValue | None
+CellValue = float | str | bool | datetime.date | datetime.datetime | ErrorCell | NoStoredValue | PercentCell | None
 
 
 class CellKind(Enum):
@@ -32,8 +39,16 @@ class CellKind(Enum):
     TEXT = "text"
     DATE = "date"
     BOOLEAN = "boolean"
+    PERCENT = "percentage"
     ERROR = "error"
-    NO_STORED_VALUE = "formula without a stored value"
+    @dataclass(frozen=True)
+class PercentCell:
+    """A number that the sheet shows as a percentage: 0.12 stored, 12 % shown."""
+
+    amount: float
+
+
+NO_STORED_VALUE = "formula without a stored value"
 
 
 def kind_of(value: CellValue) -> CellKind:
@@ -45,6 +60,8 @@ def kind_of(value: CellValue) -> CellKind:
         return CellKind.BOOLEAN
     if isinstance(value, float | int):
         return CellKind.NUMBER
+    if isinstance(value, PercentCell):
+        return CellKind.PERCENT
     if isinstance(value, ErrorCell):
         return CellKind.ERROR
     if isinstance(value, NoStoredValue):

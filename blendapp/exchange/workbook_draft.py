@@ -12,7 +12,7 @@ from blendapp.domain.names import fold
 from blendapp.domain.problems import Problems
 from blendapp.domain.records import KIND_OF, KINDS, Change, Record
 from blendapp.domain.wording import _
-from blendapp.exchange.suggestions import did_you_mean
+from blendapp.exchange.suggestions import Suggester, did_you_mean
 from blendapp.exchange.workbook_sheet import Row
 
 # Looking for likely names in a large library takes a while; a file full of unknown names gets them for the first few.
@@ -31,6 +31,7 @@ class Draft:
         self._rows: dict[tuple[str, str], int] = {}
         self._refused: set[tuple[str, str]] = set()
         self._asked: dict[tuple[str, str], str] = {}
+        self._suggesters: dict[str, Suggester] = {}
 
     def new_id(self, kind: str) -> int:
         found = self._next[kind]
@@ -104,7 +105,10 @@ class Draft:
         if key not in self._asked:
             if len(self._asked) >= MOST_LOOKED_FOR:
                 return ""
-            self._asked[key] = did_you_mean(name, (record.name for record in self.library.records[kind].values()))
+            if kind not in self._suggesters:
+                known = self.library.records[kind].values()
+                self._suggesters[kind] = Suggester(record.name for record in known)
+            self._asked[key] = did_you_mean(name, self._suggesters[kind])
         return self._asked[key]
 
     # -- checks

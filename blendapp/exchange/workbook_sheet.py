@@ -13,7 +13,7 @@ from blendapp.domain.notation import PLAIN
 from blendapp.domain.problems import Place, Problems
 from blendapp.domain.wording import _, plural
 from blendapp.exchange.suggestions import did_you_mean
-from blendapp.exchange.tables import CellKind, CellValue, RawTable, column_letters, kind_of
+from blendapp.exchange.tables import CellKind, CellValue, PercentCell, RawTable, column_letters, kind_of
 from blendapp.exchange.workbook_layout import Layout
 
 Choice = TypeVar("Choice", bound=StrEnum)
@@ -238,6 +238,8 @@ def _not_text(value: CellValue) -> str:
     kind = kind_of(value)
     if kind is CellKind.BOOLEAN:
         return _("The cell holds a truth value and not a text; format it as text and type it again.")
+    if kind is CellKind.PERCENT:
+        return _("The cell holds a percentage and not a text; format it as text and type it again.")
     if kind is CellKind.DATE:
         return _("The cell holds a date or a time and not a text; format it as text and type it again.")
     return _unusable(value)
@@ -247,6 +249,9 @@ def _not_a_number(value: CellValue) -> str:
     kind = kind_of(value)
     if kind is CellKind.BOOLEAN:
         return _("The cell holds a truth value and not a number; type the number, or leave it blank if unknown.")
+    if isinstance(value, PercentCell):
+        text = _("The cell shows {shown} % and stores {stored}; format it as a number and type what is meant.")
+        return text.format(shown=f"{value.amount * 100:g}", stored=f"{value.amount:g}")
     if kind is CellKind.DATE:
         return _("The cell holds a date or a time and not a number; type the number, or leave it blank if unknown.")
     return _unusable(value)

@@ -8,6 +8,8 @@ from blendapp.domain import units
 from blendapp.domain.formulas import Limit, Subject, SubjectKind, write_basis
 from blendapp.domain.ingredients import Ingredient, Value
 from blendapp.domain.library import Library, join_names
+from blendapp.domain.names import fold
+from blendapp.domain.nutrients import BUILT_IN
 from blendapp.domain.problems import Place, Problems
 from blendapp.domain.quotes import Quote
 from blendapp.domain.wording import _
@@ -45,7 +47,7 @@ def tables_of(library: Library, today: datetime.date, problems: Problems) -> dic
 
 def _mill(library: Library) -> Table:
     rows: Table = [list(MILL.headings)]
-    return rows + [[item, getattr(library.mill, name)] for item, name in MILL_ITEMS.items()]
+    return rows + [[item, getattr(library.mill, name).strip()] for item, name in MILL_ITEMS.items()]
 
 
 def _yes(value: bool) -> str:
@@ -153,7 +155,10 @@ def _limits(library: Library, problems: Problems) -> Table:
     rows: Table = [list(LIMITS.headings if with_notes else LIMITS.headings[:-1])]
     for formula, limit in limits:
         name = subject_text(library, limit.subject)
-        per = subject_text(library, limit.per) if limit.per is not None else ""
+        per: str | None = ""
+        if limit.per is not None:
+            name = _told_apart(library, limit.subject, name)
+            per = _told_apart(library, limit.per, subject_text(library, limit.per))
         if name is None or per is None:
             text = _("A limit of “{formula}” on a class without ingredients has the name of one and was left out.")
             problems.oddity(text.format(formula=formula.name), Place("", LIMITS.name))
@@ -164,6 +169,14 @@ def _limits(library: Library, problems: Problems) -> Table:
         ]
         rows.append([*row, _free(limit.note)] if with_notes else row)
     return rows
+
+
+def _told_apart(library: Library, subject: Subject, text: str | None) -> str | None:
+    """A side of a ratio; a group with the name of a nutrient stands in double quotes, or it would be read as that."""
+    if subject.is_nutrient or text is None:
+        return text
+    same = library.named("nutrient", text) is not None or fold(text) in map(fold, BUILT_IN)
+    return '"' + text.replace('"', '""') + '"' if same else text
 
 
 def _basis(limit: Limit) -> str | None:
