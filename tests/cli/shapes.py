@@ -79,7 +79,8 @@ def formula(amounts: str) -> dict[str, Any]:
 PRICES = {
     "currency": {TEXT},
     "rows": [{
-        "sheet": {TEXT, NULL}, "row": {NUMBER}, "fate": {"accepted", "question", "refused", "ignored"}, "reason": {TEXT, NULL},
+        "sheet": {TEXT, NULL}, "row": {NUMBER}, "fate": {"accepted", "question", "refused", "ignored"},
+        "reason": {TEXT, NULL},
         "source_name": {TEXT, NULL}, "ingredient": {TEXT, NULL}, "price_per_t": FIGURE, "unit": {TEXT, NULL},
         "valid_from": {TEXT, NULL}, "old_price_per_t": FIGURE,
     }],

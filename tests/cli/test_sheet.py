@@ -100,7 +100,9 @@ def test_where_no_batch_can_be_made_the_cause_is_said_and_no_page_written(
     assert words in plain.out
 
 
-def test_a_ration_is_made_in_the_proportions_of_its_kilograms(sheet: Callable[..., Run], run: Runner, mill: Path) -> None:
+def test_a_ration_is_made_in_the_proportions_of_its_kilograms(
+    sheet: Callable[..., Run], run: Runner, mill: Path
+) -> None:
     ration = run("formulate", mill, "Ration", "--json").json["formulas"][0]
     fed = {i["name"]: i["kg_per_day"] for i in ration["ingredients"] if i["kg_per_day"]}
     batch = checked(sheet("Ration", 1000, "--json"))

@@ -110,18 +110,49 @@ def test_the_mix_of_the_degenerate_example_is_75_25_0() -> None:
     assert [one.binding for one in result.limits] == [Side.MINIMUM, Side.MINIMUM]
 
 
-def test_no_single_shadow_price_is_shown_where_two_sides_differ() -> None:
-    """The two sides are 6.111 and 5.332 for protein, 10.787 and 0 for lysine; a solver's one dual is neither.
-
-    Each side is either its own figure or none at all.
-    """
-    expected = {"Crude protein": (6.111, 5.332), "Lysine": (10.787, 0.0)}
+def test_both_sides_of_a_degenerate_limit_are_shown_and_never_a_solvers_one_dual() -> None:
+    """A solver's dual is 6.111 for protein, where less saves 5.332, and 0 for lysine, where more costs 10.787."""
+    found = {}
     for one in degenerate().limits:
         assert one.shadow_price_unique is False
-        if one.tighten_cost is None:
-            assert one.relax_saving is None
-        else:
-            assert (one.tighten_cost, one.relax_saving) == pytest.approx(expected[one.name], abs=5e-4)
+        assert (one.raise_cost, one.lower_cost) == (None, None)
+        found[one.name] = (one.tighten_cost, one.relax_saving)
+    assert found["Crude protein"] == pytest.approx((6.111, 5.332), abs=5e-4)
+    assert found["Lysine"] == pytest.approx((10.787, 0.0), abs=5e-4)
+
+
+def test_both_sides_of_a_degenerate_limit_are_what_moving_its_bound_costs_and_saves() -> None:
+    library, _feed = three_ingredients()
+    for one in degenerate().limits:
+        tighten, relax = slopes(library, one, Side.MINIMUM)
+        assert one.tighten_cost == pytest.approx(tighten, rel=1e-4, abs=1e-6)
+        assert one.relax_saving == pytest.approx(relax, rel=1e-4, abs=1e-6)
+
+
+def test_a_shadow_price_holds_as_far_as_is_said_and_no_further() -> None:
+    """Up to the bound that is shown the cost is a straight line; beyond it the mix changes and costs more."""
+    library, _feed = three_ingredients()
+    here = degenerate().cost
+    assert here is not None
+    checked = 0
+    for one in degenerate().limits:
+        assert one.minimum is not None
+        assert one.tighten_cost is not None
+        end = one.tighten_holds_to
+        assert end is not None
+        assert end > one.minimum
+        halfway = (one.minimum + end) / 2
+        for bound in (halfway, end):
+            cost = cost_with(library, one.limit_id, minimum=bound)
+            assert cost == pytest.approx(here + one.tighten_cost * (bound - one.minimum), rel=1e-9)
+        moved = library.copy()
+        limit = moved.limit(one.limit_id)
+        moved.apply([Change(limit, replace(limit, minimum=end + 0.01 * (end - one.minimum)))])
+        beyond = formulate(moved, 1, TODAY)
+        if beyond.cost is not None:
+            assert beyond.cost > here + one.tighten_cost * 1.01 * (end - one.minimum) * (1 + 1e-9)
+        checked += 1
+    assert checked == 2
 
 
 @pytest.mark.parametrize(("target", "sign"), [(30.0, 1), (5.0, -1)])

@@ -165,6 +165,6 @@ def test_a_price_list_without_an_accepted_row_is_refused(opened: Opened, tmp_pat
     mill = opened(library())
     (tmp_path / "monday.csv").write_text("Ingredient,Price,Unit\nOatmeal,9,t\n")
     reading = read_price_list(mill, tmp_path / "monday.csv", TODAY)
-    with pytest.raises(Refused, match="No row of monday.csv was accepted"):
+    with pytest.raises(Refused, match=r"No row of monday\.csv was accepted"):
         apply_price_list(mill, reading, TODAY)
     assert mill.library.all("price_list") == []
