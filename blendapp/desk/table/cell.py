@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass
+
 from PySide6.QtCore import QEvent, QModelIndex, QObject, QPersistentModelIndex, QRect, QRectF, QSize, Qt
 from PySide6.QtGui import QFontMetricsF, QKeyEvent, QPainter, QPen
 from PySide6.QtWidgets import QComboBox, QLineEdit, QStyle, QStyledItemDelegate, QStyleOptionViewItem, QWidget
@@ -9,7 +11,7 @@ from PySide6.QtWidgets import QComboBox, QLineEdit, QStyle, QStyledItemDelegate,
 from blendapp.desk.rail.paint import draw_rail
 from blendapp.desk.table.look import Look
 from blendapp.desk.table.roles import EDIT
-from blendapp.desk.theme import ROW_PX, Tokens, text_font, tokens
+from blendapp.desk.theme import ROW_PX, Tokens, text_font
 
 PAD_PX = 6
 AnyIndex = QModelIndex | QPersistentModelIndex
@@ -18,6 +20,17 @@ _SELECTED = QStyle.StateFlag.State_Selected
 _LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
 _RIGHT = Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
 _ELIDE = Qt.TextElideMode.ElideRight
+
+
+@dataclass(frozen=True, slots=True)
+class Here:
+    """What all cells of one painting share: the cell under the keyboard (-1 without), whether selected cells are
+    tinted, and the tokens. Asked once and not cell by cell."""
+
+    row: int
+    column: int
+    selection: bool
+    scheme: Tokens
 
 
 class CellDelegate(QStyledItemDelegate):
@@ -43,25 +56,26 @@ class CellDelegate(QStyledItemDelegate):
         return QSize(80, ROW_PX)
 
     def paint(self, painter: QPainter, option: QStyleOptionViewItem, index: AnyIndex) -> None:
-        look: Look = index.model().look(index.row(), index.column())  # type: ignore[attr-defined]
-        scheme = tokens()
+        row, column = index.row(), index.column()
+        look: Look = self.table.grid.look(row, column)  # type: ignore[attr-defined]
+        here: Here = self.table.here  # type: ignore[attr-defined]
+        scheme = here.scheme
         rect = option.rect
-        painter.save()
-        if option.state & _SELECTED and self.table.shows_selection():  # type: ignore[attr-defined]
+        if here.selection and option.state & _SELECTED:
             painter.fillRect(self.line_rect(rect), scheme.colour("chosen"))
         if self.ruled:
             painter.fillRect(QRect(rect.left(), rect.bottom(), rect.width(), 1), scheme.colour("hairline"))
         painter.save()
         self.paint_inside(painter, QRectF(self.line_rect(rect)), look, scheme, index)
         painter.restore()
-        painter.setBrush(Qt.BrushStyle.NoBrush)
         if look.fault:
+            painter.setBrush(Qt.BrushStyle.NoBrush)
             painter.setPen(QPen(scheme.colour("text"), 1, Qt.PenStyle.DashLine))
             painter.drawRect(rect.adjusted(1, 1, -2, -2))
-        if self.table.is_current(index):  # type: ignore[attr-defined]
+        if row == here.row and column == here.column:
+            painter.setBrush(Qt.BrushStyle.NoBrush)
             painter.setPen(QPen(scheme.colour("text"), 1))
             painter.drawRect(self.line_rect(rect).adjusted(0, 0, -1, -1))
-        painter.restore()
 
     def line_rect(self, rect: QRect) -> QRect:
         """The part of a cell in which its line stands; a taller row has more below."""

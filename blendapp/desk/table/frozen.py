@@ -20,6 +20,7 @@ class _Names(QTableView):
         self.table = table
 
     def paintEvent(self, event: QPaintEvent) -> None:
+        self.table.look_round()
         super().paintEvent(event)
         if self.table.horizontalScrollBar().value() > 0:
             painter = QPainter(self.viewport())

@@ -15,17 +15,26 @@ from PySide6.QtCore import (
     QTimer,
     Signal,
 )
-from PySide6.QtGui import QFocusEvent, QGuiApplication, QHideEvent, QKeyEvent, QKeySequence, QMouseEvent, QResizeEvent
+from PySide6.QtGui import (
+    QFocusEvent,
+    QGuiApplication,
+    QHideEvent,
+    QKeyEvent,
+    QKeySequence,
+    QMouseEvent,
+    QPaintEvent,
+    QResizeEvent,
+)
 from PySide6.QtWidgets import QAbstractItemView, QFrame, QHeaderView, QTableView, QWidget
 
 from blendapp.desk.rail.geometry import End, end_at
 from blendapp.desk.rail.grip import RailGrip
 from blendapp.desk.rail.paint import track_of
 from blendapp.desk.table.block import read_block, write_block
-from blendapp.desk.table.cell import CellDelegate
+from blendapp.desk.table.cell import CellDelegate, Here
 from blendapp.desk.table.grid import AnyIndex, Grid
 from blendapp.desk.table.note import Note
-from blendapp.desk.theme import ROW_PX
+from blendapp.desk.theme import ROW_PX, tokens
 
 _ARROWS: dict[int, int] = {Qt.Key.Key_Left: -1, Qt.Key.Key_Right: 1}
 
@@ -50,6 +59,7 @@ class DeskTable(QTableView):
         self._chosen_end: End | None = None
         self._dragging = False
         self._block = False
+        self.here = Here(-1, -1, False, tokens())
         self._note: Note | None = None
         self.cells = CellDelegate(self, ruled=ruled)
         self.setItemDelegate(self.cells)
@@ -97,9 +107,15 @@ class DeskTable(QTableView):
         focus = QGuiApplication.focusObject()
         return focus is self or (isinstance(focus, QWidget) and self.isAncestorOf(focus))
 
-    def shows_selection(self) -> bool:
-        """Whether selected cells are tinted: a block always, the current cell only under the keyboard."""
-        return self._block or self.has_keyboard()
+    def look_round(self) -> None:
+        """Take in what the next painting shares: a block is always tinted, one cell only under the keyboard."""
+        current, keyboard = self.currentIndex(), self.has_keyboard()
+        row, column = (current.row(), current.column()) if keyboard else (-1, -1)
+        self.here = Here(row, column, self._block or keyboard, tokens())
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        self.look_round()
+        super().paintEvent(event)
 
     def selectionChanged(self, selected: QItemSelection, deselected: QItemSelection) -> None:
         super().selectionChanged(selected, deselected)
