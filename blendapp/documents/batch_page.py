@@ -44,7 +44,7 @@ def _marks(batch: Batch) -> list[Mark]:
     marks = []
     if not batch.fit_to_mix or batch.cause is not None:
         marks.append(Mark(_("NOT TO BE MIXED"), warning=True))
-    if batch.version.strip().casefold().startswith("draft"):
+    if batch.draft:
         marks.append(Mark(_("DRAFT")))
     if batch.copy > 0:
         marks.append(Mark(_("COPY {number}").format(number=batch.copy)))
@@ -81,7 +81,11 @@ def _title(batch: Batch, width: float) -> list[Block]:
         strip.draw(pen, left, top + strip_top)
         _draw_code(pen, left + width - _CODE_SIZE, top, code_text(batch))
 
-    return [Block(max(_CODE_SIZE, strip_top + strip.height), draw)]
+    blocks = [Block(max(_CODE_SIZE, strip_top + strip.height), draw)]
+    if batch.approved_by:
+        words = _("This is {version}, approved by {name}.").format(version=batch.version, name=batch.approved_by)
+        blocks += paragraph(words, BODY, width, gap=8)
+    return blocks
 
 
 def code_text(batch: Batch) -> str:

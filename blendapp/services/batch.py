@@ -26,7 +26,7 @@ from blendapp.optimise.build.formula import build
 from blendapp.optimise.build.weigh import FixedRefused, NotWeighable, WeighedLine, weigh
 from blendapp.services import sheets
 from blendapp.services.formulate import formulate
-from blendapp.services.versions import current_version
+from blendapp.services.versions import standing
 
 if TYPE_CHECKING:
     from blendapp.services.mill import Mill
@@ -58,8 +58,9 @@ def make_batch(
     composition = composition or Composition(library)
     answer = result or formulate(library, formula_id, on, composition)
     formula = library.formula(formula_id)
+    state = standing(library, formula_id, answer.on, result=answer if answer.has_answer else None)
     empty = Batch(
-        formula_id=formula_id, formula=formula.name, version=current_version(library, formula_id),
+        formula_id=formula_id, formula=formula.name, version=state.text, draft=state.draft, approved_by=state.approved_by,
         mill=library.mill.name, currency=library.mill.currency, made=on, order_kg=order_kg, batches=1,
         batch_kg=order_kg, lines=(), limits=answer.limits, nutrients=(), broken=(), cautions=answer.cautions,
     )
@@ -99,7 +100,7 @@ def make_batch(
         limits=weighing.limits,
         nutrients=weighing.nutrients,
         broken=weighing.broken,
-        cautions=(*cautions.warnings(formula, library, mix, answer.unknown), *weighing.notes),
+        cautions=(*cautions.warnings(formula, library, mix, answer.unknown), *weighing.notes, *state.altered),
         unproven=weighing.unproven,
         gap=weighing.gap,
     )

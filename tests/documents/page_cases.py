@@ -57,7 +57,8 @@ LINES = (
 )
 
 PLAIN = Batch(
-    formula_id=1, formula="Grower pig 30 to 60 kg", version="approved 3", mill="Old Weir Mill", currency="EUR",
+    formula_id=1, formula="Grower pig 30 to 60 kg", version="version 3", mill="Old Weir Mill", currency="EUR",
+    draft=False, approved_by="Marta Okonjo, nutritionist, 2026-01-30",
     made=datetime.date(2026, 2, 3), order_kg=7480, batches=4, batch_kg=1870, lines=LINES,
     limits=(limit("Lysine", 1.05, None, 1.0497), limit("Calcium", 0.7, 0.9, 0.7211)),
     nutrients=NUTRIENTS, broken=(), cautions=(GENERAL_CAUTION, "Feed nothing else with copper."), number=1041,
@@ -69,7 +70,7 @@ LONG_NAME = "Soybean meal, solvent extracted, dehulled and toasted, from the sec
 MANY = dataclasses.replace(
     PLAIN,
     formula="Breeder layer and pullet developer mash for the northern farms, with whole wheat and without fish, spring",
-    version="draft 12",
+    version="draft 12", draft=True, approved_by="",
     number=None,
     lines=tuple(
         line(f"Ingredient {n} {LONG_NAME if n % 7 == 0 else LONG_WORD if n % 11 == 0 else ''}".strip(),

@@ -165,6 +165,17 @@ def test_a_plain_batch_has_no_mark_and_its_number() -> None:
     assert "7480kgin4equalbatches" in text
 
 
+def test_a_sheet_says_who_approved_its_version_and_a_draft_names_nobody() -> None:
+    assert squeezed("This is version 3, approved by Marta Okonjo, nutritionist, 2026-01-30.") in words(made.PLAIN)
+    assert "approvedby" not in words(made.MANY)
+
+
+def test_the_mark_of_a_draft_follows_what_the_batch_is_and_not_its_words() -> None:
+    called_otherwise = dataclasses.replace(made.PLAIN, version="Entwurf 4", draft=True, approved_by="")
+    assert [p.text.strip() for p in pieces(batch_sheet(called_otherwise)) if p.across] == ["DRAFT"]
+    assert "DRAFT" not in words(dataclasses.replace(made.PLAIN, version="drafty 4"))
+
+
 def test_a_reprint_says_which_copy_it_is_on_every_page() -> None:
     for text in page_text(batch_sheet(made.NOT_FIT)):
         assert text.count("COPY 1") == 2
@@ -259,6 +270,7 @@ def test_every_word_of_the_sheet_goes_through_the_catalogue() -> None:
     finally:
         use_language(None)
     own = [made.NOT_FIT.formula, "draft 1", made.NOT_FIT.mill, "Feed nothing else with copper.", GENERAL_CAUTION]
+    own += [made.NOT_FIT.approved_by]
     own += [line.ingredient for line in made.PLAIN.lines] + [line.scale for line in made.PLAIN.lines]
     own += [n.name for n in made.NUTRIENTS] + [n.unit for n in made.NUTRIENTS if n.unit] + ["Grass meal"]
     own += [made.MEDICATED.drug, made.MEDICATED.drug_level, made.MEDICATED.drug_species, made.MEDICATED.withdrawal]
