@@ -23,8 +23,8 @@ _ODS_REPEAT = re.compile(rb'number-(?:rows|columns)-repeated="([0-9]+)"')
 def read_spreadsheet(source: SourceFile, formats: bool = False) -> list[RawTable]:
     """Every sheet of a workbook in its order.
 
-    formats: whether number formats are wanted, which takes as long again; they are known for .xlsx and .xlsm only, where
-    percentages are told apart in any case.
+    formats: whether number formats are wanted, which takes as long again; they are known for .xlsx and .xlsm only.
+    There, percentages are told apart in any case.
     Raises Refused with one sentence if the file cannot be read.
     """
     if source.format is not Format.XLSX:

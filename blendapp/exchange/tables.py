@@ -41,14 +41,7 @@ class CellKind(Enum):
     BOOLEAN = "boolean"
     PERCENT = "percentage"
     ERROR = "error"
-    @dataclass(frozen=True)
-class PercentCell:
-    """A number that the sheet shows as a percentage: 0.12 stored, 12 % shown."""
-
-    amount: float
-
-
-NO_STORED_VALUE = "formula without a stored value"
+    NO_STORED_VALUE = "formula without a stored value"
 
 
 def kind_of(value: CellValue) -> CellKind:
