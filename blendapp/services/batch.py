@@ -60,7 +60,8 @@ def make_batch(
     formula = library.formula(formula_id)
     state = standing(library, formula_id, answer.on, result=answer if answer.has_answer else None)
     empty = Batch(
-        formula_id=formula_id, formula=formula.name, version=state.text, draft=state.draft, approved_by=state.approved_by,
+        formula_id=formula_id, formula=formula.name, version=state.text, draft=state.draft,
+        approved_by=state.approved_by,
         mill=library.mill.name, currency=library.mill.currency, made=on, order_kg=order_kg, batches=1,
         batch_kg=order_kg, lines=(), limits=answer.limits, nutrients=(), broken=(), cautions=answer.cautions,
     )
