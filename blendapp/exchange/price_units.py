@@ -76,7 +76,7 @@ def read_price_unit(text: str, mill: MillInfo, cwt_is_100_lb: bool) -> PriceUnit
     if meaning is None:
         sentence = _("“{text}” is not known as the mass of a price; use one of {known}.")
         known = ", ".join(units.PRICE_PER)
-        raise UnknownPriceUnit(sentence.format(text=text.strip(), known=known) + did_you_mean(words, units.PRICE_PER))
+        raise UnknownPriceUnit(sentence.format(text=text.strip(), known=known) + did_you_mean(words, _MEANING))
     if meaning == TON:
         if mill.ton_means in units.TON_MEANINGS:
             return PriceUnit(units.TON_MEANINGS[mill.ton_means])

@@ -27,10 +27,6 @@ def read(path: Path, into: Library | None = None) -> Library:
     return library
 
 
-def same_records(first: Library, second: Library, kind: str) -> bool:
-    return first.all(kind) == second.all(kind)
-
-
 @given(mills())
 @settings(
     max_examples=120, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture, HealthCheck.too_slow]
