@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import contextlib
+import ctypes
 import dataclasses
 import os
 import sys
@@ -192,6 +193,11 @@ def _constraints(
     return np.vstack(rows), np.concatenate(low), np.concatenate(high)
 
 
+def _flush() -> None:
+    with contextlib.suppress(OSError, AttributeError):
+        ctypes.CDLL("ucrtbase" if sys.platform == "win32" else None).fflush(None)
+
+
 @contextlib.contextmanager
 def _quiet() -> Iterator[None]:
     """Send what the solver's own code prints nowhere: it can print a line though told not to."""
@@ -206,6 +212,7 @@ def _quiet() -> Iterator[None]:
         os.dup2(nowhere, 1)
         yield
     finally:
+        _flush()  # or what was printed stays in C's buffer and comes out later
         os.dup2(kept, 1)
         os.close(kept)
         os.close(nowhere)
