@@ -21,6 +21,7 @@ from blendapp.desk.have.reading import NUTRIENT
 from blendapp.desk.head import Head
 from blendapp.desk.listing import command_list
 from blendapp.desk.meet.pane import MeetPane
+from blendapp.desk.mill.pane import MillPane
 from blendapp.desk.mix.pane import MixPane
 from blendapp.desk.prices.pane import PricesPane
 from blendapp.desk.sheet.pane import SheetPane
@@ -55,7 +56,8 @@ class Bench(QObject):
         self.welcome = Welcome(self.files)
         self.prices = PricesPane(self.work)
         self.sheet = SheetPane(self.work)
-        for page in (self.welcome, self.prices, self.sheet):
+        self.mill = MillPane(self.work)
+        for page in (self.welcome, self.prices, self.sheet, self.mill):
             frame.middle.addWidget(page)
         self.commands = Commands(frame, command_list(self))
         self.menu = QMenu(frame)
@@ -71,11 +73,12 @@ class Bench(QObject):
         header.menu.clicked.connect(self.open_menu)
         self.have.add.clicked.connect(self.have.add_ingredient)
         self.have.column_asked.connect(self._offer_column)
+        self.prices.ingredient_wanted.connect(self._ask_ingredient)
         self.mix.limit_wanted.connect(lambda name: self.meet.adding.begin(LimitKind.INGREDIENT, name))
         self.work.said.connect(self.strip.say)
         self.files.said.connect(self.strip.say)
         self.work.opened.connect(self._opened)
-        for page in (self.prices, self.sheet):
+        for page in (self.prices, self.sheet, self.mill):
             page.closed.connect(self.to_bench)
             page.said.connect(self.strip.say)
         self.frame.closing.connect(self.close)
@@ -129,6 +132,11 @@ class Bench(QObject):
         chosen = path or self.files.ask_price_list()
         if chosen is not None and self.prices.read(chosen):
             self.show_page(self.prices)
+
+    def show_mill(self) -> None:
+        """Show the mill's own page."""
+        self.mill.fill()
+        self.show_page(self.mill)
 
     def show_sheet(self) -> None:
         """Show the batch sheet of the chosen formula as it would be printed."""
@@ -188,6 +196,13 @@ class Bench(QObject):
             Found(one.name, _("nutrient"), partial(self.to_nutrient, one.id)) for one in library.nutrients
         ]
         return things + self.commands.found()
+
+    def _ask_ingredient(self, name: str) -> None:
+        things = [
+            Found(one.name, _("ingredient"), partial(self.prices.answer, name, one.id))
+            for one in self.work.library.ingredients
+        ]
+        self.finder.open(things, _("“{name}” in this list is…").format(name=name))
 
     def to_ingredient(self, ingredient_id: int) -> None:
         """Show an ingredient in the first zone."""

@@ -56,6 +56,7 @@ def _edit(bench: Bench) -> list[Command]:
                 lambda: work.is_open, False),
         Command("add ingredient", _("Add an ingredient"), "library", bench.have.add_ingredient, "", writable),
         Command("add nutrient", _("Add a nutrient…"), "library", bench.records.new_nutrient, "", writable),
+        Command("mill", _("The mill, its scales and nutrients"), "library", bench.show_mill, "", lambda: work.is_open),
     ]
 
 

@@ -67,7 +67,7 @@ def take_all(out_dir: Path, workbook: Path, price_list: Path, folder: Path, scal
     mill.close()
     bench.start(str(path))
     frame.activateWindow()
-    for scene in (_bench, _hands, _wide, _forms, _faults, _finding, _formulas, _prices, _sheet):
+    for scene in (_bench, _hands, _wide, _forms, _faults, _finding, _formulas, _prices, _sheet, _mill):
         scene(studio, bench, price_list)
         bench.to_bench()
         bench.strip.clear()
@@ -245,6 +245,12 @@ def _prices(studio: Studio, bench: Bench, price_list: Path) -> None:
         studio.settle()
         studio.take(bench.frame, "21-prices-taken")
         bench.work.undo()
+
+
+def _mill(studio: Studio, bench: Bench, _price_list: Path) -> None:
+    bench.show_mill()
+    studio.settle()
+    studio.take(bench.frame, "24-the-mill")
 
 
 def _sheet(studio: Studio, bench: Bench, _price_list: Path) -> None:

@@ -17,6 +17,7 @@ from PySide6.QtWidgets import QApplication
 from blendapp.desk.shell.frame import Frame
 from blendapp.desk.theme import dress, follow_system, load_fonts
 from blendapp.domain.notation import Notation, use_notation
+from blendapp.domain.wording import use_language
 
 # When this is "painted" or "ready", the program ends as soon as it is that far; the benchmark of the start sets it.
 MEASURE = "BLENDAPP_MEASURE_START"
@@ -37,7 +38,8 @@ class _Fetch(QObject):
 
 
 def take_locale(locale: QLocale) -> None:
-    """Read and write numbers as a locale does: its decimal sign, without grouping."""
+    """Take the language of a locale, and its decimal sign, without grouping."""
+    use_language(locale.name())
     use_notation(Notation(decimal="," if locale.decimalPoint() == "," else "."))
 
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 import pytest
+from PySide6.QtCore import Qt
 
 from blendapp.desk.bench import Bench
 from tests.desk.conftest import Hands
@@ -54,3 +55,18 @@ def test_a_file_that_cannot_be_read_is_named_in_a_sentence(bench: Bench, tmp_pat
     bench.bring_in_prices(path)
     assert bench.frame.middle.currentWidget() is bench.frame.bench
     assert "photo.xlsx" in bench.strip.words.text()
+
+
+def test_a_question_about_a_name_is_answered_once_and_remembered(bench: Bench, hands: Hands, price_list: Path) -> None:
+    bench.bring_in_prices(price_list)
+    rows = bench.prices.rows
+    question = next(owner for owner in rows.owners if str(rows.cell(owner, "fate").data()) == "question")
+    hands.go(bench.prices.table, question, "fate")
+    hands.key(Qt.Key.Key_Return)
+    hands.write("peas")
+    hands.key(Qt.Key.Key_Return)
+    assert "question" not in [str(rows.cell(owner, "fate").data()) for owner in rows.owners]
+    hands.click(bench.prices.take)
+    assert bench.work.library.price_per_t(4, bench.work.on) == 5
+    bench.bring_in_prices(price_list)
+    assert "question" not in [str(rows.cell(owner, "fate").data()) for owner in rows.owners]

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
-from blendapp.desk.table.grid import Grid, Heading
+from blendapp.desk.table.grid import AnyIndex, Grid, Heading
 from blendapp.desk.table.look import EMPTY, Look, number_look
 from blendapp.domain.notation import notation
 from blendapp.domain.price_rows import Fate, PriceListReading, PriceRow
@@ -42,13 +42,20 @@ class PriceRows(Grid):
         shown = [at for at, row in enumerate(reading.rows) if self.with_ignored or row.fate is not Fate.IGNORED]
         self.set_rows(sorted(shown, key=lambda at: (order[reading.rows[at].fate], at)))
 
+    def row(self, index: AnyIndex) -> PriceRow | None:
+        """The source row behind a cell."""
+        if self.reading is None or not index.isValid():
+            return None
+        return self.reading.rows[self.owner(index)]
+
     def make_look(self, owner: int, key: str) -> Look:
         if self.reading is None or owner >= len(self.reading.rows):
             return EMPTY
         row = self.reading.rows[owner]
         quiet = row.fate is Fate.IGNORED
         if key == "fate":
-            return Look(text=fate_word(row.fate), strong=row.fate in (Fate.QUESTION, Fate.REFUSED), quiet=quiet)
+            return Look(text=fate_word(row.fate), strong=row.fate in (Fate.QUESTION, Fate.REFUSED), quiet=quiet,
+                        hint=_("Enter says which ingredient it is") if row.fate is Fate.QUESTION else "")
         if key in ("price", "old"):
             value = row.price_per_t if key == "price" else row.old_price_per_t
             return number_look(value, 2, unknown="", quiet=key == "old", strong=key == "price")

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from pathlib import Path
 
-from PySide6.QtCore import Qt, Signal
+from PySide6.QtCore import QModelIndex, Qt, Signal
 from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import QCheckBox, QHBoxLayout, QLabel, QPushButton, QVBoxLayout, QWidget
 
@@ -16,14 +16,17 @@ from blendapp.desk.work import Work
 from blendapp.domain.price_rows import Fate, PriceListReading
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _, plural
-from blendapp.services import prices
+from blendapp.services import plant, prices
 
 
 class PricesPane(QWidget):
-    """closed: back to the bench. said: a sentence with what can be listed below it."""
+    """closed: back to the bench. said: a sentence with what can be listed below it. ingredient_wanted: the person is to
+    say which ingredient a name is.
+    """
 
     closed = Signal()
     said = Signal(str, list)
+    ingredient_wanted = Signal(str)
 
     def __init__(self, work: Work) -> None:
         super().__init__()
@@ -61,6 +64,9 @@ class PricesPane(QWidget):
         column.addWidget(self.notes)
         column.addWidget(self.table, 1)
         self.setFocusProxy(self.table)
+        self.path: Path | None = None
+        self.table.asked.connect(self._ask)
+        self.table.doubleClicked.connect(self._ask)
 
     def read(self, path: Path) -> bool:
         """Read a price list and show it; False where it cannot be read, which is said."""
@@ -69,9 +75,28 @@ class PricesPane(QWidget):
         except Refused as refusal:
             self.said.emit(str(refusal), [])
             return False
+        self.path = path
         self.ignored.setChecked(False)
         self._show()
         return True
+
+    def _ask(self, index: QModelIndex) -> None:
+        row = self.rows.row(index)
+        if row is not None and row.fate is Fate.QUESTION and row.source_name:
+            self.ingredient_wanted.emit(row.source_name)
+
+    def answer(self, name: str, ingredient_id: int) -> None:
+        """Remember which ingredient the list means by a name, and read the list again."""
+        reading, path = self.reading, self.path
+        if reading is None or path is None:
+            return
+        try:
+            self.work.do(lambda mill: plant.name_means(mill, reading.file_name, name, ingredient_id))
+        except Refused as refusal:
+            self.said.emit(str(refusal), [])
+            return
+        self.read(path)
+        self.table.setFocus()
 
     def _turn_ignored(self, shown: bool) -> None:
         self.rows.with_ignored = shown

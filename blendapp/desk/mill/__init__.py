@@ -1,0 +1,1 @@
+"""The mill itself: its name and money, its scales and mixers, and its nutrients."""
