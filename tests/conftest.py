@@ -1,3 +1,17 @@
-"""For every test: the program is imported before numpy, since it sets how many threads numpy uses."""
+"""What holds for every test.
+
+The program is imported before numpy, since it sets how many threads numpy uses. Property tests take as long as they
+need and try the same examples on every run; HYPOTHESIS_PROFILE=search tries new ones, after a change of what they test.
+"""
+
+from __future__ import annotations
+
+import os
+
+from hypothesis import HealthCheck, settings
 
 import blendapp  # noqa: F401
+
+settings.register_profile("steady", deadline=None, derandomize=True, suppress_health_check=[HealthCheck.too_slow])
+settings.register_profile("search", deadline=None, suppress_health_check=[HealthCheck.too_slow])
+settings.load_profile(os.environ.get("HYPOTHESIS_PROFILE", "steady"))
