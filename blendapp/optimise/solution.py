@@ -38,8 +38,9 @@ class Solution:
     (rows,), per unit of a row's right-hand side (for a row with a divisor, of (numerator - bound divisor) . x);
     lower_price (>= 0) and upper_price (<= 0), shape (n,), of the tightest column bounds. An equality has its price,
     of either sign, in minimum_price.
-    limits: state of each limit by its index. priced: the linear program that the prices belong to: the program
-    itself, or, of a mixed-integer one, the linear program with the choice fixed (given is then true).
+    limits: state of each limit by its index. program: what was solved. priced: the linear program that the prices
+    belong to: the program itself, or, of a mixed-integer one, the linear program with the choice fixed (given is
+    then true).
     arrays, face, duals: the solver arrays of priced, the face on which x lies and the prices of the arrays' rows
     (shape (m,), >= 0 for inequalities), for sensitivity. seconds: time it took.
     """
@@ -53,6 +54,7 @@ class Solution:
     lower_price: Array | None = None
     upper_price: Array | None = None
     limits: Mapping[int, LimitState] = field(default_factory=dict)
+    program: Program | None = None
     priced: Program | None = None
     given: bool = False
     arrays: Arrays | None = None

@@ -18,7 +18,7 @@ from blendapp.optimise.solution import LimitState, Side, Solution
 
 _MOST_EXCLUDED = 20
 _NULL = 1e-8  # a price that moves less than this along the null space is fixed
-_TIED = 1e-9  # a reduced cost below this share of the largest cost is a tie
+TIED = 1e-9  # a reduced cost below this share of the largest cost is a tie
 _PRICE_NOISE = 1e-11  # duals below this share of the largest cost are rounding
 
 
@@ -34,11 +34,11 @@ def solve(program: Program, time_limit_s: float | None = None) -> Solution:
     status, vertex = optimum(arrays, time_limit_s)
     if vertex is None:
         return Solution(status, priced=program, arrays=arrays, seconds=time.perf_counter() - started)
-    return _snapshot(arrays, vertex, started)
+    return snapshot(arrays, vertex, started)
 
 
-def _snapshot(arrays: Arrays, vertex: Vertex, started: float) -> Solution:
-    """Clean the vertex and read prices and limits from it."""
+def snapshot(arrays: Arrays, vertex: Vertex, started: float | None = None) -> Solution:
+    """Clean an optimum and read prices and limits from it. started: perf_counter when the work began."""
     face, x = _clean(arrays, vertex.x)
     y = _duals(arrays, face, vertex.y)
     reduced = arrays.cost - y @ arrays.a
@@ -66,10 +66,11 @@ def _snapshot(arrays: Arrays, vertex: Vertex, started: float) -> Solution:
         upper_price=upper_price,
         limits=_limits(arrays, face, x, y, reduced),
         priced=arrays.program,
+        program=arrays.program,
         arrays=arrays,
         face=face,
         duals=y,
-        seconds=time.perf_counter() - started,
+        seconds=0.0 if started is None else time.perf_counter() - started,
     )
 
 
@@ -153,7 +154,7 @@ def _limits(arrays: Arrays, face: Face, x: Array, y: Array, reduced: Array) -> d
 
 def _alone(arrays: Arrays, face: Face, y: Array, reduced: Array) -> bool:
     """Whether no other mix costs the same, told by prices that are nowhere nought (so it may say no in vain)."""
-    noise = _TIED * float(np.abs(arrays.cost).max(initial=0.0))
+    noise = TIED * float(np.abs(arrays.cost).max(initial=0.0))
     idle = ~face.inside & (arrays.lower < arrays.upper)
     held = face.active[face.active < arrays.inequalities]
     return bool(face.spare == 0 and (np.abs(reduced[idle]) > noise).all() and (y[held] > noise).all())
@@ -209,7 +210,7 @@ def _solve_whole(program: Program, time_limit_s: float | None, started: float) -
         if len(excluded) == _MOST_EXCLUDED:
             raise FailedSolve(f"with the choice of columns fixed the program is {status}")
         excluded.append(choice.used)
-    linear = _snapshot(arrays, vertex, started)
+    linear = snapshot(arrays, vertex, started)
     assert linear.x is not None
     assert linear.objective is not None
     flow = float(np.abs(program.cost) @ np.abs(linear.x))
@@ -220,6 +221,7 @@ def _solve_whole(program: Program, time_limit_s: float | None, started: float) -
         status=choice.status,
         gap=max(linear.objective - choice.dual_bound, 0.0) / (flow if flow > 0 else 1.0),
         limits=limits,
+        program=program,
         given=True,
         seconds=time.perf_counter() - started,
     )

@@ -124,6 +124,11 @@ def choice_states(program: Program, choice: Choice, x: Array, limits: dict[int, 
         for j in (program.least_limit >= 0).nonzero()[0].tolist():
             if not choice.used[j] or program.least_if_used[j] <= 0:
                 limits[int(program.least_limit[j])] = LimitState(float(x[j]), None, True, 0.0)
+    count_states(program, x, limits)
+
+
+def count_states(program: Program, x: Array, limits: dict[int, LimitState]) -> None:
+    """Add the state of the counts."""
     for count in program.counts:
         value = int((x[list(count.columns)] > _USED).sum())
         limits[count.limit] = LimitState(float(value), "maximum" if value >= count.most else None, None, None)
