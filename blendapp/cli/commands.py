@@ -73,12 +73,15 @@ def _new(given: argparse.Namespace) -> int:
 
 
 def _formulate(given: argparse.Namespace) -> int:
-    from blendapp.services.formulate import FailedCertificate, formulas_named, formulate_all
+    from blendapp.services.asking import formulate_whole
+    from blendapp.services.formulate import FailedCertificate, formulas_named
 
     with _Open(given.mill) as mill:
         chosen = formulas_named(mill.library, given.formulas)
         try:
-            results = formulate_all(mill.library, [f.id for f in chosen], datetime.date.today(), mill.composition)
+            results = formulate_whole(
+                mill.library, [f.id for f in chosen], datetime.date.today(), mill.composition, given.near
+            )
         except FailedCertificate as failure:
             raise Refused(Problem(str(failure), Place(file=given.mill))) from failure
     if given.json:

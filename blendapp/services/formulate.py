@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import datetime
 from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
 
 from blendapp.domain import cautions
 from blendapp.domain.formulas import Formula
@@ -26,6 +27,18 @@ class FailedCertificate(Exception):
     """An answer that the check without the solver found wrong. It is never shown."""
 
 
+@dataclass(frozen=True, eq=False)
+class Answer:
+    """A result with the numbers behind it, for what more can be asked of it (services.asking).
+
+    built: its program; None where a caution forbids an answer before any solve. solution: None where there is no mix.
+    """
+
+    result: Result
+    built: FormulaProgram | None = None
+    solution: Solution | None = None
+
+
 def formulate(
     library: Library,
     formula_id: int,
@@ -36,6 +49,22 @@ def formulate(
     time_limit_s: float | None = None,
     prices: bool = True,
 ) -> Result:
+    """The least-cost answer to a formula at the prices of a day, checked, or why there is none; see answer_to."""
+    return answer_to(
+        library, formula_id, on, composition, site_id=site_id, time_limit_s=time_limit_s, prices=prices
+    ).result
+
+
+def answer_to(
+    library: Library,
+    formula_id: int,
+    on: datetime.date,
+    composition: Composition | None = None,
+    *,
+    site_id: int | None = None,
+    time_limit_s: float | None = None,
+    prices: bool = True,
+) -> Answer:
     """The least-cost answer to a formula at the prices of a day, checked, or why there is none.
 
     composition: kept between calls by the mill, for speed. time_limit_s: of a mixed-integer program. prices: whether
@@ -47,16 +76,18 @@ def formulate(
     built = build(library, formula, on, composition, site_id)
     unknown = unknown_values(library, built)
     if forbidden is not None:
-        return _none(library, built, on, Status.CONFLICT, forbidden, unknown)
+        return Answer(_none(library, built, on, Status.CONFLICT, forbidden, unknown))
     solution = _solve(built.program, time_limit_s)
     if solution.status == "infeasible":
         status, cause = _why_infeasible(library, built, on, composition, site_id, time_limit_s)
-        return _none(library, built, on, status, cause, unknown)
+        return Answer(_none(library, built, on, status, cause, unknown), built)
     if solution.status == "unbounded":
-        return _none(library, built, on, Status.UNBOUNDED, _why_unbounded(built), unknown)
+        return Answer(_none(library, built, on, Status.UNBOUNDED, _why_unbounded(built), unknown), built)
     if solution.x is None:
-        return _none(library, built, on, Status.STOPPED, _("Time was up before any mix was found."), unknown)
-    return _answer(library, built, on, solution, unknown, prices)
+        cause = _("Time was up before any mix was found.")
+        return Answer(_none(library, built, on, Status.STOPPED, cause, unknown), built)
+    result = _answer(library, built, on, solution, unknown, prices)
+    return Answer(result, built, solution if result.has_answer else None)
 
 
 def formulate_all(
