@@ -30,6 +30,16 @@ def opened(tmp_path: Path) -> Iterator[Callable[[Library], Mill]]:
 
 
 @pytest.fixture
+def quick_hashing(monkeypatch: pytest.MonkeyPatch) -> None:
+    """Passwords hashed as weakly as the library allows, for tests that are about something else."""
+    from argon2 import PasswordHasher
+
+    from blendapp.services import people
+
+    monkeypatch.setattr(people, "_hasher", PasswordHasher(time_cost=1, memory_cost=8, parallelism=1))
+
+
+@pytest.fixture
 def reopened() -> Iterator[Callable[[Mill], Mill]]:
     """reopened(mill): the same file opened again after the mill was closed. Closed after the test."""
     mills: list[Mill] = []
