@@ -103,7 +103,10 @@ class Head(QObject):
             cost.say(no_answer_word(result), stale=self.work.stale)
             check.say("")
             return
-        cost.say(cost_words(result), self._since_last(result), self._since_approved(result), stale=self.work.stale)
+        figure = cost_words(result)
+        if result.status is Status.STOPPED:
+            figure = _("{cost}, stopped").format(cost=figure)
+        cost.say(figure, self._since_last(result), self._since_approved(result), stale=self.work.stale)
         check.say(self._check_words(result))
 
     def _since_last(self, result: Result) -> str:

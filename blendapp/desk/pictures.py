@@ -23,6 +23,7 @@ def main(arguments: list[str] | None = None) -> int:
     parser.add_argument("out_dir", type=Path, help="the folder for the pictures; made if it is not there")
     parser.add_argument("--workbook", type=Path, default=_SAMPLE / "mill.xlsx", help="the mill to show")
     parser.add_argument("--price-list", type=Path, default=_SAMPLE / "price_list.xlsx", help="the price list to show")
+    parser.add_argument("--only", default="", help="only the scene of this name, for example bench or sheet")
     parser.add_argument("--scale", type=int, default=0, help="only this scale, 1 or 2, in this process")
     asked = parser.parse_args(arguments)
     asked.out_dir.mkdir(parents=True, exist_ok=True)
@@ -30,13 +31,13 @@ def main(arguments: list[str] | None = None) -> int:
         from blendapp.desk.scenes import take_all
 
         with tempfile.TemporaryDirectory() as folder:
-            take_all(asked.out_dir, asked.workbook, asked.price_list, Path(folder), asked.scale)
+            take_all(asked.out_dir, asked.workbook, asked.price_list, Path(folder), asked.scale, asked.only)
         return 0
     for scale in SCALES:
         environment = {**os.environ, "QT_QPA_PLATFORM": "offscreen", "QT_SCALE_FACTOR": str(scale)}
         command = [
             sys.executable, "-m", "blendapp.desk.pictures", str(asked.out_dir), "--workbook", str(asked.workbook),
-            "--price-list", str(asked.price_list), "--scale", str(scale),
+            "--price-list", str(asked.price_list), "--scale", str(scale), "--only", asked.only,
         ]
         done = subprocess.run(command, env=environment, check=False)
         if done.returncode:

@@ -50,8 +50,8 @@ class Studio:
             widget.grab().save(str(self.out_dir / f"{name}-{scheme}-{self.scale}00.png"))
 
 
-def take_all(out_dir: Path, workbook: Path, price_list: Path, folder: Path, scale: int) -> None:
-    """Every scene of the window at one scale."""
+def take_all(out_dir: Path, workbook: Path, price_list: Path, folder: Path, scale: int, only: str = "") -> None:
+    """Every scene of the window at one scale, or only one of them."""
     studio = Studio(out_dir, scale)
     settings = QSettings(str(folder / "settings.ini"), QSettings.Format.IniFormat)
     frame = Frame()
@@ -67,7 +67,10 @@ def take_all(out_dir: Path, workbook: Path, price_list: Path, folder: Path, scal
     mill.close()
     bench.start(str(path))
     frame.activateWindow()
-    for scene in (_bench, _hands, _wide, _forms, _faults, _finding, _formulas, _prices, _sheet, _mill):
+    scenes = (_bench, _hands, _wide, _forms, _faults, _finding, _formulas, _prices, _sheet, _mill)
+    for scene in scenes:
+        if only and scene.__name__ != f"_{only}":
+            continue
         scene(studio, bench, price_list)
         bench.to_bench()
         bench.strip.clear()

@@ -254,3 +254,14 @@ def test_buttons_fields_and_tables_have_names_for_a_screen_reader(bench: Bench) 
         and not isinstance(widget.parent(), QComboBox | QLineEdit)
     ]
     assert not nameless, nameless
+
+
+def test_the_keyboard_goes_back_to_where_it_was_when_the_finder_closes(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, 2, "price")
+    hands.key(Qt.Key.Key_K, CONTROL)
+    hands.key(Qt.Key.Key_Escape)
+    assert bench.have.table.has_keyboard()
+    hands.key(Qt.Key.Key_L, CONTROL)
+    hands.write("fin")
+    hands.key(Qt.Key.Key_Return)
+    assert bench.have.table.has_keyboard()

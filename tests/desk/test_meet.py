@@ -171,3 +171,19 @@ def test_a_conflict_shows_no_figures_and_says_so(bench: Bench, hands: Hands) -> 
     assert all(line.amount == "" and line.cost == "" for line in bench.mix.model.lines)
     index = bench.meet.model.cell(PROTEIN, "now")
     assert index.data() == ""
+
+
+def test_what_a_limit_is_about_and_its_unit_are_changed_as_one_undo(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.meet.table, CALCIUM, "name")
+    hands.key(Qt.Key.Key_Return)
+    adding = bench.meet.adding
+    assert adding.name.text() == "Calcium"
+    adding.unit.setCurrentText("g/kg")
+    adding.minimum.setText("8")
+    adding.maximum.setText("12")
+    adding.add()
+    limit = bench.work.library.limit(CALCIUM)
+    assert (limit.unit, limit.minimum, limit.maximum) == ("g/kg", 8, 12)
+    bench.work.undo()
+    limit = bench.work.library.limit(CALCIUM)
+    assert (limit.unit, limit.minimum, limit.maximum) == ("", 0.8, 1.2)

@@ -8,6 +8,7 @@ from PySide6.QtCore import Qt
 from PySide6.QtGui import QKeyEvent, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QLineEdit, QPushButton, QVBoxLayout, QWidget
 
+from blendapp.desk.finder.focus import Return
 from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.theme import GAP_PX, text_font, tokens
 from blendapp.domain.problems import Refused
@@ -22,6 +23,7 @@ class Ask(QFrame):
     def __init__(self, window: QWidget) -> None:
         super().__init__(window)
         self.inside = window
+        self._return = Return()
         self._take: Callable[[str], object] = str
         self.title = QLabel()
         self.title.setFont(text_font(strong=True))
@@ -53,6 +55,7 @@ class Ask(QFrame):
 
     def open(self, title: str, begin: str, go: str, take: Callable[[str], object], hint: str = "") -> None:
         """Ask for a text. take: what is done with it; where it raises Refused or ValueError the panel says so."""
+        self._return.remember(self)
         self._take = take
         self.title.setText(title)
         self.field.setAccessibleName(title)
@@ -83,11 +86,12 @@ class Ask(QFrame):
             self._lay()
             self.field.setFocus()
             return
-        self.hide()
+        self.leave()
 
     def leave(self) -> None:
-        """Go away without an answer."""
+        """Go away."""
         self.hide()
+        self._return.give_back()
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape:

@@ -28,6 +28,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from blendapp.desk.finder.focus import Return
 from blendapp.desk.finder.search import Found, best
 from blendapp.desk.table.roles import ACCESSIBLE_TEXT, DISPLAY
 from blendapp.desk.theme import ROW_PX, tokens
@@ -95,6 +96,7 @@ class Finder(QFrame):
     def __init__(self, window: QWidget) -> None:
         super().__init__(window)
         self.inside = window
+        self._return = Return()
         self.things: list[Found] = []
         self.field = QLineEdit()
         self.field.setAccessibleName(_("Find"))
@@ -124,6 +126,7 @@ class Finder(QFrame):
 
     def open(self, things: Sequence[Found], prompt: str, below: QWidget | None = None) -> None:
         """Offer things; below: a button under which the panel stands, else it is centred."""
+        self._return.remember(self)
         self.things = list(things)
         self.field.setPlaceholderText(prompt)
         self.field.clear()
@@ -143,8 +146,7 @@ class Finder(QFrame):
     def leave(self) -> None:
         """Close without running anything."""
         if self.isVisible():
-            self.hide()
-            self.closed.emit()
+            self._shut()
 
     def _narrow(self, typed: str) -> None:
         self.found.show(best(self.things, typed))
@@ -154,9 +156,13 @@ class Finder(QFrame):
     def _run(self, index: QModelIndex) -> None:
         if index.isValid():
             chosen = self.found.found[index.row()]
-            self.hide()
-            self.closed.emit()
+            self._shut()
             chosen.run()
+
+    def _shut(self) -> None:
+        self.hide()
+        self._return.give_back()
+        self.closed.emit()
 
     def eventFilter(self, watched: QObject, event: QEvent) -> bool:
         if watched is self.field and event.type() == QEvent.Type.KeyPress and isinstance(event, QKeyEvent):

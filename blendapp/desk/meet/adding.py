@@ -1,6 +1,8 @@
-"""The form that adds a limit: inside the zone, never modal, each error under the field it belongs to."""
+"""The form that adds or changes a limit: inside the zone, never modal, each error under the field it belongs to."""
 
 from __future__ import annotations
+
+from typing import Any
 
 from PySide6.QtCore import QStringListModel, Qt, Signal
 from PySide6.QtGui import QKeyEvent
@@ -12,15 +14,15 @@ from blendapp.desk.meet.words import kind_word
 from blendapp.desk.shell.zone import INSET_PX
 from blendapp.desk.theme import GAP_PX
 from blendapp.desk.work import Work
-from blendapp.domain.formulas import Amounts, LimitKind
+from blendapp.domain.formulas import Amounts, Limit, LimitBasis, LimitKind, write_basis
+from blendapp.domain.notation import notation
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _
 from blendapp.services import edits
-from blendapp.services.mill import Edit
 
 
 class AddLimit(QWidget):
-    """added: the identifier of the new limit. closed: the form went away."""
+    """added: the identifier of the new or changed limit. closed: the form went away."""
 
     added = Signal(int)
     closed = Signal()
@@ -28,6 +30,7 @@ class AddLimit(QWidget):
     def __init__(self, work: Work) -> None:
         super().__init__()
         self.work = work
+        self._changing: Limit | None = None
         self.kind = Choice()
         self.name = QLineEdit()
         self.per = QLineEdit()
@@ -99,6 +102,8 @@ class AddLimit(QWidget):
         ):
             self.basis.addItem(words, plain)
         self.basis.setEditable(True)
+        self._changing = None
+        self.go.setText(_("Add"))
         self.kind.setCurrentIndex(self.kind.findData(kind))
         self.name.setText(name)
         for field in (self.per, self.minimum, self.maximum):
@@ -107,6 +112,23 @@ class AddLimit(QWidget):
         self._kind_changed()
         self.show()
         (self.minimum if name else self.name).setFocus()
+
+    def begin_change(self, limit: Limit) -> None:
+        """Open the form on a limit, to change what it is about, its unit or its basis."""
+        library = self.work.library
+        self.begin(limit.kind, library.subject_name(limit.subject))
+        self._changing = limit
+        self.go.setText(_("Change"))
+        if limit.per is not None:
+            self.per.setText(library.subject_name(limit.per))
+        self.minimum.setText(notation().write_short(limit.minimum))
+        self.maximum.setText(notation().write_short(limit.maximum))
+        basis = write_basis(limit.basis, limit.at_dry_matter_percent)
+        at = self.basis.findData(basis)
+        self.basis.setCurrentText(basis if at < 0 else self.basis.itemText(at))
+        self._fill_units()
+        self.unit.setCurrentText(limit.unit or self.unit.itemText(0))
+        self.name.setFocus()
 
     def close_form(self) -> None:
         """Leave without adding."""
@@ -177,11 +199,17 @@ class AddLimit(QWidget):
                 self.work.library, kind, self.name.text(), self.per.text(), self.chosen_basis(),
                 self.unit.currentText(), self.minimum.text(), self.maximum.text(),
             )
-            edit: Edit = self.work.do(lambda mill: edits.add_limit(mill, formula.id, kind, subject, **fields))
+            old = self._changing
+            if old is None:
+                edit = self.work.do(lambda mill: edits.add_limit(mill, formula.id, kind, subject, **fields))
+            else:
+                blank: dict[str, Any] = {"per": None, "basis": LimitBasis.AS_FED, "at_dry_matter_percent": None}
+                wanted = {**blank, **fields, "kind": kind, "subject": subject}
+                edit = self.work.do(lambda mill: edits.change(mill, old, **wanted))
         except (Refused, ValueError) as fault:
             problems = fault.problems if isinstance(fault, Refused) else None
             self.fault.setText(" ".join(one.text for one in problems) if problems else str(fault))
             self.fault.show()
             return
         self.hide()
-        self.added.emit(edit.changes[0].id)
+        self.added.emit(old.id if old is not None else edit.changes[0].id)

@@ -76,6 +76,8 @@ class MeetPane(QWidget):
         table.cleared.connect(self._clear)
         table.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
         table.customContextMenuRequested.connect(self._offer)
+        table.asked.connect(self._change_asked)
+        table.doubleClicked.connect(self._change_asked)
         self.adding.added.connect(self._added)
         self.adding.closed.connect(self.table.setFocus)
         self.about.closed.connect(self.table.setFocus)
@@ -224,6 +226,11 @@ class MeetPane(QWidget):
         key = "maximum" if limit is not None and limit.minimum is None and limit.maximum is not None else "minimum"
         self.table.go_to(limit_id, key)
 
+    def _change_asked(self, index: QModelIndex) -> None:
+        limit = self.model.limit(self.model.owner(index)) if index.isValid() else None
+        if limit is not None and self.model.key(index) == "name":
+            self.adding.begin_change(limit)
+
     def _offer(self, point: QPoint) -> None:
         index: QModelIndex = self.table.indexAt(point)
         if index.isValid():
@@ -236,6 +243,7 @@ class MeetPane(QWidget):
         limit = self.model.limit(owner)
         if limit is not None:
             name = self.work.library.subject_name(limit.subject)
+            menu.addAction(_("Change what it is about, its unit or basis"), lambda: self.adding.begin_change(limit))
             menu.addAction(_("Remove the limit on {name}").format(name=name), lambda: self.remove(owner))
         return menu
 

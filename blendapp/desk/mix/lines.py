@@ -105,6 +105,13 @@ def _mix(result: Result, opened_ids: frozenset[int]) -> list[Line]:
     else:
         text = _("{kg} kg per day costs").format(kg=notation().write(total, 2))
     lines.append(Line(Part.TOTAL, text, cost=_cost(result, result.cost), share=notation().write(100, 1)))
+    if result.status is Status.STOPPED:
+        gap = "" if result.gap is None else notation().write(100 * result.gap, 2)
+        known = _("Time was up: this is the best mix found, and the cheapest may cost up to {gap} % less.")
+        text = known if gap else _("Time was up: this is the best mix found; a cheaper one may exist.")
+        lines.append(Line(Part.CAUTION, text.format(gap=gap)))
+    if result.given_ingredients:
+        lines.append(Line(Part.SENTENCE, _("What limits cost is worked out for these ingredients only.")))
     if result.tie:
         lines.append(Line(Part.SENTENCE, result.tie))
     return lines

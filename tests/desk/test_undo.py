@@ -1,0 +1,140 @@
+"""Everything that the window can change, done, undone and redone, gives equal records each time."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any
+
+import pytest
+from PySide6.QtWidgets import QApplication
+
+from blendapp.desk.bench import Bench
+from blendapp.desk.rail.geometry import End
+from blendapp.domain.formulas import Admits, Animal, LimitKind
+from blendapp.services import workbook
+
+
+def typed(key: str, text: str, owner: int = 1) -> Callable[[Bench, Path], None]:
+    def do(bench: Bench, _folder: Path) -> None:
+        column_set = "composition" if key.startswith("nutrient") or key == "dry_matter_percent" else (
+            "prices" if key in ("price", "quoted", "stock_kg") else "keeping")
+        bench.have.show_set(column_set)
+        assert bench.have.model.setData(bench.have.model.cell(owner, key), text)
+
+    return do
+
+
+def asked(run: str, answer: str) -> Callable[[Bench, Path], None]:
+    def do(bench: Bench, _folder: Path) -> None:
+        bench.commands.run(run)
+        bench.ask.field.setText(answer)
+        bench.ask.take()
+        assert not bench.ask.isVisible()
+
+    return do
+
+
+def paste(bench: Bench, _folder: Path) -> None:
+    QApplication.clipboard().setText("201\t\t5\n421\t\t6")
+    bench.have.table.go_to(1, "price")
+    bench.have.table.paste()
+
+
+def add_limit(bench: Bench, _folder: Path) -> None:
+    bench.meet.adding.begin(LimitKind.GROUP, "Maize + Peas")
+    bench.meet.adding.maximum.setText("95")
+    bench.meet.adding.add()
+
+
+def take_prices(bench: Bench, folder: Path) -> None:
+    path = folder / "list.csv"
+    path.write_text("Ingredient,Price,Unit\nMaize,210,t\nPeas,300,t\n")
+    bench.bring_in_prices(path)
+    bench.prices.apply()
+
+
+def bring_in_workbook(bench: Bench, folder: Path) -> None:
+    path = folder / "library.xlsx"
+    workbook.export_workbook(bench.work.library, path, bench.work.on)
+    bench.have.remove(4)
+    bench.files.ask_open = lambda _title, _kinds: str(path)
+    bench.commands.run("import")
+
+
+def scale(change: Callable[[Bench], Any]) -> Callable[[Bench, Path], None]:
+    def do(bench: Bench, _folder: Path) -> None:
+        bench.show_mill()
+        change(bench)
+
+    return do
+
+
+def change_scale(bench: Bench) -> None:
+    model = bench.mill.model("scale")
+    assert model.setData(model.cell(1, "step_kg"), "2")
+
+
+ACTIONS: dict[str, Callable[[Bench, Path], Any]] = {
+    "a price": typed("price", "233"),
+    "a price as quoted": typed("quoted", "21 / 100 kg"),
+    "a price withdrawn": typed("price", ""),
+    "stock": typed("stock_kg", "1200"),
+    "a name": typed("name", "Yellow maize"),
+    "a class": typed("class_name", "Cereal"),
+    "tags": typed("tags", "only when listed, medicated"),
+    "a scale of an ingredient": typed("scale_id", ""),
+    "dry matter": typed("dry_matter_percent", "88.5"),
+    "a value": typed("nutrient 1", "9.2 DM"),
+    "a value forgotten": typed("nutrient 1", ""),
+    "a pasted block": paste,
+    "cells cleared": lambda bench, _folder: bench.have._clear([(1, "price"), (2, "price"), (2, "stock_kg")]),
+    "a price dragged": lambda bench, _folder: bench.have._give((1, "holds"), End.MARK, 222.0),
+    "an ingredient added": lambda bench, _folder: bench.have.add_ingredient(),
+    "an ingredient removed": lambda bench, _folder: bench.have.remove(4),
+    "an ingredient admitted": lambda bench, _folder: bench.have.admit(2),
+    "an ingredient off the list": lambda bench, _folder: bench.have.unlist(1),
+    "a nutrient added": asked("add nutrient", "Copper (mg/kg)"),
+    "a nutrient that may be negative": lambda bench, _folder: bench.records.turn_never_negative(2),
+    "a nutrient removed": lambda bench, _folder: bench.records.remove_nutrient(2),
+    "a bound": lambda bench, _folder: bench.meet.model.setData(bench.meet.model.cell(1, "minimum"), "18"),
+    "a bound opened": lambda bench, _folder: bench.meet._clear([(1, "maximum")]),
+    "a bound dragged": lambda bench, _folder: bench.meet._give((1, "rail"), End.MINIMUM, 20.0),
+    "a limit added": add_limit,
+    "a limit removed": lambda bench, _folder: bench.meet.remove(2),
+    "a formula made": asked("new formula", "Starter"),
+    "a formula copied": asked("copy formula", "Grower 2"),
+    "a formula renamed": asked("rename formula", "Grower for spring"),
+    "a formula removed": lambda bench, _folder: bench.commands.run("remove formula"),
+    "what a formula is for": lambda bench, _folder: bench.meet.about._set(animal=Animal.PIG, admits=Admits.LISTED),
+    "the mill": lambda bench, _folder: bench.mill._set(name="Hill mill", ton_means="short ton"),
+    "a scale added": scale(lambda bench: bench.mill.add("scale")),
+    "a mixer added": scale(lambda bench: bench.mill.add("mixer")),
+    "a scale changed": scale(change_scale),
+    "a price list": take_prices,
+    "a workbook": bring_in_workbook,
+}
+
+
+def records(bench: Bench) -> dict[str, dict[int, Any]]:
+    return {kind: dict(found) for kind, found in bench.work.library.records.items()}
+
+
+@pytest.mark.parametrize("name", ACTIONS)
+def test_what_is_done_is_undone_and_redone_whole(bench: Bench, tmp_path: Path, name: str) -> None:
+    before = records(bench)
+    entries = len(bench.work.mill.store.entries())
+    ACTIONS[name](bench, tmp_path)
+    after = records(bench)
+    assert after != before, "the action changed nothing"
+    steps = len(bench.work.mill.store.entries()) - entries
+    assert steps == (2 if name == "a workbook" else 1)
+    for _step in range(steps):
+        bench.work.undo()
+    assert records(bench) == before
+    for _step in range(steps):
+        bench.work.redo()
+    assert records(bench) == after
+    # The file holds what the window holds.
+    stored = bench.work.mill.store.read_all()
+    assert {kind: {one.id: one for one in found} for kind, found in stored.items()} == after
