@@ -61,17 +61,17 @@ def rule() -> str:
     )
 
 
+def _valid(quote: Quote, on: datetime.date, site_id: int | None) -> bool:
+    return (
+        (quote.site_id is None or quote.site_id == site_id)
+        and (quote.valid_from is None or quote.valid_from <= on)
+        and (quote.valid_to is None or quote.valid_to >= on)
+    )
+
+
 def in_force(quotes: Iterable[Quote], on: datetime.date, site_id: int | None = None) -> Quote | None:
     """The quote in force on a day at a site (None: the whole mill), or None. The rule is that of rule()."""
-    best: Quote | None = None
-    best_rank: tuple[bool, datetime.date, int] | None = None
-    for quote in quotes:
-        if quote.site_id is not None and quote.site_id != site_id:
-            continue
-        first = quote.valid_from or datetime.date.min
-        if first > on or (quote.valid_to is not None and quote.valid_to < on):
-            continue
-        rank = (quote.site_id is not None, first, quote.id)
-        if best_rank is None or rank > best_rank:
-            best, best_rank = quote, rank
-    return best
+    valid = [quote for quote in quotes if _valid(quote, on, site_id)]
+    if len(valid) < 2:
+        return valid[0] if valid else None
+    return max(valid, key=lambda quote: (quote.site_id is not None, quote.valid_from or datetime.date.min, quote.id))

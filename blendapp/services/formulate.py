@@ -149,7 +149,7 @@ def _none(
     unknown: Sequence[UnknownValue],
 ) -> Result:
     said = cautions.warnings(built.formula, library, (), unknown)
-    return answer.without_answer(library, built.formula, on, status, cause, built, unknown, said)
+    return answer.without_answer(library, built, on, status, cause, unknown, said)
 
 
 def _why_infeasible(

@@ -9,8 +9,8 @@ from typing import Any
 
 import numpy as np
 
-from blendapp.domain import limit_units, units
-from blendapp.domain.formulas import Amounts, Formula, Limit, LimitKind, SubjectKind, write_basis
+from blendapp.domain import units
+from blendapp.domain.formulas import Amounts, Limit, LimitKind, SubjectKind
 from blendapp.domain.library import Library
 from blendapp.domain.results import (
     Check,
@@ -22,6 +22,7 @@ from blendapp.domain.results import (
     Status,
     UnknownValue,
 )
+from blendapp.optimise.build.composition import Shown
 from blendapp.optimise.build.formula import FormulaProgram
 from blendapp.optimise.program import Array
 from blendapp.optimise.sensitivity import LimitPrices, Sensitivity
@@ -32,15 +33,11 @@ _DUST = 1e-12
 
 
 def without_answer(
-    library: Library, formula: Formula, on: datetime.date, status: Status, cause: str | None,
-    built: FormulaProgram | None, unknown: Sequence[UnknownValue] = (), cautions: Sequence[str] = (),
+    library: Library, built: FormulaProgram, on: datetime.date, status: Status, cause: str | None,
+    unknown: Sequence[UnknownValue] = (), cautions: Sequence[str] = (),
 ) -> Result:
     """A result that shows no figure which could be read as an answer."""
-    limits = library.limits(formula.id)
-    ingredients = () if built is None else tuple(
-        IngredientResult(i.id, i.name, float(price))
-        for i, price in zip(built.ingredients, built.price_per_t, strict=True)
-    )
+    formula = built.formula
     return Result(
         formula_id=formula.id,
         formula=formula.name,
@@ -48,10 +45,13 @@ def without_answer(
         status=status,
         currency=library.mill.currency,
         on=on,
-        ingredients=ingredients,
-        limits=tuple(limit_result(library, formula, index, limit) for index, limit in enumerate(limits)),
+        ingredients=tuple(
+            IngredientResult(i.id, i.name, price)
+            for i, price in zip(built.ingredients, built.price_per_t.tolist(), strict=True)
+        ),
+        limits=tuple(limit_result(index, shown) for index, shown in enumerate(built.shown)),
         nutrients=(),
-        unpriced=() if built is None else tuple(i.name for i in built.unpriced),
+        unpriced=tuple(i.name for i in built.unpriced),
         unknown=tuple(unknown),
         cautions=tuple(cautions),
         cause=cause,
@@ -86,11 +86,8 @@ def answered(
             )
         ),
         limits=tuple(
-            limit_result(
-                library, formula, index, limit,
-                **_figures(limit, factor, solution.limits.get(index), worth.get(index)),
-            )
-            for index, (limit, factor) in enumerate(zip(built.limits, built.factors, strict=True))
+            limit_result(index, one, **_figures(one.limit, one.factor, solution.limits.get(index), worth.get(index)))
+            for index, one in enumerate(built.shown)
         ),
         nutrients=nutrients_of(library, built, x),
         unpriced=tuple(i.name for i in built.unpriced),
@@ -103,18 +100,11 @@ def answered(
     )
 
 
-def limit_result(library: Library, formula: Formula, index: int, limit: Limit, **figures: Any) -> LimitResult:
+def limit_result(index: int, shown: Shown, **figures: Any) -> LimitResult:
     """A limit as displayed; figures: the fields of LimitResult that an answer adds."""
+    limit = shown.limit
     return LimitResult(
-        index=index,
-        limit_id=limit.id,
-        kind=limit.kind,
-        name=library.subject_name(limit.subject),
-        per=None if limit.per is None else library.subject_name(limit.per),
-        basis=write_basis(limit.basis, limit.at_dry_matter_percent) if limit.kind is LimitKind.NUTRIENT else None,
-        unit=limit_units.shown_unit(library, limit, formula.amounts),
-        minimum=limit.minimum,
-        maximum=limit.maximum,
+        index, limit.id, limit.kind, shown.name, shown.per, shown.basis, shown.unit, limit.minimum, limit.maximum,
         **figures,
     )
 

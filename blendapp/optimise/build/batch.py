@@ -42,8 +42,8 @@ def limits_of(
         if limit.kind is LimitKind.PRACTICAL:
             values[index] = float(sum(x[j] for j, i in enumerate(built.ingredients) if i.id == limit.subject.ids[0]))
     return tuple(
-        _placed(limit_result(library, built.formula, index, limit), value, factor, index in broken)
-        for index, (limit, value, factor) in enumerate(zip(built.limits, values, built.factors, strict=True))
+        _placed(limit_result(index, shown), value, shown.factor, index in broken)
+        for index, (shown, value) in enumerate(zip(built.shown, values, strict=True))
     )
 
 

@@ -8,13 +8,13 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from blendapp.domain import limit_units, units
+from blendapp.domain import units
 from blendapp.domain.formulas import Amounts, Formula, Limit, LimitBasis, LimitKind, Subject, SubjectKind
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
 from blendapp.domain.nutrients import DRY_MATTER, MOISTURE
 from blendapp.domain.results import UnknownValue
-from blendapp.optimise.build.composition import Composition
+from blendapp.optimise.build.composition import Composition, Shown
 from blendapp.optimise.program import Array, Bound, Count, Program, Row
 
 
@@ -23,8 +23,9 @@ class FormulaProgram:
     """A program with what is needed to turn its solution back into a domain result.
 
     ingredients: one per column; price_per_t: shape (n,), NaN for an ingredient without a price (only in a program
-    built with the unpriced ones). factors: for each limit, displayed bound times factor is the bound in the program.
-    composition: shape (n, nutrients), as fed in base units, NaN unknown; dry: shape (n,), NaN unknown.
+    built with the unpriced ones). shown: what is displayed of each limit. factors: for each limit, displayed bound
+    times factor is the bound in the program. composition: shape (n, nutrients), as fed in base units, NaN unknown;
+    dry: shape (n,), NaN unknown.
     """
 
     program: Program
@@ -32,6 +33,7 @@ class FormulaProgram:
     ingredients: tuple[Ingredient, ...]
     price_per_t: Array
     limits: tuple[Limit, ...]
+    shown: tuple[Shown, ...]
     factors: tuple[float, ...]
     composition: Array
     dry: Array
@@ -62,7 +64,8 @@ def build(
     dry = np.array([np.nan if (d := i.dry_matter_fraction) is None else d for i in ingredients], dtype=float)
     matrix = composition.matrix(library, ingredients)
     limits = tuple(library.limits(formula.id))
-    factors = tuple(limit_units.factor(library, limit, formula.amounts) for limit in limits)
+    shown = tuple(composition.shown(library, formula, limit) for limit in limits)
+    factors = tuple(one.factor for one in shown)
     blend = formula.amounts is Amounts.BLEND
     cost = np.nan_to_num(price_per_t) * (1.0 if blend else 1e-3)
     maker = _Maker(library, formula, ingredients, np.nan_to_num(matrix), dry, composition.columns)
@@ -81,7 +84,7 @@ def build(
         names=tuple(i.name for i in ingredients),
     )
     return FormulaProgram(
-        program, formula, ingredients, price_per_t, limits, factors, matrix, dry, composition.columns, unpriced
+        program, formula, ingredients, price_per_t, limits, shown, factors, matrix, dry, composition.columns, unpriced
     )
 
 
