@@ -42,7 +42,7 @@ class Batch:
     None. residue_kg: target total less batch_kg. number: of the sheet once it was printed, None before. unproven: the
     first aim ("total", "limits", "deviation" or "cost", in this order) in which a better batch may exist, "" where
     none does; gap: by how much it could at most be better (kg, limits, sum of relative deviations, money), else None.
-    draft: whether the formula stood otherwise than it was approved, or never was; approved_by: else name, capacity, day.
+    draft: whether the formula stood otherwise than approved, or never was; approved_by: else name, capacity and day.
     """
 
     formula_id: int

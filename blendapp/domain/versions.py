@@ -294,12 +294,18 @@ def forbidden(changes: Iterable[Change], standing: Callable[[int], FormulaVersio
     """Why an edit may not be made because it changes what was approved, in a sentence, or None.
 
     standing: the version of an identifier as it was before the edit. Of an approved version nothing may change but
-    that it becomes superseded; of its acknowledgements nothing, and none may come.
+    that it becomes superseded; of its acknowledgements nothing, and none may come. No version goes, not even a draft,
+    so that a gap among them shows.
     """
     for change in changes:
-        if change.kind == "version" and change.before is not None and not _may_become(change.before, change.after):
-            text = _("Version {number} was approved and never changes; edit the formula and prepare a new version.")
-            return text.format(number=change.before.number)
+        if change.kind == "version" and change.before is not None:
+            number = change.before.number
+            if change.after is None:
+                text = _("Version {number} is on record and never goes; prepare its formula anew instead.")
+                return text.format(number=number)
+            if not _may_become(change.before, change.after):
+                text = _("Version {number} was approved and never changes; edit the formula and prepare a new version.")
+                return text.format(number=number)
         if change.kind == "acknowledgement":
             for record in (change.before, change.after):
                 version = None if record is None else standing(record.version_id)
@@ -309,7 +315,7 @@ def forbidden(changes: Iterable[Change], standing: Callable[[int], FormulaVersio
     return None
 
 
-def _may_become(before: FormulaVersion, after: FormulaVersion | None) -> bool:
+def _may_become(before: FormulaVersion, after: FormulaVersion) -> bool:
     if before.state is VersionState.DRAFT:
         return True
     return before.state is VersionState.APPROVED and after == replace(before, state=VersionState.SUPERSEDED)

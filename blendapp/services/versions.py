@@ -71,6 +71,15 @@ def standing(
     return Standing(version.number, False, version_text(version), approval_text(version), texts)
 
 
+def altered(mill: Mill) -> list[str]:
+    """What to say when a mill is opened: every version that other hands have changed or taken out, a sentence each."""
+    found = [one.text for one in alterations(mill.library)]
+    last = max(mill.library.records["version"], default=0)
+    if mill.store.next_ids()["version"] != last + 1:
+        found.append(_("The last version on record was taken out of the file outside this program."))
+    return found
+
+
 def current_version(library: Library, formula_id: int, on: datetime.date | None = None) -> str:
     """ "version 3" where a formula stands as it was approved, else "draft 4"."""
     return standing(library, formula_id, on).text

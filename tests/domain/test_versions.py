@@ -178,7 +178,7 @@ def test_only_superseding_may_change_an_approved_version() -> None:
     standing = held.records["version"].get
     one, two, draft = (held.records["version"][key] for key in (103, 102, 104))
     allowed = [
-        Change(one, replace(one, state=SUPERSEDED)), Change(draft, replace(draft, snapshot="[]")), removed(draft),
+        Change(one, replace(one, state=SUPERSEDED)), Change(draft, replace(draft, snapshot="[]")),
         Change(draft, replace(draft, state=APPROVED, seal="x")), added(replace(draft, id=5, number=5)),
         added(Acknowledgement(9, 104, "c", "r", 1, MOMENT)), added(Acknowledgement(9, 555, "c", "r", 1, MOMENT)),
     ]
@@ -186,8 +186,9 @@ def test_only_superseding_may_change_an_approved_version() -> None:
         assert versions.forbidden([some], standing) is None, some
     taken = held.records["acknowledgement"][1031]
     refused = [
-        removed(one), removed(two), Change(one, replace(one, state=DRAFT)), Change(two, replace(two, state=APPROVED)),
-        Change(one, replace(one, state=SUPERSEDED, note="more")), removed(taken),
+        removed(draft), removed(one), removed(two), removed(taken), Change(one, replace(one, state=DRAFT)),
+        Change(two, replace(two, state=APPROVED)),
+        Change(one, replace(one, state=SUPERSEDED, note="more")),
         Change(taken, replace(taken, by="Eve")),
         *(Change(one, replace(one, **{name: value})) for name, value in OTHER.items() if name != "id"),
         added(Acknowledgement(9, 103, "c", "r", 1, MOMENT)), Change(taken, replace(taken, version_id=104)),
@@ -195,4 +196,4 @@ def test_only_superseding_may_change_an_approved_version() -> None:
     for some in refused:
         sentence = versions.forbidden([*allowed, some], standing)
         assert sentence is not None, some
-        assert "never changes" in sentence
+        assert "never" in sentence

@@ -67,7 +67,8 @@ def records() -> list[Record]:
             LimitBasis.AT_DRY_MATTER, 88.0, "kept",
         ),
         FormulaVersion(
-            1, 1, 1, VersionState.APPROVED, "{}", MOMENT, "Ann", 1, MOMENT, "Ann Miller", 1, "nutritionist", "n", "ab" * 32
+            1, 1, 1, VersionState.APPROVED, "{}", MOMENT, "Ann", 1, MOMENT, "Ann Miller", 1, "nutritionist", "n",
+            "ab" * 32,
         ),
         Acknowledgement(1, 1, "unknown lysine", "known to be low", 1, MOMENT, "Ann Miller"),
         PrintedBatch(1, 1, 1, "1", 2000.0, MOMENT, "Ann", sheet='{"lines": []}', copies=1),
