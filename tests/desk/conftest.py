@@ -69,7 +69,10 @@ def empty_bench(qapp: QApplication, tmp_path: Path) -> Iterator[Bench]:
     bench = Bench(frame, QSettings(str(tmp_path / "settings.ini"), QSettings.Format.IniFormat))
     testers = [
         QAbstractItemModelTester(model, QAbstractItemModelTester.FailureReportingMode.Warning)
-        for model in (bench.have.model, bench.meet.model, bench.mix.model, bench.prices.rows, bench.finder.found)
+        for model in (
+            bench.have.model, bench.meet.model, bench.mix.model, bench.prices.rows, bench.finder.found,
+            *(bench.mill.model(kind) for kind in bench.mill.tables),
+        )
     ]
     frame.show()
     frame.activateWindow()

@@ -6,6 +6,7 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QApplication
 
 from blendapp.desk.bench import Bench
+from blendapp.services import edits
 from tests.desk.conftest import Hands
 
 MAIZE, SOY, LIMESTONE, PEAS = 1, 2, 3, 4
@@ -188,3 +189,17 @@ def test_headings_sort_and_unknown_prices_stand_last_both_ways(bench: Bench) -> 
     assert model.owners == [LIMESTONE, MAIZE, SOY, PEAS]
     bench.have._sort(section)
     assert model.owners == [SOY, MAIZE, LIMESTONE, PEAS]
+
+
+def test_removing_a_row_keeps_the_place_in_a_scrolled_table(bench: Bench) -> None:
+    for number in range(60):
+        bench.work.do(lambda mill, number=number: edits.add_ingredient(mill, f"Feed {number:02}"))
+    QApplication.processEvents()
+    bar = bench.have.table.verticalScrollBar()
+    bar.setValue(bar.maximum() // 2)
+    place = bar.value()
+    assert place > 0
+    bench.have.remove(bench.work.library.named("ingredient", "Feed 59").id)  # type: ignore[union-attr]
+    QApplication.processEvents()
+    assert bar.value() == place
+    assert bench.have.table.names.verticalScrollBar().value() == place

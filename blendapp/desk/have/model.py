@@ -49,7 +49,6 @@ class HaveModel(Grid):
 
     def rebuild(self) -> None:
         """Show what the mill holds now."""
-        self._take_decimals()
         self.set_headings(self._headings())
         wanted = fold(self.filter_text)
         shown = [
@@ -63,7 +62,7 @@ class HaveModel(Grid):
             shown.sort(key=lambda one: self._sort_value(one, key)[0])
         self.set_rows([one.id for one in shown])
 
-    def _take_decimals(self) -> None:
+    def take_decimals(self) -> None:
         """The decimals of each nutrient's column: none where values run into hundreds, three where all are small."""
         greatest: dict[int, float] = {}
         for value in self.work.library.records["value"].values():

@@ -95,8 +95,10 @@ class HavePane(QWidget):
 
     def _opened(self) -> None:
         self.model.refusals.clear()
+        self.model.take_decimals()
         self.model.rebuild()
         self._fit_name()
+        self.table.go_to_top()
 
     def show_set(self, key: str) -> None:
         """Show another set of columns."""
@@ -110,9 +112,11 @@ class HavePane(QWidget):
         table, model = self.table, self.model
         if model.column_set == PRICES and model.columnCount() > 6:
             wide = table.viewport().width() > WIDE_PX
-            table.setColumnWidth(2, 320 if wide else model.headings[2].width)
+            if not table.has_own_width("holds"):
+                table.setColumnWidth(2, 320 if wide else model.headings[2].width)
             shown = sum(table.columnWidth(at) for at in (1, 2, 3))
-            table.setColumnWidth(0, min(max(table.viewport().width() - shown, 110), 200))
+            if not table.has_own_width("name"):
+                table.setColumnWidth(0, min(max(table.viewport().width() - shown, 110), 200))
 
     def _narrow(self, text: str) -> None:
         self.model.filter_text = text
@@ -129,6 +133,8 @@ class HavePane(QWidget):
         self.model.rebuild()
 
     def _edited(self, edit: Edit) -> None:
+        if edit.touches("nutrient"):
+            self.model.take_decimals()
         if edit.touches("ingredient", "nutrient", "mill", "scale", "formula"):
             self._keep(self.model.rebuild)
         else:

@@ -88,6 +88,7 @@ class MeetPane(QWidget):
         self.adding.hide()
         self.model.refusals.clear()
         self.model.rebuild()
+        self.table.go_to_top()
         self._say()
 
     def _edited(self, edit: Edit) -> None:

@@ -66,7 +66,15 @@ class DeskTable(QTableView):
         self.setModel(model)
         self._dress()
         model.refused.connect(lambda index, _sentence: QTimer.singleShot(0, self, self._show_note))
+        self._widths: dict[str, int] = {}
+        self._scrolled = (0, 0)
+        model.modelAboutToBeReset.connect(self._keep_place)
         model.modelReset.connect(self._take_widths)
+        # After every view of the model has been reset, since one of them may scroll the others.
+        self._back = QTimer(self, singleShot=True, interval=0)
+        self._back.timeout.connect(self._go_back_to_place)
+        model.modelReset.connect(self._back.start)
+        self.horizontalHeader().sectionResized.connect(self._width_changed)
         self._take_widths()
 
     def _dress(self) -> None:
@@ -94,7 +102,30 @@ class DeskTable(QTableView):
 
     def _take_widths(self) -> None:
         for at, heading in enumerate(self.grid.headings):
-            self.setColumnWidth(at, heading.width)
+            self.setColumnWidth(at, self._widths.get(heading.key, heading.width))
+
+    def _width_changed(self, section: int, _old: int, new: int) -> None:
+        """Remember a width that the person has drawn, so that no change of rows takes it back."""
+        if QGuiApplication.mouseButtons() & Qt.MouseButton.LeftButton and section < len(self.grid.headings):
+            self._widths[self.grid.headings[section].key] = new
+
+    def has_own_width(self, key: str) -> bool:
+        """Whether the person has drawn a column to a width."""
+        return key in self._widths
+
+    def _keep_place(self) -> None:
+        if not self._back.isActive():
+            self._scrolled = (self.horizontalScrollBar().value(), self.verticalScrollBar().value())
+
+    def go_to_top(self) -> None:
+        """Show the first rows, also after a reset that is just under way."""
+        self._scrolled = (self._scrolled[0], 0)
+        self.scrollToTop()
+
+    def _go_back_to_place(self) -> None:
+        self.updateGeometries()
+        self.horizontalScrollBar().setValue(self._scrolled[0])
+        self.verticalScrollBar().setValue(self._scrolled[1])
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
