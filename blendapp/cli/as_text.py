@@ -34,6 +34,8 @@ def formula(result: Result) -> str:
         lines += _mix(result)
     if result.limits:
         lines += ["", *_limits(result)]
+    if result.tie:
+        lines += ["", f"  {result.tie}"]
     if result.unpriced:
         lines += ["", "  " + _("Left out for want of a price: {names}.").format(names=", ".join(result.unpriced))]
     lines += ["", *(f"  ! {caution}" for caution in result.cautions)]

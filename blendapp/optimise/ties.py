@@ -86,6 +86,11 @@ class _Set:
         return vertex.x
 
 
+def tied(solution: Solution) -> bool:
+    """Whether other amounts cost the same as an optimal solution."""
+    return _optimal_set(solution) is not None
+
+
 def settle(solution: Solution, reference: Array | None = None) -> Solution:
     """The same cost with the amounts that the tie rule chooses: the least sum of absolute changes from reference
     (shape (n,)) where given, then the largest amounts in the order of the columns.

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from blendapp.domain import cautions
 from blendapp.domain.formulas import Formula
@@ -21,6 +21,7 @@ from blendapp.optimise.program import Program
 from blendapp.optimise.sensitivity import sensitivity
 from blendapp.optimise.solution import Solution
 from blendapp.optimise.solve import solve
+from blendapp.services import equal_mixes
 
 
 class FailedCertificate(Exception):
@@ -86,7 +87,8 @@ def answer_to(
     if solution.x is None:
         cause = _("Time was up before any mix was found.")
         return Answer(_none(library, built, on, Status.STOPPED, cause, unknown), built)
-    result = _answer(library, built, on, solution, unknown, prices)
+    solution, tie = equal_mixes.settle(library, built, solution)
+    result = replace(_answer(library, built, on, solution, unknown, prices), tie=tie)
     return Answer(result, built, solution if result.has_answer else None)
 
 
