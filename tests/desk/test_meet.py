@@ -187,3 +187,13 @@ def test_what_a_limit_is_about_and_its_unit_are_changed_as_one_undo(bench: Bench
     bench.work.undo()
     limit = bench.work.library.limit(CALCIUM)
     assert (limit.unit, limit.minimum, limit.maximum) == ("", 0.8, 1.2)
+
+
+def test_space_says_in_a_sentence_what_a_working_wall_costs(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.meet.table, PROTEIN, "rail")
+    hands.key(Qt.Key.Key_Space)
+    note = bench.meet.table._note
+    assert note is not None
+    assert note.isVisible()
+    assert "Crude protein holds the mix" in note.text()
+    assert "USD" in note.text()

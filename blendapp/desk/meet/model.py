@@ -113,7 +113,16 @@ class MeetModel(Grid):
         return number_look(
             value, min(shown, 3), widest=max(self._widest, shown), strong=binds,
             stale=self.work.stale, unknown="", words=self._now_words(limit, value, decimals),
+            hint=self._sentence(limit, found, decimals),
         )
+
+    def _sentence(self, limit: Limit, found: LimitResult | None, decimals: int) -> str:
+        """What the price of a limit means, said wherever in its row one points."""
+        formula, result = self.work.formula, self.work.result
+        if found is None or formula is None or result is None:
+            return ""
+        name = words.limit_name(self.work.library, limit)
+        return words.price_sentence(found, name, decimals, result.currency, words.per_of(formula))
 
     def _name_look(self, limit: Limit, found: LimitResult | None, decimals: int) -> Look:
         formula = self.work.formula
@@ -121,10 +130,8 @@ class MeetModel(Grid):
         name = words.limit_name(self.work.library, limit)
         unit = words.limit_unit(self.work.library, limit, formula.amounts)
         hint = f"{name}, {unit} ({words.kind_word(limit.kind)})"
-        result = self.work.result
-        if found is not None and result is not None:
-            said = words.price_sentence(found, name, decimals, result.currency, words.per_of(formula))
-            hint = f"{hint}\n{said}" if said else hint
+        said = self._sentence(limit, found, decimals)
+        hint = f"{hint}\n{said}" if said else hint
         return Look(text=name, typed=name, unit=unit, hint=hint, words=f"{name}, {unit}, {words.kind_word(limit.kind)}")
 
     def _bound_look(self, limit: Limit, found: LimitResult | None, key: str, decimals: int) -> Look:
@@ -139,7 +146,8 @@ class MeetModel(Grid):
         name = words.limit_name(self.work.library, limit)
         if value is None:
             return Look(number=True, editable=editable, words=_("{name}, {side}: open").format(name=name, side=side))
-        plain = number_look(value, decimals, widest=self._widest, editable=editable, accent=working)
+        hint = self._sentence(limit, found, decimals)
+        plain = number_look(value, decimals, widest=self._widest, editable=editable, accent=working, hint=hint)
         return replace(plain, words=_("{name}, {side} {value}").format(name=name, side=side, value=plain.text))
 
     def _now_words(self, limit: Limit, value: float | None, decimals: int) -> str:
@@ -180,10 +188,7 @@ class MeetModel(Grid):
         if axis is None or not held:
             axis = self._axes[limit.id] = axis_for(state, axis)
         name = words.limit_name(self.work.library, limit)
-        formula, result = self.work.formula, self.work.result
-        hint = ""
-        if found is not None and formula is not None and result is not None:
-            hint = words.price_sentence(found, name, decimals, result.currency, words.per_of(formula))
+        hint = self._sentence(limit, found, decimals)
         return Look(rail=state, axis=axis, hint=hint, words=_("Rail of {name}. {tag}").format(name=name, tag=state.tag))
 
     def set_axis(self, owner: int, axis: Axis) -> None:

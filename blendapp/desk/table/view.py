@@ -256,6 +256,8 @@ class DeskTable(QTableView):
             return
         if index.isValid() and self._rail_key(index, event):
             return
+        if event.key() == Qt.Key.Key_Space and index.isValid() and self._tell(index):
+            return
         if event.matches(QKeySequence.StandardKey.Copy):
             self.copy()
         elif event.matches(QKeySequence.StandardKey.Paste):
@@ -373,6 +375,17 @@ class DeskTable(QTableView):
         if self._note is None:
             self._note = Note(self.window())
         self._note.beside(self.viewport(), self.cell_rect(index), look.fault)
+
+    def _tell(self, index: QModelIndex) -> bool:
+        """Show beside a cell what pointing at it would say; returns whether there is anything to say."""
+        look = self.grid.look(index.row(), index.column())
+        sentence = look.fault or look.hint
+        if not sentence:
+            return False
+        if self._note is None:
+            self._note = Note(self.window())
+        self._note.beside(self.viewport(), self.cell_rect(index), sentence)
+        return True
 
     def cell_rect(self, index: QModelIndex) -> QRect:
         """Where a cell is in the viewport."""
