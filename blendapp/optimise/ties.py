@@ -72,16 +72,15 @@ class _Set:
         rows = self.arrays.a[self.held][:, free]
         return bool(rows.shape[0] >= rows.shape[1] and np.linalg.matrix_rank(rows, tol=_MOVES) == rows.shape[1])
 
-    def best(self, cost: Array) -> Vertex:
-        """The optimum of a wish over the set."""
+    def grant(self, cost: Array) -> Array:
+        """Find the optimum of a wish, and shrink to it. A wish that never ends is turned round: what could grow for
+        ever at no cost is kept least."""
         status, vertex = optimum(self.arrays, cost=cost)
+        if status == "unbounded":
+            cost = -cost
+            status, vertex = optimum(self.arrays, cost=cost)
         if vertex is None:
             raise FailedSolve(f"among equally cheap mixes the next choice is {status}")
-        return vertex
-
-    def grant(self, cost: Array) -> Array:
-        """Find the optimum of a wish, and shrink to it."""
-        vertex = self.best(cost)
         self.shrink(vertex.x, vertex.y, cost)
         return vertex.x
 
@@ -93,7 +92,8 @@ def tied(solution: Solution) -> bool:
 
 def settle(solution: Solution, reference: Array | None = None) -> Solution:
     """The same cost with the amounts that the tie rule chooses: the least sum of absolute changes from reference
-    (shape (n,)) where given, then the largest amounts in the order of the columns.
+    (shape (n,)) where given, then the largest amounts in the order of the columns (the least of a column that could
+    grow for ever).
 
     A solution that is the only optimum, or no answer, comes back as it is. Of a mixed-integer one the choice of
     columns stays. Raises FailedSolve where the solver gives no clear status.
