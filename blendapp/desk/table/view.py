@@ -25,12 +25,12 @@ from PySide6.QtGui import (
     QPaintEvent,
     QResizeEvent,
 )
-from PySide6.QtWidgets import QAbstractItemView, QFrame, QHeaderView, QTableView, QWidget
+from PySide6.QtWidgets import QAbstractItemView, QFrame, QHeaderView, QWidget
 
 from blendapp.desk.rail.geometry import End, end_at
 from blendapp.desk.rail.grip import RailGrip
 from blendapp.desk.rail.paint import track_of
-from blendapp.desk.table.block import read_block, write_block
+from blendapp.desk.table.block_view import BlockTable
 from blendapp.desk.table.cell import CellDelegate, Here
 from blendapp.desk.table.grid import AnyIndex, Grid
 from blendapp.desk.table.note import Note
@@ -39,22 +39,18 @@ from blendapp.desk.theme import ROW_PX, tokens
 _ARROWS: dict[int, int] = {Qt.Key.Key_Left: -1, Qt.Key.Key_Right: 1}
 
 
-class DeskTable(QTableView):
+class DeskTable(BlockTable):
     """A table view of a Grid.
 
-    pasted: cells of a block as (owner, key, text), with the texts that fell outside the table. cleared: cells whose
-    content was deleted. asked: Enter on a cell that is not typed into. resized: the viewport has another size.
+    asked: Enter on a cell that is not typed into. resized: the viewport has another size.
     grip: moves the rails.
     """
 
-    pasted = Signal(list, list)
-    cleared = Signal(list)
     asked = Signal(QModelIndex)
     resized = Signal()
 
     def __init__(self, model: Grid, parent: QWidget | None = None, *, ruled: bool = True) -> None:
-        super().__init__(parent)
-        self.grid = model
+        super().__init__(model, parent)
         self.grip: RailGrip = RailGrip(self)
         self._chosen_end: End | None = None
         self._dragging = False
@@ -263,7 +259,7 @@ class DeskTable(QTableView):
         elif event.matches(QKeySequence.StandardKey.Paste):
             self.paste()
         elif event.key() in (Qt.Key.Key_Delete, Qt.Key.Key_Backspace) and index.isValid():
-            self.cleared.emit(self._selected_cells())
+            self.cleared.emit(self.selected_cells())
         elif event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter) and index.isValid():
             if self.grid.look(index.row(), index.column()).editable:
                 self.edit(index)
@@ -327,42 +323,6 @@ class DeskTable(QTableView):
             self.setCurrentIndex(self.grid.index(0, 0))
         self._show_note()
         self.viewport().update()
-
-    # -- blocks
-
-    def _selected_cells(self) -> list[tuple[int, str]]:
-        found = sorted(self.selectedIndexes(), key=lambda index: (index.row(), index.column()))
-        return [(self.grid.owner(index), self.grid.key(index)) for index in found]
-
-    def copy(self) -> None:
-        """Put the selected block on the clipboard, each cell as it would be typed."""
-        rows: dict[int, list[str]] = {}
-        for index in sorted(self.selectedIndexes(), key=lambda one: (one.row(), one.column())):
-            look = self.grid.look(index.row(), index.column())
-            rows.setdefault(index.row(), []).append(look.typed or ("" if look.quiet else look.text))
-        if rows:
-            QGuiApplication.clipboard().setText(write_block(rows.values()))
-
-    def paste(self) -> None:
-        """Hand on the block of the clipboard, laid from the first selected cell; one cell fills the selection."""
-        block = read_block(QGuiApplication.clipboard().text())
-        chosen = self.selectedIndexes() or [self.currentIndex()]
-        if not block or not chosen[0].isValid():
-            return
-        if len(block) == 1 and len(block[0]) == 1 and len(chosen) > 1:
-            self.pasted.emit([(owner, key, block[0][0]) for owner, key in self._selected_cells()], [])
-            return
-        top, left = min(i.row() for i in chosen), min(i.column() for i in chosen)
-        inside: list[tuple[int, str, str]] = []
-        outside: list[str] = []
-        for down, line in enumerate(block):
-            for across, text in enumerate(line):
-                row, column = top + down, left + across
-                if row < self.grid.rowCount() and column < self.grid.columnCount():
-                    inside.append((self.grid.owners[row], self.grid.headings[column].key, text))
-                elif text.strip():
-                    outside.append(text.strip())
-        self.pasted.emit(inside, outside)
 
     # -- the sentence beside a cell
 
