@@ -109,6 +109,11 @@ class Warm:
         """Start the next solve from a basis of the same rows and columns."""
         self._solver.setBasis(basis)
 
+    def set_strategy(self, strategy: int) -> None:
+        """PRIMAL or DUAL from the next solve on."""
+        self._strategy = strategy
+        self._solver.setOptionValue("simplex_strategy", strategy)
+
     def forget(self) -> None:
         """Drop the basis: the next solve is a fresh one."""
         self._solver.clearSolver()

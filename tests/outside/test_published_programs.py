@@ -12,6 +12,7 @@ import numpy as np
 import pytest
 
 from blendapp.optimise.certificate import check
+from blendapp.optimise.conflicts import conflict, only
 from blendapp.optimise.program import Program, Row
 from blendapp.optimise.rays import ray
 from blendapp.optimise.sensitivity import LimitPrices, sensitivity
@@ -235,3 +236,34 @@ def test_the_published_sensitivity_report_of_the_scrap_blend_is_reproduced() -> 
         j = program.names.index(key)
         assert found.price_low[j] == pytest.approx(low, abs=1e-5)
         assert found.price_high[j] == pytest.approx(high, abs=1e-5)
+
+
+@pytest.mark.parametrize("name", ["infeasible_simple", "elastic_infeasible", "manual_diet_infeasible"])
+def test_a_published_conflict_is_irreducible_and_its_repairs_are_the_computed_ones(name: str) -> None:
+    """The data gives what a row could be if it alone were freed. Its irreducible sets count bounds of columns and single
+    rows; here the columns' own bounds are given, and another smallest set may be found."""
+    example = EXAMPLES[name]
+    program = read(example)
+    found = conflict(program)
+    assert found is not None
+    freed = example["computed"]["best_achievable_when_only_this_row_is_freed"]
+    for repair in found.repairs:
+        key = example["rows"][repair.limit]["name"] + (":lo" if repair.side == "minimum" else ":hi")
+        if key in freed and freed[key] != "Infeasible":
+            assert repair.to == pytest.approx(freed[key], rel=1e-8)
+        elif key in freed:
+            assert repair.to is None
+        else:
+            assert repair.limit in found.members
+    assert not solve(only(program, found.members)).objective
+    for limit in found.members:
+        assert solve(only(program, (m for m in found.members if m != limit))).status != "infeasible"
+
+
+def test_the_least_total_change_of_the_elastic_example_is_one() -> None:
+    """lp_solve reference guide, infeasible models: a total violation of 1 makes x >= 6, y >= 6, x + y <= 11 possible.
+    Weighed by each limit's own size the larger limit gives."""
+    found = conflict(read(EXAMPLES["elastic_infeasible"]))
+    assert found is not None
+    assert [(r.limit, r.side, r.start) for r in found.total] == [(2, "maximum", 11.0)]
+    assert found.total[0].to == pytest.approx(12.0)
