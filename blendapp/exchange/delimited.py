@@ -8,7 +8,7 @@ import io
 from collections import Counter
 
 from blendapp.domain.wording import _
-from blendapp.exchange.files import SourceFile, refusal
+from blendapp.exchange.files import SourceFile, refusal, utf16_without_mark
 from blendapp.exchange.tables import NO_STORED_VALUE, CellValue, ErrorCell, RawTable
 
 GREATEST_TEXT_BYTES = 20_000_000
@@ -41,9 +41,9 @@ def decode(data: bytes) -> str:
     """utf-8, with a mark or without, or utf-16, or, where neither fits, cp1252."""
     if data.startswith((codecs.BOM_UTF16_LE, codecs.BOM_UTF16_BE)):
         return data.decode("utf-16", "replace")
-    head = data[:2000]
-    if head.count(0) * 4 > len(head):
-        return data.decode("utf-16-le" if head[1::2].count(0) > head[::2].count(0) else "utf-16-be", "replace")
+    unmarked = utf16_without_mark(data[:65536]) if b"\x00" in data[:65536] else None
+    if unmarked:
+        return data.decode(unmarked, "replace")
     try:
         return data.decode("utf-8-sig")
     except UnicodeDecodeError:

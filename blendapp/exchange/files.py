@@ -111,7 +111,7 @@ def _zip_format(name: str, data: bytes) -> Format:
     except (zipfile.BadZipFile, zlib.error, EOFError, NotImplementedError, OSError, ValueError, KeyError):
         raise damaged from None
     except RuntimeError:  # zipfile has no narrower one for an encrypted part
-        raise _locked(name) from None
+        raise locked(name) from None
 
 
 def _format_of(archive: zipfile.ZipFile, names: set[str]) -> Format | None:
@@ -133,7 +133,7 @@ def _guard(name: str, parts: list[zipfile.ZipInfo]) -> None:
             sentence = _("The file unpacks to far more than a table holds and was not opened; ask for a clean copy.")
             raise refusal(name, sentence)
         if part.flag_bits & 1:
-            raise _locked(name)
+            raise locked(name)
 
 
 def _check_part(name: str, archive: zipfile.ZipFile, part: zipfile.ZipInfo) -> None:
@@ -152,15 +152,24 @@ def entities_sentence() -> str:
 
 def _ole_format(name: str, data: bytes) -> Format:
     if "EncryptedPackage".encode("utf-16-le") in data:
-        raise _locked(name)
+        raise locked(name)
     for stream in ("Workbook", "Book"):
         if stream.encode("utf-16-le") in data:
             return Format.XLS
     raise refusal(name, _("This is an office document and no workbook; save the table as .xlsx."))
 
 
-def _locked(name: str) -> Refused:
+def locked(name: str) -> Refused:
+    """The refusal of a file that needs a password."""
     return refusal(name, _("The file is locked with a password; save a copy without one."))
+
+
+def utf16_without_mark(head: bytes) -> str | None:
+    """The codec of utf-16 text that lacks its mark: every second byte of Latin text is then 0. None if it is not."""
+    even, odd = head[::2].count(0), head[1::2].count(0)
+    if min(even, odd) * 20 > len(head) or max(even, odd) * 8 < len(head):
+        return None
+    return "utf-16-le" if odd > even else "utf-16-be"
 
 
 def _looks_binary(data: bytes) -> bool:
@@ -168,7 +177,6 @@ def _looks_binary(data: bytes) -> bool:
         return False
     head = data[:65536]
     if b"\x00" in head:
-        # utf-16 without a mark has zeros in every second byte of Latin text
-        return min(head[::2].count(0), head[1::2].count(0)) * 10 > max(head[::2].count(0), head[1::2].count(0))
+        return utf16_without_mark(head) is None
     control = sum(byte < 32 and byte not in (9, 10, 12, 13, 26, 27) for byte in head)
     return control * 100 > len(head)

@@ -3,21 +3,28 @@
 from __future__ import annotations
 
 import io
+import os
+import pickle
 import re
-from typing import Any
+import subprocess
+import sys
+import warnings
+import zipfile
+from collections.abc import Iterator
+from contextlib import contextmanager
 from xml.parsers import expat
 
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _
-from blendapp.exchange import xlsx_scan
-from blendapp.exchange.files import Format, SourceFile, entities_sentence, refusal
+from blendapp.exchange import ods_check, stored_values, xlsx_scan
+from blendapp.exchange.files import Format, SourceFile, entities_sentence, locked, refusal
+from blendapp.exchange.stored_values import StoredSheet
 from blendapp.exchange.tables import CellValue, PercentCell, RawTable
 
 # calamine lays a sheet out as a full rectangle, so a cell far out costs memory for everything before it.
 GREATEST_AREA = 5_000_000
-GREATEST_ROWS_TO_REPEAT = 100_000
-
-_ODS_REPEAT = re.compile(rb'number-(?:rows|columns)-repeated="([0-9]+)"')
+MOST_MEMORY_BYTES = 2_000_000_000
+MOST_SECONDS = 15.0
 
 
 def read_spreadsheet(source: SourceFile, formats: bool = False) -> list[RawTable]:
@@ -67,49 +74,66 @@ def _scans(source: SourceFile) -> dict[str, xlsx_scan.SheetScan]:
         raise _unreadable(source) from None
 
 
-def _stored(source: SourceFile) -> list[tuple[str, bool, list[list[CellValue]]]]:
-    """Name, visibility and stored values of each sheet, from calamine."""
-    import python_calamine
+def _stored(source: SourceFile) -> list[StoredSheet]:
+    """Stored values of every sheet. What was not looked through before is opened in a process of its own.
 
-    _guard_repeats(source)
-    found: list[tuple[str, bool, list[list[CellValue]]]] = []
+    A broken file of the binary formats may make the parser ask for all memory, or never come back.
+    """
+    if source.format is Format.XLSX or getattr(sys, "frozen", False):
+        _check_ods(source)
+        try:
+            with _silent():
+                return stored_values.stored_values(source.data)
+        except (KeyboardInterrupt, SystemExit, MemoryError):
+            raise
+        except BaseException:  # a broken file makes the parser raise anything, its own panics included
+            raise _unreadable(source) from None
+    _check_ods(source)
+    command = [sys.executable, "-P", stored_values.__file__, str(MOST_MEMORY_BYTES)]
     try:
-        with python_calamine.load_workbook(io.BytesIO(source.data)) as workbook:
-            for sheet in workbook.sheets_metadata:
-                if sheet.typ != python_calamine.SheetTypeEnum.WorkSheet:
-                    continue
-                visible = sheet.visible == python_calamine.SheetVisibleEnum.Visible
-                rows: Any = workbook.get_sheet_by_name(sheet.name).to_python(skip_empty_area=False)
-                found.append((sheet.name, visible, rows))
-    except python_calamine.PasswordError:
-        raise refusal(source.name, _("The file is locked with a password; save a copy without one.")) from None
-    except (KeyboardInterrupt, SystemExit, MemoryError, Refused):
-        raise
-    except BaseException:  # a broken file makes the parser raise anything, its own panics included
+        done = subprocess.run(command, input=source.data, capture_output=True, timeout=MOST_SECONDS, check=True)
+    except subprocess.TimeoutExpired:
+        raise refusal(source.name, _("The file takes too long to read; save it again as .xlsx.")) from None
+    except subprocess.CalledProcessError as error:
+        if error.returncode == stored_values.LOCKED:
+            raise locked(source.name) from None
         raise _unreadable(source) from None
+    found: list[StoredSheet] = pickle.loads(done.stdout)  # made by our own script a moment ago
     return found
 
 
-def _guard_repeats(source: SourceFile) -> None:
-    """An .ods cell may say that it repeats a million times; a filled one that does is no table."""
+def _check_ods(source: SourceFile) -> None:
+    """Opens no OpenDocument file that is unsound: the parser may not come back from it."""
     if source.format is not Format.ODS:
         return
-    import zipfile
-
     try:
-        content = zipfile.ZipFile(io.BytesIO(source.data)).read("content.xml")
-    except (KeyError, zipfile.BadZipFile):
+        with zipfile.ZipFile(io.BytesIO(source.data)) as archive:
+            ods_check.check_content(archive.read("content.xml"))
+    except ods_check.SpreadsTooFar:
+        sentence = _("The file repeats a filled cell far more often than a table does; ask for a clean copy.")
+        raise refusal(source.name, sentence) from None
+    except xlsx_scan.ForbiddenEntities:
+        raise refusal(source.name, entities_sentence()) from None
+    except (expat.ExpatError, KeyError, zipfile.BadZipFile):
         raise _unreadable(source) from None
-    for row in re.finditer(rb"<table:table-row\b[^>]*?(?:/>|>(.*?)</table:table-row>)", content, re.DOTALL):
-        inside = row.group(1) or b""
-        if b"office:value" not in inside and b"<text:p" not in inside:
-            continue
-        repeats = [int(n) for n in _ODS_REPEAT.findall(row.group(0).partition(b">")[0])]
-        filled = re.findall(rb"<table:table-cell\b[^>]*office:value-type[^>]*>", inside)
-        across = [int(n) for cell in filled for n in _ODS_REPEAT.findall(cell)]
-        if max(repeats, default=1) * max(across, default=1) > GREATEST_ROWS_TO_REPEAT:
-            sentence = _("The file repeats a filled cell far more often than a table does; ask for a clean copy.")
-            raise refusal(source.name, sentence)
+
+
+@contextmanager
+def _silent() -> Iterator[None]:
+    """Keeps what a panic of the parser prints off standard error, which belongs to our own sentences."""
+    try:
+        kept = os.dup(2)
+    except OSError:  # a window without a terminal has none
+        yield
+        return
+    nowhere = os.open(os.devnull, os.O_WRONLY)
+    os.dup2(nowhere, 2)
+    try:
+        yield
+    finally:
+        os.dup2(kept, 2)
+        os.close(kept)
+        os.close(nowhere)
 
 
 def _add_formats(source: SourceFile, tables: list[RawTable]) -> None:
@@ -117,7 +141,9 @@ def _add_formats(source: SourceFile, tables: list[RawTable]) -> None:
     import openpyxl
 
     try:
-        workbook = openpyxl.load_workbook(io.BytesIO(source.data))
+        with warnings.catch_warnings():
+            warnings.simplefilter("ignore")  # what the library says of styles that it drops is no matter of ours
+            workbook = openpyxl.load_workbook(io.BytesIO(source.data))
         for table in tables:
             sheet = workbook[table.sheet]
             table.formats = {

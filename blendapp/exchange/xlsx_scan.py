@@ -41,8 +41,12 @@ def scan_sheets(data: bytes) -> dict[str, SheetScan]:
     with zipfile.ZipFile(io.BytesIO(data)) as archive:
         parts = {part.filename for part in archive.infolist()}
         found: dict[str, SheetScan] = {}
-        for name, part in sheet_parts(archive).items():
+        by_name = sheet_parts(archive)
+        for name, part in by_name.items():
             found[name] = _scan(archive.read(part)) if part in parts else SheetScan()
+        for part in parts - set(by_name.values()):
+            if part.startswith("xl/") and part.endswith((".xml", ".rels")):
+                careful_parser().Parse(archive.read(part), True)  # so that no other parser meets a broken part
         return found
 
 
@@ -83,11 +87,12 @@ def _local(tag: str) -> str:
     return tag.rpartition(":")[2]
 
 
-def _parser() -> expat.XMLParserType:
+def careful_parser(namespaces: bool = False) -> expat.XMLParserType:
+    """A parser that raises ForbiddenEntities where a document type or an entity is declared."""
     def forbid(*_arguments: object) -> None:
         raise ForbiddenEntities
 
-    parser = expat.ParserCreate()
+    parser = expat.ParserCreate(namespace_separator=" ") if namespaces else expat.ParserCreate()
     parser.StartDoctypeDeclHandler = forbid
     parser.EntityDeclHandler = forbid
     parser.buffer_text = True
@@ -95,7 +100,7 @@ def _parser() -> expat.XMLParserType:
 
 
 def _parse(data: bytes, start: object) -> None:
-    parser = _parser()
+    parser = careful_parser()
     parser.StartElementHandler = start  # type: ignore[assignment]
     parser.Parse(data, True)
 
@@ -172,7 +177,7 @@ class _Cells:
 
 def _scan(data: bytes) -> SheetScan:
     cells = _Cells()
-    parser = _parser()
+    parser = careful_parser()
     parser.StartElementHandler = cells.start
     parser.EndElementHandler = cells.end
     parser.CharacterDataHandler = cells.characters

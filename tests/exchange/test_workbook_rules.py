@@ -182,7 +182,8 @@ def test_tags_are_read_from_a_list_joined_by_commas(mill: Reader) -> None:
     ("words", "per", "per_t"),
     [
         ("t", "t", 100), ("tonne", "t", 100), ("kg", "kg", 100_000), ("100 kg", "100 kg", 1000),
-        ("lb", "lb", 220462.262), ("cwt", "cwt", 2204.62262), ("Short Ton", "short ton", 110.231131), ("long ton", "long ton", 98.4206528),
+        ("lb", "lb", 220462.262),
+        ("cwt", "cwt", 2204.62262), ("Short Ton", "short ton", 110.231131), ("long ton", "long ton", 98.4206528),
         ("bu", "bu", 3936.8261),
     ],
 )
