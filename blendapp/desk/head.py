@@ -12,9 +12,9 @@ from blendapp.domain.formulas import Amounts
 from blendapp.domain.mills import VersionState
 from blendapp.domain.notation import notation
 from blendapp.domain.results import Result, Status
-from blendapp.domain.versions import in_state
+from blendapp.domain.versions import approved_version, in_state
 from blendapp.domain.wording import _
-from blendapp.services.versions import approved_result, approved_version, standing
+from blendapp.services.versions import approved_result, standing
 
 STANDING_MS = 30
 

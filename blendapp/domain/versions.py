@@ -320,3 +320,18 @@ def _may_become(before: FormulaVersion, after: FormulaVersion) -> bool:
         return True
     return before.state is VersionState.APPROVED and after == replace(before, state=VersionState.SUPERSEDED)
 
+
+def approved_version(library: Library, formula_id: int) -> FormulaVersion | None:
+    """The approved version of a formula; None without one, or where it was altered outside the program."""
+    version = in_state(library, formula_id, VersionState.APPROVED)
+    bad = {one.number for one in alterations(library, formula_id)}
+    return None if version is None or version.number in bad else version
+
+
+def approved_amounts(library: Library, formula_id: int) -> dict[int, float] | None:
+    """The amounts of the approved version by ingredient identifier (fractions of a blend, or kg per day), or None.
+
+    Between equally cheap mixes the one nearest to these is chosen.
+    """
+    version = approved_version(library, formula_id)
+    return None if version is None else sound_snapshot(library, version).amounts

@@ -8,6 +8,7 @@ further wish (least change, most of the first column, ...), which shrinks the se
 from __future__ import annotations
 
 import dataclasses
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -90,7 +91,7 @@ def tied(solution: Solution) -> bool:
     return _optimal_set(solution) is not None
 
 
-def settle(solution: Solution, reference: Array | None = None) -> Solution:
+def settle(solution: Solution, reference: Sequence[float] | Array | None = None) -> Solution:
     """The same cost with the amounts that the tie rule chooses: the least sum of absolute changes from reference
     (shape (n,)) where given, then the largest amounts in the order of the columns (the least of a column that could
     grow for ever).
@@ -104,7 +105,7 @@ def settle(solution: Solution, reference: Array | None = None) -> Solution:
     x = solution.x
     n = x.size
     if reference is not None:
-        remaining, x = _nearest(remaining, reference)
+        remaining, x = _nearest(remaining, np.asarray(reference, dtype=np.float64))
     for j in range(n):
         if remaining.single():
             break

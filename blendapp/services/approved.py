@@ -12,15 +12,16 @@ from blendapp.domain.batches import Batch
 from blendapp.domain.figures import write_measure
 from blendapp.domain.formulas import Limit, LimitKind, Subject
 from blendapp.domain.library import Library
+from blendapp.domain.mills import FormulaVersion, VersionState
 from blendapp.domain.problems import Refused
 from blendapp.domain.records import Record
 from blendapp.domain.results import LimitResult, Result, UnknownValue
-from blendapp.domain.versions import Snapshot, sound_snapshot
+from blendapp.domain.versions import Snapshot, alterations, approved_version, sound_snapshot
 from blendapp.domain.wording import _
 from blendapp.optimise.build.batch import broken_by, weighed
 from blendapp.optimise.build.formula import build, unknown_values
 from blendapp.services.batch import SEARCH_S, make_batch
-from blendapp.services.versions import approval_text, approved_version, version_text
+from blendapp.services.versions import approval_text, version_text
 
 if TYPE_CHECKING:
     from blendapp.services.mill import Mill
@@ -71,16 +72,18 @@ def outside_their_limits(mill: Mill, on: datetime.date | None = None) -> list[Ou
     The approved amounts are held against the composition of today; nothing is solved. Versions that were altered
     outside the program are not among them, see domain.versions.alterations.
     """
-    day = on or datetime.date.today()
-    found = (_outside(mill.library, formula.id, day) for formula in mill.library.formulas)
+    day, library = on or datetime.date.today(), mill.library
+    altered = {(one.formula_id, one.number) for one in alterations(library)}
+    standing: list[FormulaVersion] = [
+        version for version in library.records["version"].values()
+        if version.state is VersionState.APPROVED and (version.formula_id, version.number) not in altered
+    ]
+    found = (_outside(library, version, day) for version in sorted(standing, key=lambda version: version.formula_id))
     return [one for one in found if one is not None]
 
 
-def _outside(library: Library, formula_id: int, on: datetime.date) -> Outside | None:
-    version = approved_version(library, formula_id)
-    if version is None:
-        return None
-    snapshot = sound_snapshot(library, version)
+def _outside(library: Library, version: FormulaVersion, on: datetime.date) -> Outside | None:
+    snapshot = Snapshot.decode(version.snapshot)
     today = as_today(library, snapshot, on)
     limits, unknown = _held(today, snapshot, on)
     left = [(limit, by) for limit in limits if (by := broken_by(limit)) is not None]
@@ -93,7 +96,8 @@ def _outside(library: Library, formula_id: int, on: datetime.date) -> Outside | 
     reasons = tuple(_reasons(library, today, snapshot, unknown))
     if not (moved or reasons):
         return None
-    return Outside(formula_id, library.formula(formula_id).name, version.number, moved, reasons)
+    formula = library.formula(version.formula_id)
+    return Outside(formula.id, formula.name, version.number, moved, reasons)
 
 
 def _bound(limit: LimitResult, by: float) -> float:

@@ -2,17 +2,15 @@
 
 from __future__ import annotations
 
-import numpy as np
-
 from blendapp.domain.figures import write_percent
 from blendapp.domain.formulas import Amounts
 from blendapp.domain.library import Library
 from blendapp.domain.notation import notation
+from blendapp.domain.versions import approved_amounts
 from blendapp.domain.wording import _
 from blendapp.optimise import ties
 from blendapp.optimise.build.formula import FormulaProgram
 from blendapp.optimise.solution import Solution
-from blendapp.services.versions import approved_amounts
 
 _MOST_SAID = 3
 
@@ -25,7 +23,7 @@ def settle(library: Library, built: FormulaProgram, solution: Solution) -> tuple
     if solution.status != "optimal" or not ties.tied(solution):
         return solution, None
     approved = approved_amounts(library, built.formula.id)
-    reference = None if approved is None else np.array([approved.get(i.id, 0.0) for i in built.ingredients])
+    reference = None if approved is None else [approved.get(i.id, 0.0) for i in built.ingredients]
     settled = ties.settle(solution, reference)
     said = [_exchange_words(built, found) for found in ties.exchanges(settled)[:_MOST_SAID]]
     return settled, " ".join(said) or None
@@ -33,8 +31,9 @@ def settle(library: Library, built: FormulaProgram, solution: Solution) -> tuple
 
 def _exchange_words(built: FormulaProgram, found: ties.Exchange) -> str:
     """One exchange in words: "1.20 % Wheat can be Barley at the same cost"."""
-    more = [j for j in np.argsort(-found.change) if found.change[j] > 0]
-    less = [j for j in np.argsort(found.change) if found.change[j] < 0]
+    change = found.change.tolist()
+    order = sorted(range(len(change)), key=lambda j: -abs(change[j]))
+    more, less = [j for j in order if change[j] > 0], [j for j in order if change[j] < 0]
     if len(more) == 1 and len(less) == 1:
         text = _("{amount} of {taken} can be {given} at the same cost.")
         amount = _amount(built, -float(found.change[less[0]]))

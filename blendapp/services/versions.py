@@ -21,6 +21,7 @@ from blendapp.domain.versions import (
     Snapshot,
     acknowledgements_of,
     alterations,
+    approved_version,
     draft_number,
     in_state,
     seal,
@@ -93,22 +94,6 @@ def approval_text(version: FormulaVersion) -> str:
     """Who approved a version: name, capacity and day."""
     day = "" if version.approved is None else version.approved.astimezone().date().isoformat()
     return ", ".join(part for part in (version.approved_by, version.capacity, day) if part)
-
-
-def approved_version(library: Library, formula_id: int) -> FormulaVersion | None:
-    """The approved version of a formula; None without one, or where it was altered outside the program."""
-    version = in_state(library, formula_id, VersionState.APPROVED)
-    bad = {one.number for one in alterations(library, formula_id)}
-    return None if version is None or version.number in bad else version
-
-
-def approved_amounts(library: Library, formula_id: int) -> dict[int, float] | None:
-    """The amounts of the approved version by ingredient identifier (fractions of a blend, or kg per day), or None.
-
-    Between equally cheap mixes the one nearest to these is chosen.
-    """
-    version = approved_version(library, formula_id)
-    return None if version is None else sound_snapshot(library, version).amounts
 
 
 def approved_result(library: Library, formula_id: int) -> Result | None:

@@ -43,7 +43,7 @@ def outside(mill: Mill) -> list[Outside]:
 
 
 def amount(mill: Mill, formula_id: int, ingredient_id: int) -> float:
-    from blendapp.services.versions import approved_amounts
+    from blendapp.domain.versions import approved_amounts
 
     amounts = approved_amounts(mill.library, formula_id)
     assert amounts is not None

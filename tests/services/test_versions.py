@@ -17,7 +17,7 @@ from blendapp.domain.mills import FormulaVersion, VersionState
 from blendapp.domain.problems import Refused
 from blendapp.domain.records import Change, added, removed
 from blendapp.domain.results import Result, Status
-from blendapp.domain.versions import Snapshot, acknowledgements_of, alterations
+from blendapp.domain.versions import Snapshot, acknowledgements_of, alterations, approved_amounts
 from blendapp.optimise import certificate
 from blendapp.services import batch, edits, people, versions
 from blendapp.services import formulate as formulating
@@ -138,12 +138,12 @@ def test_the_snapshot_alone_gives_the_answer_that_was_approved(mill: Mill) -> No
 
 
 def test_the_approved_amounts_and_answer_stay_whatever_the_draft_becomes(mill: Mill) -> None:
-    assert versions.approved_amounts(mill.library, MASH) is None
+    assert approved_amounts(mill.library, MASH) is None
     assert versions.approved_result(mill.library, MASH) is None
     before = formulate(mill.library, MASH, TODAY)
     approve(mill)
     edits.set_price(mill, MAIZE, 900.0, TODAY)
-    amounts = versions.approved_amounts(mill.library, MASH)
+    amounts = approved_amounts(mill.library, MASH)
     assert amounts == {i.ingredient_id: i.amount for i in before.mix}
     assert versions.approved_result(mill.library, MASH) == before
 
@@ -337,7 +337,7 @@ def test_what_sql_from_outside_alters_is_found_and_counts_as_not_approved(
     assert "Version 1 of Lamb was altered outside this program" in found.text
     state = versions.standing(again.library, LAMB, TODAY)
     assert (state.text, state.draft, state.altered) == ("draft 2", True, (found.text,))
-    assert versions.approved_amounts(again.library, LAMB) is None
+    assert approved_amounts(again.library, LAMB) is None
     sheet = batch.make_batch(again.library, LAMB, 1000.0, TODAY)
     assert sheet.draft
     assert found.text in sheet.cautions
