@@ -75,6 +75,8 @@ FIELDS: tuple[Field, ...] = (
     Field("mill", "currency", N_("Currency"), help=N_("Three letters of ISO 4217; all prices are in it.")),
     Field("mill", "ton_means", N_("Ton means"), help=N_("What a bare “ton” in a price list is; blank asks.")),
     Field("mill", "cwt_means", N_("Cwt means"), help=N_("What a bare “cwt” in a price list is; blank asks.")),
+    Field("mill", "one_person_approves", N_("One person approves"),
+          help=N_("Whether who prepared a version may also approve it. Set here only, by no workbook.")),
     Field("nutrient", "name", N_("Nutrient")),
     Field("nutrient", "unit", N_("Unit"), help=N_("Unit of concentration in which the nutrient is kept and shown.")),
     Field("nutrient", "never_negative", N_("Never negative"), help=N_("No value can be below zero.")),

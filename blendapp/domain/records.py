@@ -5,9 +5,10 @@ from __future__ import annotations
 import datetime
 import types
 import typing
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, fields
 from enum import Enum
+from functools import cache
 from typing import Any
 
 from blendapp.domain.formulas import Formula, Limit, Subject
@@ -110,9 +111,12 @@ def to_plain(record: Record) -> dict[str, Any]:
 
 def from_plain(kind: str, plain: Mapping[str, Any]) -> Record:
     """The record behind its plain form; fields that the form lacks take their defaults."""
-    cls = KINDS[kind]
-    known = field_types(cls)
-    return cls(**{name: _rich(known[name][0], plain[name]) for name in known if name in plain})
+    found = {}
+    for name, read in _readers(kind).items():
+        if name in plain:
+            value = plain[name]
+            found[name] = value if read is None or value is None else read(value)
+    return KINDS[kind](**found)
 
 
 def _plain(value: Any) -> Any:
@@ -125,16 +129,23 @@ def _plain(value: Any) -> Any:
     return value.value if isinstance(value, Enum) else value
 
 
-def _rich(cls: Any, value: Any) -> Any:
-    if value is None:
-        return None
+@cache
+def _readers(kind: str) -> Mapping[str, Callable[[Any], Any] | None]:
+    """For each field of a kind of record what turns its plain form into its value, None where they are the same."""
+    return {name: _reader(declared) for name, (declared, _optional) in field_types(KINDS[kind]).items()}
+
+
+def _reader(cls: Any) -> Callable[[Any], Any] | None:
     if typing.get_origin(cls) is tuple:
         inside = typing.get_args(cls)[0]
-        return tuple(inside(part) for part in str(value).split(", ") if part)
+        return lambda value: tuple(inside(part) for part in str(value).split(", ") if part)
     if cls is Subject:
-        return Subject.decode(value)
+        return Subject.decode
     if cls in (datetime.date, datetime.datetime):
-        return cls.fromisoformat(value) if isinstance(value, str) else value
-    if cls in (float, int) and not isinstance(value, bool):
-        return cls(value)
-    return cls(value) if isinstance(cls, type) and issubclass(cls, Enum) else value
+        return lambda value: cls.fromisoformat(value) if isinstance(value, str) else value
+    if cls in (float, int):
+        return lambda value: value if isinstance(value, bool) else cls(value)
+    if isinstance(cls, type) and issubclass(cls, Enum):
+        members = {member.value: member for member in cls}
+        return lambda value: members[value] if value in members else cls(value)
+    return None
