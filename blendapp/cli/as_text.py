@@ -5,10 +5,11 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 
 from blendapp.domain.batches import Batch, proof_words
+from blendapp.domain.figures import write_measure
 from blendapp.domain.formulas import Amounts
 from blendapp.domain.notation import notation
 from blendapp.domain.price_rows import Fate, PriceListReading
-from blendapp.domain.results import LimitResult, Result, Side
+from blendapp.domain.results import Conflict, LimitResult, Result, Side
 from blendapp.domain.wording import _
 
 
@@ -30,6 +31,7 @@ def formula(result: Result) -> str:
     lines = [result.formula]
     if result.cost is None:
         lines.append(f"  {_('No answer')} ({_(result.status)}): {result.cause or ''}")
+        lines += [] if result.conflict is None else _conflict(result, result.conflict)
     else:
         lines += _mix(result)
     if result.limits:
@@ -40,6 +42,34 @@ def formula(result: Result) -> str:
         lines += ["", "  " + _("Left out for want of a price: {names}.").format(names=", ".join(result.unpriced))]
     lines += ["", *(f"  ! {caution}" for caution in result.cautions)]
     return "\n".join(lines)
+
+
+def _conflict(result: Result, conflict: Conflict) -> list[str]:
+    """What each limit could reach, which limits clash, and the least change of each that helps."""
+    measure, sides = write_measure, {Side.MINIMUM: _("minimum"), Side.MAXIMUM: _("maximum")}
+    lines = []
+    for reach in conflict.reach:
+        one = result.limits[reach.limit]
+        text = _("{name} can reach {reachable} {unit}, asked {asked}.")
+        lines.append(text.format(
+            name=limit_name(one), reachable=measure(reach.reachable) or _("nothing"), unit=one.unit,
+            asked=measure(reach.asked),
+        ))
+    if len(conflict.members) > 1:
+        names = ", ".join(limit_name(result.limits[index]) for index in conflict.members)
+        text = _("These cannot hold together, and without any one of them they can: {names}.")
+        lines.append(text.format(names=names))
+    for repair in conflict.repairs:
+        one = result.limits[repair.limit]
+        if repair.to is None:
+            text = _("No change of {name} alone is enough.")
+        else:
+            text = _("Enough alone: the {side} of {name} from {frm} to {to} {unit}.")
+        lines.append(text.format(
+            side=sides[repair.bound], name=limit_name(one), frm=measure(repair.frm), to=measure(repair.to),
+            unit=one.unit,
+        ))
+    return [f"  {line}" for line in lines]
 
 
 def _mix(result: Result) -> list[str]:

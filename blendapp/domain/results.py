@@ -131,11 +131,14 @@ class Repair:
 
 @dataclass(frozen=True)
 class Conflict:
-    """Why no mix exists. members: indices of the limits of one irreducible set."""
+    """Why no mix exists. members: indices of the limits of one irreducible set. repairs: one for each member.
+    total: bounds that, all changed together, make a mix possible with the least sum of changes, each weighed by its
+    own size."""
 
     reach: tuple[Reach, ...]
     members: tuple[int, ...]
     repairs: tuple[Repair, ...]
+    total: tuple[Repair, ...] = ()
 
 
 @dataclass(frozen=True)

@@ -1,4 +1,4 @@
-"""What more can be asked of an answer, after it was shown: how else the feed could be mixed at nearly the same cost."""
+"""What more can be asked of an answer after it was shown: other mixes at nearly the same cost, or why there is none."""
 
 from __future__ import annotations
 
@@ -12,10 +12,14 @@ from blendapp.domain.problems import Refused
 from blendapp.domain.results import IngredientResult, Result, Status
 from blendapp.domain.wording import _
 from blendapp.optimise.build.composition import Composition
+from blendapp.optimise.build.no_mix import conflict_shown
+from blendapp.optimise.choice_conflicts import explain
+from blendapp.optimise.linear import FailedSolve
 from blendapp.optimise.near import near_optimal
-from blendapp.services.formulate import Answer, answer_to
+from blendapp.services.formulate import Answer, FailedCertificate, answer_to
 
 NEAR_PERCENT = 0.5
+CONFLICT_S = 2.0
 
 
 def with_near(
@@ -39,10 +43,36 @@ def _ranged(one: IngredientResult, low: float, high: float) -> IngredientResult:
     return one if math.isnan(low) or math.isnan(high) else replace(one, near_optimal=(low, high))
 
 
+def with_conflict(answer: Answer, time_limit_s: float | None = CONFLICT_S) -> Result:
+    """The result with why no mix exists: what each limit could reach, limits that clash, and the least repairs.
+
+    Any other result than a conflict of limits comes back as it is. time_limit_s: of each mixed-integer step. Raises
+    FailedCertificate where a verdict did not stand up to its check.
+    """
+    built = answer.built
+    if built is None or answer.result.status is not Status.CONFLICT or not built.ingredients:
+        return answer.result
+    try:
+        found = explain(built.program, time_limit_s)
+    except FailedSolve as failure:
+        text = _("Why {formula} has no answer could not be settled ({failure}).")
+        raise FailedCertificate(text.format(formula=built.formula.name, failure=failure)) from failure
+    return answer.result if found is None else replace(answer.result, conflict=conflict_shown(built, found))
+
+
+def ask_all(
+    answer: Answer, near_percent: float = NEAR_PERCENT, go_on: Callable[[], bool] | None = None
+) -> Result:
+    """Everything that can be asked of an answer, or of why there is none."""
+    if answer.result.status is Status.CONFLICT:
+        return with_conflict(answer)
+    return with_near(answer, near_percent, go_on)
+
+
 def formulate_whole(
     library: Library, formula_ids: Sequence[int], on: datetime.date, composition: Composition | None = None,
     near_percent: float = NEAR_PERCENT,
 ) -> list[Result]:
     """The results of several formulas with everything that can be asked of them, in their order."""
     composition = composition or Composition(library)
-    return [with_near(answer_to(library, key, on, composition), near_percent) for key in formula_ids]
+    return [ask_all(answer_to(library, key, on, composition), near_percent) for key in formula_ids]
