@@ -30,8 +30,8 @@ MOST_SECONDS = 15.0
 def read_spreadsheet(source: SourceFile, formats: bool = False) -> list[RawTable]:
     """Every sheet of a workbook in its order.
 
-    formats: whether number formats are wanted, which takes as long again; they are known for .xlsx and .xlsm only.
-    There, percentages are told apart in any case.
+    formats: whether number formats that may show a currency are wanted; known for .xlsx and .xlsm only. Looking for
+    them takes as long again, and is done only where the file has one. Percentages are told apart in any case.
     Raises Refused with one sentence if the file cannot be read.
     """
     if source.format is not Format.XLSX:
@@ -48,7 +48,7 @@ def read_spreadsheet(source: SourceFile, formats: bool = False) -> list[RawTable
         table.hidden_columns = frozenset(scan.hidden_columns)
         for (row, column), mark in scan.marks.items():
             _place(table.rows, row, column, mark)
-    if formats or xlsx_scan.has_percent_format(source.data):
+    if xlsx_scan.has_telling_format(source.data, money=formats):
         _add_formats(source, tables)
     return tables
 
@@ -139,7 +139,9 @@ def _silent() -> Iterator[None]:
 def _add_formats(source: SourceFile, tables: list[RawTable]) -> None:
     """Number formats of .xlsx cells that hold a number, from openpyxl."""
     import openpyxl
+    from openpyxl.styles.numbers import BUILTIN_FORMATS
 
+    plain = {code for number, code in BUILTIN_FORMATS.items() if number not in (9, 10)}
     try:
         with warnings.catch_warnings():
             warnings.simplefilter("ignore")  # what the library says of styles that it drops is no matter of ours
@@ -149,7 +151,7 @@ def _add_formats(source: SourceFile, tables: list[RawTable]) -> None:
             table.formats = {
                 (cell.row - 1, cell.column - 1): cell.number_format
                 for cell in sheet._cells.values()  # sparse: iterating rows would fill in every blank cell
-                if cell.data_type in ("n", "f") and cell.value is not None and cell.number_format != "General"
+                if cell.data_type in ("n", "f") and cell.value is not None and cell.number_format not in plain
             }
             for (row, column), number_format in table.formats.items():
                 if _shows_percent(number_format):

@@ -50,14 +50,21 @@ def scan_sheets(data: bytes) -> dict[str, SheetScan]:
         return found
 
 
-def has_percent_format(data: bytes) -> bool:
-    """Whether any number format of the file shows a share as a percentage (0.12 as 12 %)."""
+# Formats that show a share as a percentage, and formats that print a sign, a code or a word beside the number. Built-in
+# formats other than percentages are left out: what they print depends on where the file is opened.
+_PERCENT_FORMAT = re.compile(rb"""numFmtId=["'](?:9|10)["']|formatCode=["'][^"']*%""")
+_SIGN = rb"""&quot;|&#34;|\$|\\|[\x80-\xff]"""
+_MONEY_FORMAT = re.compile(rb"""formatCode=(?:"[^"]*(?:%b)|'[^']*(?:"|%b))""" % (_SIGN, _SIGN))
+
+
+def has_telling_format(data: bytes, money: bool) -> bool:
+    """Whether a number format of the file shows a percentage or, if asked, may show a currency."""
     with zipfile.ZipFile(io.BytesIO(data)) as archive:
         try:
             styles = archive.read("xl/styles.xml")
         except KeyError:
             return False
-    return bool(re.search(rb"""numFmtId=["'](?:9|10)["']|formatCode=["'][^"']*%""", styles))
+    return bool(_PERCENT_FORMAT.search(styles) or (money and _MONEY_FORMAT.search(styles)))
 
 
 def sheet_parts(archive: zipfile.ZipFile) -> dict[str, str]:
