@@ -73,7 +73,7 @@ class Maker:
 
 
 def three_ingredients() -> tuple[Library, Formula]:
-    """Maize, soybean meal and lysine under minima of protein and lysine that meet in one corner: a degenerate optimum."""
+    """Maize, soybean meal and lysine under minima of protein and lysine that meet in one corner: it is degenerate."""
     make = Maker()
     make.nutrient("Crude protein")
     make.nutrient("Lysine")

@@ -37,7 +37,8 @@ def mill_of(program: Program) -> tuple[Library, Formula]:
         basis = "" if row.divisor is None else "dry matter"
         make.limit(feed, "nutrient", f"Nutrient {i}", row.minimum, row.maximum, basis=basis)
     for bound in program.bounds:
-        make.limit(feed, "ingredient", names[bound.column], None, None if bound.maximum is None else bound.maximum * 100)
+        most = None if bound.maximum is None else bound.maximum * 100
+        make.limit(feed, "ingredient", names[bound.column], None, most)
     return make.library, feed
 
 
