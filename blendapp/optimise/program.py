@@ -16,8 +16,9 @@ class Row:
 
     numerator: shape (n,). divisor: shape (n,), or None for a plain right-hand side; where given, the bound r
     multiplies amounts and the row is (numerator - r divisor) . x >= 0 (or <= 0), exact wherever divisor . x >= 0.
-    minimum, maximum: None where open. scale: value as displayed = scale x quotient; bounds here are already
-    divided by it. limit: index of the limit that the row serves, None for a balance (the sum of the mix).
+    minimum, maximum: None where open, in units of the quotient (displayed units are converted before and after).
+    limit: index of the limit that the row serves, None for a balance (the sum of the mix). One limit is served by one
+    row, one Bound, one Count or one least amount, so that it has one value.
     """
 
     numerator: Array

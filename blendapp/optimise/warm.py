@@ -7,7 +7,7 @@ from typing import Any, Literal
 import highspy
 import numpy as np
 
-from blendapp.optimise.arrays import Arrays
+from blendapp.optimise.arrays import Arrays, Indices
 from blendapp.optimise.program import Array
 
 Verdict = Literal["optimal", "infeasible", "unbounded", "unclear"]
@@ -104,6 +104,13 @@ class Warm:
     def basis(self) -> highspy.HighsBasis:
         """The basis of the last solve, for set_basis."""
         return self._solver.getBasis()
+
+    def basis_parts(self) -> tuple[Indices, Indices, Indices]:
+        """Basic columns, rows at a bound and columns at their upper bound in the last solve."""
+        basis = self._solver.getBasis()
+        columns, rows = np.array(basis.col_status), np.array(basis.row_status)
+        basic, upper = highspy.HighsBasisStatus.kBasic, highspy.HighsBasisStatus.kUpper
+        return (columns == basic).nonzero()[0], (rows != basic).nonzero()[0], (columns == upper).nonzero()[0]
 
     def set_basis(self, basis: highspy.HighsBasis) -> None:
         """Start the next solve from a basis of the same rows and columns."""

@@ -13,6 +13,7 @@ import pytest
 
 from blendapp.optimise.certificate import check
 from blendapp.optimise.conflicts import conflict, only
+from blendapp.optimise.exact import prove
 from blendapp.optimise.program import Program, Row
 from blendapp.optimise.rays import ray
 from blendapp.optimise.sensitivity import LimitPrices, sensitivity
@@ -240,8 +241,8 @@ def test_the_published_sensitivity_report_of_the_scrap_blend_is_reproduced() -> 
 
 @pytest.mark.parametrize("name", ["infeasible_simple", "elastic_infeasible", "manual_diet_infeasible"])
 def test_a_published_conflict_is_irreducible_and_its_repairs_are_the_computed_ones(name: str) -> None:
-    """The data gives what a row could be if it alone were freed. Its irreducible sets count bounds of columns and single
-    rows; here the columns' own bounds are given, and another smallest set may be found."""
+    """The data gives what a row could be if it alone were freed. Its irreducible sets count bounds of columns too; here
+    the columns' own bounds are given, and another smallest set may be found."""
     example = EXAMPLES[name]
     program = read(example)
     found = conflict(program)
@@ -267,3 +268,16 @@ def test_the_least_total_change_of_the_elastic_example_is_one() -> None:
     assert found is not None
     assert [(r.limit, r.side, r.start) for r in found.total] == [(2, "maximum", 11.0)]
     assert found.total[0].to == pytest.approx(12.0)
+
+
+@pytest.mark.parametrize("name", OPTIMAL)
+def test_every_published_optimum_is_proven_in_rational_arithmetic(name: str) -> None:
+    """The data has the exact optimum of the numbers as printed; so has the proof."""
+    example = EXAMPLES[name]
+    proof = prove(solve(read(example)), as_typed=True)
+    computed = example["computed"]["objective"]
+    sign = 1 if example["sense"] == "min" else -1
+    if isinstance(computed, dict) and "exact" in computed:
+        assert sign * proof.objective == Fraction(computed["exact"])
+    else:
+        assert sign * float(proof.objective) == pytest.approx(computed, rel=1e-8)

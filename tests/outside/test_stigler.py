@@ -10,7 +10,9 @@ import numpy as np
 import pytest
 
 from blendapp.optimise.certificate import check
+from blendapp.optimise.exact import prove
 from blendapp.optimise.program import Program, Row
+from blendapp.optimise.sensitivity import sensitivity
 from blendapp.optimise.solve import solve
 
 STIGLER: dict[str, Any] = json.loads((Path(__file__).parent / "data" / "stigler_1945.json").read_text())
@@ -55,3 +57,23 @@ def test_shadow_prices_and_reduced_costs_are_those_of_the_exact_basis() -> None:
     for j, food in enumerate(STIGLER["table"]):
         target = STIGLER["computed"]["reduced_costs_usd"][food["food"]]
         assert solution.lower_price[j] == pytest.approx(target, rel=1e-9, abs=1e-12)
+
+
+def test_the_optimum_is_proven_exactly_and_its_ranges_are_those_of_the_data() -> None:
+    made = program()
+    solution = solve(made)
+    assert str(prove(solution, as_typed=True).objective) == STIGLER["computed"]["objective_exact"]
+    found = sensitivity(solution)
+    assert found.unique_optimum
+    ranges = STIGLER["computed"]["cost_range"]
+    assert len(ranges) == 5
+    for j, name in enumerate(made.names):
+        if name in ranges:
+            assert (found.price_low[j], found.price_high[j]) == pytest.approx(tuple(ranges[name]), rel=1e-9)
+        else:
+            assert found.break_even[j] == pytest.approx(1.0 - STIGLER["computed"]["reduced_costs_usd"][name], rel=1e-9)
+    for i, need in enumerate(STIGLER["requirements"]):
+        ends = STIGLER["computed"]["rhs_range"].get(need["nutrient"])
+        if ends is not None and found.limits[i].binding:
+            prices = found.limits[i]
+            assert (prices.relax_holds_to, prices.tighten_holds_to) == pytest.approx(tuple(ends), rel=1e-9)
