@@ -101,6 +101,8 @@ def _mix(result: Result) -> list[str]:
     lines.append("  " + checked.format(
         violation=result.check.largest_violation, gap=result.check.duality_gap
     ))
+    if result.proof:
+        lines.append(f"  {result.proof}")
     return lines
 
 

@@ -80,7 +80,8 @@ def _formulate(given: argparse.Namespace) -> int:
         chosen = formulas_named(mill.library, given.formulas)
         try:
             results = formulate_whole(
-                mill.library, [f.id for f in chosen], datetime.date.today(), mill.composition, given.near
+                mill.library, [f.id for f in chosen], datetime.date.today(), mill.composition, given.near,
+                given.prove,
             )
         except FailedCertificate as failure:
             raise Refused(Problem(str(failure), Place(file=given.mill))) from failure

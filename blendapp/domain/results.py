@@ -147,7 +147,8 @@ class Result:
 
     cost: money per tonne of mix (blend) or per head and day (ration). cause: why there is no answer, in a sentence.
     given_ingredients: whether shadow prices hold for the chosen ingredients only. unpriced: admitted ingredients
-    without a price in force. general_caution stands first in cautions.
+    without a price in force. general_caution stands first in cautions. tie: what can be exchanged at the same cost, in
+    a sentence. proof: the sentence of an exact proof, where one was asked for.
     """
 
     formula_id: int
@@ -169,6 +170,7 @@ class Result:
     check: Check = Check()
     conflict: Conflict | None = None
     tie: str | None = None
+    proof: str | None = None
 
     @property
     def cost_per(self) -> str:

@@ -8,12 +8,14 @@ from collections.abc import Callable, Sequence
 from dataclasses import replace
 
 from blendapp.domain.library import Library
+from blendapp.domain.notation import notation
 from blendapp.domain.problems import Refused
 from blendapp.domain.results import IngredientResult, Result, Status
 from blendapp.domain.wording import _
 from blendapp.optimise.build.composition import Composition
 from blendapp.optimise.build.no_mix import conflict_shown
 from blendapp.optimise.choice_conflicts import explain
+from blendapp.optimise.exact import NotProven, prove
 from blendapp.optimise.linear import FailedSolve
 from blendapp.optimise.near import near_optimal
 from blendapp.services.formulate import Answer, FailedCertificate, answer_to
@@ -28,13 +30,17 @@ def with_near(
     """The result with the near-optimal range of every ingredient: over all mixes at most near_percent dearer.
 
     go_on is asked between solves; where it says no, what is not worked out stays None. A result that is not optimal
-    comes back as it is. Raises Refused for a tolerance below 0.
+    comes back as it is. Raises Refused for a tolerance below 0, FailedCertificate where the solver gives no clear status.
     """
     if not (math.isfinite(near_percent) and near_percent >= 0):
         raise Refused(_("A near-optimal tolerance must be 0 % or more; {value} is not.").format(value=near_percent))
     if answer.solution is None or answer.result.status is not Status.OPTIMAL:
         return answer.result
-    found = near_optimal(answer.solution, near_percent, go_on)
+    try:
+        found = near_optimal(answer.solution, near_percent, go_on)
+    except FailedSolve as failure:
+        text = _("The near-optimal ranges of {formula} could not be settled ({failure}).")
+        raise FailedCertificate(text.format(formula=answer.result.formula, failure=failure)) from failure
     ends = zip(answer.result.ingredients, found.low.tolist(), found.high.tolist(), strict=True)
     return replace(answer.result, ingredients=tuple(_ranged(*one) for one in ends))
 
@@ -69,10 +75,34 @@ def ask_all(
     return with_near(answer, near_percent, go_on)
 
 
+def proven(answer: Answer) -> Result:
+    """The result with the sentence that its cost is the least there is, proven in exact fractions on its basis.
+
+    Of a formula with practical or count limits that is proven for the chosen ingredients. A result that is not optimal
+    comes back as it is. Raises FailedCertificate where no proof was found.
+    """
+    if answer.solution is None or answer.result.status is not Status.OPTIMAL:
+        return answer.result
+    try:
+        proof = prove(answer.solution)
+    except NotProven as failure:
+        text = _("The answer to {formula} could not be proven ({failure}) and is not shown.")
+        raise FailedCertificate(text.format(formula=answer.result.formula, failure=failure)) from failure
+    text = _("Proven in exact fractions: no mix costs less than {cost} {currency}/{per}.")
+    said = text.format(
+        cost=notation().write(float(proof.objective), 6), currency=answer.result.currency, per=answer.result.cost_per
+    )
+    return replace(answer.result, proof=said)
+
+
 def formulate_whole(
     library: Library, formula_ids: Sequence[int], on: datetime.date, composition: Composition | None = None,
-    near_percent: float = NEAR_PERCENT,
+    near_percent: float = NEAR_PERCENT, prove_too: bool = False,
 ) -> list[Result]:
     """The results of several formulas with everything that can be asked of them, in their order."""
     composition = composition or Composition(library)
-    return [ask_all(answer_to(library, key, on, composition), near_percent) for key in formula_ids]
+    answers = [answer_to(library, key, on, composition) for key in formula_ids]
+    if prove_too:
+        answers = [replace(answer, result=proven(answer)) for answer in answers]
+    return [ask_all(answer, near_percent) for answer in answers]
+

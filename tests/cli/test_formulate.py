@@ -7,6 +7,7 @@ from typing import Any
 import pytest
 
 from blendapp.domain.cautions import GENERAL_CAUTION
+from blendapp.services import asking
 from blendapp.services import formulate as formulating
 from blendapp.services.mill import open_mill
 from tests.cli import shapes
@@ -187,3 +188,21 @@ def test_formulating_leaves_the_file_as_it_was(run: Runner, mill: Path) -> None:
     before = held()
     run("formulate", mill, "--json")
     assert held() == before
+
+
+def test_prove_says_the_exact_cost_and_leaves_the_json_as_it_is(run: Runner, mill: Path) -> None:
+    found = run("formulate", mill, "Sound", "Ration", "--prove")
+    assert found.status == 0
+    assert found.out.count("Proven in exact fractions: no mix costs less than") == 2
+    assert run("formulate", mill, "Sound", "--prove", "--json").json == run("formulate", mill, "Sound", "--json").json
+
+
+def test_a_proof_that_fails_shows_no_answer(run: Runner, mill: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def fails(_solution: object) -> None:
+        raise asking.NotProven("made to fail")
+
+    monkeypatch.setattr(asking, "prove", fails)
+    found = run("formulate", mill, "Sound", "--prove", "--json")
+    assert found.status == 2
+    assert found.out == ""
+    assert "could not be proven" in found.err
