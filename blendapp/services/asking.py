@@ -15,9 +15,10 @@ from blendapp.domain.wording import _
 from blendapp.optimise.build.composition import Composition
 from blendapp.optimise.build.no_mix import conflict_shown
 from blendapp.optimise.choice_conflicts import explain
-from blendapp.optimise.exact import NotProven, prove
+from blendapp.optimise.exact import NotProven, Proof, prove
 from blendapp.optimise.linear import FailedSolve
 from blendapp.optimise.near import near_optimal
+from blendapp.optimise.solution import Solution
 from blendapp.services.formulate import Answer, FailedCertificate, answer_to
 
 NEAR_PERCENT = 0.5
@@ -30,7 +31,7 @@ def with_near(
     """The result with the near-optimal range of every ingredient: over all mixes at most near_percent dearer.
 
     go_on is asked between solves; where it says no, what is not worked out stays None. A result that is not optimal
-    comes back as it is. Raises Refused for a tolerance below 0, FailedCertificate where the solver gives no clear status.
+    comes back as it is. Raises Refused for a tolerance below 0, FailedCertificate where no status is clear.
     """
     if not (math.isfinite(near_percent) and near_percent >= 0):
         raise Refused(_("A near-optimal tolerance must be 0 % or more; {value} is not.").format(value=near_percent))
@@ -84,7 +85,7 @@ def proven(answer: Answer) -> Result:
     if answer.solution is None or answer.result.status is not Status.OPTIMAL:
         return answer.result
     try:
-        proof = prove(answer.solution)
+        proof = _proof(answer.solution)
     except NotProven as failure:
         text = _("The answer to {formula} could not be proven ({failure}) and is not shown.")
         raise FailedCertificate(text.format(formula=answer.result.formula, failure=failure)) from failure
@@ -93,6 +94,15 @@ def proven(answer: Answer) -> Result:
         cost=notation().write(float(proof.objective), 6), currency=answer.result.currency, per=answer.result.cost_per
     )
     return replace(answer.result, proof=said)
+
+
+def _proof(solution: Solution) -> Proof:
+    """Numbers as the decimals that were typed, since binary fractions of 10 % and 90 % need not make 1; numbers that
+    were worked out (a dry-matter value as fed) may hold only as they stand."""
+    try:
+        return prove(solution, as_typed=True)
+    except NotProven:
+        return prove(solution)
 
 
 def formulate_whole(

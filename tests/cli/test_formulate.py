@@ -198,7 +198,7 @@ def test_prove_says_the_exact_cost_and_leaves_the_json_as_it_is(run: Runner, mil
 
 
 def test_a_proof_that_fails_shows_no_answer(run: Runner, mill: Path, monkeypatch: pytest.MonkeyPatch) -> None:
-    def fails(_solution: object) -> None:
+    def fails(_solution: object, as_typed: bool = False) -> None:
         raise asking.NotProven("made to fail")
 
     monkeypatch.setattr(asking, "prove", fails)
