@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import time
 from collections.abc import Callable
-from dataclasses import replace
 from pathlib import Path
 
 from PySide6.QtCore import QSettings
@@ -17,7 +16,6 @@ from blendapp.desk.start import make_app
 from blendapp.desk.theme import dress
 from blendapp.domain.formulas import Amounts, LimitKind
 from blendapp.domain.price_rows import PriceListReading
-from blendapp.domain.results import Check, Conflict, Reach, Repair, Result, Side, Status
 from blendapp.services import edits, sheets
 from blendapp.services import workbook as workbooks
 
@@ -82,7 +80,7 @@ def take_all(out_dir: Path, workbook: Path, price_list: Path, folder: Path, scal
 
 def _bench(studio: Studio, bench: Bench, _price_list: Path) -> None:
     bench.mix.table.setFocus()
-    studio.settle()
+    studio.settle(lambda: bench.work.has_further)
     studio.take(bench.frame, "03-bench")
 
 
@@ -206,13 +204,11 @@ def _formulas(studio: Studio, bench: Bench, _price_list: Path) -> None:
     work.choose(first)
     studio.settle(lambda: not work.stale)
     limit = next(one for one in work.library.limits(first or 0) if one.minimum and one.kind is LimitKind.NUTRIENT)
-    work.do(lambda mill: edits.change(mill, limit, minimum=(limit.minimum or 0.0) * 3, maximum=None))
+    work.do(lambda mill: edits.change(mill, limit, minimum=(limit.minimum or 0.0) * 1.12, maximum=None))
     studio.settle()
     studio.take(bench.frame, "17-conflict")
-    if work.result is not None and work.result.conflict is None:
-        work._show(_with_reasons(work.result, limit.id))
-        studio.settle()
-        studio.take(bench.frame, "18-conflict-with-its-repairs")
+    studio.settle(lambda: work.result is not None and work.result.conflict is not None)
+    studio.take(bench.frame, "18-conflict-with-its-repairs")
     work.undo()
     work.stale = True
     work.answered.emit()
@@ -220,20 +216,6 @@ def _formulas(studio: Studio, bench: Bench, _price_list: Path) -> None:
     studio.take(bench.frame, "19-stale")
     work.stale = False
     work.answered.emit()
-
-
-def _with_reasons(result: Result, limit_id: int) -> Result:
-    """The same conflict as the pages on conflicts describe it, with invented figures, to see how it reads."""
-    at = next(one.index for one in result.limits if one.limit_id == limit_id)
-    found = result.limits[at]
-    assert found.minimum is not None
-    other = next(one.index for one in result.limits if one.maximum is not None and one.index != at)
-    greatest = result.limits[other].maximum
-    assert greatest is not None
-    reach = (Reach(at, Side.MINIMUM, found.minimum, found.minimum * 0.6),)
-    repairs = (Repair(at, Side.MINIMUM, found.minimum, found.minimum * 0.6),
-               Repair(other, Side.MAXIMUM, greatest, greatest * 1.7))
-    return replace(result, status=Status.CONFLICT, check=Check(), conflict=Conflict(reach, (at, other), repairs))
 
 
 def _prices(studio: Studio, bench: Bench, price_list: Path) -> None:

@@ -7,11 +7,12 @@ is stale until then.
 
 from __future__ import annotations
 
+import threading
 import time
 from collections.abc import Callable, Sequence
 from typing import TypeVar
 
-from PySide6.QtCore import QObject, Signal
+from PySide6.QtCore import QObject, QTimer, Signal
 
 from blendapp.desk.aside import Aside
 from blendapp.domain.formulas import Formula, LimitKind
@@ -20,10 +21,15 @@ from blendapp.domain.problems import Refused
 from blendapp.domain.records import Change
 from blendapp.domain.results import IngredientResult, Result
 from blendapp.domain.wording import _
-from blendapp.services.formulate import FailedCertificate, formulate
+from blendapp.services.asking import ask_all
+from blendapp.services.formulate import Answer, FailedCertificate, answer_to, formulate
 from blendapp.services.mill import Edit, Mill, MillFileError, today
 
 SLOW_S = 0.06
+# Of a program with choices: the new answer, or the best mix found so far, is to be there within two seconds.
+CHOICE_S = 1.6
+# What more can be said of an answer waits until the window has shown it and the hand rests.
+REST_MS = 70
 Done = TypeVar("Done")
 Extra = TypeVar("Extra")
 
@@ -32,6 +38,7 @@ class Work(QObject):
     """opened: another mill, or none. edited: an Edit was taken. chosen: another formula, or none.
 
     answered: the result changed, or its staleness did; trying is true while a value is being tried and not stored.
+    learned: more is known of the result that is shown already: near-optimal ranges, or why there is none.
     said: a sentence for the person, with what can be listed below it.
     """
 
@@ -39,6 +46,7 @@ class Work(QObject):
     edited = Signal(object)
     chosen = Signal()
     answered = Signal()
+    learned = Signal()
     said = Signal(str, list)
 
     def __init__(self, parent: QObject | None = None) -> None:
@@ -57,8 +65,14 @@ class Work(QObject):
         self._slow: set[int] = set()
         self._by_id: dict[int, IngredientResult] = {}
         self._trial_base: Library | None = None
+        self.answer: Answer | None = None
         self._aside = Aside(self, (FailedCertificate, Refused, ValueError))
         self._aside.done.connect(self._take_solved)
+        self._enough = threading.Event()
+        self._further = Aside(self, (FailedCertificate, Refused, ValueError))
+        self._further.done.connect(self._take_further)
+        self._rest = QTimer(self, singleShot=True, interval=REST_MS)
+        self._rest.timeout.connect(self._ask_further)
 
     # -- what is open
 
@@ -91,7 +105,7 @@ class Work(QObject):
             before.close()
         self._slow.clear()
         self.formula_id = None
-        self.result = self.stored_result = None
+        self.result = self.stored_result = self.answer = None
         self.opened.emit()
         formulas = self.library.formulas
         self.choose(formulas[0].id if formulas else None)
@@ -99,6 +113,7 @@ class Work(QObject):
     def close(self) -> None:
         """Close the mill file."""
         self._aside.forget()
+        self._leave_further()
         if self._mill is not None:
             self._mill.close()
             self._mill = None
@@ -107,7 +122,7 @@ class Work(QObject):
         """Work on another formula."""
         self.formula_id = formula_id
         self.cost_before = None
-        self.result = self.stored_result = None
+        self.result = self.stored_result = self.answer = None
         self._by_id = {}
         self._admit()
         self.chosen.emit()
@@ -216,6 +231,7 @@ class Work(QObject):
     def solve(self) -> None:
         """Have the answer follow what the mill holds now."""
         self._aside.forget()
+        self._leave_further()
         if self.formula_id is None or self._mill is None:
             self.stored_result = None
             self.stale = False
@@ -228,7 +244,7 @@ class Work(QObject):
             return
         begun = time.perf_counter()
         try:
-            found = formulate(self.library, self.formula_id, self.on, self.mill.composition)
+            found = answer_to(self.library, self.formula_id, self.on, self.mill.composition)
         except (FailedCertificate, Refused, ValueError) as fault:
             self._take(None, fault)
             return
@@ -245,28 +261,63 @@ class Work(QObject):
         library, formula_id, on = self.library.copy(), self.formula_id, self.on
         assert formula_id is not None
 
-        def solve() -> tuple[Result, float]:
+        def solve() -> tuple[Answer, float]:
             begun = time.perf_counter()
-            return formulate(library, formula_id, on, time_limit_s=10.0), time.perf_counter() - begun
+            found = answer_to(library, formula_id, on, time_limit_s=CHOICE_S)
+            return found, time.perf_counter() - begun
 
         self._aside.ask(solve)
 
-    def _take_solved(self, given: tuple[Result, float] | None, fault: Exception | None) -> None:
+    def _take_solved(self, given: tuple[Answer, float] | None, fault: Exception | None) -> None:
         if self._mill is None:
             return
         if given is not None:
             self.solve_s = given[1]
         self._take(None if given is None else given[0], fault)
 
-    def _take(self, found: Result | None, fault: Exception | None) -> None:
+    def _take(self, given: Answer | None, fault: Exception | None) -> None:
         if fault is not None:
             self.said.emit(str(fault), [])
-        old = self.stored_result
+        old, found = self.stored_result, None if given is None else given.result
         if old is not None and found is not None and old.formula_id == found.formula_id:
             self.cost_before = old.cost
+        self.answer = given
         self.stored_result = found
         self.stale = False
         self._show(found)
+        if given is not None:
+            self._rest.start()
+
+    # -- what more there is to say of an answer
+
+    @property
+    def has_further(self) -> bool:
+        """Whether all that can be said of the answer is known."""
+        return self.answer is not None and self.stored_result is not self.answer.result
+
+    def _ask_further(self) -> None:
+        answer, enough = self.answer, self._enough
+        if answer is None or answer.built is None or self.stale:
+            return
+        self._further.ask(lambda: (answer, ask_all(answer, go_on=lambda: not enough.is_set())))
+
+    def _leave_further(self) -> None:
+        """What is being worked out about an answer is of no use once anything was edited."""
+        self._rest.stop()
+        self._further.forget()
+        self._enough.set()
+        self._enough = threading.Event()
+
+    def _take_further(self, given: tuple[Answer, Result] | None, fault: Exception | None) -> None:
+        if fault is not None:
+            self.said.emit(str(fault), [])
+        if given is None or given[0] is not self.answer or self._mill is None:
+            return
+        self.stored_result = given[1]
+        if not self.trying:
+            self.result = given[1]
+            self._by_id = {one.ingredient_id: one for one in given[1].ingredients}
+            self.learned.emit()
 
     def _show(self, found: Result | None) -> None:
         self.result = found

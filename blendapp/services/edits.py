@@ -245,6 +245,15 @@ def set_bound(mill: Mill, limit_id: int, side: str, bound: float | None) -> Edit
     return change(mill, limit, what, **{side: bound})
 
 
+def set_bounds(mill: Mill, what: str, bounds: Iterable[tuple[int, str, float | None]]) -> Edit:
+    """Move several ends at once, (limit, side, bound) each as in set_bound, as one undo."""
+    moved: dict[int, dict[str, float | None]] = {}
+    for limit_id, side, bound in bounds:
+        moved.setdefault(limit_id, {})[side] = bound
+    changes = [one for key, sides in moved.items() for one in field_changes(mill, mill.library.limit(key), **sides)]
+    return mill.apply(what, changes)
+
+
 def admit(mill: Mill, formula_id: int, ingredient_id: int) -> Edit:
     """Admit an ingredient to a formula without bounds."""
     return add_limit(mill, formula_id, LimitKind.INGREDIENT, Subject.ingredients(ingredient_id))

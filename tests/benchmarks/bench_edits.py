@@ -22,6 +22,8 @@ def main() -> None:
     parser = argparse.ArgumentParser(description=__doc__)
     parser.add_argument("--edits", type=int, default=100)
     parser.add_argument("--seed", type=int, default=1)
+    parser.add_argument("--pause-ms", type=int, default=0,
+                        help="rest up to so long between edits, so that what follows an answer is under way")
     asked = parser.parse_args()
 
     from PySide6.QtCore import QSettings
@@ -42,7 +44,13 @@ def main() -> None:
         bench.start(str(path))
         app.processEvents()
         random.seed(asked.seed)
-        both = [one_edit(bench, app) for _edit in range(asked.edits)]
+        both = []
+        for _edit in range(asked.edits):
+            end = time.monotonic() + random.random() * asked.pause_ms / 1000
+            while time.monotonic() < end:
+                app.processEvents()
+                time.sleep(0.001)
+            both.append(one_edit(bench, app))
         assert isinstance(app, QApplication)
         bench.close()
     print(f"{len(both)} edits to repainted results")

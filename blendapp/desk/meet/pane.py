@@ -69,6 +69,7 @@ class MeetPane(QWidget):
         work.chosen.connect(self._chosen)
         work.edited.connect(self._edited)
         work.answered.connect(self._answered)
+        work.learned.connect(self._answered)
         table.grip.proposed.connect(self._propose)
         table.grip.given.connect(self._give)
         table.grip.taken_back.connect(self._take_back)

@@ -6,13 +6,14 @@ import math
 from dataclasses import dataclass
 from enum import Enum
 
-from blendapp.desk.table.look import fitting_decimals
+from blendapp.desk.mix import why
 from blendapp.domain.cautions import general_caution
 from blendapp.domain.figures import decimals_of, write_measure
 from blendapp.domain.formulas import Amounts
 from blendapp.domain.notation import notation
-from blendapp.domain.results import Conflict, IngredientResult, NutrientResult, Repair, Result, Side, Status
+from blendapp.domain.results import Conflict, IngredientResult, NutrientResult, Repair, Result, Status
 from blendapp.domain.wording import _, plural
+from blendapp.services.asking import NEAR_PERCENT
 
 
 class Part(Enum):
@@ -33,7 +34,7 @@ class Part(Enum):
 class Line:
     """One line. text: on its left; amount, cost: the two columns at its right; bar: share of the longest bar.
 
-    ingredient_id: of an ingredient or its rail. fold: what a fold opens. repair: what an action applies. lack: decimals
+    ingredient_id: of an ingredient or its rail. fold: what a fold opens. repairs: what an action applies, as one undo. lack: decimals
     that the amount has less than the longest one. bar_range: near-optimal, as bar. price, share: further columns where
     there is room.
     """
@@ -46,7 +47,7 @@ class Line:
     hint: str = ""
     ingredient_id: int | None = None
     fold: str = ""
-    repair: Repair | None = None
+    repairs: tuple[Repair, ...] = ()
     lack: int = 0
     bar_range: tuple[float, float] | None = None
     price: str = ""
@@ -86,8 +87,8 @@ def _mix(result: Result, opened_ids: frozenset[int]) -> list[Line]:
     lines: list[Line] = []
     written = {one.ingredient_id: amount_words(result, one.amount or 0.0) for one in result.mix}
     most = max((_decimals(text) for text in written.values()), default=2)
-    reaches = [max(one.amount or 0.0, one.near_optimal[1] if one.near_optimal else 0.0) for one in result.mix]
-    longest = max(reaches, default=1.0) or 1.0
+    ends = [end for one in result.mix for end in (one.amount or 0.0, *(one.near_optimal or ()))]
+    longest = max((end for end in ends if math.isfinite(end)), default=1.0) or 1.0
     for one in result.mix:
         amount = one.amount or 0.0
         lines.append(Line(
@@ -141,8 +142,12 @@ def _share_words(result: Result, one: IngredientResult) -> str:
         text += _(", {share} % of the cost").format(share=_share(result, one))
     if one.near_optimal is not None:
         low, high = one.near_optimal
-        text += _("; other mixes at nearly this cost hold {low} to {high}").format(
-            low=amount_words(result, low), high=amount_words(result, high))
+        unit = "%" if result.amounts is Amounts.BLEND else _("kg/day")
+        known = _("; other mixes at most {near} % dearer hold {low} to {high} {unit}")
+        open_end = _("; other mixes at most {near} % dearer hold {low} {unit} or any more")
+        text += (known if math.isfinite(high) else open_end).format(
+            low=amount_words(result, low), high=amount_words(result, high) if math.isfinite(high) else "", unit=unit,
+            near=notation().write_short(NEAR_PERCENT))
     return text
 
 
@@ -238,39 +243,18 @@ def _no_answer(result: Result) -> list[Line]:
 
 
 def _conflict(result: Result, conflict: Conflict) -> list[Line]:
-    lines = []
-    for reach in conflict.reach:
-        limit = result.limits[reach.limit]
-        asked = notation().write_short(reach.asked)
-        if reach.reachable is None:
-            text = _("{name} cannot be reached at all; asked {asked}.").format(name=limit.name, asked=asked)
-        else:
-            text = _("{name} can reach {reachable} {unit}, asked {asked}.").format(
-                name=limit.name, reachable=write_measure(reach.reachable), unit=limit.unit, asked=asked)
-        lines.append(Line(Part.SENTENCE, text.replace("  ", " ")))
-    if len(conflict.members) > 1:
-        names = ", ".join(result.limits[index].name for index in conflict.members)
-        lines.append(Line(Part.SENTENCE, _("These cannot hold together, and without any one of them they can: {names}.")
-                          .format(names=names)))
-    repairs = [one for one in conflict.repairs if one.to is not None]
-    if repairs:
-        lines.append(Line(Part.HEADING, _("Any one of these makes it possible")))
-    lines += [Line(Part.ACTION, repair_words(result, one), repair=one) for one in repairs]
+    lines = [Line(Part.SENTENCE, text) for text in why.sentences(result, conflict)]
+    alone = [one for one in conflict.repairs if one.to is not None]
+    if alone:
+        head = _("This change alone makes it possible") if len(alone) == 1 else _(
+            "Any one of these makes it possible")
+        lines.append(Line(Part.HEADING, head))
+        lines += [Line(Part.ACTION, why.repair_words(result, one), repairs=(one,)) for one in alone]
+    together = tuple(one for one in conflict.total if one.to is not None)
+    if together and not (len(together) == 1 and together[0] in alone):
+        head = _("Or all of these together, the least change in all") if alone else _(
+            "Only several changes together make it possible; the least in all")
+        lines.append(Line(Part.HEADING, head))
+        words = "\n".join(why.repair_words(result, one) for one in together)
+        lines.append(Line(Part.ACTION, words, repairs=together))
     return lines
-
-
-def repair_words(result: Result, repair: Repair) -> str:
-    """What a repair does: "Lower the minimum of Lysine from 1.10 to 0.91 %"."""
-    assert repair.to is not None
-    limit = result.limits[repair.limit]
-    lower = repair.to < repair.frm
-    text = {
-        (Side.MINIMUM, True): _("Lower the minimum of {name} from {frm} to {to} {unit}"),
-        (Side.MINIMUM, False): _("Raise the minimum of {name} from {frm} to {to} {unit}"),
-        (Side.MAXIMUM, True): _("Lower the maximum of {name} from {frm} to {to} {unit}"),
-        (Side.MAXIMUM, False): _("Raise the maximum of {name} from {frm} to {to} {unit}"),
-    }[repair.bound, lower]
-    decimals = max(fitting_decimals(repair.frm, 0), min(decimals_of(repair.to), 4))
-    write = notation().write
-    return text.format(name=limit.name, frm=notation().write_short(repair.frm), to=write(repair.to, decimals),
-                       unit=limit.unit).strip()

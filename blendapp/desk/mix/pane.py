@@ -9,8 +9,10 @@ from blendapp.desk.meet.bounds import with_bound
 from blendapp.desk.mix.lines import Line, Part
 from blendapp.desk.mix.model import MixModel
 from blendapp.desk.mix.view import MixTable
+from blendapp.desk.mix.why import repaired
 from blendapp.desk.rail.geometry import End
 from blendapp.desk.shell.zone import Zone
+from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.work import Work
 from blendapp.domain.formulas import Amounts
 from blendapp.domain.problems import Refused
@@ -40,6 +42,7 @@ class MixPane(QWidget):
         column.addWidget(self.table, 1)
         self.setFocusProxy(self.table)
         work.answered.connect(self._answered)
+        work.learned.connect(self._answered)
         work.opened.connect(self._forget)
         self.table.clicked.connect(self._ask)
         self.table.asked.connect(self._ask)
@@ -76,7 +79,7 @@ class MixPane(QWidget):
         if not index.isValid() or index.row() >= len(self.model.lines):
             return
         line = self.model.line(index.row())
-        if line.part is Part.ACTION and line.repair is not None:
+        if line.part is Part.ACTION and line.repairs:
             self._repair(line)
         elif line.part is Part.RAIL and self.model.limit_of(line) is None:
             self.limit_wanted.emit(line.text)
@@ -86,11 +89,19 @@ class MixPane(QWidget):
             self.table.setCurrentIndex(self.model.index(min(row, len(self.model.lines) - 1), column))
 
     def _repair(self, line: Line) -> None:
-        result, repair = self.work.result, line.repair
-        if result is None or repair is None or repair.to is None:
+        """Apply every change of a button as one undo."""
+        result = self.work.result
+        if result is None or self.work.stale:
             return
-        limit_id = result.limits[repair.limit].limit_id
-        self.work.do(lambda mill: edits.set_bound(mill, limit_id, str(repair.bound), repair.to))
+        bounds = [
+            (result.limits[one.limit].limit_id, str(one.bound), repaired(one)[0])
+            for one in line.repairs if one.to is not None
+        ]
+        what = line.text if len(bounds) == 1 else _("Repair {formula}").format(formula=result.formula)
+        try:
+            self.work.do(lambda mill: edits.set_bounds(mill, what, bounds))
+        except (Refused, ValueError) as fault:
+            self.work.said.emit(sentence_of(fault), [])
 
     # -- an inclusion by hand
 
