@@ -43,6 +43,9 @@ def optimum(
         return "infeasible", None
     k = arrays.inequalities
     count = arrays.a.shape[0]
+    if not objective.size:  # no columns: the rows hold as they are or never
+        met = not (arrays.b[:k] > 0).any() and not arrays.b[k:].any()
+        return ("optimal", Vertex(np.zeros(0), np.zeros(count))) if met else ("infeasible", None)
     bounds = np.stack((arrays.lower, arrays.upper), axis=1)
     call: dict[str, Any] = {"bounds": bounds, "method": "highs-ds"}
     if k:

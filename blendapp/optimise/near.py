@@ -59,7 +59,7 @@ def near_optimal(solution: Solution, tolerance_percent: float = 0.5, go_on: Call
                 continue
             np.minimum(least, mix, out=least)
             np.maximum(most, mix, out=most)
-            ends[j] = min(mix[j], x[j]) if sign > 0 else max(mix[j], x[j])
+            ends[j] = (min(mix[j], x[j]) if sign > 0 else max(mix[j], x[j])) + 0.0
     return Near(low, high, dearest, True)
 
 

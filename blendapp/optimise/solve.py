@@ -16,7 +16,8 @@ from blendapp.optimise.linear import FailedSolve, Vertex, optimum
 from blendapp.optimise.program import Array, Program
 from blendapp.optimise.solution import LimitState, Side, Solution
 
-_MOST_EXCLUDED = 20
+_MOST_SEARCHES = 20
+_PROVEN = 1e-7  # the gap that an optimum may have
 _NULL = 1e-8  # a price that moves less than this along the null space is fixed
 TIED = 1e-9  # a reduced cost below this share of the largest cost is a tie
 _PRICE_NOISE = 1e-11  # duals below this share of the largest cost are rounding
@@ -89,7 +90,7 @@ def _clean(arrays: Arrays, raw: Array) -> tuple[Face, Array]:
 def _violation(arrays: Arrays, x: Array) -> float:
     slack = arrays.a @ x - arrays.b
     k = arrays.inequalities
-    worst = max(float((arrays.lower - x).max()), float((x - arrays.upper).max()), 0.0)
+    worst = max(float((arrays.lower - x).max(initial=0.0)), float((x - arrays.upper).max(initial=0.0)))
     if k:
         worst = max(worst, -float(slack[:k].min()))
     if k < slack.shape[0]:
@@ -194,34 +195,62 @@ def _column_limits(arrays: Arrays, face: Face, x: Array, reduced: Array, limits:
 
 
 def _solve_whole(program: Program, time_limit_s: float | None, started: float) -> Solution:
-    """Choose by the mixed-integer program, then price the linear program with that choice fixed."""
+    """Choose by the mixed-integer program, then price the linear program with that choice fixed.
+
+    The search takes a mark within 1e-6 of no for a no, and limits as met within 1e-6. A choice that needed this is
+    forbidden; one that costs more than the bound found becomes the ceiling of a closer search.
+    """
     excluded: list[NDArray[np.bool_]] = []
-    while True:
-        left = None if time_limit_s is None else time_limit_s - (time.perf_counter() - started)
-        choice = whole.choose(program, left, tuple(excluded))
+    best: Solution | None = None
+    bound = -np.inf
+    for _ in range(_MOST_SEARCHES):
+        left = None if time_limit_s is None else max(time_limit_s - (time.perf_counter() - started), 0.01)
+        choice = whole.choose(program, left, tuple(excluded), None if best is None else best.objective)
         if choice.x is None:
-            return Solution(choice.status, given=True, seconds=time.perf_counter() - started)
-        priced = whole.restrict(program, choice)
-        arrays = expand(priced)
-        status, vertex = optimum(arrays)
-        if vertex is not None:
             break
-        # the integer search allows 1e-6 where the linear program allows 1e-10: forbid the choice that needed it
-        if len(excluded) == _MOST_EXCLUDED:
-            raise FailedSolve(f"with the choice of columns fixed the program is {status}")
-        excluded.append(choice.used)
+        found = [_fixed(program, reading, started) for reading in whole.readings(program, choice)]
+        answers = [one for one in found if one is not None]
+        if not answers:
+            excluded.append(choice.used)
+            continue
+        bound = max(bound, choice.dual_bound)
+        best = min((*answers, *([] if best is None else [best])), key=lambda one: one.objective or 0.0)
+        best = dataclasses.replace(best, status=choice.status, gap=_gap(program, best, bound))
+        assert best.gap is not None
+        if best.status != "optimal" or best.gap <= _PROVEN:
+            return best
+    if best is not None:  # not proven least within what is asked of an optimum: then it is the best found
+        return dataclasses.replace(best, status="stopped")
+    if choice.x is not None:
+        raise FailedSolve("no choice of columns that the search offers meets the limits")
+    return Solution(choice.status, program=program, given=True, seconds=time.perf_counter() - started)
+
+
+def _fixed(program: Program, choice: whole.Choice, started: float) -> Solution | None:
+    """The answer with a choice fixed; None where the limits cannot be met with it."""
+    arrays = expand(whole.restrict(program, choice))
+    _, vertex = optimum(arrays)
+    if vertex is None:
+        return None
     linear = snapshot(arrays, vertex, started)
     assert linear.x is not None
     assert linear.objective is not None
-    flow = float(np.abs(program.cost) @ np.abs(linear.x))
     limits = dict(linear.limits)
     whole.choice_states(program, choice, linear.x, limits)
     return dataclasses.replace(
         linear,
         status=choice.status,
-        gap=max(linear.objective - choice.dual_bound, 0.0) / (flow if flow > 0 else 1.0),
+        gap=_gap(program, linear, choice.dual_bound),
         limits=limits,
         program=program,
         given=True,
         seconds=time.perf_counter() - started,
     )
+
+
+def _gap(program: Program, solution: Solution, bound: float) -> float:
+    """How far above a bound the cost lies, over the money that flows."""
+    assert solution.x is not None
+    assert solution.objective is not None
+    flow = float(np.abs(program.cost) @ np.abs(solution.x))
+    return max(solution.objective - bound, 0.0) / (flow if flow > 0 else 1.0)

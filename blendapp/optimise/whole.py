@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 
 from blendapp.optimise.arrays import Arrays, expand
 from blendapp.optimise.linear import optimum
-from blendapp.optimise.program import Array, Bound, Program
+from blendapp.optimise.program import Array, Bound, Program, Row
 from blendapp.optimise.solution import LimitState, Status
 
 _milp: Any = scipy.optimize.milp
@@ -34,8 +34,18 @@ class Choice(NamedTuple):
     dual_bound: float
 
 
-def choose(program: Program, time_limit_s: float | None = None, excluded: tuple[NDArray[np.bool_], ...] = ()) -> Choice:
-    """Solve the mixed-integer program. excluded: masks of choices not to be offered again."""
+def choose(
+    program: Program,
+    time_limit_s: float | None = None,
+    excluded: tuple[NDArray[np.bool_], ...] = (),
+    ceiling: float | None = None,
+) -> Choice:
+    """Solve the mixed-integer program. excluded: masks of choices not to be offered again. ceiling: a cost that a mix
+    is known to have: what costs more is left out, which keeps the marked columns' upper ends close."""
+    if ceiling is not None:
+        slack = 1e-9 * max(abs(ceiling), 1e-9)
+        cap = Row(program.cost, None, ceiling + slack)
+        program = dataclasses.replace(program, rows=(*program.rows, cap))
     n = program.size
     arrays = expand(program)
     lower, upper = arrays.lower.copy(), arrays.upper.copy()
@@ -47,7 +57,7 @@ def choose(program: Program, time_limit_s: float | None = None, excluded: tuple[
     if (lower > upper).any():
         return none
     marked = _marked(program)
-    _bound_marked(arrays, marked, lower, upper)
+    _bound_marked(arrays, marked, lower, upper, all_of_them=ceiling is not None)
     matrix, low, high = _constraints(program, arrays, marked, least, lower, upper, excluded)
     k = marked.size
     integrality = np.zeros(n + k)
@@ -118,6 +128,18 @@ def restrict(program: Program, choice: Choice) -> Program:
     )
 
 
+def readings(program: Program, choice: Choice) -> list[Choice]:
+    """What the solver's choice may mean: its marks, and, where something trickled past a mark, that taken as used,
+    if the counts allow it."""
+    assert choice.x is not None
+    trickled = choice.used | (choice.x > _USED * max(1.0, float(np.abs(choice.x).max())))
+    if (trickled == choice.used).all() or any(
+        int(trickled[list(count.columns)].sum()) > count.most for count in program.counts
+    ):
+        return [choice]
+    return [choice, choice._replace(used=trickled)]
+
+
 def choice_states(program: Program, choice: Choice, x: Array, limits: dict[int, LimitState]) -> None:
     """Add the state of the limits that the restricted program does not hold: counts, and least amounts unused."""
     if program.least_if_used is not None and program.least_limit is not None:
@@ -144,15 +166,17 @@ def _marked(program: Program) -> NDArray[np.int64]:
     return marked.nonzero()[0]
 
 
-def _bound_marked(arrays: Arrays, marked: NDArray[np.int64], lower: Array, upper: Array) -> None:
-    """Give every marked column a finite upper end: the most that the linear program lets it reach."""
+def _bound_marked(arrays: Arrays, marked: NDArray[np.int64], lower: Array, upper: Array, all_of_them: bool) -> None:
+    """Give every marked column a finite upper end, or all_of_them a closer one: the most that the linear program
+    lets it reach. A mark counts as no within 1e-6, so that much of the upper end can trickle past it."""
     for j in marked.tolist():
-        if np.isfinite(upper[j]):
+        if np.isfinite(upper[j]) and not all_of_them:
             continue
         cost = np.zeros(lower.shape[0])
         cost[j] = -1.0
         _, vertex = optimum(arrays, cost=cost)
-        upper[j] = _ENDLESS if vertex is None else max(float(vertex.x[j]) * (1 + 1e-9), 0.0)
+        reach = _ENDLESS if vertex is None else max(float(vertex.x[j]) * (1 + 1e-9), 0.0)
+        upper[j] = min(upper[j], max(reach, lower[j]))
 
 
 def _constraints(

@@ -37,7 +37,7 @@ def holds_exactly(program: Program, x: tuple[Fraction, ...]) -> bool:
     )
 
 
-@settings(max_examples=60, deadline=None)
+@settings(max_examples=60, deadline=None, derandomize=True)
 @given(made.programs())
 def test_a_proof_is_a_mix_and_prices_that_meet_each_other_exactly(program: Program) -> None:
     solution = settle(solve(program))

@@ -17,7 +17,7 @@ from blendapp.optimise.ties import settle
 from tests.optimise import made
 
 
-@settings(max_examples=60, deadline=None)
+@settings(max_examples=60, deadline=None, derandomize=True)
 @given(program=made.programs(), seed=st.integers(0, 10**6), share=st.sampled_from([0.001, 0.02, 0.3]))
 def test_after_any_change_of_prices_the_cost_is_that_of_a_fresh_solve(
     program: Program, seed: int, share: float

@@ -28,7 +28,7 @@ def optimal_face(program: Program, cost: np.ndarray, objective: float) -> Progra
     return dataclasses.replace(program, cost=cost, rows=(*program.rows, Row(program.cost, None, objective + room)))
 
 
-@settings(max_examples=40, deadline=None)
+@settings(max_examples=40, deadline=None, derandomize=True)
 @given(seed=st.integers(0, 10**6), columns=st.integers(2, 9), limits=st.integers(0, 5))
 def test_the_mix_is_the_largest_in_the_order_of_the_columns(seed: int, columns: int, limits: int) -> None:
     program = tied(seed, columns, limits)
@@ -52,7 +52,7 @@ def test_the_mix_is_the_largest_in_the_order_of_the_columns(seed: int, columns: 
         held = dataclasses.replace(held, rows=(*held.rows, Row(unit, -most - 1e-9, None)))
 
 
-@settings(max_examples=40, deadline=None)
+@settings(max_examples=40, deadline=None, derandomize=True)
 @given(seed=st.integers(0, 10**6), columns=st.integers(2, 9), limits=st.integers(0, 5))
 def test_with_a_reference_the_change_from_it_is_least(seed: int, columns: int, limits: int) -> None:
     program = tied(seed, columns, limits)
@@ -91,7 +91,7 @@ def test_with_a_reference_the_change_from_it_is_least(seed: int, columns: int, l
     assert np.abs(found.x - reference).sum() == pytest.approx(least, abs=1e-6)
 
 
-@settings(max_examples=25, deadline=None)
+@settings(max_examples=25, deadline=None, derandomize=True)
 @given(seed=st.integers(0, 10**6), columns=st.integers(2, 8), limits=st.integers(0, 5))
 def test_prices_of_a_settled_mix_are_what_solving_again_gives(seed: int, columns: int, limits: int) -> None:
     """A settled mix need not be a vertex."""

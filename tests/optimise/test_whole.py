@@ -40,7 +40,7 @@ def by_trying_all(program: Program) -> float | None:
     return best
 
 
-@settings(max_examples=40, deadline=None)
+@settings(max_examples=40, deadline=None, derandomize=True)
 @given(
     seed=st.integers(0, 10**6),
     columns=st.integers(3, 7),
