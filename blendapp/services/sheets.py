@@ -16,6 +16,7 @@ from blendapp.domain.formulas import LimitKind
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.results import LimitResult, NutrientResult, Result, Side
 from blendapp.domain.wording import _
+from blendapp.services.targets import refuse_over_a_mill
 
 
 def batch_pdf(batch: Batch, paper: str = "A4") -> bytes:
@@ -43,8 +44,9 @@ def page_images(pdf: bytes, dots_per_inch: float) -> list[bytes]:
 def unfinished(path: Path, data: bytes) -> Iterator[Callable[[], None]]:
     """Data written beside its path; calling what is yielded puts it in place, else it is gone after.
 
-    Raises Refused where the folder or the file cannot be written.
+    Raises Refused where the folder or the file cannot be written, and where a mill file stands there.
     """
+    refuse_over_a_mill(path)
     if path.is_dir():
         raise _unwritable(path, IsADirectoryError(_("it is a folder")))
     # Not a private temporary file: the sheet is for whoever the folder lets read.

@@ -11,6 +11,7 @@ from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.records import KINDS, Change, added
 from blendapp.domain.wording import _
 from blendapp.services.mill import Edit, Mill
+from blendapp.services.targets import refuse_over_a_mill
 
 
 def new_mill(
@@ -58,7 +59,11 @@ def read(
 
 
 def export_workbook(library: Library, workbook: Path | str, on: datetime.date) -> list[Problem]:
-    """Write the exchange workbook; an older file of that name is replaced whole. Returns warnings. Raises Refused."""
+    """Write the exchange workbook; an older workbook of that name is replaced whole. Returns warnings.
+
+    Raises Refused, also where a mill file stands there.
+    """
     from blendapp.exchange import write_workbook
 
+    refuse_over_a_mill(Path(workbook))
     return list(write_workbook(Path(workbook), library, on))
