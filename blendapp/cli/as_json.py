@@ -20,7 +20,8 @@ def text_of(plain: dict[str, Any]) -> str:
 
 def _finite(value: Any) -> Any:
     if isinstance(value, float):
-        return value if math.isfinite(value) else None
+        # Adding 0 turns a minus zero, which is no amount of anything, into 0.
+        return value + 0.0 if math.isfinite(value) else None
     if isinstance(value, dict):
         return {key: _finite(inner) for key, inner in value.items()}
     if isinstance(value, list | tuple):

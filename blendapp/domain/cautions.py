@@ -56,7 +56,7 @@ NPN_UNKNOWN = Rule(
     "non-protein nitrogen of unknown strength",
     N_(
         "{ingredient} holds non-protein nitrogen in a feed for {animal}, and its crude protein is unknown, so that "
-        "{limit} % cannot be kept. Enter its crude protein or leave it out."
+        "{limit} % cannot be kept. Enter it (for the nutrient with the key crude protein), or leave {ingredient} out."
     ),
     "West Virginia 61-5-12.2",
     1.25,
@@ -91,6 +91,17 @@ RULES: tuple[Rule, ...] = (
 Mix = Sequence[tuple[int, float]]
 
 
+# A feed is for more than one of them.
+_ANIMALS = {
+    Animal.PIG: N_("pigs"), Animal.GOAT: N_("goats"), Animal.HORSE: N_("horses"), Animal.OTHER: N_("other animals"),
+}
+
+
+def animals(animal: Animal) -> str:
+    """A kind of animal as a sentence names more than one of it."""
+    return _(_ANIMALS.get(animal, animal.value))
+
+
 def general_caution() -> str:
     return _(GENERAL_CAUTION)
 
@@ -107,7 +118,7 @@ def forbidden_by_admission(formula: Formula, admitted: Sequence[Ingredient]) -> 
         if formula.animal is Animal.HORSE and Tag.IONOPHORE in ingredient.tags:
             found.append(_said(IONOPHORE_HORSE, ingredient=ingredient.name))
         if formula.animal is not None and formula.animal.ruminant and Tag.RUMINANT_PROTEIN in ingredient.tags:
-            found.append(_said(RUMINANT_PROTEIN, ingredient=ingredient.name, animal=_(formula.animal)))
+            found.append(_said(RUMINANT_PROTEIN, ingredient=ingredient.name, animal=animals(formula.animal)))
     return " ".join(found) or None
 
 
@@ -123,13 +134,13 @@ def forbidden_in_mix(formula: Formula, library: Library, mix: Mix) -> str | None
             continue
         protein = npn_crude_protein_percent(library, ingredient)
         if protein is None:
-            return _said(NPN_UNKNOWN, ingredient=ingredient.name, animal=_(formula.animal))
+            return _said(NPN_UNKNOWN, ingredient=ingredient.name, animal=animals(formula.animal))
         brought += protein * amount / total
         names.append(ingredient.name)
     limit = NPN_NON_RUMINANT.limit or 0.0
     if brought <= limit * (1 + 1e-9):
         return None
-    return _said(NPN_NON_RUMINANT, ingredient=", ".join(names), value=f"{brought:.2f}", animal=_(formula.animal))
+    return _said(NPN_NON_RUMINANT, ingredient=", ".join(names), value=f"{brought:.2f}", animal=animals(formula.animal))
 
 
 def npn_crude_protein_percent(library: Library, ingredient: Ingredient) -> float | None:
@@ -161,14 +172,21 @@ def warnings(formula: Formula, library: Library, mix: Mix, unknown: Sequence[Unk
         found += [_said(COPPER_SHEEP, ingredient=ingredient.name) for ingredient in copper]
     found += _selenium(library, used)
     found += _medicated(used)
-    found += [
-        _("{nutrient} of {ingredient} is unknown and counts as 0 under a limit that this may break; enter it.").format(
-            nutrient=u.nutrient, ingredient=u.ingredient
-        )
-        for u in unknown
-        if u.unsafe
-    ]
+    found += [_unsafe(library, u) for u in unknown if u.unsafe]
     return found
+
+
+def _unsafe(library: Library, unknown: UnknownValue) -> str:
+    """What is missing: the value itself, or the dry matter without which one on dry matter says nothing as fed."""
+    text = _("{nutrient} of {ingredient} is unknown and counts as 0 under a limit that this may break; enter it.")
+    nutrient = library.named("nutrient", unknown.nutrient)
+    ingredient = library.named("ingredient", unknown.ingredient)
+    if nutrient is not None and ingredient is not None and library.value(ingredient.id, nutrient.id) is not None:
+        text = _(
+            "{nutrient} of {ingredient} is known only in its dry matter, which is unknown, and counts as 0 under a limit "
+            "that this may break; enter the dry matter."
+        )
+    return text.format(nutrient=unknown.nutrient, ingredient=unknown.ingredient)
 
 
 def _sensitive(used: Sequence[tuple[Ingredient, float]]) -> list[str]:

@@ -7,10 +7,11 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, replace
 
 from blendapp.domain import cautions
-from blendapp.domain.formulas import Formula
+from blendapp.domain.formulas import Formula, LimitKind
 from blendapp.domain.library import Library
+from blendapp.domain.notation import notation
 from blendapp.domain.problems import Refused
-from blendapp.domain.results import Check, Result, Status, UnknownValue
+from blendapp.domain.results import Check, LimitResult, Result, Status, UnknownValue
 from blendapp.domain.wording import _
 from blendapp.optimise import certificate, rays
 from blendapp.optimise.build import answer
@@ -143,7 +144,19 @@ def _answer(
     check = Check(found.largest_violation, found.duality_gap)
     said = cautions.warnings(built.formula, library, mix, unknown)
     worth = sensitivity(solution) if prices and solution.status == "optimal" else None
-    return answer.answered(library, on, built, solution, check, unknown, said, worth)
+    result = answer.answered(library, on, built, solution, check, unknown, said, worth)
+    return replace(result, cautions=(*result.cautions, *_without_value(result.limits)))
+
+
+def _without_value(limits: Sequence[LimitResult]) -> list[str]:
+    """A sentence for each limit that divides by what this mix has none of: its value is null, and that is said."""
+    text = _("{limit} has no value in this mix, since what it is divided by is 0: the limit says nothing about it.")
+    divided = (LimitKind.NUTRIENT, LimitKind.INGREDIENT, LimitKind.GROUP, LimitKind.RATIO)
+    return [
+        text.format(limit=one.name if one.per is None else f"{one.name} : {one.per}")
+        for one in limits
+        if one.value is None and one.kind in divided
+    ]
 
 
 def _none(
@@ -164,6 +177,9 @@ def _why_infeasible(
         if _solve(whole.program, time_limit_s).status in ("optimal", "unbounded", "stopped"):
             text = _("No mix without a price for {ingredients}; enter a price, and there is one.")
             return Status.INCOMPLETE, text.format(ingredients=", ".join(i.name for i in built.unpriced))
+    if not built.ingredients and not built.unpriced:
+        text = _("The formula admits no ingredient; list some for it, or let it admit all.")
+        return Status.CONFLICT, text
     if not built.ingredients:
         return Status.CONFLICT, _("The formula admits no ingredient that has a price.")
     return Status.CONFLICT, _("No mix of the admitted ingredients can meet all limits together.")
@@ -180,5 +196,5 @@ def _why_unbounded(built: FormulaProgram) -> str:
     else:
         text = _("The cost can fall for ever: nothing limits how much of {ingredients} is fed together.")
         columns = found.growing
-    names = [f"{built.ingredients[j].name} ({built.price_per_t[j]:g})" for j in columns]
+    names = [f"{built.ingredients[j].name} ({notation().write_short(float(built.price_per_t[j]))})" for j in columns]
     return text.format(ingredients=", ".join(names)) + " " + _("Set a maximum, or correct the price.")

@@ -152,3 +152,9 @@ def test_a_reader_that_goes_away_early_gets_no_traceback(mill: Path) -> None:
     child.wait(timeout=120)
     assert "Traceback" not in said
     assert "Exception" not in said
+
+
+def test_a_minus_zero_is_written_as_0() -> None:
+    from blendapp.cli import as_json
+
+    assert as_json.text_of({"amount": -0.0, "gap": float("inf")}) == '{\n  "amount": 0.0,\n  "gap": null\n}'

@@ -294,3 +294,29 @@ def test_a_composition_kept_between_solves_gives_the_answer_of_a_fresh_one() -> 
         library.apply([change])
         kept.refresh(library, [change])
         assert formulate(library, 1, TODAY, kept) == formulate(library, 1, TODAY)
+
+
+def test_a_limit_that_divides_by_0_has_no_value_and_that_is_said() -> None:
+    make = Maker()
+    make.nutrient("Calcium")
+    make.nutrient("Phosphorus")
+    make.ingredient("Oil", 900, {"Calcium": 0.0, "Phosphorus": 0.0})
+    make.ingredient("Chalk", 950, {"Calcium": 38.0, "Phosphorus": 0.1})
+    feed = make.formula()
+    make.limit(feed, "ratio", "Calcium", 1.0, None, per="Phosphorus")
+    result = formulate(make.library, feed.id, TODAY)
+    assert [limit.value for limit in result.limits] == [None]
+    assert [text for text in result.cautions if text.startswith("Calcium : Phosphorus has no value in this mix")]
+    make.limit(feed, "ingredient", "Chalk", 1.0)
+    result = formulate(make.library, feed.id, TODAY)
+    assert result.limits[0].value == pytest.approx(380.0)
+    assert not [text for text in result.cautions if "has no value" in text]
+
+
+def test_a_formula_that_admits_nothing_is_not_told_to_find_prices() -> None:
+    make = Maker()
+    make.ingredient("Maize", 200)
+    feed = make.formula(admits=Admits.LISTED)
+    result = formulate(make.library, feed.id, TODAY)
+    assert result.status is Status.CONFLICT
+    assert result.cause == "The formula admits no ingredient; list some for it, or let it admit all."

@@ -122,3 +122,16 @@ def test_a_nutrient_with_a_limit_of_its_own_is_marked_as_limited() -> None:
     make.limit(feed, "ratio", "Energy", None, 99, per="Aflatoxin")
     result = formulate(make.library, feed.id, TODAY)
     assert {n.name: n.limited for n in result.nutrients} == {"Aflatoxin": True, "Balance": False, "Energy": False}
+
+
+def test_a_value_on_dry_matter_without_the_dry_matter_asks_for_the_dry_matter() -> None:
+    make, feed = mill()
+    make.ingredient("Barley", 150, {"Aflatoxin": 4}, basis=Basis.DRY_MATTER)
+    make.limit(feed, "nutrient", "Aflatoxin", None, 20)
+    said = formulate(make.library, feed.id, TODAY).cautions
+    about = {name: [text for text in said if name in text] for name in ("Wheat", "Barley")}
+    (barley,) = about["Barley"]
+    (wheat,) = about["Wheat"]
+    assert barley.endswith("enter the dry matter.")
+    assert "known only in its dry matter" in barley
+    assert wheat.endswith("is unknown and counts as 0 under a limit that this may break; enter it.")
