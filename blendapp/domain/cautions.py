@@ -183,8 +183,8 @@ def _unsafe(library: Library, unknown: UnknownValue) -> str:
     ingredient = library.named("ingredient", unknown.ingredient)
     if nutrient is not None and ingredient is not None and library.value(ingredient.id, nutrient.id) is not None:
         text = _(
-            "{nutrient} of {ingredient} is known only in its dry matter, which is unknown, and counts as 0 under a limit "
-            "that this may break; enter the dry matter."
+            "{nutrient} of {ingredient} is known only in its dry matter, which is unknown, and counts as 0 under a "
+            "limit that this may break; enter the dry matter."
         )
     return text.format(nutrient=unknown.nutrient, ingredient=unknown.ingredient)
 
