@@ -64,7 +64,7 @@ def read_price_list(
 
 
 def _tables(source: SourceFile) -> list[RawTable]:
-    return [read_delimited(source)] if source.format is Format.TEXT else read_spreadsheet(source, formats=True)
+    return [read_delimited(source)] if source.format is Format.TEXT else read_spreadsheet(source)
 
 
 def _chosen(tables: list[RawTable], sheet: str | None, file: str, notes: list[str]) -> list[RawTable]:

@@ -8,7 +8,6 @@ import pickle
 import re
 import subprocess
 import sys
-import warnings
 import zipfile
 from collections.abc import Iterator
 from contextlib import contextmanager
@@ -19,7 +18,8 @@ from blendapp.domain.wording import _
 from blendapp.exchange import ods_check, stored_values, xlsx_scan
 from blendapp.exchange.files import Format, SourceFile, entities_sentence, locked, refusal
 from blendapp.exchange.stored_values import StoredSheet
-from blendapp.exchange.tables import CellValue, PercentCell, RawTable
+from blendapp.exchange.tables import CellValue, MergedRange, PercentCell, RawTable, column_number
+from blendapp.exchange.xlsx_styles import shows_percent
 
 # calamine lays a sheet out as a full rectangle, so a cell far out costs memory for everything before it.
 GREATEST_AREA = 5_000_000
@@ -27,11 +27,10 @@ MOST_MEMORY_BYTES = 2_000_000_000
 MOST_SECONDS = 15.0
 
 
-def read_spreadsheet(source: SourceFile, formats: bool = False) -> list[RawTable]:
+def read_spreadsheet(source: SourceFile) -> list[RawTable]:
     """Every sheet of a workbook in its order.
 
-    formats: whether number formats that may show a currency are wanted; known for .xlsx and .xlsm only. Looking for
-    them takes as long again, and is done only where the file has one. Percentages are told apart in any case.
+    Formats, merged cells and what is hidden or struck through are known for .xlsx and .xlsm only.
     Raises Refused with one sentence if the file cannot be read.
     """
     if source.format is not Format.XLSX:
@@ -48,8 +47,10 @@ def read_spreadsheet(source: SourceFile, formats: bool = False) -> list[RawTable
         table.hidden_columns = frozenset(scan.hidden_columns)
         for (row, column), mark in scan.marks.items():
             _place(table.rows, row, column, mark)
-    if xlsx_scan.has_telling_format(source.data, money=formats):
-        _add_formats(source, tables)
+        table.formats, table.struck, table.merged = scan.formats, frozenset(scan.struck), _ranges(scan.merged)
+        for (row, column), number_format in scan.formats.items():
+            if shows_percent(number_format):
+                _mark_percent(table.rows, row, column)
     return tables
 
 
@@ -136,33 +137,14 @@ def _silent() -> Iterator[None]:
         os.close(nowhere)
 
 
-def _add_formats(source: SourceFile, tables: list[RawTable]) -> None:
-    """Number formats of .xlsx cells that hold a number, from openpyxl."""
-    import openpyxl
-    from openpyxl.styles.numbers import BUILTIN_FORMATS
-
-    plain = {code for number, code in BUILTIN_FORMATS.items() if number not in (9, 10)}
-    try:
-        with warnings.catch_warnings():
-            warnings.simplefilter("ignore")  # what the library says of styles that it drops is no matter of ours
-            workbook = openpyxl.load_workbook(io.BytesIO(source.data))
-        for table in tables:
-            sheet = workbook[table.sheet]
-            table.formats = {
-                (cell.row - 1, cell.column - 1): cell.number_format
-                for cell in sheet._cells.values()  # sparse: iterating rows would fill in every blank cell
-                if cell.data_type in ("n", "f") and cell.value is not None and cell.number_format not in plain
-            }
-            for (row, column), number_format in table.formats.items():
-                if _shows_percent(number_format):
-                    _mark_percent(table.rows, row, column)
-    except Exception:  # a broken file makes the parser raise anything
-        raise _unreadable(source) from None
+_RANGE = re.compile(r"([A-Z]{1,3})([0-9]{1,7}):([A-Z]{1,3})([0-9]{1,7})")
 
 
-def _shows_percent(number_format: str) -> bool:
-    """Whether a format shows 0.12 as 12 %; a percent sign in quotes or behind a backslash is only printed."""
-    return "%" in re.sub(r'"[^"]*"|\\.', "", number_format)
+def _ranges(merged: list[str]) -> tuple[MergedRange, ...]:
+    found = map(_RANGE.fullmatch, merged)
+    return tuple(
+        MergedRange(int(f[2]) - 1, column_number(f[1]), int(f[4]) - 1, column_number(f[3])) for f in found if f
+    )
 
 
 def _mark_percent(rows: list[list[CellValue]], row: int, column: int) -> None:

@@ -6,6 +6,7 @@ import datetime
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from enum import Enum
+from typing import NamedTuple
 
 
 @dataclass(frozen=True)
@@ -62,6 +63,15 @@ def kind_of(value: CellValue) -> CellKind:
     return CellKind.DATE
 
 
+class MergedRange(NamedTuple):
+    """Merged cells, from 0, ends included; the value stands in the first one."""
+
+    first_row: int
+    first_column: int
+    last_row: int
+    last_column: int
+
+
 @dataclass
 class RawTable:
     """The cells of one sheet, or of one text, by row and column from 0; row 0 is row 1 as the editor shows it.
@@ -77,6 +87,8 @@ class RawTable:
     hidden_rows: frozenset[int] | None = None
     hidden_columns: frozenset[int] | None = None
     formats: Mapping[tuple[int, int], str] = field(default_factory=dict)
+    struck: frozenset[tuple[int, int]] = frozenset()
+    merged: tuple[MergedRange, ...] = ()
 
     def cell(self, row: int, column: int) -> CellValue:
         """The value of a cell; None beyond the end of its row."""
@@ -95,3 +107,11 @@ def column_letters(column: int) -> str:
         column, rest = divmod(column - 1, 26)
         letters = chr(65 + rest) + letters
     return letters
+
+
+def column_number(letters: str) -> int:
+    """A column as the spreadsheet names it, from 0: A is 0, AA is 26."""
+    found = 0
+    for letter in letters:
+        found = found * 26 + ord(letter) - 64
+    return found - 1

@@ -7,9 +7,12 @@ import posixpath
 import re
 import zipfile
 from dataclasses import dataclass, field
-from xml.parsers import expat
 
-from blendapp.exchange.tables import NO_STORED_VALUE, ErrorCell, NoStoredValue
+from blendapp.exchange.tables import NO_STORED_VALUE, ErrorCell, NoStoredValue, column_number
+from blendapp.exchange.xlsx_parser import ForbiddenEntities, careful_parser
+from blendapp.exchange.xlsx_styles import CellStyles, read_styles
+
+__all__ = ["ForbiddenEntities", "SheetScan", "careful_parser", "scan_sheets", "sheet_parts"]
 
 _REFERENCE = re.compile(r"([A-Z]{1,3})([0-9]{1,7})")
 _ROW = re.compile(r"[0-9]{1,7}")
@@ -18,22 +21,25 @@ _COLUMNS: dict[str, int] = {}
 
 @dataclass
 class SheetScan:
-    """marks: cells, by (row, column) from 0, that hold no value. last_row, last_column: of cells that hold anything."""
+    """marks: cells, by (row, column) from 0, that hold no value. last_row, last_column: of cells that hold anything.
+
+    formats: number formats that tell something, of cells with a number. struck: filled cells that are struck through.
+    merged: ranges of merged cells as the file writes them, B1:C1.
+    """
 
     marks: dict[tuple[int, int], ErrorCell | NoStoredValue] = field(default_factory=dict)
     last_row: int = -1
     last_column: int = -1
     hidden_rows: set[int] = field(default_factory=set)
     hidden_columns: set[int] = field(default_factory=set)
+    formats: dict[tuple[int, int], str] = field(default_factory=dict)
+    struck: set[tuple[int, int]] = field(default_factory=set)
+    merged: list[str] = field(default_factory=list)
 
     @property
     def area(self) -> int:
         """Cells of the rectangle from A1 to the last cell that holds anything."""
         return (self.last_row + 1) * (self.last_column + 1)
-
-
-class ForbiddenEntities(Exception):
-    """A part of the file declares a document type."""
 
 
 def scan_sheets(data: bytes) -> dict[str, SheetScan]:
@@ -42,29 +48,13 @@ def scan_sheets(data: bytes) -> dict[str, SheetScan]:
         parts = {part.filename for part in archive.infolist()}
         found: dict[str, SheetScan] = {}
         by_name = sheet_parts(archive)
+        styles = read_styles(archive)
         for name, part in by_name.items():
-            found[name] = _scan(archive.read(part)) if part in parts else SheetScan()
+            found[name] = _scan(archive.read(part), styles) if part in parts else SheetScan()
         for part in parts - set(by_name.values()):
             if part.startswith("xl/") and part.endswith((".xml", ".rels")):
                 careful_parser().Parse(archive.read(part), True)  # so that no other parser meets a broken part
         return found
-
-
-# Formats that show a share as a percentage, and formats that print a sign, a code or a word beside the number. Built-in
-# formats other than percentages are left out: what they print depends on where the file is opened.
-_PERCENT_FORMAT = re.compile(rb"""numFmtId=["'](?:9|10)["']|formatCode=["'][^"']*%""")
-_SIGN = rb"""&quot;|&#34;|\$|\\|[\x80-\xff]"""
-_MONEY_FORMAT = re.compile(rb"""formatCode=(?:"[^"]*(?:%b)|'[^']*(?:"|%b))""" % (_SIGN, _SIGN))
-
-
-def has_telling_format(data: bytes, money: bool) -> bool:
-    """Whether a number format of the file shows a percentage or, if asked, may show a currency."""
-    with zipfile.ZipFile(io.BytesIO(data)) as archive:
-        try:
-            styles = archive.read("xl/styles.xml")
-        except KeyError:
-            return False
-    return bool(_PERCENT_FORMAT.search(styles) or (money and _MONEY_FORMAT.search(styles)))
 
 
 def sheet_parts(archive: zipfile.ZipFile) -> dict[str, str]:
@@ -94,18 +84,6 @@ def _local(tag: str) -> str:
     return tag.rpartition(":")[2]
 
 
-def careful_parser(namespaces: bool = False) -> expat.XMLParserType:
-    """A parser that raises ForbiddenEntities where a document type or an entity is declared."""
-    def forbid(*_arguments: object) -> None:
-        raise ForbiddenEntities
-
-    parser = expat.ParserCreate(namespace_separator=" ") if namespaces else expat.ParserCreate()
-    parser.StartDoctypeDeclHandler = forbid
-    parser.EntityDeclHandler = forbid
-    parser.buffer_text = True
-    return parser
-
-
 def _parse(data: bytes, start: object) -> None:
     parser = careful_parser()
     parser.StartElementHandler = start  # type: ignore[assignment]
@@ -115,18 +93,17 @@ def _parse(data: bytes, start: object) -> None:
 def _column(letters: str) -> int:
     found = _COLUMNS.get(letters)
     if found is None:
-        found = 0
-        for letter in letters:
-            found = found * 26 + ord(letter) - 64
-        _COLUMNS[letters] = found = found - 1
+        found = _COLUMNS[letters] = column_number(letters)
     return found
 
 
 class _Cells:
     """The handlers of one sheet; a class, since the parser calls them a few hundred thousand times."""
 
-    def __init__(self) -> None:
+    def __init__(self, styles: CellStyles) -> None:
         self.scan = SheetScan()
+        self.styles, self.telling = styles, styles.telling
+        self.style = "0"
         self.row, self.column = -1, -1
         self.kind = ""
         self.formula = self.holds = self.in_value = False
@@ -143,6 +120,7 @@ class _Cells:
             else:
                 self.column += 1
             self.kind = attributes.get("t", "")
+            self.style = attributes.get("s", "0")
             self.formula = self.holds = False
             self.text.clear()
         elif tag in ("v", "is"):
@@ -155,6 +133,8 @@ class _Cells:
             self.column = -1
             if attributes.get("hidden") in ("1", "true"):
                 self.scan.hidden_rows.add(self.row)
+        elif tag == "mergeCell":
+            self.scan.merged.append(attributes.get("ref", ""))
         elif tag == "col" and attributes.get("hidden") in ("1", "true"):
             first, last = int(attributes.get("min", 1)), int(attributes.get("max", 1))
             self.scan.hidden_columns.update(range(first - 1, min(last, 16384)))
@@ -178,12 +158,21 @@ class _Cells:
                 scan.marks[self.row, self.column] = ErrorCell("".join(self.text).strip() or "#ERROR")
             elif self.formula and not self.holds and self.kind != "str":
                 scan.marks[self.row, self.column] = NO_STORED_VALUE
+            elif self.style in self.telling:
+                self._take_style()
         elif tag in ("v", "is"):
             self.in_value = False
 
+    def _take_style(self) -> None:
+        place = self.row, self.column
+        if self.style in self.styles.struck:
+            self.scan.struck.add(place)
+        if self.kind in ("", "n") and self.style in self.styles.formats:
+            self.scan.formats[place] = self.styles.formats[self.style]
 
-def _scan(data: bytes) -> SheetScan:
-    cells = _Cells()
+
+def _scan(data: bytes, styles: CellStyles) -> SheetScan:
+    cells = _Cells(styles)
     parser = careful_parser()
     parser.StartElementHandler = cells.start
     parser.EndElementHandler = cells.end

@@ -50,7 +50,7 @@ def make_workbook(path: Path, ingredients: int, nutrients: int) -> None:
     workbook.save(path)
 
 
-def make_price_list(path: Path, library: Library, rows: int, columns: int) -> None:
+def make_price_list(path: Path, library: Library, rows: int, columns: int, number_format: str = "") -> None:
     chance = random.Random(2)
     workbook = openpyxl.Workbook()
     sheet = workbook.worksheets[0]
@@ -60,6 +60,8 @@ def make_price_list(path: Path, library: Library, rows: int, columns: int) -> No
         known = number < len(library.ingredients)
         name = library.ingredients[number].name if known else f"Other goods {number}"
         sheet.append([name, round(chance.uniform(100, 900), 2), "t", *(f"text {number}" for _note in notes)])
+        if number_format:
+            sheet.cell(number + 2, 2).number_format = number_format
     workbook.save(path)
 
 
@@ -107,6 +109,8 @@ def main() -> None:
         prices = Path(folder, "prices.xlsx")
         make_price_list(prices, library, 5000, 20)
         compare("price list, 5,000 x 20", prices, lambda: read_price_list(prices, library, TODAY), asked.runs)
+        make_price_list(prices, library, 5000, 20, '"$"#,##0.00')
+        compare("the same with currency formats", prices, lambda: read_price_list(prices, library, TODAY), asked.runs)
 
 
 if __name__ == "__main__":
