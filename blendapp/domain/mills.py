@@ -68,7 +68,11 @@ class FormulaVersion:
 
 @dataclass(frozen=True)
 class PriceList:
-    """A price list that was applied. digest: SHA-256 of the file, in hexadecimal."""
+    """A price list that was applied. digest: SHA-256 of the file, in hexadecimal.
+
+    source: whom its answers are remembered for. report: JSON of the fate of every row. withdrawn: when it was rolled
+    back, None while its quotes stand.
+    """
 
     id: int
     file_name: str
@@ -78,17 +82,60 @@ class PriceList:
     accepted: int
     supplier_id: int | None = None
     report: str = ""
+    source: str = ""
+    withdrawn: datetime.datetime | None = None
+
+
+class Asked(StrEnum):
+    """What a price list may leave open. Those above the gap are remembered for the source, those below hold for a row.
+
+    With each, what it is about and what may be answered:
+    INGREDIENT: a name; its ingredient, or LEAVE_OUT. UNIT: the words in doubt, "" where none stand; words of one unit.
+    RATE: a currency code or sign; the rate and its day. CENTS: ""; TAKE. PRICE: the headings of several columns of
+    prices; the heading that holds, or ADD. DECIMAL: a heading; "." or ",". DATES: a heading; DAY_FIRST or MONTH_FIRST.
+    Of a row: TAKE or LEAVE_OUT.
+    """
+
+    INGREDIENT = "ingredient"
+    UNIT = "unit"
+    RATE = "rate"
+    CENTS = "cents"
+    PRICE = "price"
+    DECIMAL = "decimal"
+    DATES = "dates"
+
+    HIDDEN = "hidden"
+    STRUCK = "struck"
+    CHANGE = "change"
+    EXPIRED = "expired"
+    SIGN = "sign"
+    TERMS = "terms"
+    TWIN = "twin"
+
+    @property
+    def is_remembered(self) -> bool:
+        return self not in (
+            Asked.HIDDEN, Asked.STRUCK, Asked.CHANGE, Asked.EXPIRED, Asked.SIGN, Asked.TERMS, Asked.TWIN
+        )
 
 
 @dataclass(frozen=True)
 class Synonym:
-    """What a source calls an ingredient, or how it was answered: remembered for its next list."""
+    """What a source means by its words, as it was answered once: remembered for its next list.
+
+    name: what was asked about (see Asked). per: of a name, the unit that its price is always for, "" as the list says.
+    rate: money of the mill for one of the currency, on the day `given`.
+    """
 
     id: int
     source: str
     name: str
     ingredient_id: int | None = None
     per: str = ""
+    asked: Asked = Asked.INGREDIENT
+    answer: str = ""
+    rate: float | None = None
+    given: datetime.date | None = None
 
 
 @dataclass(frozen=True)

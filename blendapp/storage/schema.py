@@ -150,7 +150,8 @@ _table(
 )
 _table(
     "price_list", _text("file_name"), _text("digest"), _moment("applied"), _count("rows"), _count("accepted"),
-    _link("supplier_id", "supplier", optional=True), _text("report"),
+    _link("supplier_id", "supplier", optional=True), _text("report"), _text("source"),
+    _moment("withdrawn", optional=True),
 )
 _table(
     "quote", _link("ingredient_id", "ingredient"), _number("price"), _text("per"), _number("bushel_lb"),
@@ -160,6 +161,7 @@ _table(
 )
 _table(
     "synonym", _text("source"), _text("name"), _link("ingredient_id", "ingredient", optional=True), _text("per"),
+    _text("asked"), _text("answer"), _number("rate"), _day("given"),
 )
 _table(
     "limit", _link("formula_id", "formula"), _text("kind"), _text("subject"), _text("per", optional=True),

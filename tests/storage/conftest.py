@@ -15,6 +15,7 @@ from blendapp.domain.formulas import Admits, Amounts, Animal, Formula, Limit, Li
 from blendapp.domain.ingredients import Basis, Ingredient, Origin, Tag, Value
 from blendapp.domain.mills import (
     Acknowledgement,
+    Asked,
     FormulaVersion,
     MillInfo,
     Person,
@@ -57,10 +58,11 @@ def records() -> list[Record]:
         Lot(1, 1, "L-77", DAY, 24000.0, 1),
         LotValue(1, 1, 1, 85.0, "g/kg", "dry matter", "lab 8", DAY),
         Bin(1, "Bin 4", 1, 1, 1),
-        PriceList(1, "march.csv", "ab" * 32, MOMENT, 30, 28, 1, "two refused"),
+        PriceList(1, "march.csv", "ab" * 32, MOMENT, 30, 28, 1, "two refused", "march", MOMENT),
         Quote(1, 1, 5.6, "bu", 56.0, 1, 1, QuoteKind.CONTRACT, Terms.DELIVERED, DAY, None, DAY, "phone", "5,60", 1),
         Quote(2, 2, None),
         Synonym(1, "Bay Grain", "corn no 2", 1, "bu"),
+        Synonym(2, "Bay Grain", "EUR", None, "", Asked.RATE, "EUR", 1.085, DAY),
         Limit(1, 1, LimitKind.NUTRIENT, Subject.nutrient(1), minimum=16.0, maximum=18.0),
         Limit(
             2, 1, LimitKind.RATIO, Subject.ingredients(1, 2), Subject.of_class("Cereals, whole"), 0.1, None, "",

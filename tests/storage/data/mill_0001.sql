@@ -68,7 +68,7 @@ INSERT INTO "counter" VALUES('lot_value',2);
 INSERT INTO "counter" VALUES('bin',2);
 INSERT INTO "counter" VALUES('price_list',2);
 INSERT INTO "counter" VALUES('quote',3);
-INSERT INTO "counter" VALUES('synonym',2);
+INSERT INTO "counter" VALUES('synonym',3);
 INSERT INTO "counter" VALUES('limit',3);
 INSERT INTO "counter" VALUES('version',2);
 INSERT INTO "counter" VALUES('acknowledgement',2);
@@ -162,15 +162,16 @@ INSERT INTO "log_change" VALUES(1,16,'value',3,NULL,'{"id":3,"ingredient_id":1,"
 INSERT INTO "log_change" VALUES(1,17,'lot',1,NULL,'{"id":1,"ingredient_id":1,"name":"L-77","received":"2026-03-02","mass_kg":24000.0,"supplier_id":1,"note":""}');
 INSERT INTO "log_change" VALUES(1,18,'lot_value',1,NULL,'{"id":1,"lot_id":1,"nutrient_id":1,"amount":85.0,"unit":"g/kg","basis":"dry matter","source":"lab 8","date":"2026-03-02"}');
 INSERT INTO "log_change" VALUES(1,19,'bin',1,NULL,'{"id":1,"name":"Bin 4","ingredient_id":1,"lot_id":1,"site_id":1}');
-INSERT INTO "log_change" VALUES(1,20,'price_list',1,NULL,'{"id":1,"file_name":"march.csv","digest":"abababababababababababababababababababababababababababababababab","applied":"2026-03-02T08:15:30.123456+00:00","rows":30,"accepted":28,"supplier_id":1,"report":"two refused"}');
+INSERT INTO "log_change" VALUES(1,20,'price_list',1,NULL,'{"id":1,"file_name":"march.csv","digest":"abababababababababababababababababababababababababababababababab","applied":"2026-03-02T08:15:30.123456+00:00","rows":30,"accepted":28,"supplier_id":1,"report":"two refused","source":"march","withdrawn":"2026-03-02T08:15:30.123456+00:00"}');
 INSERT INTO "log_change" VALUES(1,21,'quote',1,NULL,'{"id":1,"ingredient_id":1,"price":5.6,"per":"bu","bushel_lb":56.0,"site_id":1,"supplier_id":1,"kind":"contract","terms":"delivered","valid_from":"2026-03-02","valid_to":null,"recorded":"2026-03-02","source":"phone","entered":"5,60","price_list_id":1}');
 INSERT INTO "log_change" VALUES(1,22,'quote',2,NULL,'{"id":2,"ingredient_id":2,"price":null,"per":"t","bushel_lb":null,"site_id":null,"supplier_id":null,"kind":"replacement","terms":null,"valid_from":null,"valid_to":null,"recorded":null,"source":"","entered":"","price_list_id":null}');
-INSERT INTO "log_change" VALUES(1,23,'synonym',1,NULL,'{"id":1,"source":"Bay Grain","name":"corn no 2","ingredient_id":1,"per":"bu"}');
-INSERT INTO "log_change" VALUES(1,24,'limit',1,NULL,'{"id":1,"formula_id":1,"kind":"nutrient","subject":"nutrient 1","per":null,"minimum":16.0,"maximum":18.0,"unit":"","basis":"as fed","at_dry_matter_percent":null,"note":""}');
-INSERT INTO "log_change" VALUES(1,25,'limit',2,NULL,'{"id":2,"formula_id":1,"kind":"ratio","subject":"ingredients 1 2","per":"class Cereals, whole","minimum":0.1,"maximum":null,"unit":"","basis":"at dry matter","at_dry_matter_percent":88.0,"note":"kept"}');
-INSERT INTO "log_change" VALUES(1,26,'version',1,NULL,'{"id":1,"formula_id":1,"number":1,"state":"approved","snapshot":"{}","made":"2026-03-02T08:15:30.123456+00:00","made_by":"Ann","made_by_id":1,"approved":"2026-03-02T08:15:30.123456+00:00","approved_by":"Ann Miller","approved_by_id":1,"capacity":"nutritionist","note":"n","seal":"abababababababababababababababababababababababababababababababab"}');
-INSERT INTO "log_change" VALUES(1,27,'acknowledgement',1,NULL,'{"id":1,"version_id":1,"caution":"unknown lysine","reason":"known to be low","person_id":1,"made":"2026-03-02T08:15:30.123456+00:00","by":"Ann Miller"}');
-INSERT INTO "log_change" VALUES(1,28,'batch',1,NULL,'{"id":1,"number":1,"formula_id":1,"version":"1","order_kg":2000.0,"printed":"2026-03-02T08:15:30.123456+00:00","printed_by":"Ann","accepted_reason":"","accepted_by":"","sheet":"{\"lines\": []}","copies":1}');
+INSERT INTO "log_change" VALUES(1,23,'synonym',1,NULL,'{"id":1,"source":"Bay Grain","name":"corn no 2","ingredient_id":1,"per":"bu","asked":"ingredient","answer":"","rate":null,"given":null}');
+INSERT INTO "log_change" VALUES(1,24,'synonym',2,NULL,'{"id":2,"source":"Bay Grain","name":"EUR","ingredient_id":null,"per":"","asked":"rate","answer":"EUR","rate":1.085,"given":"2026-03-02"}');
+INSERT INTO "log_change" VALUES(1,25,'limit',1,NULL,'{"id":1,"formula_id":1,"kind":"nutrient","subject":"nutrient 1","per":null,"minimum":16.0,"maximum":18.0,"unit":"","basis":"as fed","at_dry_matter_percent":null,"note":""}');
+INSERT INTO "log_change" VALUES(1,26,'limit',2,NULL,'{"id":2,"formula_id":1,"kind":"ratio","subject":"ingredients 1 2","per":"class Cereals, whole","minimum":0.1,"maximum":null,"unit":"","basis":"at dry matter","at_dry_matter_percent":88.0,"note":"kept"}');
+INSERT INTO "log_change" VALUES(1,27,'version',1,NULL,'{"id":1,"formula_id":1,"number":1,"state":"approved","snapshot":"{}","made":"2026-03-02T08:15:30.123456+00:00","made_by":"Ann","made_by_id":1,"approved":"2026-03-02T08:15:30.123456+00:00","approved_by":"Ann Miller","approved_by_id":1,"capacity":"nutritionist","note":"n","seal":"abababababababababababababababababababababababababababababababab"}');
+INSERT INTO "log_change" VALUES(1,28,'acknowledgement',1,NULL,'{"id":1,"version_id":1,"caution":"unknown lysine","reason":"known to be low","person_id":1,"made":"2026-03-02T08:15:30.123456+00:00","by":"Ann Miller"}');
+INSERT INTO "log_change" VALUES(1,29,'batch',1,NULL,'{"id":1,"number":1,"formula_id":1,"version":"1","order_kg":2000.0,"printed":"2026-03-02T08:15:30.123456+00:00","printed_by":"Ann","accepted_reason":"","accepted_by":"","sheet":"{\"lines\": []}","copies":1}');
 CREATE TABLE log_entry (
 	id INTEGER NOT NULL PRIMARY KEY AUTOINCREMENT, 
 	made DATETIME NOT NULL, 
@@ -262,10 +263,12 @@ CREATE TABLE price_list (
 	accepted INTEGER NOT NULL, 
 	supplier_id INTEGER, 
 	report TEXT NOT NULL, 
+	source TEXT NOT NULL, 
+	withdrawn DATETIME, 
 	CONSTRAINT pk_price_list PRIMARY KEY (id), 
 	CONSTRAINT fk_price_list_supplier_id FOREIGN KEY(supplier_id) REFERENCES supplier (id) DEFERRABLE INITIALLY DEFERRED
 );
-INSERT INTO "price_list" VALUES(1,'march.csv','abababababababababababababababababababababababababababababababab','2026-03-02 08:15:30.123456',30,28,1,'two refused');
+INSERT INTO "price_list" VALUES(1,'march.csv','abababababababababababababababababababababababababababababababab','2026-03-02 08:15:30.123456',30,28,1,'two refused','march','2026-03-02 08:15:30.123456');
 CREATE TABLE quote (
 	id INTEGER NOT NULL, 
 	ingredient_id INTEGER NOT NULL, 
@@ -327,10 +330,15 @@ CREATE TABLE synonym (
 	name TEXT NOT NULL, 
 	ingredient_id INTEGER, 
 	per TEXT NOT NULL, 
+	asked TEXT NOT NULL, 
+	answer TEXT NOT NULL, 
+	rate DOUBLE, 
+	given DATE, 
 	CONSTRAINT pk_synonym PRIMARY KEY (id), 
 	CONSTRAINT fk_synonym_ingredient_id FOREIGN KEY(ingredient_id) REFERENCES ingredient (id) DEFERRABLE INITIALLY DEFERRED
 );
-INSERT INTO "synonym" VALUES(1,'Bay Grain','corn no 2',1,'bu');
+INSERT INTO "synonym" VALUES(1,'Bay Grain','corn no 2',1,'bu','ingredient','',NULL,NULL);
+INSERT INTO "synonym" VALUES(2,'Bay Grain','EUR',NULL,'','rate','EUR',1.085,'2026-03-02');
 CREATE TABLE value (
 	id INTEGER NOT NULL, 
 	ingredient_id INTEGER NOT NULL, 

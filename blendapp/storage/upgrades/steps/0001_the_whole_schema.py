@@ -160,6 +160,8 @@ def upgrade() -> None:
         sa.Column("accepted", sa.Integer(), nullable=False),
         _link("supplier_id", "supplier", "fk_price_list_supplier_id", nullable=True),
         sa.Column("report", sa.Text(), nullable=False),
+        sa.Column("source", sa.Text(), nullable=False),
+        sa.Column("withdrawn", sa.DateTime(timezone=True), nullable=True),
         sa.PrimaryKeyConstraint("id", name="pk_price_list"),
     )
     op.create_index("ix_price_list_supplier_id", "price_list", ["supplier_id"])
@@ -280,6 +282,10 @@ def upgrade() -> None:
         sa.Column("name", sa.Text(), nullable=False),
         _link("ingredient_id", "ingredient", "fk_synonym_ingredient_id", nullable=True),
         sa.Column("per", sa.Text(), nullable=False),
+        sa.Column("asked", sa.Text(), nullable=False),
+        sa.Column("answer", sa.Text(), nullable=False),
+        sa.Column("rate", sa.Double(), nullable=True),
+        sa.Column("given", sa.Date(), nullable=True),
         sa.PrimaryKeyConstraint("id", name="pk_synonym"),
     )
     op.create_index("ix_synonym_ingredient_id", "synonym", ["ingredient_id"])
