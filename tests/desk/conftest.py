@@ -118,6 +118,7 @@ class Hands:
 
     def click(self, widget: QWidget) -> None:
         """Click a widget in its middle."""
+        QApplication.processEvents()
         QTest.mouseClick(widget, Qt.MouseButton.LeftButton)
         QApplication.processEvents()
 

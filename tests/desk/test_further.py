@@ -52,7 +52,7 @@ def test_an_edit_stops_what_is_being_worked_out_of_the_answer_before(
     learned(bench, qtbot)
     begun, stopped = threading.Event(), threading.Event()
 
-    def endless(answer, go_on):  # type: ignore[no-untyped-def]
+    def endless(answer, go_on):
         begun.set()
         while go_on():
             threading.Event().wait(0.005)
@@ -100,7 +100,7 @@ def test_a_repair_by_the_keyboard_is_one_undo_and_brings_an_answer(bench: Bench,
 
 
 def test_what_needs_several_changes_is_one_button_and_one_undo(bench: Bench, hands: Hands, qtbot: QtBot) -> None:
-    def both(mill):  # type: ignore[no-untyped-def]
+    def both(mill):
         return edits.set_bounds(mill, "Ask too much", [
             (PROTEIN, "minimum", 60.0), (PROTEIN, "maximum", None), (CALCIUM, "minimum", 39.0),
             (CALCIUM, "maximum", None),

@@ -197,3 +197,25 @@ def test_space_says_in_a_sentence_what_a_working_wall_costs(bench: Bench, hands:
     assert note.isVisible()
     assert "Crude protein holds the mix" in note.text()
     assert "USD" in note.text()
+
+
+def test_the_limit_under_the_keyboard_or_the_pointer_is_told_in_a_sentence(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.meet.table, PROTEIN, "rail")
+    told = bench.meet.telling.text()
+    assert told.startswith("Crude protein holds the mix at its minimum of 19.0 %")
+    assert "USD/t" in told
+    assert bench.meet.telling.isVisible()
+    table = bench.meet.table
+    tag = table.visualRect(bench.meet.model.cell(CALCIUM, "rail")).bottomLeft()
+    QTest.mouseMove(table.viewport(), tag)
+    assert bench.meet.telling.text().startswith("Calcium")
+
+
+def test_an_ingredient_left_out_says_at_which_price_it_comes_in(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, 4, "price")
+    hands.write("900")
+    hands.key(Qt.Key.Key_Return)
+    index = bench.have.model.cell(4, "holds")
+    hint = bench.have.model.look(index.row(), index.column()).hint
+    assert hint.startswith("Peas is left out at 900.00 USD/t; below ")
+    assert any(line.text == "Peas" and line.hint == hint for line in bench.mix.model.lines)

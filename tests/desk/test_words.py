@@ -9,6 +9,7 @@ from hypothesis import strategies as st
 from blendapp.desk.finder.search import Found, best
 from blendapp.desk.formulas import read_nutrient
 from blendapp.desk.have.reading import read_price
+from blendapp.desk.meet.telling import price_sentence
 from blendapp.desk.meet.words import cost_rank, tag_step, tag_words
 from blendapp.desk.table.block import read_block, write_block
 from blendapp.desk.table.look import fitting_decimals, number_look
@@ -73,10 +74,33 @@ def test_a_side_that_saves_nothing_says_what_the_other_costs() -> None:
     assert tag_words(found, 2, "t") == "0.01 more costs 0.11 /t"
 
 
-def test_a_target_tells_the_side_that_saves() -> None:
+def test_a_target_tells_what_raising_and_lowering_it_do() -> None:
     found = limit(minimum=2.0, maximum=2.0, value=2.0, binding=Side.MINIMUM, shadow_price_unique=True, raise_cost=-3.0,
                   lower_cost=3.0)
-    assert tag_words(found, 2, "t") == "0.10 more saves 0.30 /t"
+    assert tag_words(found, 2, "t") == "0.10 more saves 0.30 /t, 0.10 less costs 0.30 /t"
+    sentence = price_sentence(found, "Lysine", 2, "USD", "t")
+    assert sentence == "Lysine is held at 2.00 %: 0.10 % more saves 0.30 USD/t; 0.10 % less costs 0.30 USD/t."
+
+
+def test_pointing_at_a_wall_says_both_sides_with_units_and_how_far() -> None:
+    found = limit(minimum=0.95, value=0.95, binding=Side.MINIMUM, shadow_price_unique=False, relax_saving=0.0,
+                  tighten_cost=10.787, tighten_holds_to=1.4)
+    assert price_sentence(found, "Lysine", 2, "USD", "t") == (
+        "Lysine holds the mix at its minimum of 0.95 %: 0.01 % less changes nothing; "
+        "0.01 % more costs 0.11 USD/t, as far as 1.40 %.")
+    found = limit(maximum=25.0, value=25.0, binding=Side.MAXIMUM, shadow_price_unique=True, relax_saving=0.19,
+                  relax_holds_to=31.2, tighten_cost=0.19, tighten_holds_to=20.0)
+    assert price_sentence(found, "Wheat", 1, "USD", "t", given=True) == (
+        "Given these ingredients, Wheat holds the mix at its maximum of 25.0 %: 1.0 % more saves 0.19 USD/t, "
+        "as far as 31.2 %; 1.0 % less costs 0.19 USD/t, as far as 20.0 %.")
+
+
+def test_a_ratio_says_that_its_price_holds_at_this_point_only() -> None:
+    found = limit(kind=LimitKind.RATIO, per="Phosphorus", unit="", minimum=2.0, value=2.0, binding=Side.MINIMUM,
+                  shadow_price_unique=True, relax_saving=0.5, tighten_cost=0.5)
+    assert "multiplies amounts" in price_sentence(found, "Calcium : Phosphorus", 2, "USD", "t")
+    found = limit(minimum=2.0, value=2.0, binding=Side.MINIMUM, shadow_price_unique=True, relax_saving=0.5)
+    assert "no higher minimum can be met" in price_sentence(found, "Lysine", 2, "USD", "t")
 
 
 def test_a_slack_limit_ranks_last_and_a_step_is_round() -> None:

@@ -7,6 +7,7 @@ from dataclasses import replace
 from typing import TYPE_CHECKING, Any
 
 from blendapp.desk.have.reading import NUTRIENT, changes_of
+from blendapp.desk.mix.lines import break_even_words
 from blendapp.desk.rail.geometry import Axis, End, RailState, axis_for
 from blendapp.desk.table.grid import Grid, Heading
 from blendapp.desk.table.look import EMPTY, Look, fitting_decimals, number_look
@@ -219,7 +220,10 @@ class HaveModel(Grid):
             self._axes[ingredient.id] = price_axis(state, self._axes.get(ingredient.id))
         axis = self._axes.get(ingredient.id) or price_axis(state, None)
         words = _("Price of {name}, {price}").format(name=ingredient.name, price=notation().write(price, 2))
-        return Look(rail=state, axis=axis, words=words, hint=self._range_words(low, high))
+        hint = self._range_words(low, high)
+        if found is not None and found.amount == 0 and found.break_even_price is not None:
+            hint = break_even_words(found, self.work.library.mill.currency)
+        return Look(rail=state, axis=axis, words=words, hint=hint)
 
     def _range_words(self, low: float | None, high: float | None) -> str:
         write = notation().write

@@ -6,6 +6,7 @@ from dataclasses import replace
 from typing import TYPE_CHECKING, Any
 
 from blendapp.desk.meet import words
+from blendapp.desk.meet.telling import price_sentence
 from blendapp.desk.rail.geometry import Axis, End, RailState, axis_for
 from blendapp.desk.table.grid import Grid, Heading
 from blendapp.desk.table.look import EMPTY, Look, number_look
@@ -122,7 +123,13 @@ class MeetModel(Grid):
         if found is None or formula is None or result is None:
             return ""
         name = words.limit_name(self.work.library, limit)
-        return words.price_sentence(found, name, decimals, result.currency, words.per_of(formula))
+        return price_sentence(
+            found, name, decimals, result.currency, words.per_of(formula), given=result.given_ingredients)
+
+    def sentence(self, owner: int) -> str:
+        """What is said of a limit that one points at."""
+        limit = self.limit(owner)
+        return "" if limit is None else self._sentence(limit, self._found.get(owner), self.decimals(limit))
 
     def _name_look(self, limit: Limit, found: LimitResult | None, decimals: int) -> Look:
         formula = self.work.formula

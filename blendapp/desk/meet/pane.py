@@ -16,7 +16,7 @@ from blendapp.desk.meet.view import LimitTable
 from blendapp.desk.meet.words import limit_name, limit_unit
 from blendapp.desk.rail.geometry import End
 from blendapp.desk.shell.glyphs import GlyphButton
-from blendapp.desk.shell.zone import Zone
+from blendapp.desk.shell.zone import INSET_PX, Zone
 from blendapp.desk.theme import GAP_PX
 from blendapp.desk.work import Work
 from blendapp.domain.formulas import LimitKind, Subject
@@ -26,6 +26,8 @@ from blendapp.domain.records import Change
 from blendapp.domain.wording import _
 from blendapp.services import edits
 from blendapp.services.mill import Edit
+
+TOLD_LINES = 3
 
 
 class MeetPane(QWidget):
@@ -45,6 +47,13 @@ class MeetPane(QWidget):
         self.empty = QLabel()
         self.empty.setObjectName("quiet")
         self.empty.setWordWrap(True)
+        self.told: int | None = None
+        self.telling = QLabel()
+        self.telling.setObjectName("quiet")
+        self.telling.setWordWrap(True)
+        self.telling.setAlignment(Qt.AlignmentFlag.AlignTop)
+        self.telling.setContentsMargins(INSET_PX, 4, 0, 6)
+        self.telling.setFixedHeight(TOLD_LINES * self.telling.fontMetrics().lineSpacing() + 10)
         self.order = QPushButton()
         self.order.setObjectName("order")
         self.order.clicked.connect(self._turn_order)
@@ -59,6 +68,7 @@ class MeetPane(QWidget):
         column.addWidget(self.adding)
         column.addWidget(self.empty)
         column.addWidget(self.table, 1)
+        column.addWidget(self.telling)
         self.setFocusProxy(self.table)
         self._connect()
         self._say()
@@ -79,6 +89,10 @@ class MeetPane(QWidget):
         table.customContextMenuRequested.connect(self._offer)
         table.asked.connect(self._change_asked)
         table.doubleClicked.connect(self._change_asked)
+        table.entered.connect(lambda index: self._tell(index))
+        table.viewportEntered.connect(lambda: self._tell(table.currentIndex()))
+        table.left.connect(lambda: self._tell(table.currentIndex()))
+        table.selectionModel().currentChanged.connect(lambda current, _before: self._tell(current))
         self.adding.added.connect(self._added)
         self.adding.closed.connect(self.table.setFocus)
         self.about.closed.connect(self.table.setFocus)
@@ -119,7 +133,19 @@ class MeetPane(QWidget):
         self._rebuild(keep_order=False)
         self._say()
 
+    def _tell(self, index: QModelIndex) -> None:
+        """Say what the limit means that one points at, or that the keyboard is on."""
+        self.told = self.model.owner(index) if index.isValid() and index.row() < len(self.model.owners) else None
+        self._tell_again()
+
+    def _tell_again(self) -> None:
+        text = "" if self.told is None or self.work.stale else self.model.sentence(self.told)
+        if text != self.telling.text():
+            self.telling.setText(text)
+            self.telling.setAccessibleName(text)
+
     def _say(self) -> None:
+        self._tell_again()
         formula = self.work.formula
         self.order.setVisible(formula is not None)
         self.add.setVisible(formula is not None)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QModelIndex, QRectF, Qt
+from PySide6.QtCore import QEvent, QModelIndex, QRectF, Qt, Signal
 from PySide6.QtGui import QKeyEvent, QPainter, QPaintEvent, QResizeEvent
 from PySide6.QtWidgets import QWidget
 
@@ -18,7 +18,12 @@ _NAME_LEAST, _RAIL_LEAST, _MOST = 90, 84, 420
 
 
 class LimitTable(DeskTable):
-    """A DeskTable of a MeetModel. Its columns share the width: the name and the rail take what figures leave."""
+    """A DeskTable of a MeetModel. Its columns share the width: the name and the rail take what figures leave.
+
+    left: the pointer has gone away.
+    """
+
+    left = Signal()
 
     def __init__(self, model: MeetModel, parent: QWidget | None = None) -> None:
         super().__init__(model, parent, ruled=False)
@@ -56,6 +61,10 @@ class LimitTable(DeskTable):
             return ""
         rail = self.grid.look(row, column).rail
         return "" if rail is None else rail.tag
+
+    def leaveEvent(self, event: QEvent) -> None:
+        super().leaveEvent(event)
+        self.left.emit()
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)

@@ -81,7 +81,8 @@ def tag_step(bound: float, decimals: int, holds_to: float | None = None) -> floa
     return step
 
 
-def _figure(value: float, decimals: int) -> str:
+def bound_words(value: float, decimals: int) -> str:
+    """A bound or a step with the decimals of its limit, more where it would be 0."""
     shown = max(decimals, decimals_of(value, significant=1)) if 0 < abs(value) < 10.0**-decimals else decimals
     return notation().write(value, shown)
 
@@ -102,19 +103,19 @@ def tag_words(found: LimitResult, decimals: int, per: str) -> str:
     if found.tighten_cost is not None and found.tighten_cost > 0:
         step = tag_step(bound, decimals, found.tighten_holds_to)
         text = _("{step} more costs {money}") if found.binding is Side.MINIMUM else _("{step} less costs {money}")
-        return text.format(step=_figure(step, decimals), money=money(found.tighten_cost * step, per))
+        return text.format(step=bound_words(step, decimals), money=money(found.tighten_cost * step, per))
     return ""
 
 
 def _relax_words(found: LimitResult, bound: float, decimals: int, per: str) -> str:
     assert found.relax_saving is not None
     step = tag_step(bound, decimals, found.relax_holds_to)
-    words = {"step": _figure(step, decimals), "money": money(found.relax_saving * step, per)}
+    words = {"step": bound_words(step, decimals), "money": money(found.relax_saving * step, per)}
     minimum = found.binding is Side.MINIMUM
     if found.relax_holds_to is None:
         text = _("{step} less saves {money}") if minimum else _("{step} more saves {money}")
         return text.format(**words)
-    words["to"] = _figure(found.relax_holds_to, decimals)
+    words["to"] = bound_words(found.relax_holds_to, decimals)
     text = _("{step} less saves {money}, to {to}") if minimum else _("{step} more saves {money}, to {to}")
     return text.format(**words)
 
@@ -128,53 +129,10 @@ def _target_words(found: LimitResult, bound: float, decimals: int, per: str) -> 
     ):
         if cost:
             text = costs if cost > 0 else saves
-            words = text.format(step=_figure(step, decimals), money=money(abs(cost) * step, per))
+            words = text.format(step=bound_words(step, decimals), money=money(abs(cost) * step, per))
             # What saves is said before what costs.
             parts.append((cost > 0, words))
-    return min(parts)[1] if parts else ""
-
-
-def price_sentence(found: LimitResult, name: str, decimals: int, currency: str, per: str) -> str:
-    """In one sentence, with its numbers and units, what the price of a working wall means and how far it holds."""
-    if found.binding is None:
-        if found.value is None:
-            return ""
-        return _("{name} has room: moving this limit a little does not change the cost.").format(name=name)
-    if found.shadow_price_unique is False and found.relax_saving is None and found.raise_cost is None:
-        return _(
-            "{name} holds the mix, but at this mix more than one price fits, so none is shown; move the end to see."
-        ).format(name=name)
-    bound = found.minimum if found.binding is Side.MINIMUM else found.maximum
-    if bound is None:
-        return ""
-    parts = []
-    if found.relax_saving is not None:
-        looser = _("a lower minimum") if found.binding is Side.MINIMUM else _("a higher maximum")
-        parts.append(_("each {unit} of {looser} saves {money} {currency}").format(
-            unit=_one(found.unit), looser=looser, money=money(found.relax_saving, per), currency=currency)
-            + _holds(found.relax_holds_to, decimals))
-    if found.tighten_cost is not None:
-        stricter = _("a higher minimum") if found.binding is Side.MINIMUM else _("a lower maximum")
-        parts.append(_("each {unit} of {stricter} costs {money} {currency}").format(
-            unit=_one(found.unit), stricter=stricter, money=money(found.tighten_cost, per), currency=currency)
-            + _holds(found.tighten_holds_to, decimals))
-    if found.raise_cost is not None:
-        parts.append(_("raising the target by {unit} costs {money} {currency}").format(
-            unit=_one(found.unit), money=money(found.raise_cost, per), currency=currency))
-    if found.lower_cost is not None:
-        parts.append(_("lowering it by {unit} costs {money} {currency}").format(
-            unit=_one(found.unit), money=money(found.lower_cost, per), currency=currency))
-    if not parts:
-        return _("{name} holds the mix at this end.").format(name=name)
-    return _("{name} holds the mix: {parts}.").format(name=name, parts="; ".join(parts))
-
-
-def _one(unit: str) -> str:
-    return f"1 {unit}" if unit else "1"
-
-
-def _holds(to: float | None, decimals: int) -> str:
-    return "" if to is None else _(", as far as {to}").format(to=_figure(to, decimals))
+    return ", ".join(words for _costs, words in sorted(parts))
 
 
 def cost_rank(found: LimitResult) -> float:

@@ -34,9 +34,9 @@ class Part(Enum):
 class Line:
     """One line. text: on its left; amount, cost: the two columns at its right; bar: share of the longest bar.
 
-    ingredient_id: of an ingredient or its rail. fold: what a fold opens. repairs: what an action applies, as one undo. lack: decimals
-    that the amount has less than the longest one. bar_range: near-optimal, as bar. price, share: further columns where
-    there is room.
+    ingredient_id: of an ingredient or its rail. fold: what a fold opens. repairs: what an action applies, as one undo.
+    lack: decimals that the amount has less than the longest one. bar_range: near-optimal, as bar. price, share: further
+    columns where there is room.
     """
 
     part: Part
@@ -164,7 +164,8 @@ def _left_out(result: Result, opened: frozenset[str]) -> list[Line]:
         for one in shown:
             assert one.break_even_price is not None
             lines.append(Line(Part.PAIR, one.name, cost=_("{break_even}, now {price}").format(
-                break_even=notation().write(one.break_even_price, 2), price=notation().write(one.price_per_t, 2))))
+                break_even=notation().write(one.break_even_price, 2), price=notation().write(one.price_per_t, 2)),
+                hint=break_even_words(one, result.currency)))
         if len(priced) > 6:
             text = _("Show fewer") if LEFT_OUT in opened else plural(
                 "{count} more", "{count} more", len(priced) - 6).format(count=len(priced) - 6)
@@ -177,6 +178,18 @@ def _left_out(result: Result, opened: frozenset[str]) -> list[Line]:
             price = notation().write(one.price_per_t, 2)
             lines.append(Line(Part.PAIR, one.name, cost=_("now {price}").format(price=price)))
     return lines
+
+
+def break_even_words(one: IngredientResult, currency: str) -> str:
+    """At which price an ingredient that is left out would come into the mix, in a sentence."""
+    if one.break_even_price is None:
+        return ""
+    text = _("{name} is left out at {price} {currency}/t; below {break_even} {currency}/t, {less} less, some comes in.")
+    if one.price_per_t - one.break_even_price < 0.005:
+        text = _("{name} is left out at {price} {currency}/t; the least bit cheaper, and some comes in.")
+    write = notation().write
+    return text.format(name=one.name, price=write(one.price_per_t, 2), currency=currency,
+                       break_even=write(one.break_even_price, 2), less=write(one.price_per_t - one.break_even_price, 2))
 
 
 def _unpriced(result: Result) -> list[Line]:
