@@ -89,6 +89,7 @@ def _pivot(found: Maxima, chunk: Indices, t: Array, objective: Array, basic: Ind
     """Pivot all programs of a chunk to their ends and note the outcomes. t: shape (K, q + 1, m)."""
     columns = found.nonbasic[chunk]
     none = np.iinfo(np.int64).max
+    room = np.empty_like(t)  # one allocation for all turns
     for turn in range(_GIVE_UP_AFTER):
         each = np.arange(chunk.size)
         if turn < _BLAND_AFTER:
@@ -125,7 +126,9 @@ def _pivot(found: Maxima, chunk: Indices, t: Array, objective: Array, basic: Ind
         row /= -pivot[:, None]
         row[each, entering] = 1.0 / pivot
         t[each, entering] = 0.0
-        t += row[:, :, None] * column[:, None, :]
+        product = room[: chunk.size]
+        np.multiply(row[:, :, None], column[:, None, :], out=product)
+        t += product
         t[each, :, leaving] = row
         np.maximum(t[:, -1], 0.0, out=t[:, -1])
         factor = objective[each, entering]
