@@ -1,6 +1,7 @@
 """Time of an answer (expand, solve, uniqueness, certificate) over that of one bare linprog call on the same arrays.
 
-Run: python -m tests.benchmarks.bench_answer. Prints medians of paired ratios of processor time, both timed in turn in one run.
+Run: python -m tests.benchmarks.bench_answer. Prints medians of paired ratios of processor
+time, both timed in turn in one run.
 """
 
 from __future__ import annotations

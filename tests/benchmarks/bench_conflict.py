@@ -65,8 +65,8 @@ def main(programs: int = 15) -> None:
         bare, bare_infeasible, ours = np.median(times, axis=0) * 1e3
         print(
             f"conflict {columns} x {limits} ({np.median(members):.0f} members): {ours:.2f} ms, median ratio to a bare "
-            f"solve of the same program {np.median([t[2] / t[1] for t in times]):.2f} ({bare_infeasible:.2f} ms), of the "
-            f"feasible program {np.median([t[2] / t[0] for t in times]):.2f} ({bare:.2f} ms)"
+            f"solve of the same program {np.median([t[2] / t[1] for t in times]):.2f} ({bare_infeasible:.2f} ms), of "
+            f"the feasible program {np.median([t[2] / t[0] for t in times]):.2f} ({bare:.2f} ms)"
         )
 
 

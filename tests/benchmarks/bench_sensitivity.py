@@ -1,7 +1,8 @@
 """Answer, both-sided prices with their reach, price ranges and certificate over one bare linprog call, paired.
 
-Processor time, so that other work on the machine does not count. Run: python -m tests.benchmarks.bench_sensitivity. Degenerate programs have p limits moved exactly onto the values of
-the optimum, so that p more rows are active than amounts are in use.
+Run: python -m tests.benchmarks.bench_sensitivity. Processor time, so that other work on the machine does not count.
+Degenerate programs have p limits moved exactly onto the values of the optimum, so that p more rows are active than
+amounts are in use.
 """
 
 from __future__ import annotations
