@@ -243,6 +243,12 @@ def _sheet(studio: Studio, bench: Bench, _price_list: Path) -> None:
     studio.settle(lambda: bool(bench.sheet.pages.pages))
     studio.take(bench.frame, "22-batch-sheet")
     batch = bench.sheet.batch
+    bench.work.stale = True
+    bench.work.answered.emit()
+    studio.settle()
+    studio.take(bench.frame, "22-batch-sheet-stale")
+    bench.work.stale = False
+    bench.work.answered.emit()
     if batch is not None:
         for number, image in enumerate(sheets.page_images(sheets.batch_pdf(batch), 96.0 * studio.scale), 1):
             (studio.out_dir / f"23-batch-sheet-page-{number}-{studio.scale}00.png").write_bytes(image)

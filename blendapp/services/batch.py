@@ -19,7 +19,7 @@ from blendapp.domain.mills import PrintedBatch
 from blendapp.domain.plant import Mixer, Scale
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.records import Change, added
-from blendapp.domain.results import Result
+from blendapp.domain.results import Result, Status
 from blendapp.domain.wording import _
 from blendapp.optimise.build.composition import Composition
 from blendapp.optimise.build.formula import build
@@ -68,6 +68,9 @@ def make_batch(
     if not answer.has_answer:
         text = _("{formula} has no answer: {cause}")
         return replace(empty, cause=text.format(formula=formula.name, cause=answer.cause or answer.status))
+    if answer.status is Status.STOPPED:
+        text = _("The answer to {formula} was stopped before it was proven; it is not made as if it were the answer.")
+        return replace(empty, cause=text.format(formula=formula.name))
     split = split_order(library.mixers, order_kg)
     if split is None:
         return replace(empty, cause=_no_split(library.mixers, order_kg))

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -9,6 +10,8 @@ from PySide6.QtCore import Qt
 from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
+from blendapp.domain.results import Status
+from blendapp.services.batch import make_batch
 from tests.desk.conftest import Hands
 
 
@@ -37,6 +40,7 @@ def test_another_order_is_worked_out_as_it_is_typed(sheet: Bench, hands: Hands, 
 
 
 def test_an_order_that_is_no_mass_says_so_and_cannot_be_printed(sheet: Bench) -> None:
+    assert sheet.sheet.batch is not None
     sheet.sheet.order.setText("plenty")
     sheet.sheet.make()
     assert "plenty" in sheet.sheet.words.text()
@@ -70,3 +74,64 @@ def test_a_formula_without_an_answer_has_no_sheet(bench: Bench, hands: Hands) ->
     assert bench.sheet.batch is None
     assert not bench.sheet.print_button.isEnabled()
     assert bench.sheet.words.text()
+
+
+def line_kg(bench: Bench, name: str) -> float:
+    assert bench.sheet.batch is not None
+    return next(line.target_kg for line in bench.sheet.batch.lines if line.ingredient == name)
+
+
+def test_a_line_fixed_by_hand_stays_and_the_others_make_up_the_batch(sheet: Bench, hands: Hands, qtbot: QtBot) -> None:
+    pane = sheet.sheet
+    before = line_kg(sheet, "Maize")
+    hands.go(pane.table, 1, "kg")
+    hands.write(f"{before - 2:g}")
+    with qtbot.waitSignal(pane.pages.shown, timeout=20000):
+        hands.key(Qt.Key.Key_Return)
+        assert pane.batch is None
+        assert not pane.print_button.isEnabled()
+    assert line_kg(sheet, "Maize") == before - 2
+    assert pane.batch is not None
+    assert pane.batch.total_kg == pytest.approx(1000)
+    with qtbot.waitSignal(pane.pages.shown, timeout=20000):
+        hands.go(pane.table, 1, "kg")
+        hands.key(Qt.Key.Key_Delete)
+    assert line_kg(sheet, "Maize") == before
+
+
+def test_a_mass_that_cannot_be_is_refused_beside_its_line(sheet: Bench, hands: Hands, qtbot: QtBot) -> None:
+    pane = sheet.sheet
+    before = line_kg(sheet, "Maize")
+    hands.go(pane.table, 1, "kg")
+    hands.write("0.37")
+    with qtbot.waitSignal(pane.pages.shown, timeout=20000):
+        hands.key(Qt.Key.Key_Return)
+    look = pane.lines.look(pane.lines.owners.index(1), 1)
+    assert "0.37" in look.text
+    assert look.fault
+    assert line_kg(sheet, "Maize") == before
+
+
+def test_an_old_page_is_greyed_and_not_printed_while_the_new_answer_is_worked_out(sheet: Bench) -> None:
+    sheet.work.stale = True
+    sheet.work.answered.emit()
+    pane = sheet.sheet
+    assert pane.batch is None
+    assert pane.pages.pages
+    assert "tale" in pane.words.text()
+    assert not pane.print_button.isEnabled()
+    assert not pane.save_button.isEnabled()
+
+
+def test_a_stopped_answer_is_refused_in_a_sentence(sheet: Bench, qtbot: QtBot) -> None:
+    work = sheet.work
+    assert work.stored_result is not None
+    stopped = replace(work.stored_result, status=Status.STOPPED, gap=0.01)
+    work.stored_result = stopped
+    sheet.sheet.make()
+    assert sheet.sheet.batch is None
+    assert not sheet.sheet.print_button.isEnabled()
+    assert "not printed" in sheet.sheet.words.text()
+    batch = make_batch(work.library, work.formula_id or 0, 1000.0, work.on, result=stopped)
+    assert batch.cause is not None
+    assert not batch.lines

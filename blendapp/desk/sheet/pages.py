@@ -6,7 +6,7 @@ from collections.abc import Callable
 
 from PySide6.QtCore import QObject, QSize, Qt, QTimer, Signal
 from PySide6.QtGui import QImage, QPixmap, QResizeEvent
-from PySide6.QtWidgets import QLabel, QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QGraphicsOpacityEffect, QLabel, QScrollArea, QVBoxLayout, QWidget
 
 from blendapp.desk.aside import Aside
 from blendapp.desk.theme import GAP_PX
@@ -29,6 +29,7 @@ class PageView(QScrollArea):
         self.pages: list[bytes] = []
         self._making: Callable[[], bytes] | None = None
         self._width = 0
+        self._stale = False
         self._rest = QTimer(self, singleShot=True, interval=REST_MS)
         self._rest.timeout.connect(self._again)
         self.inside = QWidget()
@@ -49,6 +50,14 @@ class PageView(QScrollArea):
         self._width = self.page_width()
         dots = self.page_width() * self.devicePixelRatioF() / PAGE_WIDTH_IN
         self._aside.ask(lambda: sheets.page_images(make(), dots))
+
+    def say_stale(self, stale: bool) -> None:
+        """Grey the pages while others are made."""
+        self._stale = stale
+        for page in self.inside.findChildren(QLabel):
+            effect = QGraphicsOpacityEffect(page)
+            effect.setOpacity(0.4 if stale else 1.0)
+            page.setGraphicsEffect(effect if stale else None)  # type: ignore[arg-type]
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)

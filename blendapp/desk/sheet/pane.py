@@ -20,16 +20,22 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from blendapp.desk.aside import Aside
 from blendapp.desk.choice import Choice
+from blendapp.desk.sheet.fixing import FixModel
 from blendapp.desk.sheet.pages import PageView, images_for_printer
+from blendapp.desk.table.grid import sentence_of
+from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.desk.work import Work
-from blendapp.domain.batches import Batch
+from blendapp.domain.batches import Batch, proof_words
 from blendapp.domain.notation import notation
 from blendapp.domain.problems import Refused
+from blendapp.domain.results import Status
 from blendapp.domain.wording import _, plural
 from blendapp.services import batch as batches
 from blendapp.services import sheets
+from blendapp.services.formulate import FailedCertificate
 from blendapp.services.mill import MillFileError
 
 REST_MS = 200
@@ -58,13 +64,24 @@ class SheetPane(QWidget):
         self.by = QLineEdit()
         self.pages = PageView()
         self.copies = QVBoxLayout()
+        self.lines = FixModel(self._fixed, self)
+        self.table = DeskTable(self.lines, self)
+        self.table.setAccessibleName(_("Lines of the batch"))
+        self.table.cleared.connect(self._let_free)
+        self.table.pasted.connect(self._paste)
+        self._last_fixed: int | None = None
         self._rest = QTimer(self, singleShot=True, interval=REST_MS)
         self._rest.timeout.connect(self.make)
+        # Whole numbers of scale steps may take a second or two to find.
+        self._aside = Aside(self, (Refused, ValueError, FailedCertificate))
+        self._aside.done.connect(self._take)
         self._lay()
-        self.order.textEdited.connect(lambda _text: self._rest.start())
-        self.paper.currentIndexChanged.connect(lambda _at: self._rest.start())
+        self.order.textEdited.connect(lambda _text: self._wait())
+        self.paper.currentIndexChanged.connect(lambda _at: self._wait())
         self.pages.failed.connect(lambda sentence: self.said.emit(sentence, []))
-        work.answered.connect(lambda: self._rest.start() if self.isVisible() else None)
+        work.answered.connect(lambda: self._wait() if self.isVisible() else None)
+        work.opened.connect(self._forget)
+        work.chosen.connect(self._forget)
 
     def _lay(self) -> None:
         title = QLabel(_("Batch sheet"))
@@ -104,8 +121,9 @@ class SheetPane(QWidget):
         side.addWidget(self.accepting)
         for button in (self.print_button, self.save_button, self.leave):
             side.addWidget(button)
+        self.table.setMinimumHeight(180)
+        side.addWidget(self.table, 1)
         side.addLayout(self.copies)
-        side.addStretch(1)
         scroll = QScrollArea()
         scroll.setWidget(inside)
         scroll.setWidgetResizable(True)
@@ -127,37 +145,115 @@ class SheetPane(QWidget):
         self.order.setText(notation().write_short(usual))
         self.reason.clear()
         self.by.clear()
-        self.pages.clear()
+        self._forget()
         self.make()
         self.order.selectAll()
 
-    def make(self) -> None:
-        """Work the batch out again and show its page."""
+    def _forget(self) -> None:
+        """Nothing of another formula stays."""
         self._rest.stop()
+        self._aside.forget()
         self.batch = None
-        if self.work.formula_id is None or not self.work.is_open:
+        self.lines.forget()
+        self.lines.show(None)
+        self.pages.clear()
+
+    def _wait(self) -> None:
+        """What is shown is of before the last edit, until the new batch is in."""
+        self._go_stale()
+        self._rest.start()
+
+    def _go_stale(self) -> None:
+        self.batch = None
+        self.pages.say_stale(True)
+        self.lines.say_stale(True)
+        if self.pages.pages:
+            self._say(_("Stale: the new batch is being worked out."), ready=False)
+        else:
+            self._say(_("The batch is being worked out."), ready=False)
+
+    def make(self) -> None:
+        """Have the batch worked out again beside the window, and its page shown."""
+        self._rest.stop()
+        self._aside.forget()
+        self._go_stale()
+        work, result = self.work, self.work.stored_result
+        if work.formula_id is None or not work.is_open or result is None:
+            self._refuse(_("Without an answer there is nothing to weigh."))
             return
-        if self.work.stale or self.work.trying:
+        if work.stale or work.trying:
             self._say(_("The answer is stale; the sheet follows as soon as the new one is in."), ready=False)
             return
-        try:
-            found = batches.make_batch(
-                self.work.library, self.work.formula_id, notation().read(self.order.text()), self.work.on,
-                self.work.mill.composition, result=self.work.stored_result,
-            )
-        except (Refused, ValueError) as fault:
-            self._say(str(fault), ready=False)
-            self.pages.clear()
+        if result.status is Status.STOPPED:
+            self._refuse(_(
+                "Time was up before this answer was proven, so it is not printed as if it were the cheapest. "
+                "Make the formula easier, or change it back."))
             return
+        try:
+            order_kg = notation().read(self.order.text())
+        except ValueError as fault:
+            self._refuse(str(fault))
+            return
+        library, formula_id, on, fixed = work.library.copy(), work.formula_id, work.on, dict(self.lines.fixed)
+        self._aside.ask(lambda: batches.make_batch(library, formula_id, order_kg, on, result=result, fixed=fixed))
+
+    def _refuse(self, sentence: str) -> None:
+        """Say why there is no sheet, and show none."""
+        self._say(sentence, ready=False)
+        self.pages.clear()
+        self.lines.show(None)
+
+    def _take(self, found: Batch | None, fault: Exception | None) -> None:
+        if not self.work.is_open:
+            return
+        if found is None:
+            sentence = sentence_of(fault) if fault is not None else ""
+            last, self._last_fixed = self._last_fixed, None
+            if last is not None and last in self.lines.fixed and self.lines.batch is not None:
+                # The line that was just fixed cannot be: it is let free, with the sentence beside it.
+                typed = notation().write_exact(self.lines.fixed.pop(last))
+                self.make()
+                self.lines.refuse(last, "kg", typed, sentence)
+                return
+            self._refuse(sentence)
+            return
+        self._last_fixed = None
         self._fill_copies()
+        self.lines.say_stale(False)
+        self.pages.say_stale(False)
         if found.cause is not None:
-            self._say(found.cause, ready=False)
-            self.pages.clear()
+            self._refuse(found.cause)
             return
         self.batch = found
+        self.lines.show(found)
         self._say(_batch_words(found), ready=True)
         paper = self._paper()
         self.pages.show_pdf(lambda: sheets.batch_pdf(found, paper))
+
+    # -- fixing lines
+
+    def _fixed(self, ingredient_id: int) -> None:
+        self._last_fixed = ingredient_id
+        self.make()
+
+    def _let_free(self, cells: list[tuple[int, str]]) -> None:
+        for owner, _key in cells:
+            self.lines.fixed.pop(owner, None)
+            self.lines.forgive(owner, "kg")
+        self.make()
+
+    def _paste(self, cells: list[tuple[int, str, str]], outside: list[str]) -> None:
+        lost = list(outside)
+        for owner, key, text in cells:
+            try:
+                if key != "kg":
+                    raise ValueError
+                self.lines.fixed[owner] = notation().read(text)
+            except ValueError:
+                lost.append(text)
+        self.make()
+        if lost:
+            self.said.emit(_("These cells fell where no mass is fixed:"), lost)
 
     def _say(self, words: str, *, ready: bool) -> None:
         self.words.setText(words)
@@ -207,11 +303,15 @@ class SheetPane(QWidget):
 
     def to_printer(self) -> None:
         """Give the batch its number and print its sheet."""
-        if self.batch is None:
+        batch = self.batch
+        if batch is None:
             return
         with tempfile.TemporaryDirectory() as folder:
             path = Path(folder) / "sheet.pdf"
             if not self._choose_printer():
+                return
+            if self.batch is not batch:
+                self.said.emit(_("The batch changed while the printer was chosen; nothing was printed."), [])
                 return
             printed = self._print_to(path)
             if printed is not None and self.print_pdf(path.read_bytes()):
@@ -283,4 +383,6 @@ def _batch_words(batch: Batch) -> str:
         names = ", ".join(batch.limits[at].name for at in batch.broken)
         lines.append(_("Rounding to the scales breaks: {names}. It may be mixed only if somebody accepts that.").format(
             names=names))
+    if not batch.proven:
+        lines.append(proof_words(batch))
     return "\n".join(lines)
