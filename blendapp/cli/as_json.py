@@ -110,14 +110,14 @@ def prices(reading: PriceListReading, applied: bool) -> dict[str, Any]:
         "currency": reading.currency,
         "rows": [
             {
-                "sheet": row.sheet,
+                "sheet": row.sheet or None,
                 "row": row.row,
                 "fate": str(row.fate),
-                "reason": row.reason,
-                "source_name": row.source_name,
+                "reason": row.reason or None,
+                "source_name": row.source_name or None,
                 "ingredient": row.ingredient,
                 "price_per_t": row.price_per_t,
-                "unit": row.unit,
+                "unit": row.unit or None,
                 "valid_from": None if row.valid_from is None else row.valid_from.isoformat(),
                 "old_price_per_t": row.old_price_per_t,
             }
@@ -145,7 +145,7 @@ def sheet(batch: Batch, pdf: str | None) -> dict[str, Any]:
             }
             for line in batch.lines
         ],
-        "total_kg": batch.total_kg,
+        "total_kg": batch.total_kg if batch.lines else None,
         "limits": [limit(one) for one in batch.limits],
         "broken": list(batch.broken),
         "cause": batch.cause,

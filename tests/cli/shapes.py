@@ -91,7 +91,7 @@ SHEET = {
     "formula": {TEXT}, "version": {TEXT}, "order_kg": {NUMBER}, "batches": {NUMBER}, "batch_kg": {NUMBER},
     "lines": [{"ingredient": {TEXT}, "scale": {TEXT, NULL}, "step_kg": {NUMBER}, "share_kg": {NUMBER},
                "target_kg": {NUMBER}, "hand_add": {YES_NO}}],
-    "total_kg": {NUMBER}, "limits": [LIMIT], "broken": [{NUMBER}], "cause": {TEXT, NULL}, "cautions": [{TEXT}],
+    "total_kg": FIGURE, "limits": [LIMIT], "broken": [{NUMBER}], "cause": {TEXT, NULL}, "cautions": [{TEXT}],
     "pdf": {TEXT, NULL},
 }
 

@@ -94,6 +94,7 @@ def test_where_no_batch_can_be_made_the_cause_is_said_and_no_page_written(
     assert words in batch["cause"]
     assert batch["pdf"] is None
     assert batch["lines"] == []
+    assert batch["total_kg"] is None
     assert not (tmp_path / "a.pdf").exists()
     plain = sheet(formula, kg)
     assert plain.status == 1

@@ -176,6 +176,7 @@ def test_every_row_that_is_not_blank_has_one_fate_and_nothing_is_recorded_unaske
     assert found.status == 1
     maize = next(row for row in found.json["rows"] if row["row"] == 2)
     assert (maize["ingredient"], maize["price_per_t"], maize["old_price_per_t"]) == ("Maize", 210.5, 200)
+    assert (maize["reason"], maize["valid_from"]) == (None, None), "what a row does not have is null and no empty text"
     assert held(mill) == before
     words = run("prices", mill, prices)
     assert words.status == 1
