@@ -15,6 +15,7 @@ from PySide6.QtCore import QLocale, QObject, QSettings, Signal
 from PySide6.QtWidgets import QApplication
 
 from blendapp.desk.shell.frame import Frame
+from blendapp.desk.shell.icon import window_icon
 from blendapp.desk.theme import dress, follow_system, load_fonts
 from blendapp.domain.notation import Notation, use_notation
 from blendapp.domain.wording import use_language
@@ -50,6 +51,8 @@ def make_app(argv: Sequence[str]) -> QApplication:
         app = QApplication(list(argv))
     app.setApplicationName("blendapp")
     app.setApplicationDisplayName("blendapp")
+    app.setDesktopFileName("blendapp")
+    app.setWindowIcon(window_icon())
     load_fonts()
     dress(app, dark=_chosen_scheme())
     follow_system(app)

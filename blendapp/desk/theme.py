@@ -173,6 +173,7 @@ QPushButton:disabled, QToolButton:disabled { color: $quiet; }
 QPushButton#plain { border: 1px solid $hairline; }
 QPushButton#plain:hover, QPushButton#plain:focus { border: 1px solid $text; }
 QPushButton#first { background: $text; color: $ground; font-weight: 600; }
+QPushButton#first:disabled { background: $hairline; color: $quiet; }
 QPushButton#first:focus { border: 2px solid $quiet; }
 QPushButton#left { text-align: left; padding: 4px 0; }
 QPushButton#set, QPushButton#order { color: $quiet; padding: 4px 6px; }

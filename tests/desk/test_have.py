@@ -203,3 +203,13 @@ def test_removing_a_row_keeps_the_place_in_a_scrolled_table(bench: Bench) -> Non
     QApplication.processEvents()
     assert bar.value() == place
     assert bench.have.table.names.verticalScrollBar().value() == place
+
+
+def test_an_editor_opens_with_every_digit_of_what_is_stored(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, 1, "price")
+    hands.write("201.123456789")
+    hands.key(Qt.Key.Key_Return)
+    assert bench.work.library.price_per_t(1, bench.work.on) == 201.123456789
+    index = bench.have.model.cell(1, "price")
+    assert index.data() == "201.12"
+    assert bench.have.model.data(index, Qt.ItemDataRole.EditRole) == "201.123456789"

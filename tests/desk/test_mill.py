@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QApplication
 
 from blendapp.desk.bench import Bench
 from tests.desk.conftest import Hands
@@ -64,3 +65,23 @@ def test_a_step_of_zero_is_refused_in_its_cell(bench: Bench, hands: Hands) -> No
     assert bench.work.library.records["scale"][1].step_kg == 1.0
     index = table.grid.cell(1, "step_kg")
     assert table.grid.look(index.row(), index.column()).fault
+
+
+def test_a_pasted_block_is_one_undo_and_what_cannot_be_stays_in_its_cell(bench: Bench, hands: Hands) -> None:
+    bench.show_mill()
+    table = bench.mill.tables["nutrient"]
+    table.go_to(table.grid.owners[0], "note")
+    entries = len(bench.work.mill.store.entries())
+    QApplication.clipboard().setText("first\nsecond\nthird")
+    table.paste()
+    assert len(bench.work.mill.store.entries()) == entries + 1
+    assert sorted(one.note for one in bench.work.library.nutrients) == ["first", "second", "third"]
+    bench.work.undo()
+    assert [one.note for one in bench.work.library.nutrients] == ["", "", ""]
+    scales = bench.mill.tables["scale"]
+    scales.go_to(1, "step_kg")
+    QApplication.clipboard().setText("none\t0.5")
+    scales.paste()
+    assert bench.work.library.records["scale"][1].least_kg == 0.5
+    assert bench.work.library.records["scale"][1].step_kg == 1.0
+    assert scales.grid.look(0, 1).fault

@@ -7,6 +7,9 @@ import subprocess
 import sys
 from pathlib import Path
 
+from PySide6.QtWidgets import QApplication
+
+from blendapp.desk.bench import Bench
 from blendapp.services.mill import open_mill
 
 HEAVY = ("blendapp.services", "blendapp.optimise", "blendapp.storage", "numpy", "scipy", "pandas", "sqlalchemy",
@@ -40,3 +43,11 @@ def test_the_window_opens_a_mill_and_lets_it_go_when_it_ends(tmp_path: Path, mil
     assert mill.writable
     mill.close()
     assert sorted(path.name for path in mill_file.parent.glob("Test mill.mill*")) == ["Test mill.mill"]
+
+
+def test_the_desktop_knows_the_program_by_its_name_and_its_mark(empty_bench: Bench) -> None:
+    app = QApplication.instance()
+    assert isinstance(app, QApplication)
+    assert app.desktopFileName() == "blendapp"
+    image = app.windowIcon().pixmap(64, 64).toImage()
+    assert len({image.pixel(x, y) for x in range(64) for y in range(64)}) > 4

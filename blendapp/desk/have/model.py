@@ -188,8 +188,10 @@ class HaveModel(Grid):
         if quote is None or quote.price is None:
             return Look(editable=key == "quoted", number=key == "quoted")
         if key == "quoted":
-            text = _("{price} per {mass}").format(price=notation().write_short(quote.price), mass=quote.per)
-            return Look(text=text, typed=text, number=True, editable=True, quiet=True)
+            words = _("{price} per {mass}")
+            text = words.format(price=notation().write_short(quote.price), mass=quote.per)
+            typed = words.format(price=notation().write_exact(quote.price), mass=quote.per)
+            return Look(text=text, typed=typed, number=True, editable=True, quiet=True)
         if key == "since":
             return Look(text=age(quote.valid_from, on), quiet=True, hint=_date(quote.valid_from))
         return Look(text=quote.source, quiet=True, hint=quote.source)

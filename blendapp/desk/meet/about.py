@@ -98,7 +98,7 @@ class AboutFormula(QWidget):
         self.amounts.setCurrentIndex(self.amounts.findData(str(formula.amounts)))
         self.admits.setCurrentIndex(self.admits.findData(str(formula.admits)))
         for field, text in ((self.stage, formula.stage), (self.note, formula.note),
-                            (self.batch, notation().write_short(formula.batch_kg))):
+                            (self.batch, notation().write_exact(formula.batch_kg))):
             if not field.hasFocus():
                 field.setText(text)
 

@@ -121,8 +121,8 @@ class AddLimit(QWidget):
         self.go.setText(_("Change"))
         if limit.per is not None:
             self.per.setText(library.subject_name(limit.per))
-        self.minimum.setText(notation().write_short(limit.minimum))
-        self.maximum.setText(notation().write_short(limit.maximum))
+        self.minimum.setText(notation().write_exact(limit.minimum))
+        self.maximum.setText(notation().write_exact(limit.maximum))
         basis = write_basis(limit.basis, limit.at_dry_matter_percent)
         at = self.basis.findData(basis)
         self.basis.setCurrentText(basis if at < 0 else self.basis.itemText(at))

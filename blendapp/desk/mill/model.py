@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable, Sequence
 from typing import TYPE_CHECKING, Any
 
 from blendapp.desk.table.grid import Grid, Heading
@@ -11,6 +12,7 @@ from blendapp.domain.fields import Field, field_of
 from blendapp.domain.names import fold
 from blendapp.domain.notation import notation
 from blendapp.domain.nutrients import KEYS
+from blendapp.domain.records import Change
 from blendapp.domain.wording import _
 from blendapp.services import edits
 
@@ -63,6 +65,22 @@ class RecordTable(Grid):
         value = self._read(record, key, text.strip())
         what = _("Change {field} of {name}").format(field=field_of(self.kind, key).label, name=record.name)
         self.work.do(lambda mill: edits.change(mill, record, what, **{key: value}))
+
+    def write_block(self, cells: list[tuple[int, str, str]], what: str) -> None:
+        """Take every cell of a block that can be taken, as one undo; the others keep what was typed, and say why."""
+        def thunk(owner: int, key: str, text: str) -> Callable[[], Sequence[Change]]:
+            def changes() -> Sequence[Change]:
+                record = self.work.library.records[self.kind][owner]
+                return edits.field_changes(self.work.mill, record, **{key: self._read(record, key, text.strip())})
+
+            return changes
+
+        many = self.work.do(lambda mill: edits.many(mill, what, [thunk(*cell) for cell in cells]))
+        for at, (owner, key, text) in enumerate(cells):
+            if at in many.refused:
+                self.refuse(owner, key, text, " ".join(problem.text for problem in many.refused[at]))
+            else:
+                self.forgive(owner, key)
 
     def _read(self, record: Any, key: str, text: str) -> Any:
         field = field_of(self.kind, key)

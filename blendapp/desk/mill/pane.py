@@ -164,14 +164,18 @@ class MillPane(QWidget):
         if len(cells) == 1 and cells[0][1] == "name":
             self._try(lambda mill: removers[kind](mill, cells[0][0]))
             return
-        self._paste(kind, [(owner, key, "") for owner, key in cells if key != "name"], [])
+        self._paste(kind, [(owner, key, "") for owner, key in cells if key != "name"], [],
+                    _("Clear cells"))
 
-    def _paste(self, kind: str, cells: list[tuple[int, str, str]], outside: list[str]) -> None:
-        model = self.model(kind)
-        for owner, key, text in cells:
-            index = model.cell(owner, key)
-            if index.isValid():
-                model.setData(index, text)
+    def _paste(
+        self, kind: str, cells: list[tuple[int, str, str]], outside: list[str], what: str = ""
+    ) -> None:
+        what = what or _("Paste")
+        if cells:
+            try:
+                self.model(kind).write_block(cells, what)
+            except (Refused, ValueError) as fault:
+                self.said.emit(sentence_of(fault), [])
         if outside:
             self.said.emit(_("These cells fell where nothing is typed in:"), outside)
 

@@ -142,7 +142,7 @@ class SheetPane(QWidget):
         """Show the usual batch of the chosen formula."""
         assert self.work.formula_id is not None
         usual = batches.usual_batch_kg(self.work.library, self.work.formula_id)
-        self.order.setText(notation().write_short(usual))
+        self.order.setText(notation().write_exact(usual))
         self.reason.clear()
         self.by.clear()
         self._forget()

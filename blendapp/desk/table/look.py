@@ -61,7 +61,7 @@ def number_look(
         # Zero is 0, told from an unknown at a glance, and stands where whole numbers stand.
         widest, decimals = (decimals if widest is None else widest), 0
     return Look(
-        text=write.write(value, decimals), typed=write.write_short(value), number=True, editable=editable, hint=hint,
+        text=write.write(value, decimals), typed=write.write_exact(value), number=True, editable=editable, hint=hint,
         italic=italic, strong=strong, quiet=quiet, accent=accent, stale=stale, words=words,
         lack=max((decimals if widest is None else widest) - decimals, 0),
     )
