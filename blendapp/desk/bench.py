@@ -23,6 +23,7 @@ from blendapp.desk.listing import command_list
 from blendapp.desk.meet.pane import MeetPane
 from blendapp.desk.mill.pane import MillPane
 from blendapp.desk.mix.pane import MixPane
+from blendapp.desk.prices.effect import EffectPane
 from blendapp.desk.prices.pane import PricesPane
 from blendapp.desk.sheet.pane import SheetPane
 from blendapp.desk.shell.frame import Frame
@@ -30,6 +31,7 @@ from blendapp.desk.strip import Strip
 from blendapp.desk.welcome import Welcome
 from blendapp.desk.work import Work
 from blendapp.domain.formulas import LimitKind
+from blendapp.domain.library import Library
 from blendapp.domain.wording import _
 
 
@@ -55,11 +57,13 @@ class Bench(QObject):
         self.head = Head(self.work, frame)
         self.welcome = Welcome(self.files)
         self.prices = PricesPane(self.work)
+        self.effect = EffectPane(self.work)
         self.sheet = SheetPane(self.work)
         self.mill = MillPane(self.work)
-        for page in (self.welcome, self.prices, self.sheet, self.mill):
+        for page in (self.welcome, self.prices, self.effect, self.sheet, self.mill):
             frame.middle.addWidget(page)
         self.commands = Commands(frame, command_list(self))
+        self._effect_taken = True
         self.menu = QMenu(frame)
         self.recent_menu = QMenu(_("Opened last"), self.menu)
         self._connect()
@@ -81,6 +85,10 @@ class Bench(QObject):
         for page in (self.prices, self.sheet, self.mill):
             page.closed.connect(self.to_bench)
             page.said.connect(self.strip.say)
+        self.prices.effect_wanted.connect(self.show_effect)
+        self.effect.closed.connect(self._leave_effect)
+        self.effect.said.connect(self.strip.say)
+        self.effect.chosen.connect(self._show_formula)
         self.frame.closing.connect(self.close)
 
     # -- beginning and ending
@@ -132,6 +140,24 @@ class Bench(QObject):
         chosen = path or self.files.ask_price_list()
         if chosen is not None and self.prices.read(chosen):
             self.show_page(self.prices)
+
+    def show_effect(self, before: Library, after: Library, taken: bool) -> None:
+        """Show what prices do to every formula, or would do if they were taken."""
+        self._effect_taken = taken
+        title = _("What the new prices do") if taken else _("What these prices would do")
+        self.effect.begin(before, after, title, _("Back to the bench") if taken else _("Back to the list"))
+        self.show_page(self.effect)
+
+    def _leave_effect(self) -> None:
+        if self._effect_taken:
+            self.to_bench()
+        else:
+            self.show_page(self.prices)
+
+    def _show_formula(self, formula_id: int) -> None:
+        if formula_id in self.work.library.records["formula"]:
+            self.work.choose(formula_id)
+            self.to_bench()
 
     def show_mill(self) -> None:
         """Show the mill's own page."""

@@ -228,6 +228,10 @@ def _prices(studio: Studio, bench: Bench, price_list: Path) -> None:
     if reading is not None and reading.accepted:
         bench.prices.apply()
         studio.settle()
+        studio.settle(lambda: not bench.effect.running)
+        studio.take(bench.frame, "21-what-the-new-prices-do")
+        bench.to_bench()
+        studio.settle()
         studio.take(bench.frame, "21-prices-taken")
         bench.work.undo()
 

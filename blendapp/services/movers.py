@@ -10,6 +10,9 @@ import numpy as np
 
 from blendapp.domain.formulas import Amounts, Formula
 from blendapp.domain.library import Library
+from blendapp.domain.price_rows import PriceListReading
+from blendapp.domain.quotes import Quote
+from blendapp.domain.records import added
 from blendapp.domain.results import Status
 from blendapp.optimise.build.composition import Composition
 from blendapp.optimise.kept import Kept
@@ -81,6 +84,18 @@ def movers(
     if progress is not None:
         progress(len(moved), len(moved))
     return rows
+
+
+def with_prices(library: Library, reading: PriceListReading, on: datetime.date) -> Library:
+    """A copy of a library in which the accepted rows of a price list are in force; nothing is stored."""
+    copy = library.copy()
+    first = max(library.records["quote"], default=0) + 1
+    copy.apply([
+        added(Quote(first + at, row.ingredient_id or 0, row.price, row.per or "t", row.bushel_lb,
+                    valid_from=row.valid_from or on, valid_to=row.valid_to, recorded=on, source=reading.file_name))
+        for at, row in enumerate(reading.accepted)
+    ])
+    return copy
 
 
 Prices = Mapping[int, tuple[float | None, float | None]]

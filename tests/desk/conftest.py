@@ -70,7 +70,8 @@ def empty_bench(qapp: QApplication, tmp_path: Path) -> Iterator[Bench]:
     testers = [
         QAbstractItemModelTester(model, QAbstractItemModelTester.FailureReportingMode.Warning)
         for model in (
-            bench.have.model, bench.meet.model, bench.mix.model, bench.prices.rows, bench.finder.found,
+            bench.have.model, bench.meet.model, bench.mix.model, bench.prices.rows, bench.effect.rows,
+            bench.finder.found,
             *(bench.mill.model(kind) for kind in bench.mill.tables),
         )
     ]

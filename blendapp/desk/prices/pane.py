@@ -17,16 +17,19 @@ from blendapp.domain.price_rows import Fate, PriceListReading
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _, plural
 from blendapp.services import plant, prices
+from blendapp.services.movers import with_prices
 
 
 class PricesPane(QWidget):
     """closed: back to the bench. said: a sentence with what can be listed below it. ingredient_wanted: the person is to
-    say which ingredient a name is.
+    say which ingredient a name is. effect_wanted: the person wants to see what prices do, between two libraries, with
+    whether they are taken.
     """
 
     closed = Signal()
     said = Signal(str, list)
     ingredient_wanted = Signal(str)
+    effect_wanted = Signal(object, object, bool)
 
     def __init__(self, work: Work) -> None:
         super().__init__()
@@ -50,11 +53,15 @@ class PricesPane(QWidget):
         self.take = QPushButton(_("Take the prices"))
         self.take.setObjectName("first")
         self.take.clicked.connect(self.apply)
+        self.look = QPushButton(_("What they would do"))
+        self.look.setObjectName("plain")
+        self.look.clicked.connect(self.preview)
         head = QHBoxLayout()
         head.setSpacing(GAP_PX * 2)
         head.addWidget(self.title)
         head.addWidget(self.remark, 1)
         head.addWidget(self.ignored)
+        head.addWidget(self.look)
         head.addWidget(self.leave)
         head.addWidget(self.take)
         column = QVBoxLayout(self)
@@ -123,19 +130,27 @@ class PricesPane(QWidget):
         self.notes.setVisible(bool(reading.notes))
         self.take.setText(plural("Take {count} price", "Take {count} prices", accepted).format(count=accepted))
         self.take.setEnabled(accepted > 0)
+        self.look.setEnabled(accepted > 0)
+
+    def preview(self) -> None:
+        """Show what the accepted prices would do, with nothing stored."""
+        if self.reading is not None:
+            before = self.work.library.copy()
+            self.effect_wanted.emit(before, with_prices(before, self.reading, self.work.on), False)
 
     def apply(self) -> None:
-        """Record every accepted row as one undo, and go back to the bench."""
+        """Record every accepted row as one undo, and show what they do."""
         reading = self.reading
         if reading is None:
             return
+        before = self.work.library.copy()
         try:
             self.work.do(lambda mill: prices.apply_price_list(mill, reading, self.work.on))
         except Refused as refusal:
             self.said.emit(str(refusal), [])
             return
         count = reading.count(Fate.ACCEPTED)
-        self.closed.emit()
+        self.effect_wanted.emit(before, self.work.library.copy(), True)
         left = [f"{row.sheet} {row.row}, {row.source_name}: {row.reason}" for row in reading.rows
                 if row.fate in (Fate.QUESTION, Fate.REFUSED)]
         text = plural("{count} price from {file} is in force; Ctrl+Z takes it back.",

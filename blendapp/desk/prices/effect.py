@@ -1,0 +1,169 @@
+"""The page that says what new prices do to every formula, worked out beside the window."""
+
+from __future__ import annotations
+
+import threading
+from collections.abc import Callable
+
+from PySide6.QtCore import QModelIndex, Qt, Signal
+from PySide6.QtGui import QHideEvent, QKeyEvent
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QProgressBar, QPushButton, QVBoxLayout, QWidget
+
+from blendapp.desk.aside import Aside
+from blendapp.desk.prices.effect_model import EffectRows
+from blendapp.desk.shell.zone import Elided
+from blendapp.desk.table.view import DeskTable
+from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
+from blendapp.desk.work import Work
+from blendapp.domain.library import Library
+from blendapp.domain.problems import Refused
+from blendapp.domain.wording import _, plural
+from blendapp.services.movers import Mover, movers
+
+
+class EffectPane(QWidget):
+    """closed: away from here, to the bench or back to the list. chosen: the identifier of a formula to show. said: a
+    sentence with a list below it."""
+
+    closed = Signal()
+    chosen = Signal(int)
+    said = Signal(str, list)
+    _went_on = Signal(int, int)
+
+    def __init__(self, work: Work) -> None:
+        super().__init__()
+        self.work = work
+        self.rows = EffectRows(self)
+        self.table = DeskTable(self.rows, self)
+        self.table.setAccessibleName(_("What the new prices do"))
+        self.title = QLabel(_("What the new prices do"))
+        self.title.setFont(text_font(strong=True))
+        self.remark = Elided()
+        self.remark.setObjectName("quiet")
+        self.bar = QProgressBar()
+        self.bar.setTextVisible(False)
+        self.bar.setFixedWidth(160)
+        self.bar.setAccessibleName(_("Formulas worked out"))
+        self.stop = QPushButton(_("Stop"))
+        self.stop.setObjectName("plain")
+        self.stop.clicked.connect(self._stop_or_go)
+        self.leave = QPushButton(_("Back to the bench"))
+        self.leave.setObjectName("plain")
+        self.leave.clicked.connect(self.closed)
+        head = QHBoxLayout()
+        head.setSpacing(GAP_PX * 2)
+        head.addWidget(self.title)
+        head.addWidget(self.remark, 1)
+        for one in (self.bar, self.stop, self.leave):
+            head.addWidget(one)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(MARGIN_PX, GAP_PX * 2, MARGIN_PX, 0)
+        column.setSpacing(GAP_PX)
+        column.addLayout(head)
+        column.addWidget(self.table, 1)
+        self.setFocusProxy(self.table)
+        self._both: tuple[Library, Library] | None = None
+        self._enough = threading.Event()
+        self._of = 0
+        self.running = False
+        self._aside = Aside(self, (Refused, ValueError))
+        self._aside.done.connect(self._take)
+        self._went_on.connect(self._show_progress)
+        self.table.asked.connect(self._choose)
+        self.table.doubleClicked.connect(self._choose)
+        work.opened.connect(self._forget)
+
+    def begin(self, before: Library, after: Library, title: str, leave: str) -> None:
+        """Work out what prices do between two libraries that nobody edits. leave: words of the way back."""
+        self._both = (before, after)
+        self.title.setText(title)
+        self.leave.setText(leave)
+        self.rows.show([], self.work.library.mill.currency)
+        self._run()
+
+    def _run(self) -> None:
+        if self._both is None:
+            return
+        self._enough.set()
+        enough = self._enough = threading.Event()
+        before, after = self._both
+        on, tell = self.work.on, self._teller(enough)
+        self.running = True
+        self._of = 0
+        self.bar.setRange(0, 0)
+        self.bar.show()
+        self.stop.setText(_("Stop"))
+        self.stop.show()
+        self.remark.say(_("being worked out"))
+        self._aside.ask(lambda: movers(before, after, on, lambda: not enough.is_set(), tell))
+
+    def _teller(self, enough: threading.Event) -> Callable[[int, int], None]:
+        def tell(done: int, of: int) -> None:
+            if not enough.is_set():
+                self._went_on.emit(done, of)
+
+        return tell
+
+    def _show_progress(self, done: int, of: int) -> None:
+        self._of = of
+        if self.running:
+            self.bar.setRange(0, max(of, 1))
+            self.bar.setValue(done)
+            self.remark.say(_("{done} of {count} formulas").format(done=done, count=of))
+
+    def _stop_or_go(self) -> None:
+        if self.running:
+            self._enough.set()
+        else:
+            self._run()
+
+    def _take(self, found: list[Mover] | None, fault: Exception | None) -> None:
+        self.running = False
+        self.bar.hide()
+        if found is None:
+            self.said.emit(str(fault), [])
+            return
+        self.rows.show(found, self.work.library.mill.currency)
+        if len(found) < self._of:
+            self.remark.say(_("stopped after {done} of {count} formulas").format(done=len(found), count=self._of))
+            self.stop.setText(_("Work them all out"))
+            return
+        self.stop.hide()
+        self.remark.say(summary(found))
+
+    def _choose(self, index: QModelIndex) -> None:
+        if index.isValid():
+            self.chosen.emit(self.rows.owner(index))
+
+    def _forget(self) -> None:
+        self._enough.set()
+        self._aside.forget()
+        self._both = None
+        self.running = False
+        self.rows.show([], "")
+
+    def hideEvent(self, event: QHideEvent) -> None:
+        super().hideEvent(event)
+        # Nobody waits for it any more; what is there stays.
+        self._enough.set()
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        if event.key() == Qt.Key.Key_Escape:
+            self.closed.emit()
+        else:
+            super().keyPressEvent(event)
+
+
+def summary(found: list[Mover]) -> str:
+    """How many keep their mix and how many change."""
+    if not found:
+        return _("No formula admits an ingredient whose price changed.")
+    kept = sum(one.kept is True for one in found)
+    changed = sum(one.kept is False for one in found)
+    parts = [plural("{count} mix kept", "{count} mixes kept", kept).format(count=kept),
+             plural("{count} changed", "{count} changed", changed).format(count=changed)]
+    rest = len(found) - kept - changed
+    if rest:
+        parts.append(plural("{count} without an answer on one side", "{count} without an answer on one side",
+                            rest).format(count=rest))
+    return ", ".join(parts)
