@@ -93,6 +93,7 @@ class Asked(StrEnum):
     INGREDIENT: a name; its ingredient, or LEAVE_OUT. UNIT: the words in doubt, "" where none stand; words of one unit.
     RATE: a currency code or sign; the rate and its day. CENTS: ""; TAKE. PRICE: the headings of several columns of
     prices; the heading that holds, or ADD. DECIMAL: a heading; "." or ",". DATES: a heading; DAY_FIRST or MONTH_FIRST.
+    HIDDEN_COLUMN: a heading; TAKE.
     Of a row: TAKE or LEAVE_OUT.
     """
 
@@ -103,6 +104,7 @@ class Asked(StrEnum):
     PRICE = "price"
     DECIMAL = "decimal"
     DATES = "dates"
+    HIDDEN_COLUMN = "hidden column"
 
     HIDDEN = "hidden"
     STRUCK = "struck"

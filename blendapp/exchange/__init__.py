@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import datetime
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 from blendapp.domain.library import Library
-from blendapp.domain.price_rows import PriceListReading
+from blendapp.domain.price_rows import Answer, PriceListReading
 from blendapp.domain.problems import Problem
 
 if TYPE_CHECKING:
@@ -32,9 +32,10 @@ def write_workbook(path: str | Path, library: Library, today: datetime.date) -> 
 
 
 def read_price_list(
-    path: str | Path, library: Library, today: datetime.date, sheet: str | None = None
+    path: str | Path, library: Library, today: datetime.date, sheet: str | None = None,
+    answers: Sequence[Answer] = (), source: str = "",
 ) -> PriceListReading:
     """See price_list.read_price_list."""
     from blendapp.exchange.price_list import read_price_list as read
 
-    return read(path, library, today, sheet)
+    return read(path, library, today, sheet, answers, source)

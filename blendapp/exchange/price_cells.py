@@ -25,7 +25,8 @@ from blendapp.exchange.tables import CellKind, CellValue, PercentCell, RawTable,
 class PriceCell:
     """value: the price, None where there is none or it is in doubt. empty: says that there is none. entered: as shown.
 
-    doubt: the question, "" without one. unit, money: what stands beside the number. as_text: a number stored as text.
+    doubt: the question, "" without one. both_ways: the column does not tell its decimal sign.
+    unit, money: what stands beside the number. as_text: a number stored as text.
     """
 
     value: float | None = None
@@ -35,6 +36,8 @@ class PriceCell:
     money: Money = NO_MONEY
     unit: str = ""
     as_text: bool = False
+    both_ways: bool = False
+    dry: bool = False
     wordy: bool = False
 
 
@@ -71,8 +74,11 @@ def _text_cell(text: str, sign: DecimalSign | None, spreadsheet: bool) -> PriceC
         return PriceCell(entered=text, doubt=_("“{text}” is not one price.").format(text=text), wordy=wordy)
     value = value_in_column(found, sign)
     if value is None:
-        return PriceCell(entered=text, doubt=_both_ways(text, found), money=found.money, unit=found.unit)
-    return PriceCell(value, entered=text, money=found.money, unit=found.unit, as_text=spreadsheet)
+        return PriceCell(entered=text, doubt=_both_ways(text, found), money=found.money, unit=found.unit,
+                         both_ways=len(found.readings) == 2)
+    return PriceCell(
+        value, entered=text, money=found.money, unit=found.unit, as_text=spreadsheet, dry=found.dry
+    )
 
 
 def _both_ways(text: str, found: PriceText) -> str:

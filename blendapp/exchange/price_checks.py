@@ -7,33 +7,48 @@ from collections import defaultdict
 from collections.abc import Sequence
 from dataclasses import replace
 
-from blendapp.domain.price_rows import Fate, PriceRow
+from blendapp.domain.mills import Asked
+from blendapp.domain.price_rows import LEAVE_OUT, TAKE, Fate, PriceRow, Question
 from blendapp.domain.wording import _
+from blendapp.exchange.price_answers import Answers
 
 LARGEST_USUAL_CHANGE = 0.30
 # A price this near to 10, 100 or 1000 times the old one has more likely lost its decimal sign or its unit.
 _NEAR_POWER = 0.35
 
 
-def ask_about_duplicates(rows: Sequence[PriceRow]) -> list[PriceRow]:
-    """Every row of an ingredient that several rows price becomes a question that names the others."""
-    places: dict[int, list[PriceRow]] = defaultdict(list)
+def ask_about_duplicates(rows: Sequence[PriceRow], answers: Answers) -> list[PriceRow]:
+    """Every row of an ingredient that several rows price becomes a question that names the others.
+
+    Prices that begin on different days to come are no twins. Where one row was answered to hold, others are ignored.
+    """
+    places: dict[object, list[PriceRow]] = defaultdict(list)
     for row in rows:
         if row.ingredient_id is not None and row.fate in (Fate.ACCEPTED, Fate.QUESTION):
-            places[row.ingredient_id].append(row)
+            places[_goods(row, answers)].append(row)
     return [
-        _asked_about_twins(row, places[row.ingredient_id])
-        if row.fate in (Fate.ACCEPTED, Fate.QUESTION) and row.ingredient_id in places
-        and len(places[row.ingredient_id]) > 1
+        _asked_about_twins(row, places[_goods(row, answers)], answers)
+        if row.fate in (Fate.ACCEPTED, Fate.QUESTION) and len(places.get(_goods(row, answers), ())) > 1
         else row
         for row in rows
     ]
 
 
-def _asked_about_twins(row: PriceRow, twins: list[PriceRow]) -> PriceRow:
+def _goods(row: PriceRow, answers: Answers) -> object:
+    begins = row.valid_from if row.valid_from is not None and row.valid_from > answers.today else None
+    return row.ingredient_id, begins
+
+
+def _asked_about_twins(row: PriceRow, twins: list[PriceRow], answers: Answers) -> PriceRow:
+    held = [twin for twin in twins if answers.of_row(Asked.TWIN, twin.sheet, twin.row) == TAKE]
+    if len(held) == 1:
+        if held[0] is row:
+            return row
+        text = _("Left out, as answered: the price in {place} holds.").format(place=place_of(held[0], row))
+        return replace(row, fate=Fate.IGNORED, reason=text, questions=())
     others = _(" and ").join(place_of(twin, row) for twin in twins if twin is not row)
     text = _("“{name}” has another price in {others}; say which holds.").format(name=row.ingredient, others=others)
-    return asked(row, text)
+    return asked(row, text, Asked.TWIN)
 
 
 def place_of(row: PriceRow, seen_from: PriceRow) -> str:
@@ -43,12 +58,18 @@ def place_of(row: PriceRow, seen_from: PriceRow) -> str:
     return _("row {row} of the sheet “{sheet}”").format(row=row.row, sheet=row.sheet)
 
 
-def ask_about_leaps(rows: Sequence[PriceRow], largest_usual_change: float = LARGEST_USUAL_CHANGE) -> list[PriceRow]:
+def ask_about_leaps(
+    rows: Sequence[PriceRow], answers: Answers, largest_usual_change: float = LARGEST_USUAL_CHANGE
+) -> list[PriceRow]:
     """An accepted price that differs from the old one by more than the usual change becomes a question.
 
     largest_usual_change: as a fraction of the old price.
     """
-    return [_asked_about_leap(row, largest_usual_change) if row.fate is Fate.ACCEPTED else row for row in rows]
+    return [
+        _asked_about_leap(row, largest_usual_change)
+        if row.fate is Fate.ACCEPTED and answers.of_row(Asked.CHANGE, row.sheet, row.row) != TAKE else row
+        for row in rows
+    ]
 
 
 def _asked_about_leap(row: PriceRow, largest: float) -> PriceRow:
@@ -61,15 +82,18 @@ def _asked_about_leap(row: PriceRow, largest: float) -> PriceRow:
     prices = {"old": f"{old:.2f}", "new": f"{new:.2f}"}
     if near and power > 0:
         text = _("The price of {new} per t is about {times} times the old one of {old}; check the unit.")
-        return asked(row, text.format(times=f"{times:g}", **prices))
+        return asked(row, text.format(times=f"{times:g}", **prices), Asked.CHANGE)
     if near:
         text = _("The price of {new} per t is about a {times}th of the old one of {old}; check the unit.")
-        return asked(row, text.format(times=f"{times:g}", **prices))
+        return asked(row, text.format(times=f"{times:g}", **prices), Asked.CHANGE)
     text = _("The price moves from {old} to {new} per t, by {change} %; confirm it.")
-    return asked(row, text.format(change=f"{(new - old) / old * 100:+.0f}", **prices))
+    return asked(row, text.format(change=f"{(new - old) / old * 100:+.0f}", **prices), Asked.CHANGE)
 
 
-def asked(row: PriceRow, text: str) -> PriceRow:
+def asked(row: PriceRow, text: str, question: Asked) -> PriceRow:
     """The row as a question, with one more reason."""
     earlier = row.reason if row.fate is Fate.QUESTION else ""
-    return replace(row, fate=Fate.QUESTION, reason=f"{earlier} {text}".strip())
+    more = Question(question, "", text, (TAKE, LEAVE_OUT))
+    return replace(
+        row, fate=Fate.QUESTION, reason=f"{earlier} {text}".strip(), questions=(*row.questions, more)
+    )

@@ -3,13 +3,10 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Callable
 from dataclasses import dataclass, field
 from enum import Enum
 
-from blendapp.exchange.price_units import is_price_unit
-from blendapp.exchange.price_words import Words, read_heading_words
-from blendapp.exchange.tables import CellKind, CellValue, RawTable, kind_of
+from blendapp.exchange.price_words import Words, read_heading_words, split_dry
 
 
 class Role(Enum):
@@ -23,6 +20,8 @@ class Role(Enum):
     CURRENCY = "currency"
     VALID_FROM = "valid from"
     VALID_TO = "valid to"
+    PACK = "weight of a bag"
+    TERMS = "terms"
     NOTE = "note"
     OTHER = "other"
 
@@ -60,9 +59,13 @@ _TO_HEADINGS = frozenset({
     "date to", "to date", "expiration",
 })
 _NOTE_HEADINGS = frozenset({
-    "note", "notes", "remark", "remarks", "comment", "comments", "origin", "supplier", "terms", "code", "sku",
+    "note", "notes", "remark", "remarks", "comment", "comments", "origin", "supplier", "code", "sku",
     "item no", "item number", "product code", "place", "location", "port", "quality", "specification", "spec", "class",
 })
+_PACK_HEADINGS = frozenset({
+    "bag weight", "pack size", "pack", "packing", "bag size", "pack weight", "bag", "packaging", "bag kg", "kg bag",
+})
+_TERMS_HEADINGS = frozenset({"terms", "basis", "price basis", "delivery terms", "terms of delivery", "incoterm"})
 _QUANTITY_WORDS = frozenset({
     "stock", "quantity", "qty", "volume", "tonnage", "weight", "moisture", "protein", "available", "lot",
     "minimum",
@@ -70,10 +73,6 @@ _QUANTITY_WORDS = frozenset({
 _NOTE_WORDS = frozenset({
     "basis", "date", "period", "month", "terms", "time", "window", "place", "point", "address",
 })
-# A heading row stands near the top; looking further would only find odd rows of a long list.
-_FURTHEST = 200
-
-
 @dataclass(frozen=True)
 class PriceColumn:
     """A column of prices, of one role of PRICE, FREIGHT and SUM, with what its heading says of unit and currency."""
@@ -94,6 +93,26 @@ class Table:
     prices: list[PriceColumn] = field(default_factory=list)
     name: int | None = None
     side_by_side: bool = False
+    first_heading_row: int | None = None
+    last_heading_row: int | None = None
+
+    @property
+    def first_row(self) -> int:
+        """The first row below the headings."""
+        last = self.heading_row if self.last_heading_row is None else self.last_heading_row
+        return 0 if last is None else last + 1
+
+    @property
+    def heading_rows(self) -> range:
+        """The rows that the headings take; none where the columns were told by their content."""
+        if self.heading_row is None:
+            return range(0)
+        return range(self.heading_row if self.first_heading_row is None else self.first_heading_row, self.first_row)
+
+    @property
+    def prices_key(self) -> str:
+        """What the choice between the columns of prices is remembered by."""
+        return " | ".join(column.heading for column in self.prices)
 
     def first(self, role: Role) -> int | None:
         return next((index for index, found in sorted(self.roles.items()) if found is role), None)
@@ -102,11 +121,12 @@ class Table:
 def role_of(heading: str) -> tuple[Role, Words]:
     """The role that a heading gives its column."""
     words = read_heading_words(heading)
-    plain = " ".join(re.sub(r"[^a-z0-9%]+", " ", heading.casefold()).split())
+    plain = " ".join(re.sub(r"[^a-z0-9%]+", " ", split_dry(heading)[1].casefold()).split())
     tokens = set(plain.split())
     for headings, role in (
         (_UNIT_HEADINGS, Role.UNIT), (_CURRENCY_HEADINGS, Role.CURRENCY), (_FROM_HEADINGS, Role.VALID_FROM),
-        (_TO_HEADINGS, Role.VALID_TO), (_NOTE_HEADINGS, Role.NOTE),
+        (_TO_HEADINGS, Role.VALID_TO), (_PACK_HEADINGS, Role.PACK), (_TERMS_HEADINGS, Role.TERMS),
+        (_NOTE_HEADINGS, Role.NOTE),
     ):
         if plain in headings:
             return role, words
@@ -128,123 +148,3 @@ def role_of(heading: str) -> tuple[Role, Words]:
     if names_money and (words.unit or len(tokens) <= 2):
         return Role.PRICE, words
     return Role.OTHER, words
-
-
-def read_headings(table: RawTable, row: int) -> Table | None:
-    """The table that begins with a row, if the row has headings for a name and a price, and holds no number."""
-    found = Table(row)
-    names = []
-    for index, value in enumerate(table.rows[row]):
-        kind = kind_of(value)
-        if kind is CellKind.BLANK:
-            continue
-        if kind is not CellKind.TEXT:
-            return None
-        heading = " ".join(str(value).split())
-        role, words = role_of(heading)
-        found.roles[index], found.headings[index] = role, heading
-        if role is Role.NAME:
-            names.append(index)
-        elif role in (Role.PRICE, Role.FREIGHT, Role.SUM):
-            if re.search(r"[0-9]", heading) and not words.unit:
-                return None
-            found.prices.append(PriceColumn(index, role, heading, words))
-    if not any(column.role is not Role.FREIGHT for column in found.prices) or len(found.roles) < 2:
-        return None
-    found.name = names[0] if names else None
-    found.side_by_side = _is_side_by_side(names, found.prices)
-    return found
-
-
-def _is_side_by_side(names: list[int], prices: list[PriceColumn]) -> bool:
-    """Name, price, name, price: two tables beside each other."""
-    if len(names) < 2 or len(prices) < 2:
-        return False
-    return any(names[0] < price.index < names[-1] for price in prices) and prices[-1].index > names[-1]
-
-
-def find_table(table: RawTable, is_known: Callable[[str], bool]) -> Table | None:
-    """The first table of a sheet. is_known: whether a text is the name of an ingredient."""
-    for row in range(min(len(table.rows), _FURTHEST)):
-        found = None if table.is_blank(row) else read_headings(table, row)
-        if found is not None:
-            settle_name_column(found, table, is_known)
-            if found.name is not None:
-                drop_empty_prices(found, table)
-                return found
-    return _table_without_headings(table, is_known)
-
-
-def settle_name_column(found: Table, table: RawTable, is_known: Callable[[str], bool]) -> None:
-    """Of several columns of names, or of none headed so, the one that holds most known ones."""
-    candidates = [index for index, role in found.roles.items() if role is Role.NAME]
-    if not candidates:
-        taken = {column.index for column in found.prices}
-        width = max((len(cells) for cells in table.rows), default=0)
-        candidates = [index for index in range(width) if index not in taken]
-        if not any(_known(table, index, found.heading_row or 0, is_known) for index in candidates):
-            return
-    start = found.heading_row or 0
-    found.name = max(candidates, key=lambda index: (_known(table, index, start, is_known), -index))
-    for index in candidates:
-        if index != found.name and found.roles.get(index) is Role.NAME:
-            found.roles[index] = Role.NOTE
-    found.roles[found.name] = Role.NAME
-
-
-def drop_empty_prices(found: Table, table: RawTable) -> None:
-    """A column of prices that is headed and never filled says nothing."""
-    start = (found.heading_row or 0) + 1
-    filled = [
-        column
-        for column in found.prices
-        if any(kind_of(table.cell(row, column.index)) is not CellKind.BLANK for row in range(start, len(table.rows)))
-    ]
-    if filled:
-        found.prices = filled
-
-
-def _known(table: RawTable, column: int, start: int, is_known: Callable[[str], bool]) -> int:
-    rows = table.rows[start + 1 : start + 1 + _FURTHEST]
-    texts = (cells[column] for cells in rows if column < len(cells))
-    return sum(_is_known_text(text, is_known) for text in texts)
-
-
-def _is_known_text(value: CellValue, is_known: Callable[[str], bool]) -> bool:
-    return isinstance(value, str) and is_known(value)
-
-
-def _table_without_headings(table: RawTable, is_known: Callable[[str], bool]) -> Table | None:
-    """Names that the mill knows in one column, numbers in exactly one other."""
-    width = max((len(cells) for cells in table.rows), default=0)
-    counts = [_known(table, column, -1, is_known) for column in range(width)]
-    if not counts or max(counts) < 2:
-        return None
-    name = counts.index(max(counts))
-    named = [cells for cells in table.rows if name < len(cells) and _is_known_text(cells[name], is_known)]
-    numeric = [
-        column
-        for column in range(width)
-        if column != name and sum(_has_number(cells, column) for cells in named) * 2 >= len(named)
-    ]
-    if len(numeric) != 1:
-        return None
-    found = Table(None, {name: Role.NAME, numeric[0]: Role.PRICE}, name=name)
-    found.prices = [PriceColumn(numeric[0], Role.PRICE, "", read_heading_words(""))]
-    for column in range(width):
-        if column in found.roles:
-            continue
-        filled = [cells[column] for cells in named if column < len(cells)]
-        texts = [str(value) for value in filled if kind_of(value) is CellKind.TEXT]
-        if texts and all(is_price_unit(text) or read_heading_words("/" + text).unit for text in texts):
-            found.roles[column] = Role.UNIT
-            break
-    return found
-
-
-def _has_number(cells: list[CellValue], column: int) -> bool:
-    if column >= len(cells):
-        return False
-    value = cells[column]
-    kind = kind_of(value)
-    return kind is CellKind.NUMBER or (kind is CellKind.TEXT and re.search(r"[0-9]", str(value)) is not None)

@@ -3,31 +3,29 @@
 from __future__ import annotations
 
 import datetime
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 
 from blendapp.domain.library import Library
+from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
-from blendapp.domain.price_rows import Fate, PriceListReading, PriceRow
+from blendapp.domain.price_rows import Answer, Fate, PriceListReading, PriceRow, source_of
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.wording import _
 from blendapp.exchange.delimited import read_delimited
 from blendapp.exchange.files import Format, SourceFile, open_source
+from blendapp.exchange.price_answers import Answers
 from blendapp.exchange.price_cells import column_sign
 from blendapp.exchange.price_checks import ask_about_duplicates, ask_about_leaps
-from blendapp.exchange.price_columns import (
-    Role,
-    Table,
-    drop_empty_prices,
-    find_table,
-    read_headings,
-    settle_name_column,
-)
+from blendapp.exchange.price_columns import Role, Table
+from blendapp.exchange.price_headings import read_headings
 from blendapp.exchange.price_names import NameFinder
+from blendapp.exchange.price_notes import Notes, read_notes
 from blendapp.exchange.price_numbers import DateOrder, DecimalSign, decide_date_order
 from blendapp.exchange.price_row import read_row
+from blendapp.exchange.price_tables import drop_empty_prices, find_table, settle_name_column
 from blendapp.exchange.spreadsheets import read_spreadsheet
 from blendapp.exchange.suggestions import did_you_mean
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
@@ -42,25 +40,33 @@ class Segment:
     last: int
     signs: dict[int, DecimalSign | None]
     dates: dict[int, DateOrder | None]
+    notes: Notes
 
 
 def read_price_list(
-    path: str | Path, library: Library, today: datetime.date, sheet: str | None = None
+    path: str | Path, library: Library, today: datetime.date, sheet: str | None = None,
+    answers: Sequence[Answer] = (), source: str = "",
 ) -> PriceListReading:
     """Reads a price list against a library; nothing is written.
 
     sheet: None reads every visible sheet. Each row that is not blank has one entry, in the order of the file.
+    answers: those given for this list; those remembered for the source count as well. source: whom the list is from,
+    "" as the name of the file tells.
     Raises Refused with one sentence for a file that cannot be read, or that has no sheet of that name.
     """
-    source = open_source(path)
+    file = open_source(path)
+    source = source_of(source or file.name)
     notes: list[str] = []
-    tables = _chosen(_tables(source), sheet, source.name, notes)
-    if source.format in (Format.XLS, Format.XLSB, Format.ODS):
-        notes.append(_("Hidden rows and cells with errors cannot be told in this kind of file; check it by eye."))
-    names = NameFinder(library, source.name)
+    tables = _chosen(_tables(file), sheet, file.name, notes)
+    if file.format in (Format.XLS, Format.XLSB, Format.ODS):
+        notes.append(_("What is hidden, struck through or in error cannot be told in this file; check it by eye."))
+    answered = Answers(library, source, answers, today)
+    names = NameFinder(library, answered)
     rows = [row for table in tables for row in read_table(table, library, names, today)]
-    rows = ask_about_leaps(ask_about_duplicates(rows))
-    return PriceListReading(source.name, source.digest, library.mill.currency, tuple(rows), tuple(notes))
+    rows = ask_about_leaps(ask_about_duplicates(rows, answered), answered)
+    return PriceListReading(
+        file.name, file.digest, library.mill.currency, tuple(rows), tuple(notes), source, tuple(answers)
+    )
 
 
 def _tables(source: SourceFile) -> list[RawTable]:
@@ -97,13 +103,13 @@ def read_table(raw: RawTable, library: Library, names: NameFinder, today: dateti
         yield from _without_table(raw)
         return
     for segment in _segments(raw, table, names):
-        heading = segment.table.heading_row
+        headings = segment.table.heading_rows
         for row in range(segment.first, segment.last):
             if raw.is_blank(row):
                 continue
-            if row == heading:
+            if row in headings:
                 yield PriceRow(raw.sheet, row + 1, Fate.IGNORED, _("Heading."))
-            elif heading is not None and row < heading:
+            elif row < segment.table.first_row:
                 yield PriceRow(raw.sheet, row + 1, Fate.IGNORED, _("Title above the table."), first_text(raw, row))
             else:
                 yield read_row(raw, row, segment, library, names, today)
@@ -111,8 +117,10 @@ def read_table(raw: RawTable, library: Library, names: NameFinder, today: dateti
 
 def _segments(raw: RawTable, table: Table, names: NameFinder) -> Iterator[Segment]:
     """The table, and every further one below it that has headings of its own."""
-    first, start = 0, 0 if table.heading_row is None else table.heading_row + 1
-    for row in range(start, len(raw.rows)):
+    first, titles = 0, Notes()
+    for row in range(table.first_row, len(raw.rows)):
+        if row < table.first_row:  # the second heading row of a table found meanwhile
+            continue
         found = read_headings(raw, row) if _may_be_heading(raw, row, table) else None
         if found is None:
             continue
@@ -120,9 +128,11 @@ def _segments(raw: RawTable, table: Table, names: NameFinder) -> Iterator[Segmen
         if found.name is None:
             continue
         drop_empty_prices(found, raw)
-        yield _segment(raw, table, first, row)
+        segment = _segment(raw, table, first, row, names.answers, titles)
+        yield segment
+        titles = segment.notes
         table, first = found, row
-    yield _segment(raw, table, first, len(raw.rows))
+    yield _segment(raw, table, first, len(raw.rows), names.answers, titles)
 
 
 def _may_be_heading(raw: RawTable, row: int, table: Table) -> bool:
@@ -136,16 +146,37 @@ def _may_be_heading(raw: RawTable, row: int, table: Table) -> bool:
     return not texts or any(not any(letter.isdigit() for letter in text) or "/" in text for text in texts)
 
 
-def _segment(raw: RawTable, table: Table, first: int, last: int) -> Segment:
-    body = range(first if table.heading_row is None else table.heading_row + 1, last)
-    signs = {column.index: column_sign(raw, column.index, body) for column in table.prices}
-    dates = {}
+def _segment(
+    raw: RawTable, table: Table, first: int, last: int, answers: Answers, titles: Notes
+) -> Segment:
+    """titles: what notes of the tables above it say, which holds where its own notes are silent."""
+    body = range(max(first, table.first_row), last)
+    signs = {
+        column.index: column_sign(raw, column.index, body) or _answered_sign(answers, column.heading)
+        for column in table.prices
+    }
+    dates: dict[int, DateOrder | None] = {}
     for role in (Role.VALID_FROM, Role.VALID_TO):
         index = table.first(role)
         if index is not None:
             values = (raw.cell(row, index) for row in body)
-            dates[index] = decide_date_order(value for value in values if isinstance(value, str))
-    return Segment(table, first, last, signs, dates)
+            found = decide_date_order(value for value in values if isinstance(value, str))
+            dates[index] = found or _answered_order(answers, table.headings[index])
+    notes = read_notes(raw, range(first, last))
+    notes = Notes(
+        notes.units or titles.units, notes.valid_from or titles.valid_from, notes.valid_to or titles.valid_to
+    )
+    return Segment(table, first, last, signs, dates, notes)
+
+
+def _answered_sign(answers: Answers, heading: str) -> DecimalSign | None:
+    found = answers.find(Asked.DECIMAL, heading)
+    return next((sign for sign in DecimalSign if found and sign.value == found.answer), None)
+
+
+def _answered_order(answers: Answers, heading: str) -> DateOrder | None:
+    found = answers.find(Asked.DATES, heading)
+    return next((order for order in DateOrder if found and order.value == found.answer), None)
 
 
 def _without_table(raw: RawTable) -> Iterator[PriceRow]:

@@ -8,8 +8,11 @@ from dataclasses import dataclass
 
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
+from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
+from blendapp.domain.price_rows import LEAVE_OUT, Answer, source_of
 from blendapp.domain.wording import _
+from blendapp.exchange.price_answers import Answers
 from blendapp.exchange.suggestions import Suggester
 
 LEAST_LIKENESS = 0.5
@@ -30,34 +33,52 @@ def match_key(name: str) -> str:
 
 @dataclass(frozen=True)
 class Match:
-    """ingredient: None where nothing is known by that name; reason: then the question, else what is worth saying."""
+    """ingredient: None where nothing is known by that name; reason: then the question, else what is worth saying.
+
+    candidates: names of the ingredients that it may be.
+    """
 
     ingredient: Ingredient | None
     reason: str = ""
     known: bool = True
+    candidates: tuple[str, ...] = ()
 
 
 class NameFinder:
     """Finds ingredients of a library by the names that a source gives them."""
 
-    def __init__(self, library: Library, source: str) -> None:
+    def __init__(self, library: Library, answers: Answers) -> None:
         self.library = library
+        self.answers = answers
+        source = source_of(answers.source)
         self._by_key: dict[str, list[Ingredient]] = {}
         for ingredient in library.ingredients:
             self._by_key.setdefault(match_key(ingredient.name), []).append(ingredient)
         self._synonyms: dict[str, set[int]] = {}
-        own = [s for s in library.all("synonym") if s.ingredient_id is not None]
-        for synonym in sorted(own, key=lambda s: s.source != source):
-            ids = self._synonyms.setdefault(match_key(synonym.name), set())
-            if not ids or synonym.source != source:
-                ids.add(synonym.ingredient_id)
+        self._of_source: set[str] = set()
+        known = [s for s in library.all("synonym") if s.asked is Asked.INGREDIENT and s.ingredient_id is not None]
+        for synonym in sorted(known, key=lambda s: source_of(s.source) != source):
+            key = match_key(synonym.name)
+            own = source_of(synonym.source) == source
+            if own or key not in self._of_source:  # what the source itself was answered settles it
+                self._synonyms.setdefault(key, set()).add(synonym.ingredient_id)
+            if own:
+                self._of_source.add(key)
         self._found: dict[str, Match] = {}
         self._looked_for = 0
         self._suggester: Suggester | None = None
 
     def is_known(self, name: str) -> bool:
         key = match_key(name)
-        return bool(key) and (key in self._by_key or key in self._synonyms)
+        return bool(key) and (key in self._by_key or key in self._synonyms or self._answer(name) is not None)
+
+    def _answer(self, name: str) -> Answer | None:
+        return self.answers.find(Asked.INGREDIENT, name)
+
+    def is_left_out(self, name: str) -> bool:
+        """Whether a person has answered that a name of this source is nothing for the mill."""
+        found = self._answer(name) if name else None
+        return found is not None and found.answer == LEAVE_OUT
 
     def find(self, name: str) -> Match:
         folded = fold(name)
@@ -66,6 +87,10 @@ class NameFinder:
         return self._found[folded]
 
     def _find(self, name: str) -> Match:
+        answer = self._answer(name)
+        if answer is not None and answer.ingredient_id in self.library.records["ingredient"]:
+            assert answer.ingredient_id is not None
+            return Match(self.library.ingredient(answer.ingredient_id), _("“{name}” as answered.").format(name=name))
         exact: Ingredient | None = self.library.named("ingredient", name)
         if exact is not None:
             return Match(exact)
@@ -75,17 +100,19 @@ class NameFinder:
             return Match(same[0])
         if same:
             names = _(" or ").join(f"“{ingredient.name}”" for ingredient in same)
-            return Match(None, _("“{name}” may be {names}; say which.").format(name=name, names=names))
+            return Match(None, _("“{name}” may be {names}; say which.").format(name=name, names=names),
+                         candidates=tuple(ingredient.name for ingredient in same))
         ids = sorted(self._synonyms.get(key, set()))
         known = [self.library.ingredient(key) for key in ids if key in self.library.records["ingredient"]]
         if len(known) == 1:
             return Match(known[0], _("Known as “{name}” from an earlier list.").format(name=name))
         if known:
             names = _(" or ").join(f"“{ingredient.name}”" for ingredient in known)
-            return Match(None, _("“{name}” has been {names} before; say which.").format(name=name, names=names))
-        return Match(None, self._unknown(name), known=False)
+            return Match(None, _("“{name}” has been {names} before; say which.").format(name=name, names=names),
+                         candidates=tuple(ingredient.name for ingredient in known))
+        return self._unknown(name)
 
-    def _unknown(self, name: str) -> str:
+    def _unknown(self, name: str) -> Match:
         text = _("The mill has no ingredient “{name}”.").format(name=name)
         self._looked_for += 1
         candidates: list[str] = []
@@ -95,5 +122,6 @@ class NameFinder:
             candidates = self._suggester.close_names(name)
         if candidates:
             names = _(" or ").join(f"“{candidate}”" for candidate in candidates)
-            return text + " " + _("Is it {names}?").format(names=names)
-        return text + " " + _("Say which ingredient it is, or add it.")
+            text += " " + _("Is it {names}?").format(names=names)
+            return Match(None, text, False, tuple(candidates))
+        return Match(None, text + " " + _("Say which ingredient it is, or add it."), False)

@@ -37,6 +37,7 @@ class PriceText:
     negative: bool
     money: Money
     unit: str
+    dry: bool = False
 
     def value(self, sign: DecimalSign) -> float | None:
         """The number with a decimal sign; None if it cannot be one so written."""
@@ -70,7 +71,7 @@ def read_price_text(text: str) -> PriceText | None:
     if one and other and one.isdisjoint(other):
         return None
     money = first.money if first.money.currencies or first.money.cents else second.money
-    return PriceText(found[0], minus or brackets, money, second.unit)
+    return PriceText(found[0], minus or brackets, money, second.unit, second.dry or first.dry)
 
 
 def read_digits(digits: str, sign: DecimalSign) -> float | None:

@@ -3,21 +3,27 @@
 from __future__ import annotations
 
 import datetime
+import re
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
+from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
-from blendapp.domain.price_rows import Fate, PriceRow
+from blendapp.domain.price_rows import LEAVE_OUT, TAKE, Fate, PriceRow, Question
+from blendapp.domain.quotes import Terms
 from blendapp.domain.wording import _
 from blendapp.exchange.price_cells import PriceCell, error_in, read_price_cell
+from blendapp.exchange.price_choice import Priced, choose_price
 from blendapp.exchange.price_columns import PriceColumn, Role, Table
 from blendapp.exchange.price_names import Match, NameFinder
-from blendapp.exchange.price_numbers import date_in_column
-from blendapp.exchange.price_units_read import TonnePrice, UnitReading, money_doubt, per_tonne, read_unit
-from blendapp.exchange.price_words import Money, Words, read_unit_words, split_money
-from blendapp.exchange.tables import CellKind, RawTable, kind_of
+from blendapp.exchange.price_numbers import DateOrder, DecimalSign, date_in_column, date_readings, decide_date_order
+from blendapp.exchange.price_units import AmbiguousPriceUnit, UnknownPriceUnit, bag_with_weight, read_price_unit
+from blendapp.exchange.price_units_read import TonnePrice, UnitReading, foreign_money, per_tonne, read_unit
+from blendapp.exchange.price_words import NO_WORDS, Money, Words, read_unit_words, split_money
+from blendapp.exchange.tables import CellKind, RawTable, column_letters, kind_of
 
 if TYPE_CHECKING:
     from blendapp.exchange.price_list import Segment
@@ -26,8 +32,6 @@ _TOTALS = frozenset({
     "total", "totals", "subtotal", "sub total", "sub-total", "grand total", "sum", "average", "avg", "mean",
     "weighted average", "overall average", "overall",
 })
-# Base and freight add up to the sum within what rounding each to the cent leaves.
-_ROUNDING = 0.015
 
 
 def read_row(
@@ -46,7 +50,10 @@ class _Reading:
         self.raw, self.row, self.segment = raw, row, segment
         self.library, self.names, self.today = library, names, today
         self.table: Table = segment.table
+        self.answers = names.answers
         self.questions: list[str] = []
+        self.open: list[Question] = []
+        self.left_out = False
         self.remarks: list[str] = []
         self.name = self._text(self.table.name)
 
@@ -72,13 +79,32 @@ class _Reading:
         ]
         prices = [(column, cell) for column, cell in cells if not cell.empty]
         known = bool(self.name) and self.names.is_known(self.name)
+        if prices and (self.names.is_left_out(self.name) or self._is_left_out()):
+            return self._entry(Fate.IGNORED, _("Left out, as answered."))
         if not prices:
             return self._entry(Fate.IGNORED, self._why_empty([cell for _column, cell in cells], known))
         if not known and fold(self.name).rstrip(" :") in _TOTALS:
             return self._entry(Fate.IGNORED, _("A total or an average, no price of an ingredient."))
         if not known and all(cell.wordy for _column, cell in prices):
             return self._entry(Fate.IGNORED, _("A heading or a note without a price."))
-        return self._priced(prices, len(cells))
+        return self._priced(prices)
+
+    def _is_left_out(self) -> bool:
+        place = self.raw.sheet, self.row + 1
+        return any(
+            self.answers.of_row(asked, *place) == LEAVE_OUT for asked in Asked if not asked.is_remembered
+        )
+
+    def _ask(self, asked: Asked, about: str, text: str, choices: tuple[str, ...] = ()) -> None:
+        self.questions.append(text)
+        self.open.append(Question(asked, about, text, choices))
+
+    def _confirm(self, asked: Asked, text: str) -> None:
+        """Asks about this row, unless a person has said that it counts."""
+        if self.answers.of_row(asked, self.raw.sheet, self.row + 1) == TAKE:
+            self.remarks.append(_("Taken, as answered."))
+        else:
+            self._ask(asked, "", text, (TAKE, LEAVE_OUT))
 
     def _error(self) -> str:
         columns = [index for index, role in self.table.roles.items() if role not in (Role.NOTE, Role.OTHER)]
@@ -92,19 +118,30 @@ class _Reading:
             return _("“{text}” is no price.").format(text=said)
         return _("The price is empty.") if known else _("A heading or a note without a price.")
 
-    def _priced(self, prices: list[tuple[PriceColumn, PriceCell]], columns: int) -> PriceRow:
+    def _priced(self, prices: list[Priced]) -> PriceRow:
         self._ask_about_place()
-        column, cell = self._one_price(prices, columns)
+        choice = choose_price(self.table, prices, self.answers)
+        for column, cell in prices if len(prices) > 1 and len(choice.parts) == 1 and choice.doubt else choice.parts:
+            self._ask_about_cell(column, cell)
+        if choice.doubt:
+            self.questions.append(choice.doubt)
+            self.open += choice.open
+        if choice.remark:
+            self.remarks.append(choice.remark)
         match = self._match()
         ingredient = match.ingredient
-        unit = self._unit(column, cell)
-        self._ask_about_money(column, cell)
-        valid_from = self._dates()
-        found = self._per_tonne(cell, unit, ingredient)
-        if ingredient is not None and cell.value is not None and cell.value <= 0:
+        parts = [self._part(column, cell, ingredient) for column, cell in choice.parts]
+        found, unit = (parts[0][0], parts[0][1]) if len(parts) == 1 else (_added(parts), parts[0][1])
+        first, last = self._days()
+        value = found.price if found else choice.parts[0][1].value
+        if ingredient is not None and value is not None and value <= 0:
             text = _("The price {price} is 0 or below; type it for the ingredient if it is meant.")
-            self.questions.append(text.format(price=PLAIN.write_exact(cell.value)))
-        if cell.as_text:
+            self._confirm(Asked.SIGN, text.format(price=PLAIN.write_exact(value)))
+        terms = self._terms(choice.parts, ingredient)
+        dry = None
+        if found is not None and any(part[2] for part in parts):
+            found, dry = self._of_dry_matter(found, ingredient)
+        if any(cell.as_text for _column, cell in choice.parts):
             self.remarks.append(_("The number is stored as text."))
         old = None if ingredient is None else self.library.price_per_t(ingredient.id, self.today)
         fate = Fate.QUESTION if self.questions else Fate.ACCEPTED
@@ -113,56 +150,40 @@ class _Reading:
             " ".join(dict.fromkeys(self.questions if self.questions else self.remarks)),
             ingredient_id=None if ingredient is None else ingredient.id,
             ingredient=None if ingredient is None else ingredient.name,
-            price=found.price if found else cell.value,
+            price=found.price if found else value,
             per=found.per if found else None,
             bushel_lb=found.bushel_lb if found else None,
             price_per_t=found.per_t if found else None,
             unit=unit.said or None,
-            valid_from=valid_from,
+            valid_from=first,
             old_price_per_t=old,
-            entered=cell.entered,
+            entered=" + ".join(cell.entered for _column, cell in choice.parts),
+            valid_to=last,
+            terms=terms,
+            dry_matter_price_per_t=dry,
+            questions=tuple(dict.fromkeys(self.open)),
         )
 
     def _ask_about_place(self) -> None:
         if self.raw.hidden_rows and self.row in self.raw.hidden_rows:
-            self.questions.append(_("The row is hidden in the list; say whether it counts."))
+            self._confirm(Asked.HIDDEN, _("The row is hidden in the list; say whether it counts."))
         used = [self.table.name, *(column.index for column in self.table.prices)]
-        if self.raw.hidden_columns and any(index in self.raw.hidden_columns for index in used):
-            self.questions.append(_("A column with names or prices is hidden in the list; say whether it counts."))
+        for index in used:
+            if index is not None and self.raw.hidden_columns and index in self.raw.hidden_columns:
+                heading = self.table.headings.get(index, column_letters(index))
+                answer = self.answers.find(Asked.HIDDEN_COLUMN, heading)
+                if answer is None or answer.answer != TAKE:
+                    text = _("The column “{name}” with names or prices is hidden in the list; say whether it counts.")
+                    self._ask(Asked.HIDDEN_COLUMN, heading, text.format(name=heading), (TAKE,))
+        if self.raw.struck and any((self.row, index) in self.raw.struck for index in used):
+            self._confirm(Asked.STRUCK, _("The row is struck through in the list; say whether it counts."))
         if self.table.side_by_side:
             self.questions.append(_("Two tables seem to stand side by side; put one below the other."))
 
-    def _one_price(
-        self, prices: list[tuple[PriceColumn, PriceCell]], columns: int
-    ) -> tuple[PriceColumn, PriceCell]:
-        """The price that counts: the only one, or the sum where base, freight and sum are given and add up."""
-        if columns == 1:
-            self._ask_about_cell(prices[0][1])
-            return prices[0]
-        by_role = {column.role: (column, cell) for column, cell in prices}
-        for _column, cell in prices:
-            self._ask_about_cell(cell)
-        if len(prices) == 3 and set(by_role) == {Role.PRICE, Role.FREIGHT, Role.SUM}:
-            base, freight, total = (by_role[role][1].value for role in (Role.PRICE, Role.FREIGHT, Role.SUM))
-            if base is not None and freight is not None and total is not None:
-                if abs(base + freight - total) <= _ROUNDING:
-                    self.remarks.append(_("The price is the sum of base price and freight."))
-                else:
-                    text = _("{base} and {freight} do not add up to {total}; say which price holds.")
-                    shown = (PLAIN.write_exact(value) for value in (base, freight, total))
-                    self.questions.append(text.format(**dict(zip(("base", "freight", "total"), shown, strict=True))))
-            return by_role[Role.SUM]
-        named = ", ".join(f"“{column.heading}”" for column, _cell in prices)
-        if len(prices) > 1:
-            self.questions.append(_("The row has several prices, under {names}; say which holds.").format(names=named))
-        else:
-            text = _("The list has several prices and the row one of them, under {names}; say whether it holds.")
-            self.questions.append(text.format(names=named))
-        order = (Role.SUM, Role.PRICE, Role.FREIGHT)
-        return min(prices, key=lambda found: order.index(found[0].role))
-
-    def _ask_about_cell(self, cell: PriceCell) -> None:
-        if cell.doubt:
+    def _ask_about_cell(self, column: PriceColumn, cell: PriceCell) -> None:
+        if cell.both_ways:
+            self._ask(Asked.DECIMAL, column.heading, cell.doubt, tuple(sign.value for sign in DecimalSign))
+        elif cell.doubt:
             self.questions.append(cell.doubt)
 
     def _match(self) -> Match:
@@ -170,66 +191,181 @@ class _Reading:
             self.questions.append(_("The price has no name; say which ingredient it is for."))
             return Match(None)
         match = self.names.find(self.name)
-        if match.reason:
-            (self.remarks if match.ingredient else self.questions).append(match.reason)
+        if match.ingredient is None:
+            self._ask(Asked.INGREDIENT, self.name, match.reason, match.candidates)
+        elif match.reason:
+            self.remarks.append(match.reason)
         return match
 
-    def _unit(self, column: PriceColumn, cell: PriceCell) -> UnitReading:
-        sources = [Words(cell.money, cell.unit, "")]
+    def _part(
+        self, column: PriceColumn, cell: PriceCell, ingredient: Ingredient | None
+    ) -> tuple[TonnePrice | None, UnitReading, bool]:
+        """A price in money of the mill per tonne, the unit of the list, and whether it is for dry matter."""
         beside = self._text(self.table.first(Role.UNIT))
-        if beside:
-            words = read_unit_words(beside)
-            sources.append(Words(words.money, words.unit, "/" + words.rest if words.rest else ""))
-        sources.append(column.words)
+        pack = self._text(self.table.first(Role.PACK))
+        words = read_unit_words(bag_with_weight(beside, pack)) if beside else NO_WORDS
+        unit = self._unit(column, cell, words)
+        value = self._own_money(column, cell, words)
+        dry = cell.dry or column.words.dry or words.dry or any(note.dry for note in self.segment.notes.units)
+        if value is None or unit.unit is None:
+            return None, unit, dry
+        found = per_tonne(value, unit.unit, ingredient)
+        if found.doubt:
+            self.questions.append(found.doubt)
+        if found.remark:
+            self.remarks.append(found.remark)
+        return found, unit, dry
+
+    def _unit(self, column: PriceColumn, cell: PriceCell, words: Words) -> UnitReading:
+        beside = Words(words.money, words.unit, "/" + words.rest if words.rest else "")
+        sources = [Words(cell.money, cell.unit, ""), beside, column.words]
+        if not any(one.unit or one.rest.startswith("/") for one in sources):
+            sources = list(self.segment.notes.units)
         reading = read_unit(sources, self.library.mill)
-        if reading.doubt:
-            self.questions.append(reading.doubt)
+        if not reading.doubt:
+            return reading
+        answer = self.answers.find(Asked.UNIT, reading.about)
+        if answer is not None:
+            try:
+                unit = read_price_unit(answer.answer, self.library.mill, cwt_is_100_lb=False)
+            except (UnknownPriceUnit, AmbiguousPriceUnit):
+                unit = None
+            if unit is not None:
+                self.remarks.append(_("The price is per {unit}, as answered.").format(unit=answer.answer))
+                return UnitReading(unit, reading.said)
+        self._ask(Asked.UNIT, reading.about, reading.doubt, reading.choices)
         return reading
 
-    def _ask_about_money(self, column: PriceColumn, cell: PriceCell) -> None:
-        sources: list[Money] = [cell.money, column.words.money]
-        beside = self._text(self.table.first(Role.UNIT))
-        if beside:
-            sources.append(read_unit_words(beside).money)
+    def _own_money(self, column: PriceColumn, cell: PriceCell, words: Words) -> float | None:
+        """The price in money of the mill, None where there is none or its currency is in doubt."""
+        sources: list[Money] = [cell.money, column.words.money, words.money]
         currency = self._text(self.table.first(Role.CURRENCY))
         if currency:
             money, _rest = split_money(currency.upper() if len(currency) == 3 else currency)
             sources.append(money)
             if money.currencies is None:
                 self.questions.append(_("“{text}” is not known as a currency.").format(text=currency))
-        doubt = money_doubt(sources, self.library.mill.currency)
-        if doubt:
-            self.questions.append(doubt)
+        if all(money.currencies is None for money in sources):
+            sources += [note.money for note in self.segment.notes.units]
+        value, own = cell.value, self.library.mill.currency
+        if any(money.cents for money in sources):
+            answer = self.answers.find(Asked.CENTS, "")
+            if answer is None or answer.answer != TAKE:
+                text = _("The price is in hundredths of {own}; give it in {own}.").format(own=own)
+                self._ask(Asked.CENTS, "", text, (TAKE,))
+                value = None
+            elif value is not None:
+                value = value / 100
+                self.remarks.append(_("Hundredths were turned into whole ones, as answered."))
+        theirs = foreign_money(sources, own)
+        return self._exchanged(value, theirs) if theirs else value
 
-    def _dates(self) -> datetime.date | None:
-        first = self._date(Role.VALID_FROM)
-        last = self._date(Role.VALID_TO)
-        if last is not None and last < self.today:
+    def _exchanged(self, value: float | None, theirs: str) -> float | None:
+        own = self.library.mill.currency
+        answer = self.answers.find(Asked.RATE, theirs)
+        if answer is not None and answer.rate is not None and answer.rate > 0 and answer.given is not None:
+            text = _("Converted at {rate} {own} for one {theirs}, the rate of {day}.")
+            self.remarks.append(text.format(
+                rate=PLAIN.write_exact(answer.rate), own=own, theirs=theirs, day=answer.given.isoformat()
+            ))
+            return None if value is None else value * answer.rate
+        text = _("The price is in {theirs} and the mill reckons in {own}; give it in {own}, or a rate and its day.")
+        text = text.format(theirs=theirs, own=own)
+        last = self.answers.last_rate(theirs)
+        if last is not None and last.rate is not None and last.given is not None:
+            text += " " + _("The rate of {day} was {rate}.").format(
+                day=last.given.isoformat(), rate=PLAIN.write_exact(last.rate)
+            )
+        self._ask(Asked.RATE, theirs, text)
+        return None
+
+    def _of_dry_matter(self, found: TonnePrice, ingredient: Ingredient | None) -> tuple[TonnePrice, float | None]:
+        """A price for dry matter as one as fed, and the price for dry matter per tonne."""
+        fraction = None if ingredient is None else ingredient.dry_matter_fraction
+        if fraction is None or found.per_t is None:
+            if ingredient is not None and found.per_t is not None:
+                text = _("The price is for dry matter, and the dry matter of “{name}” is not known; enter it.")
+                self.questions.append(text.format(name=ingredient.name))
+            return replace(found, per_t=None), found.per_t
+        as_fed = found.per_t * fraction
+        text = _("{dry} per t of dry matter is {as_fed} per t as fed at {percent} % of dry matter.")
+        self.remarks.append(text.format(
+            dry=f"{found.per_t:.2f}", as_fed=f"{as_fed:.2f}", percent=f"{fraction * 100:g}"
+        ))
+        return replace(found, price=found.price * fraction, per_t=as_fed), found.per_t
+
+    def _terms(self, parts: tuple[Priced, ...], ingredient: Ingredient | None) -> Terms | None:
+        """Ex works or delivered; where the price in force is the other one, that is asked about."""
+        beside = self._text(self.table.first(Role.TERMS))
+        found = read_terms(beside) or (Terms.DELIVERED if len(parts) > 1 else read_terms(parts[0][0].heading))
+        if ingredient is None or found is None:
+            return found
+        quote = self.library.quote_in_force(ingredient.id, self.today)
+        if quote is not None and quote.terms is not None and quote.terms is not found:
+            text = _("The price is {new} and the one in force {old}; say whether it counts.")
+            self._confirm(Asked.TERMS, text.format(new=_(str(found)), old=_(str(quote.terms))))
+        return found
+
+    def _days(self) -> tuple[datetime.date | None, datetime.date | None]:
+        first = self._date(Role.VALID_FROM, self.segment.notes.valid_from)
+        last = self._date(Role.VALID_TO, self.segment.notes.valid_to)
+        if first is not None and last is not None and last < first:
+            text = _("The price ends on {last}, before it begins on {first}; say which days are meant.")
+            self.questions.append(text.format(last=last.isoformat(), first=first.isoformat()))
+        elif last is not None and last < self.today:
             text = _("The price expired on {day}; ask for a new one.")
-            self.questions.append(text.format(day=last.isoformat()))
-        return first
+            self._confirm(Asked.EXPIRED, text.format(day=last.isoformat()))
+        return first, last
 
-    def _date(self, role: Role) -> datetime.date | None:
+    def _date(self, role: Role, noted: str) -> datetime.date | None:
+        """The day in a column, or else in a note over the whole table."""
         index = self.table.first(role)
         value = None if index is None else self.raw.cell(self.row, index)
         if index is None or kind_of(value) is CellKind.BLANK:
-            return None
+            return self._read_date(noted, noted, decide_date_order([noted])) if noted else None
         if isinstance(value, datetime.datetime):
             return value.date()
         if isinstance(value, datetime.date):
             return value
         text = self._text(index)
-        found = date_in_column(text, self.segment.dates.get(index)) if isinstance(value, str) else None
+        if not isinstance(value, str):
+            self.questions.append(_("“{text}” is no date; say which day is meant.").format(text=text))
+            return None
+        return self._read_date(text, self.table.headings[index], self.segment.dates.get(index))
+
+    def _read_date(self, text: str, heading: str, order: DateOrder | None) -> datetime.date | None:
+        if order is None:
+            answer = self.answers.find(Asked.DATES, heading)
+            order = next((one for one in DateOrder if answer and one.value == answer.answer), None)
+        found = date_in_column(text, order)
         if found is None:
-            self.questions.append(_("“{text}” is no date, or could be two; say which day is meant.").format(text=text))
+            said = _("“{text}” is no date, or could be two; say which day is meant.").format(text=text)
+            if len(date_readings(text)) == 2:
+                self._ask(Asked.DATES, heading, said, tuple(one.value for one in DateOrder))
+            else:
+                self.questions.append(said)
         return found
 
-    def _per_tonne(self, cell: PriceCell, unit: UnitReading, ingredient: Ingredient | None) -> TonnePrice | None:
-        if cell.value is None or unit.unit is None:
-            return None
-        found = per_tonne(cell.value, unit.unit, ingredient)
-        if found.doubt:
-            self.questions.append(found.doubt)
-        if found.remark:
-            self.remarks.append(found.remark)
-        return found
+
+def read_terms(text: str) -> Terms | None:
+    """Ex works or delivered, as words say it; None where they say neither, or both."""
+    plain = " ".join(re.sub(r"[^a-z]+", " ", text.casefold()).split())
+    delivered = re.search(r"\b(?:delivered|cif|dap|ddp|del)\b", plain) is not None
+    ex_works = re.search(r"\b(?:ex|exw|fob|fca|collected)\b", plain) is not None
+    if delivered == ex_works:
+        return None
+    return Terms.DELIVERED if delivered else Terms.EX_WORKS
+
+
+def _added(parts: list[tuple[TonnePrice | None, UnitReading, bool]]) -> TonnePrice | None:
+    """A base price and its freight as one; per tonne where their units differ."""
+    prices = [part[0] for part in parts]
+    first = prices[0]
+    if first is None or any(one is None or one.per_t is None for one in prices):
+        return None
+    known = [one for one in prices if one is not None and one.per_t is not None]
+    if len({(one.per, one.bushel_lb) for one in known}) == 1:
+        whole = sum(one.price for one in known)
+        return replace(first, price=whole, per_t=sum(one.per_t for one in known if one.per_t is not None))
+    per_t = sum(one.per_t for one in known if one.per_t is not None)
+    return TonnePrice(per_t, "t", None, per_t)

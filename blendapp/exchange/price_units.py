@@ -52,6 +52,13 @@ class AmbiguousPriceUnit(ValueError):
 _LONG_CWT = PriceUnit("long ton", 20.0)
 
 
+def unit_choices(words: str) -> tuple[str, ...]:
+    """What plain words in doubt may mean, as units to choose from."""
+    if _MEANING.get(words) == TON:
+        return ("short ton", "long ton", "t")
+    return (_CWT_100, _CWT_112) if _MEANING.get(words) == CWT else units.PRICE_PER
+
+
 def plain_words(text: str) -> str:
     """The words of a unit without "per", slashes, full stops and doubled spaces: "$/Short Ton" leaves "short ton"."""
     words = fold(text).replace("\u00a0", " ")
@@ -63,7 +70,33 @@ def plain_words(text: str) -> str:
 
 def is_price_unit(text: str) -> bool:
     """Whether words name a mass that a price may be per, if perhaps one with two meanings."""
-    return plain_words(text) in _MEANING
+    words = plain_words(text)
+    return words in _MEANING or _bag(words) is not None
+
+
+_BAG_NAMES = r"(?:bags?|sacks?|big bags?|totes?|super ?sacks?|drums?)"
+_MASS = r"([0-9]+(?:[.,][0-9]+)?) ?(kgs?|lbs?)"
+_BAGS = re.compile(rf"{_BAG_NAMES}(?: of| a| @|,)? {_MASS}|{_MASS}[ -]?{_BAG_NAMES}")
+_BARE_BAG = re.compile(_BAG_NAMES)
+_BAG_OF_MASS = re.compile(_MASS)
+
+
+def _bag(words: str) -> PriceUnit | None:
+    """The price unit behind a bag whose weight is said, as a whole number of a known unit where there is one."""
+    found = _BAGS.fullmatch(words)
+    if found is None:
+        return None
+    mass = float((found[1] or found[3]).replace(",", "."))
+    if mass <= 0:
+        return None
+    return PriceUnit("t", 1000 / mass) if (found[2] or found[4]).startswith("kg") else PriceUnit("cwt", 100 / mass)
+
+
+def bag_with_weight(words: str, pack: str) -> str:
+    """The words of a bag and of its weight, from a column of their own, as one unit; the words alone otherwise."""
+    if _BARE_BAG.fullmatch(plain_words(words)) and _BAG_OF_MASS.fullmatch(plain_words(pack)):
+        return f"{plain_words(pack)} {plain_words(words)}"
+    return words
 
 
 def read_price_unit(text: str, mill: MillInfo, cwt_is_100_lb: bool) -> PriceUnit:
@@ -72,6 +105,9 @@ def read_price_unit(text: str, mill: MillInfo, cwt_is_100_lb: bool) -> PriceUnit
     Raises UnknownPriceUnit or AmbiguousPriceUnit, both with the mend.
     """
     words = plain_words(text)
+    bag = _bag(words)
+    if bag is not None:
+        return bag
     meaning = _MEANING.get(words)
     if meaning is None:
         sentence = _("“{text}” is not known as the mass of a price; use one of {known}.")

@@ -9,17 +9,26 @@ from blendapp.domain import units
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.mills import MillInfo
 from blendapp.domain.wording import _
-from blendapp.exchange.price_units import AmbiguousPriceUnit, PriceUnit, UnknownPriceUnit, read_price_unit
+from blendapp.exchange.price_units import (
+    AmbiguousPriceUnit,
+    PriceUnit,
+    UnknownPriceUnit,
+    plain_words,
+    read_price_unit,
+    unit_choices,
+)
 from blendapp.exchange.price_words import Money, Words
 
 
 @dataclass(frozen=True)
 class UnitReading:
-    """unit: None where it is in doubt, and doubt says why. said: the words of the list."""
+    """unit: None where it is in doubt, and doubt says why. said: the words of the list; about: those in doubt."""
 
     unit: PriceUnit | None
     said: str = ""
     doubt: str = ""
+    about: str = ""
+    choices: tuple[str, ...] = ()
 
 
 def read_unit(sources: Sequence[Words], mill: MillInfo) -> UnitReading:
@@ -33,25 +42,25 @@ def read_unit(sources: Sequence[Words], mill: MillInfo) -> UnitReading:
         try:
             found.setdefault(read_price_unit(text, mill, cwt_is_100_lb=False), text)
         except (UnknownPriceUnit, AmbiguousPriceUnit) as error:
-            return UnitReading(None, said or text.strip("/"), str(error))
+            about = plain_words(text)
+            return UnitReading(None, said or text.strip("/"), str(error), about, unit_choices(about))
     if not found:
-        return UnitReading(None, "", _("The list does not say what mass the price is for; say which."))
+        doubt = _("The list does not say what mass the price is for; say which.")
+        return UnitReading(None, "", doubt, "", units.PRICE_PER)
     if len(found) > 1:
         names = _(" and ").join(f"“{text}”" for text in found.values())
-        return UnitReading(None, said, _("The list says {names} of one price; say which holds.").format(names=names))
+        doubt = _("The list says {names} of one price; say which holds.").format(names=names)
+        return UnitReading(None, said, doubt, " / ".join(map(plain_words, found.values())), tuple(found.values()))
     unit = next(iter(found))
     return UnitReading(unit, said)
 
 
-def money_doubt(sources: Sequence[Money], currency: str) -> str:
-    """The question about the currency of a price, or nothing."""
+def foreign_money(sources: Sequence[Money], currency: str) -> str:
+    """The code, or else the sign, of a currency that is not the mill's own; nothing where there is none."""
     for money in sources:
         if money.is_foreign(currency):
-            text = _("The price is in {theirs} and the mill reckons in {own}; give the price in {own}.")
             names = sorted(money.currencies or ())
-            return text.format(theirs=names[0] if len(names) == 1 else money.sign, own=currency)
-    if any(money.cents for money in sources):
-        return _("The price is in hundredths of {own}; give it in {own}.").format(own=currency)
+            return names[0] if len(names) == 1 else money.sign
     return ""
 
 
@@ -69,7 +78,7 @@ class TonnePrice:
 
 def per_tonne(price: float, unit: PriceUnit, ingredient: Ingredient | None) -> TonnePrice:
     """A price in its unit as money per tonne; a bushel by the weight entered for the ingredient, else the legal one."""
-    amount = price * unit.factor
+    amount = price if unit.factor == 1 else price * unit.factor
     if unit.per != units.BUSHEL:
         return TonnePrice(amount, unit.per, None, units.price_per_t(amount, unit.per))
     if ingredient is None:

@@ -54,11 +54,29 @@ NO_MONEY = Money()
 
 @dataclass(frozen=True)
 class Words:
-    """Words with their money and mass told apart. unit: as written, "" if none; rest: what is neither."""
+    """Words with their money and mass told apart. unit: as written, "" if none; rest: what is neither.
+
+    dry: whether they say that the price is for dry matter.
+    """
 
     money: Money
     unit: str
     rest: str
+    dry: bool = False
+
+
+NO_WORDS = Words(NO_MONEY, "", "")
+# "88 % dry matter" names the goods, not what the price is for.
+_DRY = re.compile(
+    r"(?<![%\w])(?<!% )(?:(?:on|in|of)\s+(?:a\s+)?)?(?:dry[ -]?(?:matter|basis|weight)|dm)(?:\s+basis)?\b",
+    re.IGNORECASE,
+)
+
+
+def split_dry(text: str) -> tuple[bool, str]:
+    """Whether words speak of dry matter, and the words without it."""
+    found = _DRY.search(text)
+    return (True, text[: found.start()] + " " + text[found.end() :]) if found else (False, text)
 
 
 def split_money(text: str) -> tuple[Money, str]:
@@ -91,11 +109,12 @@ def _without_code(text: str) -> str:
 @lru_cache(1024)
 def read_unit_words(text: str) -> Words:
     """The words of a cell that holds a unit, or of what stands beside a number: "USD / short ton"."""
+    dry, text = split_dry(text)
     money, rest = split_money(text)
     plain = plain_words(rest)
     if not plain:
-        return Words(money, "", "")
-    return Words(money, _tidy(rest), "") if is_price_unit(plain) else Words(money, "", _tidy(rest))
+        return Words(money, "", "", dry)
+    return Words(money, _tidy(rest), "", dry) if is_price_unit(plain) else Words(money, "", _tidy(rest), dry)
 
 
 def read_heading_words(text: str) -> Words:
@@ -103,19 +122,20 @@ def read_heading_words(text: str) -> Words:
 
     A mass that is named but not known is left in `rest` behind a slash.
     """
+    dry, text = split_dry(text)
     money, rest = split_money(text)
     unknown = ""
     for found in _AFTER_PER.finditer(rest):
         words = re.split(r"[()\[\]]", found[1])[0].split()
         for count in range(len(words), 0, -1):
             if is_price_unit(" ".join(words[:count])):
-                return Words(money, " ".join(words[:count]), rest)
+                return Words(money, " ".join(words[:count]), rest, dry)
         if words and words[0].casefold() not in ("unit", "uom"):
             unknown = "/" + " ".join(words)
     for inside in re.findall(r"[(\[]([^()\[\]]*)[)\]]", rest):
         if is_price_unit(inside):
-            return Words(money, _tidy(inside), rest)
-    return Words(money, "", unknown)
+            return Words(money, _tidy(inside), rest, dry)
+    return Words(money, "", unknown, dry)
 
 
 def _tidy(text: str) -> str:

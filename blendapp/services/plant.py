@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from blendapp.domain.mills import Synonym
+from blendapp.domain.mills import Asked, Synonym
 from blendapp.domain.plant import Mixer, Scale
 from blendapp.domain.problems import Refused
 from blendapp.domain.records import Change, added, removed
@@ -39,7 +39,10 @@ def remove_mixer(mill: Mill, mixer_id: int) -> Edit:
 
 def name_means(mill: Mill, source: str, name: str, ingredient_id: int) -> Edit:
     """Remember which ingredient a source means by a name, so that its next list is not asked about it."""
-    old = next((one for one in mill.library.all("synonym") if one.source == source and one.name == name), None)
+    old = next(
+        (one for one in mill.library.all("synonym")
+         if one.asked is Asked.INGREDIENT and one.source == source and one.name == name), None
+    )
     new = Synonym(mill.new_id("synonym") if old is None else old.id, source, name, ingredient_id)
     what = _("“{name}” means {ingredient}").format(name=name, ingredient=mill.library.ingredient(ingredient_id).name)
     return mill.apply(what, [Change(old, new)])

@@ -39,7 +39,7 @@ def read_price_list(
 
 
 def apply_price_list(mill: Mill, reading: PriceListReading, on: datetime.date) -> Edit:
-    """Record every accepted row as a quote, a dated record of the list, and the answers, in one transaction and one undo.
+    """Record every accepted row as a quote, a dated record of the list, and its answers, as one transaction and undo.
 
     Raises Refused where no row was accepted.
     """
@@ -86,7 +86,7 @@ def open_price_list(mill: Mill, price_list_id: int) -> list[PriceRow]:
 
 
 def roll_back(mill: Mill, price_list_id: int) -> Edit:
-    """Withdraw exactly the quotes of an applied list, as one edit that can be undone; what was in force before is again.
+    """Withdraw exactly the quotes of an applied list, as one edit that can be undone; earlier prices count again.
 
     Its answers stay remembered. Raises Refused where there is no such list, or it was rolled back before.
     """

@@ -1,0 +1,44 @@
+"""What a person answered about a price list, now or for an earlier list of the same source."""
+
+from __future__ import annotations
+
+import datetime
+from collections.abc import Iterable
+
+from blendapp.domain.library import Library
+from blendapp.domain.mills import Asked, Synonym
+from blendapp.domain.names import fold
+from blendapp.domain.price_rows import Answer, source_of
+
+
+class Answers:
+    """Answers by what they answer; one given for this list comes before one that is remembered."""
+
+    def __init__(self, library: Library, source: str, given: Iterable[Answer], today: datetime.date) -> None:
+        self.source = source
+        self.today = today
+        self._given = {answer.key: answer for answer in given}
+        self._remembered: dict[tuple[Asked, str], Synonym] = {
+            (one.asked, fold(one.name)): one
+            for one in library.all("synonym")
+            if source and source_of(one.source) == source_of(source)
+        }
+
+    def find(self, asked: Asked, about: str) -> Answer | None:
+        """The answer to a question that is remembered; a rate of another day is none."""
+        given = self._given.get((asked, fold(about), "", 0))
+        if given is not None:
+            return given
+        known = self._remembered.get((asked, fold(about)))
+        if known is None or (asked is Asked.RATE and known.given != self.today):
+            return None
+        return Answer(asked, known.name, known.answer, known.ingredient_id, known.rate, known.given)
+
+    def of_row(self, asked: Asked, sheet: str, row: int) -> str:
+        """TAKE, LEAVE_OUT, or nothing; row from 1."""
+        found = self._given.get((asked, "", sheet, row))
+        return "" if found is None else found.answer
+
+    def last_rate(self, about: str) -> Synonym | None:
+        """The rate that was given for an earlier list, to be proposed."""
+        return self._remembered.get((Asked.RATE, fold(about)))

@@ -1,0 +1,159 @@
+"""The heading rows of a table of prices: one row, two rows, or one row under a wider heading."""
+
+from __future__ import annotations
+
+import re
+
+from blendapp.exchange.price_columns import PriceColumn, Role, Table, role_of
+from blendapp.exchange.price_words import read_unit_words
+from blendapp.exchange.tables import CellKind, RawTable, kind_of
+
+# A heading may name the week or the day of its prices.
+_DATED = re.compile(
+    r"\b(?:19|20)[0-9]{2}\b|\b(?:week|wk|kw)\s*[0-9]{1,2}\b|\b[0-9]{1,2}[./-][0-9]{1,2}(?:[./-](?:[0-9]{4}|[0-9]{2}))?\b|"
+    r"\b[0-9]{1,2}(?:st|nd|rd|th)?\s+(?=jan|feb|mar|apr|may|jun|jul|aug|sep|oct|nov|dec)|"
+    r"(?<=\b[a-z]{3} )[0-9]{1,2}\b", re.IGNORECASE,
+)
+
+
+def read_headings(table: RawTable, row: int) -> Table | None:
+    """The table that begins with a row, if the row has headings for a name and a price, and holds no number.
+
+    Headings may take two rows: the second says more of each column, or the first stands over several of them.
+    """
+    texts = _texts(table, row)
+    if texts is None:
+        return None
+    below = _texts(table, row + 1) if row + 1 < len(table.rows) else None
+    found = _headed(row, texts)
+    if found is not None:
+        split = _split_below(table, row, texts, below, found) if below else None
+        if split is not None:
+            return split
+        if below and _says_more(found, below):
+            found = _headed(row, _joined(texts, below)) or found
+            found.last_heading_row = row + 1
+            return found
+        return _under_a_wider_heading(table, row, texts, found)
+    if below and len(below) > 1 and _headed(row + 1, below) is None:
+        both = _headed(row, _joined(_spread(table, row, texts, below), below))
+        if both is not None and both.name is not None:
+            both.last_heading_row = row + 1
+            return both
+    return None
+
+
+def _texts(table: RawTable, row: int) -> dict[int, str] | None:
+    """The texts of a row by column; None where anything but text stands in it."""
+    found = {}
+    for index, value in enumerate(table.rows[row]):
+        kind = kind_of(value)
+        if kind is CellKind.BLANK:
+            continue
+        if kind is not CellKind.TEXT:
+            return None
+        found[index] = " ".join(str(value).split())
+    return found
+
+
+def _joined(above: dict[int, str], below: dict[int, str]) -> dict[int, str]:
+    return {
+        index: f"{above.get(index, '')} {below.get(index, '')}".strip() for index in sorted({*above, *below})
+    }
+
+
+def _split_below(
+    table: RawTable, row: int, texts: dict[int, str], below: dict[int, str], found: Table
+) -> Table | None:
+    """The table whose one heading of prices stands over several columns, headed each in the row below."""
+    if found.name is None or found.name in below:
+        return None
+    spread = _spread(table, row, texts, below)
+    heads = {column.heading for column in found.prices}
+    if not any(index not in texts and spread.get(index) in heads for index in below):
+        return None
+    both = _headed(row, _joined(spread, below))
+    if both is not None:
+        both.last_heading_row = row + 1
+    return both
+
+
+def _says_more(found: Table, below: dict[int, str]) -> bool:
+    """Whether a row of texts goes on with the headings above it: units under prices, "from" under "Valid"."""
+    own = _headed(0, below)
+    if own is not None and own.name is not None:
+        return False
+    if found.name in below and role_of(below[found.name])[0] not in (Role.NAME, Role.NOTE):
+        return False
+    under_prices = [below[column.index] for column in found.prices if column.index in below]
+    if not under_prices:
+        return False
+    for text in under_prices:
+        words = read_unit_words(text.strip("()[]"))
+        plain = not words.rest and (words.unit or words.money.currencies or words.dry)
+        if not plain and role_of(text)[0] not in (Role.PRICE, Role.FREIGHT, Role.SUM):
+            return False
+    return True
+
+
+def _spread(table: RawTable, row: int, texts: dict[int, str], below: dict[int, str]) -> dict[int, str]:
+    """The headings of a row over every column that they stand over: a merged range, or blanks up to the next one."""
+    found = dict(texts)
+    for index in sorted(below):
+        if index in texts:
+            continue
+        merged = next((m for m in table.merged if m.first_row <= row <= m.last_row
+                       and m.first_column <= index <= m.last_column), None)
+        if merged is not None:
+            over: int | None = merged.first_column
+        else:  # a file that tells of merged cells has none here
+            over = None if table.merged else max((i for i in texts if i < index), default=None)
+        if over is not None and over in texts:
+            found[index] = texts[over]
+    return found
+
+
+def _under_a_wider_heading(table: RawTable, row: int, texts: dict[int, str], found: Table) -> Table:
+    """The same table with what a heading over several of its price columns says of unit and currency."""
+    if row == 0 or found.name is None:
+        return found
+    above = _texts(table, row - 1)
+    if not above or min(above) <= found.name:  # that is a title
+        return found
+    spread = _spread(table, row - 1, above, texts)
+    more = {
+        column.index: spread[column.index] for column in found.prices
+        if column.index in spread and role_of(spread[column.index])[0] in (Role.PRICE, Role.SUM, Role.FREIGHT)
+    }
+    wider = _headed(row, {index: f"{more.get(index, '')} {text}".strip() for index, text in texts.items()})
+    if not more or wider is None or [c.role for c in wider.prices] != [c.role for c in found.prices]:
+        return found
+    wider.first_heading_row = row - 1
+    return wider
+
+
+def _headed(row: int, texts: dict[int, str]) -> Table | None:
+    """The table under headings by column, or None where they head no price."""
+    found = Table(row)
+    names = []
+    for index, heading in texts.items():
+        role, words = role_of(heading)
+        found.roles[index], found.headings[index] = role, heading
+        if role is Role.NAME:
+            names.append(index)
+        elif role in (Role.PRICE, Role.FREIGHT, Role.SUM):
+            if re.search(r"[0-9]", _DATED.sub("", heading)) and not words.unit:
+                return None
+            found.prices.append(PriceColumn(index, role, heading, words))
+    if not any(column.role is not Role.FREIGHT for column in found.prices) or len(found.roles) < 2:
+        return None
+    found.name = names[0] if names else None
+    found.side_by_side = _is_side_by_side(names, found.prices)
+    return found
+
+
+def _is_side_by_side(names: list[int], prices: list[PriceColumn]) -> bool:
+    """Name, price, name, price: two tables beside each other."""
+    if len(names) < 2 or len(prices) < 2:
+        return False
+    return any(names[0] < price.index < names[-1] for price in prices) and prices[-1].index > names[-1]

@@ -1,0 +1,55 @@
+"""What titles and footnotes of a table say of all its prices: unit, currency, and the days on which they hold."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+from blendapp.exchange.price_numbers import date_readings
+from blendapp.exchange.price_words import Words, read_heading_words
+from blendapp.exchange.tables import CellKind, RawTable, kind_of
+
+_SPEAKS_OF_PRICES = re.compile(
+    r"\b(?:prices?|quot(?:es?|ed|ations?)|offers?|rates?|values?|figures)\b|\ball\s+in\b", re.IGNORECASE
+)
+_DATE = (
+    r"([0-9]{4}-[0-9]{1,2}-[0-9]{1,2}|[0-9]{1,2}[./-][0-9]{1,2}[./-](?:[0-9]{4}|[0-9]{2})|"
+    r"[0-9]{1,2}(?:st|nd|rd|th)?\s+[a-z]{3,9}\.?,?\s+[0-9]{4}|[a-z]{3,9}\.?\s+[0-9]{1,2}(?:st|nd|rd|th)?,?\s+[0-9]{4})"
+)
+_FROM = re.compile(r"\b(?:from|effective|as\s+of|as\s+from)[ :]+" + _DATE, re.IGNORECASE)
+_TO = re.compile(r"\b(?:until|till|to|expir\w+|through)[ :]+(?:on\s+)?" + _DATE, re.IGNORECASE)
+
+
+@dataclass(frozen=True)
+class Notes:
+    """units: what notes say of all prices, each once. valid_from, valid_to: the texts of their dates, "" if none."""
+
+    units: tuple[Words, ...] = ()
+    valid_from: str = ""
+    valid_to: str = ""
+
+
+def read_notes(table: RawTable, rows: Iterable[int]) -> Notes:
+    """The notes among rows: those with one filled cell, a text that speaks of prices."""
+    units: list[Words] = []
+    first = last = ""
+    for row in rows:
+        cells = [value for value in table.rows[row] if kind_of(value) is not CellKind.BLANK]
+        if len(cells) != 1 or not isinstance(cells[0], str):
+            continue
+        text = " ".join(cells[0].split())
+        speaks = _SPEAKS_OF_PRICES.search(text)
+        if speaks:
+            words = read_heading_words(text)
+            if words.unit or words.money.currencies:
+                units.append(Words(words.money, words.unit, "", words.dry))
+        if speaks or re.search(r"\bvalid\b|\beffective\b", text, re.IGNORECASE):
+            first = first or _found(_FROM, text)
+            last = last or _found(_TO, text)
+    return Notes(tuple(dict.fromkeys(units)), first, last)
+
+
+def _found(pattern: re.Pattern[str], text: str) -> str:
+    found = pattern.search(text)
+    return found[1] if found and date_readings(found[1]) else ""

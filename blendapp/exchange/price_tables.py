@@ -1,0 +1,102 @@
+"""Where the table of a price list is: below which heading row, or, without headings, by what its columns hold."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Callable
+
+from blendapp.exchange.price_columns import PriceColumn, Role, Table
+from blendapp.exchange.price_headings import read_headings
+from blendapp.exchange.price_units import is_price_unit
+from blendapp.exchange.price_words import read_heading_words
+from blendapp.exchange.tables import CellKind, CellValue, RawTable, kind_of
+
+# A heading row stands near the top; looking further would only find odd rows of a long list.
+_FURTHEST = 200
+
+
+def find_table(table: RawTable, is_known: Callable[[str], bool]) -> Table | None:
+    """The first table of a sheet. is_known: whether a text is the name of an ingredient."""
+    for row in range(min(len(table.rows), _FURTHEST)):
+        found = None if table.is_blank(row) else read_headings(table, row)
+        if found is not None:
+            settle_name_column(found, table, is_known)
+            if found.name is not None:
+                drop_empty_prices(found, table)
+                return found
+    return _table_without_headings(table, is_known)
+
+
+def settle_name_column(found: Table, table: RawTable, is_known: Callable[[str], bool]) -> None:
+    """Of several columns of names, or of none headed so, the one that holds most known ones."""
+    candidates = [index for index, role in found.roles.items() if role is Role.NAME]
+    if not candidates:
+        taken = {column.index for column in found.prices}
+        width = max((len(cells) for cells in table.rows), default=0)
+        candidates = [index for index in range(width) if index not in taken]
+        if not any(_known(table, index, found.heading_row or 0, is_known) for index in candidates):
+            return
+    start = found.heading_row or 0
+    found.name = max(candidates, key=lambda index: (_known(table, index, start, is_known), -index))
+    for index in candidates:
+        if index != found.name and found.roles.get(index) is Role.NAME:
+            found.roles[index] = Role.NOTE
+    found.roles[found.name] = Role.NAME
+
+
+def drop_empty_prices(found: Table, table: RawTable) -> None:
+    """A column of prices that is headed and never filled says nothing."""
+    start = found.first_row
+    filled = [
+        column
+        for column in found.prices
+        if any(kind_of(table.cell(row, column.index)) is not CellKind.BLANK for row in range(start, len(table.rows)))
+    ]
+    if filled:
+        found.prices = filled
+
+
+def _known(table: RawTable, column: int, start: int, is_known: Callable[[str], bool]) -> int:
+    rows = table.rows[start + 1 : start + 1 + _FURTHEST]
+    texts = (cells[column] for cells in rows if column < len(cells))
+    return sum(_is_known_text(text, is_known) for text in texts)
+
+
+def _is_known_text(value: CellValue, is_known: Callable[[str], bool]) -> bool:
+    return isinstance(value, str) and is_known(value)
+
+
+def _table_without_headings(table: RawTable, is_known: Callable[[str], bool]) -> Table | None:
+    """Names that the mill knows in one column, numbers in exactly one other."""
+    width = max((len(cells) for cells in table.rows), default=0)
+    counts = [_known(table, column, -1, is_known) for column in range(width)]
+    if not counts or max(counts) < 2:
+        return None
+    name = counts.index(max(counts))
+    named = [cells for cells in table.rows if name < len(cells) and _is_known_text(cells[name], is_known)]
+    numeric = [
+        column
+        for column in range(width)
+        if column != name and sum(_has_number(cells, column) for cells in named) * 2 >= len(named)
+    ]
+    if len(numeric) != 1:
+        return None
+    found = Table(None, {name: Role.NAME, numeric[0]: Role.PRICE}, name=name)
+    found.prices = [PriceColumn(numeric[0], Role.PRICE, "", read_heading_words(""))]
+    for column in range(width):
+        if column in found.roles:
+            continue
+        filled = [cells[column] for cells in named if column < len(cells)]
+        texts = [str(value) for value in filled if kind_of(value) is CellKind.TEXT]
+        if texts and all(is_price_unit(text) or read_heading_words("/" + text).unit for text in texts):
+            found.roles[column] = Role.UNIT
+            break
+    return found
+
+
+def _has_number(cells: list[CellValue], column: int) -> bool:
+    if column >= len(cells):
+        return False
+    value = cells[column]
+    kind = kind_of(value)
+    return kind is CellKind.NUMBER or (kind is CellKind.TEXT and re.search(r"[0-9]", str(value)) is not None)
