@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 
 from blendapp.domain.batches import Batch, proof_words
-from blendapp.domain.figures import write_measure
+from blendapp.domain.figures import write_measure, write_shadow_price
 from blendapp.domain.formulas import Amounts
 from blendapp.domain.notation import notation
 from blendapp.domain.price_rows import Fate, PriceListReading
@@ -133,20 +133,21 @@ def price_words(one: LimitResult, result: Result) -> str:
     """What a working limit costs, in words; empty where it costs nothing."""
     if one.binding is None:
         return ""
-    if one.shadow_price_unique is False and one.tighten_cost is None and one.raise_cost is None:
-        return _("more than one price fits")
-    money = f"{result.currency}/{result.cost_per}"
-    unit = one.unit or _("unit")
-    write = notation().write
-    if one.raise_cost is not None:
-        return _("1 {unit} more costs {cost} {money}").format(unit=unit, cost=write(one.raise_cost, 2), money=money)
-    if not one.relax_saving:
-        return ""
-    if one.binding is Side.MINIMUM:
-        text = _("1 {unit} less saves {saving} {money}")
+    if one.raise_cost is not None or one.lower_cost is not None:
+        sides = ((_("more"), one.raise_cost, True), (_("less"), one.lower_cost, True))
+    elif one.tighten_cost is not None or one.relax_saving is not None:
+        stricter, looser = (_("more"), _("less")) if one.binding is Side.MINIMUM else (_("less"), _("more"))
+        sides = ((stricter, one.tighten_cost, True), (looser, one.relax_saving, False))
     else:
-        text = _("1 {unit} more saves {saving} {money}")
-    return text.format(unit=unit, saving=write(one.relax_saving, 2), money=money)
+        return _("more than one price fits") if one.shadow_price_unique is False else ""
+    said = [_side(one, side, value, costs) for side, value, costs in sides if value]
+    return f"{', '.join(said)} {result.currency}/{result.cost_per}" if said else ""
+
+
+def _side(one: LimitResult, side: str, value: float, costs: bool) -> str:
+    """One side of a shadow price; a cost below 0 is a saving."""
+    text = _("1 {unit} {side} costs {money}") if costs and value > 0 else _("1 {unit} {side} saves {money}")
+    return text.format(unit=one.unit or _("unit"), side=side, money=write_shadow_price(abs(value)))
 
 
 def prices(reading: PriceListReading, applied: bool) -> str:
