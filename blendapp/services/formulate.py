@@ -134,7 +134,9 @@ def _answer(
     try:
         found = certificate.check(built.program, solution)
     except certificate.FailedCheck as failure:
-        text = _("The answer to {formula} failed its check ({failure}) and is not shown.")
+        text = _negative_divisor(library, built, solution) or _(
+            "The answer to {formula} failed its check ({failure}) and is not shown."
+        )
         raise FailedCertificate(text.format(formula=built.formula.name, failure=failure)) from failure
     assert solution.x is not None
     mix = [(i.id, float(x)) for i, x in zip(built.ingredients, solution.x, strict=True) if x > 1e-12]
@@ -146,6 +148,24 @@ def _answer(
     worth = sensitivity(solution) if prices and solution.status == "optimal" else None
     result = answer.answered(library, on, built, solution, check, unknown, said, worth)
     return replace(result, cautions=(*result.cautions, *_without_value(result.limits)))
+
+
+def _negative_divisor(library: Library, built: FormulaProgram, solution: Solution) -> str | None:
+    """What to do where a ratio divides by less than 0, which its two sides, multiplied out, do not notice."""
+    for row in built.program.rows:
+        if row.divisor is None or row.limit is None or solution.x is None or row.divisor @ solution.x >= 0:
+            continue
+        limit = built.shown[row.limit].limit
+        if limit.per is None:
+            continue
+        low = [i.name for i, value in zip(built.ingredients, row.divisor, strict=True) if value < 0]
+        text = _(
+            "{name} of {ingredients} is below 0, and the ratio over it means nothing in a mix where it is below 0; set "
+            "a minimum of {name} that is above 0."
+        )
+        said = text.format(name=library.subject_name(limit.per), ingredients=", ".join(low))
+        return f"{built.formula.name}: {said}".replace("{", "{{").replace("}", "}}")
+    return None
 
 
 def _without_value(limits: Sequence[LimitResult]) -> list[str]:

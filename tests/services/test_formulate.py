@@ -10,7 +10,7 @@ from blendapp.domain.formulas import Admits, Amounts, Limit, LimitKind, Subject
 from blendapp.domain.ingredients import Basis
 from blendapp.domain.library import Library
 from blendapp.domain.results import Result, Side, Status
-from blendapp.services.formulate import formulate
+from blendapp.services.formulate import FailedCertificate, formulate
 from tests.mills import TODAY, Maker
 from tests.outside import plain_feed
 
@@ -320,3 +320,23 @@ def test_a_formula_that_admits_nothing_is_not_told_to_find_prices() -> None:
     result = formulate(make.library, feed.id, TODAY)
     assert result.status is Status.CONFLICT
     assert result.cause == "The formula admits no ingredient; list some for it, or let it admit all."
+
+
+def test_a_ratio_over_less_than_0_asks_for_a_minimum_of_what_it_divides_by() -> None:
+    make = Maker()
+    make.nutrient("Protein")
+    make.nutrient("Balance {net}", "mEq/kg", never_negative=False)
+    make.ingredient("Wheat", 200, {"Protein": 11.0, "Balance {net}": 40.0})
+    make.ingredient("Oats", 150, {"Protein": 10.0, "Balance {net}": -30.0})
+    feed = make.formula("Mash")
+    make.limit(feed, "ratio", "Protein", 0.1, None, per="Balance {net}")
+    with pytest.raises(FailedCertificate) as failure:
+        formulate(make.library, feed.id, TODAY)
+    assert str(failure.value) == (
+        "Mash: Balance {net} of Oats is below 0, and the ratio over it means nothing in a mix where it is below 0; set "
+        "a minimum of Balance {net} that is above 0."
+    )
+    make.limit(feed, "nutrient", "Balance {net}", 5.0)
+    result = formulate(make.library, feed.id, TODAY)
+    assert result.status is Status.OPTIMAL
+    assert result.limits[0].value == pytest.approx((11 * 0.5 + 10 * 0.5) / 5)
