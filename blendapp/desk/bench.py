@@ -7,7 +7,7 @@ from functools import partial
 from pathlib import Path
 from types import TracebackType
 
-from PySide6.QtCore import QObject, QSettings
+from PySide6.QtCore import QObject, QSettings, QTimer
 from PySide6.QtWidgets import QMenu, QWidget
 
 from blendapp.desk.commands import Commands
@@ -28,11 +28,14 @@ from blendapp.desk.prices.pane import PricesPane
 from blendapp.desk.sheet.pane import SheetPane
 from blendapp.desk.shell.frame import Frame
 from blendapp.desk.strip import Strip
+from blendapp.desk.versions.pane import VersionsPane
 from blendapp.desk.welcome import Welcome
 from blendapp.desk.work import Work
 from blendapp.domain.formulas import LimitKind
 from blendapp.domain.library import Library
 from blendapp.domain.wording import _
+from blendapp.services.approved import outside_their_limits
+from blendapp.services.versions import altered
 
 
 class Bench(QObject):
@@ -60,7 +63,8 @@ class Bench(QObject):
         self.effect = EffectPane(self.work)
         self.sheet = SheetPane(self.work)
         self.mill = MillPane(self.work)
-        for page in (self.welcome, self.prices, self.effect, self.sheet, self.mill):
+        self.versions = VersionsPane(self.work)
+        for page in (self.welcome, self.prices, self.effect, self.sheet, self.mill, self.versions):
             frame.middle.addWidget(page)
         self.commands = Commands(frame, command_list(self))
         self._effect_taken = True
@@ -75,6 +79,8 @@ class Bench(QObject):
         header.finder.clicked.connect(self.find_anything)
         header.formula.clicked.connect(self.choose_formula)
         header.menu.clicked.connect(self.open_menu)
+        header.state.clicked.connect(self.show_versions)
+        self.versions.people_wanted.connect(self.show_people)
         self.have.add.clicked.connect(self.have.add_ingredient)
         self.have.column_asked.connect(self._offer_column)
         self.prices.ingredient_wanted.connect(self._ask_ingredient)
@@ -82,7 +88,7 @@ class Bench(QObject):
         self.work.said.connect(self.strip.say)
         self.files.said.connect(self.strip.say)
         self.work.opened.connect(self._opened)
-        for page in (self.prices, self.sheet, self.mill):
+        for page in (self.prices, self.sheet, self.mill, self.versions):
             page.closed.connect(self.to_bench)
             page.said.connect(self.strip.say)
         self.prices.effect_wanted.connect(self.show_effect)
@@ -121,6 +127,23 @@ class Bench(QObject):
     def _opened(self) -> None:
         self.strip.clear()
         self.to_bench()
+        if self.work.is_open:
+            # After the answer is in view, and behind whatever else there is to say of the file.
+            QTimer.singleShot(0, self, self._say_approved)
+
+    def _say_approved(self) -> None:
+        """Say which approved versions may not be fed as they stand, and which other hands have changed."""
+        if not self.work.is_open:
+            return
+        outside = outside_their_limits(self.work.mill, self.work.on)
+        listed = altered(self.work.mill)
+        for one in outside:
+            name = _("{formula}, version {number}").format(formula=one.formula, number=one.version)
+            listed += [f"{name}: {sentence}" for sentence in one.sentences]
+        if not listed:
+            return
+        before = [self.strip.words.text(), *self.strip.list.text().splitlines()] if self.strip.isVisible() else []
+        self.strip.say(_("What was approved does not stand as it was:"), [*listed, *(one for one in before if one)])
 
     # -- pages
 
@@ -163,6 +186,17 @@ class Bench(QObject):
         """Show the mill's own page."""
         self.mill.fill()
         self.show_page(self.mill)
+
+    def show_people(self) -> None:
+        """Show where the mill's persons are kept."""
+        self.show_mill()
+        self.mill.tables["person"].setFocus()
+
+    def show_versions(self) -> None:
+        """Show the versions of the chosen formula."""
+        if self.work.formula_id is not None:
+            self.show_page(self.versions)
+            self.versions.begin()
 
     def show_sheet(self) -> None:
         """Show the batch sheet of the chosen formula as it would be printed."""

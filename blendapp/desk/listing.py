@@ -74,6 +74,8 @@ def _formula(bench: Bench) -> list[Command]:
         Command("copy formula", _("Copy this formula…"), "formula", records.copy_formula, "", chosen),
         Command("rename formula", _("Rename this formula…"), "formula", records.rename_formula, "", chosen),
         Command("about formula", _("What this formula is for"), "formula", bench.meet.about.begin, "", chosen),
+        Command("versions", _("Versions and approval of this formula"), "formula", bench.show_versions, "",
+                lambda: work.formula is not None),
         Command("remove formula", _("Remove this formula"), "formula", records.remove_formula, "", chosen),
         Command("add limit", _("Add a limit to this formula"), "formula", bench.meet.start_adding, "Ctrl+M", chosen),
     ]

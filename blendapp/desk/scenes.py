@@ -16,7 +16,8 @@ from blendapp.desk.start import make_app
 from blendapp.desk.theme import dress
 from blendapp.domain.formulas import Amounts, LimitKind
 from blendapp.domain.price_rows import PriceListReading
-from blendapp.services import edits, sheets
+from blendapp.domain.versions import Snapshot
+from blendapp.services import edits, people, sheets, versions
 from blendapp.services import workbook as workbooks
 
 WAIT_S = 20.0
@@ -65,7 +66,7 @@ def take_all(out_dir: Path, workbook: Path, price_list: Path, folder: Path, scal
     mill.close()
     bench.start(str(path))
     frame.activateWindow()
-    scenes = (_bench, _hands, _wide, _forms, _faults, _finding, _formulas, _prices, _sheet, _mill)
+    scenes = (_bench, _hands, _wide, _forms, _faults, _finding, _formulas, _prices, _sheet, _mill, _versions)
     for scene in scenes:
         if only and scene.__name__ != f"_{only}":
             continue
@@ -234,6 +235,41 @@ def _prices(studio: Studio, bench: Bench, price_list: Path) -> None:
         studio.settle()
         studio.take(bench.frame, "21-prices-taken")
         bench.work.undo()
+
+
+def _versions(studio: Studio, bench: Bench, _price_list: Path) -> None:
+    """A formula approved once and changed since, and a draft whose cautions are to be taken on."""
+    work = bench.work
+    words = {"Ada Marsh": "prepares the feeds", "Ben Holt": "approves the feeds"}
+    for name, word in words.items():
+        person = people.add_person(work.mill, name, "nutritionist" if name.startswith("Ada") else "head of feeds")
+        people.set_password(work.mill, person.id, word)
+    ada, ben = (work.library.named("person", name) for name in words)
+    assert ada is not None
+    assert ben is not None
+    assert work.formula_id is not None
+
+    def approve(formula_id: int) -> None:
+        draft = versions.prepare(work.mill, formula_id, ada.id, words["Ada Marsh"], work.on)
+        result = Snapshot.decode(draft.snapshot).result
+        reasons = {} if result is None else dict.fromkeys(versions.to_acknowledge(result), "checked")
+        versions.approve(work.mill, draft.id, ben.id, words["Ben Holt"], reasons=reasons, on=work.on)
+        work.recorded()
+
+    approve(work.formula_id)
+    limit = next(one for one in work.library.limits(work.formula_id) if one.minimum and one.kind is LimitKind.NUTRIENT)
+    work.do(lambda mill: edits.set_bound(mill, limit.id, "minimum", round((limit.minimum or 0.0) * 0.99, 3)))
+    bench.show_versions()
+    studio.settle()
+    studio.take(bench.frame, "25-versions")
+    versions.prepare(work.mill, work.formula_id, ada.id, words["Ada Marsh"], work.on)
+    work.recorded()
+    bench.versions.form.approve.emit()
+    studio.settle()
+    studio.take(bench.frame, "26-a-draft-to-approve")
+    bench.show_mill()
+    studio.settle()
+    studio.take(bench.frame, "27-persons")
 
 
 def _mill(studio: Studio, bench: Bench, _price_list: Path) -> None:

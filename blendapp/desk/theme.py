@@ -178,6 +178,7 @@ QPushButton#first:focus { border: 2px solid $quiet; }
 QPushButton#left { text-align: left; padding: 4px 0; }
 QPushButton#set, QPushButton#order { color: $quiet; padding: 4px 6px; }
 QPushButton#set:checked { color: $text; border-bottom: 1px solid $text; border-radius: 0; }
+QPushButton#standing { color: $quiet; text-align: left; padding: 4px 6px; }
 QLabel#page { background: #ffffff; border: 1px solid $hairline; }
 QListView#found { background: $raised; }
 QToolButton#quiet { color: $quiet; }

@@ -183,6 +183,11 @@ class Work(QObject):
             self.said.emit(_("Taken, but unusual:"), [str(one) for one in edit.oddities])
         self.solve()
 
+    def recorded(self) -> None:
+        """Tell everyone of what the mill has put on record that cannot be undone."""
+        self.edited.emit(Edit(0, "", ()))
+        self.solve()
+
     def undo(self) -> None:
         """Take the last edit back."""
         self._reverse(lambda mill: mill.undo())

@@ -71,7 +71,7 @@ def empty_bench(qapp: QApplication, tmp_path: Path) -> Iterator[Bench]:
         QAbstractItemModelTester(model, QAbstractItemModelTester.FailureReportingMode.Warning)
         for model in (
             bench.have.model, bench.meet.model, bench.mix.model, bench.prices.rows, bench.effect.rows,
-            bench.finder.found,
+            bench.finder.found, bench.versions.rows, bench.versions.found, bench.sheet.lines,
             *(bench.mill.model(kind) for kind in bench.mill.tables),
         )
     ]

@@ -11,6 +11,7 @@ from PySide6.QtWidgets import QFormLayout, QHBoxLayout, QLabel, QLineEdit, QPush
 
 from blendapp.desk.choice import Choice
 from blendapp.desk.mill.model import RecordTable
+from blendapp.desk.mill.people import PasswordForm, PeopleTable
 from blendapp.desk.shell.glyphs import GlyphButton
 from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.table.view import DeskTable
@@ -18,7 +19,9 @@ from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.desk.work import Work
 from blendapp.domain import units
 from blendapp.domain.fields import field_of
+from blendapp.domain.mills import Person
 from blendapp.domain.problems import Refused
+from blendapp.domain.records import added
 from blendapp.domain.wording import _
 from blendapp.services import edits, plant
 from blendapp.services.mill import Edit, Mill
@@ -53,6 +56,7 @@ class MillPane(QWidget):
         right = QVBoxLayout()
         right.setSpacing(GAP_PX)
         for kind, title, words, stretch in (
+            ("person", _("Persons"), _("Add a person"), 3),
             ("scale", _("Scales"), _("Add a scale"), 3), ("mixer", _("Mixers"), _("Add a mixer"), 2),
             ("nutrient", _("Nutrients"), _("Add a nutrient"), 6),
         ):
@@ -90,6 +94,9 @@ class MillPane(QWidget):
         side.addLayout(form)
         side.addWidget(self.fault)
         side.addWidget(self.leave)
+        self.passwords = PasswordForm(self.work)
+        self.passwords.setFixedWidth(SIDE_PX)
+        side.addWidget(self.passwords)
         side.addStretch(1)
         return side
 
@@ -102,7 +109,8 @@ class MillPane(QWidget):
         head.addWidget(label)
         head.addWidget(add)
         head.addStretch(1)
-        table = DeskTable(RecordTable(self.work, kind, self), self)
+        model = PeopleTable(self.work, self) if kind == "person" else RecordTable(self.work, kind, self)
+        table = DeskTable(model, self)
         table.setAccessibleName(title)
         table.cleared.connect(partial(self._clear, kind))
         table.pasted.connect(partial(self._paste, kind))
@@ -112,20 +120,22 @@ class MillPane(QWidget):
 
     # -- what is shown
 
-    def model(self, kind: str) -> RecordTable:
+    def model(self, kind: str) -> RecordTable | PeopleTable:
         """The model of one of the tables."""
         model = self.tables[kind].grid
-        assert isinstance(model, RecordTable)
+        assert isinstance(model, RecordTable | PeopleTable)
         return model
 
     def _edited(self, edit: Edit) -> None:
-        if edit.touches("mill", *self.tables):
+        if edit.touches("mill", *self.tables) or not edit.changes:
             self.fill()
 
     def fill(self) -> None:
         """Show what is stored."""
         for kind in self.tables:
             self.model(kind).rebuild()
+        if self.work.is_open:
+            self.passwords.fill()
         mill = self.work.library.mill
         for field, text in ((self.name, mill.name), (self.currency, mill.currency)):
             if not field.hasFocus():
@@ -146,11 +156,14 @@ class MillPane(QWidget):
 
     def add(self, kind: str) -> None:
         """Add a record under a free name and open the name for typing."""
-        words = {"scale": _("New scale"), "mixer": _("New mixer"), "nutrient": _("New nutrient")}[kind]
+        words = {"scale": _("New scale"), "mixer": _("New mixer"), "nutrient": _("New nutrient"),
+                 "person": _("New person")}[kind]
         name = edits.free_name(self.work.library, kind, words)
         jobs: dict[str, Callable[[Mill], Edit]] = {
             "scale": lambda mill: plant.add_scale(mill, name, 1.0), "mixer": lambda mill: plant.add_mixer(mill, name),
             "nutrient": lambda mill: edits.add_nutrient(mill, name),
+            "person": lambda mill: mill.apply(
+                _("Add {name}").format(name=name), [added(Person(mill.new_id("person"), name))]),
         }
         edit = self._try(jobs[kind])
         if edit is not None and edit.changes and self.tables[kind].go_to(edit.changes[0].id, "name"):
@@ -161,7 +174,12 @@ class MillPane(QWidget):
         removers: dict[str, Callable[[Mill, int], Edit]] = {
             "scale": plant.remove_scale, "mixer": plant.remove_mixer, "nutrient": edits.remove_nutrient,
         }
-        if len(cells) == 1 and cells[0][1] == "name":
+        if kind == "person":
+            cells = [(owner, key) for owner, key in cells if key == "capacity"]
+            if not cells:
+                self.said.emit(_("A person stays on record; write no under Active instead."), [])
+                return
+        elif len(cells) == 1 and cells[0][1] == "name":
             self._try(lambda mill: removers[kind](mill, cells[0][0]))
             return
         self._paste(kind, [(owner, key, "") for owner, key in cells if key != "name"], [],
@@ -171,9 +189,15 @@ class MillPane(QWidget):
         self, kind: str, cells: list[tuple[int, str, str]], outside: list[str], what: str = ""
     ) -> None:
         what = what or _("Paste")
-        if cells:
+        model = self.model(kind)
+        if isinstance(model, PeopleTable):
+            for owner, key, text in cells:
+                index = model.cell(owner, key)
+                if model.look(index.row(), index.column()).editable:
+                    model.setData(index, text)
+        elif cells:
             try:
-                self.model(kind).write_block(cells, what)
+                model.write_block(cells, what)
             except (Refused, ValueError) as fault:
                 self.said.emit(sentence_of(fault), [])
         if outside:

@@ -113,4 +113,8 @@ def most_words(row: Mover) -> str:
         return ""
     write = notation().write
     before, after = (_("no price") if value is None else write(value, 2) for value in (row.most.before, row.most.after))
-    return _("{name}, {before} to {after}").format(name=row.most.ingredient, before=before, after=after)
+    words = {"name": row.most.ingredient, "before": before, "after": after}
+    if row.most.effect is None:
+        return _("{name}, {before} to {after}").format(**words)
+    words["effect"] = signed(row.most.effect, 2 if row.amounts is Amounts.BLEND else 4)
+    return _("{name}, {before} to {after}, does {effect}").format(**words)

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from PySide6.QtCore import QRectF, QSize, Qt
-from PySide6.QtGui import QPen
+from PySide6.QtGui import QPen, QResizeEvent
 from PySide6.QtWidgets import (
     QHBoxLayout,
     QLabel,
+    QPushButton,
     QSizePolicy,
     QStyle,
     QStyleOptionToolButton,
@@ -17,7 +18,6 @@ from PySide6.QtWidgets import (
 )
 
 from blendapp.desk.shell.glyphs import GlyphButton, draw_glyph
-from blendapp.desk.shell.zone import Elided
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, large_font, tokens
 from blendapp.domain.wording import _
 
@@ -67,6 +67,35 @@ class FormulaButton(QToolButton):
             draw_glyph(painter, "down", box, QPen(look.colour("quiet"), 1.5))
 
 
+class StandingButton(QPushButton):
+    """Whether the formula stands as approved; shortened where there is no room. Pressing it opens its versions."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.setObjectName("standing")
+        self.whole = ""
+        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Fixed)
+        self.setEnabled(False)
+
+    def say(self, text: str) -> None:
+        """Show a standing; nothing to press without one."""
+        self.whole = text
+        self.setEnabled(bool(text))
+        self.setAccessibleName(_("Versions: {standing}").format(standing=text))
+        self._fit()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._fit()
+
+    def _fit(self) -> None:
+        shown = self.fontMetrics().elidedText(self.whole, Qt.TextElideMode.ElideRight, max(self.width() - 14, 0))
+        if shown != self.text():
+            self.setText(shown)
+        text = _("{standing}. Versions, differences and approval")
+        self.setToolTip(text.format(standing=self.whole) if self.whole else "")
+
+
 class Cost(QWidget):
     """What a tonne, or a day, costs: large, with its two changes beside it."""
 
@@ -113,8 +142,7 @@ class Header(QWidget):
         self.setFixedHeight(HEIGHT_PX)
         self.menu = GlyphButton("menu", _("Mill file, formula and paper"))
         self.formula = FormulaButton()
-        self.state = Elided()
-        self.state.setObjectName("quiet")
+        self.state = StandingButton()
         self.undo = GlyphButton("undo", _("Nothing to undo"))
         self.redo = GlyphButton("redo", _("Nothing to redo"))
         self.finder = QToolButton()
