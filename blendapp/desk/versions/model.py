@@ -8,8 +8,8 @@ from typing import Any
 
 from blendapp.desk.head import signed
 from blendapp.desk.table.grid import Grid, Heading
-from blendapp.desk.table.look import EMPTY, Look
-from blendapp.domain.differences import Difference
+from blendapp.desk.table.look import EMPTY, Look, fitting_decimals
+from blendapp.domain.differences import ENTERED, Difference
 from blendapp.domain.figures import decimals_of
 from blendapp.domain.mills import FormulaVersion, VersionState
 from blendapp.domain.notation import notation
@@ -38,7 +38,7 @@ class VersionRows(Grid):
             Heading("number", _("version"), 76, True), Heading("state", "", 130),
             Heading("made_by", _("prepared by"), 140),
             Heading("made", _("on"), 96), Heading("approved_by", _("approved by"), 140),
-            Heading("capacity", _("as"), 150), Heading("approved", _("on"), 96), Heading("note", _("Note"), 220),
+            Heading("capacity", _("as"), 150), Heading("approved", _("on"), 96), Heading("note", _("Note"), 140),
         ])
         self.set_rows(list(self._version))
         self.refresh()
@@ -72,10 +72,12 @@ class DifferenceRows(Grid):
     def __init__(self, parent: Any = None) -> None:
         super().__init__(parent)
         self.rows: list[Difference] = []
+        self._widest = 0
 
     def show(self, rows: Sequence[Difference]) -> None:
         """Show differences."""
         self.rows = list(rows)
+        self._widest = max((_decimals(row) for row in rows), default=0)
         self.set_headings([
             Heading("area", _("what"), 140), Heading("name", "", 250), Heading("detail", "", 130),
             Heading("before", _("before"), 120, True), Heading("after", _("after"), 120, True),
@@ -89,6 +91,7 @@ class DifferenceRows(Grid):
             return EMPTY
         row = self.rows[owner]
         decimals = _decimals(row)
+        lack = self._widest - decimals
         if key == "area":
             first = owner == 0 or self.rows[owner - 1].area is not row.area
             return Look(text=_(str(row.area)) if first else "", quiet=True, words=_(str(row.area)))
@@ -96,10 +99,11 @@ class DifferenceRows(Grid):
             value = row.before if key == "before" else row.after
             if isinstance(value, str):
                 return Look(text=value, hint=value, strong=key == "after")
-            return Look(text="" if value is None else notation().write(value, decimals), number=True,
+            return Look(text="" if value is None else notation().write(value, decimals), number=True, lack=lack,
                         strong=key == "after", words="" if value is not None else _("none"))
         if key == "change":
-            return EMPTY if row.change is None else Look(text=signed(row.change, decimals), number=True, quiet=True)
+            return EMPTY if row.change is None else Look(text=signed(row.change, decimals), number=True, quiet=True,
+                                                             lack=lack)
         text = str(getattr(row, key))
         return Look(text=text, quiet=key != "name", hint=text if key == "name" else "")
 
@@ -108,12 +112,14 @@ class DifferenceRows(Grid):
 
 
 def _decimals(row: Difference) -> int:
-    """Enough for both values and for the change to show."""
+    """Enough for both values and for the change to show; what a person entered is shown as it was entered."""
     change = row.change
     values = [value for value in (row.before, row.after) if isinstance(value, float | int)]
+    if row.area in ENTERED:
+        return max((fitting_decimals(value, 0) for value in values), default=0)
     if change:
-        return max(2, min(decimals_of(abs(change), significant=2), 6))
-    return max((min(decimals_of(value), 6) for value in values), default=2)
+        return max(2, min(decimals_of(abs(change), significant=2), 4))
+    return max((min(decimals_of(value), 4) for value in values), default=2)
 
 
 def _day(moment: datetime.datetime | None) -> str:
