@@ -5,12 +5,13 @@ from __future__ import annotations
 import re
 
 from blendapp.exchange.price_columns import PriceColumn, Role, Table, role_of
-from blendapp.exchange.price_words import read_unit_words
+from blendapp.exchange.price_numbers import read_price_text
+from blendapp.exchange.price_words import read_heading_words, read_unit_words
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
 
 # A heading may name the week or the day of its prices.
 _DATED = re.compile(
-    r"\b(?:19|20)[0-9]{2}\b|\b(?:week|wk|kw)\s*[0-9]{1,2}\b|\b[0-9]{1,2}[./-][0-9]{1,2}(?:[./-](?:[0-9]{4}|[0-9]{2}))?\b|"
+    r"\b(?:19|20)[0-9]{2}\b|\b(?:week|wk|kw)\s*[0-9]{1,2}\b|\b[0-9]{1,2}[./-][0-9]{1,2}[./-](?:[0-9]{4}|[0-9]{2})\b|"
     r"\b[0-9]{1,2}(?:st|nd|rd|th)?\s+(?=jan|feb|mar|apr|may|jun|jul|aug|sep|oct|nov|dec)|"
     r"(?<=\b[a-z]{3} )[0-9]{1,2}\b", re.IGNORECASE,
 )
@@ -25,6 +26,8 @@ def read_headings(table: RawTable, row: int) -> Table | None:
     if texts is None:
         return None
     below = _texts(table, row + 1) if row + 1 < len(table.rows) else None
+    if below and _holds_price(below):
+        below = None
     found = _headed(row, texts)
     if found is not None:
         split = _split_below(table, row, texts, below, found) if below else None
@@ -35,7 +38,7 @@ def read_headings(table: RawTable, row: int) -> Table | None:
             found.last_heading_row = row + 1
             return found
         return _under_a_wider_heading(table, row, texts, found)
-    if below and len(below) > 1 and _headed(row + 1, below) is None:
+    if below and len(below) > 1 and not _holds_price(texts) and _headed(row + 1, below) is None:
         both = _headed(row, _joined(_spread(table, row, texts, below), below))
         if both is not None and both.name is not None:
             both.last_heading_row = row + 1
@@ -54,6 +57,10 @@ def _texts(table: RawTable, row: int) -> dict[int, str] | None:
             return None
         found[index] = " ".join(str(value).split())
     return found
+
+
+def _holds_price(texts: dict[int, str]) -> bool:
+    return any(_is_price(text, bool(read_heading_words(text).unit)) for text in texts.values())
 
 
 def _joined(above: dict[int, str], below: dict[int, str]) -> dict[int, str]:
@@ -132,6 +139,14 @@ def _under_a_wider_heading(table: RawTable, row: int, texts: dict[int, str], fou
     return wider
 
 
+def _is_price(text: str, names_unit: bool) -> bool:
+    """Whether a text is a price rather than a heading: a number stands before its unit, and it is no day or week."""
+    before = re.split(r"/|\bper\b", _DATED.sub("", text), maxsplit=1)[0]
+    if not re.search(r"[0-9]", before):
+        return False
+    return not names_unit or read_price_text(text) is not None
+
+
 def _headed(row: int, texts: dict[int, str]) -> Table | None:
     """The table under headings by column, or None where they head no price."""
     found = Table(row)
@@ -142,7 +157,7 @@ def _headed(row: int, texts: dict[int, str]) -> Table | None:
         if role is Role.NAME:
             names.append(index)
         elif role in (Role.PRICE, Role.FREIGHT, Role.SUM):
-            if re.search(r"[0-9]", _DATED.sub("", heading)) and not words.unit:
+            if _is_price(heading, bool(words.unit)):
                 return None
             found.prices.append(PriceColumn(index, role, heading, words))
     if not any(column.role is not Role.FREIGHT for column in found.prices) or len(found.roles) < 2:
