@@ -93,8 +93,8 @@ class Asked(StrEnum):
     INGREDIENT: a name; its ingredient, or LEAVE_OUT. UNIT: the words in doubt, "" where none stand; words of one unit.
     RATE: a currency code or sign; the rate and its day. CENTS: ""; TAKE. PRICE: the headings of several columns of
     prices; the heading that holds, or ADD. DECIMAL: a heading; "." or ",". DATES: a heading; DAY_FIRST or MONTH_FIRST.
-    HIDDEN_COLUMN: a heading; TAKE.
-    Of a row: TAKE or LEAVE_OUT.
+    HIDDEN_COLUMN: a heading; TAKE. USUAL_CHANGE, of every source: a class of ingredients, "" for all others; by how
+    many percent a price may change without a question. Of a row: TAKE or LEAVE_OUT.
     """
 
     INGREDIENT = "ingredient"
@@ -105,6 +105,7 @@ class Asked(StrEnum):
     DECIMAL = "decimal"
     DATES = "dates"
     HIDDEN_COLUMN = "hidden column"
+    USUAL_CHANGE = "usual change"
 
     HIDDEN = "hidden"
     STRUCK = "struck"
@@ -125,7 +126,7 @@ class Asked(StrEnum):
 class Synonym:
     """What a source means by its words, as it was answered once: remembered for its next list.
 
-    name: what was asked about (see Asked). per: of a name, the unit that its price is always for, "" as the list says.
+    name: what was asked about (see Asked). per: of a name, the unit where the list leaves it open, "" if none.
     rate: money of the mill for one of the currency, on the day `given`.
     """
 

@@ -10,6 +10,8 @@ from blendapp.domain.mills import Asked, Synonym
 from blendapp.domain.names import fold
 from blendapp.domain.price_rows import Answer, source_of
 
+LARGEST_USUAL_CHANGE = 0.30
+
 
 class Answers:
     """Answers by what they answer; one given for this list comes before one that is remembered."""
@@ -17,6 +19,9 @@ class Answers:
     def __init__(self, library: Library, source: str, given: Iterable[Answer], today: datetime.date) -> None:
         self.source = source
         self.today = today
+        self._usual = {
+            fold(one.name): one.answer for one in library.all("synonym") if one.asked is Asked.USUAL_CHANGE
+        }
         self._given = {answer.key: answer for answer in given}
         self._remembered: dict[tuple[Asked, str], Synonym] = {
             (one.asked, fold(one.name)): one
@@ -34,10 +39,26 @@ class Answers:
             return None
         return Answer(asked, known.name, known.answer, known.ingredient_id, known.rate, known.given)
 
+    def unit(self, name: str, about: str) -> str:
+        """The unit that words in doubt were answered to mean, for one name or for all; "" if they were not."""
+        of_name = self._remembered.get((Asked.INGREDIENT, fold(name)))
+        if of_name is not None and of_name.per:
+            return of_name.per
+        found = self.find(Asked.UNIT, about)
+        return "" if found is None else found.answer
+
     def of_row(self, asked: Asked, sheet: str, row: int) -> str:
         """TAKE, LEAVE_OUT, or nothing; row from 1."""
         found = self._given.get((asked, "", sheet, row))
         return "" if found is None else found.answer
+
+    def largest_usual_change(self, class_name: str) -> float:
+        """By how much a price of a class may change without a question, as a fraction of the old price."""
+        said = self._usual.get(fold(class_name)) or self._usual.get("")
+        try:
+            return LARGEST_USUAL_CHANGE if said is None else float(said) / 100
+        except ValueError:
+            return LARGEST_USUAL_CHANGE
 
     def last_rate(self, about: str) -> Synonym | None:
         """The rate that was given for an earlier list, to be proposed."""

@@ -7,12 +7,12 @@ from collections import defaultdict
 from collections.abc import Sequence
 from dataclasses import replace
 
+from blendapp.domain.library import Library
 from blendapp.domain.mills import Asked
 from blendapp.domain.price_rows import LEAVE_OUT, TAKE, Fate, PriceRow, Question
 from blendapp.domain.wording import _
 from blendapp.exchange.price_answers import Answers
 
-LARGEST_USUAL_CHANGE = 0.30
 # A price this near to 10, 100 or 1000 times the old one has more likely lost its decimal sign or its unit.
 _NEAR_POWER = 0.35
 
@@ -58,18 +58,17 @@ def place_of(row: PriceRow, seen_from: PriceRow) -> str:
     return _("row {row} of the sheet “{sheet}”").format(row=row.row, sheet=row.sheet)
 
 
-def ask_about_leaps(
-    rows: Sequence[PriceRow], answers: Answers, largest_usual_change: float = LARGEST_USUAL_CHANGE
-) -> list[PriceRow]:
-    """An accepted price that differs from the old one by more than the usual change becomes a question.
-
-    largest_usual_change: as a fraction of the old price.
-    """
+def ask_about_leaps(rows: Sequence[PriceRow], answers: Answers, library: Library) -> list[PriceRow]:
+    """An accepted price that differs from the old one by more than is usual for its class becomes a question."""
     return [
-        _asked_about_leap(row, largest_usual_change)
+        _asked_about_leap(row, answers.largest_usual_change(_class_of(row, library)))
         if row.fate is Fate.ACCEPTED and answers.of_row(Asked.CHANGE, row.sheet, row.row) != TAKE else row
         for row in rows
     ]
+
+
+def _class_of(row: PriceRow, library: Library) -> str:
+    return "" if row.ingredient_id is None else library.ingredient(row.ingredient_id).class_name
 
 
 def _asked_about_leap(row: PriceRow, largest: float) -> PriceRow:

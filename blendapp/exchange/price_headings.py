@@ -7,11 +7,11 @@ import re
 from blendapp.exchange.price_columns import PriceColumn, Role, Table, role_of
 from blendapp.exchange.price_numbers import read_price_text
 from blendapp.exchange.price_words import read_heading_words, read_unit_words
-from blendapp.exchange.tables import CellKind, RawTable, kind_of
+from blendapp.exchange.tables import CellKind, RawTable, column_letters, kind_of
 
 # A heading may name the week or the day of its prices.
 _DATED = re.compile(
-    r"\b(?:19|20)[0-9]{2}\b|\b(?:week|wk|kw)\s*[0-9]{1,2}\b|\b[0-9]{1,2}[./-][0-9]{1,2}[./-](?:[0-9]{4}|[0-9]{2})\b|"
+    r"\b(?:19|20)[0-9]{2}(?:-[0-9]{1,2}-[0-9]{1,2})?\b|\b(?:week|wk|kw)\s*[0-9]{1,2}\b|\b[0-9]{1,2}[./-][0-9]{1,2}[./-](?:[0-9]{4}|[0-9]{2})\b|"
     r"\b[0-9]{1,2}(?:st|nd|rd|th)?\s+(?=jan|feb|mar|apr|may|jun|jul|aug|sep|oct|nov|dec)|"
     r"(?<=\b[a-z]{3} )[0-9]{1,2}\b", re.IGNORECASE,
 )
@@ -121,7 +121,7 @@ def _spread(table: RawTable, row: int, texts: dict[int, str], below: dict[int, s
 
 
 def _under_a_wider_heading(table: RawTable, row: int, texts: dict[int, str], found: Table) -> Table:
-    """The same table with what a heading over several of its price columns says of unit and currency."""
+    """The same table with what stands over its price columns: a unit, a currency, "last week" and "this week"."""
     if row == 0 or found.name is None:
         return found
     above = _texts(table, row - 1)
@@ -129,11 +129,10 @@ def _under_a_wider_heading(table: RawTable, row: int, texts: dict[int, str], fou
         return found
     spread = _spread(table, row - 1, above, texts)
     more = {
-        column.index: spread[column.index] for column in found.prices
-        if column.index in spread and role_of(spread[column.index])[0] in (Role.PRICE, Role.SUM, Role.FREIGHT)
+        column.index: spread[column.index] for column in found.prices if column.index in spread
     }
     wider = _headed(row, {index: f"{more.get(index, '')} {text}".strip() for index, text in texts.items()})
-    if not more or wider is None or [c.role for c in wider.prices] != [c.role for c in found.prices]:
+    if not more or wider is None:
         return found
     wider.first_heading_row = row - 1
     return wider
@@ -159,6 +158,8 @@ def _headed(row: int, texts: dict[int, str]) -> Table | None:
         elif role in (Role.PRICE, Role.FREIGHT, Role.SUM):
             if _is_price(heading, bool(words.unit)):
                 return None
+            if any(heading == column.heading for column in found.prices):
+                heading = f"{heading} ({column_letters(index)})"
             found.prices.append(PriceColumn(index, role, heading, words))
     if not any(column.role is not Role.FREIGHT for column in found.prices) or len(found.roles) < 2:
         return None

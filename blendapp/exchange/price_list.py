@@ -63,7 +63,7 @@ def read_price_list(
     answered = Answers(library, source, answers, today)
     names = NameFinder(library, answered)
     rows = [row for table in tables for row in read_table(table, library, names, today)]
-    rows = ask_about_leaps(ask_about_duplicates(rows, answered), answered)
+    rows = ask_about_leaps(ask_about_duplicates(rows, answered), answered, library)
     return PriceListReading(
         file.name, file.digest, library.mill.currency, tuple(rows), tuple(notes), source, tuple(answers)
     )

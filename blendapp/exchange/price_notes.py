@@ -13,6 +13,12 @@ from blendapp.exchange.tables import CellKind, RawTable, kind_of
 _SPEAKS_OF_PRICES = re.compile(
     r"\b(?:prices?|quot(?:es?|ed|ations?)|offers?|rates?|values?|figures)\b|\ball\s+in\b", re.IGNORECASE
 )
+# A note about something beside the price says nothing of the price itself.
+_OF_SOMETHING_ELSE = re.compile(
+    r"\b(?:freight|haulage|carriage|surcharges?|add|plus|less|levy|discounts?|commission|storage|fees?|min|minimum|"
+    r"deliver\w*|shipments?|deposit|demurrage)\b",
+    re.IGNORECASE,
+)
 _DATE = (
     r"([0-9]{4}-[0-9]{1,2}-[0-9]{1,2}|[0-9]{1,2}[./-][0-9]{1,2}[./-](?:[0-9]{4}|[0-9]{2})|"
     r"[0-9]{1,2}(?:st|nd|rd|th)?\s+[a-z]{3,9}\.?,?\s+[0-9]{4}|[a-z]{3,9}\.?\s+[0-9]{1,2}(?:st|nd|rd|th)?,?\s+[0-9]{4})"
@@ -39,6 +45,8 @@ def read_notes(table: RawTable, rows: Iterable[int]) -> Notes:
         if len(cells) != 1 or not isinstance(cells[0], str):
             continue
         text = " ".join(cells[0].split())
+        if _OF_SOMETHING_ELSE.search(text):
+            continue
         speaks = _SPEAKS_OF_PRICES.search(text)
         if speaks:
             words = read_heading_words(text)

@@ -107,7 +107,7 @@ class _Reading:
             self._ask(asked, "", text, (TAKE, LEAVE_OUT))
 
     def _error(self) -> str:
-        columns = [index for index, role in self.table.roles.items() if role not in (Role.NOTE, Role.OTHER)]
+        columns = [index for index, role in self.table.roles.items() if role not in (Role.NOTE, Role.TERMS, Role.OTHER)]
         columns += [column.index for column in self.table.prices]
         found = (error_in(self.raw.cell(self.row, index), self.row, index) for index in sorted(set(columns)))
         return next((sentence for sentence in found if sentence), "")
@@ -224,14 +224,14 @@ class _Reading:
         reading = read_unit(sources, self.library.mill)
         if not reading.doubt:
             return reading
-        answer = self.answers.find(Asked.UNIT, reading.about)
-        if answer is not None:
+        answered = self.answers.unit(self.name, reading.about)
+        if answered:
             try:
-                unit = read_price_unit(answer.answer, self.library.mill, cwt_is_100_lb=False)
+                unit = read_price_unit(answered, self.library.mill, cwt_is_100_lb=False)
             except (UnknownPriceUnit, AmbiguousPriceUnit):
                 unit = None
             if unit is not None:
-                self.remarks.append(_("The price is per {unit}, as answered.").format(unit=answer.answer))
+                self.remarks.append(_("The price is per {unit}, as answered.").format(unit=answered))
                 return UnitReading(unit, reading.said)
         self._ask(Asked.UNIT, reading.about, reading.doubt, reading.choices)
         return reading

@@ -88,6 +88,25 @@ def remember(mill: Mill, source: str, answer: Answer) -> Edit:
     return mill.apply(_("Answer for {source} remembered").format(source=new.source), changes)
 
 
+def set_usual_change(mill: Mill, class_name: str, percent: float) -> Edit:
+    """By how many percent a price of a class may change without a question; class_name "" is every other class.
+
+    Raises Refused for a figure that is not above 0.
+    """
+    if not 0 < percent < float("inf"):
+        raise Refused(_("The usual change must be above 0 %."))
+    old = next((
+        one for one in mill.library.all("synonym")
+        if one.asked is Asked.USUAL_CHANGE and fold(one.name) == fold(class_name)
+    ), None)
+    new = Synonym(
+        mill.new_id("synonym") if old is None else old.id, "", class_name, asked=Asked.USUAL_CHANGE,
+        answer=f"{percent:g}",
+    )
+    what = _("Usual change of the price of {name}").format(name=class_name or _("all other ingredients"))
+    return mill.apply(what, [Change(old, new)])
+
+
 def _known(mill: Mill, synonym_id: int) -> Synonym:
     found: Synonym | None = mill.library.records["synonym"].get(synonym_id)
     if found is None:

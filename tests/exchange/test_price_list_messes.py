@@ -77,6 +77,13 @@ HEADINGS: dict[str, tuple[Rows, list[Fate], list[float]]] = {
     "prices of two months under one heading": (
         [["Ingredient", "Price $/t", None], [None, "March", "April"], ["Maize", 205, 207]], [IGNORED, IGNORED, Q], [],
     ),
+    "last week beside this week": (
+        [[None, "Last week", "This week"], ["Product", "Price $/t", "Price $/t"], ["Maize", 200, 205]],
+        [IGNORED, IGNORED, A], [205],
+    ),
+    "two columns headed alike": (
+        [["Product", "Price $/t", "Price $/t"], ["Maize", 200, 205]], [IGNORED, Q], [],
+    ),
     "a week in the heading": (
         [["Commodity", "Price $/t week 10"], ["Maize", 205]], [IGNORED, A], [205],
     ),
@@ -139,6 +146,7 @@ UNITS: dict[str, tuple[Rows, float | None]] = {
     "in a note that the row outdoes": ([["Quotes are in $/t unless said"], HEAD, ["Maize", 0.205, "kg"]], 205),
     "in two notes that differ": ([["Prices per t"], HEAD[:2], ["Maize", 205], ["Prices per short ton"]], None),
     "in a note in another currency": ([["Prices in EUR/t"], HEAD[:2], ["Maize", 205]], None),
+    "a note about freight": ([["Prices plus freight of $12/t"], HEAD[:2], ["Maize", 205]], None),
     "a note that speaks of something else": ([["We deliver 25 t per day"], HEAD[:2], ["Maize", 205]], None),
     "a bag of 25 kg": ([HEAD, ["Maize", 5.1, "25 kg bag"]], 204),
     "a bag of 50 lb": ([HEAD, ["Maize", 4.6, "bag of 50 lb"]], 202.83),

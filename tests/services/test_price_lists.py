@@ -10,11 +10,12 @@ from pathlib import Path
 import pytest
 
 from blendapp.domain.library import Library
-from blendapp.domain.mills import Asked
+from blendapp.domain.mills import Asked, Synonym
 from blendapp.domain.price_rows import ADD, LEAVE_OUT, TAKE, Answer, Fate, PriceListReading
 from blendapp.domain.problems import Refused
+from blendapp.domain.records import added
 from blendapp.services.mill import Mill
-from blendapp.services.price_memory import answer_again, forget, remember, remembered
+from blendapp.services.price_memory import answer_again, forget, remember, remembered, set_usual_change
 from blendapp.services.prices import applied_lists, apply_price_list, open_price_list, read_price_list, roll_back
 from tests.mills import TODAY, Maker
 
@@ -176,3 +177,28 @@ def test_a_price_to_come_takes_effect_on_its_day_and_ends_on_its_last(mill: Mill
     apply_price_list(mill, read(mill, tmp_path, "Larkwater.csv", text), TODAY)
     days = [datetime.date(2026, 3, day) for day in (8, 9, 15, 16)]
     assert [mill.library.price_per_t(1, day) for day in days] == [200, 215, 215, 200]
+
+
+@pytest.mark.parametrize(("class_name", "percent", "fate"), [
+    ("", 30, Fate.ACCEPTED), ("", 20, Fate.QUESTION), ("Cereals", 20, Fate.QUESTION), ("Oilseeds", 20, Fate.ACCEPTED)
+])
+def test_the_usual_change_of_a_price_is_the_persons_own_by_class(
+    opened: Opened, tmp_path: Path, class_name: str, percent: float, fate: Fate
+) -> None:
+    maker = Maker()
+    maker.ingredient("Maize", 200.0, class_name="Cereals")
+    mill = opened(maker.library)
+    set_usual_change(mill, class_name, 1)
+    set_usual_change(mill, class_name, percent)
+    assert len(remembered(mill)) == 1
+    assert read(mill, tmp_path, "a.csv", "Ingredient,Price,Unit\nMaize,250,t\n").rows[1].fate is fate
+    with pytest.raises(Refused):
+        set_usual_change(mill, class_name, 0)
+
+
+def test_the_unit_of_a_name_is_remembered_where_the_list_leaves_it_open(mill: Mill, tmp_path: Path) -> None:
+    mill.apply("unit of a name", [added(Synonym(mill.new_id("synonym"), "a", "Maize", 1, "kg"))])
+    text = "Ingredient,Price,Unit\nMaize,0.2,\nSoybean meal,0.4,\n"
+    assert [row.fate for row in read(mill, tmp_path, "a.csv", text).rows[1:]] == [Fate.ACCEPTED, Fate.QUESTION]
+    (row,) = read(mill, tmp_path, "a.csv", text.replace("0.2,", "200,t")).accepted
+    assert row.price_per_t == 200
