@@ -205,7 +205,7 @@ def _formulas(studio: Studio, bench: Bench, _price_list: Path) -> None:
     work.choose(first)
     studio.settle(lambda: not work.stale)
     limit = next(one for one in work.library.limits(first or 0) if one.minimum and one.kind is LimitKind.NUTRIENT)
-    work.do(lambda mill: edits.change(mill, limit, minimum=(limit.minimum or 0.0) * 1.12, maximum=None))
+    work.do(lambda mill: edits.change(mill, limit, minimum=round((limit.minimum or 0.0) * 1.12, 3), maximum=None))
     studio.settle()
     studio.take(bench.frame, "17-conflict")
     studio.settle(lambda: work.result is not None and work.result.conflict is not None)

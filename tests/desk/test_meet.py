@@ -5,10 +5,12 @@ from __future__ import annotations
 import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtTest import QTest
+from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
 from blendapp.desk.rail.grip import SETTLE_MS
-from blendapp.domain.formulas import LimitBasis, LimitKind
+from blendapp.domain.formulas import LimitBasis, LimitKind, Subject
+from blendapp.services import edits
 from tests.desk.conftest import Hands
 
 PROTEIN, CALCIUM, MAIZE_LIMIT = 1, 2, 3
@@ -219,3 +221,18 @@ def test_an_ingredient_left_out_says_at_which_price_it_comes_in(bench: Bench, ha
     hint = bench.have.model.look(index.row(), index.column()).hint
     assert hint.startswith("Peas is left out at 900.00 USD/t; below ")
     assert any(line.text == "Peas" and line.hint == hint for line in bench.mix.model.lines)
+
+
+def test_with_a_practical_minimum_prices_are_said_to_hold_for_these_ingredients(
+    bench: Bench, hands: Hands, qtbot: QtBot
+) -> None:
+    formula_id = bench.work.formula_id or 0
+    with qtbot.waitSignal(bench.work.answered, timeout=20000):
+        bench.work.do(lambda mill: edits.add_limit(
+            mill, formula_id, LimitKind.PRACTICAL, Subject.ingredients(1), minimum=5.0))
+    assert bench.work.stale or bench.work.result is not None
+    qtbot.waitUntil(lambda: not bench.work.stale, timeout=20000)
+    assert bench.work.result is not None
+    assert bench.work.result.given_ingredients
+    hands.go(bench.meet.table, PROTEIN, "rail")
+    assert bench.meet.telling.text().startswith("Given these ingredients, Crude protein holds the mix")

@@ -8,7 +8,7 @@ from blendapp.desk.table.look import fitting_decimals
 from blendapp.domain.figures import decimals_of, write_measure
 from blendapp.domain.notation import notation
 from blendapp.domain.results import Conflict, LimitResult, Reach, Repair, Result, Side
-from blendapp.domain.wording import _
+from blendapp.domain.wording import _, plural
 
 
 def limit_words(limit: LimitResult) -> str:
@@ -31,7 +31,9 @@ def sentences(result: Result, conflict: Conflict) -> list[str]:
         said.append(text.format(names=", ".join(members)))
     hopeless = [limit_words(result.limits[one.limit]) for one in conflict.repairs if one.to is None]
     if hopeless and len(hopeless) < len(conflict.repairs):
-        said.append(_("Changing only this does not help: {names}.").format(names=", ".join(hopeless)))
+        text = plural("Changing only this does not help: {names}.",
+                      "Changing only one of these does not help: {names}.", len(hopeless))
+        said.append(text.format(names=", ".join(hopeless)))
     return said
 
 
@@ -53,7 +55,7 @@ def reach_words(result: Result, reach: Reach) -> str:
 def repaired(repair: Repair) -> tuple[float, int]:
     """The bound that a repair sets and its decimals: a short figure, rounded to the side that still helps."""
     assert repair.to is not None
-    decimals = max(fitting_decimals(repair.frm, 0), min(decimals_of(repair.to), 4))
+    decimals = max(fitting_decimals(repair.frm, 0, 4), min(decimals_of(repair.to), 4))
     shown = repair.to * 10.0**decimals
     near = round(shown)
     if abs(shown - near) > 1e-8 * max(1.0, abs(shown)):

@@ -121,6 +121,10 @@ class SheetPane(QWidget):
         side.addWidget(self.accepting)
         for button in (self.print_button, self.save_button, self.leave):
             side.addWidget(button)
+        fixing = QLabel(_("Lines of one batch; type a mass to fix one"))
+        fixing.setObjectName("quiet")
+        fixing.setWordWrap(True)
+        side.addWidget(fixing)
         self.table.setMinimumHeight(180)
         side.addWidget(self.table, 1)
         side.addLayout(self.copies)
