@@ -116,6 +116,7 @@ class Bench(QObject):
     def close(self) -> None:
         """Let the mill file go."""
         self.finder.hide()
+        self.effect.stop_all()
         self.work.close()
 
     def tell_of_fault(self, kind: type[BaseException], fault: BaseException, trace: TracebackType | None) -> None:
@@ -170,6 +171,11 @@ class Bench(QObject):
         title = _("What the new prices do") if taken else _("What these prices would do")
         self.effect.begin(before, after, title, _("Back to the bench") if taken else _("Back to the list"))
         self.show_page(self.effect)
+
+    def back_to_effect(self) -> None:
+        """Show once more what the last prices did."""
+        if self.effect.has_any:
+            self.show_page(self.effect)
 
     def _leave_effect(self) -> None:
         if self._effect_taken:

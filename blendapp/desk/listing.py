@@ -35,6 +35,8 @@ def _file(bench: Bench) -> list[Command]:
         Command("open", _("Open a mill file…"), "mill", files.open, "Ctrl+O"),
         Command("copy file", _("Save a copy as…"), "mill", files.save_copy, "Ctrl+Shift+S", is_open),
         Command("prices", _("Bring in a price list…"), "exchange", bench.bring_in_prices, "Ctrl+I", writable),
+        Command("effect", _("What the last prices did"), "exchange", bench.back_to_effect, "",
+                lambda: bench.effect.has_any),
         Command("import", _("Bring in a workbook…"), "exchange", files.import_workbook, "", writable),
         Command("export", _("Write the workbook…"), "exchange", files.export_workbook, "Ctrl+E", is_open),
     ]

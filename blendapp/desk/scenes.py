@@ -200,7 +200,7 @@ def _formulas(studio: Studio, bench: Bench, _price_list: Path) -> None:
     ration = next((one.id for one in work.library.formulas if one.amounts is Amounts.RATION), None)
     if ration is not None:
         work.choose(ration)
-        studio.settle(lambda: not work.stale)
+        studio.settle(lambda: work.has_further)
         studio.take(bench.frame, "16-a-ration")
     work.choose(first)
     studio.settle(lambda: not work.stale)

@@ -150,3 +150,20 @@ def test_stopping_keeps_what_is_worked_out_and_the_rest_can_follow(
     worked_out(bench, qtbot)
     assert len(bench.effect.rows.owners) == 2
     assert not bench.effect.stop.isVisible()
+
+
+def test_what_prices_did_can_be_come_back_to_and_says_when_it_is_of_before_an_edit(
+    bench: Bench, hands: Hands, price_list: Path, qtbot: QtBot
+) -> None:
+    bench.bring_in_prices(price_list)
+    hands.click(bench.prices.take)
+    worked_out(bench, qtbot)
+    assert bench.effect.remark.whole == "2 mixes kept, 0 changed"
+    hands.key(Qt.Key.Key_Escape)
+    hands.key(Qt.Key.Key_Z, Qt.KeyboardModifier.ControlModifier)
+    assert bench.work.library.price_per_t(1, bench.work.on) == 200
+    command = next(one for one in bench.things() if one.words == "What the last prices did")
+    command.run()
+    assert bench.frame.middle.currentWidget() is bench.effect
+    assert "edited since" in bench.effect.remark.whole
+    assert text(bench, 1, "most")

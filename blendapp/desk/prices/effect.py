@@ -6,7 +6,7 @@ import threading
 from collections.abc import Callable
 
 from PySide6.QtCore import QModelIndex, Qt, Signal
-from PySide6.QtGui import QHideEvent, QKeyEvent
+from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QProgressBar, QPushButton, QVBoxLayout, QWidget
 
 from blendapp.desk.aside import Aside
@@ -18,6 +18,7 @@ from blendapp.desk.work import Work
 from blendapp.domain.library import Library
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _, plural
+from blendapp.services.mill import Edit
 from blendapp.services.movers import Mover, movers
 
 
@@ -65,6 +66,7 @@ class EffectPane(QWidget):
         self._both: tuple[Library, Library] | None = None
         self._enough = threading.Event()
         self._of = 0
+        self.found: list[Mover] = []
         self.running = False
         self._aside = Aside(self, (Refused, ValueError))
         self._aside.done.connect(self._take)
@@ -72,6 +74,7 @@ class EffectPane(QWidget):
         self.table.asked.connect(self._choose)
         self.table.doubleClicked.connect(self._choose)
         work.opened.connect(self._forget)
+        work.edited.connect(self._edited)
 
     def begin(self, before: Library, after: Library, title: str, leave: str) -> None:
         """Work out what prices do between two libraries that nobody edits. leave: words of the way back."""
@@ -123,6 +126,7 @@ class EffectPane(QWidget):
         if found is None:
             self.said.emit(str(fault), [])
             return
+        self.found = found
         self.rows.show(found, self.work.library.mill.currency)
         if len(found) < self._of:
             self.remark.say(_("stopped after {done} of {count} formulas").format(done=len(found), count=self._of))
@@ -135,17 +139,27 @@ class EffectPane(QWidget):
         if index.isValid():
             self.chosen.emit(self.rows.owner(index))
 
+    @property
+    def has_any(self) -> bool:
+        """Whether there is anything to come back to."""
+        return self._both is not None
+
+    def _edited(self, edit: Edit) -> None:
+        """What stands here is of two sets of prices, and stays so; it says when they are no longer today's."""
+        if self._both is not None and not self.running and edit.touches("quote", "value", "limit", "ingredient"):
+            self.remark.say(_("{what}; edited since").format(what=summary(self.found)))
+
+    def stop_all(self) -> None:
+        """Nobody waits any more: the window closes, or another mill is opened."""
+        self._forget()
+
     def _forget(self) -> None:
+        self.found = []
         self._enough.set()
         self._aside.forget()
         self._both = None
         self.running = False
         self.rows.show([], "")
-
-    def hideEvent(self, event: QHideEvent) -> None:
-        super().hideEvent(event)
-        # Nobody waits for it any more; what is there stays.
-        self._enough.set()
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape:
