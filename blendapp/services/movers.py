@@ -6,8 +6,6 @@ import datetime
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 
-import numpy as np
-
 from blendapp.domain.formulas import Amounts, Formula
 from blendapp.domain.library import Library
 from blendapp.domain.price_rows import PriceListReading
@@ -119,7 +117,7 @@ def _mover(
         if held is not None:
             kept, x, cost, as_before = held
             assert old.built is not None
-            new_amounts = {i.id: float(v) for i, v in zip(old.built.ingredients, x, strict=True)}
+            new_amounts = {i.id: v for i, v in zip(old.built.ingredients, x, strict=True)}
             status, new_cost = Status.OPTIMAL, cost
         else:
             new = answer_to(after, formula.id, on, composition, prices=False)
@@ -136,7 +134,7 @@ def _mover(
     )
 
 
-def _held(old: Answer, prices: Prices) -> tuple[bool, np.ndarray, float, float] | None:
+def _held(old: Answer, prices: Prices) -> tuple[bool, list[float], float, float] | None:
     """Whether the old mix is still optimal, the amounts now, their cost, and that of the old ones; None where only
     solving anew can say: no answer, a choice of ingredients, or an ingredient that gains or loses its price."""
     solution, built = old.solution, old.built
@@ -151,9 +149,9 @@ def _held(old: Answer, prices: Prices) -> tuple[bool, np.ndarray, float, float] 
             cost[column] = (prices[ingredient.id][1] or 0.0) * per
     try:
         found = Kept(solution).reprice(cost)
-    except (FailedSolve, ValueError, np.linalg.LinAlgError):
+    except (FailedSolve, ValueError):  # a singular basis is a ValueError too
         return None
-    return found.stays, found.x, found.objective, found.as_before
+    return found.stays, found.x.tolist(), found.objective, found.as_before
 
 
 def _compared(old: Answer, new: Answer, after: Library, on: datetime.date) -> tuple[bool | None, float | None]:
