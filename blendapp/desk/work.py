@@ -35,7 +35,7 @@ Extra = TypeVar("Extra")
 
 
 class Work(QObject):
-    """opened: another mill, or none. edited: an Edit was taken. chosen: another formula, or none.
+    """opened: another mill, or none. edited: an Edit was taken. reversed: it was an undo or a redo. chosen: another formula, or none.
 
     answered: the result changed, or its staleness did; trying is true while a value is being tried and not stored.
     learned: more is known of the result that is shown already: near-optimal ranges, or why there is none.
@@ -43,6 +43,7 @@ class Work(QObject):
     """
 
     opened = Signal()
+    reversed = Signal()
     edited = Signal(object)
     chosen = Signal()
     answered = Signal()
@@ -200,7 +201,8 @@ class Work(QObject):
         if self._mill is None:
             return
         try:
-            self.do(job)
+            if self.do(job) is not None:
+                self.reversed.emit()
         except Refused as refusal:
             self.said.emit(" ".join(problem.text for problem in refusal.problems), [])
 

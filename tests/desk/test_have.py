@@ -213,3 +213,75 @@ def test_an_editor_opens_with_every_digit_of_what_is_stored(bench: Bench, hands:
     index = bench.have.model.cell(1, "price")
     assert index.data() == "201.12"
     assert bench.have.model.data(index, Qt.ItemDataRole.EditRole) == "201.123456789"
+
+
+def refuse_in_composition(bench: Bench, hands: Hands) -> None:
+    bench.have.show_set("composition")
+    hands.go(bench.have.table, MAIZE, "nutrient 2")
+    hands.write("abc")
+    hands.key(Qt.Key.Key_Return)
+    assert bench.have.model.refusals
+
+
+def test_a_refused_entry_keeps_the_keyboard_and_takes_the_next_figure(bench: Bench, hands: Hands) -> None:
+    refuse_in_composition(bench, hands)
+    table, model = bench.have.table, bench.have.model
+    assert (model.owner(table.currentIndex()), model.key(table.currentIndex())) == (MAIZE, "nutrient 2")
+    assert table._note is not None
+    assert table._note.isVisible()
+    assert "abc" in table._note.text()
+    soy = bench.work.library.value(SOY, 2)
+    hands.write("0.35")
+    hands.key(Qt.Key.Key_Return)
+    assert bench.work.library.value(MAIZE, 2).amount == 0.35  # type: ignore[union-attr]
+    assert bench.work.library.value(SOY, 2) == soy
+    assert not table._note.isVisible()
+    assert model.owner(table.currentIndex()) == SOY
+
+
+def test_a_refused_entry_keeps_the_keyboard_however_often_enter_or_tab_is_pressed(bench: Bench, hands: Hands) -> None:
+    refuse_in_composition(bench, hands)
+    table, model = bench.have.table, bench.have.model
+    for key in (Qt.Key.Key_Return, Qt.Key.Key_Tab, Qt.Key.Key_Down):
+        hands.key(Qt.Key.Key_F2)
+        hands.key(key)
+        assert (model.owner(table.currentIndex()), model.key(table.currentIndex())) == (MAIZE, "nutrient 2")
+        assert shown(bench, MAIZE, "nutrient 2") == "abc"
+    hands.key(Qt.Key.Key_Escape)
+    assert shown(bench, MAIZE, "nutrient 2") == "0.30"
+
+
+def test_a_refused_name_keeps_the_keyboard_too(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, MAIZE, "name")
+    hands.write("Peas")
+    hands.key(Qt.Key.Key_Return)
+    hands.write("Corn")
+    hands.key(Qt.Key.Key_Return)
+    assert bench.work.library.ingredient(MAIZE).name == "Corn"
+    assert bench.work.library.ingredient(SOY).name == "Soybean meal"
+
+
+def test_undo_and_redo_show_the_stored_value_again(bench: Bench, hands: Hands) -> None:
+    for key in (Qt.Key.Key_Z, Qt.Key.Key_Y):
+        if key == Qt.Key.Key_Z:
+            bench.work.do(lambda mill: edits.set_price_per_t(mill, SOY, 430.0, bench.work.on))
+        refuse_in_composition(bench, hands)
+        hands.key(key, CONTROL)
+        assert shown(bench, MAIZE, "nutrient 2") == "0.30"
+        assert not bench.have.model.refusals
+
+
+def test_a_value_that_comes_from_elsewhere_replaces_a_refused_text_and_leaves_others(
+    bench: Bench, hands: Hands
+) -> None:
+    refuse_in_composition(bench, hands)
+    bench.work.do(lambda mill: edits.set_value(mill, SOY, 2, 3.0))
+    assert shown(bench, MAIZE, "nutrient 2") == "abc"
+    bench.work.do(lambda mill: edits.set_value(mill, MAIZE, 2, 0.28))
+    assert shown(bench, MAIZE, "nutrient 2") == "0.28"
+
+
+def test_another_formula_begins_without_refused_texts(bench: Bench, hands: Hands) -> None:
+    refuse_in_composition(bench, hands)
+    bench.work.choose(2)
+    assert shown(bench, MAIZE, "nutrient 2") == "0.30"

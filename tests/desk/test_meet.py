@@ -236,3 +236,24 @@ def test_with_a_practical_minimum_prices_are_said_to_hold_for_these_ingredients(
     assert bench.work.result.given_ingredients
     hands.go(bench.meet.table, PROTEIN, "rail")
     assert bench.meet.telling.text().startswith("Given these ingredients, Crude protein holds the mix")
+
+
+def test_a_refused_bound_keeps_the_keyboard_and_moving_the_other_end_frees_it(bench: Bench, hands: Hands) -> None:
+    table, model = bench.meet.table, bench.meet.model
+    hands.go(table, PROTEIN, "minimum")
+    hands.write("30")
+    hands.key(Qt.Key.Key_Return)
+    assert (model.owner(table.currentIndex()), model.key(table.currentIndex())) == (PROTEIN, "minimum")
+    assert table._note is not None
+    assert "above the maximum" in table._note.text()
+    hands.write("21")
+    hands.key(Qt.Key.Key_Return)
+    assert bench.work.library.limit(PROTEIN).minimum == 21
+    hands.go(table, PROTEIN, "minimum")
+    hands.write("30")
+    hands.key(Qt.Key.Key_Return)
+    hands.go(table, PROTEIN, "maximum")
+    hands.write("40")
+    hands.key(Qt.Key.Key_Return)
+    assert model.cell(PROTEIN, "minimum").data() == "21.0"
+    assert not model.refusals

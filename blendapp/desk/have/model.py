@@ -18,7 +18,7 @@ from blendapp.domain.names import fold
 from blendapp.domain.notation import notation
 from blendapp.domain.wording import _
 from blendapp.services import edits
-from blendapp.services.mill import record_name
+from blendapp.services.mill import Edit, record_name
 
 if TYPE_CHECKING:
     from blendapp.desk.work import Work
@@ -258,6 +258,19 @@ class HaveModel(Grid):
 
         many = self.work.do(lambda mill: edits.many(mill, what, [thunk(*cell) for cell in cells]))
         return {at: " ".join(problem.text for problem in problems) for at, problems in many.refused.items()}
+
+    def forgive_stored(self, edit: Edit) -> None:
+        """Forget the refused texts of every cell whose record an edit has changed."""
+        gone: set[tuple[int, str]] = set()
+        for change in edit.changes:
+            record = change.after or change.before
+            if change.kind == "quote":
+                gone |= {(record.ingredient_id, "price"), (record.ingredient_id, "quoted")}
+            elif change.kind == "value":
+                gone.add((record.ingredient_id, f"{NUTRIENT}{record.nutrient_id}"))
+        for owner, key in gone:
+            self.forgive(owner, key)
+        self.forgive_owners({change.id for change in edit.changes if change.kind == "ingredient"})
 
     def can_write(self, key: str) -> bool:
         """Whether cells of a column are typed into at all."""

@@ -74,6 +74,7 @@ class HavePane(QWidget):
         work, table = self.work, self.table
         work.opened.connect(self._opened)
         work.edited.connect(self._edited)
+        work.reversed.connect(self.model.forgive_all)
         work.chosen.connect(self._chosen)
         work.answered.connect(self._answered)
         table.resized.connect(self._fit_name)
@@ -133,6 +134,7 @@ class HavePane(QWidget):
         self.model.rebuild()
 
     def _edited(self, edit: Edit) -> None:
+        self.model.forgive_stored(edit)
         if edit.touches("nutrient"):
             self.model.take_decimals()
         if edit.touches("ingredient", "nutrient", "mill", "scale", "formula"):
@@ -151,6 +153,7 @@ class HavePane(QWidget):
                 self.table.setCurrentIndex(at)
 
     def _chosen(self) -> None:
+        self.model.refusals.clear()
         self._say()
         self.model.refresh()
 

@@ -78,6 +78,7 @@ class MeetPane(QWidget):
         work.opened.connect(self._chosen)
         work.chosen.connect(self._chosen)
         work.edited.connect(self._edited)
+        work.reversed.connect(self.model.forgive_all)
         work.answered.connect(self._answered)
         work.learned.connect(self._answered)
         table.grip.proposed.connect(self._propose)
@@ -107,6 +108,7 @@ class MeetPane(QWidget):
         self._say()
 
     def _edited(self, edit: Edit) -> None:
+        self.model.forgive_owners({change.id for change in edit.changes if change.kind == "limit"})
         if edit.touches("limit", "ingredient", "nutrient", "formula"):
             self._rebuild(keep_order=True)
 

@@ -65,6 +65,8 @@ class MillPane(QWidget):
         self.setFocusProxy(self.name)
         work.opened.connect(self.fill)
         work.edited.connect(self._edited)
+        for kind in self.tables:
+            work.reversed.connect(self.model(kind).forgive_all)
 
     def _side(self) -> QVBoxLayout:
         title = QLabel(_("The mill"))
@@ -127,6 +129,8 @@ class MillPane(QWidget):
         return model
 
     def _edited(self, edit: Edit) -> None:
+        for kind in self.tables:
+            self.model(kind).forgive_owners({change.id for change in edit.changes if change.kind == kind})
         if edit.touches("mill", *self.tables) or not edit.changes:
             self.fill()
 

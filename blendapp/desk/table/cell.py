@@ -19,6 +19,12 @@ AnyIndex = QModelIndex | QPersistentModelIndex
 _SELECTED = QStyle.StateFlag.State_Selected
 _LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
 _RIGHT = Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
+# The keys that end typing: a step to another row, or what Qt calls going to another column.
+_LEAVING: dict[int, int | QStyledItemDelegate.EndEditHint] = {
+    Qt.Key.Key_Return: 1, Qt.Key.Key_Enter: 1, Qt.Key.Key_Down: 1, Qt.Key.Key_Up: -1,
+    Qt.Key.Key_Tab: QStyledItemDelegate.EndEditHint.EditNextItem,
+    Qt.Key.Key_Backtab: QStyledItemDelegate.EndEditHint.EditPreviousItem,
+}
 _ELIDE = Qt.TextElideMode.ElideRight
 
 
@@ -177,16 +183,32 @@ class CellDelegate(QStyledItemDelegate):
         editor.setGeometry(rect)
 
     def eventFilter(self, editor: QObject, event: QEvent) -> bool:
-        # Enter goes one row down, as in a spreadsheet; Qt's own filter would only close the editor.
+        # Enter goes one row down, as in a spreadsheet; Qt's own filter would only close the editor. From a text that
+        # is refused no key goes on, or the next figure would land in the next record.
         if (
             event.type() == QEvent.Type.KeyPress
             and isinstance(event, QKeyEvent)
             and isinstance(editor, QLineEdit)
-            and event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter, Qt.Key.Key_Down, Qt.Key.Key_Up)
+            and event.key() in _LEAVING
         ):
-            up = event.key() == Qt.Key.Key_Up or bool(event.modifiers() & Qt.KeyboardModifier.ShiftModifier)
-            self.commitData.emit(editor)
-            self.closeEditor.emit(editor, QStyledItemDelegate.EndEditHint.NoHint)
-            self.table.step_row(-1 if up else 1)  # type: ignore[attr-defined]
+            way = QStyledItemDelegate.EndEditHint
+            step = _LEAVING[event.key()]
+            taken = self._commit(editor)
+            if isinstance(step, int):
+                self.closeEditor.emit(editor, way.NoHint)
+                up = step < 0 or bool(event.modifiers() & Qt.KeyboardModifier.ShiftModifier)
+                self.table.step_row((-1 if up else 1) if taken else 0)  # type: ignore[attr-defined]
+            elif taken:
+                self.closeEditor.emit(editor, step)
+            else:
+                self.closeEditor.emit(editor, way.NoHint)
+                self.table.step_row(0)  # type: ignore[attr-defined]
             return True
         return super().eventFilter(editor, event)
+
+    def _commit(self, editor: QLineEdit) -> bool:
+        """Hand on what was typed; returns whether it was taken."""
+        grid, index = self.table.grid, self.table.currentIndex()  # type: ignore[attr-defined]
+        cell = (grid.owner(index), grid.key(index)) if index.isValid() else None
+        self.commitData.emit(editor)
+        return cell not in grid.refusals

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Collection, Sequence
 from dataclasses import dataclass, replace
 from typing import Any
 
@@ -193,7 +193,8 @@ class Grid(QAbstractTableModel):
         owner, key = self.owner(index), self.key(index)
         look = self.look(index.row(), index.column())
         text = str(value)
-        if text.strip() == look.typed.strip():
+        # A refused text is tried again: what stood against it may be gone.
+        if text.strip() == look.typed.strip() and (owner, key) not in self.refusals:
             return True
         try:
             self.write(owner, key, text)
@@ -217,6 +218,18 @@ class Grid(QAbstractTableModel):
             return False
         self.refresh([owner])
         return True
+
+
+    def forgive_all(self) -> None:
+        """Forget every refused text."""
+        if self.refusals:
+            self.refusals.clear()
+            self.refresh()
+
+    def forgive_owners(self, owners: Collection[int]) -> None:
+        """Forget the refused texts of records that are no longer as they were when the texts were typed."""
+        for owner, key in [one for one in self.refusals if one[0] in owners]:
+            self.forgive(owner, key)
 
 
 def sentence_of(fault: Exception) -> str:
