@@ -130,3 +130,11 @@ def test_a_repair_is_rounded_to_the_side_that_still_helps() -> None:
     assert repaired(Repair(0, Side.MINIMUM, 1.1, 0.913456789))[0] == pytest.approx(0.9134, abs=1e-9)
     assert repaired(Repair(0, Side.MAXIMUM, 1.1, 1.913456789))[0] == pytest.approx(1.914, abs=1e-9)
     assert repaired(Repair(0, Side.MAXIMUM, 18.0, 18.4))[0] == 18.4
+
+
+def test_limits_that_clash_stand_first_in_the_list(bench: Bench, qtbot: QtBot) -> None:
+    with qtbot.waitSignal(bench.work.learned, timeout=20000):
+        bench.work.do(lambda mill: edits.change(mill, mill.library.limit(CALCIUM), minimum=39.0, maximum=None))
+    assert bench.meet.model.owners[0] == CALCIUM
+    bench.work.undo()
+    assert bench.meet.model.owners[0] == PROTEIN

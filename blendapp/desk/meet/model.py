@@ -53,7 +53,11 @@ class MeetModel(Grid):
             at = {owner: place for place, owner in enumerate(self.owners)}
             order.sort(key=lambda owner: at.get(owner, len(at)))
         elif self.by_cost:
-            order.sort(key=lambda owner: -words.cost_rank(self._found[owner]) if owner in self._found else 0.0)
+            # Limits that clash stand first, as there is nothing that any of them costs.
+            order.sort(key=lambda owner: (
+                owner not in self._conflicting,
+                -words.cost_rank(self._found[owner]) if owner in self._found else 0.0,
+            ))
         self._axes = {owner: axis for owner, axis in self._axes.items() if owner in set(order)}
         self.set_rows(order)
 
