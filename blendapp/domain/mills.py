@@ -91,10 +91,12 @@ class Asked(StrEnum):
 
     With each, what it is about and what may be answered:
     INGREDIENT: a name; its ingredient, or LEAVE_OUT. UNIT: the words in doubt, "" where none stand; words of one unit.
-    RATE: a currency code or sign; the rate and its day. CENTS: ""; TAKE. PRICE: the headings of several columns of
-    prices; the heading that holds, or ADD. DECIMAL: a heading; "." or ",". DATES: a heading; DAY_FIRST or MONTH_FIRST.
-    HIDDEN_COLUMN: a heading; TAKE. USUAL_CHANGE, of every source: a class of ingredients, "" for all others; by how
-    many percent a price may change without a question. Of a row: TAKE or LEAVE_OUT.
+    RATE: a currency code or sign; the rate and its day. CENTS: ""; TAKE.
+    PRICE: the headings of several columns of prices; the heading that holds, or ADD. Or what comes on top of a price;
+    TAKE.
+    DECIMAL: a heading; "." or ",". DATES: a heading; DAY_FIRST or MONTH_FIRST. HIDDEN_COLUMN: a heading; TAKE.
+    USUAL_CHANGE, of every source: a class of ingredients, "" for all others; by how many percent a price may change
+    without a question. Of a row: TAKE or LEAVE_OUT.
     """
 
     INGREDIENT = "ingredient"

@@ -22,6 +22,7 @@ class Role(Enum):
     VALID_TO = "valid to"
     PACK = "weight of a bag"
     TERMS = "terms"
+    ADJUSTMENT = "discount or surcharge"
     NOTE = "note"
     OTHER = "other"
 
@@ -66,6 +67,7 @@ _PACK_HEADINGS = frozenset({
     "bag weight", "pack size", "pack", "packing", "bag size", "pack weight", "bag", "packaging", "bag kg", "kg bag",
 })
 _TERMS_HEADINGS = frozenset({"terms", "basis", "price basis", "delivery terms", "terms of delivery", "incoterm"})
+_ADJUSTMENT_WORDS = frozenset({"discount", "discounts", "rebate", "surcharge", "surcharges", "levy"})
 _QUANTITY_WORDS = frozenset({
     "stock", "quantity", "qty", "volume", "tonnage", "weight", "moisture", "protein", "available", "lot",
     "minimum",
@@ -132,6 +134,8 @@ def role_of(heading: str) -> tuple[Role, Words]:
             return role, words
     if tokens & _OLD_WORDS and not tokens & {"new", "current"}:
         return Role.OTHER, words
+    if tokens & _ADJUSTMENT_WORDS and not tokens & _PRICE_WORDS:
+        return Role.ADJUSTMENT, words
     names_money = words.money.currencies is not None or words.money.cents
     if tokens & _NOTE_WORDS:
         return Role.NOTE, words

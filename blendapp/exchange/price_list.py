@@ -164,7 +164,8 @@ def _segment(
             dates[index] = found or _answered_order(answers, table.headings[index])
     notes = read_notes(raw, range(first, last))
     notes = Notes(
-        notes.units or titles.units, notes.valid_from or titles.valid_from, notes.valid_to or titles.valid_to
+        notes.units or titles.units, notes.valid_from or titles.valid_from, notes.valid_to or titles.valid_to,
+        notes.without_freight or titles.without_freight,
     )
     return Segment(table, first, last, signs, dates, notes)
 

@@ -19,6 +19,7 @@ _OF_SOMETHING_ELSE = re.compile(
     r"deliver\w*|shipments?|deposit|demurrage)\b",
     re.IGNORECASE,
 )
+_FREIGHT = re.compile(r"\b(?:freight|haulage|carriage|delivery|transport)\b", re.IGNORECASE)
 _DATE = (
     r"([0-9]{4}-[0-9]{1,2}-[0-9]{1,2}|[0-9]{1,2}[./-][0-9]{1,2}[./-](?:[0-9]{4}|[0-9]{2})|"
     r"[0-9]{1,2}(?:st|nd|rd|th)?\s+[a-z]{3,9}\.?,?\s+[0-9]{4}|[a-z]{3,9}\.?\s+[0-9]{1,2}(?:st|nd|rd|th)?,?\s+[0-9]{4})"
@@ -29,23 +30,28 @@ _TO = re.compile(r"\b(?:until|till|to|expir\w+|through)[ :]+(?:on\s+)?" + _DATE,
 
 @dataclass(frozen=True)
 class Notes:
-    """units: what notes say of all prices, each once. valid_from, valid_to: the texts of their dates, "" if none."""
+    """units: what notes say of all prices, each once. valid_from, valid_to: the texts of their dates, "" if none.
+
+    without_freight: a note about freight, to be looked at with each price.
+    """
 
     units: tuple[Words, ...] = ()
     valid_from: str = ""
     valid_to: str = ""
+    without_freight: str = ""
 
 
 def read_notes(table: RawTable, rows: Iterable[int]) -> Notes:
     """The notes among rows: those with one filled cell, a text that speaks of prices."""
     units: list[Words] = []
-    first = last = ""
+    first = last = freight = ""
     for row in rows:
         cells = [value for value in table.rows[row] if kind_of(value) is not CellKind.BLANK]
         if len(cells) != 1 or not isinstance(cells[0], str):
             continue
         text = " ".join(cells[0].split())
         if _OF_SOMETHING_ELSE.search(text):
+            freight = freight or (text if _FREIGHT.search(text) else "")
             continue
         speaks = _SPEAKS_OF_PRICES.search(text)
         if speaks:
@@ -55,7 +61,7 @@ def read_notes(table: RawTable, rows: Iterable[int]) -> Notes:
         if speaks or re.search(r"\bvalid\b|\beffective\b", text, re.IGNORECASE):
             first = first or _found(_FROM, text)
             last = last or _found(_TO, text)
-    return Notes(tuple(dict.fromkeys(units)), first, last)
+    return Notes(tuple(dict.fromkeys(units)), first, last, freight)
 
 
 def _found(pattern: re.Pattern[str], text: str) -> str:

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import datetime
-import re
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
@@ -20,6 +19,7 @@ from blendapp.exchange.price_choice import Priced, choose_price
 from blendapp.exchange.price_columns import PriceColumn, Role, Table
 from blendapp.exchange.price_names import Match, NameFinder
 from blendapp.exchange.price_numbers import DateOrder, DecimalSign, date_in_column, date_readings, decide_date_order
+from blendapp.exchange.price_terms import WITHOUT_FREIGHT, read_terms
 from blendapp.exchange.price_units import AmbiguousPriceUnit, UnknownPriceUnit, bag_with_weight, read_price_unit
 from blendapp.exchange.price_units_read import TonnePrice, UnitReading, foreign_money, per_tonne, read_unit
 from blendapp.exchange.price_words import NO_WORDS, Money, Words, read_unit_words, split_money
@@ -138,6 +138,7 @@ class _Reading:
             text = _("The price {price} is 0 or below; type it for the ingredient if it is meant.")
             self._confirm(Asked.SIGN, text.format(price=PLAIN.write_exact(value)))
         terms = self._terms(choice.parts, ingredient)
+        self._ask_about_what_is_added(choice.parts)
         dry = None
         if found is not None and any(part[2] for part in parts):
             found, dry = self._of_dry_matter(found, ingredient)
@@ -306,6 +307,27 @@ class _Reading:
             self._confirm(Asked.TERMS, text.format(new=_(str(found)), old=_(str(quote.terms))))
         return found
 
+    def _ask_about_what_is_added(self, parts: tuple[Priced, ...]) -> None:
+        """A price that is said to be without freight, or a discount or surcharge beside it, is not the whole price."""
+        texts = [self._text(self.table.first(Role.TERMS)), self.segment.notes.without_freight]
+        if len(parts) == 1:
+            texts.append(parts[0][0].heading)
+        found = next((text for text in texts if WITHOUT_FREIGHT.search(text)), "") if len(parts) == 1 else ""
+        if found:
+            said = _("“{text}”: freight comes on top; give the price with it, or say that this one is to be taken.")
+            self._take_as_it_is(found, said.format(text=found))
+        index = self.table.first(Role.ADJUSTMENT)
+        value = None if index is None else self.raw.cell(self.row, index)
+        if index is not None and kind_of(value) is not CellKind.BLANK and value != 0:
+            heading = self.table.headings[index]
+            said = _("“{name}” changes the price; give the price that holds, or say that this one is to be taken.")
+            self._take_as_it_is(heading, said.format(name=heading))
+
+    def _take_as_it_is(self, about: str, text: str) -> None:
+        answer = self.answers.find(Asked.PRICE, about)
+        if answer is None or answer.answer != TAKE:
+            self._ask(Asked.PRICE, about, text, (TAKE,))
+
     def _days(self) -> tuple[datetime.date | None, datetime.date | None]:
         first = self._date(Role.VALID_FROM, self.segment.notes.valid_from)
         last = self._date(Role.VALID_TO, self.segment.notes.valid_to)
@@ -345,16 +367,6 @@ class _Reading:
             else:
                 self.questions.append(said)
         return found
-
-
-def read_terms(text: str) -> Terms | None:
-    """Ex works or delivered, as words say it; None where they say neither, or both."""
-    plain = " ".join(re.sub(r"[^a-z]+", " ", text.casefold()).split())
-    delivered = re.search(r"\b(?:delivered|cif|dap|ddp|del)\b", plain) is not None
-    ex_works = re.search(r"\b(?:ex|exw|fob|fca|collected)\b", plain) is not None
-    if delivered == ex_works:
-        return None
-    return Terms.DELIVERED if delivered else Terms.EX_WORKS
 
 
 def _added(parts: list[tuple[TonnePrice | None, UnitReading, bool]]) -> TonnePrice | None:

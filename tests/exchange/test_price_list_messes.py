@@ -3,14 +3,12 @@
 from __future__ import annotations
 
 import datetime
-from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
 import openpyxl
 import pytest
 from openpyxl.styles import Font
-from openpyxl.utils.datetime import CALENDAR_MAC_1904, CALENDAR_WINDOWS_1900
 
 from blendapp.domain.library import Library
 from blendapp.domain.mills import Asked
@@ -18,31 +16,12 @@ from blendapp.domain.price_rows import ADD, LEAVE_OUT, TAKE, Answer, Fate, Price
 from blendapp.domain.quotes import Quote, Terms
 from blendapp.domain.records import added
 from blendapp.exchange import read_price_list
+from tests.exchange.conftest import Read
 from tests.exchange.made_lists import Rows, write_ods, write_text, write_xls, write_xlsx
-from tests.mills import TODAY, Maker
+from tests.mills import TODAY
 
 A, Q, R, IGNORED = Fate.ACCEPTED, Fate.QUESTION, Fate.REFUSED, Fate.IGNORED
 HEAD = ["Ingredient", "Price", "Unit"]
-Read = Callable[..., PriceListReading]
-
-
-@pytest.fixture
-def library() -> Library:
-    maker = Maker()
-    for name, price, dry in (
-        ("Maize", 200.0, 88.0), ("Wheat", 210.0, 87.0), ("Soybean meal", 400.0, 89.0), ("Limestone", None, None),
-        ("Molasses", None, 75.0),
-    ):
-        maker.ingredient(name, price, dry_matter_percent=dry)
-    return maker.library
-
-
-@pytest.fixture
-def read(tmp_path: Path, library: Library) -> Read:
-    def reader(rows: Rows, *answers: Answer, write: Any = write_xlsx, **more: Any) -> PriceListReading:
-        return read_price_list(write(tmp_path / "Larkwater", rows), library, TODAY, answers=answers, **more)
-
-    return reader
 
 
 def fates(reading: PriceListReading) -> list[Fate]:
@@ -228,6 +207,25 @@ def test_freight_in_another_unit_is_added_per_tonne(read: Read) -> None:
     assert (row.per, row.price_per_t) == ("t", pytest.approx(4.8 * 39.36826 + 12, rel=1e-6))
 
 
+@pytest.mark.parametrize("rows", [
+    [["Product", "Price $/t + freight"], ["Maize", 205]],
+    [["Product", "Price $/t excl. freight"], ["Maize", 205]],
+    [["Prices plus haulage of $12/t"], HEAD, ["Maize", 205, "t"]],
+    [HEAD, ["Maize", 205, "t"], ["* carriage is extra"]],
+    [[*HEAD, "Terms"], ["Maize", 205, "t", "delivery not included"]],
+    [[*HEAD, "Discount"], ["Maize", 205, "t", 5]],
+])
+def test_what_comes_on_top_of_a_price_is_asked_once_and_remembered(read: Read, rows: Rows) -> None:
+    (question,) = read(rows).questions
+    assert (question.asked, question.choices) == (Asked.PRICE, (TAKE,))
+    assert prices(read(rows, Answer(Asked.PRICE, question.about, TAKE))) == [205]
+
+
+@pytest.mark.parametrize("heading", ["Price $/t incl. freight", "Price $/t, carriage paid"])
+def test_a_price_with_its_freight_is_delivered(read: Read, heading: str) -> None:
+    assert read([["Product", heading], ["Maize", 205]]).accepted[0].terms is Terms.DELIVERED
+
+
 @pytest.mark.parametrize(
     ("heading", "terms"),
     [("Price ex works", Terms.EX_WORKS), ("Delivered price", Terms.DELIVERED), ("Price FOB", Terms.EX_WORKS),
@@ -303,60 +301,6 @@ def test_a_file_that_does_not_tell_what_is_hidden_says_so(read: Read, write: Any
     assert any("hidden" in note for note in reading.notes)
 
 
-# Days: headings beyond those of every list, the cells under them, the fate and both days.
-MARCH_5, MARCH_9 = datetime.date(2026, 3, 5), datetime.date(2026, 3, 9)
-DAYS: dict[str, tuple[list[Any], list[Any], Fate, datetime.date | None, datetime.date | None]] = {
-    "a day to come": (["Valid from"], ["2026-03-09"], A, MARCH_9, None),
-    "a day in words": (["Valid from"], ["9th March 2026"], A, MARCH_9, None),
-    "a date cell": (["Valid from"], [MARCH_9], A, MARCH_9, None),
-    "until a day to come": (["Valid until"], ["9 March 2026"], A, None, MARCH_9),
-    "from and to": (["From", "To"], [MARCH_9, datetime.date(2026, 4, 9)], A, MARCH_9, datetime.date(2026, 4, 9)),
-    "expired": (["Expiry"], ["2026-03-01"], Q, None, datetime.date(2026, 3, 1)),
-    "ends before it begins": (["From", "To"], [MARCH_9, MARCH_5], Q, MARCH_9, MARCH_5),
-    "two readings": (["Valid from"], ["9/3/2026"], Q, None, None),
-    "no date": (["Valid from"], ["soon"], Q, None, None),
-    "a number": (["Valid from"], [12], Q, None, None),
-}
-
-
-@pytest.mark.parametrize("mess", DAYS)
-def test_the_days_of_a_price_are_read_or_asked(read: Read, mess: str) -> None:
-    more, cells, fate, first, last = DAYS[mess]
-    row = read([HEAD + more, ["Maize", 205, "t", *cells]]).rows[1]
-    assert (row.fate, row.valid_from, row.valid_to) == (fate, first, last)
-
-
-@pytest.mark.parametrize(
-    ("note", "first", "last"),
-    [("Prices valid from 9 March 2026", MARCH_9, None), ("Valid until 2026-03-09", None, MARCH_9),
-     ("Offer as of March 9, 2026, expires 20.03.2026", MARCH_9, datetime.date(2026, 3, 20))],
-)
-def test_the_days_may_stand_in_a_note(
-    read: Read, note: str, first: datetime.date | None, last: datetime.date | None
-) -> None:
-    (row,) = read([[note], HEAD, ["Maize", 205, "t"]]).accepted
-    assert (row.valid_from, row.valid_to) == (first, last)
-
-
-def test_the_order_of_day_and_month_may_be_answered(read: Read) -> None:
-    rows: Rows = [[*HEAD, "Valid from"], ["Maize", 205, "t", "9/3/2026"]]
-    (question,) = read(rows).questions
-    assert (question.asked, question.choices) == (Asked.DATES, ("day first", "month first"))
-    assert read(rows, Answer(Asked.DATES, "Valid from", "day first")).accepted[0].valid_from == MARCH_9
-    month_first = read(rows, Answer(Asked.DATES, "Valid from", "month first"))
-    assert month_first.accepted[0].valid_from == datetime.date(2026, 9, 3)
-
-
-@pytest.mark.parametrize("epoch", [CALENDAR_WINDOWS_1900, CALENDAR_MAC_1904])
-def test_date_cells_of_both_epochs_are_the_same_day(tmp_path: Path, library: Library, epoch: datetime.datetime) -> None:
-    book = openpyxl.Workbook()
-    book.epoch = epoch
-    for row in ([*HEAD, "Valid from"], ["Maize", 205, "t", MARCH_9]):
-        book.worksheets[0].append(row)
-    book.save(tmp_path / "list.xlsx")
-    assert read_price_list(tmp_path / "list.xlsx", library, TODAY).accepted[0].valid_from == MARCH_9
-
-
 def test_a_decimal_sign_that_the_column_does_not_tell_may_be_answered(read: Read) -> None:
     rows: Rows = [HEAD, ["Limestone", "1.234", "t"], ["Molasses", "2.346", "t"]]
     (question,) = read(rows).questions
@@ -380,7 +324,7 @@ def test_the_one_of_two_that_was_answered_to_hold_leaves_the_other_out(read: Rea
 
 
 def test_prices_of_one_ingredient_from_different_days_to_come_are_no_twins(read: Read) -> None:
-    days = [TODAY, MARCH_9, datetime.date(2026, 4, 9)]
+    days = [TODAY, datetime.date(2026, 3, 9), datetime.date(2026, 4, 9)]
     reading = read([[*HEAD, "Valid from"], *(["Maize", 205 + n, "t", day] for n, day in enumerate(days))])
     assert [row.valid_from for row in reading.accepted] == days
 
