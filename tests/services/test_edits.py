@@ -79,7 +79,7 @@ CASES: dict[str, list[Callable[[Mill], Edit]]] = {
     "remove_limit": [lambda m: edits.remove_limit(m, 2)],
     "set_bound": [lambda m: edits.set_bound(m, 1, "maximum", 19.0), lambda m: edits.set_bound(m, 2, "maximum", None)],
     "set_bounds": [
-        lambda m: edits.set_bounds(m, "Repair", [(1, "minimum", 15.0), (1, "maximum", 30.0), (2, "maximum", None)]),
+        lambda m: edits.set_bounds(m, "Repair", [(1, "minimum", 15.0), (1, "maximum", 30.0), (3, "minimum", None)]),
     ],
     "admit": [lambda m: edits.admit(m, 2, GRIT)],
     "set_admits": [lambda m: edits.set_admits(m, 1, Admits.LISTED)],
