@@ -22,7 +22,7 @@ from blendapp.exchange.price_numbers import DateOrder, DecimalSign, date_in_colu
 from blendapp.exchange.price_terms import WITHOUT_FREIGHT, read_terms
 from blendapp.exchange.price_units import AmbiguousPriceUnit, UnknownPriceUnit, bag_with_weight, read_price_unit
 from blendapp.exchange.price_units_read import TonnePrice, UnitReading, foreign_money, per_tonne, read_unit
-from blendapp.exchange.price_words import NO_WORDS, Money, Words, read_unit_words, split_money
+from blendapp.exchange.price_words import NO_WORDS, Money, Words, read_unit_words, split_dry, split_money
 from blendapp.exchange.tables import CellKind, RawTable, column_letters, kind_of
 
 if TYPE_CHECKING:
@@ -207,7 +207,9 @@ class _Reading:
         words = read_unit_words(bag_with_weight(beside, pack)) if beside else NO_WORDS
         unit = self._unit(column, cell, words)
         value = self._own_money(column, cell, words)
-        dry = cell.dry or column.words.dry or words.dry or any(note.dry for note in self.segment.notes.units)
+        basis, _rest = split_dry(self._text(self.table.first(Role.TERMS)))
+        dry = cell.dry or column.words.dry or words.dry or basis
+        dry = dry or any(note.dry for note in self.segment.notes.units)
         if value is None or unit.unit is None:
             return None, unit, dry
         found = per_tonne(value, unit.unit, ingredient)

@@ -257,6 +257,19 @@ def test_a_price_of_dry_matter_is_converted_and_shown_both_ways(
     assert "202.40" in row.reason
 
 
+@pytest.mark.parametrize("basis", ["DM", "dry matter", "Dry basis"])
+def test_dry_matter_may_be_said_in_a_column_of_its_own(read: Read, basis: str) -> None:
+    (row,) = read([[*HEAD, "Basis"], ["Maize", 230, "t", basis]]).accepted
+    assert (row.price_per_t, row.dry_matter_price_per_t) == (pytest.approx(202.4), pytest.approx(230))
+    (row,) = read([[*HEAD, "Basis"], ["Maize", 205, "t", "as fed"]]).accepted
+    assert (row.price_per_t, row.dry_matter_price_per_t) == (205, None)
+
+
+def test_dry_matter_in_a_note_counts_for_every_price(read: Read) -> None:
+    (row,) = read([["All prices in USD/t of dry matter"], HEAD[:2], ["Maize", 230]]).accepted
+    assert row.price_per_t == pytest.approx(202.4)
+
+
 def test_a_price_of_dry_matter_without_a_dry_matter_is_a_question(read: Read) -> None:
     row = read([["Ingredient", "Price USD/t DM"], ["Limestone", 30]]).rows[1]
     assert (row.fate, row.price_per_t) == (Q, None)
