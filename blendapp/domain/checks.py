@@ -151,22 +151,26 @@ def _spread(record: Scale | Mixer, library: Library) -> list[Finding]:
 
 
 def _limit(record: Limit, library: Library) -> list[Finding]:
+    return limit_faults(record, library, library.formula(record.formula_id).amounts)
+
+
+def limit_faults(record: Limit, library: Library, amounts: Amounts) -> list[Finding]:
+    """The faults of a limit in a formula of such amounts, whether or not there is a formula of its identifier."""
     found = _subject_faults(record)
     if found:
         return found
-    formula = library.formula(record.formula_id)
     if record.minimum is not None and record.maximum is not None and record.minimum > record.maximum:
         text = _("The minimum {minimum} is above the maximum {maximum}; correct one of them.")
         found.append(("minimum", text.format(minimum=f"{record.minimum:g}", maximum=f"{record.maximum:g}")))
     try:
-        limit_units.factor(library, record, formula.amounts)
+        limit_units.factor(library, record, amounts)
     except ValueError as error:
         found.append(("unit", str(error)))
         return found
     if record.kind is LimitKind.NUTRIENT:
-        found += _nutrient_limit(record, library, formula.amounts)
+        found += _nutrient_limit(record, library, amounts)
     elif record.kind in (LimitKind.INGREDIENT, LimitKind.GROUP, LimitKind.PRACTICAL):
-        found += _inclusion_limit(record, library, formula.amounts)
+        found += _inclusion_limit(record, library, amounts)
     elif record.kind is LimitKind.RATIO:
         found += _ratio_limit(record)
     else:

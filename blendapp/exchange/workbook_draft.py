@@ -70,7 +70,11 @@ class Draft:
     # -- names
 
     def claim(self, kind: str, row: Row, heading: str) -> str | None:
-        """The name in a row that defines a record; None, with the fault said, if it has none or it was taken above."""
+        """The name in a row that defines a record; None, with the fault said, if it has none or it was taken above.
+
+        A row without a name of its own is read to its end all the same, so that its other faults are said with it:
+        as a record with identifier 0 that is checked and never put.
+        """
         name = row.name(heading)
         if not name:
             if not row.has(heading):
@@ -116,11 +120,15 @@ class Draft:
     def is_faultless(self, record: Record, row: Row, headings: Mapping[str, str] | None = None) -> bool:
         """Says every fault of a record at its cell; whether there is none.
 
+        Of a cell that was faulted in the reading nothing more is said, since it was not read as it stands.
         headings: where a field stands under another heading than that of the table of fields.
         """
         found = checks.faults(record, self.library)
+        told = row.told
         for name, text in found:
-            row.fault(_heading(KIND_OF[type(record)], name, headings), text)
+            heading = _heading(KIND_OF[type(record)], name, headings)
+            if heading not in told:
+                row.fault(heading, text)
         return not found
 
     def say_oddities(self, record: Record, row: Row, headings: Mapping[str, str] | None = None) -> None:

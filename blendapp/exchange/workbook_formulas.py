@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import replace
 from typing import Any
 
+from blendapp.domain import checks
 from blendapp.domain.formulas import (
     DRY_MATTER_SUBJECT,
     MOISTURE_SUBJECT,
@@ -19,10 +20,10 @@ from blendapp.domain.formulas import (
     read_basis,
 )
 from blendapp.domain.ingredients import Ingredient
-from blendapp.domain.library import split_names
+from blendapp.domain.library import Library, split_names
 from blendapp.domain.names import fold
 from blendapp.domain.nutrients import DRY_MATTER, MOISTURE
-from blendapp.domain.units import BLEND_INCLUSION, PER_DAY, RATION_INCLUSION, SHARE_OF_DRY_MATTER
+from blendapp.domain.units import BLEND_INCLUSION, CONCENTRATION, PER_DAY, RATION_INCLUSION, SHARE_OF_DRY_MATTER
 from blendapp.domain.wording import _
 from blendapp.exchange.suggestions import did_you_mean
 from blendapp.exchange.workbook_draft import Draft
@@ -38,10 +39,8 @@ def read_formulas(draft: Draft, sheet: Sheet) -> list[tuple[Row, Formula]]:
     found: list[tuple[Row, Formula]] = []
     for row in sheet.rows():
         name = draft.claim("formula", row, "Formula")
-        if name is None:
-            continue
-        before: Formula | None = draft.library.named("formula", name)
-        base = before or Formula(draft.new_id("formula"), name)
+        before: Formula | None = draft.library.named("formula", name) if name else None
+        base = before or Formula(draft.new_id("formula") if name else 0, name or "")
         batch_kg = row.number_in("Batch kg")
         formula = replace(
             base,
@@ -52,8 +51,10 @@ def read_formulas(draft: Draft, sheet: Sheet) -> list[tuple[Row, Formula]]:
             admits=row.choice("Admits", Admits) or base.admits,
             note=row.text("Note") or base.note,
         )
+        draft.is_faultless(formula, row)
+        if name is None:
+            continue
         draft.put(before, formula)
-        draft.check(formula, row)
         if formula.animal is None and not row.has("Animal"):
             text = _("The formula “{name}” names no animal; cautions for one kind of animal will not be checked.")
             row.oddity("Animal", text.format(name=name))
@@ -64,9 +65,10 @@ def read_formulas(draft: Draft, sheet: Sheet) -> list[tuple[Row, Formula]]:
 def settle_admits(draft: Draft, formulas: list[tuple[Row, Formula]]) -> None:
     """A blank Admits is `listed` where the formula has an ingredient row, else `all`; says which applied."""
     for row, read in formulas:
-        if row.has("Admits"):
-            continue
         formula = draft.library.formula(read.id)
+        if row.has("Admits"):
+            draft.say_oddities(formula, row)
+            continue
         admits = Admits.LISTED if draft.library.listed_ids(formula.id) else Admits.ALL
         if admits is Admits.LISTED:
             text = _("Admits is blank; “{name}” has ingredient rows, so listed applied.")
@@ -128,16 +130,60 @@ def _limit(draft: Draft, row: Row, formula: Formula | None) -> Limit | None:
     unreadable = any(
         row.has(heading) and bound is None for heading, bound in (("Minimum", minimum), ("Maximum", maximum))
     )
-    if kind is None or not row.has("Name"):
+    note = row.text("Note")
+    if kind is None:
+        some_kind = [known for known in LimitKind if known is not LimitKind.COUNT]
+        _say_rest(row, formula, some_kind, (minimum, maximum), basis)
         return None
-    subject, per = _subjects(draft, row, kind)
-    if not _belongs(row, kind, basis) or basis is None or subject is None or unreadable or formula is None:
-        return None
+    subject, per = _subjects(draft, row, kind) if row.has("Name") else (None, None)
+    belongs = _belongs(row, kind, basis)
     if kind is LimitKind.RATIO and per is None and row.has("Per"):
+        subject = None
+    if formula is None or subject is None or not belongs or basis is None or unreadable:
+        sides = None if subject is None else (subject, per)
+        _say_rest(row, formula, [kind], (minimum, maximum), basis, sides, draft.library)
         return None
-    return Limit(
-        0, formula.id, kind, subject, per, minimum, maximum, _unit(row), basis[0], basis[1], row.text("Note")
-    )
+    return Limit(0, formula.id, kind, subject, per, minimum, maximum, _unit(row), basis[0], basis[1], note)
+
+
+def _say_rest(
+    row: Row,
+    formula: Formula | None,
+    kinds: list[LimitKind],
+    bounds: tuple[float | None, float | None],
+    basis: tuple[LimitBasis, float | None] | None,
+    sides: tuple[Subject, Subject | None] | None = None,
+    library: Library | None = None,
+) -> None:
+    """Says what else is wrong with a row of which a part could not be read: what is wrong whatever that part is."""
+    unit = _unit(row)
+    bases = [basis] if basis else [(LimitBasis.AS_FED, None), (LimitBasis.PER_DAY, None)]
+    readings = [
+        Limit(0, 0, kind, subject, per, *bounds, unit, *one)
+        for kind in kinds for subject, per in ([sides] if sides else _STAND_INS[kind]) for one in bases
+    ]
+    amounts = [formula.amounts] if formula else list(Amounts)
+    found = [dict(reversed(checks.limit_faults(limit, library or Library(), a))) for limit in readings for a in amounts]
+    told = set(row.told)
+    for name, heading in _REST:
+        if heading in told or not all(name in findings for findings in found):
+            continue
+        # What a unit must measure is not known before the name is.
+        if name != "unit" or sides or not {LimitKind.NUTRIENT, LimitKind.RATIO} & set(kinds) or not _is_a_unit(unit):
+            row.fault(heading, found[0][name])
+
+
+_REST = (("minimum", "Minimum"), ("maximum", "Maximum"), ("unit", "Unit"), ("basis", "Basis"))
+_SOMETHING = Subject.ingredients(0)
+_STAND_INS: dict[LimitKind, list[tuple[Subject, Subject | None]]] = {
+    **{kind: [(_SOMETHING, None)] for kind in LimitKind},
+    LimitKind.NUTRIENT: [(DRY_MATTER_SUBJECT, None)],
+    LimitKind.RATIO: [(DRY_MATTER_SUBJECT, DRY_MATTER_SUBJECT), (_SOMETHING, _SOMETHING)],
+}
+
+
+def _is_a_unit(text: str) -> bool:
+    return text in CONCENTRATION or text in _LIMIT_UNITS.values() or "/" in text
 
 
 def _basis(row: Row) -> tuple[LimitBasis, float | None] | None:

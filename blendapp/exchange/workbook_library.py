@@ -31,6 +31,9 @@ def read_mill(draft: Draft, sheet: Sheet) -> None:
         elif item in seen:
             text = _("“{name}” stands in row {first} and again in row {second}; rename or delete one of them.")
             row.fault("Item", text.format(name=item, first=seen[item].number, second=row.number))
+            for field_name, sentence in checks.faults(_with_item(MillInfo(), field, row), draft.library):
+                if field_name == field:
+                    row.fault("Value", sentence)
         else:
             seen[item] = row
             found = _with_item(found, field, row)
@@ -65,16 +68,12 @@ def _with_item(mill: MillInfo, field: str, row: Row) -> MillInfo:
 def read_scales(draft: Draft, sheet: Sheet) -> None:
     for row in sheet.rows():
         name = draft.claim("scale", row, "Scale")
-        if name is None:
-            continue
-        before: Scale | None = draft.library.named("scale", name)
+        before: Scale | None = draft.library.named("scale", name) if name else None
         step = row.number_in("Step kg")
-        if step is None and before is None:
-            if not row.has("Step kg"):
-                row.fault("Step kg", _("A scale needs its step in kg."))
-            draft.refuse("scale", name)
-            continue
-        base = before or Scale(draft.new_id("scale"), name, step or 0.0)
+        refused = step is None and before is None
+        if refused and not row.has("Step kg"):
+            row.fault("Step kg", _("A scale needs its step in kg."))
+        base = before or Scale(draft.new_id("scale") if name else 0, name or "", 1.0)
         hand_add = row.yes("Hand add")
         scale = replace(
             base,
@@ -84,23 +83,25 @@ def read_scales(draft: Draft, sheet: Sheet) -> None:
             tolerance_percent=_number(row, "Tolerance %", base.tolerance_percent),
             hand_add=base.hand_add if hand_add is None else hand_add,
         )
-        draft.put(before, scale)
+        if refused and name:
+            draft.refuse("scale", name)
+        elif name:
+            draft.put(before, scale)
         draft.check(scale, row)
 
 
 def read_mixers(draft: Draft, sheet: Sheet) -> None:
     for row in sheet.rows():
         name = draft.claim("mixer", row, "Mixer")
-        if name is None:
-            continue
-        before: Mixer | None = draft.library.named("mixer", name)
-        base = before or Mixer(draft.new_id("mixer"), name)
+        before: Mixer | None = draft.library.named("mixer", name) if name else None
+        base = before or Mixer(draft.new_id("mixer") if name else 0, name or "")
         mixer = replace(
             base,
             least_kg=_number(row, "Least kg", base.least_kg),
             greatest_kg=_number(row, "Greatest kg", base.greatest_kg),
         )
-        draft.put(before, mixer)
+        if name:
+            draft.put(before, mixer)
         draft.check(mixer, row)
 
 
@@ -108,10 +109,8 @@ def read_nutrients(draft: Draft, sheet: Sheet) -> None:
     keys = {fold(key): key for key in KEYS}
     for row in sheet.rows():
         name = draft.claim("nutrient", row, "Nutrient")
-        if name is None:
-            continue
-        before: Nutrient | None = draft.library.named("nutrient", name)
-        base = before or Nutrient(draft.new_id("nutrient"), name, "", False)
+        before: Nutrient | None = draft.library.named("nutrient", name) if name else None
+        base = before or Nutrient(draft.new_id("nutrient") if name else 0, name or "", "", False)
         unit = row.name("Unit")
         key = row.name("Key")
         never_negative = row.yes("Never negative")
@@ -125,11 +124,11 @@ def read_nutrients(draft: Draft, sheet: Sheet) -> None:
         if unit and before is not None and not _same_family(before.unit, nutrient.unit):
             text = _("“{name}” is kept in {own} in the mill; {unit} measures something else, use a unit of its kind.")
             row.fault("Unit", text.format(name=name, own=before.unit or "/kg", unit=unit))
-            continue
-        if not draft.check(nutrient, row):
-            draft.refuse("nutrient", name)
-            continue
-        draft.put(before, nutrient)
+            draft.is_faultless(nutrient, row)
+        elif not draft.check(nutrient, row):
+            draft.refuse("nutrient", name or "")
+        elif name:
+            draft.put(before, nutrient)
 
 
 def _same_family(unit: str, other: str) -> bool:
@@ -152,15 +151,16 @@ def known_unit(text: str) -> str:
 
 
 def read_ingredients(draft: Draft, sheet: Sheet) -> list[tuple[Row, Ingredient]]:
-    """Every ingredient of the sheet without what it is made by; their rows are read again for values and prices."""
+    """Every ingredient of the sheet without what it is made by; their rows are read again for values and prices.
+
+    An ingredient without a name of its own comes with identifier 0 and is no part of the draft.
+    """
     found: list[tuple[Row, Ingredient]] = []
     tags = {fold(tag): tag for tag in Tag}
     for row in sheet.rows():
         name = draft.claim("ingredient", row, "Ingredient")
-        if name is None:
-            continue
-        before: Ingredient | None = draft.library.named("ingredient", name)
-        base = before or Ingredient(draft.new_id("ingredient"), name)
+        before: Ingredient | None = draft.library.named("ingredient", name) if name else None
+        base = before or Ingredient(draft.new_id("ingredient") if name else 0, name or "")
         scale = draft.find("scale", row, "Scale", _("There is no scale “{name}”; add it to the sheet Scales."))
         ingredient = replace(
             base,
@@ -179,7 +179,8 @@ def read_ingredients(draft: Draft, sheet: Sheet) -> list[tuple[Row, Ingredient]]
             withdrawal=row.text("Withdrawal") or base.withdrawal,
             note=row.text("Note") or base.note,
         )
-        draft.put(before, ingredient)
+        if name:
+            draft.put(before, ingredient)
         draft.check(replace(ingredient, made_by_formula_id=None), row)
         found.append((row, ingredient))
     return found
@@ -192,7 +193,7 @@ def read_made_by(draft: Draft, rows: list[tuple[Row, Ingredient]]) -> None:
         formula = draft.find(
             "formula", row, "Made by formula", _("There is no formula “{name}”; add it to the sheet Formulas.")
         )
-        if formula is None:
+        if formula is None or not found.id:
             continue
         ingredient = draft.library.ingredient(found.id)
         made = replace(ingredient, made_by_formula_id=formula.id)

@@ -114,10 +114,11 @@ class Sheet:
 class Row:
     """One row. Every reader returns the blank value of its kind for a blank cell, a missing column or a fault."""
 
-    __slots__ = ("cells", "number", "sheet")
+    __slots__ = ("cells", "number", "sheet", "told")
 
     def __init__(self, sheet: Sheet, number: int, cells: list[CellValue]) -> None:
         self.sheet, self.number, self.cells = sheet, number, cells
+        self.told: tuple[str, ...] = ()
 
     def raw(self, heading: str) -> CellValue:
         index = self.sheet.columns.get(heading)
@@ -131,6 +132,8 @@ class Row:
         return self.sheet.place(self.number, heading)
 
     def fault(self, heading: str, text: str) -> None:
+        """Says a fault of a cell; `told` keeps the headings of the cells that have one."""
+        self.told += (heading,)
         self.sheet.problems.fault(text, self.place(heading))
 
     def oddity(self, heading: str, text: str) -> None:

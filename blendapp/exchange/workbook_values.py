@@ -110,23 +110,23 @@ def read_values(draft: Draft, sheet: Sheet) -> set[Pair]:
         amount, entered = row.number_at("Value", row.raw("Value"))
         if not row.has("Value"):
             row.oddity("Value", _("The row holds no value and was left out; the value stays unknown."))
-        if ingredient is None or nutrient is None or amount is None:
-            continue
-        pair = (ingredient.id, nutrient.id)
-        first = decided.setdefault(pair, row.number)
-        if first != row.number:
+        pair = (ingredient.id if ingredient else 0, nutrient.id if nutrient else 0)
+        complete = ingredient is not None and nutrient is not None and amount is not None
+        if complete and decided.setdefault(pair, row.number) != row.number:
+            assert ingredient is not None
+            assert nutrient is not None
             text = _("{nutrient} of {ingredient} stands in row {first} and again in row {second}; delete one of them.")
             row.fault("Nutrient", text.format(
-                nutrient=nutrient.name, ingredient=ingredient.name, first=first, second=row.number
+                nutrient=nutrient.name, ingredient=ingredient.name, first=decided[pair], second=row.number
             ))
-            continue
-        before = draft.library.value(*pair)
+            complete = False
+        before = draft.library.value(*pair) if complete else None
         value = Value(
-            before.id if before else draft.new_id("value"),
+            before.id if before else draft.new_id("value") if complete else 0,
             *pair,
-            amount,
-            known_unit(row.name("Unit")) if row.has("Unit") else nutrient.unit,
-            read_value_basis(row, "Basis") or ingredient.basis,
+            0.0 if amount is None else amount,
+            known_unit(row.name("Unit")) if row.has("Unit") else nutrient.unit if nutrient else "",
+            read_value_basis(row, "Basis") or (ingredient.basis if ingredient else Basis.AS_FED),
             row.choice("Origin", Origin),
             row.text("Source"),
             row.date("Date"),
@@ -134,6 +134,10 @@ def read_values(draft: Draft, sheet: Sheet) -> set[Pair]:
             row.number_in("SD"),
             entered,
         )
+        if not complete:
+            draft.is_faultless(value, row)  # so that what else is wrong with the row is said with it
+            continue
+        assert nutrient is not None
         if before is not None and replace(value, entered=before.entered) == before:
             continue
         key = (nutrient.id, value.unit)
@@ -142,7 +146,7 @@ def read_values(draft: Draft, sheet: Sheet) -> set[Pair]:
             quiet[key] = checks.quiet_range(nutrient, value.unit) if known and not checks.faults(
                 replace(value, amount=0.0, n=None, sd=None), draft.library) else (1.0, 0.0)
         least, greatest = quiet[key]
-        in_range = least <= amount <= greatest and value.n is None and value.sd is None
+        in_range = least <= value.amount <= greatest and value.n is None and value.sd is None
         if in_range or draft.check(value, row):
             draft.put(before, value)
     return set(decided)
@@ -193,7 +197,7 @@ def read_columns(
                 continue
             else:
                 value = Value(before.id, ingredient_id, nutrient_id, amount, column.unit, basis, entered=entered)
-            if quiet or draft.check(value, row, {"amount": column.heading, "unit": column.heading}):
+            if (quiet or draft.check(value, row, {"amount": column.heading, "unit": column.heading})) and ingredient_id:
                 changes.append(Change(before, value))
     draft.put_all("value", changes)
 
@@ -204,10 +208,13 @@ def read_prices(
     """The price of each ingredient; a price equal to the quote in force adds no quote."""
     for row, ingredient in rows:
         price = row.number_in("Price")
-        if price is None:
+        if not row.has("Price"):
             continue
-        quote = _quote(draft, row, ingredient, price, today, valid_from)
+        quote = _quote(draft, row, ingredient, 1.0 if price is None else price, today, valid_from)
         if quote is None:
+            continue
+        if price is None or not ingredient.id:
+            draft.is_faultless(quote, row)
             continue
         if price <= 0:
             text = _("The price {price} is 0 or below; it counts as typed. If it is unknown, leave the cell blank.")

@@ -113,7 +113,7 @@ def limit_fault(folder: Path, *row: Any) -> list[str]:
 @pytest.mark.parametrize(
     ("row", "heading", "sentence"),
     [
-        (("practical", "Maize", None, None, 5), "Maximum", "A practical minimum has no maximum"),
+        (("practical", "Maize", None, 1, 5), "Maximum", "A practical minimum has no maximum"),
         (("practical", "Maize"), "Minimum", "A practical minimum needs the least amount"),
         (("count", "Maize + Soybean meal", None, 1, 2), "Minimum", "A count has a maximum only"),
         (("count", "Maize + Soybean meal", None, None, 1.5), "Maximum", "A count needs a whole number"),
@@ -254,3 +254,107 @@ def test_prices_in_another_currency_than_those_of_the_mill_are_refused(tmp_path:
     assert lines == [
         "b.xlsx:Mill:3:Value: The prices of the workbook are in EUR, those of the mill in USD; convert them first."
     ]
+
+
+def places(lines: list[str]) -> list[str]:
+    """Where the sentences stand: sheet, row and heading."""
+    return [line.partition(": ")[0].removeprefix("b.xlsx:") for line in lines]
+
+
+def test_a_row_with_a_repeated_name_is_read_to_its_end(tmp_path: Path) -> None:
+    sheets = small_mill()
+    sheets["Ingredients"].append(["MAIZE", None, 120, "abc", "stone", "wet", None, "high", None])
+    set_cell(sheets, "Ingredients", 4, "Tags", "medicted")
+    set_cell(sheets, "Ingredients", 4, "Made by formula", "Starter")
+    assert sorted(places(refused(tmp_path, sheets))) == [
+        f"Ingredients:4:{heading}" for heading in (
+            "Basis", "Crude protein (%)", "Dry matter %", "Ingredient", "Made by formula", "Price", "Price per", "Tags"
+        )
+    ]
+
+
+def test_two_rows_without_a_name_of_their_own_do_not_get_into_each_others_way(tmp_path: Path) -> None:
+    sheets = small_mill()
+    sheets["Ingredients"] += [
+        ["Maize", None, 87, 200, "t", None, None, 8.5, 14], [None, None, 87, 200, "t", None, None, 8.5, -14],
+    ]
+    assert places(refused(tmp_path, sheets)) == [
+        "Ingredients:4:Ingredient", "Ingredients:5:Ingredient", "Ingredients:5:Energy (MJ/kg)"
+    ]
+
+
+@pytest.mark.parametrize(
+    ("sheet", "row", "headings"),
+    [
+        ("Nutrients", ["Energy", "joule", "perhaps", "strength", None], ["Key", "Never negative", "Nutrient", "Unit"]),
+        ("Formulas", ["Layer", "mix", "hen", None, 0, "some", None],
+         ["Admits", "Amounts", "Animal", "Batch kg", "Formula"]),
+    ],
+)
+def test_a_repeated_nutrient_or_formula_hides_none_of_its_faults(
+    tmp_path: Path, sheet: str, row: list[Any], headings: list[str]
+) -> None:
+    sheets = small_mill()
+    sheets[sheet].append(row)
+    last = len(sheets[sheet])
+    assert sorted(places(refused(tmp_path, sheets))) == [f"{sheet}:{last}:{heading}" for heading in headings]
+
+
+def test_a_scale_without_a_step_and_a_repeated_mixer_hide_none_of_their_faults(tmp_path: Path) -> None:
+    sheets = small_mill()
+    sheets["Scales"] = [["Scale", "Step kg", "Least kg", "Tolerance %"], ["Hopper", None, "few", 200]]
+    sheets["Mixers"] = [["Mixer", "Least kg", "Greatest kg"], ["Drum", 1, 2], ["drum", 900, 500]]
+    assert sorted(places(refused(tmp_path, sheets))) == [
+        "Mixers:3:Least kg", "Mixers:3:Mixer", "Scales:2:Least kg", "Scales:2:Step kg", "Scales:2:Tolerance %"
+    ]
+
+
+def test_the_mass_of_a_price_is_read_beside_a_price_that_is_none(tmp_path: Path) -> None:
+    sheets = small_mill()
+    set_cell(sheets, "Ingredients", 2, "Price", "call")
+    set_cell(sheets, "Ingredients", 2, "Price per", "ton")
+    set_cell(sheets, "Ingredients", 3, "Price", "call")
+    set_cell(sheets, "Ingredients", 3, "Price per", "bu")
+    assert places(refused(tmp_path, sheets)) == [
+        "Ingredients:2:Price", "Ingredients:2:Price per", "Ingredients:3:Price", "Ingredients:3:Price per"
+    ]
+
+
+def test_every_fault_of_a_row_of_values_is_told(tmp_path: Path) -> None:
+    sheets = small_mill()
+    head = ["Ingredient", "Nutrient", "Value", "Unit", "Basis", "Origin", "Date", "n", "SD"]
+    sheets["Values"] = [
+        head,
+        ["Maise", "Fat", "low", "percent", "wet", "guess", "June", 1.5, -1],
+        ["Maize", "Crude protein", 8.6, "%", None, None, None, None, None],
+        ["Maize", "Crude protein", -8.7, "MJ/kg", None, "guess", None, 0, None],
+    ]
+    lines = refused(tmp_path, sheets)
+    assert {p for p in places(lines) if p.startswith("Values:2")} == {f"Values:2:{heading}" for heading in head}
+    assert {p for p in places(lines) if p.startswith("Values:4")} == {
+        "Values:4:Nutrient", "Values:4:Unit", "Values:4:Origin", "Values:4:n"
+    }
+
+
+@pytest.mark.parametrize(
+    ("row", "headings"),
+    [
+        (["Layers", "ingredient", "Maise", "Maize", 60, 40, "stone", "dry matter"],
+         ["Formula", "Name", "Per", "Minimum", "Unit", "Basis"]),
+        (["Layer", "nutrient", "Fat", None, 60, 40, "stone", "wet"], ["Name", "Minimum", "Unit", "Basis"]),
+        (["Layer", "nutrient", "Fat", None, 40, 60, "MJ/kg", None], ["Name"]),
+        (["Layer", "nutriment", "Fat", None, 60, 40, "stone", None], ["Kind", "Minimum", "Unit"]),
+        (["Layer", "ratio", "Fat", "Energy", -1, None, None, None], ["Name", "Minimum"]),
+        (["Layers", "ingredient", "Maize", None, None, 140, "kg/day", None], ["Formula"]),
+        (["Layers", "nutrient", "Energy", None, 3, 2, "%", None], ["Formula", "Minimum", "Unit"]),
+        (["Layer", "count", "Oats", None, 1, 1.5, None, None], ["Name", "Minimum", "Maximum"]),
+        (["Layer", "practical", "Oats", None, "some", 2, None, None], ["Name", "Minimum", "Maximum"]),
+    ],
+)
+def test_a_limit_is_told_everything_that_is_wrong_whatever_its_unread_part_is(
+    tmp_path: Path, row: list[Any], headings: list[str]
+) -> None:
+    sheets = small_mill()
+    sheets["Limits"].append(row)
+    lines = places(refused(tmp_path, sheets))
+    assert sorted(lines) == sorted(f"Limits:5:{heading}" for heading in headings)
