@@ -74,7 +74,7 @@ def quiet_range(nutrient: Nutrient, unit: str) -> tuple[float, float]:
 
 def _mill(record: Any, library: Library) -> list[Finding]:
     found: list[Finding] = []
-    if not (len(record.currency) == 3 and record.currency.isascii() and record.currency.isupper()):
+    if not units.is_currency_code(record.currency):
         text = _("“{code}” is no currency code; write three capital letters of ISO 4217, for example USD.")
         found.append(("currency", text.format(code=record.currency)))
     for name, known in (("ton_means", units.TON_MEANINGS), ("cwt_means", units.CWT_MEANINGS)):

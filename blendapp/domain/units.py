@@ -115,6 +115,11 @@ TON_MEANINGS: dict[str, str] = {"short ton": "short ton", "long ton": "long ton"
 CWT_MEANINGS: dict[str, float] = {"100 lb": 100 * LB_KG, "112 lb": 112 * LB_KG}
 
 
+def is_currency_code(text: str) -> bool:
+    """Whether a text has the form of a currency code of ISO 4217: three capital letters."""
+    return len(text) == 3 and text.isascii() and text.isalpha() and text.isupper()
+
+
 def concentration(name: str) -> Unit:
     """The unit of that name; a blank name is the bare number per kg. Raises ValueError with the mend."""
     try:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 from typing import Any
 
@@ -149,7 +150,7 @@ def _limit(draft: Draft, row: Row, formula: Formula | None) -> Limit | None:
 def _say_rest(
     row: Row,
     formula: Formula | None,
-    kinds: list[LimitKind],
+    kinds: Sequence[LimitKind],
     bounds: tuple[float | None, float | None],
     basis: tuple[LimitBasis, float | None] | None,
     sides: tuple[Subject, Subject | None] | None = None,

@@ -40,7 +40,8 @@ def read_mill(draft: Draft, sheet: Sheet) -> None:
     for name, text in checks.faults(found, draft.library):
         item = next(heading for heading, field in MILL_ITEMS.items() if field == name)
         sheet.problems.fault(text, seen[item].place("Value") if item in seen else sheet.place())
-    if before is not None and before.currency != found.currency and draft.library.records["quote"]:
+    same = before is None or before.currency == found.currency or not units.is_currency_code(found.currency)
+    if before is not None and not same and draft.library.records["quote"]:
         sentence = _("The prices of the workbook are in {theirs}, those of the mill in {own}; convert them first.")
         sheet.problems.fault(
             sentence.format(theirs=found.currency, own=before.currency), seen[_item_of("currency")].place("Value")
@@ -57,7 +58,8 @@ def _with_item(mill: MillInfo, field: str, row: Row) -> MillInfo:
     if not value:
         return mill
     if field == "currency":
-        return replace(mill, currency=value.upper())
+        code = value.upper()
+        return replace(mill, currency=code if units.is_currency_code(code) else value)
     if field == "name":
         return replace(mill, name=value)
     known = {fold(word): word for word in (units.TON_MEANINGS if field == "ton_means" else units.CWT_MEANINGS)}

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import datetime
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -81,7 +81,7 @@ def _read(draft: Draft, sheets: _Sheets, today: datetime.date, valid_from: datet
     formulas_sheet = sheets.open(FORMULAS)
     formulas = workbook_formulas.read_formulas(draft, formulas_sheet) if formulas_sheet else []
     columns = workbook_values.NutrientColumns(draft, sheets.table(INGREDIENTS), sheets.problems)
-    ingredients_sheet = sheets.open(INGREDIENTS, columns.take)
+    ingredients_sheet = sheets.open(INGREDIENTS, columns.take, columns.headings())
     rows = workbook_library.read_ingredients(draft, ingredients_sheet) if ingredients_sheet else []
     values_sheet = sheets.open(VALUES)
     decided = workbook_values.read_values(draft, values_sheet) if values_sheet else set()
@@ -130,12 +130,12 @@ class _Sheets:
     def table(self, layout: Layout) -> RawTable:
         return self._tables.get(layout.name) or RawTable(layout.name, [])
 
-    def open(self, layout: Layout, take: TakeColumn | None = None) -> Sheet | None:
-        """The sheet of a layout, None if it is missing or lacks a heading that it needs."""
+    def open(self, layout: Layout, take: TakeColumn | None = None, also: Sequence[str] = ()) -> Sheet | None:
+        """The sheet of a layout, None if it is missing or lacks a heading that it needs. also: further headings."""
         table = self._tables.get(layout.name)
         if table is None:
             return None
-        sheet = Sheet(table, layout, self.file, self.problems, take)
+        sheet = Sheet(table, layout, self.file, self.problems, take, also)
         self._opened.append(sheet)
         return sheet if sheet.usable else None
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime
 import math
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Sequence
 from enum import StrEnum
 from typing import TypeVar
 
@@ -12,7 +12,7 @@ from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.problems import Place, Problems
 from blendapp.domain.wording import _, plural
-from blendapp.exchange.suggestions import did_you_mean
+from blendapp.exchange.suggestions import Suggester, did_you_mean
 from blendapp.exchange.tables import CellKind, CellValue, PercentCell, RawTable, column_letters, kind_of
 from blendapp.exchange.workbook_layout import Layout
 
@@ -25,10 +25,14 @@ _NO = frozenset({"no", "n", "false", "0"})
 
 
 class Sheet:
-    """A sheet with its columns found. Warns of columns that nothing knows; a needed one that is missing is a fault."""
+    """A sheet with its columns found. Warns of columns that nothing knows; a needed one that is missing is a fault.
+
+    also: headings beside those of the layout that a person may have meant by one that nothing knows.
+    """
 
     def __init__(
-        self, table: RawTable, layout: Layout, file: str, problems: Problems, take: TakeColumn | None = None
+        self, table: RawTable, layout: Layout, file: str, problems: Problems, take: TakeColumn | None = None,
+        also: Sequence[str] = (),
     ) -> None:
         self.table = table
         self.layout = layout
@@ -38,12 +42,12 @@ class Sheet:
         self.columns: dict[str, int] = {}
         self._taken: list[int] = []
         self._numbers_as_text: dict[str, tuple[int, int, str]] = {}
-        self.usable = self._find_columns(take)
+        self.usable = self._find_columns(take, also)
 
     def place(self, row: int | None = None, column: str = "", record: str = "") -> Place:
         return Place(self.file, self.name, row, column, record)
 
-    def _find_columns(self, take: TakeColumn | None) -> bool:
+    def _find_columns(self, take: TakeColumn | None, also: Sequence[str]) -> bool:
         known = {fold(heading): heading for heading in self.layout.headings}
         seen: dict[str, int] = {}
         unknown: list[tuple[int, str]] = []
@@ -66,19 +70,31 @@ class Sheet:
                 self._taken.append(index)
             else:
                 unknown.append((index, heading))
-        self._warn_of(unknown)
+        self._warn_of(unknown, [heading for heading in also if fold(heading) not in seen])
         missing = [heading for heading in self.layout.needed if heading not in self.columns]
         if missing:
             text = _("The first row of the sheet must have the headings {missing}; add what is missing.")
-            self.problems.fault(text.format(missing=", ".join(f"“{m}”" for m in missing)), self.place(1))
+            sentence = text.format(missing=", ".join(f"“{m}”" for m in missing))
+            self.problems.fault(sentence + self._nearly_there(missing, unknown), self.place(1))
         return not missing
 
     def _has_content(self, column: int) -> bool:
         rows = self.table.rows
         return any(column < len(cells) and kind_of(cells[column]) is not CellKind.BLANK for cells in rows)
 
-    def _warn_of(self, unknown: list[tuple[int, str]]) -> None:
-        free = [heading for heading in self.layout.headings if heading not in self.columns]
+    @staticmethod
+    def _nearly_there(missing: list[str], unknown: list[tuple[int, str]]) -> str:
+        """Names the columns that may have been meant by the headings that are missing."""
+        found = ""
+        for heading in missing:
+            near = Suggester(name for _index, name in unknown if name).close_names(heading)
+            if near:
+                text = _("For “{heading}”, did you mean the column “{near}”?").format(heading=heading, near=near[0])
+                found += " " + text
+        return found
+
+    def _warn_of(self, unknown: list[tuple[int, str]], also: Sequence[str]) -> None:
+        free = [*(heading for heading in self.layout.headings if heading not in self.columns), *also]
         for index, heading in unknown:
             if heading:
                 text = _("The column “{heading}” is not known here and was left alone.").format(heading=heading)

@@ -50,7 +50,7 @@ class NutrientColumns:
         """Takes a column if its heading names a nutrient; a unit that does not fit is a fault."""
         nutrient, unit, basis = self._split(heading)
         if nutrient is None:
-            return self._names_refused(heading)
+            return self._lacks_unit(heading) or self._names_refused(heading)
         unit = known_unit(unit)
         place = replace(_nowhere(self.draft, self.table), column=heading)
         try:
@@ -80,6 +80,21 @@ class NutrientColumns:
         nutrient = self._named(heading)
         # Only a nutrient that is a bare number may stand without its unit.
         return (nutrient, "", None) if nutrient and nutrient.unit in ("", "/kg") else (None, "", None)
+
+    def _lacks_unit(self, heading: str) -> bool:
+        """Says the fault of a heading that is a nutrient's name alone; its column would be lost."""
+        nutrient = self._named(heading)
+        if nutrient is None:
+            return False
+        text = _("The heading “{heading}” names a nutrient without its unit; write it as “{whole}”.")
+        place = replace(_nowhere(self.draft, self.table), column=heading)
+        self.problems.fault(text.format(heading=heading, whole=heading_of(nutrient)), place)
+        return True
+
+    def headings(self) -> list[str]:
+        """The headings that nutrient columns in the units of their nutrients have, for those that are misspelt."""
+        found: list[Nutrient] = self.draft.library.nutrients
+        return [heading_of(nutrient) for nutrient in found]
 
     def _named(self, name: str) -> Nutrient | None:
         found: Nutrient | None = self.draft.library.named("nutrient", name)

@@ -47,6 +47,7 @@ def limit(kind: str, subject: Subject, formula_id: int = 1, **fields: Any) -> Li
 FAULTY = [
     (MillInfo(currency="usd"), "currency", "USD"),
     (MillInfo(currency="US"), "currency", "ISO 4217"),
+    (MillInfo(currency="US1"), "currency", "“US1” is no currency code"),
     (MillInfo(ton_means="ton"), "ton_means", "short ton, long ton, t"),
     (MillInfo(cwt_means="50 kg"), "cwt_means", "100 lb, 112 lb"),
     (Nutrient(9, "Fat", "percent"), "unit", "g/kg"),

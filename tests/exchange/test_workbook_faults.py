@@ -358,3 +358,31 @@ def test_a_limit_is_told_everything_that_is_wrong_whatever_its_unread_part_is(
     sheets["Limits"].append(row)
     lines = places(refused(tmp_path, sheets))
     assert sorted(lines) == sorted(f"Limits:5:{heading}" for heading in headings)
+
+
+@pytest.mark.parametrize("filled", [True, False])
+def test_a_nutrient_column_without_its_unit_is_refused_since_its_values_would_be_lost(
+    tmp_path: Path, filled: bool
+) -> None:
+    sheets = small_mill()
+    sheets["Nutrients"].append(["P", "%", "yes", None, None])
+    set_cell(sheets, "Ingredients", 2, "p", 0.3 if filled else None)
+    assert refused(tmp_path, sheets) == [
+        "b.xlsx:Ingredients:1:p: The heading “p” names a nutrient without its unit; write it as “P (%)”."
+    ]
+
+
+def test_a_currency_that_is_no_code_is_quoted_as_it_was_typed(tmp_path: Path) -> None:
+    sheets = small_mill()
+    sheets["Mill"][2][1] = "Dollar"
+    assert refused(tmp_path, sheets)[0].startswith("b.xlsx:Mill:3:Value: “Dollar” is no currency code; ")
+
+
+def test_a_missing_heading_that_is_nearly_there_is_named(tmp_path: Path) -> None:
+    sheets = small_mill()
+    sheets["Limits"][0][1] = "Knd"
+    sheets["Limits"][0][4] = "Least"
+    assert refused(tmp_path, sheets) == [
+        "b.xlsx:Limits:1: The first row of the sheet must have the headings “Kind”, “Minimum”; add what is missing. "
+        "For “Kind”, did you mean the column “Knd”?"
+    ]

@@ -445,3 +445,15 @@ class TestIntoAMillThatHasRecords:
         path = write_sheets(mill.folder / "again.xlsx", mill.sheets)
         read_workbook(path, mill.library, {"quote": 50}, TODAY)
         assert mill.library == before
+
+
+def test_a_misspelt_nutrient_column_is_left_alone_with_the_heading_that_may_be_meant(mill: Reader) -> None:
+    mill.column("Ingredients", "Enrgy, MJ/kg", [14, 13])
+    mill.sheets["Ingredients"] = [[*row[:8], row[9]] for row in mill.sheets["Ingredients"]]
+    mill.read()
+    assert said(mill, "“Enrgy, MJ/kg” is not known here and was left alone. Did you mean “Energy (MJ/kg)”?")
+
+
+def test_a_currency_in_small_letters_is_its_code(mill: Reader) -> None:
+    mill.sheets["Mill"][2][1] = "eur"
+    assert mill.read().mill.currency == "EUR"
