@@ -39,9 +39,9 @@ class _Fetch(QObject):
 
 
 def take_locale(locale: QLocale) -> None:
-    """Take the language of a locale, and its decimal sign, without grouping."""
+    """Take the language of a locale, and its decimal sign, without grouping. Figures have a true minus sign."""
     use_language(locale.name())
-    use_notation(Notation(decimal="," if locale.decimalPoint() == "," else "."))
+    use_notation(Notation(decimal="," if locale.decimalPoint() == "," else ".", minus="\u2212"))
 
 
 def make_app(argv: Sequence[str]) -> QApplication:

@@ -35,8 +35,9 @@ Extra = TypeVar("Extra")
 
 
 class Work(QObject):
-    """opened: another mill, or none. edited: an Edit was taken. reversed: it was an undo or a redo. chosen: another formula, or none.
+    """opened: another mill, or none. edited: an Edit was taken. chosen: another formula, or none.
 
+    reversed: after the Edit of an undo or a redo.
     answered: the result changed, or its staleness did; trying is true while a value is being tried and not stored.
     learned: more is known of the result that is shown already: near-optimal ranges, or why there is none.
     said: a sentence for the person, with what can be listed below it.

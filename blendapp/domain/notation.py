@@ -12,10 +12,14 @@ _SPACES = "\u00a0\u202f\u2009 "
 
 @dataclass(frozen=True)
 class Notation:
-    """Decimal and grouping signs. Grouping "" writes none; when read, spaces and the sign given are taken."""
+    """Decimal and grouping signs. Grouping "" writes none; when read, spaces and the sign given are taken.
+
+    minus: as shown, for example the true minus sign; what an editor opens with has the plain one, which files know.
+    """
 
     decimal: str = "."
     grouping: str = ""
+    minus: str = "-"
 
     def write(self, value: float | None, decimals: int) -> str:
         """A number with a fixed count of decimals; None is the empty text. A rounded -0 is written 0."""
@@ -24,7 +28,8 @@ class Notation:
         text = f"{value:,.{decimals}f}"
         if text.startswith("-") and not text.strip("-0.,"):
             text = text[1:]
-        return text.replace(",", "\x00").replace(".", self.decimal).replace("\x00", self.grouping)
+        text = text.replace(",", "\x00").replace(".", self.decimal).replace("\x00", self.grouping)
+        return text.replace("-", self.minus)
 
     def write_short(self, value: float | None, most_decimals: int = 6) -> str:
         """A number without trailing zeros, as a person would type it."""
@@ -37,7 +42,7 @@ class Notation:
             text = f"{value:.3g}"
         if text == "-0":
             text = "0"
-        return text.replace(".", self.decimal)
+        return text.replace(".", self.decimal).replace("-", self.minus)
 
     def write_exact(self, value: float | None) -> str:
         """The shortest text that reads back as the very same number: what an editor opens with."""

@@ -132,9 +132,23 @@ def test_a_repair_is_rounded_to_the_side_that_still_helps() -> None:
     assert repaired(Repair(0, Side.MAXIMUM, 18.0, 18.4))[0] == 18.4
 
 
-def test_limits_that_clash_stand_first_in_the_list(bench: Bench, qtbot: QtBot) -> None:
+def test_limits_that_clash_stand_first_when_the_list_is_sorted(bench: Bench, qtbot: QtBot) -> None:
+    meet = bench.meet
     with qtbot.waitSignal(bench.work.learned, timeout=20000):
         bench.work.do(lambda mill: edits.change(mill, mill.library.limit(CALCIUM), minimum=39.0, maximum=None))
-    assert bench.meet.model.owners[0] == CALCIUM
+    assert meet.model.owners[0] == PROTEIN
+    assert "sort again" in meet.order.text()
+    meet.order.click()
+    assert meet.model.owners[0] == CALCIUM
+    assert meet.order.text() == "by what each costs"
     bench.work.undo()
-    assert bench.meet.model.owners[0] == PROTEIN
+    meet.order.click()
+    assert meet.model.owners[0] == PROTEIN
+
+
+def test_limits_that_clash_stand_first_when_a_formula_is_chosen(bench: Bench, qtbot: QtBot) -> None:
+    bench.work.do(lambda mill: edits.change(mill, mill.library.limit(CALCIUM), minimum=39.0, maximum=None))
+    bench.work.choose(2)
+    with qtbot.waitSignal(bench.work.learned, timeout=20000):
+        bench.work.choose(1)
+    assert bench.meet.model.owners[0] == CALCIUM

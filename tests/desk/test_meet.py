@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtTest import QTest
 from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
+from blendapp.desk.mix.lines import lines_of
 from blendapp.desk.rail.grip import SETTLE_MS
 from blendapp.domain.formulas import LimitBasis, LimitKind, Subject
 from blendapp.services import edits
@@ -257,3 +260,57 @@ def test_a_refused_bound_keeps_the_keyboard_and_moving_the_other_end_frees_it(be
     hands.key(Qt.Key.Key_Return)
     assert model.cell(PROTEIN, "minimum").data() == "21.0"
     assert not model.refusals
+
+
+def test_no_edit_moves_the_limits_and_the_heading_says_so_until_they_are_sorted_again(
+    bench: Bench, hands: Hands
+) -> None:
+    bench.work.do(lambda mill: edits.add_limit(mill, 1, LimitKind.NUTRIENT, Subject.nutrient(2), minimum=0.1))
+    lysine = bench.work.library.limits(1)[-1].id
+    assert bench.meet.order.text() == "by what each costs"
+    order = list(bench.meet.model.owners)
+    assert order.index(PROTEIN) < order.index(lysine)
+    hands.go(bench.meet.table, lysine, "minimum")
+    hands.write("0.97")
+    hands.key(Qt.Key.Key_Return)
+    bench.have.table.setFocus()
+    bench.work.solve()
+    assert bench.meet.model.owners == order
+    assert bench.meet.order.text() == "as it was sorted; sort again"
+    hands.click(bench.meet.order)
+    assert bench.meet.model.owners[0] == lysine
+    assert bench.meet.order.text() == "by what each costs"
+    hands.click(bench.meet.order)
+    assert bench.meet.order.text() == "as entered"
+
+
+def test_choosing_a_formula_sorts_its_limits(bench: Bench) -> None:
+    bench.work.do(lambda mill: edits.add_limit(mill, 1, LimitKind.NUTRIENT, Subject.nutrient(2), minimum=0.97))
+    lysine = bench.work.library.limits(1)[-1].id
+    assert bench.meet.model.owners[-1] == lysine
+    bench.work.choose(2)
+    bench.work.choose(1)
+    assert bench.meet.model.owners[0] == lysine
+    assert bench.meet.order.text() == "by what each costs"
+
+
+@pytest.mark.parametrize(("text", "odd"), [("1.9", False), ("1.85", True), ("23", False)])
+def test_a_bound_ten_times_off_is_taken_and_said(bench: Bench, hands: Hands, text: str, odd: bool) -> None:
+    hands.go(bench.meet.table, PROTEIN, "minimum")
+    hands.write(text)
+    hands.key(Qt.Key.Key_Return)
+    assert bench.work.library.limit(PROTEIN).minimum == float(text)
+    assert bench.strip.isVisible() is odd
+    if odd:
+        assert "Crude protein was 19 and is now 1.85" in bench.strip.list.text()
+
+
+def test_an_ingredient_that_no_price_brings_in_is_not_given_a_price_below_zero(bench: Bench) -> None:
+    bench.work.do(lambda mill: edits.set_price_per_t(mill, 4, 900.0, bench.work.on))
+    result = bench.work.result
+    assert result is not None
+    ingredients = [replace(one, break_even_price=-1105.0) if one.name == "Peas" else one for one in result.ingredients]
+    lines = lines_of(replace(result, ingredients=tuple(ingredients)), frozenset(), frozenset())
+    (line,) = [line for line in lines if line.text == "Peas" and line.cost]
+    assert line.cost == "not at any price above 0, now 900.00"
+    assert line.hint == "Peas is left out at 900.00 USD/t; it does not come in at any price above 0."

@@ -7,9 +7,14 @@ import subprocess
 import sys
 from pathlib import Path
 
+from PySide6.QtCore import QLocale
 from PySide6.QtWidgets import QApplication
 
 from blendapp.desk.bench import Bench
+from blendapp.desk.start import take_locale
+from blendapp.desk.table.look import number_look
+from blendapp.domain.notation import PLAIN, notation, use_notation
+from blendapp.domain.wording import use_language
 from blendapp.services.mill import open_mill
 
 HEAVY = ("blendapp.services", "blendapp.optimise", "blendapp.storage", "numpy", "scipy", "pandas", "sqlalchemy",
@@ -51,3 +56,15 @@ def test_the_desktop_knows_the_program_by_its_name_and_its_mark(empty_bench: Ben
     assert app.desktopFileName() == "blendapp"
     image = app.windowIcon().pixmap(64, 64).toImage()
     assert len({image.pixel(x, y) for x in range(64) for y in range(64)}) > 4
+
+
+def test_the_window_shows_a_true_minus_sign_and_types_the_plain_one() -> None:
+    try:
+        take_locale(QLocale(QLocale.Language.English))
+        cell = number_look(-12.5, 1)
+        assert (cell.text, cell.typed) == ("\u221212.5", "-12.5")
+        assert notation().write_short(-1.5) == "\u22121.5"
+        assert notation().read(cell.text) == notation().read(cell.typed) == -12.5
+    finally:
+        use_notation(PLAIN)
+        use_language(None)

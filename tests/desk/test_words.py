@@ -10,7 +10,7 @@ from blendapp.desk.finder.search import Found, best
 from blendapp.desk.formulas import read_nutrient
 from blendapp.desk.have.reading import read_price
 from blendapp.desk.meet.telling import price_sentence
-from blendapp.desk.meet.words import cost_rank, tag_step, tag_words
+from blendapp.desk.meet.words import cost_rank, step_words, tag_step, tag_words
 from blendapp.desk.table.block import read_block, write_block
 from blendapp.desk.table.look import fitting_decimals, number_look
 from blendapp.domain.formulas import LimitKind
@@ -58,41 +58,41 @@ def limit(**fields: object) -> LimitResult:
 def test_a_tag_says_step_money_and_how_far() -> None:
     found = limit(minimum=18.5, value=18.5, binding=Side.MINIMUM, shadow_price_unique=True, relax_saving=24.0,
                   tighten_cost=24.0, relax_holds_to=18.4)
-    assert tag_words(found, 1, "t") == "0.1 less saves 2.40 /t, to 18.4"
+    assert tag_words(found, 1, "USD", "t") == "0.1 less saves 2.40 USD/t, to 18.4"
     found = limit(maximum=25.0, value=25.0, binding=Side.MAXIMUM, shadow_price_unique=True, relax_saving=0.19)
-    assert tag_words(found, 1, "t") == "1.0 more saves 0.19 /t"
+    assert tag_words(found, 1, "USD", "t") == "0.25 more saves 0.048 USD/t"
 
 
 def test_a_tag_never_shows_a_figure_where_more_than_one_price_fits() -> None:
     found = limit(minimum=18.5, value=18.5, binding=Side.MINIMUM, shadow_price_unique=False)
-    assert tag_words(found, 1, "t") == "more than one price fits"
+    assert tag_words(found, 1, "USD", "t") == "more than one price fits"
 
 
 def test_a_side_that_saves_nothing_says_what_the_other_costs() -> None:
     found = limit(minimum=0.95, value=0.95, binding=Side.MINIMUM, shadow_price_unique=True, relax_saving=0.0,
                   tighten_cost=10.787)
-    assert tag_words(found, 2, "t") == "0.01 more costs 0.11 /t"
+    assert tag_words(found, 2, "USD", "t") == "0.0095 more costs 0.10 USD/t"
 
 
 def test_a_target_tells_what_raising_and_lowering_it_do() -> None:
     found = limit(minimum=2.0, maximum=2.0, value=2.0, binding=Side.MINIMUM, shadow_price_unique=True, raise_cost=-3.0,
                   lower_cost=3.0)
-    assert tag_words(found, 2, "t") == "0.10 more saves 0.30 /t, 0.10 less costs 0.30 /t"
+    assert tag_words(found, 2, "USD", "t") == "0.02 more saves 0.060 USD/t, 0.02 less costs 0.060 USD/t"
     sentence = price_sentence(found, "Lysine", 2, "USD", "t")
-    assert sentence == "Lysine is held at 2.00 %: 0.10 % more saves 0.30 USD/t; 0.10 % less costs 0.30 USD/t."
+    assert sentence == "Lysine is held at 2.00 %: 0.02 % more saves 0.060 USD/t; 0.02 % less costs 0.060 USD/t."
 
 
 def test_pointing_at_a_wall_says_both_sides_with_units_and_how_far() -> None:
     found = limit(minimum=0.95, value=0.95, binding=Side.MINIMUM, shadow_price_unique=False, relax_saving=0.0,
                   tighten_cost=10.787, tighten_holds_to=1.4)
     assert price_sentence(found, "Lysine", 2, "USD", "t") == (
-        "Lysine holds the mix at its minimum of 0.95 %: 0.01 % less changes nothing; "
-        "0.01 % more costs 0.11 USD/t, as far as 1.40 %.")
+        "Lysine holds the mix at its minimum of 0.95 %: 0.0095 % less changes nothing; "
+        "0.0095 % more costs 0.10 USD/t, as far as 1.40 %.")
     found = limit(maximum=25.0, value=25.0, binding=Side.MAXIMUM, shadow_price_unique=True, relax_saving=0.19,
                   relax_holds_to=31.2, tighten_cost=0.19, tighten_holds_to=20.0)
     assert price_sentence(found, "Wheat", 1, "USD", "t", given=True) == (
-        "Given these ingredients, Wheat holds the mix at its maximum of 25.0 %: 1.0 % more saves 0.19 USD/t, "
-        "as far as 31.2 %; 1.0 % less costs 0.19 USD/t, as far as 20.0 %.")
+        "Given these ingredients, Wheat holds the mix at its maximum of 25.0 %: 0.25 % more saves 0.048 USD/t, "
+        "as far as 31.2 %; 0.25 % less costs 0.048 USD/t, as far as 20.0 %.")
 
 
 def test_a_ratio_says_that_its_price_holds_at_this_point_only() -> None:
@@ -103,11 +103,27 @@ def test_a_ratio_says_that_its_price_holds_at_this_point_only() -> None:
     assert "no higher minimum can be met" in price_sentence(found, "Lysine", 2, "USD", "t")
 
 
-def test_a_slack_limit_ranks_last_and_a_step_is_round() -> None:
-    assert cost_rank(limit(minimum=1.0, value=2.0)) == 0.0
-    assert tag_step(11.5, 2) == pytest.approx(0.1)
-    assert tag_step(0.4, 2) == pytest.approx(0.01)
-    assert tag_step(25.0, 1) == pytest.approx(1.0)
+def test_a_step_is_a_hundredth_of_every_bound_and_never_more_than_its_price_holds() -> None:
+    assert tag_step(11.5, 1) == pytest.approx(0.115)
+    assert tag_step(2500.0, 0) == pytest.approx(25.0)
+    assert tag_step(-40.0, 0) == pytest.approx(0.4)
+    assert tag_step(0.0, 2) == pytest.approx(0.01)
+    assert tag_step(11.5, 1, 11.45) == pytest.approx(0.05)
+    assert step_words(0.115, 1) == "0.115"
+    assert step_words(25.0, 0) == "25"
+
+
+@given(st.lists(st.tuples(st.floats(0.01, 3000), st.floats(0.001, 500), st.floats(0.001, 2)), min_size=2, max_size=6))
+def test_a_larger_tag_never_stands_below_a_smaller_one(limits: list[tuple[float, float, float]]) -> None:
+    found = [
+        limit(minimum=bound, value=bound, binding=Side.MINIMUM, shadow_price_unique=True, relax_saving=price,
+              relax_holds_to=bound - room)
+        for bound, price, room in limits
+    ]
+    found.sort(key=lambda one: cost_rank(one, 2), reverse=True)
+    figures = [float(tag_words(one, 2, "USD", "t").partition("saves ")[2].partition(" ")[0]) for one in found]
+    assert figures == sorted(figures, reverse=True)
+    assert cost_rank(limit(minimum=1.0, value=2.0), 2) == 0.0 < cost_rank(found[-1], 2)
 
 
 def test_prices_are_read_with_the_mass_they_are_per() -> None:

@@ -263,7 +263,7 @@ class HaveModel(Grid):
         """Forget the refused texts of every cell whose record an edit has changed."""
         gone: set[tuple[int, str]] = set()
         for change in edit.changes:
-            record = change.after or change.before
+            record: Any = change.after or change.before
             if change.kind == "quote":
                 gone |= {(record.ingredient_id, "price"), (record.ingredient_id, "quoted")}
             elif change.kind == "value":

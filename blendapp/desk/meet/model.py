@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import itertools
+import math
 from dataclasses import replace
 from typing import TYPE_CHECKING, Any
 
@@ -12,9 +14,11 @@ from blendapp.desk.table.grid import Grid, Heading
 from blendapp.desk.table.look import EMPTY, Look, number_look
 from blendapp.domain.formulas import Amounts, Limit, LimitKind
 from blendapp.domain.notation import notation
+from blendapp.domain.problems import Problem, Severity
 from blendapp.domain.results import LimitResult, Side
 from blendapp.domain.wording import _
 from blendapp.services import edits
+from blendapp.services.mill import Edit
 
 if TYPE_CHECKING:
     from blendapp.desk.work import Work
@@ -49,17 +53,26 @@ class MeetModel(Grid):
         formula_id = self.work.formula_id
         limits = [] if formula_id is None else self.work.library.limits(formula_id)
         order = [limit.id for limit in limits]
-        if keep_order:
+        if keep_order and self.by_cost:
             at = {owner: place for place, owner in enumerate(self.owners)}
             order.sort(key=lambda owner: at.get(owner, len(at)))
         elif self.by_cost:
-            # Limits that clash stand first, as there is nothing that any of them costs.
-            order.sort(key=lambda owner: (
-                owner not in self._conflicting,
-                -words.cost_rank(self._found[owner]) if owner in self._found else 0.0,
-            ))
+            order.sort(key=self._rank, reverse=True)
         self._axes = {owner: axis for owner, axis in self._axes.items() if owner in set(order)}
         self.set_rows(order)
+
+    def _rank(self, owner: int) -> float:
+        if owner in self._conflicting:
+            # Limits that clash stand first, as there is nothing that any of them costs.
+            return math.inf
+        found, limit = self._found.get(owner), self.limit(owner)
+        return 0.0 if found is None or limit is None else words.cost_rank(found, self.decimals(limit))
+
+    @property
+    def is_sorted(self) -> bool:
+        """Whether the rows stand in the order of what they cost now."""
+        ranks = [self._rank(owner) for owner in self.owners]
+        return all(above >= below * (1 - 1e-9) for above, below in itertools.pairwise(ranks))
 
     def take_result(self) -> None:
         """Take over what the answer says of each limit."""
@@ -176,8 +189,8 @@ class MeetModel(Grid):
         working = frozenset() if found is None or found.binding is None else frozenset({_ENDS[found.binding]})
         decimals = self.decimals(limit)
         tag = ""
-        if found is not None:
-            tag = words.tag_words(found, decimals, words.per_of(formula))
+        if found is not None and self.work.result is not None:
+            tag = words.tag_words(found, decimals, self.work.result.currency, words.per_of(formula))
         share = limit.kind in (LimitKind.INGREDIENT, LimitKind.GROUP)
         percent = share and formula.amounts is Amounts.BLEND and not limit.unit.strip("% ")
         state = RailState(
@@ -210,4 +223,19 @@ class MeetModel(Grid):
 
     def write(self, owner: int, key: str, text: str) -> None:
         bound = notation().read(text) if text.strip() else None
-        self.work.do(lambda mill: edits.set_bound(mill, owner, key, bound))
+        limit = self.limit(owner)
+        odd = [] if limit is None else far_off(words.limit_name(self.work.library, limit), getattr(limit, key), bound)
+        self.work.do(lambda mill: _with_oddities(edits.set_bound(mill, owner, key, bound), odd))
+
+
+def far_off(name: str, old: float | None, new: float | None) -> list[Problem]:
+    """What is odd about a typed bound: that it is more than ten times the one before, or less than a tenth of it."""
+    if not old or not new or 0.1 - 1e-9 <= abs(new / old) <= 10 + 1e-9:
+        return []
+    text = _("{name} was {old} and is now {new}; Ctrl+Z takes it back if a digit slipped.")
+    write = notation().write_short
+    return [Problem(text.format(name=name, old=write(old), new=write(new)), severity=Severity.ODDITY)]
+
+
+def _with_oddities(edit: Edit, odd: list[Problem]) -> Edit:
+    return replace(edit, oddities=(*edit.oddities, *odd)) if odd and edit.changes else edit

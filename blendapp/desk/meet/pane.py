@@ -48,6 +48,7 @@ class MeetPane(QWidget):
         self.empty.setObjectName("quiet")
         self.empty.setWordWrap(True)
         self.told: int | None = None
+        self._sort_due = True
         self.telling = QLabel()
         self.telling.setObjectName("quiet")
         self.telling.setWordWrap(True)
@@ -103,22 +104,25 @@ class MeetPane(QWidget):
     def _chosen(self) -> None:
         self.adding.hide()
         self.model.refusals.clear()
+        self._sort_due = True
         self.model.rebuild()
         self.table.go_to_top()
         self._say()
 
     def _edited(self, edit: Edit) -> None:
+        self._sort_due = False
         self.model.forgive_owners({change.id for change in edit.changes if change.kind == "limit"})
         if edit.touches("limit", "ingredient", "nutrient", "formula"):
             self._rebuild(keep_order=True)
 
     def _answered(self) -> None:
-        if self.work.trying or self.table.has_keyboard():
-            # Rows that move under the hand that edits them would be lost from sight.
+        # Rows that move when a price or a bound is edited would be lost from sight: only before the first edit of a
+        # formula does its answer, and what is learned of it, sort them.
+        if self._sort_due and self.work.result is not None and not self.work.stale and not self.work.trying:
+            self._rebuild(keep_order=False)
+        else:
             self.model.take_result()
             self.model.refresh()
-        else:
-            self._rebuild(keep_order=False)
         self._say()
 
     def _rebuild(self, *, keep_order: bool) -> None:
@@ -131,7 +135,8 @@ class MeetPane(QWidget):
                 self.table.setCurrentIndex(at)
 
     def _turn_order(self) -> None:
-        self.model.by_cost = not self.model.by_cost
+        if not self.model.by_cost or self.model.is_sorted:
+            self.model.by_cost = not self.model.by_cost
         self._rebuild(keep_order=False)
         self._say()
 
@@ -151,8 +156,9 @@ class MeetPane(QWidget):
         formula = self.work.formula
         self.order.setVisible(formula is not None)
         self.add.setVisible(formula is not None)
-        self.order.setText(_("by what each costs") if self.model.by_cost else _("as entered"))
-        self.order.setToolTip(_("Order the limits by what they cost, or as they were entered"))
+        self.order.setText(self._order_words())
+        self.order.setToolTip(_(
+            "Order the limits by what a hundredth of each bound changes the cost, or as they were entered"))
         if formula is None:
             self.empty.setText(_("Choose a formula, or make a new one, to see what it must meet."))
         elif not self.model.owners:
@@ -161,6 +167,11 @@ class MeetPane(QWidget):
             self.empty.setText("")
         self.empty.setVisible(bool(self.empty.text()) and self.work.is_open)
         self.zone.remark.say("" if formula is None else formula_words(self.work))
+
+    def _order_words(self) -> str:
+        if not self.model.by_cost:
+            return _("as entered")
+        return _("by what each costs") if self.model.is_sorted else _("as it was sorted; sort again")
 
     # -- an end by hand
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 
-from blendapp.desk.meet.words import bound_words, money, tag_step
+from blendapp.desk.meet.words import bound_words, money, step_words, tag_step
 from blendapp.domain.formulas import LimitKind
 from blendapp.domain.results import LimitResult, Side
 from blendapp.domain.wording import _
@@ -74,11 +74,11 @@ def _part(
     found: LimitResult, way: str, bound: float, holds_to: float | None, cost: float, decimals: int, currency: str,
     per: str,
 ) -> str:
-    """One side: "0.01 % less saves 0.16 USD/t, as far as 1.20 %"."""
+    """One side: "0.0125 % less saves 0.16 USD/t, as far as 1.20 %"."""
     step = tag_step(bound, decimals, holds_to)
-    moved = way.format(step=f"{bound_words(step, decimals)} {found.unit}".strip())
+    moved = way.format(step=f"{step_words(step, decimals)} {found.unit}".strip())
     change = abs(cost) * step
-    words = {"moved": moved, "money": money(change, per).replace(" /", f" {currency}/")}
+    words = {"moved": moved, "money": money(change, currency, per)}
     if not change or not math.isfinite(change):
         text = _("{moved} changes nothing").format(**words)
     else:

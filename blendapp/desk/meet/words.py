@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import dataclass
 
 from blendapp.domain import limit_units, units
 from blendapp.domain.figures import decimals_of
@@ -62,87 +63,97 @@ def limit_decimals(*values: float | None) -> int:
     return min(max(least, fair), 6)
 
 
-def money(value: float, currency_per: str) -> str:
-    """An amount of money of a tag: two decimals, more where it is small; "/t" or "/day" behind it."""
+def money(value: float, currency: str, per: str) -> str:
+    """An amount of money of a tag, "2.92 USD/t": two decimals, more where it is small."""
     decimals = 2 if abs(value) >= 0.1 else min(decimals_of(value, significant=2, least=2), 5)
-    return _("{amount} /{per}").format(amount=notation().write(value, decimals), per=currency_per)
+    return _("{amount} {currency}/{per}").format(
+        amount=notation().write(value, decimals), currency=currency, per=per)
 
 
 def tag_step(bound: float, decimals: int, holds_to: float | None = None) -> float:
-    """The change of a bound that a tag prices: a round figure near a fiftieth of it, no more than the price holds."""
-    size = abs(bound) * 0.02
-    step = 10.0 ** round(math.log10(size)) if size > 0 else 10.0**-decimals
-    step = max(step, 10.0**-decimals)
+    """The change of a bound that a tag prices: a hundredth of it for every limit, so that tags compare.
+
+    Of a bound at 0 it is the last digit shown. Never more than the price holds.
+    """
+    step = abs(bound) * 0.01 or 10.0**-decimals
     if holds_to is not None and 0 < abs(holds_to - bound) < step:
         room = abs(holds_to - bound)
-        # Down to what can be shown, so that the money is that of the step as it is read.
-        shown = math.floor(room * 10.0**decimals + 1e-9) / 10.0**decimals
+        # Down to what is shown, so that the money is that of the step as it is read.
+        shown = math.floor(room * 10.0 ** (decimals + 2) + 1e-9) / 10.0 ** (decimals + 2)
         return shown or room
     return step
 
 
+def step_words(step: float, decimals: int) -> str:
+    """A step in full: a hundredth of a bound has two decimals more than the bound."""
+    most = decimals + 2
+    return notation().write_short(step, most if step >= 10.0**-most else decimals_of(step, significant=2))
+
+
 def bound_words(value: float, decimals: int) -> str:
-    """A bound or a step with the decimals of its limit, more where it would be 0."""
+    """A bound with the decimals of its limit, more where it would be 0."""
     shown = max(decimals, decimals_of(value, significant=1)) if 0 < abs(value) < 10.0**-decimals else decimals
     return notation().write(value, shown)
 
 
-def tag_words(found: LimitResult, decimals: int, per: str) -> str:
+@dataclass(frozen=True)
+class Tagged:
+    """One thing that a tag says: what a step of the bound does to the cost, below 0 saving."""
+
+    step: float
+    cost: float
+    raised: bool
+    holds_to: float | None = None
+
+
+def tagged(found: LimitResult, decimals: int) -> list[Tagged]:
+    """What the tag of a working wall says, savings first; nothing where nothing is to be said."""
+    bound = found.minimum if found.binding is Side.MINIMUM else found.maximum
+    if found.binding is None or bound is None:
+        return []
+    minimum = found.binding is Side.MINIMUM
+    if found.raise_cost is not None or found.lower_cost is not None:
+        step = tag_step(bound, decimals)
+        sides = ((found.raise_cost, True), (found.lower_cost, False))
+        return sorted((Tagged(step, cost * step, raised) for cost, raised in sides if cost),
+                      key=lambda one: (one.cost > 0, not one.raised))
+    if found.relax_saving is not None and found.relax_saving > 0:
+        step = tag_step(bound, decimals, found.relax_holds_to)
+        return [Tagged(step, -found.relax_saving * step, not minimum, found.relax_holds_to)]
+    if found.tighten_cost is not None and found.tighten_cost > 0:
+        step = tag_step(bound, decimals, found.tighten_holds_to)
+        return [Tagged(step, found.tighten_cost * step, minimum)]
+    return []
+
+
+def tag_words(found: LimitResult, decimals: int, currency: str, per: str) -> str:
     """What a working wall costs, short enough for its tag; "" where nothing is to be said."""
     if found.binding is None:
         return ""
-    bound = found.minimum if found.binding is Side.MINIMUM else found.maximum
-    if bound is None:
-        return ""
     if found.shadow_price_unique is False and found.relax_saving is None and found.raise_cost is None:
         return _("more than one price fits")
-    if found.raise_cost is not None or found.lower_cost is not None:
-        return _target_words(found, bound, decimals, per)
-    if found.relax_saving is not None and found.relax_saving > 0:
-        return _relax_words(found, bound, decimals, per)
-    if found.tighten_cost is not None and found.tighten_cost > 0:
-        step = tag_step(bound, decimals, found.tighten_holds_to)
-        text = _("{step} more costs {money}") if found.binding is Side.MINIMUM else _("{step} less costs {money}")
-        return text.format(step=bound_words(step, decimals), money=money(found.tighten_cost * step, per))
-    return ""
+    texts = {
+        (True, True): _("{step} more costs {money}"), (True, False): _("{step} more saves {money}"),
+        (False, True): _("{step} less costs {money}"), (False, False): _("{step} less saves {money}"),
+    }
+    parts = []
+    for one in tagged(found, decimals):
+        text = texts[one.raised, one.cost > 0].format(
+            step=step_words(one.step, decimals), money=money(abs(one.cost), currency, per))
+        if one.holds_to is not None:
+            text = _("{text}, to {to}").format(text=text, to=bound_words(one.holds_to, decimals))
+        parts.append(text)
+    return ", ".join(parts)
 
 
-def _relax_words(found: LimitResult, bound: float, decimals: int, per: str) -> str:
-    assert found.relax_saving is not None
-    step = tag_step(bound, decimals, found.relax_holds_to)
-    words = {"step": bound_words(step, decimals), "money": money(found.relax_saving * step, per)}
-    minimum = found.binding is Side.MINIMUM
-    if found.relax_holds_to is None:
-        text = _("{step} less saves {money}") if minimum else _("{step} more saves {money}")
-        return text.format(**words)
-    words["to"] = bound_words(found.relax_holds_to, decimals)
-    text = _("{step} less saves {money}, to {to}") if minimum else _("{step} more saves {money}, to {to}")
-    return text.format(**words)
+def cost_rank(found: LimitResult, decimals: int) -> float:
+    """The money that a limit's tag says, for the order of the list; 0 for one that does not bind.
 
-
-def _target_words(found: LimitResult, bound: float, decimals: int, per: str) -> str:
-    step = tag_step(bound, decimals)
-    parts: list[tuple[bool, str]] = []
-    for cost, costs, saves in (
-        (found.raise_cost, _("{step} more costs {money}"), _("{step} more saves {money}")),
-        (found.lower_cost, _("{step} less costs {money}"), _("{step} less saves {money}")),
-    ):
-        if cost:
-            text = costs if cost > 0 else saves
-            words = text.format(step=bound_words(step, decimals), money=money(abs(cost) * step, per))
-            # What saves is said before what costs.
-            parts.append((cost > 0, words))
-    return ", ".join(words for _costs, words in sorted(parts))
-
-
-def cost_rank(found: LimitResult) -> float:
-    """The money of a limit's tag, for the order of the list; 0 for one that does not bind."""
-    bound = found.minimum if found.binding is Side.MINIMUM else found.maximum
-    if found.binding is None or bound is None:
+    One that binds without a figure stands just above those that do not.
+    """
+    if found.binding is None:
         return 0.0
-    prices = (found.relax_saving, found.tighten_cost, found.raise_cost, found.lower_cost)
-    price = max((abs(one) for one in prices if one is not None), default=0.0)
-    return price * tag_step(bound, limit_decimals(bound), found.relax_holds_to) + 1e-12
+    return max((abs(one.cost) for one in tagged(found, decimals)), default=0.0) + 1e-12
 
 
 def per_of(formula: Formula) -> str:

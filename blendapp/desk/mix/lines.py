@@ -163,7 +163,9 @@ def _left_out(result: Result, opened: frozenset[str]) -> list[Line]:
         shown = priced if LEFT_OUT in opened else priced[:6]
         for one in shown:
             assert one.break_even_price is not None
-            lines.append(Line(Part.PAIR, one.name, cost=_("{break_even}, now {price}").format(
+            known = _("{break_even}, now {price}") if one.break_even_price > 0 else _(
+                "not at any price above 0, now {price}")
+            lines.append(Line(Part.PAIR, one.name, cost=known.format(
                 break_even=notation().write(one.break_even_price, 2), price=notation().write(one.price_per_t, 2)),
                 hint=break_even_words(one, result.currency)))
         if len(priced) > 6:
@@ -185,6 +187,8 @@ def break_even_words(one: IngredientResult, currency: str) -> str:
     if one.break_even_price is None:
         return ""
     text = _("{name} is left out at {price} {currency}/t; below {break_even} {currency}/t, {less} less, some comes in.")
+    if one.break_even_price <= 0:
+        text = _("{name} is left out at {price} {currency}/t; it does not come in at any price above 0.")
     if one.price_per_t - one.break_even_price < 0.005:
         text = _("{name} is left out at {price} {currency}/t; the least bit cheaper, and some comes in.")
     write = notation().write
