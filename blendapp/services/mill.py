@@ -20,6 +20,7 @@ from blendapp.storage import MillFileError
 
 if TYPE_CHECKING:
     from blendapp.optimise.build.composition import Composition
+    from blendapp.services.kept_answers import KeptAnswers
     from blendapp.storage import Entry, Store
 
 
@@ -58,6 +59,7 @@ class Mill:
         self.library = Library.of(store.read_all())
         self._next = store.next_ids()
         self._composition: Composition | None = None
+        self._answers: KeptAnswers | None = None
         self._undoable: list[Entry] | None = None
         self._redoable: list[Entry] = []
 
@@ -81,6 +83,15 @@ class Mill:
 
             self._composition = Composition(self.library)
         return self._composition
+
+    @property
+    def answers(self) -> KeptAnswers:
+        """The answers that are kept over changes of prices."""
+        if self._answers is None:
+            from blendapp.services.kept_answers import KeptAnswers
+
+            self._answers = KeptAnswers()
+        return self._answers
 
     def close(self) -> None:
         self.store.close()
@@ -143,6 +154,8 @@ class Mill:
             raise
         if self._composition is not None:
             self._composition.refresh(self.library, changes)
+        if self._answers is not None:
+            self._answers.refresh(changes)
         return entry
 
     # -- taking back

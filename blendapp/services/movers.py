@@ -13,12 +13,13 @@ from blendapp.domain.quotes import Quote
 from blendapp.domain.records import added
 from blendapp.domain.results import Status
 from blendapp.optimise.build.composition import Composition
-from blendapp.optimise.kept import Kept
-from blendapp.optimise.linear import FailedSolve
-from blendapp.services.formulate import Answer, FailedCertificate, answer_to
+from blendapp.services.formulate import FailedCertificate
+from blendapp.services.kept_answers import AnswersNow, KeptAnswers, Position, Prices, prices_of
 
 # Amounts closer than this, in fractions of the mix or shares of a ration, are the same mix.
 _SAME = 1e-6
+# Costs closer than this, relatively, are equal: then the old mix is still one of the cheapest.
+_EQUAL = 1e-9
 
 
 @dataclass(frozen=True)
@@ -62,23 +63,26 @@ class Mover:
 
 def movers(
     before: Library, after: Library, on: datetime.date, go_on: Callable[[], bool] | None = None,
-    progress: Callable[[int, int], None] | None = None,
+    progress: Callable[[int, int], None] | None = None, answers: AnswersNow | None = None,
 ) -> list[Mover]:
     """A row for every formula of which an admitted price differs, in the order of the formulas.
 
     before, after: the same mill at two sets of prices; neither may be edited meanwhile. Each old answer is held against
     the new prices on its basis first, and solved again only where that does not prove it. go_on is asked before every
-    formula: where it says no, the rows so far come back. progress: (formulas done, of how many).
+    formula: where it says no, the rows so far come back. progress: (formulas done, of how many). answers: those that
+    the mill keeps, so that nothing is solved twice.
     """
-    moved = [(one, prices) for one in before.formulas if (prices := _moved(before, after, one, on))]
+    both = prices_of(before, on), prices_of(after, on)
+    moved = [(one, prices) for one in before.formulas if (prices := _moved(before, one, *both))]
     composition = Composition(before)
+    answers = answers or KeptAnswers().view()
     rows: list[Mover] = []
     for done, (formula, prices) in enumerate(moved):
         if progress is not None:
             progress(done, len(moved))
         if go_on is not None and not go_on():
             return rows
-        rows.append(_mover(before, after, formula, on, composition, prices))
+        rows.append(_mover(before, after, formula, on, composition, prices, answers, both))
     if progress is not None:
         progress(len(moved), len(moved))
     return rows
@@ -96,86 +100,57 @@ def with_prices(library: Library, reading: PriceListReading, on: datetime.date) 
     return copy
 
 
-Prices = Mapping[int, tuple[float | None, float | None]]
+Moved = Mapping[int, tuple[float | None, float | None]]
 
 
-def _moved(before: Library, after: Library, formula: Formula, on: datetime.date) -> Prices:
+def _moved(library: Library, formula: Formula, before: Prices, after: Prices) -> Moved:
     """The admitted ingredients whose price differs, with both prices."""
-    pairs = {i.id: (before.price_per_t(i.id, on), after.price_per_t(i.id, on)) for i in before.admitted(formula)}
+    pairs = {i.id: (before[i.id], after[i.id]) for i in library.admitted(formula)}
     return {key: pair for key, pair in pairs.items() if pair[0] != pair[1]}
 
 
 def _mover(
-    before: Library, after: Library, formula: Formula, on: datetime.date, composition: Composition, prices: Prices
+    before: Library, after: Library, formula: Formula, on: datetime.date, composition: Composition, prices: Moved,
+    answers: AnswersNow, both: tuple[Prices, Prices],
 ) -> Mover:
     try:
-        old = answer_to(before, formula.id, on, composition, prices=False)
-        held = _held(old, prices)
-        new_cost: float | None
-        kept: bool | None
-        as_before: float | None
-        if held is not None:
-            kept, x, cost, as_before = held
-            assert old.built is not None
-            new_amounts = {i.id: v for i, v in zip(old.built.ingredients, x, strict=True)}
-            status, new_cost = Status.OPTIMAL, cost
-        else:
-            new = answer_to(after, formula.id, on, composition, prices=False)
-            status, new_cost, new_amounts = new.result.status, new.result.cost, _amounts(new)
-            kept, as_before = _compared(old, new, after, on)
+        old = answers.at(before, formula, on, composition, both[0])
+        new = answers.at(after, formula, on, composition, both[1])
     except FailedCertificate as failure:
         return Mover(formula.id, formula.name, formula.amounts, None, None, None, None, None, None, None, str(failure))
-    result = old.result
-    most = _most(before, formula, prices, _amounts(old), new_amounts)
-    if not result.has_answer or new_cost is None:
+    as_before = _cost_at(old, formula, both[1])
+    kept = None if old.cost is None or new.cost is None else _same(old, new, as_before)
+    most = _most(before, formula, prices, old.amounts, new.amounts)
+    if old.cost is None or new.cost is None:
         most = most if most is not None and most.effect is None else None
     return Mover(
-        formula.id, formula.name, formula.amounts, result.status, status, result.cost, new_cost, as_before, kept, most,
+        formula.id, formula.name, formula.amounts, old.status, new.status, old.cost, new.cost, as_before, kept, most,
     )
 
 
-def _held(old: Answer, prices: Prices) -> tuple[bool, list[float], float, float] | None:
-    """Whether the old mix is still optimal, the amounts now, their cost, and that of the old ones; None where only
-    solving anew can say: no answer, a choice of ingredients, or an ingredient that gains or loses its price."""
-    solution, built = old.solution, old.built
-    if built is None or solution is None or old.result.status is not Status.OPTIMAL or old.result.given_ingredients:
+def _cost_at(old: Position, formula: Formula, prices: Prices) -> float | None:
+    """What the old mix costs at the new prices; None where it has no price for all of it."""
+    if old.cost is None:
         return None
-    if any(pair[0] is None or pair[1] is None for pair in prices.values()):
+    per = 1.0 if formula.amounts is Amounts.BLEND else 1e-3
+    parts = [(amount, prices[key]) for key, amount in old.amounts.items() if amount]
+    if any(price is None for _amount, price in parts):
         return None
-    per = 1.0 if built.formula.amounts is Amounts.BLEND else 1e-3
-    cost = built.program.cost.copy()
-    for column, ingredient in enumerate(built.ingredients):
-        if ingredient.id in prices:
-            cost[column] = (prices[ingredient.id][1] or 0.0) * per
-    try:
-        found = Kept(solution).reprice(cost)
-    except (FailedSolve, ValueError):  # a singular basis is a ValueError too
-        return None
-    return found.stays, found.x.tolist(), found.objective, found.as_before
+    return sum(amount * (price or 0.0) * per for amount, price in parts)
 
 
-def _compared(old: Answer, new: Answer, after: Library, on: datetime.date) -> tuple[bool | None, float | None]:
-    """Whether two answers are the same mix, and what the old mix costs at the new prices."""
-    if not old.result.has_answer:
-        return None, None
-    was, now = _amounts(old), _amounts(new)
-    per = 1.0 if old.result.amounts is Amounts.BLEND else 1e-3
-    prices = {key: after.price_per_t(key, on) for key, amount in was.items() if amount}
-    as_before = None
-    if all(price is not None for price in prices.values()):
-        as_before = sum((price or 0.0) * was[key] * per for key, price in prices.items())
-    if not new.result.has_answer:
-        return None, as_before
-    size = max(1.0, *was.values(), *now.values())
-    return all(abs(was.get(k, 0.0) - now.get(k, 0.0)) <= _SAME * size for k in {*was, *now}), as_before
-
-
-def _amounts(answer: Answer) -> dict[int, float]:
-    return {one.ingredient_id: one.amount or 0.0 for one in answer.result.ingredients}
+def _same(old: Position, new: Position, as_before: float | None) -> bool:
+    """Whether the old mix is still the cheapest: the same amounts, or others that cost no less."""
+    assert new.cost is not None
+    if as_before is not None and abs(as_before - new.cost) <= _EQUAL * max(1.0, abs(new.cost)):
+        return True
+    size = max(1.0, *old.amounts.values(), *new.amounts.values())
+    keys = {*old.amounts, *new.amounts}
+    return all(abs(old.amounts.get(k, 0.0) - new.amounts.get(k, 0.0)) <= _SAME * size for k in keys)
 
 
 def _most(
-    library: Library, formula: Formula, prices: Prices, was: Mapping[int, float], now: Mapping[int, float]
+    library: Library, formula: Formula, prices: Moved, was: Mapping[int, float], now: Mapping[int, float]
 ) -> PriceMove | None:
     """The price that did most, by its change times the mean of its two amounts. One that came or went and is in either
     mix stands before all others."""

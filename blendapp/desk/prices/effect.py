@@ -18,6 +18,7 @@ from blendapp.desk.work import Work
 from blendapp.domain.library import Library
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _, plural
+from blendapp.services.kept_answers import AnswersNow
 from blendapp.services.mill import Edit
 from blendapp.services.movers import Mover, movers
 
@@ -64,6 +65,7 @@ class EffectPane(QWidget):
         column.addWidget(self.table, 1)
         self.setFocusProxy(self.table)
         self._both: tuple[Library, Library] | None = None
+        self._answers: AnswersNow | None = None
         self._enough = threading.Event()
         self._of = 0
         self.found: list[Mover] = []
@@ -79,6 +81,7 @@ class EffectPane(QWidget):
     def begin(self, before: Library, after: Library, title: str, leave: str) -> None:
         """Work out what prices do between two libraries that nobody edits. leave: words of the way back."""
         self._both = (before, after)
+        self._answers = self.work.mill.answers.view()
         self.title.setText(title)
         self.leave.setText(leave)
         self.rows.show([], self.work.library.mill.currency)
@@ -98,7 +101,8 @@ class EffectPane(QWidget):
         self.stop.setText(_("Stop"))
         self.stop.show()
         self.remark.say(_("being worked out"))
-        self._aside.ask(lambda: movers(before, after, on, lambda: not enough.is_set(), tell))
+        answers = self._answers
+        self._aside.ask(lambda: movers(before, after, on, lambda: not enough.is_set(), tell, answers))
 
     def _teller(self, enough: threading.Event) -> Callable[[int, int], None]:
         def tell(done: int, of: int) -> None:
