@@ -17,7 +17,8 @@ from blendapp.domain.wording import _
 class Command:
     """One thing to do. key names it for good; group parts the menu; keys are a shortcut in Qt's portable form.
 
-    able: whether it can be done now. in_menu: whether the menu shows it, or only the finder and the keys.
+    able: whether it can be done now. in_menu: whether the menu shows it, or only the finder and the keys. words_now:
+    what it is called while it would do something in particular.
     """
 
     key: str
@@ -27,12 +28,24 @@ class Command:
     keys: str = ""
     able: Callable[[], bool] = lambda: True
     in_menu: bool = True
+    words_now: Callable[[], str] | None = None
+
+    @property
+    def called(self) -> str:
+        """What it is called now."""
+        return self.words if self.words_now is None else self.words_now()
 
 
 class Commands:
-    """The commands of one window, as actions with keys, as a menu, and as things to find."""
+    """The commands of one window, as actions with keys, as a menu, and as things to find.
 
-    def __init__(self, window: QWidget, commands: Sequence[Command]) -> None:
+    before: called with each command just before it runs.
+    """
+
+    def __init__(
+        self, window: QWidget, commands: Sequence[Command], before: Callable[[Command], object] = lambda _one: None
+    ) -> None:
+        self.before = before
         self.by_key = {command.key: command for command in commands}
         self.actions: dict[str, QAction] = {}
         for command in commands:
@@ -47,6 +60,7 @@ class Commands:
         """Do one, if it can be done now."""
         command = self.by_key[key]
         if command.able():
+            self.before(command)
             command.run()
 
     def _triggered(self, key: str, _checked: bool = False) -> None:
@@ -63,6 +77,7 @@ class Commands:
                 menu.addSeparator()
             group = command.group
             action = self.actions[command.key]
+            action.setText(command.called)
             action.setEnabled(command.able())
             menu.addAction(action)
             if before and command.key in before:
@@ -77,7 +92,7 @@ class Commands:
     def found(self) -> list[Found]:
         """The commands that can be done now, as things to find."""
         return [
-            Found(command.words.rstrip("…"), _("command"), partial(self.run, key), _shown(command.keys))
+            Found(command.called.rstrip("…"), _("command"), partial(self.run, key), _shown(command.keys))
             for key, command in self.by_key.items()
             if command.able()
         ]

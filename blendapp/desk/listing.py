@@ -48,11 +48,19 @@ def _edit(bench: Bench) -> list[Command]:
     def writable() -> bool:
         return work.is_open and work.mill.writable
 
+    def undo_words() -> str:
+        what = work.mill.undo_text if work.is_open else None
+        return _("Undo: {what}").format(what=what) if what else _("Undo")
+
+    def redo_words() -> str:
+        what = work.mill.redo_text if work.is_open else None
+        return _("Redo: {what}").format(what=what) if what else _("Redo")
+
     return [
         Command("undo", _("Undo"), "edit", work.undo, "Ctrl+Z",
-                lambda: work.is_open and work.mill.undo_text is not None),
+                lambda: writable() and work.mill.undo_text is not None, words_now=undo_words),
         Command("redo", _("Redo"), "edit", work.redo, "Ctrl+Shift+Z | Ctrl+Y",
-                lambda: work.is_open and work.mill.redo_text is not None),
+                lambda: writable() and work.mill.redo_text is not None, words_now=redo_words),
         Command("find", _("Find anything"), "edit", bench.find_anything, "Ctrl+K", in_menu=False),
         Command("filter", _("Show only some ingredients"), "edit", bench.have.filter.setFocus, "Ctrl+F",
                 lambda: work.is_open, False),

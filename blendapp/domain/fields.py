@@ -89,7 +89,7 @@ FIELDS: tuple[Field, ...] = (
     Field("ingredient", "basis", N_("Basis"), help=N_("Basis of values typed without one.")),
     Field("ingredient", "code", N_("Code")),
     Field("ingredient", "scale_id", N_("Scale"), help=N_("The scale that weighs it.")),
-    Field("ingredient", "stock_kg", N_("Stock kg"), "kg", 0, help=N_("Mass in stock.")),
+    Field("ingredient", "stock_kg", N_("Stock kg"), "kg", 0, least=0, help=N_("Mass in stock.")),
     Field("ingredient", "density_kg_per_l", N_("Density kg/l"), "kg/l", 3, above=0),
     Field("ingredient", "bushel_lb", N_("Bushel lb"), "lb", 1, above=0, help=N_("Mass of one bushel.")),
     Field("ingredient", "tags", N_("Tags"), help=N_("What cautions must know of it.")),

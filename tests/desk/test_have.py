@@ -285,3 +285,43 @@ def test_another_formula_begins_without_refused_texts(bench: Bench, hands: Hands
     refuse_in_composition(bench, hands)
     bench.work.choose(2)
     assert shown(bench, MAIZE, "nutrient 2") == "0.30"
+
+
+def test_a_price_of_nothing_pasted_from_outside_is_a_question_and_a_blank_wipes_none(
+    bench: Bench, hands: Hands
+) -> None:
+    hands.go(bench.have.table, MAIZE, "price")
+    QApplication.clipboard().setText("0\n\n-5\n190")
+    hands.key(Qt.Key.Key_V, CONTROL)
+    library, on = bench.work.library, bench.work.on
+    assert [library.price_per_t(one, on) for one in (MAIZE, SOY, LIMESTONE, PEAS)] == [200, 420, 50, 190]
+    listed = bench.strip.list.text().splitlines()
+    assert bench.strip.words.text() == "1 of 4 cells taken; what was not taken stands below."
+    assert "Maize" in listed[0]
+    assert "type it if it is meant" in listed[0]
+    assert "Limestone" in listed[1]
+    assert "Soybean meal" in listed[2]
+    assert "left as it is" in listed[2]
+    hands.go(bench.have.table, MAIZE, "price")
+    hands.write("0")
+    hands.key(Qt.Key.Key_Return)
+    assert library.price_per_t(MAIZE, on) == 0
+
+
+def test_one_refused_cell_is_counted_in_the_singular(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, MAIZE, "price")
+    QApplication.clipboard().setText("lots")
+    hands.key(Qt.Key.Key_V, CONTROL)
+    assert bench.strip.words.text() == "0 of 1 cell taken; what was not taken stands below."
+
+
+def test_a_negative_stock_is_refused_typed_and_pasted(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, MAIZE, "stock_kg")
+    hands.write("-5")
+    hands.key(Qt.Key.Key_Return)
+    assert bench.work.library.ingredient(MAIZE).stock_kg is None
+    assert "at least 0 kg" in bench.have.model.look(*where(bench, MAIZE, "stock_kg")).fault
+    hands.key(Qt.Key.Key_Escape)
+    QApplication.clipboard().setText("-5")
+    hands.key(Qt.Key.Key_V, CONTROL)
+    assert bench.work.library.ingredient(MAIZE).stock_kg is None

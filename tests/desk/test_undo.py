@@ -7,12 +7,14 @@ from pathlib import Path
 from typing import Any
 
 import pytest
+from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QApplication
 
 from blendapp.desk.bench import Bench
 from blendapp.desk.rail.geometry import End
 from blendapp.domain.formulas import Admits, Animal, LimitKind
 from blendapp.services import workbook
+from tests.desk.conftest import Hands
 
 
 def typed(key: str, text: str, owner: int = 1) -> Callable[[Bench, Path], None]:
@@ -138,3 +140,20 @@ def test_what_is_done_is_undone_and_redone_whole(bench: Bench, tmp_path: Path, n
     # The file holds what the window holds.
     stored = bench.work.mill.store.read_all()
     assert {kind: {one.id: one for one in found} for kind, found in stored.items()} == after
+
+
+def test_the_menu_and_the_finder_name_what_undo_and_redo_take_back(bench: Bench, hands: Hands) -> None:
+    hands.go(bench.have.table, 1, "price")
+    hands.write("211")
+    hands.key(Qt.Key.Key_Return)
+    undo, redo = bench.commands.actions["undo"], bench.commands.actions["redo"]
+    bench.commands.fill(bench.menu)
+    assert undo.text().startswith("Undo: ")
+    assert "Maize" in undo.text()
+    assert redo.text() == "Redo"
+    assert any(thing.words == undo.text() for thing in bench.commands.found())
+    bench.work.undo()
+    bench.commands.fill(bench.menu)
+    assert redo.text() == undo.text().replace("Undo", "Redo") or redo.text().startswith("Redo: ")
+    assert "Maize" in redo.text()
+    bench.commands.all_able()

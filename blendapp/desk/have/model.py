@@ -6,7 +6,7 @@ import datetime
 from dataclasses import replace
 from typing import TYPE_CHECKING, Any
 
-from blendapp.desk.have.reading import NUTRIENT, changes_of
+from blendapp.desk.have.reading import NUTRIENT, PRICE_KEYS, changes_of, pasted_changes
 from blendapp.desk.mix.lines import break_even_words
 from blendapp.desk.rail.geometry import Axis, End, RailState, axis_for
 from blendapp.desk.table.grid import Grid, Heading
@@ -113,7 +113,7 @@ class HaveModel(Grid):
             nutrient = self.work.library.nutrient(int(key.removeprefix(NUTRIENT)))
             value = self.work.library.value(ingredient.id, nutrient.id)
             return None if value is None else value.as_fed(nutrient.unit, ingredient.dry_matter_percent)
-        if key in ("price", "holds", "quoted"):
+        if key == "holds" or key in PRICE_KEYS:
             return self.work.library.price_per_t(ingredient.id, self.work.on)
         if key == "since":
             quote = self.work.library.quote_in_force(ingredient.id, self.work.on)
@@ -251,10 +251,12 @@ class HaveModel(Grid):
         heading = next(one.words for one in self.headings if one.key == key)
         self.work.apply(_("Change {field} of {name}").format(field=heading, name=name), changes)
 
-    def write_block(self, cells: list[tuple[int, str, str]], what: str) -> dict[int, str]:
+    def write_block(self, cells: list[tuple[int, str, str]], what: str, *, pasted: bool = False) -> dict[int, str]:
         """Take every cell of a block that can be taken, as one undo; the sentences of the others by their place."""
+        read = pasted_changes if pasted else changes_of
+
         def thunk(owner: int, key: str, text: str) -> Any:
-            return lambda: changes_of(self.work.mill, owner, key, text, self.work.on)
+            return lambda: read(self.work.mill, owner, key, text, self.work.on)
 
         many = self.work.do(lambda mill: edits.many(mill, what, [thunk(*cell) for cell in cells]))
         return {at: " ".join(problem.text for problem in problems) for at, problems in many.refused.items()}
@@ -271,6 +273,10 @@ class HaveModel(Grid):
         for owner, key in gone:
             self.forgive(owner, key)
         self.forgive_owners({change.id for change in edit.changes if change.kind == "ingredient"})
+
+    def has_price(self, owner: int) -> bool:
+        """Whether a price of an ingredient is in force."""
+        return self.work.library.price_per_t(owner, self.work.on) is not None
 
     def can_write(self, key: str) -> bool:
         """Whether cells of a column are typed into at all."""

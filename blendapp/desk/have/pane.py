@@ -9,7 +9,7 @@ from PySide6.QtCore import QPoint, Qt, Signal
 from PySide6.QtWidgets import QButtonGroup, QHBoxLayout, QLineEdit, QMenu, QPushButton, QTableView, QVBoxLayout, QWidget
 
 from blendapp.desk.have.model import PRICES, HaveModel, column_sets
-from blendapp.desk.have.reading import NUTRIENT
+from blendapp.desk.have.reading import NUTRIENT, PRICE_KEYS
 from blendapp.desk.rail.geometry import End
 from blendapp.desk.shell.glyphs import GlyphButton
 from blendapp.desk.shell.zone import INSET_PX, Zone
@@ -173,9 +173,16 @@ class HavePane(QWidget):
     # -- blocks
 
     def _paste(self, cells: list[tuple[int, str, str]], outside: list[str]) -> None:
-        usable = [cell for cell in cells if self.model.can_write(cell[1])]
+        blank = [cell for cell in cells if cell[1] in PRICE_KEYS and not cell[2].strip()]
+        usable = [cell for cell in cells if self.model.can_write(cell[1]) and cell not in blank]
         skipped = [cell for cell in cells if not self.model.can_write(cell[1]) and cell[2].strip()]
-        self._write_block(usable, _("Paste"), outside + [cell[2].strip() for cell in skipped])
+        lines = [
+            _("{ingredient}, {column}: the cell is blank, so the price is left as it is; Delete takes it away.").format(
+                ingredient=self.work.library.ingredient(owner).name, column=self._column(key))
+            for owner, key, _text in blank if self.model.has_price(owner)
+        ]
+        lines += _fallen([*outside, *(cell[2].strip() for cell in skipped)])
+        self._write_block(usable, _("Paste"), lines, pasted=True)
 
     def _clear(self, cells: list[tuple[int, str]]) -> None:
         names = [cell for cell in cells if cell[1] == "name"]
@@ -185,9 +192,12 @@ class HavePane(QWidget):
         elif len(names) == 1:
             self.remove(names[0][0])
 
-    def _write_block(self, cells: list[tuple[int, str, str]], what: str, outside: list[str]) -> None:
+    def _write_block(
+        self, cells: list[tuple[int, str, str]], what: str, left: list[str], *, pasted: bool = False
+    ) -> None:
+        """Take a block. left: lines about cells that are not even tried."""
         try:
-            bad = self.model.write_block(cells, what)
+            bad = self.model.write_block(cells, what, pasted=pasted)
         except Refused as refusal:
             self.work.said.emit(" ".join(problem.text for problem in refusal.problems), [])
             return
@@ -196,23 +206,24 @@ class HavePane(QWidget):
                 self.model.refuse(owner, key, text, bad[at])
             else:
                 self.model.forgive(owner, key)
-        if bad or outside:
-            self._tell(cells, bad, outside)
+        if bad or left:
+            self._tell(cells, bad, left)
 
-    def _tell(self, cells: list[tuple[int, str, str]], bad: dict[int, str], outside: list[str]) -> None:
-        headings = {heading.key: heading.words for heading in self.model.headings}
+    def _column(self, key: str) -> str:
+        return next(heading.words for heading in self.model.headings if heading.key == key)
+
+    def _tell(self, cells: list[tuple[int, str, str]], bad: dict[int, str], left: list[str]) -> None:
         lines = [
             _("{ingredient}, {column}, “{text}”: {fault}").format(
-                ingredient=self.work.library.ingredient(cells[at][0]).name, column=headings[cells[at][1]],
+                ingredient=self.work.library.ingredient(cells[at][0]).name, column=self._column(cells[at][1]),
                 text=cells[at][2], fault=sentence,
             )
             for at, sentence in bad.items()
         ]
-        lines += [_("“{text}” fell where nothing is typed in.").format(text=text) for text in outside]
-        taken = len(cells) - len(bad)
-        words = plural("{taken} of {all} cell was taken; the others stand below.",
-                       "{taken} of {all} cells were taken; the others stand below.", taken)
-        self.work.said.emit(words.format(taken=taken, all=len(cells) + len(outside)), lines)
+        count = len(cells) + len(left)
+        words = plural("{taken} of {all} cell taken; what was not taken stands below.",
+                       "{taken} of {all} cells taken; what was not taken stands below.", count)
+        self.work.said.emit(words.format(taken=len(cells) - len(bad), all=count), lines + left)
 
     # -- a price by hand
 
@@ -305,3 +316,7 @@ class HavePane(QWidget):
         except (Refused, ValueError) as fault:
             self.work.said.emit(str(fault), [])
             return None
+
+
+def _fallen(texts: list[str]) -> list[str]:
+    return [_("“{text}” fell where nothing is typed in.").format(text=text) for text in texts]

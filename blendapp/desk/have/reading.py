@@ -17,6 +17,7 @@ from blendapp.services import edits
 from blendapp.services.mill import Mill
 
 NUTRIENT = "nutrient "
+PRICE_KEYS = ("price", "quoted")
 
 _NUMBERS = ("dry_matter_percent", "stock_kg", "density_kg_per_l", "bushel_lb")
 _DRY = re.compile(r"(.*?)\s*(dm|dry matter)$", re.IGNORECASE)
@@ -29,7 +30,7 @@ def changes_of(mill: Mill, owner: int, key: str, text: str, on: datetime.date) -
     plain = text.strip()
     if key.startswith(NUTRIENT):
         return _value(mill, owner, int(key.removeprefix(NUTRIENT)), plain)
-    if key in ("price", "quoted"):
+    if key in PRICE_KEYS:
         return _price(mill, ingredient, plain, on, per="t" if key == "price" else None)
     if key in _NUMBERS:
         value = notation().read(plain) if plain else None
@@ -38,6 +39,13 @@ def changes_of(mill: Mill, owner: int, key: str, text: str, on: datetime.date) -
             raise ValueError(sentence)
         return edits.field_changes(mill, ingredient, **{key: value})
     return edits.field_changes(mill, ingredient, **{key: _READ.get(key, _text)(mill, plain)})
+
+
+def pasted_changes(mill: Mill, owner: int, key: str, text: str, on: datetime.date) -> list[Change]:
+    """As changes_of, for a cell of a block from outside, in which a price of 0 or below is most often a slip."""
+    if key in PRICE_KEYS and text.strip() and read_price(text.strip())[0] <= 0:
+        raise ValueError(_("A price of 0 or below is kept out of what is pasted; type it if it is meant."))
+    return changes_of(mill, owner, key, text, on)
 
 
 def _text(_mill: Mill, text: str) -> str:
