@@ -10,7 +10,7 @@ from types import TracebackType
 from PySide6.QtCore import QObject, QSettings, QTimer
 from PySide6.QtWidgets import QMenu, QWidget
 
-from blendapp.desk.commands import Commands
+from blendapp.desk.commands import Command, Commands
 from blendapp.desk.files import Files
 from blendapp.desk.finder.ask import Ask
 from blendapp.desk.finder.panel import Finder
@@ -66,7 +66,7 @@ class Bench(QObject):
         self.versions = VersionsPane(self.work)
         for page in (self.welcome, self.prices, self.effect, self.sheet, self.mill, self.versions):
             frame.middle.addWidget(page)
-        self.commands = Commands(frame, command_list(self))
+        self.commands = Commands(frame, command_list(self), self._before_command)
         self._effect_taken = True
         self.menu = QMenu(frame)
         self.recent_menu = QMenu(_("Opened last"), self.menu)
@@ -85,10 +85,19 @@ class Bench(QObject):
         self.have.column_asked.connect(self._offer_column)
         self.prices.ingredient_wanted.connect(self._ask_ingredient)
         self.mix.limit_wanted.connect(lambda name: self.meet.adding.begin(LimitKind.INGREDIENT, name))
+        # What is said of an edit is said after it, so that the edit takes away only what was said before.
+        self.work.edited.connect(lambda _edit: self.strip.clear())
+        self.work.chosen.connect(self.strip.clear)
+        self.sheet.order.textEdited.connect(self.strip.clear)
+        self.sheet.paper.activated.connect(self.strip.clear)
+        self.strip.resized.connect(self.frame.place_strip)
+        self.frame.middle.currentChanged.connect(
+            lambda _at: self.frame.float_strip(self.frame.middle.currentWidget() is self.sheet))
         self.work.said.connect(self.strip.say)
         self.files.said.connect(self.strip.say)
         self.work.opened.connect(self._opened)
         for page in (self.prices, self.sheet, self.mill, self.versions):
+            page.closed.connect(self.strip.clear)
             page.closed.connect(self.to_bench)
             page.said.connect(self.strip.say)
         self.prices.effect_wanted.connect(self.show_effect)
@@ -154,8 +163,14 @@ class Bench(QObject):
         if self.work.is_open and self.frame.isVisible():
             self.have.table.setFocus()
 
+    def _before_command(self, command: Command) -> None:
+        """What was said leaves with the next thing that is done; looking about is not yet doing."""
+        if command.group != "view" and command.key not in ("find", "filter"):
+            self.strip.clear()
+
     def show_page(self, page: QWidget) -> None:
         """Show a page in place of the three zones; header and caution stay."""
+        self.strip.clear()
         self.frame.middle.setCurrentWidget(page)
         page.setFocus()
 

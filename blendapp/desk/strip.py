@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Sequence
 
-from PySide6.QtCore import Qt
+from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QScrollArea, QSizePolicy, QVBoxLayout, QWidget
 
 from blendapp.desk.shell.frame import Rule
@@ -16,10 +16,18 @@ LIST_PX = 132
 
 
 class Strip(QWidget):
-    """Shows one message until it is closed or the next one comes."""
+    """One message at a time: a sentence, offers as buttons, and a list that scrolls. It stays until the next edit or
+    command, or until it is closed or the next one comes.
+
+    resized: it has another content, and so another height.
+    """
+
+    resized = Signal()
 
     def __init__(self) -> None:
         super().__init__()
+        self.setObjectName("strip")
+        self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
         self.words = QLabel()
         self.words.setWordWrap(True)
         self.words.setFont(text_font(strong=True))
@@ -71,6 +79,7 @@ class Strip(QWidget):
             button.clicked.connect(lambda _checked=False, run=run: self._take(run))
             self.offers.addWidget(button)
         self.show()
+        self.resized.emit()
 
     def _take(self, run: Callable[[], object]) -> None:
         self.clear()

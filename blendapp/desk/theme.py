@@ -151,6 +151,7 @@ def sheet_of(look: Tokens) -> str:
 
 _SHEET = """
 #header, #footer { background: $raised; }
+#strip { background: $ground; }
 #quiet { color: $quiet; }
 QAbstractScrollArea { border: 0; background: $ground; }
 QAbstractItemView { selection-background-color: $chosen; selection-color: $text; outline: 0; }

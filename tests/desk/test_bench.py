@@ -265,3 +265,26 @@ def test_the_keyboard_goes_back_to_where_it_was_when_the_finder_closes(bench: Be
     hands.write("fin")
     hands.key(Qt.Key.Key_Return)
     assert bench.have.table.has_keyboard()
+
+
+def test_what_was_said_leaves_with_the_next_edit_undo_or_command_and_stays_while_one_looks_about(
+    bench: Bench, hands: Hands
+) -> None:
+    hands.go(bench.have.table, 1, "price")
+    bench.strip.say("Three cells stand below.", ["one", "two", "three"])
+    hands.key(Qt.Key.Key_Down)
+    hands.key(Qt.Key.Key_2, Qt.KeyboardModifier.ControlModifier)
+    assert bench.strip.isVisible()
+    hands.go(bench.have.table, 1, "price")
+    hands.write("dear")
+    hands.key(Qt.Key.Key_Return)
+    assert bench.strip.isVisible()
+    hands.write("205")
+    hands.key(Qt.Key.Key_Return)
+    assert not bench.strip.isVisible()
+    bench.strip.say("Again.")
+    hands.key(Qt.Key.Key_Z, Qt.KeyboardModifier.ControlModifier)
+    assert not bench.strip.isVisible()
+    bench.strip.say("Again.")
+    bench.work.choose(2)
+    assert not bench.strip.isVisible()

@@ -7,6 +7,7 @@ from pathlib import Path
 
 import pytest
 from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QApplication
 from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
@@ -39,13 +40,52 @@ def test_another_order_is_worked_out_as_it_is_typed(sheet: Bench, hands: Hands, 
     assert sheet.sheet.batch.order_kg == 500
 
 
-def test_an_order_that_is_no_mass_says_so_and_cannot_be_printed(sheet: Bench) -> None:
-    assert sheet.sheet.batch is not None
-    sheet.sheet.order.setText("plenty")
-    sheet.sheet.make()
-    assert "plenty" in sheet.sheet.words.text()
-    assert not sheet.sheet.print_button.isEnabled()
-    assert not sheet.sheet.pages.pages
+@pytest.mark.parametrize("text", ["plenty", "0", ""])
+def test_an_order_that_is_no_mass_says_so_and_pressing_print_leads_back_to_it(
+    sheet: Bench, hands: Hands, qtbot: QtBot, text: str
+) -> None:
+    pane = sheet.sheet
+    assert pane.batch is not None
+    pane.order.setFocus()
+    pane.order.selectAll()
+    hands.key(Qt.Key.Key_Delete)
+    hands.write(text)
+    pane.make()
+    assert text in pane.words.text()
+    assert not pane.pages.pages
+    asked: list[str] = []
+    pane.ask_save = lambda title, _name: asked.append(title) or ""  # type: ignore[func-returns-value]
+    for button in (pane.print_button, pane.save_button):
+        pane.table.setFocus()
+        hands.click(button)
+        assert pane.order.hasFocus()
+        assert pane.order.selectedText() == text
+    assert not asked
+    assert not list(sheet.work.library.all("batch"))
+    with qtbot.waitSignal(pane.pages.shown, timeout=20000):
+        hands.write("500")
+    assert pane.batch is not None
+    assert pane.words.font().bold() is False
+
+
+def test_what_is_said_takes_no_room_from_the_sheet_and_leaves_with_the_next_figure(
+    sheet: Bench, hands: Hands
+) -> None:
+    page = sheet.frame.middle.geometry()
+    sheet.strip.say("Batch sheet 1 is printed.")
+    QApplication.processEvents()
+    assert sheet.strip.isVisible()
+    assert sheet.frame.middle.geometry() == page
+    assert page.contains(sheet.strip.geometry())
+    sheet.sheet.order.setFocus()
+    hands.write("7")
+    assert not sheet.strip.isVisible()
+    sheet.strip.say("Again.")
+    hands.key(Qt.Key.Key_Escape)
+    assert not sheet.strip.isVisible()
+    sheet.strip.say("On the bench it has its own row.")
+    QApplication.processEvents()
+    assert not sheet.frame.middle.geometry().intersects(sheet.strip.geometry())
 
 
 def test_keeping_the_sheet_gives_it_a_number_and_a_copy_is_counted(sheet: Bench, tmp_path: Path) -> None:

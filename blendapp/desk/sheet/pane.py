@@ -70,12 +70,14 @@ class SheetPane(QWidget):
         self.table.cleared.connect(self._let_free)
         self.table.pasted.connect(self._paste)
         self._last_fixed: int | None = None
+        self._order_wrong = False
         self._rest = QTimer(self, singleShot=True, interval=REST_MS)
         self._rest.timeout.connect(self.make)
         # Whole numbers of scale steps may take a second or two to find.
         self._aside = Aside(self, (Refused, ValueError, FailedCertificate))
         self._aside.done.connect(self._take)
         self._lay()
+        self.order.returnPressed.connect(self._mend_order)
         self.order.textEdited.connect(lambda _text: self._wait())
         self.paper.currentIndexChanged.connect(lambda _at: self._wait())
         self.pages.failed.connect(lambda sentence: self.said.emit(sentence, []))
@@ -195,15 +197,23 @@ class SheetPane(QWidget):
             return
         try:
             order_kg = notation().read(self.order.text())
+            if order_kg <= 0:
+                text = _("An order must be above 0 kg; {mass} is not.")
+                raise ValueError(text.format(mass=self.order.text().strip()))
         except ValueError as fault:
-            self._refuse(str(fault))
+            self._refuse(str(fault), order_wrong=True)
             return
         library, formula_id, on, fixed = work.library.copy(), work.formula_id, work.on, dict(self.lines.fixed)
         self._aside.ask(lambda: batches.make_batch(library, formula_id, order_kg, on, result=result, fixed=fixed))
 
-    def _refuse(self, sentence: str) -> None:
-        """Say why there is no sheet, and show none."""
+    def _refuse(self, sentence: str, *, order_wrong: bool = False) -> None:
+        """Say why there is no sheet, and show none. order_wrong: the buttons then lead to the order."""
         self._say(sentence, ready=False)
+        if order_wrong:
+            self._order_wrong = True
+            self.words.setFont(text_font(strong=True))
+            for button in (self.print_button, self.save_button):
+                button.setEnabled(self.work.mill.writable)
         self.pages.clear()
         self.lines.show(None)
 
@@ -259,7 +269,16 @@ class SheetPane(QWidget):
         if lost:
             self.said.emit(_("These cells fell where no mass is fixed:"), lost)
 
+    def _mend_order(self) -> bool:
+        """Put the keyboard into an order that cannot be read; returns whether that is what stands in the way."""
+        if self._order_wrong:
+            self.order.setFocus()
+            self.order.selectAll()
+        return self._order_wrong
+
     def _say(self, words: str, *, ready: bool) -> None:
+        self._order_wrong = False
+        self.words.setFont(text_font())
         self.words.setText(words)
         self.accepting.setVisible(ready and self.batch is not None and bool(self.batch.broken))
         for button in (self.print_button, self.save_button):
@@ -295,7 +314,7 @@ class SheetPane(QWidget):
     def to_file(self) -> None:
         """Give the batch its number and keep its sheet as a PDF."""
         batch = self.batch
-        if batch is None:
+        if self._mend_order() or batch is None:
             return
         path = self.ask_save(_("Keep the batch sheet as"), f"{batch.formula}.pdf")
         if path:
@@ -308,7 +327,7 @@ class SheetPane(QWidget):
     def to_printer(self) -> None:
         """Give the batch its number and print its sheet."""
         batch = self.batch
-        if batch is None:
+        if self._mend_order() or batch is None:
             return
         with tempfile.TemporaryDirectory() as folder:
             path = Path(folder) / "sheet.pdf"

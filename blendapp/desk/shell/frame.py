@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from PySide6.QtCore import QPoint, QRect, QSize, Qt, QTimer, Signal
-from PySide6.QtGui import QCloseEvent, QPainter, QPaintEvent
+from PySide6.QtGui import QCloseEvent, QPainter, QPaintEvent, QResizeEvent
 from PySide6.QtWidgets import (
     QFrame,
     QHBoxLayout,
@@ -108,6 +108,8 @@ class Frame(QWidget):
         column.addWidget(Rule())
         column.addWidget(self.footer)
         self.wide: int | None = None
+        self._strip: QWidget | None = None
+        self._floats = False
         self._is_painted = False
         self._take_size()
 
@@ -121,7 +123,31 @@ class Frame(QWidget):
 
     def put_strip(self, strip: QWidget) -> None:
         """Put the strip of messages under the header."""
+        self._strip = strip
         self._column.insertWidget(2, strip)
+
+    def float_strip(self, floating: bool) -> None:
+        """Lay the strip over the foot of the page, where it takes no room from it, or give it its own row again."""
+        if self._strip is None or floating is self._floats:
+            return
+        self._floats = floating
+        if floating:
+            self._column.removeWidget(self._strip)
+        else:
+            self._column.insertWidget(2, self._strip)
+        self.place_strip()
+
+    def place_strip(self) -> None:
+        """Put a strip that floats where it belongs."""
+        if self._strip is not None and self._floats:
+            page = self.middle.geometry()
+            height = self._strip.sizeHint().height()
+            self._strip.setGeometry(page.left(), page.bottom() + 1 - height, page.width(), height)
+            self._strip.raise_()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self.place_strip()
 
     def closeEvent(self, event: QCloseEvent) -> None:
         self.closing.emit()
