@@ -7,9 +7,9 @@ import sys
 from collections.abc import Callable
 from typing import Any
 
-from blendapp.domain import limit_units, making, units
+from blendapp.domain import limit_oddities, limit_units, making, units
 from blendapp.domain.fields import fields_of
-from blendapp.domain.formulas import Amounts, Limit, LimitBasis, LimitKind, Subject, SubjectKind
+from blendapp.domain.formulas import Amounts, Limit, LimitBasis, LimitKind, SubjectKind
 from blendapp.domain.ingredients import Ingredient, Value
 from blendapp.domain.library import NAMED_KINDS, Library
 from blendapp.domain.names import fold
@@ -264,35 +264,6 @@ def _count_limit(record: Limit) -> list[Finding]:
     return found
 
 
-def _odd_count(record: Limit, library: Library) -> list[Finding]:
-    members = len(library.members(record.subject))
-    if record.maximum is None or record.maximum < members:
-        return []
-    text = _("The group has {members} ingredients, so that at most {count} of them says nothing.")
-    return [("maximum", text.format(count=f"{record.maximum:g}", members=members))]
-
-
-def _odd_limit(record: Limit, library: Library) -> list[Finding]:
-    if record.kind in (LimitKind.INGREDIENT, LimitKind.NUTRIENT):
-        return []
-    admitted = {i.id for i in library.admitted(library.formula(record.formula_id))}
-    found = [] if record.kind is not LimitKind.COUNT else _odd_count(record, library)
-    for name, subject in (("subject", record.subject), ("per", record.per)):
-        if subject is not None and not subject.is_nutrient:
-            found += [(name, sentence) for sentence in _not_admitted(subject, library, admitted)]
-    return found
-
-
-def _not_admitted(subject: Subject, library: Library, admitted: set[int]) -> list[str]:
-    text = _("{name} is not admitted by the formula and counts as 0 here.")
-    if subject.kind is SubjectKind.CLASS:
-        members = library.members(subject)
-        if any(member.id in admitted for member in members):
-            return []
-        return [_("No admitted ingredient has the class {name}; it counts as 0.").format(name=subject.class_name)]
-    return [text.format(name=member.name) for member in library.members(subject) if member.id not in admitted]
-
-
 _FAULTS: dict[str, Callable[[Any, Library], list[Finding]]] = {
     "mill": _mill,
     "nutrient": _nutrient,
@@ -303,4 +274,8 @@ _FAULTS: dict[str, Callable[[Any, Library], list[Finding]]] = {
     "mixer": _spread,
     "limit": _limit,
 }
-_ODDITIES: dict[str, Callable[[Any, Library], list[Finding]]] = {"value": _odd_value, "limit": _odd_limit}
+_ODDITIES: dict[str, Callable[[Any, Library], list[Finding]]] = {
+    "value": _odd_value,
+    "formula": limit_oddities.odd_formula,
+    "limit": limit_oddities.odd_limit,
+}

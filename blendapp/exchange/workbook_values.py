@@ -180,6 +180,7 @@ def read_columns(
         width = len(cells)
         known = draft.library.values_of(ingredient_id)
         seen: dict[int, str] = {}
+        outvoted: list[tuple[NutrientColumn, float]] = []
         if known and ingredient.basis is Basis.DRY_MATTER and not (has_basis and row.has("Basis")):
             row.oddity("Basis", _("The basis is blank; the row was read on dry matter, as the mill has it."))
         for column in columns:
@@ -203,6 +204,7 @@ def read_columns(
                 continue
             seen[nutrient_id] = column.heading
             if decided and (ingredient_id, nutrient_id) in decided:
+                outvoted.append((column, amount))
                 continue
             basis = column.basis or ingredient.basis
             before = known.get(nutrient_id)
@@ -214,7 +216,44 @@ def read_columns(
                 value = Value(before.id, ingredient_id, nutrient_id, amount, column.unit, basis, entered=entered)
             if (quiet or draft.check(value, row, {"amount": column.heading, "unit": column.heading})) and ingredient_id:
                 changes.append(Change(before, value))
+        if outvoted:
+            _say_outvoted(draft, row, ingredient, outvoted)
     draft.put_all("value", changes)
+
+
+def _say_outvoted(
+    draft: Draft, row: Row, ingredient: Ingredient, outvoted: list[tuple[NutrientColumn, float]]
+) -> None:
+    """One warning a row for the cells that say another amount than Values does, in the unit and basis of the cell."""
+    told: list[str] = []
+    first = ""
+    text = _("{nutrient} ({here} here, {there} in Values)")
+    for column, amount in outvoted:
+        value = draft.library.value(ingredient.id, column.nutrient.id)
+        there = None if value is None else _as_in(column, column.basis or ingredient.basis, value, ingredient)
+        if there is not None and abs(there - amount) > _ROUNDING * max(abs(there), abs(amount)):
+            first = first or column.heading
+            told.append(text.format(nutrient=column.nutrient.name, here=f"{amount:g}", there=f"{there:g}"))
+    if told:
+        sentence = _("The sheet Values says otherwise and was taken: {which}; blank one of the two.")
+        row.oddity(first, sentence.format(which=", ".join(told)))
+
+
+# Two amounts in different units or bases that differ by less were rounded apart by whoever typed them.
+_ROUNDING = 2e-3
+
+
+def _as_in(column: NutrientColumn, basis: Basis, value: Value, ingredient: Ingredient) -> float | None:
+    """A value in the unit of a column and on a basis; None if the dry matter that this takes is unknown."""
+    amount = value.amount
+    if value.unit != column.unit:
+        amount = units.convert(amount, value.unit, column.unit)
+    if value.basis is basis:
+        return amount
+    if not ingredient.dry_matter_percent:
+        return None
+    share = ingredient.dry_matter_percent / 100
+    return amount * share if basis is Basis.AS_FED else amount / share
 
 
 def read_prices(
