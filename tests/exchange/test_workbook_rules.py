@@ -14,6 +14,7 @@ from blendapp.domain.ingredients import Basis, Origin, Tag
 from blendapp.domain.library import Library
 from blendapp.exchange import read_workbook
 from tests.exchange.altered_mill import Reader, said
+from tests.exchange.made_files import write_sheets
 from tests.mills import TODAY
 
 
