@@ -123,7 +123,11 @@ class Bench(QObject):
             self.have.table.setFocus()
 
     def close(self) -> None:
-        """Let the mill file go."""
+        """Let the mill file go; what is being typed is taken first, if it can be."""
+        typing = self.frame.focusWidget()
+        if typing is not None:
+            # An editor that outlived its mill would write into nothing.
+            typing.clearFocus()
         self.finder.hide()
         self.effect.stop_all()
         self.work.close()

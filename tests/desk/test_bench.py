@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import contextlib
 from pathlib import Path
 
 import pytest
@@ -288,3 +289,14 @@ def test_what_was_said_leaves_with_the_next_edit_undo_or_command_and_stays_while
     bench.strip.say("Again.")
     bench.work.choose(2)
     assert not bench.strip.isVisible()
+
+
+@pytest.mark.parametrize(("text", "stored"), [("211", 211), ("dear", 200)])
+def test_a_window_closed_while_one_types_takes_what_can_be_taken(
+    bench: Bench, hands: Hands, mill_file: Path, text: str, stored: float
+) -> None:
+    hands.go(bench.have.table, 1, "price")
+    hands.write(text)
+    bench.frame.close()
+    with contextlib.closing(open_mill(mill_file)) as mill:
+        assert mill.library.price_per_t(1, bench.work.on) == stored

@@ -129,7 +129,7 @@ def test_stopping_keeps_what_is_worked_out_and_the_rest_can_follow(
 ) -> None:
     begun = threading.Event()
 
-    def slow(before, after, on, go_on, progress):  # type: ignore[no-untyped-def]
+    def slow(before, after, on, go_on, progress, answers):  # type: ignore[no-untyped-def]
         rows = movers(before, after, on)
         progress(1, 2)
         begun.set()

@@ -24,15 +24,16 @@ from blendapp.desk.aside import Aside
 from blendapp.desk.choice import Choice
 from blendapp.desk.sheet.fixing import FixModel
 from blendapp.desk.sheet.pages import PageView, images_for_printer
+from blendapp.desk.sheet.words import batch_words
 from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.desk.work import Work
-from blendapp.domain.batches import Batch, proof_words
+from blendapp.domain.batches import Batch
 from blendapp.domain.notation import notation
 from blendapp.domain.problems import Refused
 from blendapp.domain.results import Status
-from blendapp.domain.wording import _, plural
+from blendapp.domain.wording import _
 from blendapp.services import batch as batches
 from blendapp.services import sheets
 from blendapp.services.formulate import FailedCertificate
@@ -240,7 +241,7 @@ class SheetPane(QWidget):
             return
         self.batch = found
         self.lines.show(found)
-        self._say(_batch_words(found), ready=True)
+        self._say(batch_words(found), ready=True)
         paper = self._paper()
         self.pages.show_pdf(lambda: sheets.batch_pdf(found, paper))
 
@@ -392,20 +393,3 @@ class SheetPane(QWidget):
 
 def _pdf(path: str) -> Path:
     return Path(path) if Path(path).suffix else Path(path).with_suffix(".pdf")
-
-
-def _batch_words(batch: Batch) -> str:
-    write = notation().write_short
-    lines = [plural("{count} batch of {kg} kg", "{count} equal batches of {kg} kg", batch.batches).format(
-        count=batch.batches, kg=write(batch.batch_kg, 3))]
-    if batch.residue_kg:
-        text = _("The lines come to {kg} kg less than the batch.") if batch.residue_kg < 0 else _(
-            "The lines come to {kg} kg more than the batch.")
-        lines.append(text.format(kg=write(abs(batch.residue_kg), 3)))
-    if batch.broken:
-        names = ", ".join(batch.limits[at].name for at in batch.broken)
-        lines.append(_("Rounding to the scales breaks: {names}. It may be mixed only if somebody accepts that.").format(
-            names=names))
-    if not batch.proven:
-        lines.append(proof_words(batch))
-    return "\n".join(lines)
