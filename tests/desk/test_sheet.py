@@ -7,7 +7,8 @@ from pathlib import Path
 
 import pytest
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QApplication
+from PySide6.QtGui import QFont
+from PySide6.QtWidgets import QApplication, QLabel
 from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
@@ -52,7 +53,9 @@ def test_an_order_that_is_no_mass_says_so_and_pressing_print_leads_back_to_it(
     hands.write(text)
     pane.make()
     assert text in pane.words.text()
+    assert pane.words.font().weight() == QFont.Weight.DemiBold
     assert not pane.pages.pages
+    assert not [page for page in pane.pages.inside.findChildren(QLabel) if page.isVisible()]
     asked: list[str] = []
     pane.ask_save = lambda title, _name: asked.append(title) or ""  # type: ignore[func-returns-value]
     for button in (pane.print_button, pane.save_button):
@@ -65,7 +68,7 @@ def test_an_order_that_is_no_mass_says_so_and_pressing_print_leads_back_to_it(
     with qtbot.waitSignal(pane.pages.shown, timeout=20000):
         hands.write("500")
     assert pane.batch is not None
-    assert pane.words.font().bold() is False
+    assert pane.words.font().weight() == QFont.Weight.Normal
 
 
 def test_what_is_said_takes_no_room_from_the_sheet_and_leaves_with_the_next_figure(

@@ -154,6 +154,6 @@ def test_the_menu_and_the_finder_name_what_undo_and_redo_take_back(bench: Bench,
     assert any(thing.words == undo.text() for thing in bench.commands.found())
     bench.work.undo()
     bench.commands.fill(bench.menu)
-    assert redo.text() == undo.text().replace("Undo", "Redo") or redo.text().startswith("Redo: ")
+    assert redo.text().startswith("Redo: ")
     assert "Maize" in redo.text()
     bench.commands.all_able()

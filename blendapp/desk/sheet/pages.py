@@ -103,6 +103,8 @@ class PageView(QScrollArea):
             item = self.column.takeAt(0)
             widget = item.widget() if item is not None else None
             if widget is not None:
+                # A page that is refused goes at once, not when Qt gets to it.
+                widget.hide()
                 widget.deleteLater()
 
     def words(self) -> str:
