@@ -92,7 +92,7 @@ SHARE_OF_DRY_MATTER = "% of dry matter"
 # Mass that a price may be per, in kg; "bu" needs the ingredient's bushel weight.
 PRICE_PER_KG: dict[str, float] = {
     "t": 1000.0, "kg": 1.0, "100 kg": 100.0, "lb": LB_KG, "cwt": 100 * LB_KG,
-    "short ton": SHORT_TON_KG, "long ton": LONG_TON_KG,
+    "long cwt": 112 * LB_KG, "short ton": SHORT_TON_KG, "long ton": LONG_TON_KG,
 }
 BUSHEL = "bu"
 PRICE_PER: tuple[str, ...] = (*PRICE_PER_KG, BUSHEL)
@@ -113,6 +113,8 @@ def legal_bushel_lb(name: str) -> float | None:
 
 TON_MEANINGS: dict[str, str] = {"short ton": "short ton", "long ton": "long ton", "t": "t"}
 CWT_MEANINGS: dict[str, float] = {"100 lb": 100 * LB_KG, "112 lb": 112 * LB_KG}
+# As which mass a quote keeps what a mill calls a cwt, so that the quote stays what it was if the mill changes its mind.
+CWT_KEPT_AS: dict[str, str] = {"100 lb": "cwt", "112 lb": "long cwt"}
 
 
 def is_currency_code(text: str) -> bool:

@@ -48,8 +48,7 @@ class AmbiguousPriceUnit(ValueError):
     """The words have several meanings and the mill has not said which one holds."""
 
 
-# A hundredweight of 112 lb is a twentieth of a long ton, so no digit of the price changes its meaning.
-_LONG_CWT = PriceUnit("long ton", 20.0)
+_LONG_CWT = PriceUnit(units.CWT_KEPT_AS[_CWT_112])
 
 
 def unit_choices(words: str) -> tuple[str, ...]:

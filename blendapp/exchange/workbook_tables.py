@@ -108,8 +108,11 @@ def _price(library: Library, ingredient: Ingredient, quote: Quote | None) -> tup
         weight = ingredient.bushel_lb or units.legal_bushel_lb(ingredient.name)
         if weight != quote.bushel_lb:
             return quote.price_per_t, "t"
-    if quote.per == "cwt" and library.mill.cwt_means == "112 lb":
-        return quote.price * 20, "short ton"
+    kept_as = units.CWT_KEPT_AS.get(library.mill.cwt_means, "cwt")
+    if quote.per == kept_as:
+        return quote.price, "cwt"
+    if quote.per == "cwt":
+        return quote.price, "100 lb"
     return quote.price, quote.per
 
 

@@ -103,6 +103,8 @@ def price_changes(
     """The changes of set_price: a new quote, so that the price history keeps the old one."""
     old = mill.library.quote_in_force(ingredient_id, on)
     chosen = per or (old.per if old else "t")
+    if chosen == "cwt" and (old is None or old.per != "cwt"):
+        chosen = units.CWT_KEPT_AS.get(mill.library.mill.cwt_means, chosen)
     if old is not None and old.price == price and old.per == chosen:
         return []
     if old is None and price is None:

@@ -190,3 +190,24 @@ def test_a_text_longer_than_a_cell_is_cut_and_said(tmp_path: Path) -> None:
     assert len(read(tmp_path / "out.xlsx").ingredient(1).note) == 32_767
 
 
+
+
+@pytest.mark.parametrize(
+    ("means", "per", "exported"),
+    [
+        ("112 lb", "long cwt", "cwt"), ("112 lb", "cwt", "100 lb"), ("100 lb", "cwt", "cwt"), ("", "cwt", "cwt"),
+        ("100 lb", "long cwt", "long cwt"), ("", "long cwt", "long cwt"),
+    ],
+)
+def test_a_price_per_hundredweight_comes_out_as_typed_whatever_the_mill_calls_one(
+    tmp_path: Path, means: str, per: str, exported: str
+) -> None:
+    maker = Maker(cwt_means=means)
+    maker.ingredient("Maize", 8.4, per=per)
+    path = tmp_path / "mill.xlsx"
+    write_workbook(path, maker.library, TODAY)
+    heads, row, *_rest = openpyxl.load_workbook(path)["Ingredients"].values
+    assert (row[heads.index("Price")], row[heads.index("Price per")]) == (8.4, exported)
+    back = read(path)
+    assert [(quote.price, quote.per) for quote in back.quotes_of(1)] == [(8.4, per)]
+    assert back.price_per_t(1, TODAY) == maker.library.price_per_t(1, TODAY)

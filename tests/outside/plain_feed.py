@@ -27,8 +27,8 @@ OF_THE_DAY = {
 }
 INCLUSION = {"%": 0.01, "kg/t": 1e-3, "g/t": 1e-6, "lb/short ton": 1 / 2000}
 FEEDING = {"kg/day": 1.0, "g/day": 1e-3, "lb/day": LB, "% of dry matter": 0.01}
-KG_OF = {"t": 1000.0, "kg": 1.0, "100 kg": 100.0, "lb": LB, "cwt": 100 * LB, "short ton": 2000 * LB,
-         "long ton": 2240 * LB}
+KG_OF = {"t": 1000.0, "kg": 1.0, "100 kg": 100.0, "lb": LB, "cwt": 100 * LB, "long cwt": 112 * LB,
+         "short ton": 2000 * LB, "long ton": 2240 * LB}
 
 
 class Quotient(NamedTuple):

@@ -65,6 +65,7 @@ PRICE_PER_KG = {
     "100 kg": ("100 * kilogram", "kilogram"),
     "lb": ("pound", "kilogram"),
     "cwt": ("short_hundredweight", "kilogram"),
+    "long cwt": ("long_hundredweight", "kilogram"),
     "short ton": ("short_ton", "kilogram"),
     "long ton": ("long_ton", "kilogram"),
 }

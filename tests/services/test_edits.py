@@ -399,3 +399,14 @@ def test_a_quote_of_the_file_is_what_was_typed(opened: Opened) -> None:
     assert quote == replace(
         Quote(quote.id, MAIZE, 5.15, "bu", 56.0), valid_from=TODAY, recorded=TODAY, source="typed", entered="5,15"
     )
+
+
+@pytest.mark.parametrize(("means", "per"), [("112 lb", "long cwt"), ("100 lb", "cwt"), ("", "cwt")])
+def test_a_price_typed_per_cwt_keeps_the_mass_that_the_mill_calls_one(
+    opened: Opened, means: str, per: str
+) -> None:
+    mill = opened(library())
+    edits.set_mill(mill, cwt_means=means)
+    edits.set_price(mill, MAIZE, 8.4, TODAY, per="cwt")
+    quote = mill.library.quote_in_force(MAIZE, TODAY)
+    assert (quote.price, quote.per) == (8.4, per)
