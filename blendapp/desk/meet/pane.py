@@ -147,6 +147,8 @@ class MeetPane(QWidget):
 
     def _tell_again(self) -> None:
         text = "" if self.told is None or self.work.stale else self.model.sentence(self.told)
+        if not text and self.work.formula is not None:
+            text = _("Point at a limit, or walk to it with the arrow keys, to read what it costs and how far.")
         if text != self.telling.text():
             self.telling.setText(text)
             self.telling.setAccessibleName(text)
