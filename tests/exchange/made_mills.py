@@ -99,7 +99,7 @@ def _ingredient(draw: st.DrawFn, number: int, name: str, classes: list[str], lib
     scales = [None, *library.records["scale"]]
     return Ingredient(
         number, name, draw(st.sampled_from(classes)), draw(maybe(st.floats(0, 100))), draw(st.sampled_from(Basis)),
-        draw(texts).strip(), draw(st.sampled_from(scales)), draw(maybe(any_numbers)), draw(maybe(st.floats(1e-3, 10))),
+        draw(texts).strip(), draw(st.sampled_from(scales)), draw(maybe(numbers)), draw(maybe(st.floats(1e-3, 10))),
         draw(maybe(st.floats(1, 100))), tuple(draw(st.lists(st.sampled_from(Tag), unique=True, max_size=3))), None,
         draw(texts), draw(texts), draw(texts), draw(texts), draw(texts),
     )
