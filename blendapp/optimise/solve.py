@@ -128,7 +128,7 @@ def _limits(arrays: Arrays, face: Face, x: Array, y: Array, reduced: Array) -> d
     for position, k in enumerate(face.active.tolist()):
         sides.setdefault(int(arrays.row[k]), []).append(position)
     fixed_price = np.abs(face.null).max(axis=1, initial=0.0) <= _NULL
-    alone = _alone(arrays, face, y, reduced)
+    single = alone(arrays, face, y, reduced)
     for i, row in enumerate(program.rows):
         if row.limit is None:
             continue
@@ -145,7 +145,7 @@ def _limits(arrays: Arrays, face: Face, x: Array, y: Array, reduced: Array) -> d
             binding = "minimum" if minimum else "maximum"
             value = float(arrays.bound[k])
             # among several optimal mixes, what the bound multiplies may differ, and with it the two slopes
-            fixed = fixed_price[position] and (row.divisor is None or alone or y[k] == 0.0)
+            fixed = fixed_price[position] and (row.divisor is None or single or y[k] == 0.0)
             price = float(y[k] * arrays.factor[k]) * per if fixed else None
         limits[row.limit] = LimitState(value, binding, price is not None, price)
     if program.bounds:
@@ -153,7 +153,7 @@ def _limits(arrays: Arrays, face: Face, x: Array, y: Array, reduced: Array) -> d
     return limits
 
 
-def _alone(arrays: Arrays, face: Face, y: Array, reduced: Array) -> bool:
+def alone(arrays: Arrays, face: Face, y: Array, reduced: Array) -> bool:
     """Whether no other mix costs the same, told by prices that are nowhere nought (so it may say no in vain)."""
     noise = TIED * float(np.abs(arrays.cost).max(initial=0.0))
     idle = ~face.inside & (arrays.lower < arrays.upper)

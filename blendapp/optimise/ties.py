@@ -18,7 +18,7 @@ from blendapp.optimise.arrays import Arrays
 from blendapp.optimise.linear import FailedSolve, Vertex, optimum
 from blendapp.optimise.program import Array
 from blendapp.optimise.solution import Solution
-from blendapp.optimise.solve import TIED, snapshot
+from blendapp.optimise.solve import TIED, alone, snapshot
 from blendapp.optimise.whole import count_states
 
 _MOVES = 1e-9
@@ -88,6 +88,9 @@ class _Set:
 
 def tied(solution: Solution) -> bool:
     """Whether other amounts cost the same as an optimal solution."""
+    arrays, face, y = solution.arrays, solution.face, solution.duals
+    if arrays is not None and face is not None and y is not None and alone(arrays, face, y, arrays.cost - y @ arrays.a):
+        return False
     return _optimal_set(solution) is not None
 
 

@@ -43,6 +43,13 @@ def mill_of(program: Program) -> tuple[Library, Formula]:
 
 
 def main(programs: int = 15) -> None:
+    """Print two lines a size: without and with both-sided prices and price ranges."""
+    for prices in (False, True):
+        print("with both-sided prices and price ranges" if prices else "with the solver's prices")
+        measure(programs, prices)
+
+
+def measure(programs: int, prices: bool) -> None:
     """Print one line a size."""
     for columns, limits in SIZES:
         ratios, ours, bare = [], [], []
@@ -55,7 +62,7 @@ def main(programs: int = 15) -> None:
                 start = time.perf_counter()
                 result = linprog(**call)
                 middle = time.perf_counter()
-                answer = formulate(library, feed.id, TODAY, composition)
+                answer = formulate(library, feed.id, TODAY, composition, prices=prices)
                 end = time.perf_counter()
                 assert answer.cost is not None
                 assert abs(result.fun - answer.cost) <= 1e-6 * abs(result.fun)

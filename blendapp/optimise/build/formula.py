@@ -181,6 +181,8 @@ def unknown_values(library: Library, built: FormulaProgram) -> list[UnknownValue
     """
     unsafe: dict[tuple[str, str], bool] = {}
     no_dry = np.isnan(built.dry)
+    if not (no_dry.any() or np.isnan(built.composition).any()):
+        return []
     for limit in built.limits:
         if limit.minimum is None and limit.maximum is None:
             continue
