@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 import numpy as np
 
@@ -13,6 +14,9 @@ from blendapp.domain.ingredients import Basis, Ingredient
 from blendapp.domain.library import Library
 from blendapp.domain.records import Change
 from blendapp.optimise.program import Array
+
+if TYPE_CHECKING:
+    from blendapp.optimise.build.formula import FormulaProgram
 
 
 @dataclass(frozen=True)
@@ -31,12 +35,14 @@ class Composition:
     """Composition values per kg as fed, in base units (units.Unit); unknown is NaN.
 
     columns: nutrient identifier to column. A row is worked out when first asked for, and so is what a limit displays.
+    built: the last program of each formula by identifier, of which new prices change only the cost.
     """
 
     def __init__(self, library: Library) -> None:
         self.columns = {nutrient.id: at for at, nutrient in enumerate(library.nutrients)}
         self._rows: dict[int, Array] = {}
         self._shown: dict[int, Shown] = {}
+        self.built: dict[int, FormulaProgram] = {}
 
     def shown(self, library: Library, formula: Formula, limit: Limit) -> Shown:
         """What is displayed of a limit. Raises ValueError for a unit that does not fit."""
@@ -65,6 +71,8 @@ class Composition:
     def refresh(self, library: Library, changes: Iterable[Change]) -> None:
         """Forget what edits have made stale. Call it after the library took them."""
         for change in changes:
+            if change.kind in ("nutrient", "ingredient", "formula", "value"):
+                self.built.clear()
             if change.kind in ("nutrient", "ingredient", "formula"):
                 self._shown.clear()
             if change.kind == "nutrient":
@@ -84,6 +92,7 @@ class Composition:
         twin.columns = dict(self.columns)
         twin._rows = dict(self._rows)
         twin._shown = dict(self._shown)
+        twin.built = dict(self.built)
         return twin
 
     def _row(self, library: Library, ingredient: Ingredient) -> Array:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -61,13 +61,16 @@ def build(
     taken = [(i, p) for i, p in zip(admitted, prices, strict=True) if with_unpriced or p is not None]
     ingredients = tuple(i for i, _price in taken)
     price_per_t = np.array([np.nan if p is None else p for _i, p in taken], dtype=float)
-    dry = np.array([np.nan if (d := i.dry_matter_fraction) is None else d for i in ingredients], dtype=float)
-    matrix = composition.matrix(library, ingredients)
-    limits = tuple(library.limits(formula.id))
-    shown = tuple(composition.shown(library, formula, limit) for limit in limits)
-    factors = tuple(one.factor for one in shown)
     blend = formula.amounts is Amounts.BLEND
     cost = np.nan_to_num(price_per_t) * (1.0 if blend else 1e-3)
+    limits = tuple(library.limits(formula.id))
+    kept = composition.built.get(formula.id)
+    if kept is not None and kept.formula == formula and kept.ingredients == ingredients and kept.limits == limits:
+        return replace(kept, program=replace(kept.program, cost=cost), price_per_t=price_per_t, unpriced=unpriced)
+    dry = np.array([np.nan if (d := i.dry_matter_fraction) is None else d for i in ingredients], dtype=float)
+    matrix = composition.matrix(library, ingredients)
+    shown = tuple(composition.shown(library, formula, limit) for limit in limits)
+    factors = tuple(one.factor for one in shown)
     maker = _Maker(library, formula, ingredients, np.nan_to_num(matrix), dry, composition.columns)
     maker.take(limits, factors)
     n = len(ingredients)
@@ -83,9 +86,10 @@ def build(
         counts=tuple(maker.counts),
         names=tuple(i.name for i in ingredients),
     )
-    return FormulaProgram(
+    built = composition.built[formula.id] = FormulaProgram(
         program, formula, ingredients, price_per_t, limits, shown, factors, matrix, dry, composition.columns, unpriced
     )
+    return built
 
 
 class _Maker:
