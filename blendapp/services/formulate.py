@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import datetime
-from collections.abc import Iterable, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
 from blendapp.domain import cautions
@@ -91,14 +91,6 @@ def answer_to(
     solution, tie = equal_mixes.settle(library, built, solution)
     result = replace(_answer(library, built, on, solution, unknown, prices), tie=tie)
     return Answer(result, built, solution if result.has_answer else None)
-
-
-def formulate_all(
-    library: Library, formula_ids: Iterable[int], on: datetime.date, composition: Composition | None = None
-) -> list[Result]:
-    """The results of several formulas, in their order."""
-    composition = composition or Composition(library)
-    return [formulate(library, formula_id, on, composition) for formula_id in formula_ids]
 
 
 def formulas_named(library: Library, names: Sequence[str]) -> list[Formula]:

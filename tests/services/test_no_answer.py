@@ -13,7 +13,8 @@ from blendapp.domain.quotes import Quote
 from blendapp.domain.results import Result, Status
 from blendapp.optimise.linear import FailedSolve
 from blendapp.services import formulate as formulating
-from blendapp.services.formulate import FailedCertificate, formulas_named, formulate, formulate_all
+from blendapp.services.asking import formulate_whole
+from blendapp.services.formulate import FailedCertificate, formulas_named, formulate
 from tests.mills import TODAY, Maker, three_ingredients
 
 
@@ -253,6 +254,6 @@ def test_several_formulas_come_back_in_their_order_with_the_answers_that_each_ha
     make = protein_mill()
     for name, need in (("A", 20), ("B", 70), ("C", 10)):
         make.limit(make.formula(name), "nutrient", "Protein", need)
-    found = formulate_all(make.library, [3, 1, 2], TODAY)
+    found = formulate_whole(make.library, [3, 1, 2], TODAY)
     assert [r.formula for r in found] == ["C", "A", "B"]
     assert found == [formulate(make.library, key, TODAY) for key in (3, 1, 2)]
