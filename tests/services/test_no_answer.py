@@ -13,8 +13,8 @@ from blendapp.domain.quotes import Quote
 from blendapp.domain.results import Result, Status
 from blendapp.optimise.linear import FailedSolve
 from blendapp.services import formulate as formulating
-from blendapp.services.asking import formulate_whole
-from blendapp.services.formulate import FailedCertificate, formulas_named, formulate
+from blendapp.services.asking import ask_all, formulate_whole
+from blendapp.services.formulate import FailedCertificate, answer_to, formulas_named, formulate
 from tests.mills import TODAY, Maker, three_ingredients
 
 
@@ -256,4 +256,4 @@ def test_several_formulas_come_back_in_their_order_with_the_answers_that_each_ha
         make.limit(make.formula(name), "nutrient", "Protein", need)
     found = formulate_whole(make.library, [3, 1, 2], TODAY)
     assert [r.formula for r in found] == ["C", "A", "B"]
-    assert found == [formulate(make.library, key, TODAY) for key in (3, 1, 2)]
+    assert found == [ask_all(answer_to(make.library, key, TODAY)) for key in (3, 1, 2)]
