@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+import threading
 from dataclasses import replace
 from pathlib import Path
+from typing import Any
 
 import pytest
 from PySide6.QtCore import Qt
@@ -12,7 +14,9 @@ from PySide6.QtWidgets import QApplication, QLabel
 from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
+from blendapp.domain.batches import Batch
 from blendapp.domain.results import Status
+from blendapp.services import batch as batches
 from blendapp.services.batch import make_batch
 from tests.desk.conftest import Hands
 
@@ -124,15 +128,25 @@ def line_kg(bench: Bench, name: str) -> float:
     return next(line.target_kg for line in bench.sheet.batch.lines if line.ingredient == name)
 
 
-def test_a_line_fixed_by_hand_stays_and_the_others_make_up_the_batch(sheet: Bench, hands: Hands, qtbot: QtBot) -> None:
+def test_a_line_fixed_by_hand_stays_and_the_others_make_up_the_batch(
+    sheet: Bench, hands: Hands, qtbot: QtBot, monkeypatch: pytest.MonkeyPatch
+) -> None:
     pane = sheet.sheet
     before = line_kg(sheet, "Maize")
+    go_on = threading.Event()
+
+    def held(*given: Any, **named: Any) -> Batch:
+        assert go_on.wait(20)
+        return make_batch(*given, **named)
+
+    monkeypatch.setattr(batches, "make_batch", held)
     hands.go(pane.table, 1, "kg")
     hands.write(f"{before - 2:g}")
     with qtbot.waitSignal(pane.pages.shown, timeout=20000):
         hands.key(Qt.Key.Key_Return)
         assert pane.batch is None
         assert not pane.print_button.isEnabled()
+        go_on.set()
     assert line_kg(sheet, "Maize") == before - 2
     assert pane.batch is not None
     assert pane.batch.total_kg == pytest.approx(1000)
