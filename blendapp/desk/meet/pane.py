@@ -81,7 +81,7 @@ class MeetPane(QWidget):
         work.edited.connect(self._edited)
         work.reversed.connect(self.model.forgive_all)
         work.answered.connect(self._answered)
-        work.learned.connect(self._answered)
+        work.learned.connect(self._learned)
         table.grip.proposed.connect(self._propose)
         table.grip.given.connect(self._give)
         table.grip.taken_back.connect(self._take_back)
@@ -123,6 +123,15 @@ class MeetPane(QWidget):
         else:
             self.model.take_result()
             self.model.refresh()
+        self._say()
+
+    def _learned(self) -> None:
+        # Near-optimal ranges change no order, and a list made anew would close what is being typed into.
+        if self.work.result is not None and self.work.result.conflict is not None:
+            self._answered()
+            return
+        self.model.take_result()
+        self.model.refresh()
         self._say()
 
     def _rebuild(self, *, keep_order: bool) -> None:
