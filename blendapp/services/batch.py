@@ -12,7 +12,6 @@ from typing import TYPE_CHECKING
 
 from blendapp.domain import cautions
 from blendapp.domain.batches import Batch, BatchLine
-from blendapp.domain.formulas import Amounts
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
 from blendapp.domain.mills import PrintedBatch
@@ -216,7 +215,3 @@ def usual_batch_kg(library: Library, formula_id: int) -> float:
     formula = library.formula(formula_id)
     fills = [mixer.greatest_kg for mixer in library.mixers if mixer.greatest_kg]
     return formula.batch_kg or max(fills, default=1000.0)
-
-
-def is_ration(library: Library, formula_id: int) -> bool:
-    return library.formula(formula_id).amounts is Amounts.RATION

@@ -14,7 +14,7 @@ from blendapp.domain.fields import field_of
 from blendapp.domain.formulas import SubjectKind
 from blendapp.domain.library import Library
 from blendapp.domain.problems import Place, Problem, Refused, Severity
-from blendapp.domain.records import KINDS, Change, Record
+from blendapp.domain.records import KIND_OF, Change, Record
 from blendapp.domain.wording import _
 from blendapp.storage import MillFileError
 
@@ -255,7 +255,7 @@ def problems_of(changes: Iterable[Change], library: Library) -> list[Problem]:
 
 
 def kind_of(record: Record) -> str:
-    return next(kind for kind, cls in KINDS.items() if cls is type(record))
+    return KIND_OF[type(record)]
 
 
 def place_of(record: Record, field: str, library: Library) -> Place:
