@@ -7,8 +7,9 @@ from collections.abc import Iterable, Sequence
 from blendapp.domain.batches import Batch, proof_words
 from blendapp.domain.figures import write_measure, write_shadow_price
 from blendapp.domain.formulas import Amounts
+from blendapp.domain.list_rows import Fate
 from blendapp.domain.notation import notation
-from blendapp.domain.price_rows import Fate, PriceListReading
+from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.results import Conflict, LimitResult, Result, Side
 from blendapp.domain.wording import _
 

@@ -13,7 +13,7 @@ from pathlib import Path
 from blendapp.cli import as_json, as_text
 from blendapp.cli.parser import CallFault, make_parser
 from blendapp.domain.cautions import general_caution
-from blendapp.domain.price_rows import Fate
+from blendapp.domain.list_rows import Fate
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.results import Status
 from blendapp.domain.wording import _, use_language

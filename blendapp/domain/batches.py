@@ -4,16 +4,47 @@ from __future__ import annotations
 
 import datetime
 from dataclasses import dataclass
+from enum import StrEnum
 
 from blendapp.domain.notation import notation
 from blendapp.domain.results import LimitResult, NutrientResult
 from blendapp.domain.wording import _
 
 
+class CleanOut(StrEnum):
+    """What is done to the mixer between two feeds. Common practice; 21 CFR 225.65 and 225.165 name the three."""
+
+    PHYSICAL = "physical"
+    FLUSH = "flush"
+    SEQUENCE = "sequence"
+    NONE = "none needed"
+
+
+@dataclass(frozen=True)
+class Step:
+    """One step of making the batch, as the operator reads it. minutes: None where it is not timed."""
+
+    text: str
+    minutes: float | None = None
+    setting: str = ""
+
+
+@dataclass(frozen=True)
+class ToMake:
+    """What must be made before a batch: so much of an ingredient, by the formula that makes it, for the whole order."""
+
+    ingredient: str
+    formula_id: int
+    formula: str
+    mass_kg: float
+
+
 @dataclass(frozen=True)
 class BatchLine:
     """One line of a batch sheet. share_kg: the exact share of the batch; target_kg: a multiple of step_kg.
 
+    bins: where it stands, each with its lot if one is known. step_l, target_l: of a line that a liquid meter doses.
+    rework: whether it was put in at a stated share. of_opened: the made ingredients in whose place it stands, in part.
     scale: its name, "" in a mill without scales. drug, drug_level, drug_species, withdrawal: as entered, of a
     medicated line. tolerance_kg: how far target_kg may lie from share_kg, None in a batch that did not keep it. fixed:
     whether a person set target_kg.
@@ -32,6 +63,11 @@ class BatchLine:
     withdrawal: str = ""
     tolerance_kg: float | None = None
     fixed: bool = False
+    bins: tuple[str, ...] = ()
+    step_l: float | None = None
+    target_l: float | None = None
+    rework: bool = False
+    of_opened: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -43,6 +79,12 @@ class Batch:
     first aim ("total", "limits", "deviation" or "cost", in this order) in which a better batch may exist, "" where
     none does; gap: by how much it could at most be better (kg, limits, sum of relative deviations, money), else None.
     draft: whether the formula stood otherwise than approved, or never was; approved_by: else name, capacity and day.
+
+    site, mixer: names, "" where none is known. steps: of making it, in order. to_make: for the whole order.
+    previous_feed: what went through the mixer before, with its sheet, "" where not known; clean_out: what was chosen,
+    None to be filled in by hand; clean_out_reason: why one is needed, "" where nothing says so. yield_kg: of one
+    batch, after loss_percent is lost and the dry matter of the mix is brought to product_dry_matter_percent; None
+    where yield_unknown says why. mass_unit: in which the sheet shows masses, "kg" or "lb".
     """
 
     formula_id: int
@@ -68,6 +110,22 @@ class Batch:
     gap: float | None = None
     draft: bool = True
     approved_by: str = ""
+    animal: str = ""
+    stage: str = ""
+    site: str = ""
+    mixer: str = ""
+    mixer_id: int | None = None
+    steps: tuple[Step, ...] = ()
+    to_make: tuple[ToMake, ...] = ()
+    previous_feed: str = ""
+    clean_out: CleanOut | None = None
+    clean_out_reason: str = ""
+    loss_percent: float | None = None
+    product_dry_matter_percent: float | None = None
+    yield_kg: float | None = None
+    yield_unknown: str = ""
+    mass_unit: str = "kg"
+    paper: str = "A4"
 
     @property
     def total_kg(self) -> float:

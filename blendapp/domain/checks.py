@@ -9,12 +9,12 @@ from typing import Any
 
 from blendapp.domain import limit_oddities, limit_units, making, units
 from blendapp.domain.fields import fields_of
-from blendapp.domain.formulas import Amounts, Limit, LimitBasis, LimitKind, SubjectKind
+from blendapp.domain.formulas import Amounts, Formula, Limit, LimitBasis, LimitKind, MixingStep, SubjectKind
 from blendapp.domain.ingredients import Ingredient, Value
 from blendapp.domain.library import NAMED_KINDS, Library
 from blendapp.domain.names import fold
 from blendapp.domain.nutrients import BUILT_IN, KEYS, Nutrient
-from blendapp.domain.plant import Mixer, Scale
+from blendapp.domain.plant import Bin, Mixer, Scale
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import KIND_OF, Change, Record
 from blendapp.domain.wording import _
@@ -82,6 +82,11 @@ def _mill(record: Any, library: Library) -> list[Finding]:
         if value and value not in known:
             text = _("“{value}” is not known here; use one of {known}, or leave it blank.")
             found.append((name, text.format(value=value, known=", ".join(known))))
+    for name, choice in (("sheet_mass", ("kg", "lb")), ("paper", ("A4", "letter"))):
+        value = getattr(record, name)
+        if value not in choice:
+            text = _("“{value}” is not known here; use one of {known}.")
+            found.append((name, text.format(value=value, known=", ".join(choice))))
     return found
 
 
@@ -99,6 +104,9 @@ def _nutrient(record: Nutrient, library: Library) -> list[Finding]:
 
 def _ingredient(record: Ingredient, library: Library) -> list[Finding]:
     if record.made_by_formula_id is None:
+        if record.opened:
+            text = _("Only an ingredient that a formula makes can be opened; name the formula that makes it.")
+            return [("opened", text)]
         return []
     if library.records["ingredient"].get(record.id) != record:
         library = library.copy()
@@ -147,6 +155,51 @@ def _spread(record: Scale | Mixer, library: Library) -> list[Finding]:
     if record.least_kg is not None and record.greatest_kg is not None and record.least_kg > record.greatest_kg:
         text = _("The least load {least} kg is above the greatest {greatest} kg; correct one of them.")
         return [("least_kg", text.format(least=f"{record.least_kg:g}", greatest=f"{record.greatest_kg:g}"))]
+    return []
+
+
+def _scale(record: Scale, library: Library) -> list[Finding]:
+    found = _spread(record, library)
+    if record.step_kg is None and record.step_l is None:
+        found.append(("step_kg", _("A scale needs its step: Step kg, or Step l for a liquid meter.")))
+    elif record.step_kg is not None and record.step_l is not None:
+        found.append(("step_l", _("A scale has a step in kg or in l, not both; clear one of them.")))
+    elif record.step_kg is None and (record.least_kg is not None or record.greatest_kg is not None):
+        found.append(("least_kg", _("A liquid meter is bounded in l; enter Least l and Greatest l, and clear the kg.")))
+    elif record.step_l is None and (record.least_l is not None or record.greatest_l is not None):
+        found.append(("least_l", _("A scale in kg is bounded in kg; clear Least l and Greatest l.")))
+    if record.least_l is not None and record.greatest_l is not None and record.least_l > record.greatest_l:
+        text = _("The least dose {least} l is above the greatest {greatest} l; correct one of them.")
+        found.append(("least_l", text.format(least=f"{record.least_l:g}", greatest=f"{record.greatest_l:g}")))
+    return found
+
+
+def _bin(record: Bin, library: Library) -> list[Finding]:
+    if not record.name.strip():
+        return [("name", _("A name is needed here."))]
+    same = [b for b in library.all("bin") if b.id != record.id and b.site_id == record.site_id]
+    if any(fold(other.name) == fold(record.name) for other in same):
+        return [("name", _("The name “{name}” is taken; choose another one.").format(name=record.name))]
+    lot = None if record.lot_id is None else library.records["lot"].get(record.lot_id)
+    if lot is not None and lot.ingredient_id != record.ingredient_id:
+        text = _("Lot {lot} is of another ingredient than the one in the bin; choose a lot of that, or none.")
+        return [("lot_id", text.format(lot=lot.name))]
+    return []
+
+
+def _formula(record: Formula, library: Library) -> list[Finding]:
+    found: list[Finding] = []
+    if record.loss_percent is not None and record.loss_percent >= 100:
+        found.append(("loss_percent", _("A loss of 100 % leaves nothing; enter less.")))
+    dry = record.product_dry_matter_percent
+    if dry is not None and dry > 100:
+        found.append(("product_dry_matter_percent", _("The dry matter of the product lies above 0 and at most 100 %.")))
+    return found
+
+
+def _mixing_step(record: MixingStep, library: Library) -> list[Finding]:
+    if not record.text.strip():
+        return [("text", _("A step says what to do."))]
     return []
 
 
@@ -270,7 +323,10 @@ _FAULTS: dict[str, Callable[[Any, Library], list[Finding]]] = {
     "ingredient": _ingredient,
     "value": _value,
     "quote": _quote,
-    "scale": _spread,
+    "scale": _scale,
+    "bin": _bin,
+    "formula": _formula,
+    "mixing_step": _mixing_step,
     "mixer": _spread,
     "limit": _limit,
 }

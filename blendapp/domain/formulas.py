@@ -41,7 +41,11 @@ class Animal(StrEnum):
 
 @dataclass(frozen=True)
 class Formula:
-    """What a feed must meet. batch_kg: the usual size of a batch."""
+    """What a feed must meet.
+
+    batch_kg: the usual size of a batch. loss_percent: of the mass that is weighed, lost on the way to the bag.
+    product_dry_matter_percent: dry matter of the finished feed, None where it is that of the mix.
+    """
 
     id: int
     name: str
@@ -51,6 +55,24 @@ class Formula:
     batch_kg: float | None = None
     admits: Admits = Admits.ALL
     note: str = ""
+    loss_percent: float | None = None
+    product_dry_matter_percent: float | None = None
+
+
+@dataclass(frozen=True)
+class MixingStep:
+    """One step of making a feed, in the order of `position`.
+
+    formula_id: None is every formula without steps of its own. minutes: how long, None where it is not timed. setting:
+    of the machine, as the operator reads it.
+    """
+
+    id: int
+    formula_id: int | None
+    position: int
+    text: str
+    minutes: float | None = None
+    setting: str = ""
 
 
 class LimitKind(StrEnum):

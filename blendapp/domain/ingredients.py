@@ -50,7 +50,8 @@ class Ingredient:
     """A feed material as the mill buys it.
 
     dry_matter_percent: of the material as fed, None if unknown. basis: of composition values typed without one.
-    bushel_lb: mass of a bushel. made_by_formula_id: the formula that makes it, if the mill makes it itself.
+    bushel_lb: mass of a bushel. made_by_formula_id: the formula that makes it, if the mill makes it itself; opened:
+    whether a batch then takes what it is made of in its place. supplier_id: from whom the mill buys it (quotes.rule).
     """
 
     id: int
@@ -70,6 +71,8 @@ class Ingredient:
     drug_species: str = ""
     withdrawal: str = ""
     note: str = ""
+    opened: bool = False
+    supplier_id: int | None = None
 
     @property
     def never_unlisted(self) -> bool:

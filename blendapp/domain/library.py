@@ -4,14 +4,14 @@ from __future__ import annotations
 
 import datetime
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
-from blendapp.domain.formulas import Admits, Formula, Limit, LimitKind, Subject, SubjectKind
+from blendapp.domain.formulas import Admits, Formula, Limit, LimitKind, MixingStep, Subject, SubjectKind
 from blendapp.domain.ingredients import Ingredient, Value
 from blendapp.domain.mills import MillInfo
 from blendapp.domain.names import fold
 from blendapp.domain.nutrients import DRY_MATTER, MOISTURE, Nutrient
-from blendapp.domain.plant import Mixer, Scale
+from blendapp.domain.plant import Bin, Mixer, Scale
 from blendapp.domain.quotes import Quote, in_force
 from blendapp.domain.records import KINDS, Change, Record
 
@@ -100,11 +100,37 @@ class Library:
 
     @property
     def scales(self) -> list[Scale]:
-        return self.all("scale")
+        """Those that count where the mill works (mills.MillInfo.site_id)."""
+        return self._here("scale")
 
     @property
     def mixers(self) -> list[Mixer]:
-        return self.all("mixer")
+        return self._here("mixer")
+
+    @property
+    def bins(self) -> list[Bin]:
+        return self._here("bin")
+
+    def _here(self, kind: str) -> list[Record]:
+        """Records of the site that the mill works at and of no site; all of them where it works at none."""
+        at = self.mill.site_id
+        return [one for one in self.all(kind) if at is None or one.site_id in (None, at)]
+
+    def at_site(self, site_id: int | None) -> Library:
+        """A copy in which the mill works at another site."""
+        other = self.copy()
+        other.apply([Change(self.records["mill"].get(1), replace(self.mill, site_id=site_id))])
+        return other
+
+    def bins_of(self, ingredient_id: int) -> list[Bin]:
+        """The bins in which an ingredient stands, in the order of identifiers."""
+        return [one for one in self.bins if one.ingredient_id == ingredient_id]
+
+    def steps_of(self, formula_id: int) -> list[MixingStep]:
+        """The steps of making a formula, in order: its own, else those of every formula."""
+        steps = sorted(self.all("mixing_step"), key=lambda step: (step.position, step.id))
+        own = [step for step in steps if step.formula_id == formula_id]
+        return own or [step for step in steps if step.formula_id is None]
 
     def all(self, kind: str) -> list[Record]:
         """Every record of a kind, in the order of identifiers."""
@@ -154,7 +180,11 @@ class Library:
         return [found[key] for key in sorted(found)]
 
     def quote_in_force(self, ingredient_id: int, on: datetime.date, site_id: int | None = None) -> Quote | None:
-        return in_force(self._quotes.get(ingredient_id, {}).values(), on, site_id)
+        """The quote in force on a day by quotes.rule. site_id: None is the site that the mill works at."""
+        ingredient = self.records["ingredient"].get(ingredient_id)
+        supplier_id = None if ingredient is None else ingredient.supplier_id
+        at = self.mill.site_id if site_id is None else site_id
+        return in_force(self._quotes.get(ingredient_id, {}).values(), on, at, supplier_id)
 
     def price_per_t(self, ingredient_id: int, on: datetime.date, site_id: int | None = None) -> float | None:
         """Money of the mill per tonne as fed on a day, None where unknown."""

@@ -13,7 +13,9 @@ class MillInfo:
 
     currency: ISO 4217 code. ton_means: one of units.TON_MEANINGS, "" asks. cwt_means: one of units.CWT_MEANINGS, ""
     is 100 lb in the exchange workbook and asks in price lists. one_person_approves: whether who prepared a version may
-    also approve it; it stands in no workbook, so that no import can loosen it.
+    also approve it; it stands in no workbook, so that no import can loosen it. site_id: the site whose prices, scales,
+    mixers and bins count, besides those of the whole mill; None counts all plant, and prices of no site. sheet_mass:
+    what sheets are weighed in, "kg" or "lb". paper: "A4" or "letter".
     """
 
     id: int = 1
@@ -22,6 +24,9 @@ class MillInfo:
     ton_means: str = ""
     cwt_means: str = ""
     one_person_approves: bool = False
+    site_id: int | None = None
+    sheet_mass: str = "kg"
+    paper: str = "A4"
 
 
 @dataclass(frozen=True)
@@ -66,12 +71,19 @@ class FormulaVersion:
     seal: str = ""
 
 
+class ListAbout(StrEnum):
+    """What a list that arrives is about."""
+
+    PRICES = "prices"
+    COMPOSITION = "composition"
+
+
 @dataclass(frozen=True)
 class PriceList:
-    """A price list that was applied. digest: SHA-256 of the file, in hexadecimal.
+    """A list that was applied: of prices, or of analyses. digest: SHA-256 of the file, in hexadecimal.
 
     source: whom its answers are remembered for. report: JSON of the fate of every row. withdrawn: when it was rolled
-    back, None while its quotes stand.
+    back, None while what it brought stands. supplier_id, site_id: whose prices, and for which site, if one was said.
     """
 
     id: int
@@ -84,6 +96,8 @@ class PriceList:
     report: str = ""
     source: str = ""
     withdrawn: datetime.datetime | None = None
+    about: ListAbout = ListAbout.PRICES
+    site_id: int | None = None
 
 
 class Asked(StrEnum):
@@ -95,6 +109,10 @@ class Asked(StrEnum):
     PRICE: the headings of several columns of prices; the heading that holds, or ADD. Or what comes on top of a price;
     TAKE.
     DECIMAL: a heading; "." or ",". DATES: a heading; DAY_FIRST or MONTH_FIRST. HIDDEN_COLUMN: a heading; TAKE.
+    TABLE: a sheet; "row 5", the row of its headings, or "row 0" where it has none. COLUMN: a heading, or "column 3"
+    where it has none; one of list_rows.ColumnRole. SUPPLIER, SITE: ""; a name, whose list it is and for which site.
+    NUTRIENT: a heading; a nutrient's name, "Dry matter", or LEAVE_OUT. CONCENTRATION: a heading; a unit. BASIS: a
+    heading, or "" for all; one of ingredients.Basis.
     USUAL_CHANGE, of every source: a class of ingredients, "" for all others; by how many percent a price may change
     without a question. Of a row: TAKE or LEAVE_OUT.
     """
@@ -107,6 +125,13 @@ class Asked(StrEnum):
     DECIMAL = "decimal"
     DATES = "dates"
     HIDDEN_COLUMN = "hidden column"
+    TABLE = "table"
+    COLUMN = "column"
+    SUPPLIER = "supplier"
+    SITE = "site"
+    NUTRIENT = "nutrient"
+    CONCENTRATION = "concentration"
+    BASIS = "basis"
     USUAL_CHANGE = "usual change"
 
     HIDDEN = "hidden"
@@ -158,6 +183,7 @@ class PrintedBatch:
     accepted_by: str = ""
     sheet: str = ""
     copies: int = 0
+    mixer_id: int | None = None
 
 
 @dataclass(frozen=True)

@@ -56,8 +56,9 @@ class Quote:
 def rule() -> str:
     """The rule of in_force, as a person reads it."""
     return _(
-        "In force is the quote valid on the day whose first day of validity is latest; of two with the same first day, "
-        "the one recorded last. A quote of the site counts before one of the whole mill."
+        "In force is, of the quotes valid on the day, first one of the site before one of the whole mill; then one of "
+        "the ingredient's own supplier, or of none, before one of another supplier; then the one whose first day of "
+        "validity is latest; of two with the same first day, the one recorded last."
     )
 
 
@@ -69,9 +70,19 @@ def _valid(quote: Quote, on: datetime.date, site_id: int | None) -> bool:
     )
 
 
-def in_force(quotes: Iterable[Quote], on: datetime.date, site_id: int | None = None) -> Quote | None:
-    """The quote in force on a day at a site (None: the whole mill), or None. The rule is that of rule()."""
+def in_force(
+    quotes: Iterable[Quote], on: datetime.date, site_id: int | None = None, supplier_id: int | None = None
+) -> Quote | None:
+    """The quote in force on a day at a site (None: the whole mill), or None. The rule is that of rule().
+
+    supplier_id: whom the ingredient is bought from; None makes no difference between suppliers.
+    """
     valid = [quote for quote in quotes if _valid(quote, on, site_id)]
     if len(valid) < 2:
         return valid[0] if valid else None
-    return max(valid, key=lambda quote: (quote.site_id is not None, quote.valid_from or datetime.date.min, quote.id))
+    return max(valid, key=lambda quote: (
+        quote.site_id is not None,
+        supplier_id is None or quote.supplier_id in (None, supplier_id),
+        quote.valid_from or datetime.date.min,
+        quote.id,
+    ))

@@ -11,7 +11,7 @@ from enum import Enum
 from functools import cache
 from typing import Any
 
-from blendapp.domain.formulas import Formula, Limit, Subject
+from blendapp.domain.formulas import Formula, Limit, MixingStep, Subject
 from blendapp.domain.ingredients import Ingredient, Value
 from blendapp.domain.mills import (
     Acknowledgement,
@@ -30,20 +30,21 @@ Record = Any  # one of the classes of KINDS; typing.Union of them adds nothing t
 
 # In an order in which rows can be written: a record refers only to kinds above its own, made_by_formula_id apart.
 KINDS: dict[str, type[Record]] = {
-    "mill": MillInfo,
-    "person": Person,
     "site": Site,
     "supplier": Supplier,
+    "mill": MillInfo,
+    "person": Person,
     "scale": Scale,
     "mixer": Mixer,
     "nutrient": Nutrient,
     "formula": Formula,
+    "mixing_step": MixingStep,
     "ingredient": Ingredient,
     "value": Value,
+    "price_list": PriceList,
     "lot": Lot,
     "lot_value": LotValue,
     "bin": Bin,
-    "price_list": PriceList,
     "quote": Quote,
     "synonym": Synonym,
     "limit": Limit,

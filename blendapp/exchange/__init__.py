@@ -8,7 +8,8 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from blendapp.domain.library import Library
-from blendapp.domain.price_rows import Answer, PriceListReading
+from blendapp.domain.list_rows import Answer
+from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.problems import Problem
 
 if TYPE_CHECKING:

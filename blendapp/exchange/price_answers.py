@@ -6,9 +6,9 @@ import datetime
 from collections.abc import Iterable
 
 from blendapp.domain.library import Library
+from blendapp.domain.list_rows import Answer, source_of
 from blendapp.domain.mills import Asked, Synonym
 from blendapp.domain.names import fold
-from blendapp.domain.price_rows import Answer, source_of
 
 LARGEST_USUAL_CHANGE = 0.30
 

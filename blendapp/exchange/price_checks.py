@@ -8,8 +8,9 @@ from collections.abc import Sequence
 from dataclasses import replace
 
 from blendapp.domain.library import Library
+from blendapp.domain.list_rows import LEAVE_OUT, TAKE, Fate, Question
 from blendapp.domain.mills import Asked
-from blendapp.domain.price_rows import LEAVE_OUT, TAKE, Fate, PriceRow, Question
+from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.wording import _
 from blendapp.exchange.price_answers import Answers
 

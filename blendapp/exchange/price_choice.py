@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 
+from blendapp.domain.list_rows import ADD, Question
 from blendapp.domain.mills import Asked
 from blendapp.domain.notation import PLAIN
-from blendapp.domain.price_rows import ADD, Question
 from blendapp.domain.wording import _
 from blendapp.exchange.price_answers import Answers
 from blendapp.exchange.price_cells import PriceCell

@@ -8,10 +8,11 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from blendapp.domain.library import Library
+from blendapp.domain.list_rows import Answer, Fate, source_of
 from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
-from blendapp.domain.price_rows import Answer, Fate, PriceListReading, PriceRow, source_of
+from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.wording import _
 from blendapp.exchange.delimited import read_delimited
@@ -65,7 +66,7 @@ def read_price_list(
     rows = [row for table in tables for row in read_table(table, library, names, today)]
     rows = ask_about_leaps(ask_about_duplicates(rows, answered), answered, library)
     return PriceListReading(
-        file.name, file.digest, library.mill.currency, tuple(rows), tuple(notes), source, tuple(answers)
+        file.name, file.digest, tuple(rows), tuple(notes), source, tuple(answers), currency=library.mill.currency
     )
 
 

@@ -8,9 +8,9 @@ from dataclasses import dataclass
 
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
+from blendapp.domain.list_rows import LEAVE_OUT, Answer, source_of
 from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
-from blendapp.domain.price_rows import LEAVE_OUT, Answer, source_of
 from blendapp.domain.wording import _
 from blendapp.exchange.price_answers import Answers
 from blendapp.exchange.suggestions import Suggester

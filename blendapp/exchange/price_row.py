@@ -8,10 +8,11 @@ from typing import TYPE_CHECKING
 
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
+from blendapp.domain.list_rows import LEAVE_OUT, TAKE, Fate, Question
 from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
-from blendapp.domain.price_rows import LEAVE_OUT, TAKE, Fate, PriceRow, Question
+from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.quotes import Terms
 from blendapp.domain.wording import _
 from blendapp.exchange.price_cells import PriceCell, error_in, read_price_cell

@@ -151,7 +151,7 @@ def _scale(library: Library, ingredient_id: int) -> Scale | None:
 
 
 def _proposal(library: Library, unscaled: list[Ingredient]) -> str:
-    finest = min(library.scales, key=lambda scale: scale.step_kg)
+    finest = min(library.scales, key=lambda scale: scale.step_kg or 0.0)
     text = _("No scale weighs {ingredients}. Enter one under Scale, for example {scale} in steps of {step} kg.")
     names = ", ".join(i.name for i in unscaled)
     return text.format(ingredients=names, scale=finest.name, step=f"{finest.step_kg:g}")

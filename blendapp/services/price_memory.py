@@ -5,9 +5,10 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from dataclasses import replace
 
+from blendapp.domain.list_rows import LEAVE_OUT, TAKE, Answer, Fate, source_of
 from blendapp.domain.mills import Asked, Synonym
 from blendapp.domain.names import fold
-from blendapp.domain.price_rows import LEAVE_OUT, TAKE, Answer, Fate, PriceListReading, source_of
+from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.problems import Refused
 from blendapp.domain.records import Change, added, removed
 from blendapp.domain.wording import _

@@ -10,8 +10,9 @@ from enum import StrEnum
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
+from blendapp.domain.list_rows import Fate
 from blendapp.domain.mills import PriceList
-from blendapp.domain.price_rows import Fate, PriceRow
+from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.problems import Refused
 from blendapp.domain.quotes import Quote, Terms
 from blendapp.domain.records import Change, added, removed
@@ -20,7 +21,8 @@ from blendapp.services.mill import Edit, Mill
 from blendapp.services.price_memory import memory_changes
 
 if TYPE_CHECKING:
-    from blendapp.domain.price_rows import Answer, PriceListReading
+    from blendapp.domain.list_rows import Answer
+    from blendapp.domain.price_rows import PriceListReading
 
 
 def read_price_list(

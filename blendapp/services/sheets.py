@@ -11,7 +11,7 @@ from dataclasses import asdict
 from pathlib import Path
 from typing import Any
 
-from blendapp.domain.batches import Batch, BatchLine
+from blendapp.domain.batches import Batch, BatchLine, CleanOut, Step, ToMake
 from blendapp.domain.formulas import LimitKind
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.results import LimitResult, NutrientResult, Result, Side
@@ -99,7 +99,13 @@ def batch_from_plain(plain: dict[str, Any]) -> Batch:
     return Batch(**{
         **plain,
         "made": datetime.date.fromisoformat(plain["made"]),
-        "lines": tuple(BatchLine(**line) for line in plain["lines"]),
+        "lines": tuple(
+            BatchLine(**{**line, **{name: tuple(line.get(name, ())) for name in ("bins", "of_opened")}})
+            for line in plain["lines"]
+        ),
+        "steps": tuple(Step(**step) for step in plain.get("steps", ())),
+        "to_make": tuple(ToMake(**one) for one in plain.get("to_make", ())),
+        "clean_out": None if plain.get("clean_out") is None else CleanOut(plain["clean_out"]),
         "limits": limits,
         "nutrients": nutrients,
         "broken": tuple(plain["broken"]),

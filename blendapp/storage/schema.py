@@ -30,7 +30,7 @@ from sqlalchemy import (
 )
 
 APPLICATION_ID = 0x4D696C6C  # "Mill", in the header of every mill file
-REVISIONS: tuple[str, ...] = ("0001",)  # oldest first; the last is that of this program
+REVISIONS: tuple[str, ...] = ("0001", "0002")  # oldest first; the last is that of this program
 REVISION = REVISIONS[-1]
 
 
@@ -104,14 +104,16 @@ def _table(kind: str, *columns: Any) -> Table:
 
 _table(
     "mill", _text("name"), _text("currency"), _text("ton_means"), _text("cwt_means"), _mark("one_person_approves"),
+    _link("site_id", "site", optional=True), _text("sheet_mass"), _text("paper"),
     CheckConstraint("id = 1", name="one_mill"),
 )
 _table("person", _text("name", unique=True), _text("capacity"), _text("password_hash"), _mark("active"))
 _table("site", _text("name", unique=True))
 _table("supplier", _text("name", unique=True), _text("note"))
 _table(
-    "scale", _text("name", unique=True), _number("step_kg", optional=False), _number("least_kg"),
-    _number("greatest_kg"), _number("tolerance_percent"), _mark("hand_add"), _link("site_id", "site", optional=True),
+    "scale", _text("name", unique=True), _number("step_kg"), _number("least_kg"), _number("greatest_kg"),
+    _number("tolerance_percent"), _mark("hand_add"), _link("site_id", "site", optional=True), _number("step_l"),
+    _number("least_l"), _number("greatest_l"),
 )
 _table(
     "mixer", _text("name", unique=True), _number("least_kg"), _number("greatest_kg"),
@@ -122,13 +124,19 @@ _table(
 )
 _table(
     "formula", _text("name", unique=True), _text("amounts"), _text("animal", optional=True), _text("stage"),
-    _number("batch_kg"), _text("admits"), _text("note"),
+    _number("batch_kg"), _text("admits"), _text("note"), _number("loss_percent"),
+    _number("product_dry_matter_percent"),
+)
+_table(
+    "mixing_step", _link("formula_id", "formula", optional=True), _count("position"), _text("text"),
+    _number("minutes"), _text("setting"),
 )
 _table(
     "ingredient", _text("name", unique=True), _text("class_name"), _number("dry_matter_percent"), _text("basis"),
     _text("code"), _link("scale_id", "scale", optional=True), _number("stock_kg"), _number("density_kg_per_l"),
     _number("bushel_lb"), _text("tags"), _link("made_by_formula_id", "formula", optional=True), _text("drug"),
-    _text("drug_level"), _text("drug_species"), _text("withdrawal"), _text("note"),
+    _text("drug_level"), _text("drug_species"), _text("withdrawal"), _text("note"), _mark("opened"),
+    _link("supplier_id", "supplier", optional=True),
 )
 _table(
     "value", _link("ingredient_id", "ingredient"), _link("nutrient_id", "nutrient"), _number("amount", optional=False),
@@ -139,6 +147,7 @@ _table(
 _table(
     "lot", _link("ingredient_id", "ingredient"), _text("name"), _day("received"), _number("mass_kg"),
     _link("supplier_id", "supplier", optional=True), _text("note"),
+    _link("price_list_id", "price_list", optional=True),
 )
 _table(
     "lot_value", _link("lot_id", "lot"), _link("nutrient_id", "nutrient"), _number("amount", optional=False),
@@ -151,7 +160,7 @@ _table(
 _table(
     "price_list", _text("file_name"), _text("digest"), _moment("applied"), _count("rows"), _count("accepted"),
     _link("supplier_id", "supplier", optional=True), _text("report"), _text("source"),
-    _moment("withdrawn", optional=True),
+    _moment("withdrawn", optional=True), _text("about"), _link("site_id", "site", optional=True),
 )
 _table(
     "quote", _link("ingredient_id", "ingredient"), _number("price"), _text("per"), _number("bushel_lb"),
@@ -181,7 +190,7 @@ _table(
 _table(
     "batch", _count("number", unique=True), _link("formula_id", "formula"), _text("version"),
     _number("order_kg", optional=False), _moment("printed"), _text("printed_by"), _text("accepted_reason"),
-    _text("accepted_by"), _text("sheet"), _count("copies"),
+    _text("accepted_by"), _text("sheet"), _count("copies"), _link("mixer_id", "mixer", optional=True),
 )
 
 # What no kind of record holds: the first identifier or number never used so far, by kind or by BATCH_NUMBER.

@@ -23,7 +23,7 @@ def test_every_field_is_an_attribute_of_its_kind_of_record() -> None:
 
 def test_a_field_is_found_by_kind_and_name() -> None:
     assert field_of("scale", "step_kg").heading == "Step kg"
-    assert [field.name for field in fields_of("mixer")] == ["name", "least_kg", "greatest_kg"]
+    assert [field.name for field in fields_of("mixer")] == ["name", "least_kg", "greatest_kg", "site_id"]
     with pytest.raises(KeyError):
         field_of("mixer", "colour")
 

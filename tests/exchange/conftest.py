@@ -9,7 +9,8 @@ from typing import Any
 import pytest
 
 from blendapp.domain.library import Library
-from blendapp.domain.price_rows import Answer, PriceListReading
+from blendapp.domain.list_rows import Answer
+from blendapp.domain.price_rows import PriceListReading
 from blendapp.exchange import read_price_list
 from tests.exchange.made_lists import Rows, write_xlsx
 from tests.mills import TODAY, Maker

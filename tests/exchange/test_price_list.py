@@ -11,8 +11,9 @@ import openpyxl
 import pytest
 
 from blendapp.domain.library import Library
+from blendapp.domain.list_rows import Fate
 from blendapp.domain.mills import Synonym
-from blendapp.domain.price_rows import Fate, PriceListReading, PriceRow
+from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.problems import Refused
 from blendapp.exchange import read_price_list
 from tests.exchange.made_lists import Rows, write_ods, write_text, write_xls, write_xlsx

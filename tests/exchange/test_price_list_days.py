@@ -11,8 +11,8 @@ import pytest
 from openpyxl.utils.datetime import CALENDAR_MAC_1904, CALENDAR_WINDOWS_1900
 
 from blendapp.domain.library import Library
+from blendapp.domain.list_rows import Answer, Fate
 from blendapp.domain.mills import Asked
-from blendapp.domain.price_rows import Answer, Fate
 from blendapp.exchange import read_price_list
 from tests.exchange.conftest import Read
 from tests.exchange.made_lists import Rows

@@ -11,7 +11,7 @@ from pathlib import Path
 import pytest
 
 from blendapp.domain.library import Library
-from blendapp.domain.price_rows import Fate
+from blendapp.domain.list_rows import Fate
 from blendapp.domain.problems import Refused
 from blendapp.exchange import read_price_list
 from tests.exchange.made_lists import Rows, write_ods, write_text, write_xls, write_xlsx

@@ -11,8 +11,9 @@ import pytest
 from openpyxl.styles import Font
 
 from blendapp.domain.library import Library
+from blendapp.domain.list_rows import ADD, LEAVE_OUT, TAKE, Answer, Fate, source_of
 from blendapp.domain.mills import Asked
-from blendapp.domain.price_rows import ADD, LEAVE_OUT, TAKE, Answer, Fate, PriceListReading, PriceRow, source_of
+from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.quotes import Quote, Terms
 from blendapp.domain.records import added
 from blendapp.exchange import read_price_list

@@ -14,7 +14,7 @@ from openpyxl import Workbook, load_workbook
 
 from blendapp.domain.formulas import Amounts
 from blendapp.domain.library import Library
-from blendapp.domain.price_rows import Fate
+from blendapp.domain.list_rows import Fate
 from blendapp.domain.results import Result, Status
 from blendapp.services import prices, workbook
 from blendapp.services.formulate import formulate

@@ -10,8 +10,9 @@ from pathlib import Path
 import pytest
 
 from blendapp.domain.library import Library
+from blendapp.domain.list_rows import ADD, LEAVE_OUT, TAKE, Answer, Fate
 from blendapp.domain.mills import Asked, Synonym
-from blendapp.domain.price_rows import ADD, LEAVE_OUT, TAKE, Answer, Fate, PriceListReading
+from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.problems import Refused
 from blendapp.domain.records import added
 from blendapp.services.mill import Mill

@@ -11,12 +11,13 @@ from pathlib import Path
 
 import pytest
 
-from blendapp.domain.formulas import Admits, Amounts, Animal, Formula, Limit, LimitBasis, LimitKind, Subject
+from blendapp.domain.formulas import Admits, Amounts, Animal, Formula, Limit, LimitBasis, LimitKind, MixingStep, Subject
 from blendapp.domain.ingredients import Basis, Ingredient, Origin, Tag, Value
 from blendapp.domain.mills import (
     Acknowledgement,
     Asked,
     FormulaVersion,
+    ListAbout,
     MillInfo,
     Person,
     PriceList,
@@ -35,8 +36,23 @@ MOMENT = datetime.datetime(2026, 3, 2, 8, 15, 30, 123456, tzinfo=datetime.UTC)
 
 
 @pytest.fixture
-def records() -> list[Record]:
-    """Two of some kinds and at least one of each, links among them, optional fields both filled and empty."""
+def records(first_records: list[Record]) -> list[Record]:
+    """At least one record of each kind, links among them, optional fields both filled and empty."""
+    return [
+        *first_records,
+        MixingStep(1, 1, 1, "Mix dry", 3.0, "32 rpm"),
+        MixingStep(2, None, 1, "Take the sample"),
+        Scale(3, "Fat pump", None, site_id=1, step_l=0.5, least_l=2.0, greatest_l=150.0),
+        Formula(3, "Pellet", loss_percent=0.8, product_dry_matter_percent=88.5),
+        Ingredient(4, "Minerals", made_by_formula_id=2, opened=True, supplier_id=1),
+        PriceList(2, "lab.xlsx", "cd" * 32, MOMENT, 4, 4, about=ListAbout.COMPOSITION, site_id=1),
+        Lot(2, 1, "S-4", DAY, price_list_id=2),
+    ]
+
+
+@pytest.fixture
+def first_records() -> list[Record]:
+    """What a file of the first revision held, as it stands in data/: two of some kinds and one of most."""
     return [
         MillInfo(name="Mühle am Bach", currency="EUR", ton_means="t"),
         Person(1, "Ann Miller", "nutritionist", "$hash$", True),

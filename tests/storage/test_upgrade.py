@@ -1,6 +1,6 @@
 """Files of an older revision: a copy is kept beside, and the file is upgraded whole or not at all.
 
-There is one revision of the schema so far, so the newer one of these tests is in later_steps/ and nowhere else.
+The revision after the newest stands in later_steps/ and nowhere else.
 """
 
 from __future__ import annotations
@@ -35,8 +35,8 @@ def old(tmp_path: Path) -> Path:
 
 def _newer_program(monkeypatch: pytest.MonkeyPatch, steps: str = "later_steps") -> None:
     """This program as it may be one revision on."""
-    monkeypatch.setattr(schema, "REVISIONS", ("0001", "0002"))
-    monkeypatch.setattr(schema, "REVISION", "0002")
+    monkeypatch.setattr(schema, "REVISIONS", ("0001", "0002", "0003"))
+    monkeypatch.setattr(schema, "REVISION", "0003")
     monkeypatch.setattr(upgrading, "STEPS", (*upgrading.STEPS, HERE / steps))
 
 
@@ -53,10 +53,10 @@ def test_the_steps_form_one_line_that_ends_at_the_revision_of_this_program() -> 
     assert len(set(schema.REVISIONS)) == len(schema.REVISIONS)
 
 
-def test_a_file_that_the_first_revision_made_opens_with_every_record(old: Path, records: list[Record]) -> None:
+def test_a_file_that_the_first_revision_made_opens_with_every_record(old: Path, first_records: list[Record]) -> None:
     opened = open_store(old)
-    assert [record for kind in opened.read_all().values() for record in kind] == _by_kind(records)
-    assert [change.after for change in opened.entries()[0].changes] == records
+    assert [record for kind in opened.read_all().values() for record in kind] == _by_kind(first_records)
+    assert [change.after for change in opened.entries()[0].changes] == first_records
     opened.write("goes on", [added(Site(9, "West"))])
     opened.close()
 
@@ -88,7 +88,7 @@ def test_an_older_file_is_upgraded_and_keeps_its_records_and_links(old: Path, mo
     with pytest.raises(MillFileError):  # the links are still kept
         opened.write("cut", [added(Site(9, "West")), *(c.reversed for c in log[0].changes if c.kind == "ingredient")])
     opened.close()
-    assert _raw(old, "SELECT version_num FROM alembic_version") == [("0002",)]
+    assert _raw(old, "SELECT version_num FROM alembic_version") == [("0003",)]
     assert _raw(old, "SELECT DISTINCT origin_country FROM ingredient") == [("",)]
 
 
@@ -143,7 +143,7 @@ KILLED = """
 import sys
 from pathlib import Path
 from blendapp.storage import open_store, schema, upgrading
-schema.REVISIONS, schema.REVISION = ("0001", "0002"), "0002"
+schema.REVISIONS, schema.REVISION = ("0001", "0002", "0003"), "0003"
 upgrading.STEPS = (*upgrading.STEPS, Path(sys.argv[2]))
 open_store(sys.argv[1])
 """

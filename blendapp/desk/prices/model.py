@@ -6,8 +6,9 @@ from typing import Any
 
 from blendapp.desk.table.grid import AnyIndex, Grid, Heading
 from blendapp.desk.table.look import EMPTY, Look, number_look
+from blendapp.domain.list_rows import Fate
 from blendapp.domain.notation import notation
-from blendapp.domain.price_rows import Fate, PriceListReading, PriceRow
+from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.wording import _
 
 

@@ -13,7 +13,8 @@ from blendapp.desk.prices.view import PriceTable
 from blendapp.desk.shell.zone import Elided
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.desk.work import Work
-from blendapp.domain.price_rows import Fate, PriceListReading
+from blendapp.domain.list_rows import Fate
+from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _, plural
 from blendapp.services import plant, prices

@@ -65,7 +65,7 @@ def _whole(order: Order, reason: Reason, ingredients: Sequence[Ingredient]) -> s
 def _line(order: Order, reason: Reason, ingredient: Ingredient, scales: Sequence[Scale | None]) -> str:
     line = order.lines[reason.line or 0]
     if reason.why == "step":
-        wrong = [scale for scale in scales if scale is not None and not scale.step_kg > 0]
+        wrong = [scale for scale in scales if scale is not None and not (scale.step_kg or 0.0) > 0]
         text = _("The scale {scale} has a step of {step} kg; enter a step above 0.")
         return text.format(scale=wrong[0].name, step=notation().write_short(wrong[0].step_kg))
     if reason.why.startswith("fixed"):

@@ -130,7 +130,7 @@ def scales_for(library: Library, ingredient: Ingredient) -> list[Scale | None]:
     own: Scale | None = None if ingredient.scale_id is None else library.records["scale"].get(ingredient.scale_id)
     by_hand = own is not None and own.hand_add
     others = [scale for scale in library.scales if own is None or scale.id != own.id]
-    others.sort(key=lambda scale: (scale.hand_add != by_hand, -scale.step_kg, scale.id))
+    others.sort(key=lambda scale: (scale.hand_add != by_hand, -(scale.step_kg or 0.0), scale.id))
     return [*others] if own is None else [own, *others]
 
 
@@ -176,7 +176,7 @@ def _load(scale: Scale | None, ingredient: Ingredient) -> Load:
     tolerance = tolerance_of(scale, ingredient)
     if scale is None:
         return Load(UNSCALED_STEP_KG, tolerance=tolerance)
-    return Load(scale.step_kg, scale.least_kg, scale.greatest_kg, tolerance)
+    return Load(scale.step_kg or 0.0, scale.least_kg, scale.greatest_kg, tolerance)
 
 
 def _result(

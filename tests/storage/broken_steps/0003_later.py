@@ -1,13 +1,10 @@
-"""A later revision whose process dies half way, for tests."""
-
-import os
-import signal
+"""A later revision that fails half way, for tests."""
 
 import sqlalchemy as sa
 from alembic import op
 
-revision = "0002"
-down_revision = "0001"
+revision = "0003"
+down_revision = "0002"
 branch_labels = None
 depends_on = None
 
@@ -15,4 +12,4 @@ depends_on = None
 def upgrade() -> None:
     op.create_table("half_made", sa.Column("id", sa.Integer(), primary_key=True))
     op.execute("DELETE FROM value")
-    os.kill(os.getpid(), signal.SIGKILL)
+    raise RuntimeError("a fault in the step")
