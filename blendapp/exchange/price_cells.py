@@ -8,15 +8,9 @@ from dataclasses import dataclass
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
+from blendapp.exchange.list_numbers import DecimalSign, decide_decimal_sign, value_in_column
 from blendapp.exchange.price_columns import PriceColumn
-from blendapp.exchange.price_numbers import (
-    NO_PRICE,
-    DecimalSign,
-    PriceText,
-    decide_decimal_sign,
-    read_price_text,
-    value_in_column,
-)
+from blendapp.exchange.price_numbers import NO_PRICE, PriceText, read_price_text
 from blendapp.exchange.price_words import NO_MONEY, Money, money_of_format
 from blendapp.exchange.tables import CellKind, CellValue, PercentCell, RawTable, column_letters, kind_of
 

@@ -12,7 +12,7 @@ from blendapp.domain.list_rows import LEAVE_OUT, TAKE, Fate, Question
 from blendapp.domain.mills import Asked
 from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.wording import _
-from blendapp.exchange.price_answers import Answers
+from blendapp.exchange.list_answers import Answers
 
 # A price this near to 10, 100 or 1000 times the old one has more likely lost its decimal sign or its unit.
 _NEAR_POWER = 0.35

@@ -8,7 +8,7 @@ from blendapp.domain.list_rows import ADD, Question
 from blendapp.domain.mills import Asked
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
-from blendapp.exchange.price_answers import Answers
+from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.price_cells import PriceCell
 from blendapp.exchange.price_columns import PriceColumn, Role, Table
 

@@ -17,14 +17,14 @@ from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.wording import _
 from blendapp.exchange.delimited import read_delimited
 from blendapp.exchange.files import Format, SourceFile, open_source
-from blendapp.exchange.price_answers import Answers
+from blendapp.exchange.list_answers import Answers
+from blendapp.exchange.list_names import NameFinder
+from blendapp.exchange.list_numbers import DateOrder, DecimalSign, decide_date_order
 from blendapp.exchange.price_cells import column_sign
 from blendapp.exchange.price_checks import ask_about_duplicates, ask_about_leaps
 from blendapp.exchange.price_columns import Role, Table
 from blendapp.exchange.price_headings import read_headings
-from blendapp.exchange.price_names import NameFinder
 from blendapp.exchange.price_notes import Notes, read_notes
-from blendapp.exchange.price_numbers import DateOrder, DecimalSign, decide_date_order
 from blendapp.exchange.price_row import read_row
 from blendapp.exchange.price_tables import drop_empty_prices, find_table, settle_name_column
 from blendapp.exchange.spreadsheets import read_spreadsheet

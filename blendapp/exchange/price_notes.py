@@ -6,7 +6,7 @@ import re
 from collections.abc import Iterable
 from dataclasses import dataclass
 
-from blendapp.exchange.price_numbers import date_readings
+from blendapp.exchange.list_numbers import date_readings
 from blendapp.exchange.price_words import Words, read_heading_words
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
 

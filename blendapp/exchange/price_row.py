@@ -15,11 +15,11 @@ from blendapp.domain.notation import PLAIN
 from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.quotes import Terms
 from blendapp.domain.wording import _
+from blendapp.exchange.list_names import Match, NameFinder
+from blendapp.exchange.list_numbers import DateOrder, DecimalSign, date_in_column, date_readings, decide_date_order
 from blendapp.exchange.price_cells import PriceCell, error_in, read_price_cell
 from blendapp.exchange.price_choice import Priced, choose_price
 from blendapp.exchange.price_columns import PriceColumn, Role, Table
-from blendapp.exchange.price_names import Match, NameFinder
-from blendapp.exchange.price_numbers import DateOrder, DecimalSign, date_in_column, date_readings, decide_date_order
 from blendapp.exchange.price_terms import WITHOUT_FREIGHT, read_terms
 from blendapp.exchange.price_units import AmbiguousPriceUnit, UnknownPriceUnit, bag_with_weight, read_price_unit
 from blendapp.exchange.price_units_read import TonnePrice, UnitReading, foreign_money, per_tonne, read_unit

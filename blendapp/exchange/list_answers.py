@@ -1,4 +1,4 @@
-"""What a person answered about a price list, now or for an earlier list of the same source."""
+"""What a person answered about a list, now or for an earlier list of the same source."""
 
 from __future__ import annotations
 

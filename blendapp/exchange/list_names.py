@@ -1,4 +1,4 @@
-"""Which ingredient a name in a price list is: exact after folding, then known synonyms, never by likeness alone."""
+"""Which ingredient a name in a list is: exact after folding, then known synonyms, never by likeness alone."""
 
 from __future__ import annotations
 
@@ -12,7 +12,7 @@ from blendapp.domain.list_rows import LEAVE_OUT, Answer, source_of
 from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
 from blendapp.domain.wording import _
-from blendapp.exchange.price_answers import Answers
+from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.suggestions import Suggester
 
 LEAST_LIKENESS = 0.5
