@@ -8,11 +8,12 @@ from dataclasses import dataclass
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
+from blendapp.exchange.list_cells import place
 from blendapp.exchange.list_numbers import DecimalSign, decide_decimal_sign, value_in_column
 from blendapp.exchange.price_columns import PriceColumn
 from blendapp.exchange.price_numbers import NO_PRICE, PriceText, read_price_text
 from blendapp.exchange.price_words import NO_MONEY, Money, money_of_format
-from blendapp.exchange.tables import CellKind, CellValue, PercentCell, RawTable, column_letters, kind_of
+from blendapp.exchange.tables import CellKind, PercentCell, RawTable, kind_of
 
 
 @dataclass(frozen=True)
@@ -81,20 +82,3 @@ def _both_ways(text: str, found: PriceText) -> str:
         sentence = _("“{text}” may be {first} or {second}, and the column does not tell; say which.")
         return sentence.format(text=text, first=values[0], second=values[1])
     return _("“{text}” is not written as the other numbers of its column are; say what it is.").format(text=text)
-
-
-def place(row: int, column: int) -> str:
-    """A cell as the spreadsheet names it: row 0, column 1 is B1."""
-    return f"{column_letters(column)}{row + 1}"
-
-
-def error_in(value: CellValue, row: int, column: int) -> str:
-    """The sentence for a cell that holds an error or a formula without a stored value, or nothing."""
-    kind = kind_of(value)
-    if kind is CellKind.ERROR:
-        text = _("The cell {place} holds the error {error}; correct it in the list.")
-        return text.format(place=place(row, column), error=getattr(value, "text", ""))
-    if kind is CellKind.NO_STORED_VALUE:
-        text = _("The formula in the cell {place} has no stored result; open the list, let it calculate, and save it.")
-        return text.format(place=place(row, column))
-    return ""

@@ -8,31 +8,27 @@ from typing import TYPE_CHECKING
 
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
-from blendapp.domain.list_rows import LEAVE_OUT, TAKE, Fate, Question
+from blendapp.domain.list_rows import TAKE, Fate
 from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.quotes import Terms
 from blendapp.domain.wording import _
-from blendapp.exchange.list_names import Match, NameFinder
-from blendapp.exchange.list_numbers import DateOrder, DecimalSign, date_in_column, date_readings, decide_date_order
-from blendapp.exchange.price_cells import PriceCell, error_in, read_price_cell
+from blendapp.exchange.list_names import NameFinder
+from blendapp.exchange.list_numbers import DecimalSign, decide_date_order
+from blendapp.exchange.list_row import TOTALS, RowReading
+from blendapp.exchange.price_cells import PriceCell, read_price_cell
 from blendapp.exchange.price_choice import Priced, choose_price
-from blendapp.exchange.price_columns import PriceColumn, Role, Table
+from blendapp.exchange.price_columns import PriceColumn, Role
 from blendapp.exchange.price_terms import WITHOUT_FREIGHT, read_terms
 from blendapp.exchange.price_units import AmbiguousPriceUnit, UnknownPriceUnit, bag_with_weight, read_price_unit
 from blendapp.exchange.price_units_read import TonnePrice, UnitReading, foreign_money, per_tonne, read_unit
 from blendapp.exchange.price_words import NO_WORDS, Money, Words, read_unit_words, split_dry, split_money
-from blendapp.exchange.tables import CellKind, RawTable, column_letters, kind_of
+from blendapp.exchange.tables import CellKind, RawTable, kind_of
 
 if TYPE_CHECKING:
     from blendapp.exchange.price_list import Segment
-
-_TOTALS = frozenset({
-    "total", "totals", "subtotal", "sub total", "sub-total", "grand total", "sum", "average", "avg", "mean",
-    "weighted average", "overall average", "overall",
-})
 
 
 def read_row(
@@ -42,31 +38,15 @@ def read_row(
     return _Reading(raw, row, segment, library, names, today).result()
 
 
-class _Reading:
-    """Gathers what one row says and every question that it raises."""
+class _Reading(RowReading):
+    """What one row of a price list says."""
 
     def __init__(
         self, raw: RawTable, row: int, segment: Segment, library: Library, names: NameFinder, today: datetime.date
     ) -> None:
-        self.raw, self.row, self.segment = raw, row, segment
-        self.library, self.names, self.today = library, names, today
-        self.table: Table = segment.table
-        self.answers = names.answers
-        self.questions: list[str] = []
-        self.open: list[Question] = []
-        self.left_out = False
-        self.remarks: list[str] = []
-        self.name = self._text(self.table.name)
-
-    def _text(self, column: int | None) -> str:
-        value = None if column is None else self.raw.cell(self.row, column)
-        kind = kind_of(value)
-        if kind is CellKind.TEXT:
-            return " ".join(str(value).split())
-        if kind is CellKind.NUMBER:
-            assert isinstance(value, float | int)
-            return PLAIN.write_exact(float(value))
-        return ""
+        self.segment, self.table = segment, segment.table
+        self.library, self.today = library, today
+        super().__init__(raw, row, names, self.table.name, self.table.headings)
 
     def _entry(self, fate: Fate, reason: str, **known: object) -> PriceRow:
         return PriceRow(self.raw.sheet, self.row + 1, fate, reason, self.name, **known)  # type: ignore[arg-type]
@@ -80,38 +60,20 @@ class _Reading:
         ]
         prices = [(column, cell) for column, cell in cells if not cell.empty]
         known = bool(self.name) and self.names.is_known(self.name)
-        if prices and (self.names.is_left_out(self.name) or self._is_left_out()):
+        if prices and self.is_left_out():
             return self._entry(Fate.IGNORED, _("Left out, as answered."))
         if not prices:
             return self._entry(Fate.IGNORED, self._why_empty([cell for _column, cell in cells], known))
-        if not known and fold(self.name).rstrip(" :") in _TOTALS:
+        if not known and fold(self.name).rstrip(" :") in TOTALS:
             return self._entry(Fate.IGNORED, _("A total or an average, no price of an ingredient."))
         if not known and all(cell.wordy for _column, cell in prices):
             return self._entry(Fate.IGNORED, _("A heading or a note without a price."))
         return self._priced(prices)
 
-    def _is_left_out(self) -> bool:
-        place = self.raw.sheet, self.row + 1
-        return any(
-            self.answers.of_row(asked, *place) == LEAVE_OUT for asked in Asked if not asked.is_remembered
-        )
-
-    def _ask(self, asked: Asked, about: str, text: str, choices: tuple[str, ...] = ()) -> None:
-        self.questions.append(text)
-        self.open.append(Question(asked, about, text, choices))
-
-    def _confirm(self, asked: Asked, text: str) -> None:
-        """Asks about this row, unless a person has said that it counts."""
-        if self.answers.of_row(asked, self.raw.sheet, self.row + 1) == TAKE:
-            self.remarks.append(_("Taken, as answered."))
-        else:
-            self._ask(asked, "", text, (TAKE, LEAVE_OUT))
-
     def _error(self) -> str:
         columns = [index for index, role in self.table.roles.items() if role not in (Role.NOTE, Role.TERMS, Role.OTHER)]
         columns += [column.index for column in self.table.prices]
-        found = (error_in(self.raw.cell(self.row, index), self.row, index) for index in sorted(set(columns)))
-        return next((sentence for sentence in found if sentence), "")
+        return self.error(columns)
 
     def _why_empty(self, cells: list[PriceCell], known: bool) -> str:
         said = next((cell.entered for cell in cells if cell.entered), "")
@@ -120,7 +82,13 @@ class _Reading:
         return _("The price is empty.") if known else _("A heading or a note without a price.")
 
     def _priced(self, prices: list[Priced]) -> PriceRow:
-        self._ask_about_place()
+        used = [self.table.name, *(column.index for column in self.table.prices)]
+        self.ask_about_place(
+            [index for index in used if index is not None],
+            _("The column “{name}” with names or prices is hidden in the list; say whether it counts."),
+        )
+        if self.table.side_by_side:
+            self.questions.append(_("Two tables seem to stand side by side; put one below the other."))
         choice = choose_price(self.table, prices, self.answers)
         for column, cell in prices if len(prices) > 1 and len(choice.parts) == 1 and choice.doubt else choice.parts:
             self._ask_about_cell(column, cell)
@@ -129,7 +97,7 @@ class _Reading:
             self.open += choice.open
         if choice.remark:
             self.remarks.append(choice.remark)
-        match = self._match()
+        match = self.match(_("The price has no name; say which ingredient it is for."))
         ingredient = match.ingredient
         parts = [self._part(column, cell, ingredient) for column, cell in choice.parts]
         found, unit = (parts[0][0], parts[0][1]) if len(parts) == 1 else (_added(parts), parts[0][1])
@@ -137,7 +105,7 @@ class _Reading:
         value = found.price if found else choice.parts[0][1].value
         if ingredient is not None and value is not None and value <= 0:
             text = _("The price {price} is 0 or below; type it for the ingredient if it is meant.")
-            self._confirm(Asked.SIGN, text.format(price=PLAIN.write_exact(value)))
+            self.confirm(Asked.SIGN, text.format(price=PLAIN.write_exact(value)))
         terms = self._terms(choice.parts, ingredient)
         self._ask_about_what_is_added(choice.parts)
         dry = None
@@ -149,7 +117,7 @@ class _Reading:
         fate = Fate.QUESTION if self.questions else Fate.ACCEPTED
         return self._entry(
             fate,
-            " ".join(dict.fromkeys(self.questions if self.questions else self.remarks)),
+            self.reason,
             ingredient_id=None if ingredient is None else ingredient.id,
             ingredient=None if ingredient is None else ingredient.name,
             price=found.price if found else value,
@@ -166,49 +134,22 @@ class _Reading:
             questions=tuple(dict.fromkeys(self.open)),
         )
 
-    def _ask_about_place(self) -> None:
-        if self.raw.hidden_rows and self.row in self.raw.hidden_rows:
-            self._confirm(Asked.HIDDEN, _("The row is hidden in the list; say whether it counts."))
-        used = [self.table.name, *(column.index for column in self.table.prices)]
-        for index in used:
-            if index is not None and self.raw.hidden_columns and index in self.raw.hidden_columns:
-                heading = self.table.headings.get(index, column_letters(index))
-                answer = self.answers.find(Asked.HIDDEN_COLUMN, heading)
-                if answer is None or answer.answer != TAKE:
-                    text = _("The column “{name}” with names or prices is hidden in the list; say whether it counts.")
-                    self._ask(Asked.HIDDEN_COLUMN, heading, text.format(name=heading), (TAKE,))
-        if self.raw.struck and any((self.row, index) in self.raw.struck for index in used):
-            self._confirm(Asked.STRUCK, _("The row is struck through in the list; say whether it counts."))
-        if self.table.side_by_side:
-            self.questions.append(_("Two tables seem to stand side by side; put one below the other."))
-
     def _ask_about_cell(self, column: PriceColumn, cell: PriceCell) -> None:
         if cell.both_ways:
-            self._ask(Asked.DECIMAL, column.heading, cell.doubt, tuple(sign.value for sign in DecimalSign))
+            self.ask(Asked.DECIMAL, column.heading, cell.doubt, tuple(sign.value for sign in DecimalSign))
         elif cell.doubt:
             self.questions.append(cell.doubt)
-
-    def _match(self) -> Match:
-        if not self.name:
-            self.questions.append(_("The price has no name; say which ingredient it is for."))
-            return Match(None)
-        match = self.names.find(self.name)
-        if match.ingredient is None:
-            self._ask(Asked.INGREDIENT, self.name, match.reason, match.candidates)
-        elif match.reason:
-            self.remarks.append(match.reason)
-        return match
 
     def _part(
         self, column: PriceColumn, cell: PriceCell, ingredient: Ingredient | None
     ) -> tuple[TonnePrice | None, UnitReading, bool]:
         """A price in money of the mill per tonne, the unit of the list, and whether it is for dry matter."""
-        beside = self._text(self.table.first(Role.UNIT))
-        pack = self._text(self.table.first(Role.PACK))
+        beside = self.text(self.table.first(Role.UNIT))
+        pack = self.text(self.table.first(Role.PACK))
         words = read_unit_words(bag_with_weight(beside, pack)) if beside else NO_WORDS
         unit = self._unit(column, cell, words)
         value = self._own_money(column, cell, words)
-        basis, _rest = split_dry(self._text(self.table.first(Role.TERMS)))
+        basis, _rest = split_dry(self.text(self.table.first(Role.TERMS)))
         dry = cell.dry or column.words.dry or words.dry or basis
         dry = dry or any(note.dry for note in self.segment.notes.units)
         if value is None or unit.unit is None:
@@ -237,13 +178,13 @@ class _Reading:
             if unit is not None:
                 self.remarks.append(_("The price is per {unit}, as answered.").format(unit=answered))
                 return UnitReading(unit, reading.said)
-        self._ask(Asked.UNIT, reading.about, reading.doubt, reading.choices)
+        self.ask(Asked.UNIT, reading.about, reading.doubt, reading.choices)
         return reading
 
     def _own_money(self, column: PriceColumn, cell: PriceCell, words: Words) -> float | None:
         """The price in money of the mill, None where there is none or its currency is in doubt."""
         sources: list[Money] = [cell.money, column.words.money, words.money]
-        currency = self._text(self.table.first(Role.CURRENCY))
+        currency = self.text(self.table.first(Role.CURRENCY))
         if currency:
             money, _rest = split_money(currency.upper() if len(currency) == 3 else currency)
             sources.append(money)
@@ -256,7 +197,7 @@ class _Reading:
             answer = self.answers.find(Asked.CENTS, "")
             if answer is None or answer.answer != TAKE:
                 text = _("The price is in hundredths of {own}; give it in {own}.").format(own=own)
-                self._ask(Asked.CENTS, "", text, (TAKE,))
+                self.ask(Asked.CENTS, "", text, (TAKE,))
                 value = None
             elif value is not None:
                 value = value / 100
@@ -280,7 +221,7 @@ class _Reading:
             text += " " + _("The rate of {day} was {rate}.").format(
                 day=last.given.isoformat(), rate=PLAIN.write_exact(last.rate)
             )
-        self._ask(Asked.RATE, theirs, text)
+        self.ask(Asked.RATE, theirs, text)
         return None
 
     def _of_dry_matter(self, found: TonnePrice, ingredient: Ingredient | None) -> tuple[TonnePrice, float | None]:
@@ -300,19 +241,19 @@ class _Reading:
 
     def _terms(self, parts: tuple[Priced, ...], ingredient: Ingredient | None) -> Terms | None:
         """Ex works or delivered; where the price in force is the other one, that is asked about."""
-        beside = self._text(self.table.first(Role.TERMS))
+        beside = self.text(self.table.first(Role.TERMS))
         found = read_terms(beside) or (Terms.DELIVERED if len(parts) > 1 else read_terms(parts[0][0].heading))
         if ingredient is None or found is None:
             return found
         quote = self.library.quote_in_force(ingredient.id, self.today)
         if quote is not None and quote.terms is not None and quote.terms is not found:
             text = _("The price is {new} and the one in force {old}; say whether it counts.")
-            self._confirm(Asked.TERMS, text.format(new=_(str(found)), old=_(str(quote.terms))))
+            self.confirm(Asked.TERMS, text.format(new=_(str(found)), old=_(str(quote.terms))))
         return found
 
     def _ask_about_what_is_added(self, parts: tuple[Priced, ...]) -> None:
         """A price that is said to be without freight, or a discount or surcharge beside it, is not the whole price."""
-        texts = [self._text(self.table.first(Role.TERMS)), self.segment.notes.without_freight]
+        texts = [self.text(self.table.first(Role.TERMS)), self.segment.notes.without_freight]
         if len(parts) == 1:
             texts.append(parts[0][0].heading)
         found = next((text for text in texts if WITHOUT_FREIGHT.search(text)), "") if len(parts) == 1 else ""
@@ -329,7 +270,7 @@ class _Reading:
     def _take_as_it_is(self, about: str, text: str) -> None:
         answer = self.answers.find(Asked.PRICE, about)
         if answer is None or answer.answer != TAKE:
-            self._ask(Asked.PRICE, about, text, (TAKE,))
+            self.ask(Asked.PRICE, about, text, (TAKE,))
 
     def _days(self) -> tuple[datetime.date | None, datetime.date | None]:
         first = self._date(Role.VALID_FROM, self.segment.notes.valid_from)
@@ -339,37 +280,15 @@ class _Reading:
             self.questions.append(text.format(last=last.isoformat(), first=first.isoformat()))
         elif last is not None and last < self.today:
             text = _("The price expired on {day}; ask for a new one.")
-            self._confirm(Asked.EXPIRED, text.format(day=last.isoformat()))
+            self.confirm(Asked.EXPIRED, text.format(day=last.isoformat()))
         return first, last
 
     def _date(self, role: Role, noted: str) -> datetime.date | None:
         """The day in a column, or else in a note over the whole table."""
         index = self.table.first(role)
-        value = None if index is None else self.raw.cell(self.row, index)
-        if index is None or kind_of(value) is CellKind.BLANK:
-            return self._read_date(noted, noted, decide_date_order([noted])) if noted else None
-        if isinstance(value, datetime.datetime):
-            return value.date()
-        if isinstance(value, datetime.date):
-            return value
-        text = self._text(index)
-        if not isinstance(value, str):
-            self.questions.append(_("“{text}” is no date; say which day is meant.").format(text=text))
-            return None
-        return self._read_date(text, self.table.headings[index], self.segment.dates.get(index))
-
-    def _read_date(self, text: str, heading: str, order: DateOrder | None) -> datetime.date | None:
-        if order is None:
-            answer = self.answers.find(Asked.DATES, heading)
-            order = next((one for one in DateOrder if answer and one.value == answer.answer), None)
-        found = date_in_column(text, order)
-        if found is None:
-            said = _("“{text}” is no date, or could be two; say which day is meant.").format(text=text)
-            if len(date_readings(text)) == 2:
-                self._ask(Asked.DATES, heading, said, tuple(one.value for one in DateOrder))
-            else:
-                self.questions.append(said)
-        return found
+        if index is None or kind_of(self.raw.cell(self.row, index)) is CellKind.BLANK:
+            return self.read_date(noted, noted, decide_date_order([noted])) if noted else None
+        return self.date(index, self.segment.dates.get(index))
 
 
 def _added(parts: list[tuple[TonnePrice | None, UnitReading, bool]]) -> TonnePrice | None:

@@ -1,0 +1,23 @@
+"""Cells of a list: where they stand, and those that hold an error instead of a value."""
+
+from __future__ import annotations
+
+from blendapp.domain.wording import _
+from blendapp.exchange.tables import CellKind, CellValue, column_letters, kind_of
+
+
+def place(row: int, column: int) -> str:
+    """A cell as the spreadsheet names it: row 0, column 1 is B1."""
+    return f"{column_letters(column)}{row + 1}"
+
+
+def error_in(value: CellValue, row: int, column: int) -> str:
+    """The sentence for a cell that holds an error or a formula without a stored value, or nothing."""
+    kind = kind_of(value)
+    if kind is CellKind.ERROR:
+        text = _("The cell {place} holds the error {error}; correct it in the list.")
+        return text.format(place=place(row, column), error=getattr(value, "text", ""))
+    if kind is CellKind.NO_STORED_VALUE:
+        text = _("The formula in the cell {place} has no stored result; open the list, let it calculate, and save it.")
+        return text.format(place=place(row, column))
+    return ""
