@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
-from blendapp.exchange.tables import CellKind, CellValue, column_letters, kind_of
+from blendapp.exchange.tables import CellKind, CellValue, RawTable, column_letters, kind_of
 
 
 def place(row: int, column: int) -> str:
@@ -20,4 +21,24 @@ def error_in(value: CellValue, row: int, column: int) -> str:
     if kind is CellKind.NO_STORED_VALUE:
         text = _("The formula in the cell {place} has no stored result; open the list, let it calculate, and save it.")
         return text.format(place=place(row, column))
+    return ""
+
+
+def holds_number(value: CellValue) -> bool:
+    """Whether a cell holds a number, a day, or a text with a digit."""
+    kind = kind_of(value)
+    if kind is CellKind.TEXT:
+        return any(letter.isdigit() for letter in str(value))
+    return kind not in (CellKind.BLANK, CellKind.BOOLEAN)
+
+
+def first_text(raw: RawTable, row: int) -> str:
+    """What stands first in a row, as the person sees it."""
+    for value in raw.rows[row]:
+        kind = kind_of(value)
+        if kind is CellKind.TEXT:
+            return " ".join(str(value).split())
+        if kind is CellKind.NUMBER:
+            assert isinstance(value, float | int)
+            return PLAIN.write_exact(float(value))
     return ""

@@ -9,17 +9,14 @@ from pathlib import Path
 
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import Answer, Fate, source_of
-from blendapp.domain.mills import Asked
-from blendapp.domain.names import fold
-from blendapp.domain.notation import PLAIN
 from blendapp.domain.price_rows import PriceListReading, PriceRow
-from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.wording import _
-from blendapp.exchange.delimited import read_delimited
-from blendapp.exchange.files import Format, SourceFile, open_source
 from blendapp.exchange.list_answers import Answers
+from blendapp.exchange.list_cells import first_text, holds_number
+from blendapp.exchange.list_columns import answered_sign, date_order
+from blendapp.exchange.list_files import open_list
 from blendapp.exchange.list_names import NameFinder
-from blendapp.exchange.list_numbers import DateOrder, DecimalSign, decide_date_order
+from blendapp.exchange.list_numbers import DateOrder, DecimalSign
 from blendapp.exchange.price_cells import column_sign
 from blendapp.exchange.price_checks import ask_about_duplicates, ask_about_leaps
 from blendapp.exchange.price_columns import Role, Table
@@ -27,8 +24,6 @@ from blendapp.exchange.price_headings import read_headings
 from blendapp.exchange.price_notes import Notes, read_notes
 from blendapp.exchange.price_row import read_row
 from blendapp.exchange.price_tables import drop_empty_prices, find_table, settle_name_column
-from blendapp.exchange.spreadsheets import read_spreadsheet
-from blendapp.exchange.suggestions import did_you_mean
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
 
 
@@ -55,46 +50,16 @@ def read_price_list(
     "" as the name of the file tells.
     Raises Refused with one sentence for a file that cannot be read, or that has no sheet of that name.
     """
-    file = open_source(path)
-    source = source_of(source or file.name)
-    notes: list[str] = []
-    tables = _chosen(_tables(file), sheet, file.name, notes)
-    if file.format in (Format.XLS, Format.XLSB, Format.ODS):
-        notes.append(_("What is hidden, struck through or in error cannot be told in this file; check it by eye."))
+    opened = open_list(path, sheet)
+    source = source_of(source or opened.file.name)
     answered = Answers(library, source, answers, today)
     names = NameFinder(library, answered)
-    rows = [row for table in tables for row in read_table(table, library, names, today)]
+    rows = [row for table in opened.tables for row in read_table(table, library, names, today)]
     rows = ask_about_leaps(ask_about_duplicates(rows, answered), answered, library)
     return PriceListReading(
-        file.name, file.digest, tuple(rows), tuple(notes), source, tuple(answers), currency=library.mill.currency
+        opened.file.name, opened.file.digest, tuple(rows), opened.notes, source, tuple(answers),
+        currency=library.mill.currency,
     )
-
-
-def _tables(source: SourceFile) -> list[RawTable]:
-    return [read_delimited(source)] if source.format is Format.TEXT else read_spreadsheet(source)
-
-
-def _chosen(tables: list[RawTable], sheet: str | None, file: str, notes: list[str]) -> list[RawTable]:
-    if sheet is None:
-        hidden = [table.sheet for table in tables if not table.visible]
-        if hidden:
-            names = ", ".join(f"“{name}”" for name in hidden)
-            notes.append(_("These sheets are hidden and were not read: {names}.").format(names=names))
-        return [table for table in tables if table.visible]
-    found = [table for table in tables if table.sheet == sheet] or [
-        table for table in tables if fold(table.sheet) == fold(sheet)
-    ]
-    if not found:
-        text = _("There is no sheet “{sheet}”.").format(sheet=sheet)
-        known = [table.sheet for table in tables if table.sheet]
-        if not known:
-            text = _("The file is a text and has no sheets; leave the sheet out.")
-        elif not (likely := did_you_mean(sheet, known)):
-            text += " " + _("It has {names}.").format(names=", ".join(f"“{name}”" for name in known))
-        else:
-            text += likely
-        raise Refused(Problem(text, Place(file)))
-    return found[:1]
 
 
 def read_table(raw: RawTable, library: Library, names: NameFinder, today: datetime.date) -> Iterator[PriceRow]:
@@ -153,16 +118,14 @@ def _segment(
     """titles: what notes of the tables above it say, which holds where its own notes are silent."""
     body = range(max(first, table.first_row), last)
     signs = {
-        column.index: column_sign(raw, column.index, body) or _answered_sign(answers, column.heading)
+        column.index: column_sign(raw, column.index, body) or answered_sign(answers, column.heading)
         for column in table.prices
     }
     dates: dict[int, DateOrder | None] = {}
     for role in (Role.VALID_FROM, Role.VALID_TO):
         index = table.first(role)
         if index is not None:
-            values = (raw.cell(row, index) for row in body)
-            found = decide_date_order(value for value in values if isinstance(value, str))
-            dates[index] = found or _answered_order(answers, table.headings[index])
+            dates[index] = date_order(raw, index, body, answers, table.headings[index])
     notes = read_notes(raw, range(first, last))
     notes = Notes(
         notes.units or titles.units, notes.valid_from or titles.valid_from, notes.valid_to or titles.valid_to,
@@ -171,43 +134,14 @@ def _segment(
     return Segment(table, first, last, signs, dates, notes)
 
 
-def _answered_sign(answers: Answers, heading: str) -> DecimalSign | None:
-    found = answers.find(Asked.DECIMAL, heading)
-    return next((sign for sign in DecimalSign if found and sign.value == found.answer), None)
-
-
-def _answered_order(answers: Answers, heading: str) -> DateOrder | None:
-    found = answers.find(Asked.DATES, heading)
-    return next((order for order in DateOrder if found and order.value == found.answer), None)
-
-
 def _without_table(raw: RawTable) -> Iterator[PriceRow]:
     """A sheet in which no table was found: rows of words are ignored, rows with a number are asked about."""
     for row in range(len(raw.rows)):
         if raw.is_blank(row):
             continue
         text = first_text(raw, row)
-        if any(_holds_number(value) for value in raw.rows[row]):
+        if any(holds_number(value) for value in raw.rows[row]):
             reason = _("No heading row with a name and a price was found; add one, with a unit.")
             yield PriceRow(raw.sheet, row + 1, Fate.QUESTION, reason, text)
         else:
             yield PriceRow(raw.sheet, row + 1, Fate.IGNORED, _("No table of prices."), text)
-
-
-def _holds_number(value: object) -> bool:
-    kind = kind_of(value)  # type: ignore[arg-type]
-    if kind is CellKind.TEXT:
-        return any(letter.isdigit() for letter in str(value))
-    return kind not in (CellKind.BLANK, CellKind.BOOLEAN)
-
-
-def first_text(raw: RawTable, row: int) -> str:
-    """What stands first in a row, as the person sees it."""
-    for value in raw.rows[row]:
-        kind = kind_of(value)
-        if kind is CellKind.TEXT:
-            return " ".join(str(value).split())
-        if kind is CellKind.NUMBER:
-            assert isinstance(value, float | int)
-            return PLAIN.write_exact(float(value))
-    return ""

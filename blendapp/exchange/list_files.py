@@ -1,0 +1,64 @@
+"""A list as it arrives: the sheets of its file that are to be read, and what is to be said of the file as a whole."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from pathlib import Path
+
+from blendapp.domain.names import fold
+from blendapp.domain.problems import Place, Problem, Refused
+from blendapp.domain.wording import _
+from blendapp.exchange.delimited import read_delimited
+from blendapp.exchange.files import Format, SourceFile, open_source
+from blendapp.exchange.spreadsheets import read_spreadsheet
+from blendapp.exchange.suggestions import did_you_mean
+from blendapp.exchange.tables import RawTable
+
+
+@dataclass(frozen=True)
+class OpenedList:
+    """tables: the sheets to be read, in the order of the file. notes: about the file as a whole."""
+
+    file: SourceFile
+    tables: tuple[RawTable, ...]
+    notes: tuple[str, ...]
+
+
+def open_list(path: str | Path, sheet: str | None) -> OpenedList:
+    """Opens a list. sheet: None takes every visible sheet.
+
+    Raises Refused with one sentence for a file that cannot be read, or that has no sheet of that name.
+    """
+    file = open_source(path)
+    notes: list[str] = []
+    tables = _chosen(_tables(file), sheet, file.name, notes)
+    if file.format in (Format.XLS, Format.XLSB, Format.ODS):
+        notes.append(_("What is hidden, struck through or in error cannot be told in this file; check it by eye."))
+    return OpenedList(file, tuple(tables), tuple(notes))
+
+
+def _tables(source: SourceFile) -> list[RawTable]:
+    return [read_delimited(source)] if source.format is Format.TEXT else read_spreadsheet(source)
+
+
+def _chosen(tables: list[RawTable], sheet: str | None, file: str, notes: list[str]) -> list[RawTable]:
+    if sheet is None:
+        hidden = [table.sheet for table in tables if not table.visible]
+        if hidden:
+            names = ", ".join(f"“{name}”" for name in hidden)
+            notes.append(_("These sheets are hidden and were not read: {names}.").format(names=names))
+        return [table for table in tables if table.visible]
+    found = [table for table in tables if table.sheet == sheet] or [
+        table for table in tables if fold(table.sheet) == fold(sheet)
+    ]
+    if not found:
+        text = _("There is no sheet “{sheet}”.").format(sheet=sheet)
+        known = [table.sheet for table in tables if table.sheet]
+        if not known:
+            text = _("The file is a text and has no sheets; leave the sheet out.")
+        elif not (likely := did_you_mean(sheet, known)):
+            text += " " + _("It has {names}.").format(names=", ".join(f"“{name}”" for name in known))
+        else:
+            text += likely
+        raise Refused(Problem(text, Place(file)))
+    return found[:1]
