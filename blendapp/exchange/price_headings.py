@@ -4,10 +4,11 @@ from __future__ import annotations
 
 import re
 
+from blendapp.exchange.list_headings import joined, spread_over, texts_of
 from blendapp.exchange.price_columns import PriceColumn, Role, Table, role_of
 from blendapp.exchange.price_numbers import read_price_text
 from blendapp.exchange.price_words import read_heading_words, read_unit_words
-from blendapp.exchange.tables import CellKind, RawTable, column_letters, kind_of
+from blendapp.exchange.tables import RawTable, column_letters
 
 # A heading may name the week or the day of its prices.
 _DATED = re.compile(
@@ -22,10 +23,10 @@ def read_headings(table: RawTable, row: int) -> Table | None:
 
     Headings may take two rows: the second says more of each column, or the first stands over several of them.
     """
-    texts = _texts(table, row)
+    texts = texts_of(table, row)
     if texts is None:
         return None
-    below = _texts(table, row + 1) if row + 1 < len(table.rows) else None
+    below = texts_of(table, row + 1) if row + 1 < len(table.rows) else None
     if below and _holds_price(below):
         below = None
     found = _headed(row, texts)
@@ -34,39 +35,20 @@ def read_headings(table: RawTable, row: int) -> Table | None:
         if split is not None:
             return split
         if below and _says_more(found, below):
-            found = _headed(row, _joined(texts, below)) or found
+            found = _headed(row, joined(texts, below)) or found
             found.last_heading_row = row + 1
             return found
         return _under_a_wider_heading(table, row, texts, found)
     if below and len(below) > 1 and not _holds_price(texts) and _headed(row + 1, below) is None:
-        both = _headed(row, _joined(_spread(table, row, texts, below), below))
+        both = _headed(row, joined(spread_over(table, row, texts, below), below))
         if both is not None and both.name is not None:
             both.last_heading_row = row + 1
             return both
     return None
 
 
-def _texts(table: RawTable, row: int) -> dict[int, str] | None:
-    """The texts of a row by column; None where anything but text stands in it."""
-    found = {}
-    for index, value in enumerate(table.rows[row]):
-        kind = kind_of(value)
-        if kind is CellKind.BLANK:
-            continue
-        if kind is not CellKind.TEXT:
-            return None
-        found[index] = " ".join(str(value).split())
-    return found
-
-
 def _holds_price(texts: dict[int, str]) -> bool:
     return any(_is_price(text, bool(read_heading_words(text).unit)) for text in texts.values())
-
-
-def _joined(above: dict[int, str], below: dict[int, str]) -> dict[int, str]:
-    return {
-        index: f"{above.get(index, '')} {below.get(index, '')}".strip() for index in sorted({*above, *below})
-    }
 
 
 def _split_below(
@@ -75,11 +57,11 @@ def _split_below(
     """The table whose one heading of prices stands over several columns, headed each in the row below."""
     if found.name is None or found.name in below:
         return None
-    spread = _spread(table, row, texts, below)
+    spread = spread_over(table, row, texts, below)
     heads = {column.heading for column in found.prices}
     if not any(index not in texts and spread.get(index) in heads for index in below):
         return None
-    both = _headed(row, _joined(spread, below))
+    both = _headed(row, joined(spread, below))
     if both is not None:
         both.last_heading_row = row + 1
     return both
@@ -103,31 +85,14 @@ def _says_more(found: Table, below: dict[int, str]) -> bool:
     return True
 
 
-def _spread(table: RawTable, row: int, texts: dict[int, str], below: dict[int, str]) -> dict[int, str]:
-    """The headings of a row over every column that they stand over: a merged range, or blanks up to the next one."""
-    found = dict(texts)
-    for index in sorted(below):
-        if index in texts:
-            continue
-        merged = next((m for m in table.merged if m.first_row <= row <= m.last_row
-                       and m.first_column <= index <= m.last_column), None)
-        if merged is not None:
-            over: int | None = merged.first_column
-        else:  # a file that tells of merged cells has none here
-            over = None if table.merged else max((i for i in texts if i < index), default=None)
-        if over is not None and over in texts:
-            found[index] = texts[over]
-    return found
-
-
 def _under_a_wider_heading(table: RawTable, row: int, texts: dict[int, str], found: Table) -> Table:
     """The same table with what stands over its price columns: a unit, a currency, "last week" and "this week"."""
     if row == 0 or found.name is None:
         return found
-    above = _texts(table, row - 1)
+    above = texts_of(table, row - 1)
     if not above or min(above) <= found.name:  # that is a title
         return found
-    spread = _spread(table, row - 1, above, texts)
+    spread = spread_over(table, row - 1, above, texts)
     more = {
         column.index: spread[column.index] for column in found.prices if column.index in spread
     }

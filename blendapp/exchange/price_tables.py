@@ -5,19 +5,17 @@ from __future__ import annotations
 import re
 from collections.abc import Callable
 
+from blendapp.exchange.list_headings import FURTHEST, best_name_column, is_known_text, known_names
 from blendapp.exchange.price_columns import PriceColumn, Role, Table
 from blendapp.exchange.price_headings import read_headings
 from blendapp.exchange.price_units import is_price_unit
 from blendapp.exchange.price_words import read_heading_words
 from blendapp.exchange.tables import CellKind, CellValue, RawTable, kind_of
 
-# A heading row stands near the top; looking further would only find odd rows of a long list.
-_FURTHEST = 200
-
 
 def find_table(table: RawTable, is_known: Callable[[str], bool]) -> Table | None:
     """The first table of a sheet. is_known: whether a text is the name of an ingredient."""
-    for row in range(min(len(table.rows), _FURTHEST)):
+    for row in range(min(len(table.rows), FURTHEST)):
         found = None if table.is_blank(row) else read_headings(table, row)
         if found is not None:
             settle_name_column(found, table, is_known)
@@ -34,10 +32,10 @@ def settle_name_column(found: Table, table: RawTable, is_known: Callable[[str], 
         taken = {column.index for column in found.prices}
         width = max((len(cells) for cells in table.rows), default=0)
         candidates = [index for index in range(width) if index not in taken]
-        if not any(_known(table, index, found.heading_row or 0, is_known) for index in candidates):
+        if not any(known_names(table, index, (found.heading_row or 0) + 1, is_known) for index in candidates):
             return
-    start = found.heading_row or 0
-    found.name = max(candidates, key=lambda index: (_known(table, index, start, is_known), -index))
+    found.name = best_name_column(table, candidates, (found.heading_row or 0) + 1, is_known)
+    assert found.name is not None
     for index in candidates:
         if index != found.name and found.roles.get(index) is Role.NAME:
             found.roles[index] = Role.NOTE
@@ -56,24 +54,14 @@ def drop_empty_prices(found: Table, table: RawTable) -> None:
         found.prices = filled
 
 
-def _known(table: RawTable, column: int, start: int, is_known: Callable[[str], bool]) -> int:
-    rows = table.rows[start + 1 : start + 1 + _FURTHEST]
-    texts = (cells[column] for cells in rows if column < len(cells))
-    return sum(_is_known_text(text, is_known) for text in texts)
-
-
-def _is_known_text(value: CellValue, is_known: Callable[[str], bool]) -> bool:
-    return isinstance(value, str) and is_known(value)
-
-
 def _table_without_headings(table: RawTable, is_known: Callable[[str], bool]) -> Table | None:
     """Names that the mill knows in one column, numbers in exactly one other."""
     width = max((len(cells) for cells in table.rows), default=0)
-    counts = [_known(table, column, -1, is_known) for column in range(width)]
+    counts = [known_names(table, column, 0, is_known) for column in range(width)]
     if not counts or max(counts) < 2:
         return None
     name = counts.index(max(counts))
-    named = [cells for cells in table.rows if name < len(cells) and _is_known_text(cells[name], is_known)]
+    named = [cells for cells in table.rows if name < len(cells) and is_known_text(cells[name], is_known)]
     numeric = [
         column
         for column in range(width)
