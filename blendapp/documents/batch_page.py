@@ -12,7 +12,7 @@ from blendapp.documents.paper import MM, Paper
 from blendapp.documents.pen import Pen
 from blendapp.documents.sections import BODY, STRONG
 from blendapp.documents.weighing import weighing_table
-from blendapp.domain.batches import Batch
+from blendapp.domain.batches import Batch, BatchPage
 from blendapp.domain.notation import notation
 from blendapp.domain.wording import _, plural
 
@@ -21,12 +21,17 @@ _CODE_SIZE = 24 * MM
 _CODE_NAME_BYTES = 80
 
 
-def draw(batch: Batch, paper: Paper) -> bytes:
-    """The sheet as a PDF."""
+def draw(batch: Batch, page: BatchPage, paper: Paper) -> bytes:
+    """The page as a PDF."""
+    kinds = {
+        BatchPage.SHEET: _("Batch sheet"),
+        BatchPage.MASTER: _("Master formula record"),
+        BatchPage.BLANK: _("Blank batch record"),
+    }
     frame = Frame(
         paper,
         title=" · ".join([batch.formula, batch.version, number_words(batch)]),
-        kind=_("Batch sheet"),
+        kind=kinds[page],
         owner=batch.mill,
         name=batch.formula,
         rest=f"{batch.version} · {number_words(batch)}",

@@ -20,6 +20,14 @@ class CleanOut(StrEnum):
     NONE = "none needed"
 
 
+class BatchPage(StrEnum):
+    """The pages that are drawn from one batch."""
+
+    SHEET = "sheet"
+    MASTER = "master"
+    BLANK = "blank"
+
+
 @dataclass(frozen=True)
 class Step:
     """One step of making the batch, as the operator reads it. minutes: None where it is not timed."""

@@ -11,7 +11,7 @@ from dataclasses import asdict
 from pathlib import Path
 from typing import Any
 
-from blendapp.domain.batches import Batch, BatchLine, CleanOut, Step, ToMake
+from blendapp.domain.batches import Batch, BatchLine, BatchPage, CleanOut, Step, ToMake
 from blendapp.domain.formulas import LimitKind
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.results import LimitResult, NutrientResult, Result, Side
@@ -19,11 +19,16 @@ from blendapp.domain.wording import _
 from blendapp.services.targets import refuse_over_a_mill
 
 
-def batch_pdf(batch: Batch, paper: str = "A4") -> bytes:
-    """The batch sheet as a PDF. paper: "A4" or "letter"."""
+def batch_pdf(batch: Batch, paper: str = "", page: str = BatchPage.SHEET) -> bytes:
+    """A page of a batch as a PDF. paper: "A4" or "letter", "" is the batch's own. page: one of BatchPage."""
     from blendapp import documents
 
-    return documents.batch_sheet(batch, paper=documents.Paper[paper.upper()])
+    draw = {
+        BatchPage.SHEET: documents.batch_sheet,
+        BatchPage.MASTER: documents.master_record,
+        BatchPage.BLANK: documents.blank_record,
+    }[BatchPage(page)]
+    return draw(batch, documents.Paper[paper.upper()] if paper else None)
 
 
 def report_pdf(result: Result, mill: str, version: str, paper: str = "A4") -> bytes:
