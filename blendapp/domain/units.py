@@ -101,6 +101,14 @@ PRICE_PER: tuple[str, ...] = (*PRICE_PER_KG, BUSHEL)
 LEGAL_BUSHEL_LB: dict[str, float] = {"maize": 56.0, "corn": 56.0, "wheat": 60.0, "soya": 60.0, "soybean": 60.0,
                                      "soybeans": 60.0, "barley": 48.0, "oats": 32.0}
 
+# Masses and volumes that the step of a scale or a meter may be typed in. The US gallon is 231 cubic inches of 2.54 cm
+# (NIST Handbook 44, appendix C), the imperial one 4.54609 l (Units of Measurement Regulations 1995, United Kingdom).
+MASS_KG: dict[str, float] = {
+    "kg": 1.0, "g": 1e-3, "mg": 1e-6, "t": 1000.0, "lb": LB_KG, "oz": LB_KG / 16, "short ton": SHORT_TON_KG,
+    "long ton": LONG_TON_KG,
+}
+VOLUME_L: dict[str, float] = {"l": 1.0, "ml": 1e-3, "US gal": 231 * 2.54**3 / 1000, "imperial gal": 4.54609}
+
 # Words that may stand beside the name of a grain without making it another good.
 _GRAIN_WORDS = frozenset({"grain", "grains", "whole"})
 

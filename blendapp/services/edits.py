@@ -89,30 +89,42 @@ def value_changes(
 
 def set_price(
     mill: Mill, ingredient_id: int, price: float | None, on: datetime.date, *, per: str | None = None,
-    source: str = TYPED, entered: str = "",
+    source: str = TYPED, entered: str = "", supplier_id: int | None = None, site_id: int | None = None,
 ) -> Edit:
-    """Quote a price from a day on; None withdraws the price, so that it is unknown. per None: as the last quote."""
+    """Quote a price from a day on; None withdraws the price, so that it is unknown. per None: as the last quote.
+
+    supplier_id: whose price it is, None for nobody's in particular. site_id: None is that of the quote in force.
+    """
     what = _("Price of {ingredient}").format(ingredient=mill.library.ingredient(ingredient_id).name)
-    return mill.apply(what, price_changes(mill, ingredient_id, price, on, per=per, source=source, entered=entered))
+    return mill.apply(what, price_changes(
+        mill, ingredient_id, price, on, per=per, source=source, entered=entered, supplier_id=supplier_id,
+        site_id=site_id,
+    ))
 
 
 def price_changes(
     mill: Mill, ingredient_id: int, price: float | None, on: datetime.date, *, per: str | None = None,
-    source: str = TYPED, entered: str = "",
+    source: str = TYPED, entered: str = "", supplier_id: int | None = None, site_id: int | None = None,
 ) -> list[Change]:
-    """The changes of set_price: a new quote, so that the price history keeps the old one."""
+    """The changes of set_price: a new quote, so that the price history keeps the old one.
+
+    Unless a site is said, it is for that of the quote in force, or it would not be in force itself.
+    """
     old = mill.library.quote_in_force(ingredient_id, on)
     chosen = per or (old.per if old else "t")
     if chosen == "cwt" and (old is None or old.per != "cwt"):
         chosen = units.CWT_KEPT_AS.get(mill.library.mill.cwt_means, chosen)
-    if old is not None and old.price == price and old.per == chosen:
+    if site_id is None and old is not None:
+        site_id = old.site_id
+    same_place = old is not None and old.site_id == site_id and supplier_id in (None, old.supplier_id)
+    if old is not None and same_place and old.price == price and old.per == chosen:
         return []
     if old is None and price is None:
         return []
     bushel = _bushel_lb(mill.library, ingredient_id, old) if chosen == units.BUSHEL else None
     return [added(Quote(
-        mill.new_id("quote"), ingredient_id, price, chosen, bushel, valid_from=on, recorded=on, source=source,
-        entered=entered,
+        mill.new_id("quote"), ingredient_id, price, chosen, bushel, site_id, supplier_id, valid_from=on, recorded=on,
+        source=source, entered=entered,
     ))]
 
 
@@ -200,16 +212,24 @@ def add_formula(mill: Mill, name: str, **fields: Any) -> Edit:
 
 
 def duplicate_formula(mill: Mill, formula_id: int, name: str) -> Edit:
-    """A new formula with the same limits under another name."""
+    """A new formula with the same limits and steps of its own under another name."""
     old = mill.library.formula(formula_id)
     new = replace(old, id=mill.new_id("formula"), name=name.strip())
     limits = [replace(x, id=mill.new_id("limit"), formula_id=new.id) for x in mill.library.limits(formula_id)]
+    steps = [replace(x, id=mill.new_id("mixing_step"), formula_id=new.id) for x in _own_steps(mill.library, formula_id)]
     what = _("Copy {old} as {new}").format(old=old.name, new=new.name)
-    return mill.apply(what, [added(new), *map(added, limits)])
+    return mill.apply(what, [added(new), *map(added, limits), *map(added, steps)])
+
+
+def _own_steps(library: Library, formula_id: int) -> list[Record]:
+    return [step for step in library.all("mixing_step") if step.formula_id == formula_id]
 
 
 def remove_formula(mill: Mill, formula_id: int) -> Edit:
-    """Remove a formula and its limits. Raises Refused where it makes an ingredient or was printed or approved."""
+    """Remove a formula with its limits and own steps.
+
+    Raises Refused where it makes an ingredient or was printed or approved.
+    """
     library = mill.library
     formula = library.formula(formula_id)
     makes = [i.name for i in library.ingredients if i.made_by_formula_id == formula_id]
@@ -220,7 +240,8 @@ def remove_formula(mill: Mill, formula_id: int) -> Edit:
         text = _("{formula} has printed batches or versions, which must stay on record; it cannot be removed.")
         raise Refused(text.format(formula=formula.name))
     what = _("Remove {name}").format(name=formula.name)
-    return mill.apply(what, [*map(removed, library.limits(formula_id)), removed(formula)])
+    rest = [*library.limits(formula_id), *_own_steps(library, formula_id)]
+    return mill.apply(what, [*map(removed, rest), removed(formula)])
 
 
 def add_limit(mill: Mill, formula_id: int, kind: LimitKind, subject: Subject, **fields: Any) -> Edit:

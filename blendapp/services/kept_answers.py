@@ -19,8 +19,8 @@ from blendapp.services.formulate import Answer, answer_to
 
 # Kinds of records on which no answer rests, prices apart, which kept answers follow.
 _APART = frozenset({
-    "quote", "price_list", "synonym", "person", "site", "supplier", "scale", "mixer", "bin", "lot", "lot_value",
-    "version", "acknowledgement", "batch",
+    "quote", "price_list", "synonym", "person", "site", "supplier", "scale", "mixer", "mixing_step", "bin", "lot",
+    "lot_value", "version", "acknowledgement", "batch",
 })
 
 

@@ -280,6 +280,11 @@ def record_name(record: Record, library: Library) -> str:
             return f"{_name(library, 'formula', record.formula_id)}, {library.subject_name(record.subject)}"
         except KeyError:
             return _name(library, "formula", record.formula_id)
+    if kind == "mixing_step":
+        formula = _name(library, "formula", record.formula_id or 0) or _("every formula")
+        return _("{formula}, step {number}").format(formula=formula, number=record.position)
+    if kind == "lot_value":
+        return f"{_name(library, 'lot', record.lot_id)}, {_name(library, 'nutrient', record.nutrient_id)}"
     return str(getattr(record, "name", ""))
 
 

@@ -123,3 +123,17 @@ def test_two_units_convert_exactly_where_pint_finds_them_of_one_kind(unit: str, 
 def test_the_intake_of_a_nutrient_is_counted_in_a_unit_of_its_own_kind(name: str) -> None:
     own = units.own_per_day(name)
     assert units.PER_DAY[own].family is units.CONCENTRATION[name].family
+
+
+MEASURES = {
+    "mg": "milligram", "t": "metric_ton", "oz": "ounce", "lb": "pound", "short ton": "short_ton",
+    "long ton": "long_ton", "ml": "milliliter", "US gal": "gallon", "imperial gal": "imperial_gallon",
+    "kg": "kilogram", "g": "gram", "l": "liter",
+}
+
+
+@pytest.mark.parametrize("name", [*units.MASS_KG, *units.VOLUME_L])
+def test_a_mass_or_volume_that_a_step_may_be_typed_in_is_what_pint_says(name: str) -> None:
+    found = {**units.MASS_KG, **units.VOLUME_L}[name]
+    base = "kilogram" if name in units.MASS_KG else "liter"
+    assert found == pytest.approx(factor(MEASURES[name], base), rel=1e-12)
