@@ -28,7 +28,8 @@ class Quote:
 
     price: money of the mill per `per` as fed, None where the price was withdrawn (then it is unknown, never 0).
     bushel_lb: mass of the bushel when the quote was made. valid_from, valid_to: inclusive, None is open.
-    recorded: when the mill took it. price_list_id: the price list it came with.
+    recorded: when the mill took it. price_list_id: the price list it came with. replaces_id: the quote in whose place
+    it was recorded, with other days, another price or other terms; that one stays on record and no longer counts.
     """
 
     id: int
@@ -46,6 +47,7 @@ class Quote:
     source: str = ""
     entered: str = ""
     price_list_id: int | None = None
+    replaces_id: int | None = None
 
     @property
     def price_per_t(self) -> float | None:
@@ -56,17 +58,31 @@ class Quote:
 def rule() -> str:
     """The rule of in_force, as a person reads it."""
     return _(
-        "In force is, of the quotes valid on the day, first one of the site before one of the whole mill; then one of "
-        "the ingredient's own supplier, or of none, before one of another supplier; then the one whose first day of "
-        "validity is latest; of two with the same first day, the one recorded last."
+        "In force is, of the quotes valid on the day and not replaced by a later entry, first one of the site before "
+        "one of the whole mill; then one of the ingredient's own supplier, or of none, before one of another supplier; "
+        "then the one whose first day of validity is latest; of two with the same first day, the one recorded last."
     )
 
 
-def _valid(quote: Quote, on: datetime.date, site_id: int | None) -> bool:
+def counting(quotes: Iterable[Quote], site_id: int | None) -> list[Quote]:
+    """The quotes that count at a site on the days of their validity: not replaced, of the site or the whole mill."""
+    quotes = list(quotes)
+    replaced = {quote.replaces_id for quote in quotes}
+    return [quote for quote in quotes if quote.id not in replaced and quote.site_id in (None, site_id)]
+
+
+def is_valid(quote: Quote, on: datetime.date) -> bool:
+    """Whether a day lies within the validity of a quote."""
+    return (quote.valid_from is None or quote.valid_from <= on) and (quote.valid_to is None or quote.valid_to >= on)
+
+
+def rank(quote: Quote, supplier_id: int | None) -> tuple[bool, bool, datetime.date, int]:
+    """Of valid quotes that count, the greatest is in force: the four parts of rule(), in their order."""
     return (
-        (quote.site_id is None or quote.site_id == site_id)
-        and (quote.valid_from is None or quote.valid_from <= on)
-        and (quote.valid_to is None or quote.valid_to >= on)
+        quote.site_id is not None,
+        supplier_id is None or quote.supplier_id in (None, supplier_id),
+        quote.valid_from or datetime.date.min,
+        quote.id,
     )
 
 
@@ -77,12 +93,7 @@ def in_force(
 
     supplier_id: whom the ingredient is bought from; None makes no difference between suppliers.
     """
-    valid = [quote for quote in quotes if _valid(quote, on, site_id)]
+    valid = [quote for quote in counting(quotes, site_id) if is_valid(quote, on)]
     if len(valid) < 2:
         return valid[0] if valid else None
-    return max(valid, key=lambda quote: (
-        quote.site_id is not None,
-        supplier_id is None or quote.supplier_id in (None, supplier_id),
-        quote.valid_from or datetime.date.min,
-        quote.id,
-    ))
+    return max(valid, key=lambda quote: rank(quote, supplier_id))

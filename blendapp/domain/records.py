@@ -28,7 +28,8 @@ from blendapp.domain.quotes import Quote
 
 Record = Any  # one of the classes of KINDS; typing.Union of them adds nothing that a reader can use
 
-# In an order in which rows can be written: a record refers only to kinds above its own, made_by_formula_id apart.
+# In an order in which rows can be written: a record refers only to kinds above its own, made_by_formula_id and
+# replaces_id apart.
 KINDS: dict[str, type[Record]] = {
     "site": Site,
     "supplier": Supplier,

@@ -50,7 +50,7 @@ def apply_price_list(mill: Mill, reading: PriceListReading, on: datetime.date) -
         raise Refused(_("No row of {file} was accepted; there is no price to record.").format(file=reading.file_name))
     kept = PriceList(
         mill.new_id("price_list"), reading.file_name, reading.digest, datetime.datetime.now(datetime.UTC),
-        len(reading.rows), len(rows), report=_report(reading), source=reading.source,
+        len(reading.rows), len(rows), reading.supplier_id, _report(reading), reading.source, site_id=reading.site_id,
     )
     changes: list[Change] = [added(kept)]
     for row in rows:
@@ -58,9 +58,9 @@ def apply_price_list(mill: Mill, reading: PriceListReading, on: datetime.date) -
         assert row.price is not None
         assert row.per is not None
         changes.append(added(Quote(
-            mill.new_id("quote"), row.ingredient_id, row.price, row.per, row.bushel_lb, terms=row.terms,
-            valid_from=row.valid_from or on, valid_to=row.valid_to, recorded=on, source=reading.file_name,
-            entered=row.entered, price_list_id=kept.id,
+            mill.new_id("quote"), row.ingredient_id, row.price, row.per, row.bushel_lb, reading.site_id,
+            reading.supplier_id, terms=row.terms, valid_from=row.valid_from or on, valid_to=row.valid_to, recorded=on,
+            source=reading.file_name, entered=row.entered, price_list_id=kept.id,
         )))
     changes += memory_changes(mill, reading)
     what = _("Prices from {file}").format(file=reading.file_name)

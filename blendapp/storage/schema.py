@@ -166,7 +166,8 @@ _table(
     "quote", _link("ingredient_id", "ingredient"), _number("price"), _text("per"), _number("bushel_lb"),
     _link("site_id", "site", optional=True), _link("supplier_id", "supplier", optional=True), _text("kind"),
     _text("terms", optional=True), _day("valid_from"), _day("valid_to"), _day("recorded"), _text("source"),
-    _text("entered"), _link("price_list_id", "price_list", optional=True), _number("price_per_t"),
+    _text("entered"), _link("price_list_id", "price_list", optional=True), _link("replaces_id", "quote", optional=True),
+    _number("price_per_t"),
 )
 _table(
     "synonym", _text("source"), _text("name"), _link("ingredient_id", "ingredient", optional=True), _text("per"),

@@ -47,6 +47,7 @@ def records(first_records: list[Record]) -> list[Record]:
         Ingredient(4, "Minerals", made_by_formula_id=2, opened=True, supplier_id=1),
         PriceList(2, "lab.xlsx", "cd" * 32, MOMENT, 4, 4, about=ListAbout.COMPOSITION, site_id=1),
         Lot(2, 1, "S-4", DAY, price_list_id=2),
+        Quote(3, 2, 5.7, valid_from=DAY, replaces_id=2),
     ]
 
 

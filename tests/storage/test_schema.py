@@ -44,7 +44,7 @@ def test_a_column_takes_what_its_field_holds(kind: str) -> None:
 
 @pytest.mark.parametrize("kind", KINDS)
 def test_every_identifier_of_another_record_is_a_foreign_key(kind: str) -> None:
-    targets = {"made_by_formula": "formula", "approved_by": "person", "made_by": "person"}
+    targets = {"made_by_formula": "formula", "approved_by": "person", "made_by": "person", "replaces": "quote"}
     for name in field_types(KINDS[kind]):
         if name.endswith("_id"):
             (key,) = table_of(kind).c[name].foreign_keys

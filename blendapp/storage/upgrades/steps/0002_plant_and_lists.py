@@ -19,6 +19,7 @@ _LINKS = (
     ("lot", "price_list_id", "price_list"),
     ("price_list", "site_id", "site"),
     ("batch", "mixer_id", "mixer"),
+    ("quote", "replaces_id", "quote"),
 )
 _TEXTS = (("mill", "sheet_mass", "kg"), ("mill", "paper", "A4"), ("price_list", "about", "prices"))
 
