@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import datetime
 import re
+from collections.abc import Sequence
 from dataclasses import dataclass
 from enum import StrEnum
 
@@ -123,11 +124,12 @@ class SourceTable:
 class SourceSheet:
     """A sheet as it stands in the file: rows[0] is its row 1; each cell as its text, "" if blank.
 
-    hidden_rows from 1, hidden_columns from 0.
+    rows may make their texts only when they are asked for; all have as many cells as the widest. hidden_rows from 1,
+    hidden_columns from 0.
     """
 
     name: str
-    rows: tuple[tuple[str, ...], ...]
+    rows: Sequence[tuple[str, ...]]
     tables: tuple[SourceTable, ...] = ()
     hidden_rows: frozenset[int] = frozenset()
     hidden_columns: frozenset[int] = frozenset()

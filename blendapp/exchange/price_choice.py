@@ -4,13 +4,13 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 
-from blendapp.domain.list_rows import ADD, Question
+from blendapp.domain.list_rows import ADD, ColumnRole, Question
 from blendapp.domain.mills import Asked
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
 from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.price_cells import PriceCell
-from blendapp.exchange.price_columns import PriceColumn, Role, Table
+from blendapp.exchange.price_columns import PriceColumn, Table
 
 # Base and freight add up to the sum within what rounding each to the cent leaves.
 _ROUNDING = 0.015
@@ -33,22 +33,23 @@ def choose_price(table: Table, prices: list[Priced], answers: Answers) -> Choice
     if len(table.prices) == 1:
         return Choice((prices[0],))
     by_role = {column.role: (column, cell) for column, cell in prices}
-    if len(prices) == 3 and set(by_role) == {Role.PRICE, Role.FREIGHT, Role.SUM}:
+    if len(prices) == 3 and set(by_role) == {ColumnRole.PRICE, ColumnRole.FREIGHT, ColumnRole.SUM}:
         return _sum_given(by_role)
     answer = answers.find(Asked.PRICE, table.prices_key)
     if answer is not None:
-        if answer.answer == ADD and len(prices) == 2 and set(by_role) == {Role.PRICE, Role.FREIGHT}:
-            return Choice((by_role[Role.PRICE], by_role[Role.FREIGHT]), _("The freight was added, as answered."))
+        if answer.answer == ADD and len(prices) == 2 and set(by_role) == {ColumnRole.PRICE, ColumnRole.FREIGHT}:
+            both = by_role[ColumnRole.PRICE], by_role[ColumnRole.FREIGHT]
+            return Choice(both, _("The freight was added, as answered."))
         held = [(column, cell) for column, cell in prices if column.heading == answer.answer]
         if len(held) == 1:
             return Choice((held[0],), _("The price under “{name}” holds, as answered.").format(name=answer.answer))
-    order = (Role.SUM, Role.PRICE, Role.FREIGHT)
+    order = (ColumnRole.SUM, ColumnRole.PRICE, ColumnRole.FREIGHT)
     likeliest = min(prices, key=lambda found: order.index(found[0].role))
     named = ", ".join(f"“{column.heading}”" for column, _cell in prices)
-    choices = [column.heading for column in table.prices if column.role is not Role.FREIGHT]
+    choices = [column.heading for column in table.prices if column.role is not ColumnRole.FREIGHT]
     if len(prices) == 1:
         text = _("The list has several prices and the row one of them, under {names}; say whether it holds.")
-    elif set(by_role) == {Role.PRICE, Role.FREIGHT} and len(prices) == 2:
+    elif set(by_role) == {ColumnRole.PRICE, ColumnRole.FREIGHT} and len(prices) == 2:
         text = _("The row has a price and a freight, under {names}; say whether the freight is to be added.")
         choices.insert(0, ADD)
     else:
@@ -57,9 +58,9 @@ def choose_price(table: Table, prices: list[Priced], answers: Answers) -> Choice
     return Choice((likeliest,), doubt=text, open=(Question(Asked.PRICE, table.prices_key, text, tuple(choices)),))
 
 
-def _sum_given(by_role: dict[Role, Priced]) -> Choice:
-    total = by_role[Role.SUM]
-    values = [by_role[role][1].value for role in (Role.PRICE, Role.FREIGHT, Role.SUM)]
+def _sum_given(by_role: dict[ColumnRole, Priced]) -> Choice:
+    total = by_role[ColumnRole.SUM]
+    values = [by_role[role][1].value for role in (ColumnRole.PRICE, ColumnRole.FREIGHT, ColumnRole.SUM)]
     if any(value is None for value in values):
         return Choice((total,))  # the cell in doubt asks for itself
     base, freight, whole = (value for value in values if value is not None)

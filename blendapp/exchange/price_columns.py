@@ -4,28 +4,9 @@ from __future__ import annotations
 
 import re
 from dataclasses import dataclass, field
-from enum import Enum
 
+from blendapp.domain.list_rows import ColumnRole
 from blendapp.exchange.price_words import Words, read_heading_words, split_dry
-
-
-class Role(Enum):
-    """What a column of a price list holds."""
-
-    NAME = "name"
-    PRICE = "price"
-    FREIGHT = "freight"
-    SUM = "sum"
-    UNIT = "unit"
-    CURRENCY = "currency"
-    VALID_FROM = "valid from"
-    VALID_TO = "valid to"
-    PACK = "weight of a bag"
-    TERMS = "terms"
-    ADJUSTMENT = "discount or surcharge"
-    NOTE = "note"
-    OTHER = "other"
-
 
 _NAME_WORDS = frozenset({
     "ingredient", "ingredients", "commodity", "commodities", "product", "products", "material", "materials",
@@ -80,7 +61,7 @@ class PriceColumn:
     """A column of prices, of one role of PRICE, FREIGHT and SUM, with what its heading says of unit and currency."""
 
     index: int
-    role: Role
+    role: ColumnRole
     heading: str
     words: Words
 
@@ -90,7 +71,7 @@ class Table:
     """A table within a sheet. heading_row: from 0, None where the columns were told by their content alone."""
 
     heading_row: int | None
-    roles: dict[int, Role] = field(default_factory=dict)
+    roles: dict[int, ColumnRole] = field(default_factory=dict)
     headings: dict[int, str] = field(default_factory=dict)
     prices: list[PriceColumn] = field(default_factory=list)
     name: int | None = None
@@ -116,39 +97,41 @@ class Table:
         """What the choice between the columns of prices is remembered by."""
         return " | ".join(column.heading for column in self.prices)
 
-    def first(self, role: Role) -> int | None:
+    def first(self, role: ColumnRole) -> int | None:
         return next((index for index, found in sorted(self.roles.items()) if found is role), None)
 
 
-def role_of(heading: str) -> tuple[Role, Words]:
+def role_of(heading: str) -> tuple[ColumnRole, Words]:
     """The role that a heading gives its column."""
     words = read_heading_words(heading)
     plain = " ".join(re.sub(r"[^a-z0-9%]+", " ", split_dry(heading)[1].casefold()).split())
     tokens = set(plain.split())
     for headings, role in (
-        (_UNIT_HEADINGS, Role.UNIT), (_CURRENCY_HEADINGS, Role.CURRENCY), (_FROM_HEADINGS, Role.VALID_FROM),
-        (_TO_HEADINGS, Role.VALID_TO), (_PACK_HEADINGS, Role.PACK), (_TERMS_HEADINGS, Role.TERMS),
-        (_NOTE_HEADINGS, Role.NOTE),
+        (_UNIT_HEADINGS, ColumnRole.UNIT), (_CURRENCY_HEADINGS, ColumnRole.CURRENCY),
+        (_FROM_HEADINGS, ColumnRole.VALID_FROM), (_TO_HEADINGS, ColumnRole.VALID_TO),
+        (_PACK_HEADINGS, ColumnRole.PACK), (_TERMS_HEADINGS, ColumnRole.TERMS), (_NOTE_HEADINGS, ColumnRole.NOTE),
     ):
         if plain in headings:
             return role, words
     if tokens & _OLD_WORDS and not tokens & {"new", "current"}:
-        return Role.OTHER, words
+        return ColumnRole.OTHER, words
     if tokens & _ADJUSTMENT_WORDS and not tokens & _PRICE_WORDS:
-        return Role.ADJUSTMENT, words
+        return ColumnRole.ADJUSTMENT, words
     names_money = words.money.currencies is not None or words.money.cents
     if tokens & _NOTE_WORDS:
-        return Role.NOTE, words
-    if tokens & _FREIGHT_WORDS and not tokens & {"price", "incl", "including", "inclusive"}:
-        return Role.FREIGHT, words
+        return ColumnRole.NOTE, words
+    under_price = re.fullmatch(r"prices? (?:freight|haulage|transport|carriage)", plain) is not None
+    if under_price or (tokens & _FREIGHT_WORDS and not tokens & {"price", "incl", "including", "inclusive"}):
+        return ColumnRole.FREIGHT, words
     if tokens & _SUM_WORDS and (tokens & _PRICE_WORDS or names_money or words.unit or len(tokens) == 1):
-        return Role.SUM, words
+        return ColumnRole.SUM, words
     if tokens & _PRICE_WORDS or {"ex", "works"} <= tokens:
-        return Role.PRICE, words
+        return ColumnRole.PRICE, words
     if tokens & _QUANTITY_WORDS:
-        return Role.OTHER, words
+        return ColumnRole.OTHER, words
     if tokens & _NAME_WORDS:
-        return (Role.NOTE if tokens & {"code", "no", "number", "id", "class", "group"} else Role.NAME), words
+        is_code = tokens & {"code", "no", "number", "id", "class", "group"}
+        return (ColumnRole.NOTE if is_code else ColumnRole.NAME), words
     if names_money and (words.unit or len(tokens) <= 2):
-        return Role.PRICE, words
-    return Role.OTHER, words
+        return ColumnRole.PRICE, words
+    return ColumnRole.OTHER, words

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import re
 
+from blendapp.domain.list_rows import ColumnRole
 from blendapp.exchange.list_headings import joined, spread_over, texts_of
-from blendapp.exchange.price_columns import PriceColumn, Role, Table, role_of
+from blendapp.exchange.price_columns import PriceColumn, Table, role_of
 from blendapp.exchange.price_numbers import read_price_text
 from blendapp.exchange.price_words import read_heading_words, read_unit_words
 from blendapp.exchange.tables import RawTable, column_letters
@@ -72,7 +73,7 @@ def _says_more(found: Table, below: dict[int, str]) -> bool:
     own = _headed(0, below)
     if own is not None and own.name is not None:
         return False
-    if found.name in below and role_of(below[found.name])[0] not in (Role.NAME, Role.NOTE):
+    if found.name in below and role_of(below[found.name])[0] not in (ColumnRole.NAME, ColumnRole.NOTE):
         return False
     under_prices = [below[column.index] for column in found.prices if column.index in below]
     if not under_prices:
@@ -80,7 +81,7 @@ def _says_more(found: Table, below: dict[int, str]) -> bool:
     for text in under_prices:
         words = read_unit_words(text.strip("()[]"))
         plain = not words.rest and (words.unit or words.money.currencies or words.dry)
-        if not plain and role_of(text)[0] not in (Role.PRICE, Role.FREIGHT, Role.SUM):
+        if not plain and role_of(text)[0] not in (ColumnRole.PRICE, ColumnRole.FREIGHT, ColumnRole.SUM):
             return False
     return True
 
@@ -118,15 +119,15 @@ def _headed(row: int, texts: dict[int, str]) -> Table | None:
     for index, heading in texts.items():
         role, words = role_of(heading)
         found.roles[index], found.headings[index] = role, heading
-        if role is Role.NAME:
+        if role is ColumnRole.NAME:
             names.append(index)
-        elif role in (Role.PRICE, Role.FREIGHT, Role.SUM):
+        elif role in (ColumnRole.PRICE, ColumnRole.FREIGHT, ColumnRole.SUM):
             if _is_price(heading, bool(words.unit)):
                 return None
             if any(heading == column.heading for column in found.prices):
                 heading = f"{heading} ({column_letters(index)})"
             found.prices.append(PriceColumn(index, role, heading, words))
-    if not any(column.role is not Role.FREIGHT for column in found.prices) or len(found.roles) < 2:
+    if not any(column.role is not ColumnRole.FREIGHT for column in found.prices) or len(found.roles) < 2:
         return None
     found.name = names[0] if names else None
     found.side_by_side = _is_side_by_side(names, found.prices)

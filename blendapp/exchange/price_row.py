@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
-from blendapp.domain.list_rows import TAKE, Fate
+from blendapp.domain.list_rows import TAKE, ColumnRole, Fate
 from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
@@ -20,7 +20,7 @@ from blendapp.exchange.list_numbers import DecimalSign, decide_date_order
 from blendapp.exchange.list_row import TOTALS, RowReading
 from blendapp.exchange.price_cells import PriceCell, read_price_cell
 from blendapp.exchange.price_choice import Priced, choose_price
-from blendapp.exchange.price_columns import PriceColumn, Role
+from blendapp.exchange.price_columns import PriceColumn
 from blendapp.exchange.price_terms import WITHOUT_FREIGHT, read_terms
 from blendapp.exchange.price_units import AmbiguousPriceUnit, UnknownPriceUnit, bag_with_weight, read_price_unit
 from blendapp.exchange.price_units_read import TonnePrice, UnitReading, foreign_money, per_tonne, read_unit
@@ -28,7 +28,7 @@ from blendapp.exchange.price_words import NO_WORDS, Money, Words, read_unit_word
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
 
 if TYPE_CHECKING:
-    from blendapp.exchange.price_list import Segment
+    from blendapp.exchange.price_segments import Segment
 
 
 def read_row(
@@ -71,7 +71,8 @@ class _Reading(RowReading):
         return self._priced(prices)
 
     def _error(self) -> str:
-        columns = [index for index, role in self.table.roles.items() if role not in (Role.NOTE, Role.TERMS, Role.OTHER)]
+        unread = (ColumnRole.NOTE, ColumnRole.TERMS, ColumnRole.OTHER)
+        columns = [index for index, role in self.table.roles.items() if role not in unread]
         columns += [column.index for column in self.table.prices]
         return self.error(columns)
 
@@ -144,12 +145,12 @@ class _Reading(RowReading):
         self, column: PriceColumn, cell: PriceCell, ingredient: Ingredient | None
     ) -> tuple[TonnePrice | None, UnitReading, bool]:
         """A price in money of the mill per tonne, the unit of the list, and whether it is for dry matter."""
-        beside = self.text(self.table.first(Role.UNIT))
-        pack = self.text(self.table.first(Role.PACK))
+        beside = self.text(self.table.first(ColumnRole.UNIT))
+        pack = self.text(self.table.first(ColumnRole.PACK))
         words = read_unit_words(bag_with_weight(beside, pack)) if beside else NO_WORDS
         unit = self._unit(column, cell, words)
         value = self._own_money(column, cell, words)
-        basis, _rest = split_dry(self.text(self.table.first(Role.TERMS)))
+        basis, _rest = split_dry(self.text(self.table.first(ColumnRole.TERMS)))
         dry = cell.dry or column.words.dry or words.dry or basis
         dry = dry or any(note.dry for note in self.segment.notes.units)
         if value is None or unit.unit is None:
@@ -184,7 +185,7 @@ class _Reading(RowReading):
     def _own_money(self, column: PriceColumn, cell: PriceCell, words: Words) -> float | None:
         """The price in money of the mill, None where there is none or its currency is in doubt."""
         sources: list[Money] = [cell.money, column.words.money, words.money]
-        currency = self.text(self.table.first(Role.CURRENCY))
+        currency = self.text(self.table.first(ColumnRole.CURRENCY))
         if currency:
             money, _rest = split_money(currency.upper() if len(currency) == 3 else currency)
             sources.append(money)
@@ -241,7 +242,7 @@ class _Reading(RowReading):
 
     def _terms(self, parts: tuple[Priced, ...], ingredient: Ingredient | None) -> Terms | None:
         """Ex works or delivered; where the price in force is the other one, that is asked about."""
-        beside = self.text(self.table.first(Role.TERMS))
+        beside = self.text(self.table.first(ColumnRole.TERMS))
         found = read_terms(beside) or (Terms.DELIVERED if len(parts) > 1 else read_terms(parts[0][0].heading))
         if ingredient is None or found is None:
             return found
@@ -253,14 +254,14 @@ class _Reading(RowReading):
 
     def _ask_about_what_is_added(self, parts: tuple[Priced, ...]) -> None:
         """A price that is said to be without freight, or a discount or surcharge beside it, is not the whole price."""
-        texts = [self.text(self.table.first(Role.TERMS)), self.segment.notes.without_freight]
+        texts = [self.text(self.table.first(ColumnRole.TERMS)), self.segment.notes.without_freight]
         if len(parts) == 1:
             texts.append(parts[0][0].heading)
         found = next((text for text in texts if WITHOUT_FREIGHT.search(text)), "") if len(parts) == 1 else ""
         if found:
             said = _("“{text}”: freight comes on top; give the price with it, or say that this one is to be taken.")
             self._take_as_it_is(found, said.format(text=found))
-        index = self.table.first(Role.ADJUSTMENT)
+        index = self.table.first(ColumnRole.ADJUSTMENT)
         value = None if index is None else self.raw.cell(self.row, index)
         if index is not None and kind_of(value) is not CellKind.BLANK and value != 0:
             heading = self.table.headings[index]
@@ -273,8 +274,8 @@ class _Reading(RowReading):
             self.ask(Asked.PRICE, about, text, (TAKE,))
 
     def _days(self) -> tuple[datetime.date | None, datetime.date | None]:
-        first = self._date(Role.VALID_FROM, self.segment.notes.valid_from)
-        last = self._date(Role.VALID_TO, self.segment.notes.valid_to)
+        first = self._date(ColumnRole.VALID_FROM, self.segment.notes.valid_from)
+        last = self._date(ColumnRole.VALID_TO, self.segment.notes.valid_to)
         if first is not None and last is not None and last < first:
             text = _("The price ends on {last}, before it begins on {first}; say which days are meant.")
             self.questions.append(text.format(last=last.isoformat(), first=first.isoformat()))
@@ -283,7 +284,7 @@ class _Reading(RowReading):
             self.confirm(Asked.EXPIRED, text.format(day=last.isoformat()))
         return first, last
 
-    def _date(self, role: Role, noted: str) -> datetime.date | None:
+    def _date(self, role: ColumnRole, noted: str) -> datetime.date | None:
         """The day in a column, or else in a note over the whole table."""
         index = self.table.first(role)
         if index is None or kind_of(self.raw.cell(self.row, index)) is CellKind.BLANK:

@@ -5,8 +5,9 @@ from __future__ import annotations
 import re
 from collections.abc import Callable
 
+from blendapp.domain.list_rows import ColumnRole
 from blendapp.exchange.list_headings import FURTHEST, best_name_column, is_known_text, known_names
-from blendapp.exchange.price_columns import PriceColumn, Role, Table
+from blendapp.exchange.price_columns import PriceColumn, Table
 from blendapp.exchange.price_headings import read_headings
 from blendapp.exchange.price_units import is_price_unit
 from blendapp.exchange.price_words import read_heading_words
@@ -27,7 +28,7 @@ def find_table(table: RawTable, is_known: Callable[[str], bool]) -> Table | None
 
 def settle_name_column(found: Table, table: RawTable, is_known: Callable[[str], bool]) -> None:
     """Of several columns of names, or of none headed so, the one that holds most known ones."""
-    candidates = [index for index, role in found.roles.items() if role is Role.NAME]
+    candidates = [index for index, role in found.roles.items() if role is ColumnRole.NAME]
     if not candidates:
         taken = {column.index for column in found.prices}
         width = max((len(cells) for cells in table.rows), default=0)
@@ -37,9 +38,9 @@ def settle_name_column(found: Table, table: RawTable, is_known: Callable[[str], 
     found.name = best_name_column(table, candidates, (found.heading_row or 0) + 1, is_known)
     assert found.name is not None
     for index in candidates:
-        if index != found.name and found.roles.get(index) is Role.NAME:
-            found.roles[index] = Role.NOTE
-    found.roles[found.name] = Role.NAME
+        if index != found.name and found.roles.get(index) is ColumnRole.NAME:
+            found.roles[index] = ColumnRole.NOTE
+    found.roles[found.name] = ColumnRole.NAME
 
 
 def drop_empty_prices(found: Table, table: RawTable) -> None:
@@ -69,15 +70,15 @@ def _table_without_headings(table: RawTable, is_known: Callable[[str], bool]) ->
     ]
     if len(numeric) != 1:
         return None
-    found = Table(None, {name: Role.NAME, numeric[0]: Role.PRICE}, name=name)
-    found.prices = [PriceColumn(numeric[0], Role.PRICE, "", read_heading_words(""))]
+    found = Table(None, {name: ColumnRole.NAME, numeric[0]: ColumnRole.PRICE}, name=name)
+    found.prices = [PriceColumn(numeric[0], ColumnRole.PRICE, "", read_heading_words(""))]
     for column in range(width):
         if column in found.roles:
             continue
         filled = [cells[column] for cells in named if column < len(cells)]
         texts = [str(value) for value in filled if kind_of(value) is CellKind.TEXT]
         if texts and all(is_price_unit(text) or read_heading_words("/" + text).unit for text in texts):
-            found.roles[column] = Role.UNIT
+            found.roles[column] = ColumnRole.UNIT
             break
     return found
 

@@ -1,0 +1,132 @@
+"""The tables of a sheet, one below the other: which rows each one takes, and what is decided over its columns."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from blendapp.domain.list_rows import ColumnRole, SourceColumn, SourceTable
+from blendapp.domain.wording import _
+from blendapp.exchange.list_answers import Answers
+from blendapp.exchange.list_columns import answered_sign, date_order
+from blendapp.exchange.list_names import NameFinder
+from blendapp.exchange.list_numbers import DateOrder, DecimalSign
+from blendapp.exchange.price_cells import column_sign
+from blendapp.exchange.price_columns import Table
+from blendapp.exchange.price_headings import read_headings
+from blendapp.exchange.price_notes import Notes, read_notes
+from blendapp.exchange.price_tables import drop_empty_prices, settle_name_column
+from blendapp.exchange.price_words import Words
+from blendapp.exchange.tables import CellKind, RawTable, kind_of
+
+
+@dataclass(frozen=True)
+class Segment:
+    """The rows of one table: from its heading row to the next one, with what was decided over its columns."""
+
+    table: Table
+    first: int
+    last: int
+    signs: dict[int, DecimalSign | None]
+    dates: dict[int, DateOrder | None]
+    notes: Notes
+
+
+def read_segments(raw: RawTable, table: Table, names: NameFinder) -> Iterator[Segment]:
+    """The table, and every further one below it that has headings of its own."""
+    first, titles = 0, Notes()
+    for row in range(table.first_row, len(raw.rows)):
+        if row < table.first_row:  # the second heading row of a table found meanwhile
+            continue
+        found = read_headings(raw, row) if _may_be_heading(raw, row, table) else None
+        if found is None:
+            continue
+        settle_name_column(found, raw, names.is_known)
+        if found.name is None:
+            continue
+        drop_empty_prices(found, raw)
+        segment = _segment(raw, table, first, row, names.answers, titles)
+        yield segment
+        titles = segment.notes
+        table, first = found, row
+    yield _segment(raw, table, first, len(raw.rows), names.answers, titles)
+
+
+def _may_be_heading(raw: RawTable, row: int, table: Table) -> bool:
+    """A quick look: a row whose cells are texts only, at least two, one of them where prices stand or will."""
+    filled = [kind_of(value) for value in raw.rows[row]]
+    filled = [kind for kind in filled if kind is not CellKind.BLANK]
+    if len(filled) < 2 or any(kind is not CellKind.TEXT for kind in filled):
+        return False
+    values = (raw.cell(row, column.index) for column in table.prices)
+    texts = [value for value in values if isinstance(value, str) and value.strip()]
+    return not texts or any(not any(letter.isdigit() for letter in text) or "/" in text for text in texts)
+
+
+def _segment(
+    raw: RawTable, table: Table, first: int, last: int, answers: Answers, titles: Notes
+) -> Segment:
+    """titles: what notes of the tables above it say, which holds where its own notes are silent."""
+    body = range(max(first, table.first_row), last)
+    signs = {
+        column.index: column_sign(raw, column.index, body) or answered_sign(answers, column.heading)
+        for column in table.prices
+    }
+    dates: dict[int, DateOrder | None] = {}
+    for role in (ColumnRole.VALID_FROM, ColumnRole.VALID_TO):
+        index = table.first(role)
+        if index is not None:
+            dates[index] = date_order(raw, index, body, answers, table.headings[index])
+    notes = read_notes(raw, range(first, last))
+    notes = Notes(
+        notes.units or titles.units, notes.valid_from or titles.valid_from, notes.valid_to or titles.valid_to,
+        notes.without_freight or titles.without_freight,
+    )
+    return Segment(table, first, last, signs, dates, notes)
+
+
+def source_table(raw: RawTable, segment: Segment) -> SourceTable:
+    """A segment as it is shown beside the list: where it stands, and what each of its columns holds."""
+    table = segment.table
+    width = max((len(raw.rows[row]) for row in (*table.heading_rows, *range(table.first_row, segment.last))), default=0)
+    prices = {column.index: column for column in table.prices}
+    columns = []
+    for index in range(width):
+        role = prices[index].role if index in prices else table.roles.get(index, ColumnRole.OTHER)
+        said = _says(prices[index].words, segment, index) if index in prices else ""
+        order = segment.dates.get(index)
+        columns.append(SourceColumn(
+            index, table.headings.get(index, ""), role, said or ("" if order is None else _(order.value))
+        ))
+    return SourceTable(
+        tuple(row + 1 for row in table.heading_rows), table.first_row + 1, _last_row(raw, segment) + 1, tuple(columns)
+    )
+
+
+def _says(words: Words, segment: Segment, index: int) -> str:
+    """What the heading of a price column, or else a note, says of all its prices."""
+    money = words.money.sign
+    unit = words.unit
+    of_note = False
+    for note in segment.notes.units:
+        if not unit and note.unit:
+            unit, of_note = note.unit, True
+        if not money and note.money.sign:
+            money, of_note = note.money.sign, True
+    parts = [money, _("hundredths") if words.money.cents else "", _("per {unit}").format(unit=unit) if unit else ""]
+    said = " ".join(part for part in parts if part)
+    if said and of_note:
+        said = _("{what}, as a note says").format(what=said)
+    sign = segment.signs.get(index)
+    more = [_("of dry matter") if words.dry else "", _("decimal comma") if sign is DecimalSign.COMMA else ""]
+    return ", ".join(part for part in (said, *more) if part)
+
+
+def _last_row(raw: RawTable, segment: Segment) -> int:
+    """The last row of a table that fills a price, or two cells; what stands below it are its footnotes."""
+    first = segment.table.first_row
+    for row in range(segment.last - 1, first - 1, -1):
+        filled = [index for index, value in enumerate(raw.rows[row]) if kind_of(value) is not CellKind.BLANK]
+        if len(filled) > 1 or any(column.index in filled for column in segment.table.prices):
+            return row
+    return max(first, segment.table.first_row)
