@@ -81,6 +81,7 @@ class Bench(QObject):
         header.menu.clicked.connect(self.open_menu)
         header.state.clicked.connect(self.show_versions)
         self.versions.people_wanted.connect(self.show_people)
+        self.mill.wanted.connect(self.show_mill)
         self.have.add.clicked.connect(self.have.add_ingredient)
         self.have.column_asked.connect(self._offer_column)
         self.prices.ingredient_wanted.connect(self._ask_ingredient)
@@ -207,15 +208,16 @@ class Bench(QObject):
             self.work.choose(formula_id)
             self.to_bench()
 
-    def show_mill(self) -> None:
-        """Show the mill's own page."""
+    def show_mill(self, section: str = "") -> None:
+        """Show the mill's own page, at one of its sections if one is named."""
         self.mill.fill()
         self.show_page(self.mill)
+        if section:
+            self.mill.show_section(section)
 
     def show_people(self) -> None:
         """Show where the mill's persons are kept."""
-        self.show_mill()
-        self.mill.tables["person"].setFocus()
+        self.show_mill("persons")
 
     def show_versions(self) -> None:
         """Show the versions of the chosen formula."""
@@ -280,7 +282,7 @@ class Bench(QObject):
         things += [
             Found(one.name, _("nutrient"), partial(self.to_nutrient, one.id)) for one in library.nutrients
         ]
-        return things + self.commands.found()
+        return things + self.mill.found() + self.commands.found()
 
     def _ask_ingredient(self, name: str) -> None:
         things = [

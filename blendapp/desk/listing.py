@@ -66,7 +66,13 @@ def _edit(bench: Bench) -> list[Command]:
                 lambda: work.is_open, False),
         Command("add ingredient", _("Add an ingredient"), "library", bench.have.add_ingredient, "", writable),
         Command("add nutrient", _("Add a nutrient…"), "library", bench.records.new_nutrient, "", writable),
-        Command("mill", _("The mill, its scales and nutrients"), "library", bench.show_mill, "", lambda: work.is_open),
+        Command("mill", _("The mill: scales, bins, steps, persons"), "library", bench.show_mill, "Ctrl+Shift+M",
+                lambda: work.is_open),
+        *(
+            Command(f"mill {key}", _("Mill: {section}").format(section=bench.mill.sections.item(at).text()), "library",
+                    partial(bench.show_mill, key), "", lambda: work.is_open, False)
+            for at, key in enumerate(bench.mill.sections.keys)
+        ),
     ]
 
 

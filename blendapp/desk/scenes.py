@@ -6,10 +6,12 @@ import time
 from collections.abc import Callable
 from pathlib import Path
 
-from PySide6.QtCore import QSettings
-from PySide6.QtWidgets import QApplication, QWidget
+from PySide6.QtCore import QEvent, QSettings, Qt
+from PySide6.QtGui import QKeyEvent
+from PySide6.QtWidgets import QApplication, QLineEdit, QWidget
 
 from blendapp.desk.bench import Bench
+from blendapp.desk.furnishing import furnish
 from blendapp.desk.rail.geometry import End
 from blendapp.desk.shell.frame import Frame
 from blendapp.desk.start import make_app
@@ -273,9 +275,30 @@ def _versions(studio: Studio, bench: Bench, _price_list: Path) -> None:
 
 
 def _mill(studio: Studio, bench: Bench, _price_list: Path) -> None:
-    bench.show_mill()
+    """Every section of the mill's page, at the size of a small screen."""
+    size = bench.frame.size()
+    bench.frame.resize(1100, 700)
+    bench.show_mill("facts")
     studio.settle()
-    studio.take(bench.frame, "24-the-mill")
+    studio.take(bench.frame, "24-mill-facts")
+    furnish(bench.work)
+    for key in ("sites", "scales", "mixers", "bins", "lots", "steps", "suppliers", "nutrients", "persons"):
+        bench.show_mill(key)
+        studio.settle()
+        studio.take(bench.frame, f"24-mill-{key}")
+    table = bench.mill.tables["bin"]
+    bench.show_mill("bins")
+    table.go_to(table.grid.owners[1], "ingredient_id")
+    table.edit(table.currentIndex())
+    field = bench.frame.focusWidget()
+    assert isinstance(field, QLineEdit)
+    field.setText("ma")
+    field.textEdited.emit("ma")
+    studio.settle()
+    studio.take(bench.frame, "24-mill-a-name-typed")
+    for kind in (QEvent.Type.KeyPress, QEvent.Type.KeyRelease):
+        studio.app.sendEvent(field, QKeyEvent(kind, Qt.Key.Key_Escape, Qt.KeyboardModifier.NoModifier))
+    bench.frame.resize(size)
 
 
 def _sheet(studio: Studio, bench: Bench, _price_list: Path) -> None:

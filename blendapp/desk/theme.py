@@ -182,6 +182,8 @@ QPushButton#set:checked { color: $text; border-bottom: 1px solid $text; border-r
 QPushButton#standing { color: $quiet; text-align: left; padding: 4px 6px; }
 QLabel#page { background: #ffffff; border: 1px solid $hairline; }
 QListView#found { background: $raised; }
+QListView#offered { background: $raised; border: 1px solid $quiet; }
+QListView#offered::item { padding: 0 8px; }
 QToolButton#quiet { color: $quiet; }
 QToolButton::menu-indicator { image: none; }
 QMenu { background: $raised; border: 1px solid $hairline; padding: 6px 0; }

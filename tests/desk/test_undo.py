@@ -109,10 +109,12 @@ ACTIONS: dict[str, Callable[[Bench, Path], Any]] = {
     "a formula renamed": asked("rename formula", "Grower for spring"),
     "a formula removed": lambda bench, _folder: bench.commands.run("remove formula"),
     "what a formula is for": lambda bench, _folder: bench.meet.about._set(animal=Animal.PIG, admits=Admits.LISTED),
-    "the mill": lambda bench, _folder: bench.mill._set(name="Hill mill", ton_means="short ton"),
+    "the mill": lambda bench, _folder: bench.mill.facts._set(name="Hill mill", ton_means="short ton"),
     "a scale added": scale(lambda bench: bench.mill.add("scale")),
     "a mixer added": scale(lambda bench: bench.mill.add("mixer")),
     "a scale changed": scale(change_scale),
+    "a bin added": scale(lambda bench: bench.mill.add("bin")),
+    "a step added": scale(lambda bench: bench.mill.add("own step")),
     "a price list": take_prices,
     "a workbook": bring_in_workbook,
 }

@@ -1,4 +1,4 @@
-"""The page of the mill: its name and money on the left, its tables on the right, stored as they are typed."""
+"""The page of the mill: what it has as a list on the left, one section at a time beside it, stored as it is typed."""
 
 from __future__ import annotations
 
@@ -7,118 +7,197 @@ from functools import partial
 
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QKeyEvent
-from PySide6.QtWidgets import QFormLayout, QHBoxLayout, QLabel, QLineEdit, QPushButton, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QStackedWidget, QVBoxLayout, QWidget
 
-from blendapp.desk.choice import Choice
-from blendapp.desk.mill.model import RecordTable
+from blendapp.desk.finder.search import Found
+from blendapp.desk.mill.facts import MillFacts
+from blendapp.desk.mill.model import SHOWN, RecordTable
 from blendapp.desk.mill.people import PasswordForm, PeopleTable
+from blendapp.desk.mill.sections import SectionList
+from blendapp.desk.mill.steps import StepRows, StepTable
 from blendapp.desk.shell.glyphs import GlyphButton
 from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.desk.work import Work
-from blendapp.domain import units
-from blendapp.domain.fields import field_of
 from blendapp.domain.mills import Person
 from blendapp.domain.problems import Refused
 from blendapp.domain.records import added
 from blendapp.domain.wording import _
-from blendapp.services import edits, plant
+from blendapp.services import edits, mixing, plant
 from blendapp.services.mill import Edit, Mill
 
-SIDE_PX = 300
+# A new step of a scale or a meter, until the person types their own.
+NEW_STEP_KG, NEW_STEP_L = 1.0, 0.1
 
 
 class MillPane(QWidget):
-    """closed: back to the bench. said: a sentence with what can be listed below it."""
+    """closed: back to the bench. said: a sentence with what can be listed below it. wanted: the page is to be shown.
+
+    tables: by what they show, "meter", "general step" and "own step" beside the kinds of records.
+    """
 
     closed = Signal()
     said = Signal(str, list)
+    wanted = Signal()
 
     def __init__(self, work: Work) -> None:
         super().__init__()
         self.work = work
-        self.name = QLineEdit()
-        self.currency = QLineEdit()
-        self.ton = Choice()
-        self.cwt = Choice()
-        for box, meanings in ((self.ton, units.TON_MEANINGS), (self.cwt, units.CWT_MEANINGS)):
-            box.addItem(_("ask each time"), "")
-            for meaning in meanings:
-                box.addItem(_(meaning), meaning)
-        self.fault = QLabel()
-        self.fault.setWordWrap(True)
+        self.facts = MillFacts(work)
+        self.passwords = PasswordForm(work)
         self.tables: dict[str, DeskTable] = {}
-        row = QHBoxLayout(self)
-        row.setContentsMargins(MARGIN_PX, GAP_PX * 2, MARGIN_PX, 0)
-        row.setSpacing(MARGIN_PX * 2)
-        row.addLayout(self._side())
-        right = QVBoxLayout()
-        right.setSpacing(GAP_PX)
-        for kind, title, words, stretch in (
-            ("person", _("Persons"), _("Add a person"), 3),
-            ("scale", _("Scales"), _("Add a scale"), 3), ("mixer", _("Mixers"), _("Add a mixer"), 2),
-            ("nutrient", _("Nutrients"), _("Add a nutrient"), 6),
-        ):
-            self._add_table(right, kind, title, words, stretch)
-        row.addLayout(right, 1)
-        self.setFocusProxy(self.name)
+        self._section_of: dict[str, str] = {}
+        self._pages: dict[str, QWidget] = {}
+        self._beginners: dict[str, QWidget] = {"facts": self.facts}
+        self.sections = SectionList([
+            ("facts", _("The mill")), ("sites", _("Sites")), ("scales", _("Scales and meters")),
+            ("mixers", _("Mixers")), ("bins", _("Bins")), ("lots", _("Lots")), ("steps", _("Mixing steps")),
+            ("suppliers", _("Suppliers")), ("nutrients", _("Nutrients")), ("persons", _("Persons")),
+        ])
+        self.sections.setAccessibleName(_("What the mill has"))
+        self.stack = QStackedWidget()
+        self._make_pages()
+        self._lay()
+        self.setFocusProxy(self.sections)
+        self.sections.currentRowChanged.connect(self.stack.setCurrentIndex)
+        self.sections.entered_section.connect(self.go_in)
         work.opened.connect(self.fill)
+        work.chosen.connect(self.fill)
         work.edited.connect(self._edited)
         for kind in self.tables:
             work.reversed.connect(self.model(kind).forgive_all)
 
-    def _side(self) -> QVBoxLayout:
-        title = QLabel(_("The mill"))
-        title.setFont(text_font(strong=True))
-        form = QFormLayout()
-        form.setSpacing(GAP_PX)
-        form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft)
-        for key, field in (("name", self.name), ("currency", self.currency), ("ton_means", self.ton),
-                           ("cwt_means", self.cwt)):
-            label = QLabel(field_of("mill", key).label)
-            label.setObjectName("quiet")
-            label.setBuddy(field)
-            field.setAccessibleName(label.text())
-            field.setToolTip(field_of("mill", key).help_text)
-            form.addRow(label, field)
-        self.name.editingFinished.connect(lambda: self._set(name=self.name.text().strip()))
-        self.currency.editingFinished.connect(lambda: self._set(currency=self.currency.text().strip().upper()))
-        self.ton.activated.connect(lambda _at: self._set(ton_means=self.ton.currentData()))
-        self.cwt.activated.connect(lambda _at: self._set(cwt_means=self.cwt.currentData()))
-        self.leave = QPushButton(_("Back to the bench"))
-        self.leave.setObjectName("plain")
-        self.leave.setFixedWidth(SIDE_PX)
-        self.leave.clicked.connect(self.closed)
-        side = QVBoxLayout()
-        side.setSpacing(GAP_PX + 4)
-        side.addWidget(title)
-        side.addLayout(form)
-        side.addWidget(self.fault)
-        side.addWidget(self.leave)
-        self.passwords = PasswordForm(self.work)
-        self.passwords.setFixedWidth(SIDE_PX)
-        side.addWidget(self.passwords)
-        side.addStretch(1)
-        return side
+    # -- the pages
 
-    def _add_table(self, column: QVBoxLayout, kind: str, title: str, words: str, stretch: int) -> None:
-        label = QLabel(title)
-        label.setFont(text_font(strong=True))
-        add = GlyphButton("add", words)
-        add.clicked.connect(partial(self.add, kind))
-        head = QHBoxLayout()
-        head.addWidget(label)
-        head.addWidget(add)
-        head.addStretch(1)
-        model = PeopleTable(self.work, self) if kind == "person" else RecordTable(self.work, kind, self)
-        table = DeskTable(model, self)
-        table.setAccessibleName(title)
+    def _make_pages(self) -> None:
+        self._page("facts", _("The mill"), "", []).addWidget(self.facts, 1)
+        self._page("sites", _("Sites"), _(
+            "A mill in one place needs none. Scales, mixers, bins and prices of a site count where the mill works."),
+            [("site", _("Add a site"), "", 1)])
+        self._page("scales", _("Scales"), _("In one load a scale weighs whole steps, from least to greatest."), [
+            ("scale", _("Add a scale"), "", 3), ("meter", _("Add a liquid meter"), _("Liquid meters"), 2)])
+        self._page("mixers", _("Mixers"), _("An order becomes equal batches that a mixer can fill and hold."),
+                   [("mixer", _("Add a mixer"), "", 1)])
+        self._page("bins", _("Bins"), _(
+            "Type the name of an ingredient to say what stands in a bin; it may stand in several."),
+            [("bin", _("Add a bin"), "", 1)])
+        self._page("lots", _("Lots"), _("One delivery each; a bin that holds it prints it on the sheet."),
+                   [("lot", _("Add a lot"), "", 1)])
+        self._steps_page()
+        self._page("suppliers", _("Suppliers"), _("From whom ingredients are bought, and whose price lists come."),
+                   [("supplier", _("Add a supplier"), "", 1)])
+        self._page("nutrients", _("Nutrients"), "", [("nutrient", _("Add a nutrient"), "", 1)])
+        persons = self._page("persons", _("Persons"), _("Who prepares and approves; a person stays on record."),
+                             [("person", _("Add a person"), "", 3)])
+        persons.addWidget(self.passwords)
+        persons.addStretch(1)
+
+    def _page(
+        self, key: str, title: str, hint: str, tables: list[tuple[str, str, str, int]]
+    ) -> QVBoxLayout:
+        """A page with tables: what each shows, the words of its button, a title of its own and its stretch."""
+        page = QWidget()
+        page.setAccessibleName(title)
+        column = QVBoxLayout(page)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(GAP_PX)
+        for place, (kind, words, own_title, stretch) in enumerate(tables):
+            add = GlyphButton("add", words)
+            add.clicked.connect(partial(self.add, kind))
+            column.addLayout(_head(own_title or title, hint if place == 0 else "", add))
+            model = PeopleTable(self.work, self) if kind == "person" else RecordTable(self.work, SHOWN[kind], self)
+            table = DeskTable(model, self)
+            table.setAccessibleName(own_title or title)
+            self._take_table(kind, key, table)
+            column.addWidget(table, stretch)
+        if not tables:
+            column.addLayout(_head(title, hint))
+        self._pages[key] = page
+        self.stack.addWidget(page)
+        return column
+
+    def _steps_page(self) -> None:
+        page = QWidget()
+        page.setAccessibleName(_("Mixing steps"))
+        column = QVBoxLayout(page)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(GAP_PX)
+        self.own_title = QLabel()
+        self.copy_steps = QPushButton(_("Begin with the steps of every formula"))
+        self.copy_steps.setObjectName("plain")
+        self.copy_steps.clicked.connect(self._copy_steps)
+        for kind, title, own in (
+            ("general step", QLabel(_("Steps of every formula without its own")), False),
+            ("own step", self.own_title, True),
+        ):
+            model = StepRows(self.work, self, own=own)
+            table = StepTable(model, self)
+            table.setAccessibleName(_("Steps of this formula") if own else title.text())
+            table.moved.connect(self._move_step)
+            add = GlyphButton("add", _("Add a step to this formula") if own else _("Add a step to every formula"))
+            add.clicked.connect(partial(self.add, kind))
+            up, down = GlyphButton("up", _("Move the step up (Alt+Up)")), GlyphButton(
+                "down", _("Move the step down (Alt+Down)"))
+            up.clicked.connect(partial(self._move_current, kind, -1))
+            down.clicked.connect(partial(self._move_current, kind, 1))
+            head = _head(title, "", add, up, down)
+            if own:
+                head.insertWidget(head.count() - 1, self.copy_steps)
+            column.addLayout(head)
+            column.addWidget(table, 1)
+            self._take_table(kind, "steps", table)
+        self._pages["steps"] = page
+        self.stack.addWidget(page)
+
+    def _take_table(self, kind: str, section: str, table: DeskTable) -> None:
         table.cleared.connect(partial(self._clear, kind))
         table.pasted.connect(partial(self._paste, kind))
         self.tables[kind] = table
-        column.addLayout(head)
-        column.addWidget(table, stretch)
+        self._section_of[kind] = section
+        self._beginners.setdefault(section, table)
+
+    def _lay(self) -> None:
+        self.leave = QPushButton(_("Back to the bench"))
+        self.leave.setObjectName("plain")
+        self.leave.setFixedWidth(self.sections.width())
+        self.leave.clicked.connect(self.closed)
+        side = QVBoxLayout()
+        side.setSpacing(GAP_PX)
+        side.addWidget(self.sections, 1)
+        side.addWidget(self.leave)
+        side.addSpacing(GAP_PX)
+        row = QHBoxLayout(self)
+        row.setContentsMargins(MARGIN_PX, GAP_PX * 2, MARGIN_PX, 0)
+        row.setSpacing(MARGIN_PX)
+        row.addLayout(side)
+        row.addWidget(self.stack, 1)
+
+    def found(self) -> list[Found]:
+        """Every record of the plant, as things to find."""
+        kinds = {
+            "site": _("site"), "scale": _("scale"), "meter": _("liquid meter"), "mixer": _("mixer"), "bin": _("bin"),
+            "lot": _("lot"), "supplier": _("supplier"),
+        }
+        library = self.work.library
+        return [
+            Found(library.records[self._kind(table)][owner].name, words, partial(self._go_to, table, owner))
+            for table, words in kinds.items() for owner in self.model(table).owners
+        ]
+
+    def _go_to(self, table: str, owner: int) -> None:
+        self.wanted.emit()
+        self.sections.choose(self._section_of[table])
+        self.tables[table].go_to(owner, "name")
+
+    def show_section(self, key: str) -> None:
+        """Show a section and put the keyboard into it."""
+        self.sections.choose(key)
+        self.go_in()
+
+    def go_in(self) -> None:
+        """Put the keyboard into the section that is shown."""
+        self._beginners[self.sections.keys[self.sections.currentRow()]].setFocus(Qt.FocusReason.TabFocusReason)
 
     # -- what is shown
 
@@ -128,84 +207,143 @@ class MillPane(QWidget):
         assert isinstance(model, RecordTable | PeopleTable)
         return model
 
+    def _kind(self, table: str) -> str:
+        return "person" if table == "person" else str(getattr(self.model(table), "kind", table))
+
     def _edited(self, edit: Edit) -> None:
-        for kind in self.tables:
-            self.model(kind).forgive_owners({change.id for change in edit.changes if change.kind == kind})
-        if edit.touches("mill", *self.tables) or not edit.changes:
+        for table in self.tables:
+            kind = self._kind(table)
+            self.model(table).forgive_owners({change.id for change in edit.changes if change.kind == kind})
+        if edit.touches("mill", "ingredient", "formula", *map(self._kind, self.tables)) or not edit.changes:
             self.fill()
 
     def fill(self) -> None:
         """Show what is stored."""
-        for kind in self.tables:
-            self.model(kind).rebuild()
+        for table in self.tables.values():
+            self._keep(table)
+        library, formula = self.work.library, self.work.formula
         if self.work.is_open:
             self.passwords.fill()
-        mill = self.work.library.mill
-        for field, text in ((self.name, mill.name), (self.currency, mill.currency)):
-            if not field.hasFocus():
-                field.setText(text)
-        self.ton.setCurrentIndex(max(self.ton.findData(mill.ton_means), 0))
-        self.cwt.setCurrentIndex(max(self.cwt.findData(mill.cwt_means), 0))
+        self.facts.fill()
+        for key, kind in (("sites", "site"), ("scales", "scale"), ("mixers", "mixer"), ("bins", "bin"),
+                          ("lots", "lot"), ("steps", "mixing_step"), ("suppliers", "supplier"),
+                          ("nutrients", "nutrient"), ("persons", "person")):
+            self.sections.say_count(key, len(library.records[kind]) or None)
+        own = formula is not None and not self.model("own step").owners
+        self.own_title.setText("" if formula is None else _("Steps of {formula}").format(formula=formula.name))
+        self.copy_steps.setVisible(own and bool(self.model("general step").owners))
+
+    def _keep(self, table: DeskTable) -> None:
+        """Rebuild a table with the keyboard on the same cell as before."""
+        model, index = table.grid, table.currentIndex()
+        assert isinstance(model, RecordTable | PeopleTable)
+        kept = (model.owner(index), model.key(index)) if index.isValid() else None
+        model.rebuild()
+        at = model.cell(*kept) if kept is not None else None
+        if at is not None and at.isValid() and at != table.currentIndex():
+            table.setCurrentIndex(at)
 
     # -- changing
 
-    def _set(self, **fields: str) -> None:
-        mill = self.work.library.mill
-        self.fault.clear()
-        if self.work.is_open and any(getattr(mill, name) != value for name, value in fields.items()):
-            try:
-                self.work.do(lambda one: edits.set_mill(one, **fields))
-            except (Refused, ValueError) as fault:
-                self.fault.setText(sentence_of(fault))
-
-    def add(self, kind: str) -> None:
+    def add(self, table: str) -> None:
         """Add a record under a free name and open the name for typing."""
-        words = {"scale": _("New scale"), "mixer": _("New mixer"), "nutrient": _("New nutrient"),
-                 "person": _("New person")}[kind]
-        name = edits.free_name(self.work.library, kind, words)
+        self.sections.choose(self._section_of[table])
+        words = {
+            "site": _("New site"), "supplier": _("New supplier"), "scale": _("New scale"),
+            "meter": _("New liquid meter"), "mixer": _("New mixer"), "bin": _("New bin"), "lot": _("New lot"),
+            "nutrient": _("New nutrient"), "person": _("New person"),
+        }.get(table, _("New step"))
+        name = words if "step" in table else edits.free_name(self.work.library, self._kind(table), words)
+        edit = self._try(self._adder(table, name))
+        if edit is not None and edit.changes:
+            self._type_into(table, edit, "text" if "step" in table else "name")
+
+    def _adder(self, table: str, name: str) -> Callable[[Mill], Edit]:
+        def add_lot(mill: Mill) -> Edit:
+            first = next(iter(mill.library.ingredients), None)
+            if first is None:
+                raise Refused(_("The mill has no ingredient yet of which a lot could be."))
+            lots = self.model("lot").owners
+            last = mill.library.records["lot"][lots[-1]].ingredient_id if lots else first.id
+            return plant.add_lot(mill, last, name, received=self.work.on)
+
+        here = self.work.library.mill.site_id
         jobs: dict[str, Callable[[Mill], Edit]] = {
-            "scale": lambda mill: plant.add_scale(mill, name, 1.0), "mixer": lambda mill: plant.add_mixer(mill, name),
+            "site": lambda mill: plant.add_site(mill, name),
+            "supplier": lambda mill: plant.add_supplier(mill, name),
+            "scale": lambda mill: plant.add_scale(mill, name, NEW_STEP_KG, here),
+            "meter": lambda mill: plant.add_meter(mill, name, NEW_STEP_L, here),
+            "mixer": lambda mill: plant.add_mixer(mill, name, here),
+            "bin": lambda mill: plant.add_bin(mill, name, site_id=here),
+            "lot": add_lot,
             "nutrient": lambda mill: edits.add_nutrient(mill, name),
             "person": lambda mill: mill.apply(
                 _("Add {name}").format(name=name), [added(Person(mill.new_id("person"), name))]),
+            "general step": lambda mill: mixing.add_step(mill, None, name),
+            "own step": lambda mill: mixing.add_step(mill, self.work.formula_id, name),
         }
-        edit = self._try(jobs[kind])
-        if edit is not None and edit.changes and self.tables[kind].go_to(edit.changes[0].id, "name"):
-            self.tables[kind].edit(self.tables[kind].currentIndex())
+        return jobs[table]
 
-    def _clear(self, kind: str, cells: list[tuple[int, str]]) -> None:
-        """Delete on a name removes the record; on another cell it empties it."""
-        removers: dict[str, Callable[[Mill, int], Edit]] = {
-            "scale": plant.remove_scale, "mixer": plant.remove_mixer, "nutrient": edits.remove_nutrient,
-        }
-        if kind == "person":
+    def _type_into(self, table: str, edit: Edit, key: str) -> None:
+        kind = self._kind(table)
+        new = next(change.id for change in edit.changes if change.kind == kind and change.before is None)
+        if self.tables[table].go_to(new, key):
+            self.tables[table].edit(self.tables[table].currentIndex())
+
+    def _clear(self, table: str, cells: list[tuple[int, str]]) -> None:
+        """Delete on a name, or on a step's number or text, removes the record; on another cell it empties it."""
+        naming = ("name", "position", "text")
+        if table == "person":
             cells = [(owner, key) for owner, key in cells if key == "capacity"]
             if not cells:
                 self.said.emit(_("A person stays on record; write no under Active instead."), [])
                 return
-        elif len(cells) == 1 and cells[0][1] == "name":
-            self._try(lambda mill: removers[kind](mill, cells[0][0]))
+        elif len(cells) == 1 and cells[0][1] in naming:
+            owner = cells[0][0]
+            if "step" in table:
+                self._try(lambda mill: mixing.remove_step(mill, owner))
+            elif table == "nutrient":
+                self._try(lambda mill: edits.remove_nutrient(mill, owner))
+            else:
+                self._try(lambda mill: plant.remove(mill, self._kind(table), owner))
             return
-        self._paste(kind, [(owner, key, "") for owner, key in cells if key != "name"], [],
-                    _("Clear cells"))
+        self._paste(table, [(owner, key, "") for owner, key in cells if key not in naming], [], _("Clear cells"))
 
     def _paste(
-        self, kind: str, cells: list[tuple[int, str, str]], outside: list[str], what: str = ""
+        self, table: str, cells: list[tuple[int, str, str]], outside: list[str], what: str = ""
     ) -> None:
         what = what or _("Paste")
-        model = self.model(kind)
+        model = self.model(table)
         if isinstance(model, PeopleTable):
             for owner, key, text in cells:
                 index = model.cell(owner, key)
                 if model.look(index.row(), index.column()).editable:
                     model.setData(index, text)
         elif cells:
+            outside = outside + [text for _owner, key, text in cells if key == "position" and text.strip()]
+            cells = [cell for cell in cells if cell[1] != "position"]
             try:
                 model.write_block(cells, what)
             except (Refused, ValueError) as fault:
                 self.said.emit(sentence_of(fault), [])
         if outside:
             self.said.emit(_("These cells fell where nothing is typed in:"), outside)
+
+    # -- steps
+
+    def _move_current(self, table: str, by: int) -> None:
+        index = self.tables[table].currentIndex()
+        if index.isValid():
+            self._move_step(self.model(table).owner(index), by)
+
+    def _move_step(self, step_id: int, by: int) -> None:
+        self._try(lambda mill: mixing.move_step(mill, step_id, by))
+
+    def _copy_steps(self) -> None:
+        formula_id = self.work.formula_id
+        if formula_id is not None:
+            self._try(lambda mill: mixing.own_copy(mill, formula_id))
+            self.tables["own step"].setFocus(Qt.FocusReason.TabFocusReason)
 
     def _try(self, job: Callable[[Mill], Edit]) -> Edit | None:
         try:
@@ -219,3 +357,23 @@ class MillPane(QWidget):
             self.closed.emit()
         else:
             super().keyPressEvent(event)
+
+
+def _head(title: str | QLabel, hint: str, *buttons: QWidget) -> QHBoxLayout:
+    """The line over a table: its title, its buttons, and what it is for."""
+    label = title if isinstance(title, QLabel) else QLabel(title)
+    label.setFont(text_font(strong=True))
+    head = QHBoxLayout()
+    head.setSpacing(GAP_PX)
+    head.addWidget(label)
+    for button in buttons:
+        head.addWidget(button)
+    if hint:
+        quiet = QLabel(hint)
+        quiet.setObjectName("quiet")
+        quiet.setWordWrap(True)
+        head.addSpacing(GAP_PX)
+        head.addWidget(quiet, 1)
+    else:
+        head.addStretch(1)
+    return head

@@ -51,6 +51,8 @@ def _path(name: str) -> QPainterPath:
                        _lines((9.3, 6.7), (13.3, 2.7)), _lines((6.7, 9.3), (2.7, 13.3)))
     if name == "add":
         return _joined(_lines((8, 3), (8, 13)), _lines((3, 8), (13, 8)))
+    if name == "up":
+        return _lines((4, 9.8), (8, 5.8), (12, 9.8))
     if name == "down":
         return _lines((4, 6.2), (8, 10.2), (12, 6.2))
     if name == "close":

@@ -6,10 +6,11 @@ from dataclasses import dataclass
 
 from PySide6.QtCore import QEvent, QModelIndex, QObject, QPersistentModelIndex, QRect, QRectF, QSize, Qt
 from PySide6.QtGui import QFontMetricsF, QKeyEvent, QPainter, QPen
-from PySide6.QtWidgets import QComboBox, QLineEdit, QStyle, QStyledItemDelegate, QStyleOptionViewItem, QWidget
+from PySide6.QtWidgets import QLineEdit, QStyle, QStyledItemDelegate, QStyleOptionViewItem, QWidget
 
 from blendapp.desk.rail.paint import draw_rail
 from blendapp.desk.table.look import Look
+from blendapp.desk.table.names import NameField
 from blendapp.desk.table.roles import EDIT
 from blendapp.desk.theme import ROW_PX, Tokens, text_font
 
@@ -24,6 +25,10 @@ _LEAVING: dict[int, int | QStyledItemDelegate.EndEditHint] = {
     Qt.Key.Key_Return: 1, Qt.Key.Key_Enter: 1, Qt.Key.Key_Down: 1, Qt.Key.Key_Up: -1,
     Qt.Key.Key_Tab: QStyledItemDelegate.EndEditHint.EditNextItem,
     Qt.Key.Key_Backtab: QStyledItemDelegate.EndEditHint.EditPreviousItem,
+}
+# In a cell with names to choose from, these go through the names instead.
+_THROUGH: dict[int, int] = {
+    Qt.Key.Key_Down: 1, Qt.Key.Key_Up: -1, Qt.Key.Key_PageDown: 8, Qt.Key.Key_PageUp: -8,
 }
 _ELIDE = Qt.TextElideMode.ElideRight
 
@@ -148,51 +153,48 @@ class CellDelegate(QStyledItemDelegate):
     def createEditor(self, parent: QWidget, option: QStyleOptionViewItem, index: AnyIndex) -> QWidget:
         look: Look = index.model().look(index.row(), index.column())  # type: ignore[attr-defined]
         heading = str(index.model().headerData(index.column(), Qt.Orientation.Horizontal))
+        field: QLineEdit
         if look.choices:
-            box = QComboBox(parent)
-            box.addItems(list(look.choices))
-            box.setAccessibleName(heading)
-            box.activated.connect(lambda _at: self._chosen(box))
-            return box
-        field = QLineEdit(parent)
+            field = names = NameField(look.choices, parent)
+            names.chosen.connect(lambda: self._chosen(names))
+        else:
+            field = QLineEdit(parent)
         field.setObjectName("cell")
         field.setAccessibleName(heading)
         field.setAlignment(Qt.AlignmentFlag.AlignRight if look.number else Qt.AlignmentFlag.AlignLeft)
         return field
 
-    def _chosen(self, box: QComboBox) -> None:
-        self.commitData.emit(box)
-        self.closeEditor.emit(box, QStyledItemDelegate.EndEditHint.NoHint)
+    def _chosen(self, names: NameField) -> None:
+        self.commitData.emit(names)
+        self.closeEditor.emit(names, QStyledItemDelegate.EndEditHint.NoHint)
 
     def setEditorData(self, editor: QWidget, index: AnyIndex) -> None:
         text = str(index.data(EDIT) or "")
-        if isinstance(editor, QComboBox):
-            editor.setCurrentText(text)
+        if isinstance(editor, NameField):
+            editor.begin(text)
         elif isinstance(editor, QLineEdit):
             editor.setText(text)
             editor.selectAll()
 
     def setModelData(self, editor: QWidget, model: object, index: AnyIndex) -> None:
-        text = editor.currentText() if isinstance(editor, QComboBox) else editor.text()  # type: ignore[attr-defined]
-        model.setData(index, text, EDIT)  # type: ignore[attr-defined]
+        assert isinstance(editor, QLineEdit)
+        model.setData(index, editor.text(), EDIT)  # type: ignore[attr-defined]
 
     def updateEditorGeometry(self, editor: QWidget, option: QStyleOptionViewItem, index: AnyIndex) -> None:
-        rect = self.line_rect(option.rect)
-        if isinstance(editor, QComboBox):
-            rect.setWidth(max(rect.width(), editor.sizeHint().width()))
-        editor.setGeometry(rect)
+        editor.setGeometry(self.line_rect(option.rect))
 
     def eventFilter(self, editor: QObject, event: QEvent) -> bool:
         # Enter goes one row down, as in a spreadsheet; Qt's own filter would only close the editor. From a text that
         # is refused no key goes on, or the next figure would land in the next record.
-        if (
-            event.type() == QEvent.Type.KeyPress
-            and isinstance(event, QKeyEvent)
-            and isinstance(editor, QLineEdit)
-            and event.key() in _LEAVING
-        ):
+        key = event.key() if isinstance(event, QKeyEvent) and event.type() == QEvent.Type.KeyPress else None
+        if isinstance(editor, NameField) and key in _THROUGH:
+            editor.step(_THROUGH[key])
+            return True
+        if isinstance(event, QKeyEvent) and isinstance(editor, QLineEdit) and key in _LEAVING:
+            if isinstance(editor, NameField):
+                editor.pick()
             way = QStyledItemDelegate.EndEditHint
-            step = _LEAVING[event.key()]
+            step = _LEAVING[key]
             taken = self._commit(editor)
             if isinstance(step, int):
                 self.closeEditor.emit(editor, way.NoHint)
