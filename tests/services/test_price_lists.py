@@ -15,9 +15,10 @@ from blendapp.domain.mills import Asked, Synonym
 from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.problems import Refused
 from blendapp.domain.records import added
+from blendapp.services.list_memory import answer_again, forget, remember, remembered, set_usual_change
+from blendapp.services.lists import applied_lists, open_list, roll_back
 from blendapp.services.mill import Mill
-from blendapp.services.price_memory import answer_again, forget, remember, remembered, set_usual_change
-from blendapp.services.prices import applied_lists, apply_price_list, open_price_list, read_price_list, roll_back
+from blendapp.services.prices import apply_price_list, read_price_list
 from tests.mills import TODAY, Maker
 
 Opened = Callable[[Library], Mill]
@@ -148,9 +149,9 @@ def test_an_applied_list_opens_again_with_every_row(mill: Mill, tmp_path: Path) 
     apply_price_list(mill, reading, TODAY)
     (kept,) = applied_lists(mill)
     assert (kept.source, kept.rows, kept.accepted) == ("larkwater", 5, 2)
-    assert open_price_list(mill, kept.id) == [replace(row, questions=()) for row in reading.rows]
+    assert open_list(mill, kept.id) == [replace(row, questions=()) for row in reading.rows]
     with pytest.raises(Refused):
-        open_price_list(mill, 99)
+        open_list(mill, 99)
 
 
 def test_rolling_back_withdraws_exactly_the_quotes_of_the_list(mill: Mill, tmp_path: Path) -> None:
@@ -164,7 +165,7 @@ def test_rolling_back_withdraws_exactly_the_quotes_of_the_list(mill: Mill, tmp_p
     assert [mill.library.price_per_t(key, TODAY) for key in (1, 2)] == [205, 405]
     assert {quote.price_list_id for quote in mill.library.all("quote")} == {None, one.id}
     assert mill.library.records["price_list"][two.id].withdrawn is not None
-    assert len(open_price_list(mill, two.id)) == 3
+    assert len(open_list(mill, two.id)) == 3
     with pytest.raises(Refused, match="rolled back before"):
         roll_back(mill, two.id)
     mill.undo()

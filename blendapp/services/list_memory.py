@@ -1,11 +1,11 @@
-"""What price lists left open and a person answered: remembered for the source, seen, edited and forgotten."""
+"""What lists left open and a person answered: remembered for the source, seen, edited and forgotten."""
 
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 from dataclasses import replace
 
-from blendapp.domain.list_rows import LEAVE_OUT, TAKE, Answer, Fate, source_of
+from blendapp.domain.list_rows import LEAVE_OUT, TAKE, Answer, Fate, ListReading, source_of
 from blendapp.domain.mills import Asked, Synonym
 from blendapp.domain.names import fold
 from blendapp.domain.price_rows import PriceListReading
@@ -15,9 +15,11 @@ from blendapp.domain.wording import _
 from blendapp.services.mill import Edit, Mill
 
 
-def memory_changes(mill: Mill, reading: PriceListReading) -> list[Change]:
+def memory_changes(mill: Mill, reading: ListReading) -> list[Change]:
     """The changes that remember the answers of a reading for its source; an earlier answer gives way."""
-    answers = [one for one in reading.answers if one.asked.is_remembered] + _twins_left_out(reading)
+    answers = [one for one in reading.answers if one.asked.is_remembered]
+    if isinstance(reading, PriceListReading):
+        answers += _twins_left_out(reading)
     known = {
         (one.asked, fold(one.name)): one
         for one in mill.library.all("synonym") if source_of(one.source) == source_of(reading.source)
