@@ -38,7 +38,7 @@ class Question:
 
 @dataclass(frozen=True)
 class Answer:
-    """A person's answer. sheet, row: of the row that it is for where asked.is_remembered is false, else not looked at.
+    """A person's answer. sheet, row: of the row that it is for where asked.is_of_row, else not looked at.
 
     rate: money of the mill for one of the currency in `about`, on the day `given`.
     """
@@ -55,9 +55,9 @@ class Answer:
     @property
     def key(self) -> tuple[Asked, str, str, int]:
         """What the answer answers; of two with the same key the later one holds."""
-        if self.asked.is_remembered:
-            return self.asked, fold(self.about), "", 0
-        return self.asked, "", self.sheet, self.row
+        if self.asked.is_of_row:
+            return self.asked, "", self.sheet, self.row
+        return self.asked, fold(self.about), "", 0
 
 
 # What a file name says of its week; months as people shorten them.
@@ -177,7 +177,7 @@ class ListReading:
         found: dict[object, Question] = {}
         for row in self.rows:
             for one in row.questions:
-                key = (one.asked, fold(one.about)) if one.asked.is_remembered else (one.asked, row.sheet, row.row)
+                key = (one.asked, row.sheet, row.row) if one.asked.is_of_row else (one.asked, fold(one.about))
                 found.setdefault(key, one)
         return list(found.values())
 

@@ -101,7 +101,7 @@ class PriceList:
 
 
 class Asked(StrEnum):
-    """What a price list may leave open. Those above the gap are remembered for the source, those below hold for a row.
+    """What a list may leave open. Those above the gap are remembered for the source; the last ones hold for one row.
 
     With each, what it is about and what may be answered:
     INGREDIENT: a name; its ingredient, or LEAVE_OUT. UNIT: the words in doubt, "" where none stand; words of one unit.
@@ -114,7 +114,10 @@ class Asked(StrEnum):
     NUTRIENT: a heading; a nutrient's name, "Dry matter", or LEAVE_OUT. CONCENTRATION: a heading; a unit. BASIS: a
     heading, or "" for all; one of ingredients.Basis.
     USUAL_CHANGE, of every source: a class of ingredients, "" for all others; by how many percent a price may change
-    without a question. Of a row: TAKE or LEAVE_OUT.
+    without a question.
+    EXPIRED_LIST, of this list alone, and not remembered: a day as 2026-03-09, on which all of its prices ended; TAKE or
+    LEAVE_OUT. Of a row: TAKE or LEAVE_OUT; for AMOUNT also the price, as a plain number in the unit of the row, and for
+    NAMELESS an ingredient.
     """
 
     INGREDIENT = "ingredient"
@@ -134,6 +137,8 @@ class Asked(StrEnum):
     BASIS = "basis"
     USUAL_CHANGE = "usual change"
 
+    EXPIRED_LIST = "expired list"
+
     HIDDEN = "hidden"
     STRUCK = "struck"
     CHANGE = "change"
@@ -141,12 +146,20 @@ class Asked(StrEnum):
     SIGN = "sign"
     TERMS = "terms"
     TWIN = "twin"
+    AMOUNT = "amount"
+    NAMELESS = "nameless"
+
+    @property
+    def is_of_row(self) -> bool:
+        """Whether the answer holds for one row of one list."""
+        return self in (
+            Asked.HIDDEN, Asked.STRUCK, Asked.CHANGE, Asked.EXPIRED, Asked.SIGN, Asked.TERMS, Asked.TWIN, Asked.AMOUNT,
+            Asked.NAMELESS,
+        )
 
     @property
     def is_remembered(self) -> bool:
-        return self not in (
-            Asked.HIDDEN, Asked.STRUCK, Asked.CHANGE, Asked.EXPIRED, Asked.SIGN, Asked.TERMS, Asked.TWIN
-        )
+        return not self.is_of_row and self is not Asked.EXPIRED_LIST
 
 
 @dataclass(frozen=True)

@@ -71,7 +71,7 @@ class RowReading:
             return True
         place = self.raw.sheet, self.row + 1
         return any(
-            self.answers.of_row(asked, *place) == LEAVE_OUT for asked in Asked if not asked.is_remembered
+            self.answers.of_row(asked, *place) == LEAVE_OUT for asked in Asked if asked.is_of_row
         )
 
     def error(self, columns: Iterable[int]) -> str:
