@@ -17,7 +17,7 @@ from blendapp.domain.ingredients import Basis, Ingredient, Origin, Value
 from blendapp.domain.names import fold
 from blendapp.domain.notation import notation
 from blendapp.domain.wording import _
-from blendapp.services import edits
+from blendapp.services import edits, typed
 from blendapp.services.mill import Edit, record_name
 
 if TYPE_CHECKING:
@@ -81,9 +81,11 @@ class HaveModel(Grid):
                   for n in self.work.library.nutrients),
             ]
         if self.column_set == KEEPING:
-            plain = ("class_name", 110), ("scale_id", 110), ("code", 70), ("tags", 150), ("bushel_lb", 80), (
-                "density_kg_per_l", 96), ("made_by_formula_id", 120), ("drug", 110), ("drug_level", 90), (
-                "drug_species", 100), ("withdrawal", 100), ("note", 220)
+            plain = (
+                ("class_name", 110), ("scale_id", 110), ("density_kg_per_l", 96), ("made_by_formula_id", 140),
+                ("opened", 76), ("supplier_id", 130), ("code", 70), ("tags", 150), ("bushel_lb", 80), ("drug", 110),
+                ("drug_level", 90), ("drug_species", 100), ("withdrawal", 100), ("note", 220),
+            )
             return [name, *(self._heading(key, width) for key, width in plain)]
         return [
             name,
@@ -142,14 +144,15 @@ class HaveModel(Grid):
         value = getattr(ingredient, key)
         if field.decimals is not None:
             return number_look(value, fitting_decimals(value, field.decimals), widest=field.decimals, editable=True)
-        if key == "scale_id":
-            names = tuple(scale.name for scale in self.work.library.scales)
-            text = "" if value is None else self.work.library.records["scale"][value].name
-            return Look(text=text, typed=text, editable=True, choices=("", *names))
-        if key == "made_by_formula_id":
-            names = tuple(formula.name for formula in self.work.library.formulas)
-            text = "" if value is None else self.work.library.formula(value).name
-            return Look(text=text, typed=text, editable=True, choices=("", *names))
+        if key in typed.LINKS:
+            names = tuple(sorted(typed.choices(self.work.library, ingredient, key) or (), key=fold))
+            text = typed.shown_link(self.work.library, ingredient, key)
+            return Look(text=text, typed=text, editable=True, choices=names, hint=field.help_text)
+        if key == "opened":
+            # Of an ingredient that is bought there is nothing to open.
+            made = ingredient.made_by_formula_id is not None
+            text = (_("yes") if value else _("no")) if made or value else ""
+            return Look(text=text, typed=text, editable=True, choices=(_("yes"), _("no")), hint=field.help_text)
         if key == "basis":
             words = _(str(value))
             return Look(text=words, typed=words, editable=True, choices=tuple(_(str(one)) for one in Basis))

@@ -137,7 +137,7 @@ class HavePane(QWidget):
         self.model.forgive_stored(edit)
         if edit.touches("nutrient"):
             self.model.take_decimals()
-        if edit.touches("ingredient", "nutrient", "mill", "scale", "formula"):
+        if edit.touches("ingredient", "nutrient", "mill", "scale", "formula", "supplier"):
             self._keep(self.model.rebuild)
         else:
             self.model.refresh()

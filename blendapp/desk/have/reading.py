@@ -13,7 +13,7 @@ from blendapp.domain.names import fold
 from blendapp.domain.notation import notation
 from blendapp.domain.records import Change
 from blendapp.domain.wording import _
-from blendapp.services import edits
+from blendapp.services import edits, typed
 from blendapp.services.mill import Mill
 
 NUTRIENT = "nutrient "
@@ -38,6 +38,8 @@ def changes_of(mill: Mill, owner: int, key: str, text: str, on: datetime.date) -
         if sentence:
             raise ValueError(sentence)
         return edits.field_changes(mill, ingredient, **{key: value})
+    if key in typed.LINKS or key == "opened":
+        return typed.typed_changes(mill, ingredient, key, plain)
     return edits.field_changes(mill, ingredient, **{key: _READ.get(key, _text)(mill, plain)})
 
 
@@ -87,25 +89,6 @@ def _value(mill: Mill, ingredient_id: int, nutrient_id: int, text: str) -> list[
     return edits.value_changes(mill, ingredient_id, nutrient_id, notation().read(text), unit=unit, basis=basis)
 
 
-def _scale(mill: Mill, text: str) -> int | None:
-    if not text:
-        return None
-    scale = mill.library.named("scale", text)
-    if scale is None:
-        names = ", ".join(one.name for one in mill.library.scales) or _("none yet")
-        raise ValueError(_("There is no scale “{name}”; the mill's scales are {names}.").format(name=text, names=names))
-    return int(scale.id)
-
-
-def _formula(mill: Mill, text: str) -> int | None:
-    if not text:
-        return None
-    formula = mill.library.named("formula", text)
-    if formula is None:
-        raise ValueError(_("There is no formula “{name}”; choose one of the mill's own.").format(name=text))
-    return int(formula.id)
-
-
 def _basis(_mill: Mill, text: str) -> Basis:
     if not text:
         return Basis.AS_FED
@@ -129,5 +112,5 @@ def _tags(_mill: Mill, text: str) -> tuple[Tag, ...]:
 
 
 _READ: dict[str, Callable[[Mill, str], object]] = {
-    "scale_id": _scale, "made_by_formula_id": _formula, "basis": _basis, "tags": _tags,
+    "basis": _basis, "tags": _tags,
 }

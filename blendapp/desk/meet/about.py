@@ -1,8 +1,9 @@
-"""What a formula is for: animal, stage, amounts, usual batch, what it admits. Stored as it is changed."""
+"""What a formula is for: animal, stage, amounts, batch, loss, what it admits. Stored as it is changed."""
 
 from __future__ import annotations
 
 from collections.abc import Callable
+from functools import partial
 from typing import Any
 
 from PySide6.QtCore import Qt, Signal
@@ -19,7 +20,9 @@ from blendapp.domain.formulas import Admits, Amounts, Animal
 from blendapp.domain.notation import notation
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _
-from blendapp.services import edits
+from blendapp.services import edits, typed
+
+NUMBERS = ("batch_kg", "loss_percent", "product_dry_matter_percent")
 
 
 class AboutFormula(QWidget):
@@ -41,7 +44,7 @@ class AboutFormula(QWidget):
         self.admits.addItem(_("every ingredient that may be used unlisted"), str(Admits.ALL))
         self.admits.addItem(_("only ingredients with a limit of their own"), str(Admits.LISTED))
         self.stage = QLineEdit()
-        self.batch = QLineEdit()
+        self.numbers = {key: QLineEdit() for key in NUMBERS}
         self.note = QLineEdit()
         self.fault = QLabel()
         self.fault.setWordWrap(True)
@@ -54,7 +57,8 @@ class AboutFormula(QWidget):
         self._fields: tuple[tuple[str, QWidget], ...] = (
             (field_of("formula", "animal").label, self.animal), (field_of("formula", "stage").label, self.stage),
             (field_of("formula", "amounts").label, self.amounts), (field_of("formula", "admits").label, self.admits),
-            (field_of("formula", "batch_kg").label, self.batch), (field_of("formula", "note").label, self.note),
+            *((field_of("formula", key).label, field) for key, field in self.numbers.items()),
+            (field_of("formula", "note").label, self.note),
         )
         for row, (words, field) in enumerate(self._fields):
             label = QLabel(words)
@@ -79,7 +83,9 @@ class AboutFormula(QWidget):
         self.admits.activated.connect(lambda _at: self._set(admits=Admits(self.admits.currentData())))
         self.stage.editingFinished.connect(lambda: self._set(stage=self.stage.text().strip()))
         self.note.editingFinished.connect(lambda: self._set(note=self.note.text().strip()))
-        self.batch.editingFinished.connect(self._set_batch)
+        for key, field in self.numbers.items():
+            field.setToolTip(field_of("formula", key).help_text)
+            field.editingFinished.connect(partial(self._set_number, key))
 
     def begin(self) -> None:
         """Open the form."""
@@ -97,20 +103,18 @@ class AboutFormula(QWidget):
         self.animal.setCurrentIndex(max(self.animal.findData(str(formula.animal or "")), 0))
         self.amounts.setCurrentIndex(self.amounts.findData(str(formula.amounts)))
         self.admits.setCurrentIndex(self.admits.findData(str(formula.admits)))
-        for field, text in ((self.stage, formula.stage), (self.note, formula.note),
-                            (self.batch, notation().write_exact(formula.batch_kg))):
+        numbers = [(field, notation().write_exact(getattr(formula, key))) for key, field in self.numbers.items()]
+        for field, text in ((self.stage, formula.stage), (self.note, formula.note), *numbers):
             if not field.hasFocus():
                 field.setText(text)
 
-    def _set_batch(self) -> None:
-        text = self.batch.text().strip()
+    def _set_number(self, key: str) -> None:
+        text = self.numbers[key].text()
 
         def take() -> None:
-            mass = notation().read(text) if text else None
-            sentence = field_of("formula", "batch_kg").fault(mass)
-            if sentence:
-                raise ValueError(sentence)
-            self._store(batch_kg=mass)
+            formula = self.work.formula
+            if formula is not None:
+                self._store(**{key: typed.read_typed(self.work.library, formula, key, text)})
 
         self._try(take)
 

@@ -32,10 +32,10 @@ class NameField(QLineEdit):
     def __init__(self, choices: Sequence[str], parent: QWidget) -> None:
         super().__init__(parent)
         self.choices = [one for one in dict.fromkeys(choices) if one]
-        self._found = QStringListModel(self)
-        self._begun = ""
         self.list = QListView(parent.window())
         self.list.setObjectName("offered")
+        # The list outlives the field by a moment, and its model with it.
+        self._found = QStringListModel(self.list)
         self.list.setModel(self._found)
         self.list.setItemDelegate(_Line(self.list))
         self.list.setFocusPolicy(Qt.FocusPolicy.NoFocus)
@@ -52,7 +52,6 @@ class NameField(QLineEdit):
         """Open on a text, with every choice in view and the text's own marked."""
         self.setText(text)
         self.selectAll()
-        self._begun = text
         self._show(self.choices)
         if text in self.choices:
             self._mark(self.choices.index(text))
