@@ -89,10 +89,11 @@ class Batch:
     draft: whether the formula stood otherwise than approved, or never was; approved_by: else name, capacity and day.
 
     site, mixer: names, "" where none is known. steps: of making it, in order. to_make: for the whole order.
-    previous_feed: what went through the mixer before, with its sheet, "" where not known; clean_out: what was chosen,
-    None to be filled in by hand; clean_out_reason: why one is needed, "" where nothing says so. yield_kg: of one
-    batch, after loss_percent is lost and the dry matter of the mix is brought to product_dry_matter_percent; None
-    where yield_unknown says why. mass_unit: in which the sheet shows masses, "kg" or "lb".
+    previous_feed: what went through the mixer before, with its sheet, "" where not known; previous_number: of that
+    sheet, None where a person said what it was, or nothing is known. clean_out: what was chosen, None to be filled in
+    by hand; clean_out_reason: why one is needed, "" where nothing says so. yield_kg: of one batch, after loss_percent
+    is lost and the dry matter of the mix is brought to product_dry_matter_percent; None where yield_unknown says why.
+    mass_unit: in which the sheet shows masses, "kg" or "lb".
     """
 
     formula_id: int
@@ -134,6 +135,7 @@ class Batch:
     yield_unknown: str = ""
     mass_unit: str = "kg"
     paper: str = "A4"
+    previous_number: int | None = None
 
     @property
     def total_kg(self) -> float:
@@ -152,6 +154,11 @@ class Batch:
     def deviation(self) -> float:
         """Sum over the lines of |target - share|, each divided by its tolerance."""
         return sum(abs(line.target_kg - line.share_kg) / line.tolerance_kg for line in self.lines if line.tolerance_kg)
+
+    @property
+    def lacks_clean_out(self) -> bool:
+        """Whether something says that the mixer must be cleaned out and nobody has said that it will be."""
+        return bool(self.clean_out_reason) and self.clean_out in (None, CleanOut.NONE)
 
     @property
     def fit_to_mix(self) -> bool:

@@ -79,6 +79,11 @@ class Ingredient:
         return not NEVER_UNLISTED.isdisjoint(self.tags)
 
     @property
+    def medicated(self) -> bool:
+        """Whether it is so tagged, or a drug of it is named."""
+        return Tag.MEDICATED in self.tags or bool(self.drug.strip())
+
+    @property
     def dry_matter_fraction(self) -> float | None:
         return None if self.dry_matter_percent is None else self.dry_matter_percent / 100
 

@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import datetime
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 from blendapp.domain import cautions
-from blendapp.domain.batches import Batch
+from blendapp.domain.batches import Batch, CleanOut
 from blendapp.domain.figures import write_measure
 from blendapp.domain.formulas import Limit, LimitKind, Subject
 from blendapp.domain.library import Library
@@ -21,6 +21,7 @@ from blendapp.domain.wording import _
 from blendapp.optimise.build.batch import broken_by, weighed
 from blendapp.optimise.build.formula import build, unknown_values
 from blendapp.services.batch import SEARCH_S, make_batch
+from blendapp.services.making import CannotBeMade, Makers
 from blendapp.services.versions import approval_text, version_text
 
 if TYPE_CHECKING:
@@ -145,16 +146,19 @@ def _forbidden(today: Library, snapshot: Snapshot) -> str | None:
     )
 
 
-def as_today(library: Library, snapshot: Snapshot, on: datetime.date) -> Library:
+def as_today(
+    library: Library, snapshot: Snapshot, on: datetime.date, also: Collection[int] = ()
+) -> Library:
     """A library in which the formula stands as it was approved, among the ingredients, analyses and prices of today.
 
-    It holds what the approved mix and its limits need, and the plant. An ingredient or nutrient that is gone today, and
+    It holds what the approved mix and its limits need, and the plant with its bins, lots and steps. also: identifiers
+    of ingredients of today that a batch holds besides. An ingredient or nutrient that is gone today, and
     a price that is not known today, are as they were then.
     """
     records, then = library.records, snapshot.library
     named = {i.id for limit in snapshot.limits for s in (limit.subject, limit.per)
              if s is not None and not s.is_nutrient for i in then.members(s)}
-    keys = sorted({*snapshot.amounts, *named})
+    keys = sorted({*snapshot.amounts, *named, *also})
     nutrients = {**records["nutrient"], **{n.id: n for n in snapshot.nutrients}}
     values: list[Record] = []
     quotes: list[Record] = []
@@ -173,7 +177,7 @@ def as_today(library: Library, snapshot: Snapshot, on: datetime.date) -> Library
         "mill": [library.mill], "formula": [snapshot.formula], "nutrient": nutrients.values(),
         "ingredient": [records["ingredient"].get(key) or then.ingredient(key) for key in keys],
         "limit": snapshot.limits, "value": values, "quote": quotes,
-        **{kind: library.all(kind) for kind in ("site", "scale", "mixer")},
+        **{kind: library.all(kind) for kind in ("site", "scale", "mixer", "bin", "lot", "mixing_step")},
     })
     return _admitting(made, snapshot)
 
@@ -194,12 +198,15 @@ def _admitting(library: Library, snapshot: Snapshot) -> Library:
 
 def approved_batch(
     library: Library, formula_id: int, order_kg: float, on: datetime.date, *,
-    fixed: Mapping[int, float] | None = None, time_limit_s: float = SEARCH_S,
+    fixed: Mapping[int, float] | None = None, rework: Mapping[int, float] | None = None,
+    mixer_id: int | None = None, previous_feed: str | None = None, clean_out: CleanOut | None = None,
+    time_limit_s: float = SEARCH_S,
 ) -> Batch:
     """The batches of the approved version in its approved proportions, whatever the draft has become since.
 
-    Its limits are those approved, held against today's composition: one that breaks is named on the batch. Raises
-    Refused where no version is approved (or the one that was is altered), and as make_batch does.
+    Its limits are those approved, held against today's composition: one that breaks is named on the batch. What made
+    ingredients are made of, and whether they are opened, is as the mill has it today. See make_batch for the others;
+    raises Refused where no version is approved (or the one that was is altered), and as make_batch does.
     """
     version = approved_version(library, formula_id)
     if version is None:
@@ -207,15 +214,30 @@ def approved_batch(
         raise Refused(text.format(formula=library.formula(formula_id).name))
     snapshot = sound_snapshot(library, version)
     assert snapshot.result is not None
-    today = as_today(library, snapshot, on)
+    makers = Makers(library, on)
+    today = as_today(library, snapshot, on, _besides(makers, snapshot, rework or {}))
     _limits, unknown = _held(today, snapshot, on)
     forbidden = _forbidden(today, snapshot)
     answer: Result = replace(snapshot.result, on=on, unknown=tuple(unknown))
     if forbidden is not None:
         answer = replace(answer, cost=None, cause=forbidden)
-    batch = make_batch(today, formula_id, order_kg, on, result=answer, fixed=fixed, time_limit_s=time_limit_s)
+    batch = make_batch(
+        today, formula_id, order_kg, on, result=answer, fixed=fixed, rework=rework, mixer_id=mixer_id,
+        previous_feed=previous_feed, clean_out=clean_out, time_limit_s=time_limit_s, makers=makers,
+    )
     own = {limit.id for limit in snapshot.limits}
     return replace(
         batch, version=version_text(version), draft=False, approved_by=approval_text(version),
         limits=tuple(limit for limit in batch.limits if limit.limit_id in own),
     )
+
+
+def _besides(makers: Makers, snapshot: Snapshot, rework: Mapping[int, float]) -> set[int]:
+    """Identifiers of the ingredients of today that a batch of a version holds besides its mix."""
+    found = set(rework)
+    for key in snapshot.amounts:
+        try:
+            found.update(makers.opened(key) if makers.is_opened(key) else ())
+        except CannotBeMade:  # the batch itself says so
+            continue
+    return found & makers.library.records["ingredient"].keys()

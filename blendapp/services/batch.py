@@ -5,26 +5,33 @@ from __future__ import annotations
 import datetime
 import json
 import math
+import time
 from collections.abc import Mapping
 from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from blendapp.domain import cautions
-from blendapp.domain.batches import Batch, BatchLine
+from blendapp.domain import yields
+from blendapp.domain.batches import Batch, BatchLine, CleanOut, Step
+from blendapp.domain.formulas import Formula
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
 from blendapp.domain.mills import PrintedBatch
-from blendapp.domain.plant import Mixer, Scale
+from blendapp.domain.notation import notation
+from blendapp.domain.plant import Bin
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.records import Change, added
 from blendapp.domain.results import Result, Status
 from blendapp.domain.wording import _
 from blendapp.optimise.build.composition import Composition
-from blendapp.optimise.build.formula import build
-from blendapp.optimise.build.weigh import FixedRefused, NotWeighable, WeighedLine, weigh
-from blendapp.services import sheets
+from blendapp.optimise.build.formula import FormulaProgram, build
+from blendapp.optimise.build.weigh import FixedRefused, NotWeighable, WeighedLine, Weighing, weigh
+from blendapp.services import batch_cautions, sheets
+from blendapp.services.batch_mix import BatchMix, batch_mix
 from blendapp.services.formulate import formulate
+from blendapp.services.making import CannotBeMade, Makers
+from blendapp.services.order_split import mixer_taking, mixers_for, no_split, split_order, totals_held
+from blendapp.services.previous_feed import clean_out_reason, feed_text, previous_sheet
 from blendapp.services.versions import standing
 
 if TYPE_CHECKING:
@@ -32,6 +39,8 @@ if TYPE_CHECKING:
 
 # How long the search for the best whole batch may take: an answer is there within 2 s, and says whether it is proven.
 SEARCH_S = 1.5
+# Of that, what is left to the search however long it took to find out what is to be weighed.
+_LEAST_SEARCH_S = 0.5
 
 
 def make_batch(
@@ -43,127 +52,203 @@ def make_batch(
     *,
     result: Result | None = None,
     fixed: Mapping[int, float] | None = None,
+    rework: Mapping[int, float] | None = None,
+    mixer_id: int | None = None,
+    previous_feed: str | None = None,
+    clean_out: CleanOut | None = None,
     time_limit_s: float = SEARCH_S,
+    makers: Makers | None = None,
 ) -> Batch:
     """The equal whole batches of an order: the best in whole steps of the scales (see optimise.steps.search).
 
     result: the answer to weigh, worked out here unless given. fixed: kg of one batch by ingredient identifier, set by
-    a person; the rest is solved around them. Where there is no answer, no split, no scale or no batch in whole steps,
-    the batch has no lines and `cause` says why. Raises Refused for an order that is no mass, and for fixed lines that
-    no scale shows, that the mix does not hold, or that keep the batch from its total.
+    a person; the rest is solved around them. rework: percent of the batch by ingredient identifier, see batch_mix.
+    mixer_id: the mixer to use, else the smallest that takes the batch. previous_feed: what went through it before, as a
+    person says it, else by its last sheet. clean_out: what is done to the mixer before. makers: of the whole mill,
+    where the library is a part of it.
+
+    Where there is no answer, no split, no scale, nothing in place of an opened ingredient, no batch in whole steps, or
+    the whole of it may not be fed, the batch has no lines and `cause` says why. Raises Refused for an order that is no
+    mass, rework that is no share, a mixer of another site, and for fixed lines that no scale shows, that the mix does
+    not hold, or that keep the batch from its total.
     """
+    began = time.perf_counter()
     if not (math.isfinite(order_kg) and order_kg > 0):
-        raise Refused(_("An order must be above 0 kg; {mass} is not.").format(mass=f"{order_kg:g}"))
+        raise Refused(_("An order must be above 0 kg; {mass} is not.").format(mass=notation().write_short(order_kg)))
+    mixers = mixers_for(library, mixer_id)
     composition = composition or Composition(library)
     answer = result or formulate(library, formula_id, on, composition)
+    makers = makers or Makers(library, answer.on, composition)
     formula = library.formula(formula_id)
-    state = standing(library, formula_id, answer.on, result=answer if answer.has_answer else None)
-    empty = Batch(
-        formula_id=formula_id, formula=formula.name, version=state.text, draft=state.draft,
-        approved_by=state.approved_by,
-        mill=library.mill.name, currency=library.mill.currency, made=on, order_kg=order_kg, batches=1,
-        batch_kg=order_kg, lines=(), limits=answer.limits, nutrients=(), broken=(), cautions=answer.cautions,
-    )
-    if not answer.has_answer:
-        text = _("{formula} has no answer: {cause}")
-        return replace(empty, cause=text.format(formula=formula.name, cause=answer.cause or answer.status))
-    if answer.status is Status.STOPPED:
-        text = _("The answer to {formula} was stopped before it was proven; it is not made as if it were the answer.")
-        return replace(empty, cause=text.format(formula=formula.name))
-    split = split_order(library.mixers, order_kg)
+    empty = _empty(library, formula, answer, on, order_kg, clean_out)
+    if answer.has_answer and answer.status is not Status.STOPPED and answer.mix:
+        try:
+            mix = batch_mix(makers, {i.ingredient_id: i.amount or 0.0 for i in answer.mix}, rework)
+        except CannotBeMade as unknown:
+            return replace(empty, cause=str(unknown))
+    else:
+        return replace(empty, cause=_no_mix(formula, answer))
+    split = split_order(mixers, order_kg)
     if split is None:
-        return replace(empty, cause=_no_split(library.mixers, order_kg))
+        return replace(empty, cause=no_split(mixers, order_kg))
     empty = replace(empty, batches=split, batch_kg=order_kg / split)
-    used = answer.mix
-    if not used:
-        return replace(empty, cause=_("{formula} is a mix of nothing; there is nothing to weigh.").format(
-            formula=formula.name
-        ))
-    unscaled = [library.ingredient(i.ingredient_id) for i in used if _scale(library, i.ingredient_id) is None]
-    if library.scales and unscaled:
-        return replace(empty, cause=_proposal(library, unscaled))
-    least_kg, greatest_kg = _held(library.mixers, empty.batch_kg)
+    unscaled = _unscaled(library, mix)
+    if unscaled is not None:
+        return replace(empty, cause=unscaled)
+    built = build(
+        library, formula, answer.on, composition, contents=None if mix.is_plain else mix.contents
+    )
+    least_kg, greatest_kg = totals_held(mixers, empty.batch_kg)
+    left_s = max(time_limit_s - (time.perf_counter() - began), min(time_limit_s, _LEAST_SEARCH_S))
     try:
         weighing = weigh(
-            library, build(library, formula, answer.on, composition),
-            {i.ingredient_id: i.amount or 0.0 for i in used}, empty.batch_kg,
-            fixed=fixed, least_kg=least_kg, greatest_kg=greatest_kg, time_limit_s=time_limit_s,
+            library, built, mix.contents.amounts, empty.batch_kg,
+            fixed=fixed, least_kg=least_kg, greatest_kg=greatest_kg, time_limit_s=left_s,
         )
     except FixedRefused as refused:
         raise Refused([Problem(text, Place(record=formula.name)) for text in refused.sentences]) from refused
     except NotWeighable as none:
         return replace(empty, cause=str(none))
-    mix = [(line.ingredient.id, line.target_kg) for line in weighing.lines if line.target_kg > 0]
-    forbidden = cautions.forbidden_in_mix(formula, library, mix)
-    if forbidden is not None:
-        return replace(empty, cause=forbidden)
+    mixer = mixer_taking(mixers, empty.batch_kg, sum(line.target_kg for line in weighing.lines))
+    if mixer is not None:
+        empty = replace(empty, mixer=mixer.name, mixer_id=mixer.id, site=empty.site or _site(library, mixer.site_id))
+    empty = _before(empty, formula, makers, mix, previous_feed)
+    try:
+        return _whole(empty, library, built, makers, mix, weighing, answer)
+    except CannotBeMade as cycle:
+        return replace(empty, cause=str(cycle))
+
+
+def _empty(
+    library: Library, formula: Formula, answer: Result, on: datetime.date, order_kg: float,
+    clean_out: CleanOut | None,
+) -> Batch:
+    """A batch of a formula in which nothing is weighed yet."""
+    state = standing(library, formula.id, answer.on, result=answer if answer.has_answer else None)
+    mill = library.mill
+    return Batch(
+        formula_id=formula.id, formula=formula.name, version=state.text, draft=state.draft,
+        approved_by=state.approved_by, mill=mill.name, currency=mill.currency, made=on, order_kg=order_kg, batches=1,
+        batch_kg=order_kg, lines=(), limits=answer.limits, nutrients=(), broken=(),
+        cautions=(*answer.cautions, *state.altered), animal="" if formula.animal is None else str(formula.animal),
+        stage=formula.stage, site=_site(library, mill.site_id), clean_out=clean_out,
+        steps=tuple(Step(step.text, step.minutes, step.setting) for step in library.steps_of(formula.id)),
+        loss_percent=formula.loss_percent, product_dry_matter_percent=formula.product_dry_matter_percent,
+        mass_unit=mill.sheet_mass, paper=mill.paper,
+    )
+
+
+def _site(library: Library, site_id: int | None) -> str:
+    site = None if site_id is None else library.records["site"].get(site_id)
+    return "" if site is None else str(site.name)
+
+
+def _no_mix(formula: Formula, answer: Result) -> str:
+    """Why an answer cannot be weighed."""
+    if not answer.has_answer:
+        text = _("{formula} has no answer: {cause}")
+        return text.format(formula=formula.name, cause=answer.cause or answer.status)
+    if answer.status is Status.STOPPED:
+        text = _("The answer to {formula} was stopped before it was proven; it is not made as if it were the answer.")
+        return text.format(formula=formula.name)
+    return _("{formula} is a mix of nothing; there is nothing to weigh.").format(formula=formula.name)
+
+
+def _unscaled(library: Library, mix: BatchMix) -> str | None:
+    """The question where an ingredient has no scale, with a proposal; None where each has one, or the mill has none."""
+    every = library.records["scale"]
+    if not every:
+        return None
+    usable = [scale for scale in library.scales if not scale.by_volume and (scale.step_kg or 0.0) > 0]
+    lacking: list[Ingredient] = [
+        one for one in map(library.ingredient, mix.contents.amounts) if one.scale_id not in every
+    ]
+    names = ", ".join(one.name for one in lacking)
+    if not library.scales:
+        text = _("No scale stands at {site}; enter one there, or one of no site.")
+        return text.format(site=_site(library, library.mill.site_id))
+    if not lacking:
+        return None
+    if not usable:
+        return _("No scale weighs {ingredients}. Enter one with a step in kg, and choose it under Scale.").format(
+            ingredients=names
+        )
+    finest = min(usable, key=lambda scale: scale.step_kg or 0.0)
+    text = _("No scale weighs {ingredients}. Enter one under Scale, for example {scale} in steps of {step} kg.")
+    return text.format(ingredients=names, scale=finest.name, step=notation().write_short(finest.step_kg))
+
+
+def _before(batch: Batch, formula: Formula, makers: Makers, mix: BatchMix, said: str | None) -> Batch:
+    """The batch with what went through its mixer before. said: by a person, who does not thereby clean it."""
+    before = previous_sheet(makers.library, batch.mixer_id)
+    known = "" if before is None else feed_text(before)
     return replace(
-        empty,
-        lines=tuple(sorted(map(_line, weighing.lines), key=_order)),
+        batch,
+        previous_feed=known if said is None else said.strip(),
+        previous_number=before.number if said is None and before is not None else None,
+        clean_out_reason=clean_out_reason(makers, formula, mix.contents.amounts.keys(), before),
+    )
+
+
+def _whole(
+    batch: Batch, library: Library, built: FormulaProgram, makers: Makers, mix: BatchMix, weighing: Weighing,
+    answer: Result,
+) -> Batch:
+    """The batch as weighed, or why it may not be fed."""
+    formula = built.formula
+    weighed = {line.ingredient.id: line.target_kg for line in weighing.lines if line.target_kg > 0}
+    against = batch_cautions.forbidden(formula, library, makers, weighed)
+    if against is not None:
+        return replace(batch, cause=against)
+    made = {
+        key: kg * (1.0 - mix.rework.get(key, 0.0)) * batch.batches
+        for key, kg in weighed.items() if makers.formula_of(key) is not None
+    }
+    to_make, open_questions = makers.to_make({key: kg for key, kg in made.items() if kg > 1e-9})
+    said = batch_cautions.warnings(library, built, makers, mix, weighed, answer.unknown)
+    altered = batch.cautions[len(answer.cautions):]
+    done = replace(
+        batch,
+        lines=tuple(sorted((_line(library, mix, line) for line in weighing.lines), key=_order)),
         limits=weighing.limits,
         nutrients=weighing.nutrients,
         broken=weighing.broken,
-        cautions=(*cautions.warnings(formula, library, mix, answer.unknown), *weighing.notes, *state.altered),
+        cautions=(*said, *weighing.notes, *open_questions, *altered),
         unproven=weighing.unproven,
         gap=weighing.gap,
+        to_make=tuple(to_make),
     )
+    return _with_yield(done, weighing)
 
 
-def split_order(mixers: list[Mixer], order_kg: float) -> int | None:
-    """How many equal batches an order becomes: the fewest that one mixer can hold and fill; None if none can."""
-    if not mixers:
-        return 1
-    found = []
-    for mixer in mixers:
-        count = 1 if mixer.greatest_kg is None else max(1, math.ceil(order_kg / mixer.greatest_kg - 1e-9))
-        if order_kg / count >= (mixer.least_kg or 0.0) - 1e-9:
-            found.append(count)
-    return min(found, default=None)
+def _with_yield(batch: Batch, weighing: Weighing) -> Batch:
+    weighed = [(line.ingredient, line.target_kg) for line in weighing.lines if line.target_kg]
+    left = yields.part_left(
+        batch.loss_percent, yields.dry_matter_percent(weighed), batch.product_dry_matter_percent
+    )
+    if left is not None:
+        return replace(batch, yield_kg=round(batch.total_kg * left, 9))
+    text = _("The dry matter of {ingredients} is not known; enter it, and the yield is worked out.")
+    return replace(batch, yield_unknown=text.format(ingredients=", ".join(yields.without_dry_matter(weighed))))
 
 
-def _held(mixers: list[Mixer], batch_kg: float) -> tuple[float | None, float | None]:
-    """Between which totals a batch of this mass stays in the mixers that take it; None where nothing bounds it."""
-    taking = [
-        m for m in mixers
-        if (m.least_kg or 0.0) <= batch_kg + 1e-9 and (m.greatest_kg is None or batch_kg <= m.greatest_kg + 1e-9)
-    ]
-    least = min((m.least_kg or 0.0 for m in taking), default=0.0)
-    open_end = not taking or any(m.greatest_kg is None for m in taking)
-    return least or None, None if open_end else max(m.greatest_kg or 0.0 for m in taking)
-
-
-def _no_split(mixers: list[Mixer], order_kg: float) -> str:
-    text = _("No equal batches of {order} kg fit a mixer: {mixers}. Order more, or less.")
-    span = _("{name} holds {least} to {greatest} kg")
-    said = [
-        span.format(
-            name=m.name, least=f"{m.least_kg or 0:g}",
-            greatest=_("any") if m.greatest_kg is None else f"{m.greatest_kg:g}",
-        )
-        for m in mixers
-    ]
-    return text.format(order=f"{order_kg:g}", mixers="; ".join(said))
-
-
-def _scale(library: Library, ingredient_id: int) -> Scale | None:
-    scale_id = library.ingredient(ingredient_id).scale_id
-    return None if scale_id is None else library.records["scale"].get(scale_id)
-
-
-def _proposal(library: Library, unscaled: list[Ingredient]) -> str:
-    finest = min(library.scales, key=lambda scale: scale.step_kg or 0.0)
-    text = _("No scale weighs {ingredients}. Enter one under Scale, for example {scale} in steps of {step} kg.")
-    names = ", ".join(i.name for i in unscaled)
-    return text.format(ingredients=names, scale=finest.name, step=f"{finest.step_kg:g}")
-
-
-def _line(line: WeighedLine) -> BatchLine:
+def _line(library: Library, mix: BatchMix, line: WeighedLine) -> BatchLine:
     ingredient, scale = line.ingredient, line.scale
     return BatchLine(
-        ingredient.id, ingredient.name, "" if scale is None else scale.name, line.step_kg, line.share_kg,
-        line.target_kg, scale is not None and scale.hand_add, ingredient.drug, ingredient.drug_level,
-        ingredient.drug_species, ingredient.withdrawal, line.tolerance_kg, line.fixed,
+        ingredient_id=ingredient.id, ingredient=ingredient.name, scale="" if scale is None else scale.name,
+        step_kg=line.step_kg, share_kg=line.share_kg, target_kg=line.target_kg,
+        hand_add=scale is not None and scale.hand_add, drug=ingredient.drug, drug_level=ingredient.drug_level,
+        drug_species=ingredient.drug_species, withdrawal=ingredient.withdrawal, tolerance_kg=line.tolerance_kg,
+        fixed=line.fixed, bins=tuple(_place(library, one) for one in library.bins_of(ingredient.id)),
+        step_l=None if scale is None else scale.step_l, target_l=line.target_l, rework=ingredient.id in mix.rework,
+        of_opened=mix.of_opened.get(ingredient.id, ()),
     )
+
+
+def _place(library: Library, place: Bin) -> str:
+    """A bin, with the lot in it where one is known."""
+    lot = None if place.lot_id is None else library.records["lot"].get(place.lot_id)
+    return place.name if lot is None else _("{bin}, lot {lot}").format(bin=place.name, lot=lot.name)
 
 
 def _order(line: BatchLine) -> tuple[bool, float, str, float, str]:
@@ -174,32 +259,63 @@ def _order(line: BatchLine) -> tuple[bool, float, str, float, str]:
 # -- printing
 
 
-def print_sheet(mill: Mill, batch: Batch, path: Path, *, reason: str = "", by: str = "", paper: str = "A4") -> Batch:
+def print_sheet(mill: Mill, batch: Batch, path: Path, *, reason: str = "", by: str = "", paper: str = "") -> Batch:
     """Give a batch the next number and write its sheet; the number and the record are stored with it or not at all.
 
-    reason, by: why and by whom broken limits are accepted; both or neither. The file is written before the number is
-    stored and takes its place only after, so that no sheet carries a number that the mill does not know.
-    Raises Refused for a batch without lines, or half an acceptance.
+    reason, by: why and by whom broken limits, and a mixer that is not cleaned out, are accepted; both or neither.
+    paper: "" is the batch's own. The file is written before the number is stored and takes its place only after, so
+    that no sheet carries a number that the mill does not know. Raises Refused for a batch without lines, half an
+    acceptance, a mixer that must be cleaned out where nobody says how, or why not, and for one through which
+    something harmful went since the batch was made.
     """
     if batch.cause is not None:
         raise Refused(batch.cause)
     if bool(reason.strip()) != bool(by.strip()):
         raise Refused(_("Accepting broken limits needs both a reason and a name."))
+    batch = _as_it_stands(mill, batch)
+    if batch.lacks_clean_out and not reason.strip():
+        raise Refused(clean_out_question(batch))
     number = mill.store.next_batch_number()
-    printed = replace(batch, number=number, accepted_reason=reason.strip(), accepted_by=by.strip())
-    with sheets.unfinished(path, sheets.batch_pdf(printed, paper)) as finish:
+    printed = replace(
+        batch, number=number, accepted_reason=reason.strip(), accepted_by=by.strip(), paper=paper or batch.paper
+    )
+    with sheets.unfinished(path, sheets.batch_pdf(printed)) as finish:
         record = PrintedBatch(
             mill.new_id("batch"), number, batch.formula_id, batch.version, batch.order_kg,
             datetime.datetime.now(datetime.UTC), mill.who, printed.accepted_reason, printed.accepted_by,
             json.dumps(sheets.batch_to_plain(printed), ensure_ascii=False, allow_nan=False),
+            mixer_id=batch.mixer_id if batch.mixer_id in mill.library.records["mixer"] else None,
         )
         mill.record(_("Print batch sheet {number}").format(number=number), [added(record)])
         finish()
     return printed
 
 
-def print_copy(mill: Mill, batch_record_id: int, path: Path, *, paper: str = "A4") -> Batch:
-    """Write the sheet of a printed batch again, digit for digit, marked COPY with its count."""
+def clean_out_question(batch: Batch) -> str:
+    """What a batch that lacks a clean-out asks for."""
+    text = _("{reason} Choose physical, flush or sequence, or say why none is needed, and who says so.")
+    return text.format(reason=batch.clean_out_reason)
+
+
+def _as_it_stands(mill: Mill, batch: Batch) -> Batch:
+    """The batch with what went through its mixer by now. Raises Refused where that asks for another clean-out."""
+    formula = mill.library.records["formula"].get(batch.formula_id)
+    if formula is None:
+        return batch
+    before = previous_sheet(mill.library, batch.mixer_id)
+    makers = Makers(mill.library, batch.made, mill.composition)
+    reason = clean_out_reason(makers, formula, [line.ingredient_id for line in batch.lines], before)
+    if reason and reason != batch.clean_out_reason:
+        text = _("Since this batch was made, another went through its mixer. {reason} Make the batch again.")
+        raise Refused(text.format(reason=reason))
+    batch = replace(batch, clean_out_reason=reason)
+    if before is not None and (batch.previous_number is not None or not batch.previous_feed):
+        batch = replace(batch, previous_feed=feed_text(before), previous_number=before.number)
+    return batch
+
+
+def print_copy(mill: Mill, batch_record_id: int, path: Path, *, paper: str = "") -> Batch:
+    """Write the sheet of a printed batch again, digit for digit, marked COPY with its count. paper: "" is its own."""
     record: PrintedBatch = mill.library.records["batch"][batch_record_id]
     copies = record.copies + 1
     batch = replace(sheets.batch_from_plain(json.loads(record.sheet)), copy=copies)

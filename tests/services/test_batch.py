@@ -19,8 +19,9 @@ from blendapp.domain.plant import Mixer, Scale
 from blendapp.domain.problems import Refused
 from blendapp.domain.records import Change
 from blendapp.optimise.build.batch import broken_by
-from blendapp.services.batch import make_batch, split_order, usual_batch_kg
+from blendapp.services.batch import make_batch, usual_batch_kg
 from blendapp.services.formulate import formulate
+from blendapp.services.order_split import split_order
 from tests.mills import TODAY, Maker
 from tests.outside import plain_feed
 

@@ -30,17 +30,18 @@ def limits_of(
     known not to hold, exactly; none of them is shown at its bound.
     """
     values: list[float | None] = [None] * len(built.limits)
-    program = built.program
+    program, counted = built.program, built.as_counted(x)
     for row in program.rows:
         if row.limit is not None:
             values[row.limit] = _quotient(row.numerator, row.divisor, x)
     for bound in program.bounds:
-        values[bound.limit] = float(x[bound.column])
+        values[bound.limit] = float(counted[bound.column])
     for count in program.counts:
-        values[count.limit] = float(sum(x[j] > 0 for j in count.columns))
+        values[count.limit] = float(sum(counted[j] > 0 for j in count.columns))
     for index, limit in enumerate(built.limits):
         if limit.kind is LimitKind.PRACTICAL:
-            values[index] = float(sum(x[j] for j, i in enumerate(built.ingredients) if i.id == limit.subject.ids[0]))
+            subject = limit.subject.ids[0]
+            values[index] = float(sum(counted[j] for j, i in enumerate(built.ingredients) if i.id == subject))
     return tuple(
         _placed(limit_result(index, shown), value, shown.factor, index in broken)
         for index, (shown, value) in enumerate(zip(built.shown, values, strict=True))

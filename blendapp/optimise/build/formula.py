@@ -15,6 +15,7 @@ from blendapp.domain.library import Library
 from blendapp.domain.nutrients import DRY_MATTER, MOISTURE
 from blendapp.domain.results import UnknownValue
 from blendapp.optimise.build.composition import Composition, Shown
+from blendapp.optimise.build.contents import Contents
 from blendapp.optimise.program import Array, Bound, Count, Program, Row
 
 
@@ -25,7 +26,7 @@ class FormulaProgram:
     ingredients: one per column; price_per_t: shape (n,), NaN for an ingredient without a price (only in a program
     built with the unpriced ones). shown: what is displayed of each limit. factors: for each limit, displayed bound
     times factor is the bound in the program. composition: shape (n, nutrients), as fed in base units, NaN unknown;
-    dry: shape (n,), NaN unknown.
+    dry: shape (n,), NaN unknown. counted: see contents.Contents.matrix; None but in the program of a batch.
     """
 
     program: Program
@@ -39,6 +40,11 @@ class FormulaProgram:
     dry: Array
     columns: dict[int, int]
     unpriced: tuple[Ingredient, ...]
+    counted: Array | None = None
+
+    def as_counted(self, x: Array) -> Array:
+        """The amounts as limits on ingredients count them. x: shape (n,), as weighed."""
+        return x if self.counted is None else self.counted @ x
 
 
 def build(
@@ -48,30 +54,37 @@ def build(
     composition: Composition | None = None,
     site_id: int | None = None,
     with_unpriced: bool = False,
+    contents: Contents | None = None,
 ) -> FormulaProgram:
     """The program of a formula at the prices of a day: cost in money per tonne of a blend, or per day of a ration.
 
     Columns are the admitted ingredients in the order of identifiers, those without a price left out unless
-    with_unpriced, where they cost nothing.
+    with_unpriced, where they cost nothing. contents: what a batch of it holds; each of its ingredients has a column
+    too, admitted or not, priced or not.
     """
     composition = composition or Composition(library)
     admitted = library.admitted(formula)
+    also = set() if contents is None else contents.ids
+    lacking = also - {i.id for i in admitted}
+    if lacking:
+        admitted = sorted([*admitted, *map(library.ingredient, lacking)], key=lambda ingredient: ingredient.id)
     prices = [library.price_per_t(i.id, on, site_id) for i in admitted]
     unpriced = tuple(i for i, price in zip(admitted, prices, strict=True) if price is None)
-    taken = [(i, p) for i, p in zip(admitted, prices, strict=True) if with_unpriced or p is not None]
+    taken = [(i, p) for i, p in zip(admitted, prices, strict=True) if with_unpriced or p is not None or i.id in also]
     ingredients = tuple(i for i, _price in taken)
     price_per_t = np.array([np.nan if p is None else p for _i, p in taken], dtype=float)
     blend = formula.amounts is Amounts.BLEND
     cost = np.nan_to_num(price_per_t) * (1.0 if blend else 1e-3)
     limits = tuple(library.limits(formula.id))
-    kept = composition.built.get(formula.id)
+    kept = None if contents is not None else composition.built.get(formula.id)
     if kept is not None and kept.formula == formula and kept.ingredients == ingredients and kept.limits == limits:
         return replace(kept, program=replace(kept.program, cost=cost), price_per_t=price_per_t, unpriced=unpriced)
     dry = np.array([np.nan if (d := i.dry_matter_fraction) is None else d for i in ingredients], dtype=float)
     matrix = composition.matrix(library, ingredients)
     shown = tuple(composition.shown(library, formula, limit) for limit in limits)
     factors = tuple(one.factor for one in shown)
-    maker = _Maker(library, formula, ingredients, np.nan_to_num(matrix), dry, composition.columns)
+    counted = None if contents is None else contents.matrix(ingredients)
+    maker = _Maker(library, formula, ingredients, np.nan_to_num(matrix), dry, composition.columns, counted)
     maker.take(limits, factors)
     n = len(ingredients)
     balance = [Row(np.ones(n), 1.0, 1.0)] if blend else []
@@ -86,9 +99,12 @@ def build(
         counts=tuple(maker.counts),
         names=tuple(i.name for i in ingredients),
     )
-    built = composition.built[formula.id] = FormulaProgram(
-        program, formula, ingredients, price_per_t, limits, shown, factors, matrix, dry, composition.columns, unpriced
+    built = FormulaProgram(
+        program, formula, ingredients, price_per_t, limits, shown, factors, matrix, dry, composition.columns, unpriced,
+        counted,
     )
+    if contents is None:
+        composition.built[formula.id] = built
     return built
 
 
@@ -97,10 +113,10 @@ class _Maker:
 
     def __init__(
         self, library: Library, formula: Formula, ingredients: Sequence[Ingredient], matrix: Array, dry: Array,
-        columns: dict[int, int],
+        columns: dict[int, int], counted: Array | None = None,
     ) -> None:
         self.library, self.blend = library, formula.amounts is Amounts.BLEND
-        self.matrix, self.columns = matrix, columns
+        self.matrix, self.columns, self.counted = matrix, columns, counted
         self.dry, self.moisture = np.nan_to_num(dry), np.nan_to_num(1 - dry)
         self.at = {ingredient.id: position for position, ingredient in enumerate(ingredients)}
         self.ones = np.ones(len(ingredients))
@@ -136,11 +152,18 @@ class _Maker:
     def _inclusion(self, index: int, limit: Limit, factor: float) -> None:
         if limit.unit == units.SHARE_OF_DRY_MATTER:
             self._row(index, limit, factor, self._vector(limit.subject) * self.dry, self.dry)
-        elif limit.kind is LimitKind.INGREDIENT and limit.subject.ids[0] in self.at:
+        elif limit.kind is LimitKind.INGREDIENT and self._is_column(limit.subject.ids[0]):
             column = self.at[limit.subject.ids[0]]
             self.bounds.append(Bound(column, _times(limit.minimum, factor), _times(limit.maximum, factor), index))
         else:
             self._row(index, limit, factor, self._vector(limit.subject), None)
+
+    def _is_column(self, ingredient_id: int) -> bool:
+        """Whether the amount of an ingredient, as limits count it, is that of one column."""
+        if ingredient_id not in self.at:
+            return False
+        column = self.at[ingredient_id]
+        return self.counted is None or bool((self.counted[column] == np.eye(1, len(self.ones), column)[0]).all())
 
     def _ratio(self, index: int, limit: Limit, factor: float) -> None:
         assert limit.per is not None
@@ -160,7 +183,7 @@ class _Maker:
         self.rows.append(Row(numerator, _times(limit.minimum, factor), _times(limit.maximum, factor), divisor, index))
 
     def _vector(self, subject: Subject) -> Array:
-        """Per kg of each ingredient as fed: a nutrient in its base unit, or 1 for the members of a group."""
+        """Per kg of each ingredient as fed: a nutrient in its base unit, or the part that counts as of a group."""
         if subject.kind is SubjectKind.NUTRIENT:
             return self.matrix[:, self.columns[subject.ids[0]]]
         if subject.kind is SubjectKind.DRY_MATTER:
@@ -171,7 +194,7 @@ class _Maker:
         for member in self.library.members(subject):
             if member.id in self.at:
                 vector[self.at[member.id]] = 1.0
-        return vector
+        return vector if self.counted is None else vector @ self.counted
 
 
 def _times(bound: float | None, factor: float) -> float | None:

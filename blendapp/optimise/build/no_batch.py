@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 
 from blendapp.domain.formulas import Formula
 from blendapp.domain.ingredients import Ingredient
@@ -16,18 +16,36 @@ from blendapp.optimise.steps.search import NoBatch
 
 
 def not_fixable(
-    library: Library, formula: Formula, fixed: Mapping[int, float], shares: Mapping[int, float]
+    library: Library, formula: Formula, fixed: Mapping[int, float], shares: Mapping[int, float],
+    opened: Collection[int] = (),
 ) -> list[str]:
-    """One sentence for each fixed ingredient that the mix does not hold, and for each mass that is no number."""
+    """One sentence for each fixed ingredient that is no line of the batch, and for each mass that is no number.
+
+    opened: identifiers of the ingredients in whose place others are weighed.
+    """
     found = []
     for key, mass in fixed.items():
         name = library.ingredient(key).name
-        if key not in shares:
+        if key not in shares and key in opened:
+            text = _("{ingredient} is opened into what it is made of; fix those lines instead.")
+            found.append(text.format(ingredient=name))
+        elif key not in shares:
             text = _("{ingredient} is not in the mix of {formula}; only lines of the batch can be fixed.")
             found.append(text.format(ingredient=name, formula=formula.name))
         elif not math.isfinite(mass):
             text = _("{ingredient} is fixed at a mass without end; enter kilograms.")
             found.append(text.format(ingredient=name))
+    return found
+
+
+def without_density(library: Library, ingredients: Sequence[Ingredient]) -> list[str]:
+    """One sentence for each ingredient that a liquid meter doses and whose density is not known."""
+    text = _("{meter} doses {ingredient} in litres; enter Density kg/l of {ingredient}, or give it a scale in kg.")
+    found = []
+    for ingredient in ingredients:
+        own: Scale | None = None if ingredient.scale_id is None else library.records["scale"].get(ingredient.scale_id)
+        if own is not None and own.by_volume and own in library.scales and not (ingredient.density_kg_per_l or 0) > 0:
+            found.append(text.format(meter=own.name, ingredient=ingredient.name))
     return found
 
 
@@ -65,9 +83,18 @@ def _whole(order: Order, reason: Reason, ingredients: Sequence[Ingredient]) -> s
 def _line(order: Order, reason: Reason, ingredient: Ingredient, scales: Sequence[Scale | None]) -> str:
     line = order.lines[reason.line or 0]
     if reason.why == "step":
-        wrong = [scale for scale in scales if scale is not None and not (scale.step_kg or 0.0) > 0]
-        text = _("The scale {scale} has a step of {step} kg; enter a step above 0.")
-        return text.format(scale=wrong[0].name, step=notation().write_short(wrong[0].step_kg))
+        wrong = next(
+            scale for scale, load in zip(scales, line.loads, strict=True) if scale is not None and not load.step_kg > 0
+        )
+        if wrong.step_l is not None:
+            text = _("The meter {scale} has a step of {step} l; enter a step above 0.")
+        elif wrong.step_kg is not None:
+            text = _("The scale {scale} has a step of {step} kg; enter a step above 0.")
+        else:
+            return _("The scale {scale} has no step; enter Step kg, or Step l for a liquid meter.").format(
+                scale=wrong.name
+            )
+        return text.format(scale=wrong.name, step=notation().write_short(wrong.step_l or wrong.step_kg or 0.0))
     if reason.why.startswith("fixed"):
         return _fixed(reason, line, ingredient, scales)
     return _unweighable(order, reason, line, ingredient, scales)

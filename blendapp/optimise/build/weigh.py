@@ -9,7 +9,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from blendapp.domain.formulas import Amounts, LimitKind
-from blendapp.domain.ingredients import Ingredient, Tag
+from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
 from blendapp.domain.notation import notation
 from blendapp.domain.plant import Scale
@@ -19,7 +19,7 @@ from blendapp.optimise.build import no_batch
 from blendapp.optimise.build.batch import broken_by, weighed
 from blendapp.optimise.build.formula import FormulaProgram
 from blendapp.optimise.program import Row
-from blendapp.optimise.steps.problem import LeastIfUsed, Line, Load, Order
+from blendapp.optimise.steps.problem import LeastIfUsed, Line, Load, Order, exact
 from blendapp.optimise.steps.search import NoBatch, WholeBatch, whole_batch
 
 # The step of every line in a mill that has entered no scales.
@@ -32,7 +32,8 @@ _DUST = 1e-9
 
 @dataclass(frozen=True)
 class WeighedLine:
-    """scale: None in a mill without scales. tolerance_kg: how far target_kg may lie from share_kg."""
+    """scale: None in a mill without scales. tolerance_kg: how far target_kg may lie from share_kg. target_l: of a line
+    that a liquid meter doses, a multiple of its step_l; target_kg is that times the density."""
 
     ingredient: Ingredient
     scale: Scale | None
@@ -41,6 +42,7 @@ class WeighedLine:
     target_kg: float
     tolerance_kg: float
     fixed: bool
+    target_l: float | None = None
 
 
 @dataclass(frozen=True)
@@ -86,16 +88,19 @@ def weigh(
 ) -> Weighing:
     """The best whole batch of a mix.
 
-    amounts: of the mix by ingredient identifier, fractions or kg per day, in the order in which lines are wanted.
-    fixed: kg by ingredient identifier. least_kg, greatest_kg: what the mixer holds. Every ingredient has a scale,
-    or the mill has none. Raises FixedRefused, NotWeighable.
+    built: the program of the formula, with the contents of the batch where that is more than its mix. amounts: of what
+    is weighed by ingredient identifier, fractions or kg per day, in the order in which lines are wanted. fixed: kg by
+    ingredient identifier. least_kg, greatest_kg: what the mixer holds. Raises FixedRefused, NotWeighable.
     """
     total = math.fsum(amounts.values())
     shares = {key: amount / total * batch_kg for key, amount in amounts.items() if amount > _DUST * total}
     asked = fixed or {}
     ingredients = [library.ingredient(key) for key in shares]
-    faults = no_batch.not_fixable(library, built.formula, asked, shares)
-    fixed = {key: mass for key, mass in asked.items() if key in shares and math.isfinite(mass)}
+    lacking = no_batch.without_density(library, ingredients)
+    if lacking:
+        raise NotWeighable(" ".join(lacking))
+    faults = no_batch.not_fixable(library, built.formula, asked, shares, _opened(built))
+    fixed = {key: _as_dosed(library, key, mass) for key, mass in asked.items() if key in shares and math.isfinite(mass)}
     scales = [scales_for(library, ingredient) for ingredient in ingredients]
     order = _order(library, built, ingredients, scales, shares, batch_kg, total, fixed, (least_kg, greatest_kg))
     found = whole_batch(order, time_limit_s)
@@ -104,34 +109,61 @@ def weigh(
         of_fixed = [text for reason, text in sentences if reason.why.startswith("fixed")]
         if faults or of_fixed:
             raise FixedRefused(faults + of_fixed)
-        raise NotWeighable(" ".join(text for _reason, text in sentences))
+        # A scale whose step is at fault is so for every line that might stand on it.
+        raise NotWeighable(" ".join(dict.fromkeys(text for _reason, text in sentences)))
     if faults:
         raise FixedRefused(faults)
     return _result(library, built, ingredients, scales, found, total)
+
+
+def _opened(built: FormulaProgram) -> set[int]:
+    """Identifiers of the ingredients in whose place others are weighed."""
+    if built.counted is None:
+        return set()
+    others = built.counted - np.diag(np.diag(built.counted))
+    return {ingredient.id for ingredient, row in zip(built.ingredients, others, strict=True) if row.any()}
 
 
 def tolerance_of(scale: Scale | None, ingredient: Ingredient) -> float:
     """The fraction of its share by which a line may differ."""
     if scale is not None and scale.tolerance_percent is not None:
         return scale.tolerance_percent / 100
-    close = is_medicated(ingredient) or (scale is not None and scale.hand_add)
+    close = ingredient.medicated or (scale is not None and scale.hand_add)
     return CLOSE_TOLERANCE if close else USUAL_TOLERANCE
 
 
-def is_medicated(ingredient: Ingredient) -> bool:
-    return Tag.MEDICATED in ingredient.tags or bool(ingredient.drug.strip())
-
-
 def scales_for(library: Library, ingredient: Ingredient) -> list[Scale | None]:
-    """The scales that may weigh an ingredient, its own first, then the coarsest; hand-adds last, but first for what
-    is a hand-add itself. [None] in a mill without scales."""
-    if not library.scales:
+    """The scales that may weigh an ingredient where the mill works, its own first, then the coarsest.
+
+    Hand-adds come last, but first for what is a hand-add itself. A liquid meter doses only what is assigned to it.
+    [None] in a mill without scales.
+    """
+    here = library.scales
+    if not here:
         return [None]
     own: Scale | None = None if ingredient.scale_id is None else library.records["scale"].get(ingredient.scale_id)
     by_hand = own is not None and own.hand_add
-    others = [scale for scale in library.scales if own is None or scale.id != own.id]
+    others = [scale for scale in here if not scale.by_volume and (own is None or scale.id != own.id)]
     others.sort(key=lambda scale: (scale.hand_add != by_hand, -(scale.step_kg or 0.0), scale.id))
-    return [*others] if own is None else [own, *others]
+    return [own, *others] if own is not None and own in here else [*others]
+
+
+# How far, in kg, a fixed mass of a metered line may lie from whole steps of litres: it is read from a sheet in grams.
+_READ_KG = 0.0005
+
+
+def _as_dosed(library: Library, ingredient_id: int, mass_kg: float) -> float:
+    """A fixed mass, brought to the whole steps of litres that it was read from where a meter doses it."""
+    ingredient = library.ingredient(ingredient_id)
+    own = next(iter(scales_for(library, ingredient)))
+    if own is None or not own.by_volume:
+        return mass_kg
+    span = own.span(ingredient.density_kg_per_l)
+    if span is None or not span.step_kg > 0:
+        return mass_kg
+    step = exact(span.step_kg)
+    dosed = float(round(exact(mass_kg) / step) * step)
+    return dosed if abs(dosed - mass_kg) <= _READ_KG * (1 + 1e-9) else mass_kg
 
 
 def _order(
@@ -146,9 +178,9 @@ def _order(
         Line(
             shares[ingredient.id],
             tuple(_load(scale, ingredient) for scale in tried),
-            float(built.price_per_t[j]) / 1000,
+            float(np.nan_to_num(built.price_per_t[j])) / 1000,
             fixed.get(ingredient.id),
-            is_medicated(ingredient),
+            ingredient.medicated,
         )
         for ingredient, tried, j in zip(ingredients, scales, columns, strict=True)
     )
@@ -163,11 +195,19 @@ def _order(
         if bound.column in place:
             unit[place[bound.column]] = 1.0
         rows.append(Row(unit, bound.minimum, bound.maximum, None, bound.limit))
-    least = [
-        LeastIfUsed(place[column[limit.subject.ids[0]]], limit.minimum * factor, index)
-        for index, (limit, factor) in enumerate(zip(built.limits, built.factors, strict=True))
-        if limit.kind is LimitKind.PRACTICAL and limit.minimum and column.get(limit.subject.ids[0], -1) in place
-    ]
+    least = []
+    for index, (limit, factor) in enumerate(zip(built.limits, built.factors, strict=True)):
+        subject = column.get(limit.subject.ids[0], -1) if limit.kind is LimitKind.PRACTICAL else -1
+        if subject < 0 or not limit.minimum:
+            continue
+        counts = np.eye(1, len(column), subject)[0] if built.counted is None else built.counted[subject]
+        parts = counts[columns]
+        holding = np.flatnonzero(parts)
+        if len(holding) == 1:
+            at = int(holding[0])
+            least.append(LeastIfUsed(at, limit.minimum * factor / float(parts[at]), index))
+        elif len(holding):  # an opened ingredient is used: no batch leaves all of its lines out
+            rows.append(Row(parts, limit.minimum * factor, None, None, index))
     amount = 1.0 if built.formula.amounts is Amounts.BLEND else total
     return Order(batch_kg, lines, tuple(rows), tuple(least), amount, *ends)
 
@@ -176,7 +216,14 @@ def _load(scale: Scale | None, ingredient: Ingredient) -> Load:
     tolerance = tolerance_of(scale, ingredient)
     if scale is None:
         return Load(UNSCALED_STEP_KG, tolerance=tolerance)
-    return Load(scale.step_kg or 0.0, scale.least_kg, scale.greatest_kg, tolerance)
+    span = scale.span(ingredient.density_kg_per_l)
+    if span is None:  # a scale without a step, which is a fault as one with a step of 0 is
+        return Load(0.0, tolerance=tolerance)
+    return Load(span.step_kg, span.least_kg, span.greatest_kg, tolerance)
+
+
+def _litres(scale: Scale | None, steps: int) -> float | None:
+    return None if scale is None or scale.step_l is None else float(exact(scale.step_l) * steps)
 
 
 def _result(
@@ -186,8 +233,11 @@ def _result(
     lines = tuple(
         WeighedLine(
             ingredient, tried[p.load], float(p.step), float(p.share), float(kg), float(p.allowed), p.fixed,
+            _litres(tried[p.load], n),
         )
-        for ingredient, tried, p, kg in zip(ingredients, scales, found.placed, found.kilograms, strict=True)
+        for ingredient, tried, p, n, kg in zip(
+            ingredients, scales, found.placed, found.steps, found.kilograms, strict=True
+        )
     )
     kilograms = {line.ingredient.id: line.target_kg for line in lines}
     limits, nutrients = weighed(library, built, kilograms, total, found.broken)
