@@ -39,6 +39,14 @@ class Answers:
             return None
         return Answer(asked, known.name, known.answer, known.ingredient_id, known.rate, known.given)
 
+    def given(self, asked: Asked) -> list[Answer]:
+        """What was answered for this list, of one kind."""
+        return [answer for answer in self._given.values() if answer.asked is asked]
+
+    def has(self, asked: Asked) -> bool:
+        """Whether anything of a kind was answered, for this list or an earlier one."""
+        return any(key[0] is asked for key in self._given) or any(key[0] is asked for key in self._remembered)
+
     def unit(self, name: str, about: str) -> str:
         """The unit that words in doubt were answered to mean, for one name or for all; "" if they were not."""
         of_name = self._remembered.get((Asked.INGREDIENT, fold(name)))
@@ -51,6 +59,10 @@ class Answers:
         """TAKE, LEAVE_OUT, or nothing; row from 1."""
         found = self._given.get((asked, "", sheet, row))
         return "" if found is None else found.answer
+
+    def about_row(self, asked: Asked, sheet: str, row: int) -> Answer | None:
+        """The whole answer to a question about a row; row from 1."""
+        return self._given.get((asked, "", sheet, row))
 
     def largest_usual_change(self, class_name: str) -> float:
         """By how much a price of a class may change without a question, as a fraction of the old price."""

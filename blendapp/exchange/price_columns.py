@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Callable
 from dataclasses import dataclass, field
 
 from blendapp.domain.list_rows import ColumnRole
@@ -56,6 +57,16 @@ _QUANTITY_WORDS = frozenset({
 _NOTE_WORDS = frozenset({
     "basis", "date", "period", "month", "terms", "time", "window", "place", "point", "address",
 })
+PRICE_ROLES = frozenset({ColumnRole.PRICE, ColumnRole.FREIGHT, ColumnRole.SUM})
+# What a column of a price list may hold.
+LIST_ROLES = tuple(
+    role for role in ColumnRole
+    if role not in (
+        ColumnRole.SAMPLE, ColumnRole.SAMPLED, ColumnRole.BASIS, ColumnRole.DRY_MATTER, ColumnRole.NUTRIENT
+    )
+)
+
+
 @dataclass(frozen=True)
 class PriceColumn:
     """A column of prices, of one role of PRICE, FREIGHT and SUM, with what its heading says of unit and currency."""
@@ -93,6 +104,11 @@ class Table:
         return range(self.heading_row if self.first_heading_row is None else self.first_heading_row, self.first_row)
 
     @property
+    def is_complete(self) -> bool:
+        """Whether it is known where names and prices stand."""
+        return self.name is not None and any(column.role is not ColumnRole.FREIGHT for column in self.prices)
+
+    @property
     def prices_key(self) -> str:
         """What the choice between the columns of prices is remembered by."""
         return " | ".join(column.heading for column in self.prices)
@@ -101,7 +117,11 @@ class Table:
         return next((index for index, found in sorted(self.roles.items()) if found is role), None)
 
 
-def role_of(heading: str) -> tuple[ColumnRole, Words]:
+# Heading and column, from 0, to the role of the column and the words of the heading.
+RoleOf = Callable[[str, int], tuple[ColumnRole, Words]]
+
+
+def role_of(heading: str, _index: int = 0) -> tuple[ColumnRole, Words]:
     """The role that a heading gives its column."""
     words = read_heading_words(heading)
     plain = " ".join(re.sub(r"[^a-z0-9%]+", " ", split_dry(heading)[1].casefold()).split())

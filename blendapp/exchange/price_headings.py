@@ -6,7 +6,7 @@ import re
 
 from blendapp.domain.list_rows import ColumnRole
 from blendapp.exchange.list_headings import joined, spread_over, texts_of
-from blendapp.exchange.price_columns import PriceColumn, Table, role_of
+from blendapp.exchange.price_columns import PriceColumn, RoleOf, Table, role_of
 from blendapp.exchange.price_numbers import read_price_text
 from blendapp.exchange.price_words import read_heading_words, read_unit_words
 from blendapp.exchange.tables import RawTable, column_letters
@@ -19,10 +19,11 @@ _DATED = re.compile(
 )
 
 
-def read_headings(table: RawTable, row: int) -> Table | None:
+def read_headings(table: RawTable, row: int, role: RoleOf = role_of) -> Table | None:
     """The table that begins with a row, if the row has headings for a name and a price, and holds no number.
 
     Headings may take two rows: the second says more of each column, or the first stands over several of them.
+    role: what a heading says of its column.
     """
     texts = texts_of(table, row)
     if texts is None:
@@ -30,18 +31,18 @@ def read_headings(table: RawTable, row: int) -> Table | None:
     below = texts_of(table, row + 1) if row + 1 < len(table.rows) else None
     if below and _holds_price(below):
         below = None
-    found = _headed(row, texts)
+    found = _headed(row, texts, role)
     if found is not None:
-        split = _split_below(table, row, texts, below, found) if below else None
+        split = _split_below(table, row, texts, below, found, role) if below else None
         if split is not None:
             return split
-        if below and _says_more(found, below):
-            found = _headed(row, joined(texts, below)) or found
+        if below and _says_more(found, below, role):
+            found = _headed(row, joined(texts, below), role) or found
             found.last_heading_row = row + 1
             return found
-        return _under_a_wider_heading(table, row, texts, found)
-    if below and len(below) > 1 and not _holds_price(texts) and _headed(row + 1, below) is None:
-        both = _headed(row, joined(spread_over(table, row, texts, below), below))
+        return _under_a_wider_heading(table, row, texts, found, role)
+    if below and len(below) > 1 and not _holds_price(texts) and _headed(row + 1, below, role) is None:
+        both = _headed(row, joined(spread_over(table, row, texts, below), below), role)
         if both is not None and both.name is not None:
             both.last_heading_row = row + 1
             return both
@@ -53,7 +54,8 @@ def _holds_price(texts: dict[int, str]) -> bool:
 
 
 def _split_below(
-    table: RawTable, row: int, texts: dict[int, str], below: dict[int, str], found: Table
+    table: RawTable, row: int, texts: dict[int, str], below: dict[int, str], found: Table,
+    role: RoleOf,
 ) -> Table | None:
     """The table whose one heading of prices stands over several columns, headed each in the row below."""
     if found.name is None or found.name in below:
@@ -62,31 +64,33 @@ def _split_below(
     heads = {column.heading for column in found.prices}
     if not any(index not in texts and spread.get(index) in heads for index in below):
         return None
-    both = _headed(row, joined(spread, below))
+    both = _headed(row, joined(spread, below), role)
     if both is not None:
         both.last_heading_row = row + 1
     return both
 
 
-def _says_more(found: Table, below: dict[int, str]) -> bool:
+def _says_more(found: Table, below: dict[int, str], role: RoleOf) -> bool:
     """Whether a row of texts goes on with the headings above it: units under prices, "from" under "Valid"."""
-    own = _headed(0, below)
+    own = _headed(0, below, role)
     if own is not None and own.name is not None:
         return False
-    if found.name in below and role_of(below[found.name])[0] not in (ColumnRole.NAME, ColumnRole.NOTE):
+    if found.name in below and role(below[found.name], found.name)[0] not in (ColumnRole.NAME, ColumnRole.NOTE):
         return False
-    under_prices = [below[column.index] for column in found.prices if column.index in below]
+    under_prices = {column.index: below[column.index] for column in found.prices if column.index in below}
     if not under_prices:
         return False
-    for text in under_prices:
+    for index, text in under_prices.items():
         words = read_unit_words(text.strip("()[]"))
         plain = not words.rest and (words.unit or words.money.currencies or words.dry)
-        if not plain and role_of(text)[0] not in (ColumnRole.PRICE, ColumnRole.FREIGHT, ColumnRole.SUM):
+        if not plain and role(text, index)[0] not in (ColumnRole.PRICE, ColumnRole.FREIGHT, ColumnRole.SUM):
             return False
     return True
 
 
-def _under_a_wider_heading(table: RawTable, row: int, texts: dict[int, str], found: Table) -> Table:
+def _under_a_wider_heading(
+    table: RawTable, row: int, texts: dict[int, str], found: Table, role: RoleOf
+) -> Table:
     """The same table with what stands over its price columns: a unit, a currency, "last week" and "this week"."""
     if row == 0 or found.name is None:
         return found
@@ -97,7 +101,7 @@ def _under_a_wider_heading(table: RawTable, row: int, texts: dict[int, str], fou
     more = {
         column.index: spread[column.index] for column in found.prices if column.index in spread
     }
-    wider = _headed(row, {index: f"{more.get(index, '')} {text}".strip() for index, text in texts.items()})
+    wider = _headed(row, {index: f"{more.get(index, '')} {text}".strip() for index, text in texts.items()}, role)
     if not more or wider is None:
         return found
     wider.first_heading_row = row - 1
@@ -112,12 +116,12 @@ def _is_price(text: str, names_unit: bool) -> bool:
     return not names_unit or read_price_text(text) is not None
 
 
-def _headed(row: int, texts: dict[int, str]) -> Table | None:
+def _headed(row: int, texts: dict[int, str], role_of_heading: RoleOf) -> Table | None:
     """The table under headings by column, or None where they head no price."""
     found = Table(row)
     names = []
     for index, heading in texts.items():
-        role, words = role_of(heading)
+        role, words = role_of_heading(heading, index)
         found.roles[index], found.headings[index] = role, heading
         if role is ColumnRole.NAME:
             names.append(index)

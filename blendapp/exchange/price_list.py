@@ -11,13 +11,16 @@ from blendapp.domain.list_rows import Answer, Fate, SourceSheet, source_of
 from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.wording import _
 from blendapp.exchange.list_answers import Answers
-from blendapp.exchange.list_cells import first_text, holds_number
+from blendapp.exchange.list_cells import first_text
 from blendapp.exchange.list_files import open_list
 from blendapp.exchange.list_names import NameFinder
+from blendapp.exchange.list_placing import Placing
 from blendapp.exchange.price_checks import ask_about_duplicates, ask_about_leaps
+from blendapp.exchange.price_columns import LIST_ROLES
 from blendapp.exchange.price_row import read_row
-from blendapp.exchange.price_segments import Segment, read_segments, source_table
+from blendapp.exchange.price_segments import Segment, pointed_out_table, read_segments, source_table
 from blendapp.exchange.price_tables import find_table
+from blendapp.exchange.price_unplaced import without_columns, without_table
 from blendapp.exchange.source_sheets import source_sheet
 from blendapp.exchange.tables import RawTable
 
@@ -39,27 +42,33 @@ def read_price_list(
     names = NameFinder(library, answered)
     rows: list[PriceRow] = []
     sheets = []
+    placing = Placing(answered, LIST_ROLES)
     for table in opened.tables:
-        found, sheet_read = read_table(table, library, names, today)
+        found, sheet_read = read_table(table, library, names, today, placing)
         rows += found
         sheets.append(sheet_read)
+    placing.note_what_was_not_used(
+        column.heading for shown in sheets for table in shown.tables for column in table.columns
+    )
     rows = ask_about_leaps(ask_about_duplicates(rows, answered), answered, library)
     return PriceListReading(
-        opened.file.name, opened.file.digest, tuple(rows), opened.notes, source, tuple(answers), tuple(sheets),
-        currency=library.mill.currency,
+        opened.file.name, opened.file.digest, tuple(rows), (*opened.notes, *placing.notes), source, tuple(answers),
+        tuple(sheets), currency=library.mill.currency,
     )
 
 
 def read_table(
-    raw: RawTable, library: Library, names: NameFinder, today: datetime.date
+    raw: RawTable, library: Library, names: NameFinder, today: datetime.date, placing: Placing
 ) -> tuple[list[PriceRow], SourceSheet]:
     """The fate of every row of one sheet that is not blank, and the sheet with the tables that were found on it."""
-    table = find_table(raw, names.is_known)
+    table = find_table(raw, names, placing)
     if table is None:
-        return list(_without_table(raw)), source_sheet(raw, ())
+        return list(without_table(raw)), source_sheet(raw, ())
+    if not table.is_complete:
+        return list(without_columns(raw, table, placing)), source_sheet(raw, [pointed_out_table(raw, table)])
     rows: list[PriceRow] = []
     tables = []
-    for segment in read_segments(raw, table, names):
+    for segment in read_segments(raw, table, names, placing):
         rows += _rows(raw, segment, library, names, today)
         tables.append(source_table(raw, segment))
     return rows, source_sheet(raw, tables)
@@ -78,16 +87,3 @@ def _rows(
             yield PriceRow(raw.sheet, row + 1, Fate.IGNORED, _("Title above the table."), first_text(raw, row))
         else:
             yield read_row(raw, row, segment, library, names, today)
-
-
-def _without_table(raw: RawTable) -> Iterator[PriceRow]:
-    """A sheet in which no table was found: rows of words are ignored, rows with a number are asked about."""
-    for row in range(len(raw.rows)):
-        if raw.is_blank(row):
-            continue
-        text = first_text(raw, row)
-        if any(holds_number(value) for value in raw.rows[row]):
-            reason = _("No heading row with a name and a price was found; add one, with a unit.")
-            yield PriceRow(raw.sheet, row + 1, Fate.QUESTION, reason, text)
-        else:
-            yield PriceRow(raw.sheet, row + 1, Fate.IGNORED, _("No table of prices."), text)

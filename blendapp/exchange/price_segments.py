@@ -11,11 +11,11 @@ from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.list_columns import answered_sign, date_order
 from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_numbers import DateOrder, DecimalSign
+from blendapp.exchange.list_placing import Placing
 from blendapp.exchange.price_cells import column_sign
 from blendapp.exchange.price_columns import Table
-from blendapp.exchange.price_headings import read_headings
 from blendapp.exchange.price_notes import Notes, read_notes
-from blendapp.exchange.price_tables import drop_empty_prices, settle_name_column
+from blendapp.exchange.price_tables import headed_table
 from blendapp.exchange.price_words import Words
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
 
@@ -32,19 +32,15 @@ class Segment:
     notes: Notes
 
 
-def read_segments(raw: RawTable, table: Table, names: NameFinder) -> Iterator[Segment]:
+def read_segments(raw: RawTable, table: Table, names: NameFinder, placing: Placing) -> Iterator[Segment]:
     """The table, and every further one below it that has headings of its own."""
     first, titles = 0, Notes()
     for row in range(table.first_row, len(raw.rows)):
         if row < table.first_row:  # the second heading row of a table found meanwhile
             continue
-        found = read_headings(raw, row) if _may_be_heading(raw, row, table) else None
+        found = headed_table(raw, row, names, placing) if _may_be_heading(raw, row, table) else None
         if found is None:
             continue
-        settle_name_column(found, raw, names.is_known)
-        if found.name is None:
-            continue
-        drop_empty_prices(found, raw)
         segment = _segment(raw, table, first, row, names.answers, titles)
         yield segment
         titles = segment.notes
@@ -101,6 +97,16 @@ def source_table(raw: RawTable, segment: Segment) -> SourceTable:
     return SourceTable(
         tuple(row + 1 for row in table.heading_rows), table.first_row + 1, _last_row(raw, segment) + 1, tuple(columns)
     )
+
+
+def pointed_out_table(raw: RawTable, table: Table) -> SourceTable:
+    """A table whose headings were pointed out, but do not tell yet what every column holds."""
+    columns = tuple(
+        SourceColumn(index, table.headings.get(index, ""), table.roles.get(index, ColumnRole.OTHER))
+        for index in range(max((len(cells) for cells in raw.rows), default=0))
+    )
+    heading_rows = tuple(row + 1 for row in table.heading_rows)
+    return SourceTable(heading_rows, table.first_row + 1, max(len(raw.rows), table.first_row + 1), columns)
 
 
 def _says(words: Words, segment: Segment, index: int) -> str:
