@@ -1,48 +1,52 @@
-"""The batch sheet: what the operator weighs from."""
+"""The three pages of a batch, from one description: what the operator weighs from, what stands for years, and a blank.
+
+21 CFR 225.102 asks of a master record: identity, name and weight of every component for a stated weight, mixing steps,
+times and settings, theoretical yield; of a production record: a copy of it, the date, the amounts used, who weighed and
+who checked, actual yield (from memory).
+"""
 
 from __future__ import annotations
 
-from typing import Any
+import dataclasses
 
-from blendapp.documents import letters, phrases, sections
+from blendapp.documents import closing, making, phrases, sections
+from blendapp.documents.batch_head import code, facts, number_words, places_to_name
 from blendapp.documents.flow import Block, Style, paragraph
 from blendapp.documents.frame import Frame, Mark
 from blendapp.documents.letters import BOLD
-from blendapp.documents.paper import MM, Paper
-from blendapp.documents.pen import Pen
+from blendapp.documents.paper import Paper
 from blendapp.documents.sections import BODY, STRONG
 from blendapp.documents.weighing import weighing_table
+from blendapp.documents.weighing_words import is_medicated, tagged, use
 from blendapp.domain.batches import Batch, BatchPage
-from blendapp.domain.notation import notation
 from blendapp.domain.wording import _, plural
 
-_TITLE = Style(22, BOLD, leading=27)
-_CODE_SIZE = 24 * MM
-_CODE_NAME_BYTES = 80
+_WITHDRAWAL = Style(12, BOLD, leading=15)
+# Cautions higher than this would push the weighing off the first page: they follow it, and the sheet says so above it.
+_MOST_CAUTIONS = 120.0
 
 
 def draw(batch: Batch, page: BatchPage, paper: Paper) -> bytes:
     """The page as a PDF."""
+    if page is not BatchPage.SHEET:
+        # A record of a version has no number of its own and is no copy of a sheet.
+        batch = dataclasses.replace(batch, number=None, copy=0)
     kinds = {
         BatchPage.SHEET: _("Batch sheet"),
         BatchPage.MASTER: _("Master formula record"),
         BatchPage.BLANK: _("Blank batch record"),
     }
+    of = number_words(batch, page)
     frame = Frame(
         paper,
-        title=" · ".join([batch.formula, batch.version, number_words(batch)]),
+        title=" · ".join([batch.formula, batch.version, of]),
         kind=kinds[page],
         owner=batch.mill,
         name=batch.formula,
-        rest=f"{batch.version} · {number_words(batch)}",
+        rest=f"{batch.version} · {of}",
         marks=_marks(batch),
     )
-    return frame.draw(_blocks(batch, frame.width))
-
-
-def number_words(batch: Batch) -> str:
-    """"Batch 1041", or that it has no number yet."""
-    return _("not numbered") if batch.number is None else _("Batch {number}").format(number=batch.number)
+    return frame.draw(_blocks(batch, page, frame.width))
 
 
 def _marks(batch: Batch) -> list[Mark]:
@@ -56,71 +60,48 @@ def _marks(batch: Batch) -> list[Mark]:
     return marks
 
 
-def _blocks(batch: Batch, width: float) -> list[Block]:
-    cautions = phrases.special(batch.cautions)
-    blocks = _title(batch, width) + _no_sheet(batch, width) + _broken(batch, width)
-    if cautions and batch.lines:
-        words = plural(
-            "One caution stands after the lines of this sheet: read it before weighing.",
-            "{count} cautions stand after the lines of this sheet: read them before weighing.",
-            len(cautions),
-        ).format(count=len(cautions))
-        blocks += paragraph(words, STRONG, width, gap=10)
+def _blocks(batch: Batch, page: BatchPage, width: float) -> list[Block]:
+    blocks = code(batch, page, width) + facts(batch, page, width) + places_to_name(batch, page, width)
+    blocks += _no_sheet(batch, width) + _broken(batch, width) + _medicated_feed(batch, width)
+    cautions = sections.cautions(phrases.special(batch.cautions), width)
+    before = sum(block.height + block.gap for block in cautions) <= _MOST_CAUTIONS
+    blocks += cautions if before or not batch.lines else _pointer(batch, width)
     if batch.lines:
-        blocks += weighing_table(batch, width)
-    blocks += sections.cautions(cautions, width)
-    blocks += sections.nutrients(batch.nutrients, _("Nutrients that result"), width)
+        blocks += making.to_make(batch, page, width)
+        if page is not BatchPage.MASTER:
+            blocks += making.clean_out(batch, page, width)
+        blocks += weighing_table(batch, page, width) + ([] if before else cautions)
+        blocks += making.mixing(batch, page, width) + closing.yields(batch, page, width)
+        blocks += closing.signatures(batch, width) if page is BatchPage.MASTER else closing.sample_and_release(width)
+    if page is not BatchPage.BLANK:
+        blocks += sections.nutrients(batch.nutrients, _("Nutrients that result"), width)
     return blocks
 
 
-def _title(batch: Batch, width: float) -> list[Block]:
-    """The formula's name, large, and the facts, beside a code that a reader can scan."""
-    inner = width - _CODE_SIZE - 12
-    lines = _TITLE.wrap(batch.formula, inner)
-    strip = sections.facts(_facts(batch), inner)
-    strip_top = len(lines) * _TITLE.line + 8
-
-    def draw(pen: Pen, left: float, top: float) -> None:
-        for number, line in enumerate(lines):
-            pen.text(left, top + number * _TITLE.line, line, _TITLE)
-        strip.draw(pen, left, top + strip_top)
-        _draw_code(pen, left + width - _CODE_SIZE, top, code_text(batch))
-
-    blocks = [Block(max(_CODE_SIZE, strip_top + strip.height), draw)]
-    if batch.approved_by:
-        words = _("This is {version}, approved by {name}.").format(version=batch.version, name=batch.approved_by)
-        blocks += paragraph(words, BODY, width, gap=8)
-    return blocks
+def _pointer(batch: Batch, width: float) -> list[Block]:
+    count = len(phrases.special(batch.cautions))
+    words = plural(
+        "One caution stands after the lines of this sheet: read it before weighing.",
+        "{count} cautions stand after the lines of this sheet: read them before weighing.",
+        count,
+    ).format(count=count)
+    return paragraph(words, STRONG, width, gap=10)
 
 
-def code_text(batch: Batch) -> str:
-    """What the code on the sheet says: formula, version and batch, a line each; a very long name is cut."""
-    name = letters.plain(batch.formula).encode()[:_CODE_NAME_BYTES].decode(errors="ignore")
-    version = letters.plain(batch.version).encode()[:_CODE_NAME_BYTES].decode(errors="ignore")
-    return "\n".join([name, version, number_words(batch)])
-
-
-def _draw_code(pen: Pen, left: float, top: float, text: str) -> None:
-    from reportlab.graphics import renderPDF
-    from reportlab.graphics.barcode.qr import QrCodeWidget
-    from reportlab.graphics.shapes import Drawing
-
-    code: Any = QrCodeWidget(text, barLevel="M", barWidth=_CODE_SIZE, barHeight=_CODE_SIZE, barBorder=0)
-    drawing: Any = Drawing(_CODE_SIZE, _CODE_SIZE)
-    drawing.add(code)
-    renderPDF.draw(drawing, pen.canvas, left, pen.height - top - _CODE_SIZE)
-
-
-def _facts(batch: Batch) -> list[tuple[str, str]]:
-    short = notation().write_short
-    batches = plural("{count} batch", "{count} equal batches", batch.batches).format(count=batch.batches)
-    return [
-        (_("Version"), batch.version),
-        (_("Batch number"), _("not numbered") if batch.number is None else str(batch.number)),
-        (_("Date"), batch.made.isoformat()),
-        (_("One batch"), phrases.with_unit(short(batch.batch_kg), "kg")),
-        (_("Order"), _("{kg} kg in {batches}").format(kg=short(batch.order_kg), batches=batches)),
-    ]
+def _medicated_feed(batch: Batch, width: float) -> list[Block]:
+    """That this feed carries a drug, and how long before slaughter or milking it is withdrawn, before all else."""
+    medicated = [line for line in batch.lines if is_medicated(line)]
+    if not medicated:
+        return []
+    inner = width - 10
+    blocks = tagged(_("MEDICATED FEED"), "", inner, 0)
+    blocks[0] = dataclasses.replace(blocks[0], gap=14)
+    for line in medicated:
+        said = [line.ingredient, *use(line)]
+        if not line.withdrawal:
+            said.append(_("no withdrawal is entered"))
+        blocks += paragraph(" · ".join(said), _WITHDRAWAL, inner, gap=2)
+    return sections.barred(blocks, 4.0)
 
 
 def _no_sheet(batch: Batch, width: float) -> list[Block]:
@@ -149,4 +130,3 @@ def _acceptance(batch: Batch, width: float) -> list[Block]:
     else:
         words = _("Not accepted by anyone: this batch is not to be mixed.")
     return paragraph(words, STRONG, width, gap=4)
-

@@ -13,7 +13,7 @@ if TYPE_CHECKING:
 
 INK = "#000000"
 SOFT = "#333333"
-LINE = "#6b6b6b"
+LINE = "#444444"
 WASH = "#e4e4e4"
 PAPER = "#ffffff"
 
@@ -75,4 +75,9 @@ class Pen:
         self.canvas.setLineWidth(1)
         self.canvas.rect(left, self.height - top - height, width, height, stroke=1, fill=1 if filled else 0)
 
-
+    def outline(self, left: float, top: float, width: float, height: float) -> None:
+        """A box to tick: white inside, so that what is under it does not fill it."""
+        self.canvas.setStrokeColor(HexColor(INK))
+        self.canvas.setFillColor(HexColor(PAPER))
+        self.canvas.setLineWidth(1)
+        self.canvas.rect(left, self.height - top - height, width, height, stroke=1, fill=1)

@@ -1,149 +1,61 @@
-"""The table of a batch sheet: one line a weighing, by scale, with room to write lot, weight and initials."""
+"""The table of what goes into a batch: one line a weighing, by scale, with the total of the lines as they are shown."""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 
 from blendapp.documents import letters
 from blendapp.documents.flow import Block, Draw, Style, paragraph
 from blendapp.documents.letters import BOLD
 from blendapp.documents.paper import MM
-from blendapp.documents.pen import INK, LINE, Pen
-from blendapp.documents.sections import BODY, LABEL
-from blendapp.domain.batches import Batch, BatchLine
-from blendapp.domain.figures import decimals_of_step, write_kg
+from blendapp.documents.pen import INK, Pen
+from blendapp.documents.phrases import with_unit
+from blendapp.documents.rows import Rows
+from blendapp.documents.sections import LABEL
+from blendapp.documents.weighing_groups import BESIDE, TARGET, Group, Layout, groups_of, running, write_share
+from blendapp.documents.weighing_words import medicated
+from blendapp.domain import figures
+from blendapp.domain.batches import Batch, BatchPage
 from blendapp.domain.notation import notation
 from blendapp.domain.wording import _
 
-_NAME = Style(12, leading=15)
-_TARGET = Style(16, BOLD, leading=19)
-_RUNNING = Style(12, leading=19)
-_DETAIL = Style(10, leading=13)
-_DETAIL_STRONG = Style(10, BOLD, leading=13)
-_GROUP = Style(11.5, BOLD, leading=15)
-_LEAST_LINE = 10 * MM
-_PAD = 5.0
-# A name over more lines than this goes on in a second block, so that a line can always be placed on a page.
-_MOST_NAME_LINES = 12
+_GROUP = Style(12, BOLD, leading=15.5)
+_SAID = Style(12, leading=15)
+_SAID_LOUD = Style(12, BOLD, leading=15)
+_TOTAL_LINE = 10 * MM
 
 
-@dataclass(frozen=True)
-class _Columns:
-    """Left edges and widths in points; target and running are right-aligned at target_right and running_right."""
-
-    width: float
-    name_left: float
-    name_width: float
-    target_right: float
-    running_right: float
-    lot_left: float
-    weighed_left: float
-    initials_left: float
-
-    @property
-    def fills(self) -> Sequence[tuple[float, float]]:
-        """From and to of the places to write in."""
-        return (
-            (self.lot_left, self.weighed_left - 6),
-            (self.weighed_left, self.initials_left - 6),
-            (self.initials_left, self.width),
-        )
-
-
-def in_order(lines: Sequence[BatchLine]) -> list[list[BatchLine]]:
-    """The lines by scale, the coarsest scale first and hand-adds last; lines of one scale keep their order."""
-    groups: dict[tuple[bool, str, float], list[BatchLine]] = {}
-    for line in lines:
-        groups.setdefault((line.hand_add, line.scale, line.step_kg), []).append(line)
-    keys = sorted(groups, key=lambda key: (key[0], -key[2], key[1]))
-    return [groups[key] for key in keys]
-
-
-def weighing_table(batch: Batch, width: float) -> list[Block]:
-    """Head, lines by scale, total and residue."""
-    groups = in_order(batch.lines)
-    running: list[str] = []
-    total, decimals = 0.0, 0
-    for line in (line for group in groups for line in group):
-        total = round(total + line.target_kg, 9)
-        decimals = max(decimals, decimals_of_step(line.step_kg))
-        running.append(notation().write(total, decimals))
-    columns = _columns(batch, width, running, decimals)
-    head = _head(columns)
-    blocks = [Block(head.height, head.draw, 16, keep_next=True)]
-    number = 0
+def weighing_table(batch: Batch, page: BatchPage, width: float) -> list[Block]:
+    """Heads, lines by scale, total and residue."""
+    groups = groups_of(batch)
+    total = notation().write(*_sum_shown(groups))
+    layout = Layout(batch, page, groups, total, width)
+    blocks: list[Block] = []
+    number, titles = 0, None
     for group in groups:
-        title = _group_words(group[0])
-        blocks += _group_heading(title, columns, [head])
-        heads = [head, *_group_heading(_("{group}, continued").format(group=title), columns, ())]
-        for line in group:
-            last = number == len(running) - 1
-            blocks += _line(number + 1, line, running[number], columns, heads, keep_next=last)
+        rows = layout.rows(group)
+        head = rows.head()
+        if titles != (titles := [(column.title, span) for column, span in zip(rows.columns, rows.spans, strict=True)]):
+            blocks.append(head)
+        blocks += _group_heading(group.title, width, [head])
+        heads = [head, *_group_heading(_("{group}, continued").format(group=group.title), width, ())]
+        so_far = running(group)
+        for place, line in enumerate(group.lines):
             number += 1
-    return blocks + _total(batch, columns, decimals, head)
+            blocks += rows.row(
+                layout.cells(group, number, line, so_far[place]), heads=heads,
+                below=medicated(line, width, rows.spans[1][0]), keep_next=number == len(batch.lines),
+            )
+    return blocks + _total(batch, page, groups, layout.rows(groups[-1]))
 
 
-def _columns(batch: Batch, width: float, running: Sequence[str], decimals: int) -> _Columns:
-    targets = [write_kg(line.target_kg, line.step_kg) for line in batch.lines]
-    target = max([_TARGET.width(t) for t in [*targets, notation().write(batch.total_kg, decimals)]] + [58]) + 10
-    run = max([_RUNNING.width(r) for r in running] + [52]) + 10
-    number = LABEL.width(str(len(batch.lines))) + 8
-    fills = (66.0, 66.0, 46.0)
-    initials = width - fills[2]
-    weighed = initials - 6 - fills[1]
-    lot = weighed - 6 - fills[0]
-    running_right = lot - 12
-    target_right = running_right - run
-    return _Columns(
-        width, number, target_right - target - number, target_right, running_right, lot, weighed, initials
-    )
-
-
-def _head(columns: _Columns) -> Block:
-    """The heads of the columns; long ones wrap and stand on the line."""
-    name_right = columns.name_left + columns.name_width
-    run = columns.running_right - columns.target_right
-    figures = (
-        (_("Target kg"), columns.target_right, columns.target_right - name_right),
-        (_("Running kg"), columns.running_right, run - 6),
-    )
-    words = (
-        (_("Ingredient"), columns.name_left, columns.name_width - 6),
-        *((text, start, end - start) for text, (start, end) in zip(
-            (_("Lot"), _("Weighed kg"), _("Initials")), columns.fills, strict=True
-        )),
-    )
-    rights = [(LABEL.wrap(text, width), right) for text, right, width in figures]
-    lefts = [(LABEL.wrap(text, width), start) for text, start, width in words]
-    most = max(len(lines) for lines, _edge in (*rights, *lefts))
-
-    def draw(pen: Pen, left: float, top: float) -> None:
-        for cells, write in ((rights, pen.text_right), (lefts, pen.text)):
-            for lines, edge in cells:
-                for place, line in enumerate(lines):
-                    write(left + edge, top + (most - len(lines) + place) * LABEL.line, line, LABEL)
-        pen.rule(left, left + columns.width, top + most * LABEL.line + 3, 1, INK)
-
-    return Block(most * LABEL.line + 4, draw)
-
-
-def _group_words(line: BatchLine) -> str:
-    step = write_kg(line.step_kg, line.step_kg)
-    if line.hand_add:
-        named, bare = _("Hand-adds on {scale}, in steps of {step} kg"), _("Hand-adds, in steps of {step} kg")
-    else:
-        named, bare = _("{scale}, in steps of {step} kg"), _("In steps of {step} kg")
-    return (named if line.scale else bare).format(scale=line.scale, step=step)
-
-
-def _group_heading(title: str, columns: _Columns, heads: Sequence[Block]) -> list[Block]:
-    blocks = paragraph(title, _GROUP, columns.width)
+def _group_heading(title: str, width: float, heads: Sequence[Block]) -> list[Block]:
+    blocks = paragraph(title, _GROUP, width)
     last = len(blocks) - 1
     return [
         Block(
-            _GROUP.line + (9 if place == 0 else 0) + (3 if place == last else 0),
-            _lowered(block, 9 if place == 0 else 0),
+            _GROUP.line + (8 if place == 0 else 0) + (2 if place == last else 0),
+            _lowered(block, 8 if place == 0 else 0),
             keep_next=True,
             heads=heads if place == 0 else (),
         )
@@ -158,108 +70,74 @@ def _lowered(block: Block, by: float) -> Draw:
     return draw
 
 
-def _line(
-    number: int, line: BatchLine, running: str, columns: _Columns, heads: Sequence[Block], *, keep_next: bool
-) -> list[Block]:
-    """One weighing; a medicated one says what it carries on lines of its own below, kept with it."""
-    names = _NAME.wrap(line.ingredient, columns.name_width)
-    first, rest = names[:_MOST_NAME_LINES], names[_MOST_NAME_LINES:]
-    details = _details(line, columns)
-    height = max(_LEAST_LINE, len(first) * _NAME.line + 2 * _PAD)
-    target = letters.plain(write_kg(line.target_kg, line.step_kg))
+def _sum_shown(groups: Sequence[Group]) -> tuple[float, int]:
+    """The sum of the masses as they stand on the page, and its decimals."""
+    decimals = max(group.decimals for group in groups)
+    return round(sum(group.mass_shown(line) for group in groups for line in group.lines), decimals), decimals
+
+
+def _total(batch: Batch, page: BatchPage, groups: Sequence[Group], rows: Rows) -> list[Block]:
+    """The sum of the lines in the unit of the page; what the scales show beside it is said below."""
+    words = letters.plain(_("Total {unit}").format(unit=batch.mass_unit))
+    total = letters.plain(notation().write(*_sum_shown(groups)))
+    whole = letters.plain(write_share(1.0)) if page is BatchPage.MASTER else ""
+    name, target = rows.spans[1], rows.spans[2]
+    # The places to write in are the lot, then the mass.
+    written = [span for column, span in zip(rows.columns, rows.spans, strict=True) if column.write]
+    indent = name[0]
 
     def draw(pen: Pen, left: float, top: float) -> None:
-        middle = top + height / 2
-        pen.text(left, middle - LABEL.line / 2, str(number), LABEL)
-        text_top = middle - len(first) * _NAME.line / 2
-        for place, text in enumerate(first):
-            pen.text(left + columns.name_left, text_top + place * _NAME.line, text, _NAME)
-        pen.text_right(left + columns.target_right, middle - _TARGET.line / 2, target, _TARGET)
-        pen.text_right(left + columns.running_right, middle - _RUNNING.line / 2, running, _RUNNING)
-        _draw_fills(pen, left, top + height, columns)
+        pen.rule(left, left + rows.width, top, 1.2, INK)
+        middle = top + _TOTAL_LINE / 2
+        pen.text(left + indent, middle - _GROUP.line / 2, words, _GROUP)
+        pen.text_right(left + target[1], middle - TARGET.line / 2, total, TARGET)
+        pen.text_right(left + rows.width, middle - BESIDE.line / 2, whole, BESIDE)
+        for start, end in written[1:2]:
+            pen.text_right(left + end, top + _TOTAL_LINE - LABEL.line - 2, letters.plain(batch.mass_unit), LABEL)
+            pen.rule(left + start, left + end, top + _TOTAL_LINE, 0.9, INK)
 
-    blocks = [Block(height, draw, keep_next=bool(rest or details) or keep_next, heads=heads)]
-    blocks += [
-        Block(_NAME.line, _writing(text, _NAME, columns.name_left), keep_next=False, heads=heads) for text in rest
-    ]
-    for place, block in enumerate(details):
-        blocks.append(Block(block.height, block.draw, keep_next=place < len(details) - 1 or keep_next, heads=heads))
-    # The places to write in are their own line where nothing follows below them.
-    return [*blocks[:-1], _ruled(blocks[-1], columns.running_right if len(blocks) == 1 else columns.width)]
+    block = Block(_TOTAL_LINE + 5, draw, keep_next=True, heads=[rows.head()])
+    return [block, *_rounding(batch, groups, rows, indent), *_residue(batch, groups, rows, indent)]
 
 
-def _draw_fills(pen: Pen, left: float, y: float, columns: _Columns) -> None:
-    for start, end in columns.fills:
-        pen.rule(left + start, left + end, y, 0.9, INK)
-
-
-def _writing(text: str, style: Style, indent: float) -> Draw:
-    def draw(pen: Pen, left: float, top: float) -> None:
-        pen.text(left + indent, top, text, style)
-
-    return draw
-
-
-def _ruled(block: Block, width: float, weight: float = 0.5, ink: str = LINE) -> Block:
-    """The block with a hairline under it."""
-
-    def draw(pen: Pen, left: float, top: float) -> None:
-        block.draw(pen, left, top)
-        pen.rule(left, left + width, top + block.height, weight, ink)
-
-    return Block(block.height, draw, block.gap, block.keep_next, block.heads)
-
-
-def _details(line: BatchLine, columns: _Columns) -> list[Block]:
-    """Drug, level, species and withdrawal as entered; nothing for a line without any of them."""
-    entered = (
-        (_("Drug: {text}"), line.drug),
-        (_("Level: {text}"), line.drug_level),
-        (_("Species: {text}"), line.drug_species),
-        (_("Withdrawal: {text}"), line.withdrawal),
-    )
-    said = [words.format(text=text) for words, text in entered if text]
+def _rounding(batch: Batch, groups: Sequence[Group], rows: Rows, indent: float) -> list[Block]:
+    """That the lines were rounded to be shown, where their sum is not the total."""
+    unit, (shown, decimals) = batch.mass_unit, _sum_shown(groups)
+    exact = figures.mass_in(batch.total_kg, unit)
+    said = []
+    if abs(exact - shown) >= 0.5 * 10.0**-max(decimals, 6):
+        text = _("The total is the sum of the lines as they are shown, rounded; unrounded it is {mass}.")
+        said.append(text.format(mass=with_unit(notation().write_short(exact, max(decimals, 3)), unit)))
+    if unit != "kg":
+        text = _("All lines are {kg} kg together.")
+        said.append(text.format(kg=notation().write_short(batch.total_kg)))
     if not said:
         return []
-    blocks = paragraph(
-        _("MEDICATED"), _DETAIL_STRONG, columns.width, indent=columns.name_left, keep_next=True
-    ) + paragraph(" · ".join(said), _DETAIL, columns.width, indent=columns.name_left)
-    last = blocks[-1]
-    return [*blocks[:-1], Block(last.height + _PAD, last.draw, last.gap, last.keep_next)]
+    return [_next(block) for block in paragraph(" ".join(said), _SAID, rows.width, indent=indent)]
 
 
-def _total(batch: Batch, columns: _Columns, decimals: int, head: Block) -> list[Block]:
-    total = letters.plain(notation().write(batch.total_kg, decimals))
-    words = letters.plain(_("Total"))
-
-    def draw(pen: Pen, left: float, top: float) -> None:
-        pen.rule(left, left + columns.width, top, 1.2, INK)
-        middle = top + _LEAST_LINE / 2
-        pen.text(left + columns.name_left, middle - _GROUP.line / 2, words, _GROUP)
-        pen.text_right(left + columns.target_right, middle - _TARGET.line / 2, total, _TARGET)
-        pen.rule(left + columns.weighed_left, left + columns.initials_left - 6, top + _LEAST_LINE, 0.9, INK)
-
-    blocks = [Block(_LEAST_LINE + 4, draw, keep_next=True, heads=[head])]
-    return blocks + _residue(batch, columns, decimals)
-
-
-def _residue(batch: Batch, columns: _Columns, decimals: int) -> list[Block]:
-    asked = notation().write_short(batch.batch_kg)
+def _residue(batch: Batch, groups: Sequence[Group], rows: Rows, indent: float) -> list[Block]:
+    unit = batch.mass_unit
+    asked = with_unit(figures.write_typed_mass(batch.batch_kg, unit), unit)
     residue = batch.residue_kg
     if abs(residue) < 1e-9:
-        words = _("Residue 0 kg: the lines add up to the batch of {kg} kg.").format(kg=asked)
-        return paragraph(words, BODY, columns.width, indent=columns.name_left)
-    by = notation().write(abs(residue), max(decimals, _decimals_typed(residue)))
+        words = _("Residue 0 {unit}: the lines add up to the batch of {mass}.")
+        return paragraph(words.format(unit=unit, mass=asked), _SAID, rows.width, indent=indent)
     sentence = (
-        _("Residue {by} kg: the lines come to {by} kg more than the batch of {kg} kg.")
+        _("Residue {by}: the lines come to {by} more than the batch of {mass}.")
         if residue > 0
-        else _("Residue −{by} kg: the lines come to {by} kg less than the batch of {kg} kg.")
+        else _("Residue −{by}: the lines come to {by} less than the batch of {mass}.")
     )
-    style = Style(BODY.size, BOLD, BODY.line)
-    return paragraph(sentence.format(by=by, kg=asked), style, columns.width, indent=columns.name_left)
+    by = with_unit(_residue_text(batch, groups, abs(residue)), unit)
+    return paragraph(sentence.format(by=by, mass=asked), _SAID_LOUD, rows.width, indent=indent)
 
 
-def _decimals_typed(value: float) -> int:
-    """The decimals that a residue of a batch size typed by hand needs, at most 6."""
-    short = f"{value:.6f}".rstrip("0")
-    return len(short.partition(".")[2])
+def _residue_text(batch: Batch, groups: Sequence[Group], residue_kg: float) -> str:
+    value = figures.mass_in(residue_kg, batch.mass_unit)
+    # As many decimals as the lines have, and as a batch size typed by hand needs, at most 6.
+    typed = len(f"{value:.6f}".rstrip("0").partition(".")[2]) if batch.mass_unit == "kg" else figures.decimals_of(value)
+    return notation().write(value, max(_sum_shown(groups)[1], typed))
+
+
+def _next(block: Block) -> Block:
+    return Block(block.height, block.draw, block.gap, True, block.heads)

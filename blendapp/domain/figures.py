@@ -5,8 +5,12 @@ from __future__ import annotations
 import math
 
 from blendapp.domain.notation import notation
+from blendapp.domain.units import LB_KG, VOLUME_L
 
 _MOST_DECIMALS = 9
+# A step that needs no more decimals than this in a unit is taken to be what its scale shows.
+_PLAIN_DECIMALS = {"kg": 6, "lb": 4}
+_PLAIN_DECIMALS_OF_VOLUME = 4
 
 
 def decimals_of_step(step_kg: float) -> int:
@@ -59,3 +63,63 @@ def write_tiny(value: float | None) -> str:
     if value is None:
         return ""
     return "0" if value == 0 else f"{value:.1e}".replace(".", notation().decimal)
+
+
+def mass_in(kg: float, unit: str) -> float:
+    """A mass in a unit, "kg" or "lb"."""
+    return kg / LB_KG if unit == "lb" else kg
+
+
+def unit_of_scale(step_kg: float, unit: str) -> str:
+    """The unit that a scale shows, "kg" or "lb": `unit` unless its step is a plain number of the other one only."""
+    other = "kg" if unit == "lb" else "lb"
+    for one in (unit, other):
+        if _is_plain(mass_in(step_kg, one), _PLAIN_DECIMALS[one]):
+            return one
+    return unit
+
+
+def decimals_of_mass(step_kg: float, unit: str) -> int:
+    """The decimals of a mass in a unit, weighed in these steps: exact in the unit that the scale shows.
+
+    In the other one as many as leave an error of at most a tenth of a step, so that the multiple of the step is found
+    again from the digits.
+    """
+    step = mass_in(step_kg, unit)
+    if _is_plain(step, _PLAIN_DECIMALS[unit]) or (unit == "kg" and unit_of_scale(step_kg, unit) == "kg"):
+        return decimals_of_step(step)
+    return max(0, math.ceil(-math.log10(step / 5)))
+
+
+def write_mass(kg: float, step_kg: float, unit: str) -> str:
+    """A mass in a unit, with the decimals of the step it was weighed in."""
+    return notation().write(mass_in(kg, unit), decimals_of_mass(step_kg, unit))
+
+
+def write_typed_mass(kg: float, unit: str) -> str:
+    """A mass in a unit as a person would type it; one typed in the other unit is cut to what a mill can weigh."""
+    value = mass_in(kg, unit)
+    return notation().write_short(value, 6 if unit == "kg" else max(3, decimals_of(value)))
+
+
+def unit_of_meter(step_l: float) -> tuple[str, float]:
+    """The unit that a liquid meter shows and its litres: the first of litres and gallons in which its step is plain."""
+    for name in ("l", "US gal", "imperial gal"):
+        if _is_plain(step_l / VOLUME_L[name], _PLAIN_DECIMALS_OF_VOLUME):
+            return name, VOLUME_L[name]
+    return "l", 1.0
+
+
+def write_volume(litres: float, step_l: float) -> str:
+    """A volume in the unit that its meter shows, with the decimals of its step."""
+    _name, unit_l = unit_of_meter(step_l)
+    return notation().write(litres / unit_l, decimals_of_step(step_l / unit_l))
+
+
+def within_steps(tolerance_kg: float, step_kg: float) -> int:
+    """How many steps of its scale a weighing may be off: what a tolerance comes to on that scale."""
+    return math.floor(tolerance_kg / step_kg + 1e-6)
+
+
+def _is_plain(step: float, most_decimals: int) -> bool:
+    return decimals_of_step(step) <= most_decimals

@@ -51,3 +51,26 @@ def pieces(pdf: bytes) -> list[Piece]:
 def squeezed(texts: list[str] | str) -> str:
     """Text without white space, so that where a line was broken does not matter."""
     return "".join("".join(texts).split())
+
+
+@dataclass(frozen=True)
+class Rule:
+    """A line across the page, in points from the bottom left."""
+
+    page: int
+    left: float
+    right: float
+    y: float
+
+
+def rules(pdf: bytes) -> list[Rule]:
+    """Every level line that is drawn."""
+    document = pypdfium2.PdfDocument(pdf)
+    found = []
+    for number in range(len(document)):
+        for thing in document[number].get_objects(filter=[raw.FPDF_PAGEOBJ_PATH]):
+            left, bottom, right, top = thing.get_bounds()
+            if top - bottom < 3 and right - left > 20:
+                found.append(Rule(number, left, right, (top + bottom) / 2))
+    document.close()
+    return found

@@ -1,0 +1,227 @@
+"""The lines of a batch by what they are weighed on, and the columns that each such group has on each page."""
+
+from __future__ import annotations
+
+import dataclasses
+import itertools
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from blendapp.documents import letters
+from blendapp.documents.flow import Style
+from blendapp.documents.letters import BOLD
+from blendapp.documents.paper import MM
+from blendapp.documents.phrases import with_unit
+from blendapp.documents.rows import GUTTER, Column, Rows, Text
+from blendapp.documents.sections import LABEL
+from blendapp.documents.weighing_words import details
+from blendapp.domain import figures
+from blendapp.domain.batches import Batch, BatchLine, BatchPage
+from blendapp.domain.notation import notation
+from blendapp.domain.wording import _
+
+NAME = Style(12, leading=15)
+TARGET = Style(16, BOLD, leading=18)
+BESIDE = Style(12, leading=18)
+DETAIL = Style(10, leading=11.5)
+_WEIGHED, _LOT, _INITIALS, _CHECK = 62.0, 60.0, 44.0, 44.0
+# Figures of two groups stand under one another where that costs the names no more than this.
+_MOST_SPARE = 40.0
+# Nothing is written into a master record.
+_LEAST_RECORD_ROW = 8.5 * MM
+
+
+@dataclass(frozen=True)
+class Group:
+    """Lines of one scale or meter. unit: in which masses are shown; own_unit: in which this scale shows them."""
+
+    lines: Sequence[BatchLine]
+    unit: str
+    own_unit: str
+
+    @property
+    def hand_add(self) -> bool:
+        return self.lines[0].hand_add
+
+    @property
+    def by_volume(self) -> bool:
+        return self.lines[0].step_l is not None
+
+    @property
+    def foreign(self) -> bool:
+        """Whether its scale shows another unit than the page."""
+        return not self.by_volume and self.own_unit != self.unit
+
+    @property
+    def volume_unit(self) -> str:
+        return figures.unit_of_meter(self.lines[0].step_l or 1.0)[0]
+
+    @property
+    def title(self) -> str:
+        first = self.lines[0]
+        if first.step_l is not None:
+            step = with_unit(figures.write_volume(first.step_l, first.step_l), self.volume_unit)
+        else:
+            step = with_unit(figures.write_mass(first.step_kg, first.step_kg, self.own_unit), self.own_unit)
+        if first.hand_add:
+            named, bare = _("Hand-adds on {scale}, in steps of {step}"), _("Hand-adds, in steps of {step}")
+        else:
+            named, bare = _("{scale}, in steps of {step}"), _("In steps of {step}")
+        return (named if first.scale else bare).format(scale=first.scale, step=step)
+
+    # -- figures of a line
+
+    def mass(self, line: BatchLine) -> str:
+        """The mass in the unit of the page."""
+        return notation().write(self.mass_shown(line), self.decimals)
+
+    def mass_shown(self, line: BatchLine) -> float:
+        """The mass as it stands on the page, in its unit."""
+        return round(figures.mass_in(line.target_kg, self.unit), self.decimals)
+
+    @property
+    def decimals(self) -> int:
+        """The decimals of masses in the unit of the page.
+
+        What a meter doses needs those of these very masses only: the step of a liquid seldom is a round mass.
+        """
+        steps = max(figures.decimals_of_mass(line.step_kg, self.unit) for line in self.lines)
+        if not self.by_volume or self.unit != "kg":
+            return steps
+        return min(steps, max(figures.decimals_of_step(line.target_kg) for line in self.lines), 6)
+
+    def target(self, line: BatchLine) -> str:
+        """What the operator reads off the scale or sets at the meter."""
+        if line.step_l is not None and line.target_l is not None:
+            return with_unit(figures.write_volume(line.target_l, line.step_l), self.volume_unit)
+        return self.mass(line)
+
+    def tolerance(self, line: BatchLine, unit: str) -> str:
+        """"± 5 kg": in whole steps of the scale, since it shows no others; "" where none is known."""
+        if line.tolerance_kg is None:
+            return ""
+        steps = figures.within_steps(line.tolerance_kg, line.step_kg)
+        if line.step_l is not None:
+            figure = figures.write_volume(steps * line.step_l, line.step_l)
+            return "±\u00a0" + with_unit(figure, self.volume_unit)
+        return "±\u00a0" + with_unit(figures.write_mass(steps * line.step_kg, line.step_kg, unit), unit)
+
+
+def in_order(lines: Sequence[BatchLine]) -> list[list[BatchLine]]:
+    """The lines by scale, the coarsest scale first, then liquid meters, hand-adds last; else they keep their order."""
+    groups: dict[tuple[bool, bool, float, str], list[BatchLine]] = {}
+    for line in lines:
+        step = line.step_kg if line.step_l is None else line.step_l
+        groups.setdefault((line.hand_add, line.step_l is not None, -step, line.scale), []).append(line)
+    return [groups[key] for key in sorted(groups)]
+
+
+def groups_of(batch: Batch) -> list[Group]:
+    unit = batch.mass_unit
+    return [
+        Group(lines, unit, figures.unit_of_scale(lines[0].step_kg, unit) if lines[0].step_l is None else unit)
+        for lines in in_order(batch.lines)
+    ]
+
+
+class Layout:
+    """The columns of every group of a page, the first figure of all of them under one another."""
+
+    def __init__(self, batch: Batch, page: BatchPage, groups: Sequence[Group], total: str, width: float) -> None:
+        self._page = page
+        self._master = page is BatchPage.MASTER
+        self.width = width
+        self._total_kg = batch.total_kg or 1.0
+        self._number = LABEL.width(str(len(batch.lines))) + 2
+        shown = [(group, line) for group in groups for line in group.lines]
+        figure_widths = [TARGET.width(group.target(line)) for group, line in shown]
+        tolerances = [DETAIL.width(group.tolerance(line, group.unit)) for group, line in shown]
+        self._tolerance = max([*tolerances, 54.0]) + 2
+        self._target = max([*figure_widths, *([] if self._master else tolerances), TARGET.width(total), 52.0]) + 2
+        tails = [self._tail(group) for group in groups]
+        self._tail_width = max((_taken(tail) for tail in tails), default=0.0)
+
+    def rows(self, group: Group) -> Rows:
+        tail = self._tail(group)
+        spare = self._tail_width - _taken(tail)
+        if spare <= _MOST_SPARE or self._master:
+            # The first place to write in takes what another group needs more; on the record, the last figure.
+            takes = next((place for place, column in enumerate(tail) if column.write), len(tail) - 1)
+            tail[takes] = dataclasses.replace(tail[takes], width=tail[takes].width + spare)
+        columns = (Column("", self._number), Column(_("Ingredient")), self._target_column(group), *tail)
+        return Rows(columns, self.width, *([_LEAST_RECORD_ROW] if self._master else []))
+
+    def cells(self, group: Group, number: int, line: BatchLine, running: str) -> list[list[Text]]:
+        target = [(group.target(line), TARGET)]
+        tolerance = group.tolerance(line, group.own_unit if self._master else group.unit)
+        if tolerance and not self._master:
+            target.append((tolerance, DETAIL))
+        name = [(line.ingredient, NAME), *((words, DETAIL) for words in details(line, self._page))]
+        tail: list[list[Text]] = [[] for _column in self._tail(group)]
+        beside = self._beside(group, line, running)
+        if beside:
+            tail[0] = beside
+        if self._master:
+            tail[-2:] = [[(tolerance, DETAIL)], [(write_share(line.target_kg / self._total_kg), BESIDE)]]
+        return [[(str(number), LABEL)], name, target, *tail]
+
+    def has_running(self, group: Group) -> bool:
+        """A running total helps on a scale that stands at it; on one that shows another unit it would mislead."""
+        few = len(group.lines) < 2 or group.hand_add or group.by_volume or group.foreign
+        return not self._master and not few
+
+    def _target_column(self, group: Group) -> Column:
+        unit = group.volume_unit if group.by_volume else group.unit
+        words = _("Amount {unit}") if self._master else _("Target {unit}")
+        return Column(words.format(unit=unit), self._target, right=True)
+
+    def _beside(self, group: Group, line: BatchLine, running: str) -> list[Text]:
+        if group.by_volume:
+            return [(group.mass(line), BESIDE)]
+        if group.foreign:
+            mass = figures.write_mass(line.target_kg, line.step_kg, group.own_unit)
+            tolerance = "" if self._master else group.tolerance(line, group.own_unit)
+            return [(mass, BESIDE), *([(tolerance, DETAIL)] if tolerance else [])]
+        return [(running, BESIDE)] if self.has_running(group) else []
+
+    def _tail(self, group: Group) -> list[Column]:
+        """The columns after the target."""
+        found = []
+        if group.by_volume or group.foreign or self.has_running(group):
+            found.append(self._beside_column(group))
+        if self._master:
+            share = Column(_("% of the total"), 62.0, right=True)
+            return [*found, Column(_("Tolerance"), self._tolerance, right=True), share]
+        lot = _("Bin, lot") if self._page is BatchPage.BLANK else _("Lot")
+        weighed = _("Dosed {unit}") if group.by_volume else _("Weighed {unit}")
+        unit = group.volume_unit if group.by_volume else group.own_unit
+        found += [Column(lot, _LOT, write=True), Column(weighed.format(unit=unit), _WEIGHED, write=True)]
+        if group.hand_add:
+            weigher, checker = _("Weighed by"), _("Checked by")
+            return [*found, Column(weigher, _CHECK, write=True), Column(checker, _CHECK, write=True)]
+        return [*found, Column(_("Initials"), _INITIALS, write=True)]
+
+    def _beside_column(self, group: Group) -> Column:
+        if self.has_running(group):
+            title, texts = _("Running {unit}").format(unit=group.unit), running(group)
+        else:
+            unit = group.unit if group.by_volume else group.own_unit
+            title = _("That is {unit}").format(unit=unit)
+            texts = [cell[0][0] for cell in (self._beside(group, line, "") for line in group.lines)]
+        widest = max(BESIDE.width(letters.plain(text)) for text in texts)
+        return Column(title, max(widest, 46.0) + 2, right=True)
+
+
+def running(group: Group) -> list[str]:
+    """The total of the lines of a scale up to each one, as they are shown."""
+    totals = itertools.accumulate(group.mass_shown(line) for line in group.lines)
+    return [notation().write(round(total, group.decimals), group.decimals) for total in totals]
+
+
+def write_share(fraction: float) -> str:
+    """A share in %, with three significant digits where three decimals are too few for them."""
+    return notation().write(fraction * 100, figures.decimals_of(fraction * 100, 3, least=3))
+
+
+def _taken(tail: Sequence[Column]) -> float:
+    return sum(column.width + GUTTER for column in tail)
