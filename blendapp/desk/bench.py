@@ -19,6 +19,7 @@ from blendapp.desk.formulas import Records
 from blendapp.desk.have.pane import HavePane
 from blendapp.desk.have.reading import NUTRIENT
 from blendapp.desk.head import Head
+from blendapp.desk.history.pane import HistoryPane
 from blendapp.desk.listing import command_list
 from blendapp.desk.meet.pane import MeetPane
 from blendapp.desk.mill.pane import MillPane
@@ -26,6 +27,7 @@ from blendapp.desk.mix.pane import MixPane
 from blendapp.desk.prices.effect import EffectPane
 from blendapp.desk.prices.pane import PricesPane
 from blendapp.desk.sheet.pane import SheetPane
+from blendapp.desk.sheet.printed import PrintedPane
 from blendapp.desk.shell.frame import Frame
 from blendapp.desk.strip import Strip
 from blendapp.desk.versions.pane import VersionsPane
@@ -62,9 +64,11 @@ class Bench(QObject):
         self.prices = PricesPane(self.work)
         self.effect = EffectPane(self.work)
         self.sheet = SheetPane(self.work)
+        self.printed = PrintedPane(self.work, self.sheet.printing)
         self.mill = MillPane(self.work)
         self.versions = VersionsPane(self.work)
-        for page in (self.welcome, self.prices, self.effect, self.sheet, self.mill, self.versions):
+        self.history = HistoryPane(self.work)
+        for page in (self.welcome, self.prices, self.effect, self.sheet, self.printed, self.mill, self.versions, self.history):
             frame.middle.addWidget(page)
         self.commands = Commands(frame, command_list(self), self._before_command)
         self._effect_taken = True
@@ -84,20 +88,23 @@ class Bench(QObject):
         self.mill.wanted.connect(self.show_mill)
         self.have.add.clicked.connect(self.have.add_ingredient)
         self.have.column_asked.connect(self._offer_column)
+        self.have.history_asked.connect(self.show_history)
         self.prices.ingredient_wanted.connect(self._ask_ingredient)
         self.mix.limit_wanted.connect(lambda name: self.meet.adding.begin(LimitKind.INGREDIENT, name))
         # What is said of an edit is said after it, so that the edit takes away only what was said before.
         self.work.edited.connect(lambda _edit: self.strip.clear())
         self.work.chosen.connect(self.strip.clear)
-        self.sheet.order.textEdited.connect(self.strip.clear)
-        self.sheet.paper.activated.connect(self.strip.clear)
+        self.sheet.form.order.textEdited.connect(self.strip.clear)
+        self.sheet.form.paper.activated.connect(self.strip.clear)
+        self.sheet.printed_wanted.connect(self.show_printed)
+        self.printed.sheet_wanted.connect(self.show_sheet)
         self.strip.resized.connect(self.frame.place_strip)
         self.frame.middle.currentChanged.connect(
-            lambda _at: self.frame.float_strip(self.frame.middle.currentWidget() is self.sheet))
+            lambda _at: self.frame.float_strip(self.frame.middle.currentWidget() in (self.sheet, self.printed)))
         self.work.said.connect(self.strip.say)
         self.files.said.connect(self.strip.say)
         self.work.opened.connect(self._opened)
-        for page in (self.prices, self.sheet, self.mill, self.versions):
+        for page in (self.prices, self.sheet, self.printed, self.mill, self.versions, self.history):
             page.closed.connect(self.strip.clear)
             page.closed.connect(self.to_bench)
             page.said.connect(self.strip.say)
@@ -208,6 +215,13 @@ class Bench(QObject):
             self.work.choose(formula_id)
             self.to_bench()
 
+    def show_history(self, ingredient_id: int | None = None) -> None:
+        """Show the prices of an ingredient over time; None is the one under the keyboard in the first zone."""
+        chosen = self.have.current() if ingredient_id is None else ingredient_id
+        if chosen is not None:
+            self.show_page(self.history)
+            self.history.begin(chosen)
+
     def show_mill(self, section: str = "") -> None:
         """Show the mill's own page, at one of its sections if one is named."""
         self.mill.fill()
@@ -230,7 +244,19 @@ class Bench(QObject):
         if self.work.formula_id is not None:
             # Shown first, so that the page is drawn at the size it has room for.
             self.show_page(self.sheet)
-            self.sheet.begin()
+            self.sheet.begin_anew()
+
+    def batch_or_print(self) -> None:
+        """Show the batch of the chosen formula; print the page that is looked at where it is shown already."""
+        if self.frame.middle.currentWidget() is self.sheet:
+            self.sheet.to_printer()
+        else:
+            self.show_sheet()
+
+    def show_printed(self, record_id: int | None = None) -> None:
+        """Show the batch sheets that were printed, at one of them if it is named."""
+        self.show_page(self.printed)
+        self.printed.begin(record_id)
 
     def widen(self, place: int) -> None:
         """Give a zone the whole window, or give it back, and put the keyboard there."""
@@ -277,12 +303,17 @@ class Bench(QObject):
         things += [
             Found(one.name, _("ingredient"), partial(self.to_ingredient, one.id)) for one in library.ingredients
         ]
+        things += [
+            Found(_("{name}: prices over time").format(name=one.name), _("price history"),
+                  partial(self.show_history, one.id))
+            for one in library.ingredients
+        ]
         if self.work.formula is not None:
             things += self.meet.found()
         things += [
             Found(one.name, _("nutrient"), partial(self.to_nutrient, one.id)) for one in library.nutrients
         ]
-        return things + self.mill.found() + self.commands.found()
+        return things + self.mill.found() + self.printed.found(self.show_printed) + self.commands.found()
 
     def _ask_ingredient(self, name: str) -> None:
         things = [

@@ -37,6 +37,8 @@ def _file(bench: Bench) -> list[Command]:
         Command("prices", _("Bring in a price list…"), "exchange", bench.bring_in_prices, "Ctrl+I", writable),
         Command("effect", _("What the last prices did"), "exchange", bench.back_to_effect, "",
                 lambda: bench.effect.has_any),
+        Command("history", _("Prices of this ingredient over time"), "exchange", bench.show_history, "Ctrl+H",
+                lambda: bench.have.current() is not None),
         Command("import", _("Bring in a workbook…"), "exchange", files.import_workbook, "", writable),
         Command("export", _("Write the workbook…"), "exchange", files.export_workbook, "Ctrl+E", is_open),
     ]
@@ -99,8 +101,9 @@ def _formula(bench: Bench) -> list[Command]:
 
 def _paper(bench: Bench) -> list[Command]:
     return [
-        Command("sheet", _("Batch sheet…"), "paper", bench.show_sheet, "Ctrl+P",
+        Command("sheet", _("Batch of this formula…"), "paper", bench.batch_or_print, "Ctrl+P",
                 lambda: bench.work.formula is not None),
+        Command("printed", _("Printed batch sheets"), "paper", bench.show_printed, "", lambda: bench.work.is_open),
     ]
 
 

@@ -13,6 +13,7 @@ from PySide6.QtWidgets import QApplication, QLineEdit, QWidget
 from blendapp.desk.bench import Bench
 from blendapp.desk.furnishing import furnish
 from blendapp.desk.rail.geometry import End
+from blendapp.desk.scenes_lists import history
 from blendapp.desk.shell.frame import Frame
 from blendapp.desk.start import make_app
 from blendapp.desk.theme import dress
@@ -68,9 +69,9 @@ def take_all(out_dir: Path, workbook: Path, price_list: Path, folder: Path, scal
     mill.close()
     bench.start(str(path))
     frame.activateWindow()
-    scenes = (_bench, _hands, _wide, _forms, _faults, _finding, _formulas, _prices, _sheet, _mill, _versions)
+    scenes = (_bench, _hands, _wide, _forms, _faults, _finding, _formulas, _prices, _sheet, _mill, _versions, history)
     for scene in scenes:
-        if only and scene.__name__ != f"_{only}":
+        if only and scene.__name__.lstrip("_") != only:
             continue
         scene(studio, bench, price_list)
         bench.to_bench()

@@ -35,6 +35,7 @@ HOMES = {
     "reportlab": {"documents"},
     "pypdfium2": {"documents"},
     "argon2": {"services"},
+    "pyqtgraph": {"desk.plots"},
 }
 # May be used by any room but these two.
 ELSEWHERE = {"platformdirs": {"domain", "optimise"}}
@@ -110,6 +111,7 @@ BREACHES = [
     ("tables", "blendapp.storage.bad", "import pandas"),
     ("mill-file", "blendapp.services.bad", "from sqlalchemy import select"),
     ("paper", "blendapp.desk.bad", "import pypdfium2"),
+    ("plots", "blendapp.desk.bad", "import pyqtgraph"),
     ("passwords", "blendapp.storage.bad", "from argon2 import PasswordHasher"),
 ]
 

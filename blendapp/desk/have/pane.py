@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from functools import partial
 
-from PySide6.QtCore import QPoint, Qt, Signal
+from PySide6.QtCore import QModelIndex, QPoint, Qt, Signal
 from PySide6.QtWidgets import QButtonGroup, QHBoxLayout, QLineEdit, QMenu, QPushButton, QTableView, QVBoxLayout, QWidget
 
 from blendapp.desk.have.model import PRICES, HaveModel, column_sets
@@ -25,12 +25,17 @@ from blendapp.services import edits
 from blendapp.services.mill import Edit
 
 WIDE_PX = 800
+# Cells of a price that are not typed into.
+HISTORY_KEYS = ("holds", "since", "source")
 
 
 class HavePane(QWidget):
-    """The ingredients of the mill. column_asked: the menu of a nutrient's column is wanted, to be filled."""
+    """The ingredients of the mill. column_asked: the menu of a nutrient's column is wanted, to be filled.
+    history_asked: the prices of an ingredient over time are to be shown.
+    """
 
     column_asked = Signal(int, QMenu)
+    history_asked = Signal(int)
 
     def __init__(self, work: Work, zone: Zone) -> None:
         super().__init__()
@@ -80,6 +85,7 @@ class HavePane(QWidget):
         table.resized.connect(self._fit_name)
         table.pasted.connect(self._paste)
         table.cleared.connect(self._clear)
+        table.asked.connect(self._asked)
         table.grip.proposed.connect(self._propose)
         table.grip.given.connect(self._give)
         table.grip.taken_back.connect(self._take_back)
@@ -93,6 +99,16 @@ class HavePane(QWidget):
         head.customContextMenuRequested.connect(self._offer_column)
 
     # -- what is shown
+
+    def current(self) -> int | None:
+        """The ingredient under the keyboard, or that was there last."""
+        index = self.table.currentIndex()
+        return self.model.owner(index) if index.isValid() else None
+
+    def _asked(self, index: QModelIndex) -> None:
+        """Enter on what is said of a price shows all of them."""
+        if self.model.key(index) in HISTORY_KEYS:
+            self.history_asked.emit(self.model.owner(index))
 
     def _opened(self) -> None:
         self.model.refusals.clear()
@@ -234,7 +250,8 @@ class HavePane(QWidget):
         old = self.work.library.quote_in_force(owner[0], on)
         if old is not None:
             # A quote of the same day would win by its identifier; the trial must stand above it.
-            trial = Quote(1 << 60, owner[0], value, "t", valid_from=max(on, old.valid_from or on), recorded=on)
+            trial = Quote(1 << 60, owner[0], value, "t", site_id=old.site_id, valid_from=max(on, old.valid_from or on),
+                          recorded=on)
         self.work.try_changes([added(trial)])
 
     def _give(self, owner: tuple[int, str], _end: End, value: float) -> None:
@@ -276,6 +293,7 @@ class HavePane(QWidget):
             menu.addAction(_("Admit {name} to this formula").format(name=name), lambda: self.admit(owner))
         elif self.work.formula_id is not None and owner in self.work.library.listed_ids(self.work.formula_id):
             menu.addAction(_("Take {name} off this formula's list").format(name=name), lambda: self.unlist(owner))
+        menu.addAction(_("Prices of {name} over time").format(name=name), lambda: self.history_asked.emit(owner))
         menu.addAction(_("Rename"), lambda: self.rename(owner))
         menu.addAction(_("Remove {name}").format(name=name), lambda: self.remove(owner))
         return menu
