@@ -15,7 +15,8 @@ class PriceRow(ListRow):
 
     price: as read, money per `per`; entered: the cell as it stands. price_per_t, old_price_per_t: money of the mill per
     tonne as fed. dry_matter_price_per_t: likewise of dry matter, where the list gives the price so. unit: what the list
-    said, as it said it. None: not known.
+    said, as it said it. None: not known. currency: code, sign or word of another currency, in which `price` still
+    stands; then it has no price per tonne.
     """
 
     price: float | None = None
@@ -29,6 +30,7 @@ class PriceRow(ListRow):
     valid_to: datetime.date | None = None
     terms: Terms | None = None
     dry_matter_price_per_t: float | None = None
+    currency: str = ""
 
 
 @dataclass(frozen=True)

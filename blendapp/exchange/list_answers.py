@@ -35,7 +35,7 @@ class Answers:
         if given is not None:
             return given
         known = self._remembered.get((asked, fold(about)))
-        if known is None or (asked is Asked.RATE and known.given != self.today):
+        if known is None or (asked is Asked.RATE and known.rate is not None and known.given != self.today):
             return None
         return Answer(asked, known.name, known.answer, known.ingredient_id, known.rate, known.given)
 

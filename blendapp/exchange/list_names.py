@@ -80,6 +80,11 @@ class NameFinder:
         found = self._answer(name) if name else None
         return found is not None and found.answer == LEAVE_OUT
 
+    def by_id(self, ingredient_id: int | None) -> Ingredient | None:
+        """The ingredient of an answer; None where none was meant, or it is gone."""
+        known = ingredient_id is not None and ingredient_id in self.library.records["ingredient"]
+        return self.library.ingredient(ingredient_id) if known and ingredient_id is not None else None
+
     def find(self, name: str) -> Match:
         folded = fold(name)
         if folded not in self._found:

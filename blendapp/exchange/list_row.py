@@ -54,16 +54,21 @@ class RowReading:
             return PLAIN.write_exact(float(value))
         return ""
 
-    def ask(self, asked: Asked, about: str, text: str, choices: tuple[str, ...] = ()) -> None:
-        self.questions.append(text)
+    def ask(self, asked: Asked, about: str, text: str, choices: tuple[str, ...] = (), reason: str = "") -> None:
+        """Asks. reason: what is said of this row, where that is more than the question."""
+        self.questions.append(reason or text)
         self.open.append(Question(asked, about, text, choices))
 
     def confirm(self, asked: Asked, text: str) -> None:
         """Asks about this row, unless a person has said that it counts."""
-        if self.answers.of_row(asked, self.raw.sheet, self.row + 1) == TAKE:
+        if self.is_taken(asked):
             self.remarks.append(_("Taken, as answered."))
         else:
             self.ask(asked, "", text, (TAKE, LEAVE_OUT))
+
+    def is_taken(self, asked: Asked) -> bool:
+        """Whether a person has said that this row counts in spite of what was asked."""
+        return self.answers.of_row(asked, self.raw.sheet, self.row + 1) == TAKE
 
     def is_left_out(self) -> bool:
         """Whether a person has answered that the row, or whatever bears its name, is nothing for the mill."""
@@ -96,8 +101,13 @@ class RowReading:
     def match(self, without_name: str) -> Match:
         """Which ingredient the row is about. without_name: the question where it has no name."""
         if not self.name:
-            self.questions.append(without_name)
-            return Match(None)
+            answer = self.answers.about_row(Asked.NAMELESS, self.raw.sheet, self.row + 1)
+            ingredient = None if answer is None else self.names.by_id(answer.ingredient_id)
+            if ingredient is None:
+                self.ask(Asked.NAMELESS, "", without_name, (LEAVE_OUT,))
+                return Match(None)
+            self.remarks.append(_("“{name}”, as answered.").format(name=ingredient.name))
+            return Match(ingredient)
         match = self.names.find(self.name)
         if match.ingredient is None:
             self.ask(Asked.INGREDIENT, self.name, match.reason, match.candidates)
@@ -116,7 +126,7 @@ class RowReading:
             return value
         text = self.text(column)
         if not isinstance(value, str):
-            self.questions.append(_("“{text}” is no date; say which day is meant.").format(text=text))
+            self._ask_about_no_date(text)
             return None
         return self.read_date(text, self.headings.get(column, column_letters(column)), order)
 
@@ -126,9 +136,18 @@ class RowReading:
             order = next((one for one in DateOrder if answer and one.value == answer.answer), None)
         found = date_in_column(text, order)
         if found is None:
-            said = _("“{text}” is no date, or could be two; say which day is meant.").format(text=text)
             if len(date_readings(text)) == 2:
-                self.ask(Asked.DATES, heading, said, tuple(one.value for one in DateOrder))
+                said = _("“{text}” could be two days; say whether the day stands first or the month.")
+                self.ask(Asked.DATES, heading, said.format(text=text), tuple(one.value for one in DateOrder))
             else:
-                self.questions.append(said)
+                self._ask_about_no_date(text)
         return found
+
+    def _ask_about_no_date(self, text: str) -> None:
+        """Words where a day should stand; once answered, they count as none wherever the source uses them."""
+        answer = self.answers.find(Asked.DATES, text)
+        if answer is not None and answer.answer == TAKE:
+            self.remarks.append(_("“{text}” was taken for no day, as answered.").format(text=text))
+            return
+        said = _("“{text}” is no date; say that it counts as no day, or write the day in the list.").format(text=text)
+        self.ask(Asked.DATES, text, said, (TAKE,))

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 
-from blendapp.domain.list_rows import ADD, ColumnRole, Question
+from blendapp.domain.list_rows import ADD, LEAVE_OUT, ColumnRole, Question
 from blendapp.domain.mills import Asked
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
@@ -66,6 +66,7 @@ def _sum_given(by_role: dict[ColumnRole, Priced]) -> Choice:
     base, freight, whole = (value for value in values if value is not None)
     if abs(base + freight - whole) <= _ROUNDING:
         return Choice((total,), _("The price is the sum of base price and freight."))
-    shown = [PLAIN.write_exact(value) for value in (base, freight, whole)]
+    shown = [PLAIN.write_exact(round(value, 6)) for value in (base, freight, whole, base + freight)]
     text = _("{base} and {freight} do not add up to {total}; say which price holds.")
-    return Choice((total,), doubt=text.format(base=shown[0], freight=shown[1], total=shown[2]))
+    text = text.format(base=shown[0], freight=shown[1], total=shown[2])
+    return Choice((total,), doubt=text, open=(Question(Asked.AMOUNT, "", text, (shown[2], shown[3], LEAVE_OUT)),))

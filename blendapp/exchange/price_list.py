@@ -15,8 +15,10 @@ from blendapp.exchange.list_cells import first_text
 from blendapp.exchange.list_files import open_list
 from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_placing import Placing
+from blendapp.exchange.list_sender import read_sender
 from blendapp.exchange.price_checks import ask_about_duplicates, ask_about_leaps
 from blendapp.exchange.price_columns import LIST_ROLES
+from blendapp.exchange.price_days import ask_once_about_expired
 from blendapp.exchange.price_row import read_row
 from blendapp.exchange.price_segments import Segment, pointed_out_table, read_segments, source_table
 from blendapp.exchange.price_tables import find_table
@@ -39,6 +41,9 @@ def read_price_list(
     opened = open_list(path, sheet)
     source = source_of(source or opened.file.name)
     answered = Answers(library, source, answers, today)
+    sender = read_sender(answered, library)
+    if sender.site_id is not None:
+        library = library.at_site(sender.site_id)
     names = NameFinder(library, answered)
     rows: list[PriceRow] = []
     sheets = []
@@ -50,10 +55,10 @@ def read_price_list(
     placing.note_what_was_not_used(
         column.heading for shown in sheets for table in shown.tables for column in table.columns
     )
-    rows = ask_about_leaps(ask_about_duplicates(rows, answered), answered, library)
+    rows = ask_once_about_expired(ask_about_leaps(ask_about_duplicates(rows, answered), answered, library))
     return PriceListReading(
-        opened.file.name, opened.file.digest, tuple(rows), (*opened.notes, *placing.notes), source, tuple(answers),
-        tuple(sheets), currency=library.mill.currency,
+        opened.file.name, opened.file.digest, tuple(rows), (*opened.notes, *sender.notes, *placing.notes), source,
+        tuple(answers), tuple(sheets), sender.supplier_id, sender.site_id, currency=library.mill.currency,
     )
 
 

@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import datetime
-from dataclasses import replace
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
-from blendapp.domain.ingredients import Ingredient
+from blendapp.domain.ingredients import Basis, Ingredient
 from blendapp.domain.library import Library
-from blendapp.domain.list_rows import TAKE, ColumnRole, Fate
+from blendapp.domain.list_rows import LEAVE_OUT, TAKE, ColumnRole, Fate
 from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
@@ -16,15 +16,17 @@ from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.quotes import Terms
 from blendapp.domain.wording import _
 from blendapp.exchange.list_names import NameFinder
-from blendapp.exchange.list_numbers import DecimalSign, decide_date_order
+from blendapp.exchange.list_numbers import DecimalSign
 from blendapp.exchange.list_row import TOTALS, RowReading
 from blendapp.exchange.price_cells import PriceCell, read_price_cell
 from blendapp.exchange.price_choice import Priced, choose_price
 from blendapp.exchange.price_columns import PriceColumn
+from blendapp.exchange.price_days import read_days
+from blendapp.exchange.price_money import own_money
 from blendapp.exchange.price_terms import WITHOUT_FREIGHT, read_terms
 from blendapp.exchange.price_units import AmbiguousPriceUnit, UnknownPriceUnit, bag_with_weight, read_price_unit
-from blendapp.exchange.price_units_read import TonnePrice, UnitReading, foreign_money, per_tonne, read_unit
-from blendapp.exchange.price_words import NO_WORDS, Money, Words, read_unit_words, split_dry, split_money
+from blendapp.exchange.price_units_read import TonnePrice, UnitReading, bushel_said, per_tonne, read_unit
+from blendapp.exchange.price_words import NO_WORDS, Words, read_unit_words, split_dry
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
 
 if TYPE_CHECKING:
@@ -36,6 +38,19 @@ def read_row(
 ) -> PriceRow:
     """The fate of one row below the headings."""
     return _Reading(raw, row, segment, library, names, today).result()
+
+
+@dataclass(frozen=True)
+class _Part:
+    """found: None where the price cannot be reckoned. unit: of the list. dry: the price is for dry matter.
+
+    foreign: the other currency in which the price still stands.
+    """
+
+    found: TonnePrice | None
+    unit: UnitReading
+    dry: bool
+    foreign: str = ""
 
 
 class _Reading(RowReading):
@@ -88,31 +103,24 @@ class _Reading(RowReading):
             [index for index in used if index is not None],
             _("The column “{name}” with names or prices is hidden in the list; say whether it counts."),
         )
-        if self.table.side_by_side:
-            self.questions.append(_("Two tables seem to stand side by side; put one below the other."))
-        choice = choose_price(self.table, prices, self.answers)
-        for column, cell in prices if len(prices) > 1 and len(choice.parts) == 1 and choice.doubt else choice.parts:
-            self._ask_about_cell(column, cell)
-        if choice.doubt:
-            self.questions.append(choice.doubt)
-            self.open += choice.open
-        if choice.remark:
-            self.remarks.append(choice.remark)
+        parts = self._parts(prices)
         match = self.match(_("The price has no name; say which ingredient it is for."))
         ingredient = match.ingredient
-        parts = [self._part(column, cell, ingredient) for column, cell in choice.parts]
-        found, unit = (parts[0][0], parts[0][1]) if len(parts) == 1 else (_added(parts), parts[0][1])
-        first, last = self._days()
-        value = found.price if found else choice.parts[0][1].value
+        read = [self._part(column, cell, ingredient) for column, cell in parts]
+        found, unit = (read[0].found, read[0].unit) if len(read) == 1 else (_added(read), read[0].unit)
+        days = read_days(self, self.segment, self.today)
+        if days.left_out:
+            return self._entry(Fate.IGNORED, _("Left out, as answered."))
+        value = found.price if found else parts[0][1].value
         if ingredient is not None and value is not None and value <= 0:
             text = _("The price {price} is 0 or below; type it for the ingredient if it is meant.")
             self.confirm(Asked.SIGN, text.format(price=PLAIN.write_exact(value)))
-        terms = self._terms(choice.parts, ingredient)
-        self._ask_about_what_is_added(choice.parts)
+        terms = self._terms(parts, ingredient)
+        self._ask_about_what_is_added(parts)
         dry = None
-        if found is not None and any(part[2] for part in parts):
+        if found is not None and any(part.dry for part in read):
             found, dry = self._of_dry_matter(found, ingredient)
-        if any(cell.as_text for _column, cell in choice.parts):
+        if any(cell.as_text for _column, cell in parts):
             self.remarks.append(_("The number is stored as text."))
         old = None if ingredient is None else self.library.price_per_t(ingredient.id, self.today)
         fate = Fate.QUESTION if self.questions else Fate.ACCEPTED
@@ -126,41 +134,68 @@ class _Reading(RowReading):
             bushel_lb=found.bushel_lb if found else None,
             price_per_t=found.per_t if found else None,
             unit=unit.said or None,
-            valid_from=first,
+            valid_from=days.first,
             old_price_per_t=old,
-            entered=" + ".join(cell.entered for _column, cell in choice.parts),
-            valid_to=last,
+            entered=" + ".join(cell.entered for _column, cell in parts),
+            valid_to=days.last,
             terms=terms,
             dry_matter_price_per_t=dry,
             questions=tuple(dict.fromkeys(self.open)),
+            currency=read[0].foreign,
         )
+
+    def _parts(self, prices: list[Priced]) -> tuple[Priced, ...]:
+        """The price that counts, or a base price and a freight to be added, with what is to be asked about them."""
+        choice = choose_price(self.table, prices, self.answers)
+        answer = self.answers.of_row(Asked.AMOUNT, self.raw.sheet, self.row + 1)
+        if answer:
+            try:
+                amount = PLAIN.read(answer)
+            except ValueError as error:
+                self.ask(Asked.AMOUNT, "", str(error), (LEAVE_OUT,))
+                return choice.parts[:1]
+            self.remarks.append(_("The price is {price}, as answered.").format(price=PLAIN.write_exact(amount)))
+            column, cell = choice.parts[0]
+            return ((column, replace(cell, value=amount, as_text=False)),)
+        for column, cell in prices if len(prices) > 1 and len(choice.parts) == 1 and choice.doubt else choice.parts:
+            self._ask_about_cell(column, cell)
+        if choice.doubt:
+            self.questions.append(choice.doubt)
+            self.open += choice.open
+        if choice.remark:
+            self.remarks.append(choice.remark)
+        return choice.parts
 
     def _ask_about_cell(self, column: PriceColumn, cell: PriceCell) -> None:
         if cell.both_ways:
             self.ask(Asked.DECIMAL, column.heading, cell.doubt, tuple(sign.value for sign in DecimalSign))
         elif cell.doubt:
-            self.questions.append(cell.doubt)
+            self.ask(Asked.AMOUNT, "", cell.doubt, (LEAVE_OUT,))
 
-    def _part(
-        self, column: PriceColumn, cell: PriceCell, ingredient: Ingredient | None
-    ) -> tuple[TonnePrice | None, UnitReading, bool]:
-        """A price in money of the mill per tonne, the unit of the list, and whether it is for dry matter."""
+    def _part(self, column: PriceColumn, cell: PriceCell, ingredient: Ingredient | None) -> _Part:
+        """One price, or one freight, in money of the mill per tonne."""
         beside = self.text(self.table.first(ColumnRole.UNIT))
         pack = self.text(self.table.first(ColumnRole.PACK))
         words = read_unit_words(bag_with_weight(beside, pack)) if beside else NO_WORDS
         unit = self._unit(column, cell, words)
-        value = self._own_money(column, cell, words)
+        notes = self.segment.notes.units
+        money = own_money(
+            self, cell.value, [cell.money, column.words.money, words.money],
+            self.text(self.table.first(ColumnRole.CURRENCY)), [note.money for note in notes],
+            self.library.mill.currency,
+        )
         basis, _rest = split_dry(self.text(self.table.first(ColumnRole.TERMS)))
-        dry = cell.dry or column.words.dry or words.dry or basis
-        dry = dry or any(note.dry for note in self.segment.notes.units)
-        if value is None or unit.unit is None:
-            return None, unit, dry
-        found = per_tonne(value, unit.unit, ingredient)
+        dry = cell.dry or column.words.dry or words.dry or basis or any(note.dry for note in notes)
+        if money.value is None or unit.unit is None:
+            return _Part(None, unit, dry, money.foreign)
+        name = "" if ingredient is None else ingredient.name
+        answer = self.answers.find(Asked.UNIT, name) if name else None
+        found = per_tonne(money.value, unit.unit, ingredient, None if answer is None else bushel_said(answer.answer))
         if found.doubt:
-            self.questions.append(found.doubt)
+            self.ask(Asked.UNIT, name, found.doubt)
         if found.remark:
             self.remarks.append(found.remark)
-        return found, unit, dry
+        return _Part(found, unit, dry)
 
     def _unit(self, column: PriceColumn, cell: PriceCell, words: Words) -> UnitReading:
         beside = Words(words.money, words.unit, "/" + words.rest if words.rest else "")
@@ -182,56 +217,18 @@ class _Reading(RowReading):
         self.ask(Asked.UNIT, reading.about, reading.doubt, reading.choices)
         return reading
 
-    def _own_money(self, column: PriceColumn, cell: PriceCell, words: Words) -> float | None:
-        """The price in money of the mill, None where there is none or its currency is in doubt."""
-        sources: list[Money] = [cell.money, column.words.money, words.money]
-        currency = self.text(self.table.first(ColumnRole.CURRENCY))
-        if currency:
-            money, _rest = split_money(currency.upper() if len(currency) == 3 else currency)
-            sources.append(money)
-            if money.currencies is None:
-                self.questions.append(_("“{text}” is not known as a currency.").format(text=currency))
-        if all(money.currencies is None for money in sources):
-            sources += [note.money for note in self.segment.notes.units]
-        value, own = cell.value, self.library.mill.currency
-        if any(money.cents for money in sources):
-            answer = self.answers.find(Asked.CENTS, "")
-            if answer is None or answer.answer != TAKE:
-                text = _("The price is in hundredths of {own}; give it in {own}.").format(own=own)
-                self.ask(Asked.CENTS, "", text, (TAKE,))
-                value = None
-            elif value is not None:
-                value = value / 100
-                self.remarks.append(_("Hundredths were turned into whole ones, as answered."))
-        theirs = foreign_money(sources, own)
-        return self._exchanged(value, theirs) if theirs else value
-
-    def _exchanged(self, value: float | None, theirs: str) -> float | None:
-        own = self.library.mill.currency
-        answer = self.answers.find(Asked.RATE, theirs)
-        if answer is not None and answer.rate is not None and answer.rate > 0 and answer.given is not None:
-            text = _("Converted at {rate} {own} for one {theirs}, the rate of {day}.")
-            self.remarks.append(text.format(
-                rate=PLAIN.write_exact(answer.rate), own=own, theirs=theirs, day=answer.given.isoformat()
-            ))
-            return None if value is None else value * answer.rate
-        text = _("The price is in {theirs} and the mill reckons in {own}; give it in {own}, or a rate and its day.")
-        text = text.format(theirs=theirs, own=own)
-        last = self.answers.last_rate(theirs)
-        if last is not None and last.rate is not None and last.given is not None:
-            text += " " + _("The rate of {day} was {rate}.").format(
-                day=last.given.isoformat(), rate=PLAIN.write_exact(last.rate)
-            )
-        self.ask(Asked.RATE, theirs, text)
-        return None
-
     def _of_dry_matter(self, found: TonnePrice, ingredient: Ingredient | None) -> tuple[TonnePrice, float | None]:
         """A price for dry matter as one as fed, and the price for dry matter per tonne."""
         fraction = None if ingredient is None else ingredient.dry_matter_fraction
         if fraction is None or found.per_t is None:
             if ingredient is not None and found.per_t is not None:
-                text = _("The price is for dry matter, and the dry matter of “{name}” is not known; enter it.")
-                self.questions.append(text.format(name=ingredient.name))
+                answer = self.answers.find(Asked.BASIS, ingredient.name)
+                if answer is not None and answer.answer == Basis.AS_FED:
+                    self.remarks.append(_("The price was taken as fed, as answered."))
+                    return found, None
+                text = _("The price is for dry matter, and the dry matter of “{name}” is not known; enter it in the "
+                         "mill, or say that the price is as fed.")
+                self.ask(Asked.BASIS, ingredient.name, text.format(name=ingredient.name), (Basis.AS_FED.value,))
             return replace(found, per_t=None), found.per_t
         as_fed = found.per_t * fraction
         text = _("{dry} per t of dry matter is {as_fed} per t as fed at {percent} % of dry matter.")
@@ -273,28 +270,10 @@ class _Reading(RowReading):
         if answer is None or answer.answer != TAKE:
             self.ask(Asked.PRICE, about, text, (TAKE,))
 
-    def _days(self) -> tuple[datetime.date | None, datetime.date | None]:
-        first = self._date(ColumnRole.VALID_FROM, self.segment.notes.valid_from)
-        last = self._date(ColumnRole.VALID_TO, self.segment.notes.valid_to)
-        if first is not None and last is not None and last < first:
-            text = _("The price ends on {last}, before it begins on {first}; say which days are meant.")
-            self.questions.append(text.format(last=last.isoformat(), first=first.isoformat()))
-        elif last is not None and last < self.today:
-            text = _("The price expired on {day}; ask for a new one.")
-            self.confirm(Asked.EXPIRED, text.format(day=last.isoformat()))
-        return first, last
 
-    def _date(self, role: ColumnRole, noted: str) -> datetime.date | None:
-        """The day in a column, or else in a note over the whole table."""
-        index = self.table.first(role)
-        if index is None or kind_of(self.raw.cell(self.row, index)) is CellKind.BLANK:
-            return self.read_date(noted, noted, decide_date_order([noted])) if noted else None
-        return self.date(index, self.segment.dates.get(index))
-
-
-def _added(parts: list[tuple[TonnePrice | None, UnitReading, bool]]) -> TonnePrice | None:
+def _added(parts: list[_Part]) -> TonnePrice | None:
     """A base price and its freight as one; per tonne where their units differ."""
-    prices = [part[0] for part in parts]
+    prices = [part.found for part in parts]
     first = prices[0]
     if first is None or any(one is None or one.per_t is None for one in prices):
         return None

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 from dataclasses import dataclass
 
@@ -76,8 +77,22 @@ class TonnePrice:
     remark: str = ""
 
 
-def per_tonne(price: float, unit: PriceUnit, ingredient: Ingredient | None) -> TonnePrice:
-    """A price in its unit as money per tonne; a bushel by the weight entered for the ingredient, else the legal one."""
+def bushel_said(answer: str) -> float | None:
+    """A bushel in lb, as it was answered: 56, 56 lb or 25.4 kg; None where it is no mass above 0."""
+    found = re.fullmatch(r"([0-9]+(?:[.,][0-9]+)?) *(lbs?|kg)?", answer.strip().casefold())
+    mass = float(found[1].replace(",", ".")) if found else 0.0
+    if not mass:
+        return None
+    return mass / units.LB_KG if found and found[2] == "kg" else mass
+
+
+def per_tonne(
+    price: float, unit: PriceUnit, ingredient: Ingredient | None, bushel_lb: float | None = None
+) -> TonnePrice:
+    """A price in its unit as money per tonne; a bushel by the weight entered for the ingredient, else the legal one.
+
+    bushel_lb: what a person said for this source, where neither is known.
+    """
     amount = price if unit.factor == 1 else price * unit.factor
     if unit.per != units.BUSHEL:
         return TonnePrice(amount, unit.per, None, units.price_per_t(amount, unit.per))
@@ -89,7 +104,10 @@ def per_tonne(price: float, unit: PriceUnit, ingredient: Ingredient | None) -> T
         weight = units.legal_bushel_lb(ingredient.name)
         if weight:
             remark = _("The legal bushel of {weight} lb was taken.").format(weight=f"{weight:g}")
+    if not weight and bushel_lb:
+        weight = bushel_lb
+        remark = _("The bushel was taken at {weight} lb, as answered.").format(weight=f"{weight:g}")
     if not weight:
-        text = _("The weight of a bushel of “{name}” is not known; enter it under Bushel lb.")
+        text = _("The weight of a bushel of “{name}” is not known; say it, as 56 lb, or enter it under Bushel lb.")
         return TonnePrice(amount, unit.per, None, None, text.format(name=ingredient.name))
     return TonnePrice(amount, unit.per, weight, units.price_per_t(amount, unit.per, weight), remark=remark)
