@@ -12,9 +12,10 @@ from blendapp.domain.fields import fields_of
 from blendapp.domain.formulas import Amounts, Formula, Limit, LimitBasis, LimitKind, MixingStep, SubjectKind
 from blendapp.domain.ingredients import Ingredient, Value
 from blendapp.domain.library import NAMED_KINDS, Library
+from blendapp.domain.mills import PAPERS, SHEET_MASSES
 from blendapp.domain.names import fold
 from blendapp.domain.nutrients import BUILT_IN, KEYS, Nutrient
-from blendapp.domain.plant import Bin, Mixer, Scale
+from blendapp.domain.plant import Bin, Lot, LotValue, Mixer, Scale
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import KIND_OF, Change, Record
 from blendapp.domain.wording import _
@@ -82,7 +83,7 @@ def _mill(record: Any, library: Library) -> list[Finding]:
         if value and value not in known:
             text = _("“{value}” is not known here; use one of {known}, or leave it blank.")
             found.append((name, text.format(value=value, known=", ".join(known))))
-    for name, choice in (("sheet_mass", ("kg", "lb")), ("paper", ("A4", "letter"))):
+    for name, choice in (("sheet_mass", SHEET_MASSES), ("paper", PAPERS)):
         value = getattr(record, name)
         if value not in choice:
             text = _("“{value}” is not known here; use one of {known}.")
@@ -115,7 +116,7 @@ def _ingredient(record: Ingredient, library: Library) -> list[Finding]:
     return [("made_by_formula_id", sentence)] if sentence else []
 
 
-def _value(record: Value, library: Library) -> list[Finding]:
+def _value(record: Value | LotValue, library: Library) -> list[Finding]:
     nutrient = library.records["nutrient"].get(record.nutrient_id)
     try:
         unit = units.concentration(record.unit)
@@ -130,7 +131,7 @@ def _value(record: Value, library: Library) -> list[Finding]:
     return []
 
 
-def _odd_value(record: Value, library: Library) -> list[Finding]:
+def _odd_value(record: Value | LotValue, library: Library) -> list[Finding]:
     nutrient = library.nutrient(record.nutrient_id)
     unit = units.concentration(record.unit)
     if unit.family is units.Family.MASS and record.amount * unit.factor > 1 and "protein" not in nutrient.key:
@@ -184,6 +185,20 @@ def _bin(record: Bin, library: Library) -> list[Finding]:
     if lot is not None and lot.ingredient_id != record.ingredient_id:
         text = _("Lot {lot} is of another ingredient than the one in the bin; choose a lot of that, or none.")
         return [("lot_id", text.format(lot=lot.name))]
+    return []
+
+
+def _lot(record: Lot, library: Library) -> list[Finding]:
+    return [] if record.name.strip() else [("name", _("A name is needed here."))]
+
+
+def _odd_lot(record: Lot, library: Library) -> list[Finding]:
+    if any(
+        lot.ingredient_id == record.ingredient_id and lot.id != record.id and fold(lot.name) == fold(record.name)
+        for lot in library.records["lot"].values()
+    ):
+        text = _("Another lot of the same ingredient is called “{name}” too; give one of them another name.")
+        return [("name", text.format(name=record.name))]
     return []
 
 
@@ -325,6 +340,8 @@ _FAULTS: dict[str, Callable[[Any, Library], list[Finding]]] = {
     "quote": _quote,
     "scale": _scale,
     "bin": _bin,
+    "lot": _lot,
+    "lot_value": _value,
     "formula": _formula,
     "mixing_step": _mixing_step,
     "mixer": _spread,
@@ -332,6 +349,8 @@ _FAULTS: dict[str, Callable[[Any, Library], list[Finding]]] = {
 }
 _ODDITIES: dict[str, Callable[[Any, Library], list[Finding]]] = {
     "value": _odd_value,
+    "lot": _odd_lot,
+    "lot_value": _odd_value,
     "formula": limit_oddities.odd_formula,
     "limit": limit_oddities.odd_limit,
 }

@@ -6,6 +6,10 @@ import datetime
 from dataclasses import dataclass
 from enum import StrEnum
 
+# What sheets may be weighed in, and printed on.
+SHEET_MASSES = ("kg", "lb")
+PAPERS = ("A4", "letter")
+
 
 @dataclass(frozen=True)
 class MillInfo:

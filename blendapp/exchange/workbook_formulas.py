@@ -28,7 +28,7 @@ from blendapp.domain.units import BLEND_INCLUSION, CONCENTRATION, PER_DAY, RATIO
 from blendapp.domain.wording import _
 from blendapp.exchange.suggestions import did_you_mean
 from blendapp.exchange.workbook_draft import Draft
-from blendapp.exchange.workbook_library import known_unit
+from blendapp.exchange.workbook_library import known_unit, number_or
 from blendapp.exchange.workbook_sheet import Row, Sheet
 
 _BUILT_IN = {fold(DRY_MATTER): DRY_MATTER_SUBJECT, fold(MOISTURE): MOISTURE_SUBJECT}
@@ -42,15 +42,16 @@ def read_formulas(draft: Draft, sheet: Sheet) -> list[tuple[Row, Formula]]:
         name = draft.claim("formula", row, "Formula")
         before: Formula | None = draft.library.named("formula", name) if name else None
         base = before or Formula(draft.new_id("formula") if name else 0, name or "")
-        batch_kg = row.number_in("Batch kg")
         formula = replace(
             base,
             amounts=row.choice("Amounts", Amounts) or base.amounts,
             animal=row.choice("Animal", Animal) or base.animal,
             stage=row.text("Stage") or base.stage,
-            batch_kg=base.batch_kg if batch_kg is None else batch_kg,
+            batch_kg=number_or(row, "Batch kg", base.batch_kg),
             admits=row.choice("Admits", Admits) or base.admits,
             note=row.text("Note") or base.note,
+            loss_percent=number_or(row, "Loss %", base.loss_percent),
+            product_dry_matter_percent=number_or(row, "Product dry matter %", base.product_dry_matter_percent),
         )
         draft.is_faultless(formula, row)
         if name is None:

@@ -1,15 +1,15 @@
-"""The sheets Mill, Scales, Mixers, Nutrients and Ingredients of the exchange workbook."""
+"""The sheets Mill, Nutrients and Ingredients of the exchange workbook."""
 
 from __future__ import annotations
 
 from dataclasses import replace
+from typing import Any
 
 from blendapp.domain import checks, units
 from blendapp.domain.ingredients import Basis, Ingredient, Tag
-from blendapp.domain.mills import MillInfo
+from blendapp.domain.mills import PAPERS, SHEET_MASSES, MillInfo
 from blendapp.domain.names import fold
 from blendapp.domain.nutrients import KEYS, Nutrient
-from blendapp.domain.plant import Mixer, Scale
 from blendapp.domain.wording import _
 from blendapp.exchange.suggestions import did_you_mean
 from blendapp.exchange.workbook_draft import Draft
@@ -36,7 +36,7 @@ def read_mill(draft: Draft, sheet: Sheet) -> None:
                     row.fault("Value", sentence)
         else:
             seen[item] = row
-            found = _with_item(found, field, row)
+            found = _with_item(found, field, row) if field != "site_id" else _at_site(draft, found, row)
     for name, text in checks.faults(found, draft.library):
         item = next(heading for heading, field in MILL_ITEMS.items() if field == name)
         sheet.problems.fault(text, seen[item].place("Value") if item in seen else sheet.place())
@@ -62,49 +62,25 @@ def _with_item(mill: MillInfo, field: str, row: Row) -> MillInfo:
         return replace(mill, currency=code if units.is_currency_code(code) else value)
     if field == "name":
         return replace(mill, name=value)
-    known = {fold(word): word for word in (units.TON_MEANINGS if field == "ton_means" else units.CWT_MEANINGS)}
-    value = known.get(fold(value), value)
-    return replace(mill, ton_means=value) if field == "ton_means" else replace(mill, cwt_means=value)
+    known = {fold(word): word for word in _ITEM_WORDS.get(field, ())}
+    chosen: dict[str, Any] = {field: known.get(fold(value), value)} if known else {}
+    return replace(mill, **chosen)
 
 
-def read_scales(draft: Draft, sheet: Sheet) -> None:
-    for row in sheet.rows():
-        name = draft.claim("scale", row, "Scale")
-        before: Scale | None = draft.library.named("scale", name) if name else None
-        step = row.number_in("Step kg")
-        refused = step is None and before is None
-        if refused and not row.has("Step kg"):
-            row.fault("Step kg", _("A scale needs its step in kg."))
-        base = before or Scale(draft.new_id("scale") if name else 0, name or "", 1.0)
-        hand_add = row.yes("Hand add")
-        scale = replace(
-            base,
-            step_kg=base.step_kg if step is None else step,
-            least_kg=_number(row, "Least kg", base.least_kg),
-            greatest_kg=_number(row, "Greatest kg", base.greatest_kg),
-            tolerance_percent=_number(row, "Tolerance %", base.tolerance_percent),
-            hand_add=base.hand_add if hand_add is None else hand_add,
-        )
-        if refused and name:
-            draft.refuse("scale", name)
-        elif name:
-            draft.put(before, scale)
-        draft.check(scale, row)
+_ITEM_WORDS: dict[str, tuple[str, ...]] = {
+    "ton_means": tuple(units.TON_MEANINGS), "cwt_means": tuple(units.CWT_MEANINGS), "sheet_mass": SHEET_MASSES,
+    "paper": PAPERS,
+}
 
 
-def read_mixers(draft: Draft, sheet: Sheet) -> None:
-    for row in sheet.rows():
-        name = draft.claim("mixer", row, "Mixer")
-        before: Mixer | None = draft.library.named("mixer", name) if name else None
-        base = before or Mixer(draft.new_id("mixer") if name else 0, name or "")
-        mixer = replace(
-            base,
-            least_kg=_number(row, "Least kg", base.least_kg),
-            greatest_kg=_number(row, "Greatest kg", base.greatest_kg),
-        )
-        if name:
-            draft.put(before, mixer)
-        draft.check(mixer, row)
+def _at_site(draft: Draft, mill: MillInfo, row: Row) -> MillInfo:
+    site = draft.find("site", row, "Value", unknown_site())
+    return mill if site is None else replace(mill, site_id=site.id)
+
+
+def unknown_site() -> str:
+    """The sentence for a site that nothing names, with {name}."""
+    return _("There is no site “{name}”; add it to the sheet Sites.")
 
 
 def read_nutrients(draft: Draft, sheet: Sheet) -> None:
@@ -153,58 +129,69 @@ def known_unit(text: str) -> str:
 
 
 def read_ingredients(draft: Draft, sheet: Sheet) -> list[tuple[Row, Ingredient]]:
-    """Every ingredient of the sheet without what it is made by; their rows are read again for values and prices.
+    """Every ingredient of the sheet without what it is made by and whether it is opened.
+
+    Their rows are read again for values and prices.
 
     An ingredient without a name of its own comes with identifier 0 and is no part of the draft.
     """
     found: list[tuple[Row, Ingredient]] = []
     tags = {fold(tag): tag for tag in Tag}
+    no_scale, no_supplier = _("There is no scale “{name}”; add it to the sheet Scales."), unknown_supplier()
     for row in sheet.rows():
         name = draft.claim("ingredient", row, "Ingredient")
         before: Ingredient | None = draft.library.named("ingredient", name) if name else None
         base = before or Ingredient(draft.new_id("ingredient") if name else 0, name or "")
-        scale = draft.find("scale", row, "Scale", _("There is no scale “{name}”; add it to the sheet Scales."))
+        scale = draft.find("scale", row, "Scale", no_scale)
+        supplier = draft.find("supplier", row, "Supplier", no_supplier)
         ingredient = replace(
             base,
             class_name=row.name("Class") or base.class_name,
-            dry_matter_percent=_number(row, "Dry matter %", base.dry_matter_percent),
+            dry_matter_percent=number_or(row, "Dry matter %", base.dry_matter_percent),
             basis=read_value_basis(row, "Basis") or base.basis,
             code=row.name("Code") or base.code,
             scale_id=scale.id if scale else base.scale_id,
-            stock_kg=_number(row, "Stock kg", base.stock_kg),
-            density_kg_per_l=_number(row, "Density kg/l", base.density_kg_per_l),
-            bushel_lb=_number(row, "Bushel lb", base.bushel_lb),
+            stock_kg=number_or(row, "Stock kg", base.stock_kg),
+            density_kg_per_l=number_or(row, "Density kg/l", base.density_kg_per_l),
+            bushel_lb=number_or(row, "Bushel lb", base.bushel_lb),
             tags=_tags(row, tags) if row.has("Tags") else base.tags,
             drug=row.text("Drug") or base.drug,
             drug_level=row.text("Drug level") or base.drug_level,
             drug_species=row.text("Drug species") or base.drug_species,
             withdrawal=row.text("Withdrawal") or base.withdrawal,
             note=row.text("Note") or base.note,
+            supplier_id=supplier.id if supplier else base.supplier_id,
         )
         if name:
             draft.put(before, ingredient)
-        draft.check(replace(ingredient, made_by_formula_id=None), row)
+        draft.check(replace(ingredient, made_by_formula_id=None, opened=False), row)
         found.append((row, ingredient))
     return found
 
 
 def read_made_by(draft: Draft, rows: list[tuple[Row, Ingredient]]) -> None:
-    """Which formula makes which ingredient, when all formulas and limits are known."""
+    """Which formula makes which ingredient and which of them are opened, when all formulas and limits are known."""
     making: list[tuple[Row, Ingredient]] = []
     for row, found in rows:
         formula = draft.find(
             "formula", row, "Made by formula", _("There is no formula “{name}”; add it to the sheet Formulas.")
         )
-        if formula is None or not found.id:
+        opened = row.yes("Opened")
+        if (formula is None and opened is None) or not found.id:
             continue
         ingredient = draft.library.ingredient(found.id)
-        made = replace(ingredient, made_by_formula_id=formula.id)
+        made = replace(
+            ingredient,
+            made_by_formula_id=formula.id if formula else ingredient.made_by_formula_id,
+            opened=ingredient.opened if opened is None else opened,
+        )
         draft.put(ingredient, made)
-        making.append((row, made))
+        if formula is not None or not row.has("Made by formula"):
+            making.append((row, made))
     for row, made in making:
         for name, text in checks.faults(made, draft.library):
-            if name == "made_by_formula_id":
-                row.fault("Made by formula", text)
+            if name in ("made_by_formula_id", "opened"):
+                row.fault("Made by formula" if name == "made_by_formula_id" else "Opened", text)
 
 
 def _tags(row: Row, known: dict[str, Tag]) -> tuple[Tag, ...]:
@@ -225,6 +212,11 @@ def read_value_basis(row: Row, heading: str) -> Basis | None:
     return Basis.DRY_MATTER if fold(row.name(heading)) == "dm" else row.choice(heading, Basis)
 
 
-def _number(row: Row, heading: str, otherwise: float | None) -> float | None:
+def unknown_supplier() -> str:
+    """The sentence for a supplier that nothing names, with {name}."""
+    return _("There is no supplier “{name}”; add it to the sheet Suppliers.")
+
+
+def number_or(row: Row, heading: str, otherwise: float | None) -> float | None:
     found = row.number_in(heading)
     return otherwise if found is None else found

@@ -12,21 +12,27 @@ from blendapp.domain.names import fold
 from blendapp.domain.problems import Place, Problem, Problems
 from blendapp.domain.records import Change
 from blendapp.domain.wording import _
-from blendapp.exchange import workbook_formulas, workbook_library, workbook_values
+from blendapp.exchange import workbook_formulas, workbook_library, workbook_plant, workbook_steps, workbook_values
 from blendapp.exchange.files import Format, open_source, refusal
 from blendapp.exchange.spreadsheets import read_spreadsheet
 from blendapp.exchange.suggestions import did_you_mean
 from blendapp.exchange.tables import RawTable
 from blendapp.exchange.workbook_draft import Draft
 from blendapp.exchange.workbook_layout import (
+    BINS,
     FORMULAS,
     INGREDIENTS,
     LAYOUTS,
     LIMITS,
+    LOT_VALUES,
+    LOTS,
     MILL,
     MIXERS,
     NUTRIENTS,
     SCALES,
+    SITES,
+    STEPS,
+    SUPPLIERS,
     VALUES,
     Layout,
 )
@@ -70,12 +76,16 @@ def _is_empty(library: Library) -> bool:
 
 def _read(draft: Draft, sheets: _Sheets, today: datetime.date, valid_from: datetime.date | None) -> None:
     """Reads sheet after sheet, in an order in which names are known before they are used."""
+    if sites := sheets.open(SITES):
+        workbook_plant.read_sites(draft, sites)
+    if suppliers := sheets.open(SUPPLIERS):
+        workbook_plant.read_suppliers(draft, suppliers)
     if mill := sheets.open(MILL):
         workbook_library.read_mill(draft, mill)
     if scales := sheets.open(SCALES):
-        workbook_library.read_scales(draft, scales)
+        workbook_plant.read_scales(draft, scales)
     if mixers := sheets.open(MIXERS):
-        workbook_library.read_mixers(draft, mixers)
+        workbook_plant.read_mixers(draft, mixers)
     if nutrients := sheets.open(NUTRIENTS):
         workbook_library.read_nutrients(draft, nutrients)
     formulas_sheet = sheets.open(FORMULAS)
@@ -93,6 +103,14 @@ def _read(draft: Draft, sheets: _Sheets, today: datetime.date, valid_from: datet
     workbook_formulas.settle_admits(draft, formulas)
     workbook_formulas.say_odd_limits(draft, limits)
     workbook_library.read_made_by(draft, rows)
+    if lots := sheets.open(LOTS):
+        workbook_plant.read_lots(draft, lots)
+    if lot_values := sheets.open(LOT_VALUES):
+        workbook_plant.read_lot_values(draft, lot_values)
+    if bins := sheets.open(BINS):
+        workbook_plant.read_bins(draft, bins)
+    if steps := sheets.open(STEPS):
+        workbook_steps.read_steps(draft, steps)
 
 
 class _Sheets:

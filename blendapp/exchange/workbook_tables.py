@@ -16,53 +16,63 @@ from blendapp.domain.wording import _
 from blendapp.exchange.workbook_layout import (
     FORMULAS,
     INGREDIENTS,
+    LAYOUTS,
     LIMITS,
     MILL,
     MILL_ITEMS,
-    MIXERS,
     NUTRIENTS,
-    SCALES,
     VALUES,
+    Layout,
 )
+from blendapp.exchange.workbook_plant_tables import Table, free, name_of, plant_tables
 from blendapp.exchange.workbook_values import heading_of
-
-WrittenCell = str | float | datetime.date | None
-Table = list[list[WrittenCell]]
 
 
 def tables_of(library: Library, today: datetime.date, problems: Problems) -> dict[str, Table]:
-    """Each sheet by name, its headings first, records in the order of identifiers. problems takes what is odd."""
+    """Each sheet by name, its headings first, records in the order of identifiers. problems takes what is odd.
+
+    Sheets and columns that came later stand there only where the mill has something for them.
+    """
     in_columns = {(v.ingredient_id, v.nutrient_id) for i in library.ingredients for v in _column_values(library, i)}
-    return {
+    tables = {
         MILL.name: _mill(library),
         NUTRIENTS.name: _nutrients(library),
         INGREDIENTS.name: _ingredients(library, today, in_columns),
         VALUES.name: _values(library, in_columns),
-        SCALES.name: _scales(library),
-        MIXERS.name: _mixers(library),
         FORMULAS.name: _formulas(library),
         LIMITS.name: _limits(library, problems),
+        **plant_tables(library, problems),
     }
+    written = [one for one in LAYOUTS if len(tables[one.name]) > 1 or not one.only_filled]
+    return {layout.name: _without_empty(layout, tables[layout.name]) for layout in written}
+
+
+def _without_empty(layout: Layout, rows: Table) -> Table:
+    """The table without those of its further columns that hold nothing."""
+    empty = {
+        at for at, heading in enumerate(rows[0])
+        if heading in layout.further and not any(row[at] not in (None, "") for row in rows[1:])
+    }
+    return [[cell for at, cell in enumerate(row) if at not in empty] for row in rows] if empty else rows
 
 
 def _mill(library: Library) -> Table:
     rows: Table = [list(MILL.headings)]
-    return rows + [[item, getattr(library.mill, name).strip()] for item, name in MILL_ITEMS.items()]
+    mill = library.mill
+    site = name_of(library, "site", mill.site_id)
+    return rows + [
+        [item, site if name == "site_id" else getattr(mill, name).strip()] for item, name in MILL_ITEMS.items()
+    ]
 
 
 def _yes(value: bool) -> str:
     return "yes" if value else "no"
 
 
-def _free(text: str) -> str:
-    """A text that nothing but blanks fills is blank."""
-    return text if text.strip() else ""
-
-
 def _nutrients(library: Library) -> Table:
     rows: Table = [list(NUTRIENTS.headings)]
     for n in library.nutrients:
-        rows.append([n.name.strip(), n.unit, _yes(n.never_negative), n.key, _free(n.note)])
+        rows.append([n.name.strip(), n.unit, _yes(n.never_negative), n.key, free(n.note)])
     return rows
 
 
@@ -77,13 +87,14 @@ def _column_values(library: Library, ingredient: Ingredient) -> list[Value]:
         and value.date is None
         and value.n is None
         and value.sd is None
-        and not _free(value.source)
+        and not free(value.source)
     ]
 
 
 def _ingredients(library: Library, today: datetime.date, in_columns: set[tuple[int, int]]) -> Table:
     nutrients = library.nutrients
     rows: Table = [[*INGREDIENTS.headings, *(heading_of(n) for n in nutrients)]]
+    any_opened = any(i.opened for i in library.ingredients)
     scales, formulas = library.records["scale"], library.records["formula"]
     for i in library.ingredients:
         price, per = _price(library, i, library.quote_in_force(i.id, today))
@@ -91,10 +102,11 @@ def _ingredients(library: Library, today: datetime.date, in_columns: set[tuple[i
         formula = formulas.get(i.made_by_formula_id or 0)
         values = library.values_of(i.id)
         rows.append([
-            i.name.strip(), i.class_name.strip(), i.dry_matter_percent, price, per, str(i.basis), _free(i.note),
+            i.name.strip(), i.class_name.strip(), i.dry_matter_percent, price, per, str(i.basis), free(i.note),
             i.code.strip(), scale.name.strip() if scale else None, i.stock_kg, i.density_kg_per_l, i.bushel_lb,
-            ", ".join(i.tags), formula.name.strip() if formula else None, _free(i.drug), _free(i.drug_level),
-            _free(i.drug_species), _free(i.withdrawal),
+            ", ".join(i.tags), formula.name.strip() if formula else None, free(i.drug), free(i.drug_level),
+            free(i.drug_species), free(i.withdrawal), _yes(i.opened) if formula and any_opened else None,
+            name_of(library, "supplier", i.supplier_id),
             *(values[n.id].amount if (i.id, n.id) in in_columns else None for n in nutrients),
         ])
     return rows
@@ -124,22 +136,9 @@ def _values(library: Library, in_columns: set[tuple[int, int]]) -> Table:
             if v is not None and (i.id, n.id) not in in_columns:
                 rows.append([
                     i.name.strip(), n.name.strip(), v.amount, v.unit or "/kg", str(v.basis),
-                    str(v.origin) if v.origin else None, _free(v.source), v.date, v.n, v.sd,
+                    str(v.origin) if v.origin else None, free(v.source), v.date, v.n, v.sd,
                 ])
     return rows
-
-
-def _scales(library: Library) -> Table:
-    rows: Table = [list(SCALES.headings)]
-    for s in library.scales:
-        hand_add = "yes" if s.hand_add else None
-        rows.append([s.name.strip(), s.step_kg, s.least_kg, s.greatest_kg, s.tolerance_percent, hand_add])
-    return rows
-
-
-def _mixers(library: Library) -> Table:
-    rows: Table = [list(MIXERS.headings)]
-    return rows + [[m.name.strip(), m.least_kg, m.greatest_kg] for m in library.mixers]
 
 
 def _formulas(library: Library) -> Table:
@@ -147,15 +146,15 @@ def _formulas(library: Library) -> Table:
     for f in library.formulas:
         animal = str(f.animal) if f.animal else None
         rows.append([
-            f.name.strip(), str(f.amounts), animal, _free(f.stage), f.batch_kg, str(f.admits), _free(f.note)
+            f.name.strip(), str(f.amounts), animal, free(f.stage), f.batch_kg, str(f.admits), free(f.note),
+            f.loss_percent, f.product_dry_matter_percent,
         ])
     return rows
 
 
 def _limits(library: Library, problems: Problems) -> Table:
     limits = [(f, limit) for f in library.formulas for limit in library.limits(f.id)]
-    with_notes = any(_free(limit.note) for _f, limit in limits)
-    rows: Table = [list(LIMITS.headings if with_notes else LIMITS.headings[:-1])]
+    rows: Table = [list(LIMITS.headings)]
     for formula, limit in limits:
         name = subject_text(library, limit.subject)
         per: str | None = ""
@@ -166,11 +165,10 @@ def _limits(library: Library, problems: Problems) -> Table:
             text = _("A limit of “{formula}” on a class without ingredients has the name of one and was left out.")
             problems.oddity(text.format(formula=formula.name), Place("", LIMITS.name))
             continue
-        row: list[WrittenCell] = [
-            formula.name.strip(), str(limit.kind), name, per, limit.minimum, limit.maximum, limit.unit,
-            _basis(limit),
-        ]
-        rows.append([*row, _free(limit.note)] if with_notes else row)
+        rows.append([
+            formula.name.strip(), str(limit.kind), name, per, limit.minimum, limit.maximum, limit.unit, _basis(limit),
+            free(limit.note),
+        ])
     return rows
 
 

@@ -277,7 +277,9 @@ def read_prices(
         if standing is not None and _same_price(standing, quote):
             continue
         if draft.check(quote, row):
-            draft.put(None, replace(quote, id=draft.new_id("quote")))
+            # For the site that the quote in force is for, or the price of the workbook would not be in force.
+            site_id = None if standing is None else standing.site_id
+            draft.put(None, replace(quote, id=draft.new_id("quote"), site_id=site_id))
 
 
 def _quote(

@@ -15,7 +15,8 @@ from blendapp.domain.library import Library
 from blendapp.domain.problems import Place, Problem, Problems, Refused
 from blendapp.domain.wording import _, plural
 from blendapp.exchange.workbook_layout import LAYOUTS, Layout
-from blendapp.exchange.workbook_tables import WrittenCell, tables_of
+from blendapp.exchange.workbook_plant_tables import WrittenCell
+from blendapp.exchange.workbook_tables import tables_of
 
 if TYPE_CHECKING:
     from openpyxl import Workbook
@@ -52,7 +53,7 @@ def _workbook(tables: dict[str, list[list[WrittenCell]]], file: str, problems: P
     workbook.remove(workbook.worksheets[0])
     font, fill = Font(bold=True), PatternFill("solid", fgColor="FFE9EDF0")
     border, alignment = Border(bottom=Side("thin", color="FF8A949C")), Alignment(wrap_text=True, vertical="top")
-    for layout in LAYOUTS:
+    for layout in (one for one in LAYOUTS if one.name in tables):
         sheet = workbook.create_sheet(layout.name)
         rows = tables[layout.name]
         for number, row in enumerate(rows, start=1):
@@ -157,8 +158,7 @@ def _not_carried(library: Library) -> Iterator[str]:
             detailed,
         ).format(count=detailed)
     kept = {
-        _("sites"): "site", _("suppliers"): "supplier", _("people"): "person", _("lots"): "lot", _("bins"): "bin",
-        _("price lists"): "price_list", _("other names of ingredients"): "synonym",
+        _("people"): "person", _("price lists"): "price_list", _("other names of ingredients"): "synonym",
         _("formula versions"): "version", _("printed batches"): "batch",
     }
     left = [name for name, kind in kept.items() if library.records[kind]]

@@ -15,6 +15,7 @@ from typing import Any
 from blendapp.domain import units
 from blendapp.domain.fields import Field, field_of
 from blendapp.domain.library import Library
+from blendapp.domain.mills import PAPERS, SHEET_MASSES
 from blendapp.domain.names import fold
 from blendapp.domain.notation import notation
 from blendapp.domain.nutrients import KEYS
@@ -34,8 +35,8 @@ LINKS: dict[str, str] = {
 WORDS: dict[tuple[str, str], tuple[str, ...]] = {
     ("mill", "ton_means"): ("", *units.TON_MEANINGS),
     ("mill", "cwt_means"): ("", *units.CWT_MEANINGS),
-    ("mill", "sheet_mass"): ("kg", "lb"),
-    ("mill", "paper"): ("A4", "letter"),
+    ("mill", "sheet_mass"): SHEET_MASSES,
+    ("mill", "paper"): PAPERS,
     ("nutrient", "key"): ("", *KEYS),
 }
 

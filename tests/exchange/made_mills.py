@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import datetime
+from collections.abc import Callable
+from dataclasses import replace
 from typing import Any
 
 from hypothesis import strategies as st
@@ -18,14 +20,15 @@ from blendapp.domain.formulas import (
     Limit,
     LimitBasis,
     LimitKind,
+    MixingStep,
     Subject,
 )
 from blendapp.domain.ingredients import Basis, Ingredient, Origin, Tag, Value
 from blendapp.domain.library import Library
-from blendapp.domain.mills import MillInfo
+from blendapp.domain.mills import PAPERS, SHEET_MASSES, MillInfo
 from blendapp.domain.names import fold
 from blendapp.domain.nutrients import BUILT_IN, KEYS, Nutrient
-from blendapp.domain.plant import Mixer, Scale
+from blendapp.domain.plant import Bin, Lot, LotValue, Mixer, Scale, Site, Supplier
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import Change
 
@@ -61,22 +64,34 @@ def mills(draw: st.DrawFn) -> Library:
         if not checks.faults(record, library):
             library.apply([Change(None, record)])
 
+    for number, name in enumerate(draw(unique_names(0, 2)), start=1):
+        put(Site(number, name))
+    for number, name in enumerate(draw(unique_names(0, 2)), start=1):
+        put(Supplier(number, name, draw(texts)))
+    sites = [None, *library.records["site"]]
+    suppliers = [None, *library.records["supplier"]]
     put(MillInfo(1, draw(texts), draw(st.sampled_from(["USD", "EUR"])),
-                 draw(st.sampled_from(["", *units.TON_MEANINGS])), draw(st.sampled_from(["", *units.CWT_MEANINGS]))))
+                 draw(st.sampled_from(["", *units.TON_MEANINGS])), draw(st.sampled_from(["", *units.CWT_MEANINGS])),
+                 site_id=draw(st.sampled_from(sites)), sheet_mass=draw(st.sampled_from(SHEET_MASSES)),
+                 paper=draw(st.sampled_from(PAPERS))))
+    for number, name in enumerate(draw(unique_names(0, 3)), start=1):
+        step, least, greatest = draw(st.floats(1e-6, 1e3)), draw(maybe(numbers)), draw(maybe(st.floats(1e-3, 1e6)))
+        scale = Scale(number, name, step, least, greatest, draw(maybe(st.floats(0, 100))), draw(st.booleans()),
+                      draw(st.sampled_from(sites)))
+        put(draw(st.sampled_from([scale, replace(
+            scale, step_kg=None, least_kg=None, greatest_kg=None, step_l=step, least_l=least, greatest_l=greatest)])))
     for number, name in enumerate(draw(unique_names(0, 2)), start=1):
-        put(Scale(number, name, draw(st.floats(1e-6, 1e3)), draw(maybe(numbers)), draw(maybe(st.floats(1e-3, 1e6))),
-                  draw(maybe(st.floats(0, 100))), draw(st.booleans())))
-    for number, name in enumerate(draw(unique_names(0, 2)), start=1):
-        put(Mixer(number, name, draw(maybe(numbers)), draw(maybe(st.floats(1e-3, 1e6)))))
+        put(Mixer(number, name, draw(maybe(numbers)), draw(maybe(st.floats(1e-3, 1e6))), draw(st.sampled_from(sites))))
     for number, name in enumerate(draw(unique_names(0, 4, BUILT_IN)), start=1):
         put(Nutrient(number, name, draw(st.sampled_from(["", *units.CONCENTRATION])), draw(st.booleans()),
                      draw(st.sampled_from(["", *KEYS])), draw(texts)))
     for number, name in enumerate(draw(unique_names(0, 3)), start=1):
         put(Formula(number, name, draw(st.sampled_from(Amounts)), draw(maybe(st.sampled_from(Animal))), draw(texts),
-                    draw(maybe(st.floats(1e-3, 1e6))), draw(st.sampled_from(Admits)), draw(texts)))
+                    draw(maybe(st.floats(1e-3, 1e6))), draw(st.sampled_from(Admits)), draw(texts),
+                    draw(maybe(st.floats(0, 99))), draw(maybe(st.floats(1, 100)))))
     classes = ["", *draw(st.lists(names, max_size=2))]
     for number, name in enumerate(draw(unique_names(0, 5)), start=1):
-        put(_ingredient(draw, number, name, classes, library))
+        put(replace(_ingredient(draw, number, name, classes, library), supplier_id=draw(st.sampled_from(suppliers))))
     for ingredient in library.ingredients:
         for nutrient in library.nutrients:
             if draw(st.booleans()):
@@ -92,7 +107,32 @@ def mills(draw: st.DrawFn) -> Library:
             if limit is not None:
                 put(limit)
     _make_some(draw, library)
+    _keep_some(draw, library, put)
     return library
+
+
+def _keep_some(draw: st.DrawFn, library: Library, put: Callable[[Any], None]) -> None:
+    """Lots with analyses, bins that hold them, and the steps of making."""
+    sites, suppliers = [None, *library.records["site"]], [None, *library.records["supplier"]]
+    for ingredient in library.ingredients:
+        for name in draw(unique_names(0, 2)):
+            lot = Lot(len(library.records["lot"]) + 1, ingredient.id, name, draw(maybe(dates)),
+                      draw(maybe(st.floats(1e-3, 1e6))), draw(st.sampled_from(suppliers)), draw(texts))
+            put(lot)
+            for nutrient in library.nutrients:
+                for _sample in range(draw(st.integers(0, 2))):
+                    value = _value(draw, 0, ingredient, nutrient)
+                    put(LotValue(len(library.records["lot_value"]) + 1, lot.id, nutrient.id, value.amount, value.unit,
+                                 str(value.basis), draw(texts), draw(maybe(dates))))
+    ingredients = [None, *library.records["ingredient"]]
+    for name in draw(st.lists(names, max_size=3)):
+        held = draw(st.sampled_from(ingredients))
+        lots = [None, *(lot.id for lot in library.all("lot") if lot.ingredient_id == held)]
+        put(Bin(len(library.records["bin"]) + 1, name, held, draw(st.sampled_from(lots)), draw(st.sampled_from(sites))))
+    for formula_id in (None, *library.records["formula"]):
+        for position in range(1, draw(st.integers(0, 3)) + 1):
+            put(MixingStep(len(library.records["mixing_step"]) + 1, formula_id, position, draw(names),
+                           draw(maybe(st.floats(0.1, 60))), draw(texts)))
 
 
 def _ingredient(draw: st.DrawFn, number: int, name: str, classes: list[str], library: Library) -> Ingredient:
@@ -168,6 +208,6 @@ def _make_some(draw: st.DrawFn, library: Library) -> None:
     for ingredient in library.ingredients:
         if library.formulas and draw(st.booleans()):
             formula = draw(st.sampled_from(library.formulas))
-            made = Ingredient(**{**ingredient.__dict__, "made_by_formula_id": formula.id})
+            made = replace(ingredient, made_by_formula_id=formula.id, opened=draw(st.booleans()))
             if not checks.faults(made, library):
                 library.apply([Change(ingredient, made)])

@@ -36,7 +36,7 @@ def test_any_mill_exported_and_imported_exports_equal_tables(tmp_path: Path, lib
     write_workbook(path, library, TODAY)
     back = read(path)
     assert tables_of(back, TODAY, Problems()) == tables_of(library, TODAY, Problems())
-    for kind in ("nutrient", "formula", "scale", "mixer"):
+    for kind in ("nutrient", "formula", "scale", "mixer", "site", "supplier", "lot", "bin"):
         ours = [record.name for record in library.all(kind)]
         assert [record.name for record in back.all(kind)] == ours
     assert read_workbook(path, back, {}, TODAY).changes == []
