@@ -1,6 +1,9 @@
-"""Ingredients that the mill makes itself: no formula may use, directly or through others, what it makes."""
+"""Ingredients that the mill makes itself: no formula may use what it makes, and what a mix holds is its parts' sum."""
 
 from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
 
 from blendapp.domain.formulas import Formula, LimitKind
 from blendapp.domain.library import Library
@@ -63,3 +66,42 @@ def cycle_fault(library: Library, ingredient_id: int) -> str | None:
         "ingredients only."
     )
     return text.format(name=chain[0], chain=" < ".join(chain))
+
+
+@dataclass(frozen=True)
+class Mixture:
+    """What a mix holds. dry_matter_percent: None where a part's is unknown. as_fed: by nutrient identifier, in the
+    nutrient's own unit; missing: the parts without a value, by nutrient identifier, for those that are unknown."""
+
+    dry_matter_percent: float | None
+    as_fed: dict[int, float]
+    missing: dict[int, tuple[str, ...]]
+
+
+def mixture(library: Library, amounts: Mapping[int, float]) -> Mixture:
+    """What a mix of these amounts (by ingredient identifier, in any one unit of mass) holds.
+
+    A nutrient of which one part has no value is unknown, never the sum of the others; one that no part has is left out.
+    """
+    whole = sum(amounts.values())
+    parts = [(library.ingredient(key), amount / whole) for key, amount in amounts.items() if amount > 0]
+    dry = [i.dry_matter_percent for i, _share in parts]
+    as_fed: dict[int, float] = {}
+    missing: dict[int, tuple[str, ...]] = {}
+    for nutrient in library.nutrients:
+        found: list[float] = []
+        lacking: list[str] = []
+        for ingredient, share in parts:
+            value = library.value(ingredient.id, nutrient.id)
+            amount = None if value is None else value.as_fed(nutrient.unit, ingredient.dry_matter_percent)
+            if amount is None:
+                lacking.append(ingredient.name)
+            else:
+                found.append(share * amount)
+        if not lacking:
+            as_fed[nutrient.id] = sum(found)
+        elif found:
+            missing[nutrient.id] = tuple(lacking)
+    known = [d for d in dry if d is not None]
+    mean = sum(share * d for (_i, share), d in zip(parts, known, strict=True)) if len(known) == len(parts) else None
+    return Mixture(mean, as_fed, missing)
