@@ -74,3 +74,27 @@ def rules(pdf: bytes) -> list[Rule]:
                 found.append(Rule(number, left, right, (top + bottom) / 2))
     document.close()
     return found
+
+
+def figures_under(pdf: bytes, title: str) -> list[Piece]:
+    """What stands right-aligned in the columns of that title: the nearest small text above it at its edge."""
+    found = pieces(pdf)
+    small = [p for p in found if p.size == 9]
+    return [
+        p for p in found
+        if p.size > 9 and _nearest(title, [s for s in small if abs(s.right - p.right) < 2], p.page, p.top)
+    ]
+
+
+def places_under(pdf: bytes, title: str) -> list[Rule]:
+    """The places to write in of the columns of that title."""
+    small = [p for p in pieces(pdf) if p.size == 9]
+    return [
+        rule for rule in rules(pdf)
+        if _nearest(title, [s for s in small if abs(s.left - rule.left) < 2], rule.page, rule.y)
+    ]
+
+
+def _nearest(title: str, aligned: list[Piece], page: int, below: float) -> bool:
+    above = [s for s in aligned if s.page == page and s.bottom > below]
+    return bool(above) and min(above, key=lambda s: s.bottom).text.strip() == title

@@ -120,9 +120,8 @@ def test_a_line_stands_whole_on_one_page_with_its_target_under_the_heads(
     assert len(targets) == len(batch.lines) + 1
     for number, target in zip(range(1, len(batch.lines) + 1), targets, strict=False):
         # Its number stands at its left, on the level of its target.
-        assert any(
-            p.text.strip() == str(number) and p.page == target.page and abs(p.bottom - target.bottom) < 6 for p in numbers
-        )
+        beside = [p.text.strip() for p in numbers if p.page == target.page and abs(p.bottom - target.bottom) < 6]
+        assert str(number) in beside
     for page in {p.page for p in targets}:
         title = max(p.top for p in found if p.page == page and p.text.strip() == "Ingredient")
         assert all(p.top < title for p in targets if p.page == page)

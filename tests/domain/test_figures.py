@@ -4,14 +4,23 @@ import pytest
 
 from blendapp.domain.figures import (
     decimals_of,
+    decimals_of_mass,
     decimals_of_step,
+    mass_in,
+    unit_of_meter,
+    unit_of_scale,
+    within_steps,
     write_kg,
+    write_mass,
     write_measure,
     write_percent,
     write_shadow_price,
     write_tiny,
+    write_typed_mass,
+    write_volume,
 )
 from blendapp.domain.notation import COMMA, PLAIN, use_notation
+from blendapp.domain.units import LB_KG, VOLUME_L
 
 
 @pytest.mark.parametrize(
@@ -50,3 +59,50 @@ def test_a_residue_of_the_arithmetic_is_written_short_in_the_notation() -> None:
         use_notation(PLAIN)
     assert write_tiny(0.0) == "0"
     assert write_tiny(None) == ""
+
+
+@pytest.mark.parametrize("step_lb", [5, 1, 0.5, 0.25, 0.1, 0.01, 0.0625])
+def test_a_scale_of_pounds_shows_its_pounds(step_lb: float) -> None:
+    step_kg = step_lb * LB_KG
+    assert unit_of_scale(step_kg, "lb") == unit_of_scale(step_kg, "kg") == "lb"
+    for count in range(1, 200):
+        assert float(write_mass(count * step_kg, step_kg, "lb")) == pytest.approx(count * step_lb, abs=1e-12)
+
+
+@pytest.mark.parametrize("step_kg", [20, 5, 2.5, 0.5, 0.25, 0.1, 0.02, 0.005, 0.001, 0.0001])
+def test_the_step_of_a_scale_is_found_again_from_the_digits_of_either_unit(step_kg: float) -> None:
+    assert unit_of_scale(step_kg, "lb") == unit_of_scale(step_kg, "kg") == "kg"
+    for count in range(1, 2000, 7):
+        steps = float(write_mass(count * step_kg, step_kg, "lb")) * LB_KG / step_kg
+        assert abs(steps - count) <= 0.1 + 1e-9
+        assert write_mass(count * step_kg, step_kg, "kg") == write_kg(count * step_kg, step_kg)
+
+
+def test_kilograms_of_a_pound_scale_are_fine_enough_and_no_finer() -> None:
+    assert decimals_of_mass(5 * LB_KG, "kg") == 1
+    assert write_mass(305 * LB_KG, 5 * LB_KG, "kg") == "138.3"
+    # 2.268 kg is a step of kilograms that is near 5 lb, and not 5 lb.
+    assert unit_of_scale(2.268, "lb") == "kg"
+
+
+def test_a_mass_typed_in_pounds_shows_as_typed() -> None:
+    assert write_typed_mass(4000 * LB_KG, "lb") == "4000"
+    assert write_typed_mass(0.5 * LB_KG, "lb") == "0.5"
+    assert write_typed_mass(2000, "lb") == "4409.245"
+    assert write_typed_mass(1870.5, "kg") == "1870.5"
+    assert mass_in(LB_KG, "lb") == 1
+
+
+def test_a_meter_shows_the_unit_in_which_its_step_is_plain() -> None:
+    assert unit_of_meter(0.5) == ("l", 1.0)
+    assert unit_of_meter(0.25 * VOLUME_L["US gal"])[0] == "US gal"
+    assert unit_of_meter(0.5 * VOLUME_L["imperial gal"])[0] == "imperial gal"
+    assert write_volume(17 * 0.25 * VOLUME_L["US gal"], 0.25 * VOLUME_L["US gal"]) == "4.25"
+    assert write_volume(33.5, 0.5) == "33.5"
+
+
+@pytest.mark.parametrize(
+    ("tolerance", "step", "steps"), [(9.4, 5, 1), (10, 5, 2), (0.3, 0.1, 3), (5, 5, 1), (4.9, 5, 0)]
+)
+def test_a_tolerance_comes_to_the_whole_steps_within_it(tolerance: float, step: float, steps: int) -> None:
+    assert within_steps(tolerance, step) == steps

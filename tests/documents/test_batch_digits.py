@@ -1,0 +1,183 @@
+"""The figures on the pages of a batch, read back from the PDF, are the figures of the batch."""
+
+from __future__ import annotations
+
+import dataclasses
+import re
+from collections.abc import Callable
+from decimal import Decimal
+
+import batch_cases as made
+import pytest
+from page_reading import figures_under, pieces, squeezed
+
+from blendapp.documents import Paper, batch_sheet, blank_record, master_record, page_text
+from blendapp.documents.weighing_groups import in_order
+from blendapp.domain.batches import Batch, BatchLine
+from blendapp.domain.units import LB_KG
+
+Page = Callable[..., bytes]
+PAGES = [pytest.param(draw, id=draw.__name__) for draw in (batch_sheet, master_record, blank_record)]
+every_page = pytest.mark.parametrize("draw", PAGES)
+every_paper = pytest.mark.parametrize("paper", list(Paper))
+
+
+def lines_in_order(batch: Batch) -> list[BatchLine]:
+    return [line for group in in_order(batch.lines) for line in group]
+
+
+def large(pdf: bytes) -> list[str]:
+    """The targets and the total, in order."""
+    return [p.text.strip() for p in pieces(pdf) if p.size == 16 and not p.across]
+
+
+def beside(pdf: bytes, title: str) -> list[str]:
+    """The figures of 12 point in the columns of that title."""
+    return [p.text.strip() for p in figures_under(pdf, title) if p.size == 12]
+
+
+@every_page
+@every_paper
+def test_targets_in_kg_and_litres_are_those_of_the_batch_digit_for_digit(draw: Page, paper: Paper) -> None:
+    shown = large(draw(made.FULL, paper))
+    for text, line in zip(shown[:-1], lines_in_order(made.FULL), strict=True):
+        if line.target_l is not None:
+            assert Decimal(text.removesuffix("l").strip()) == Decimal(str(line.target_l))
+        else:
+            assert Decimal(text) == Decimal(str(line.target_kg))
+    assert Decimal(shown[-1]) == Decimal(str(made.FULL.total_kg))
+
+
+@every_page
+@every_paper
+def test_targets_in_lb_are_multiples_of_the_step_that_are_found_again(draw: Page, paper: Paper) -> None:
+    shown = large(draw(made.US, paper))
+    for text, line in zip(shown[:-1], lines_in_order(made.US), strict=True):
+        if line.step_l is not None:
+            assert text.endswith("US gal")
+            gallons = float(text.removesuffix("US gal"))
+            assert gallons * 231 * 2.54**3 / 1000 == pytest.approx(line.target_l, abs=1e-9)
+        else:
+            steps = float(text) * LB_KG / line.step_kg
+            assert abs(steps - round(steps)) < 0.2
+            assert round(steps) * line.step_kg == pytest.approx(line.target_kg, abs=1e-9)
+        if line.scale in (made.HOPPER, made.MINOR):
+            assert text == str(round(line.target_kg / LB_KG))
+
+
+@every_page
+def test_a_scale_that_shows_kg_has_its_kg_beside_the_pounds(draw: Page) -> None:
+    hand_adds = [line for line in made.US.lines if line.hand_add]
+    shown = beside(draw(made.US), "That is kg")
+    assert [Decimal(text) for text in shown] == [Decimal(str(line.target_kg)) for line in hand_adds]
+
+
+@every_page
+@pytest.mark.parametrize("batch", [made.FULL, made.US])
+def test_the_total_is_the_sum_of_the_masses_on_the_page(draw: Page, batch: Batch) -> None:
+    pdf = draw(batch)
+    *targets, total = large(pdf)
+    masses = [text for text in targets if not text.endswith(("l", "US gal"))]
+    liquids = beside(pdf, f"That is {batch.mass_unit}")
+    assert len(liquids) == 2
+    assert sum(map(Decimal, masses + liquids)) == Decimal(total)
+
+
+@every_page
+def test_a_total_of_rounded_lines_says_so_with_the_unrounded_one_and_the_kg(draw: Page) -> None:
+    text = squeezed(page_text(draw(made.US)))
+    exact = re.search(r"asthelinesareshown|sumofthelinesastheyareshown,rounded;unroundeditis([\d.]+)lb\.", text)
+    assert exact is not None
+    assert float(exact[1]) == pytest.approx(made.US.total_kg / LB_KG, abs=0.0006)
+    together = re.search(r"Alllinesare([\d.]+)kgtogether", text)
+    assert together is not None
+    assert float(together[1]) == pytest.approx(made.US.total_kg, abs=1e-6)
+    assert "rounded" not in squeezed(page_text(draw(made.FULL)))
+
+
+def test_a_batch_all_in_pounds_adds_up_without_a_word_of_rounding() -> None:
+    lines = tuple(line for line in made.US.lines if line.scale in (made.HOPPER, made.MINOR))
+    total = round(sum(line.target_kg for line in lines) / LB_KG)
+    batch = dataclasses.replace(made.US, lines=lines, batch_kg=total * LB_KG)
+    text = squeezed(page_text(batch_sheet(batch)))
+    assert "rounded" not in text
+    assert f"Residue0lb:thelinesadduptothebatchof{total}lb." in text
+    assert large(batch_sheet(batch))[-1] == str(total)
+
+
+def test_a_residue_stands_in_pounds() -> None:
+    residue_lb = made.US.residue_kg / LB_KG
+    found = re.search(r"Residue(−?)([\d.]+)lb:thelinescometo\2lb(less|more)", squeezed(page_text(batch_sheet(made.US))))
+    assert found is not None
+    assert (found[3] == "less") == (residue_lb < 0) == (found[1] == "−")
+    assert float(found[2]) == pytest.approx(abs(residue_lb), rel=1e-3)
+
+
+@pytest.mark.parametrize(("batch", "least"), [(made.FULL, 5.0), (made.US, 5 * LB_KG)])
+def test_the_tolerance_under_a_target_is_the_most_whole_steps_within_it(batch: Batch, least: float) -> None:
+    shown = [p.text.strip() for p in pieces(batch_sheet(batch)) if p.size == 10 and p.text.startswith("±")]
+    hopper = [line for line in batch.lines if line.scale == made.HOPPER]
+    for text, line in zip(shown, hopper, strict=False):
+        number, unit = re.fullmatch(r"±\s([\d.]+)\s(kg|lb)", text).groups()  # type: ignore[union-attr]
+        kg = float(number) * (LB_KG if unit == "lb" else 1)
+        assert unit == batch.mass_unit
+        assert kg <= line.tolerance_kg + 1e-9 < kg + least  # type: ignore[operator]
+
+
+def test_a_line_without_a_tolerance_shows_none() -> None:
+    lines = tuple(dataclasses.replace(line, tolerance_kg=None) for line in made.FULL.lines)
+    assert "±" not in squeezed(page_text(batch_sheet(dataclasses.replace(made.FULL, lines=lines))))
+
+
+def test_running_totals_of_a_scale_add_up_what_stands_above_them() -> None:
+    pdf = batch_sheet(made.US)
+    running = iter(beside(pdf, "Running lb"))
+    for scale in (made.HOPPER, made.MINOR):
+        total = 0
+        for line in made.US.lines:
+            if line.scale == scale:
+                total += round(line.target_kg / LB_KG)
+                assert next(running) == str(total)
+    assert next(running, None) is None
+
+
+@every_page
+def test_shares_of_the_master_record_are_those_of_the_total(draw: Page) -> None:
+    if draw is not master_record:
+        assert "%ofthetotal" not in squeezed(page_text(draw(made.FULL)))
+        return
+    *shares, whole = beside(draw(made.FULL), "% of the total")
+    assert whole == "100.000"
+    for text, line in zip(shares, lines_in_order(made.FULL), strict=True):
+        exact = line.target_kg / made.FULL.total_kg * 100
+        assert float(text) == pytest.approx(exact, rel=5e-3)
+    assert sum(map(float, shares)) == pytest.approx(100, abs=0.01)
+
+
+def test_orders_batches_and_yields_stand_in_the_unit_of_the_sheet() -> None:
+    us, metric = (squeezed(page_text(batch_sheet(batch))) for batch in (made.US, made.FULL))
+    assert "16800lbin4equalbatches" in us
+    assert "4200lb" in us
+    assert "4150.0lb" in us
+    assert "176.37lb" in us
+    assert "1869.2kg" in metric
+    assert "80kg" in metric
+
+
+def test_a_pound_scale_in_a_mill_of_kilograms_has_its_pounds_beside_the_kg() -> None:
+    line = made.US.lines[1]
+    batch = dataclasses.replace(made.US, lines=(line,), batch_kg=line.target_kg, mass_unit="kg")
+    pdf = batch_sheet(batch)
+    assert beside(pdf, "That is lb") == ["305"]
+    steps = float(large(pdf)[0]) / line.step_kg
+    assert round(steps) == 61
+    assert abs(steps - 61) < 0.1
+
+
+def test_litres_of_an_odd_density_keep_their_digits_and_the_kg_come_to_the_gram() -> None:
+    line = dataclasses.replace(
+        made.FULL.lines[16], step_kg=0.5 * 0.916667, step_l=0.5, target_l=33.5, target_kg=round(67 * 0.5 * 0.916667, 9)
+    )
+    pdf = batch_sheet(dataclasses.replace(made.FULL, lines=(line,), batch_kg=30))
+    assert large(pdf)[0] == "33.5 l"
+    assert float(beside(pdf, "That is kg")[0]) == pytest.approx(line.target_kg, abs=1e-6)
