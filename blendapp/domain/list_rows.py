@@ -92,6 +92,7 @@ class ColumnRole(StrEnum):
 
     SAMPLE = "sample"
     SAMPLED = "day of the sample"
+    BASIS = "basis"
     DRY_MATTER = "dry matter"
     NUTRIENT = "nutrient"
 

@@ -1,4 +1,4 @@
-"""Other people's tables: the exchange workbook in and out, and price lists. Slow libraries are fetched when needed."""
+"""Other people's tables: the exchange workbook, price lists, lists of analyses. Slow libraries are fetched late."""
 
 from __future__ import annotations
 
@@ -7,6 +7,7 @@ from collections.abc import Mapping, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from blendapp.domain.composition_rows import CompositionReading
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import Answer
 from blendapp.domain.price_rows import PriceListReading
@@ -38,5 +39,15 @@ def read_price_list(
 ) -> PriceListReading:
     """See price_list.read_price_list."""
     from blendapp.exchange.price_list import read_price_list as read
+
+    return read(path, library, today, sheet, answers, source)
+
+
+def read_composition_list(
+    path: str | Path, library: Library, today: datetime.date, sheet: str | None = None,
+    answers: Sequence[Answer] = (), source: str = "",
+) -> CompositionReading:
+    """See composition_list.read_composition_list."""
+    from blendapp.exchange.composition_list import read_composition_list as read
 
     return read(path, library, today, sheet, answers, source)

@@ -67,14 +67,14 @@ def asked(row: Row, text: str, question: Asked) -> Row:
 
 
 def leaps(old: float | None, new: float | None, largest: float) -> bool:
-    """Whether a figure moves by more than a fraction of the old one; False where either is unknown or not above 0."""
-    if old is None or new is None or old <= 0 or new <= 0:
-        return False
-    return abs(new - old) > largest * old * (1 + 1e-9)
+    """Whether a figure moves by more than a fraction of the old one; False where either is unknown."""
+    return old is not None and new is not None and abs(new - old) > largest * abs(old) * (1 + 1e-9)
 
 
 def near_power(old: float, new: float) -> int:
     """The power of ten, from -3 to 3, that a figure is about that many times the old one; 0 for none."""
+    if old * new <= 0:
+        return 0
     power = round(math.log10(new / old))
     near = abs(power) <= 3 and abs(math.log(new / old / 10.0**power)) < _NEAR_POWER
     return power if near else 0

@@ -43,7 +43,7 @@ def _class_of(row: PriceRow, library: Library) -> str:
 
 def _asked_about_leap(row: PriceRow, largest: float) -> PriceRow:
     old, new = row.old_price_per_t, row.price_per_t
-    if old is None or new is None or not leaps(old, new, largest):
+    if old is None or new is None or min(old, new) <= 0 or not leaps(old, new, largest):
         return row
     power = near_power(old, new)
     times = 10.0 ** abs(power)

@@ -1,0 +1,151 @@
+"""What each column of a table of analyses holds: name, sample, day, basis, and what was measured."""
+
+from __future__ import annotations
+
+import re
+from dataclasses import dataclass, field
+
+from blendapp.domain.list_rows import ColumnRole
+from blendapp.domain.names import fold
+from blendapp.domain.nutrients import DRY_MATTER, MOISTURE
+from blendapp.exchange.composition_nutrients import NutrientFinder, NutrientMatch
+from blendapp.exchange.composition_words import HeadingWords, read_heading
+from blendapp.exchange.list_placing import Placing, column_name
+
+# What a column of a list of analyses may hold.
+COMPOSITION_ROLES = (
+    ColumnRole.NAME, ColumnRole.SAMPLE, ColumnRole.SAMPLED, ColumnRole.BASIS, ColumnRole.DRY_MATTER,
+    ColumnRole.NUTRIENT, ColumnRole.NOTE, ColumnRole.OTHER,
+)
+VALUE_ROLES = frozenset({ColumnRole.DRY_MATTER, ColumnRole.NUTRIENT})
+
+_NAME_HEADINGS = frozenset({
+    "ingredient", "ingredients", "commodity", "product", "products", "material", "raw material", "feed material",
+    "feed", "feedstuff", "feedstuffs", "description", "name", "matrix", "grain", "goods", "article", "item",
+    "sample name", "sample description", "sample type", "product name", "material name", "ingredient name",
+    "commodity name", "feed name", "type of sample", "sample material",
+})
+_SAMPLE_HEADINGS = frozenset({
+    "sample", "sample no", "sample number", "sample id", "sample code", "sample ref", "sample reference", "lot",
+    "lot no", "lot number", "lot id", "batch", "batch no", "batch number", "lab no", "lab number", "lab id", "lab code",
+    "lab ref", "laboratory no", "laboratory number", "reference", "ref", "id", "no", "number", "certificate",
+    "certificate no", "certificate number", "report no", "report number", "analysis no", "analysis number", "code",
+})
+# The day that says most of the goods comes first.
+_DAY_HEADINGS = (
+    "sampled", "sampling date", "date sampled", "sample date", "date of sampling", "sampled on", "delivered",
+    "delivery date", "date delivered", "received", "date received", "date of receipt", "received on", "receipt date",
+    "arrival date", "date", "day", "analysis date", "date analysed", "date analyzed", "date of analysis", "analysed",
+    "analyzed", "report date", "date reported", "reported", "production date", "date of production",
+)
+_BASIS_HEADINGS = frozenset({"basis", "base", "reported basis", "result basis", "basis of results", "reported on"})
+_NOTE_HEADINGS = frozenset({
+    "note", "notes", "remark", "remarks", "comment", "comments", "supplier", "origin", "vendor", "client", "customer",
+    "laboratory", "lab", "method", "analyst", "sampled by", "sampler", "truck", "vehicle", "ticket", "invoice", "order",
+    "order no", "po", "po number", "quantity", "qty", "weight", "tonnage", "mass", "price", "cost", "site", "location",
+    "place", "silo", "bin", "store", "grade", "class", "quality", "status", "country", "season", "week", "month",
+    "year", "page", "line", "row", "pos", "position", "depot", "port", "vessel", "time", "n", "count", "samples", "kg",
+})
+
+
+@dataclass(frozen=True)
+class ValueColumn:
+    """A column of results. match: what is measured; words: what its heading says."""
+
+    index: int
+    heading: str
+    words: HeadingWords
+    match: NutrientMatch
+
+    @property
+    def is_built_in(self) -> bool:
+        return bool(self.match.built_in)
+
+
+@dataclass
+class AnalysisTable:
+    """A table of analyses within a sheet. heading_row: from 0, None where it has no headings.
+
+    twins: the columns, by index, of one nutrient that stands several times.
+    """
+
+    heading_row: int | None
+    roles: dict[int, ColumnRole] = field(default_factory=dict)
+    headings: dict[int, str] = field(default_factory=dict)
+    values: list[ValueColumn] = field(default_factory=list)
+    name: int | None = None
+    first_heading_row: int | None = None
+    last_heading_row: int | None = None
+
+    @property
+    def first_row(self) -> int:
+        """The first row below the headings."""
+        last = self.heading_row if self.last_heading_row is None else self.last_heading_row
+        return 0 if last is None else last + 1
+
+    @property
+    def heading_rows(self) -> range:
+        if self.heading_row is None:
+            return range(0)
+        return range(self.heading_row if self.first_heading_row is None else self.first_heading_row, self.first_row)
+
+    @property
+    def known(self) -> int:
+        """How many columns hold what the mill knows."""
+        return sum(column.match.is_settled for column in self.values)
+
+    def first(self, role: ColumnRole) -> int | None:
+        return next((index for index, found in sorted(self.roles.items()) if found is role), None)
+
+    def twins_of(self, column: ValueColumn) -> list[ValueColumn]:
+        """The columns that hold the same as a column of a settled match, itself among them."""
+        return [one for one in self.values if one.match.name and one.match.name == column.match.name]
+
+
+def plain_heading(text: str) -> str:
+    """A heading without case and punctuation: "Sample No." is "sample no"."""
+    return " ".join(re.sub(r"[^a-z0-9]+", " ", fold(text)).split())
+
+
+def role_of(
+    heading: str, index: int, finder: NutrientFinder, placing: Placing, about: str = ""
+) -> tuple[ColumnRole, NutrientMatch]:
+    """The role that a heading gives its column, what a person said coming first, and what the column measures.
+
+    about: what an answer calls the column, where its heading stands over another one too.
+    """
+    match = finder.find(heading or column_name(index), about)
+    said = placing.role(about or heading, index) if placing.names_columns else None
+    if said is ColumnRole.DRY_MATTER and not match.built_in:
+        words = read_heading(heading)
+        return said, NutrientMatch(built_in=MOISTURE if words.is_moisture else DRY_MATTER)
+    if said is not None:
+        return said, match
+    if match.left_out:
+        return ColumnRole.OTHER, match
+    if match.built_in:
+        return ColumnRole.DRY_MATTER, match
+    plain = plain_heading(heading)
+    if match.is_settled:
+        return ColumnRole.NUTRIENT, match
+    for headings, role in (
+        (_NAME_HEADINGS, ColumnRole.NAME), (_SAMPLE_HEADINGS, ColumnRole.SAMPLE),
+        (frozenset(_DAY_HEADINGS), ColumnRole.SAMPLED), (_BASIS_HEADINGS, ColumnRole.BASIS),
+        (_NOTE_HEADINGS, ColumnRole.NOTE),
+    ):
+        if plain in headings:
+            return role, match
+    words = read_heading(heading)
+    return (ColumnRole.NUTRIENT if words.name and (words.says_unit or match.may_be) else ColumnRole.OTHER), match
+
+
+def best_day(table: AnalysisTable) -> None:
+    """Of several columns of days the one that says most of the goods; the others are notes."""
+    days = [index for index, role in table.roles.items() if role is ColumnRole.SAMPLED]
+    if len(days) < 2:
+        return
+    order = {heading: place for place, heading in enumerate(_DAY_HEADINGS)}
+    best = min(days, key=lambda index: (order.get(plain_heading(table.headings.get(index, "")), -1), index))
+    for index in days:
+        if index != best:
+            table.roles[index] = ColumnRole.NOTE
