@@ -142,6 +142,11 @@ def sheet(batch: Batch, pdf: str | None) -> dict[str, Any]:
                 "share_kg": line.share_kg,
                 "target_kg": line.target_kg,
                 "hand_add": line.hand_add,
+                "bins": list(line.bins),
+                "target_l": line.target_l,
+                "tolerance_kg": line.tolerance_kg,
+                "fixed": line.fixed,
+                "rework": line.rework,
             }
             for line in batch.lines
         ],
@@ -151,4 +156,12 @@ def sheet(batch: Batch, pdf: str | None) -> dict[str, Any]:
         "cause": batch.cause,
         "cautions": list(batch.cautions),
         "pdf": pdf,
+        "site": batch.site or None,
+        "mixer": batch.mixer or None,
+        "yield_kg": batch.yield_kg,
+        "to_make": [
+            {"ingredient": one.ingredient, "formula": one.formula, "mass_kg": one.mass_kg} for one in batch.to_make
+        ],
+        "previous_feed": batch.previous_feed or None,
+        "clean_out": None if batch.clean_out is None else str(batch.clean_out),
     }

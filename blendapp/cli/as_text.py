@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 
-from blendapp.domain.batches import Batch, proof_words
 from blendapp.domain.figures import write_measure, write_shadow_price
 from blendapp.domain.formulas import Amounts
 from blendapp.domain.list_rows import Fate
@@ -168,40 +167,3 @@ def prices(reading: PriceListReading, applied: bool) -> str:
     counts = ", ".join(f"{_(fate)} {reading.count(fate)}" for fate in Fate)
     lines += ["", f"  {counts}. " + (_("Recorded.") if applied else _("Nothing recorded."))]
     return "\n".join(lines)
-
-
-def sheet(batch: Batch, pdf: str | None) -> str:
-    """The lines of one batch, what the weighing breaks, and where the sheet is."""
-    head = _("{formula}, {version}: order of {order} kg, {count} × {mass} kg")
-    short, write = notation().write_short, notation().write
-    lines = [head.format(
-        formula=batch.formula, version=batch.version, order=short(batch.order_kg), count=batch.batches,
-        mass=short(batch.batch_kg, 3),
-    )]
-    if batch.cause:
-        return "\n".join([*lines, f"  {batch.cause}"])
-    rows = [(line.ingredient, line.scale, short(line.step_kg), write(line.target_kg, 3)) for line in batch.lines]
-    lines += table((_("Ingredient"), _("scale"), _("step kg"), _("kg")), rows, (False, False, True, True))
-    lines.append("  " + _("Total {total} kg, residue {residue} kg").format(
-        total=write(batch.total_kg, 3), residue=write(batch.residue_kg, 3)
-    ))
-    lines += [f"  {line}" for line in (*broken_words(batch), proof_words(batch)) if line]
-    lines += [f"  ! {caution}" for caution in batch.cautions]
-    if batch.broken and not batch.fit_to_mix:
-        lines.append("  " + _("NOT TO BE MIXED: the limits above are broken and not accepted."))
-    if pdf is not None:
-        lines.append("  " + _("Batch sheet {number} written to {pdf}.").format(number=batch.number, pdf=pdf))
-    return "\n".join(lines)
-
-
-def broken_words(batch: Batch) -> list[str]:
-    """One sentence for each limit that does not hold as weighed."""
-    text = _("As weighed, {name} is {value} {unit}, outside {minimum} to {maximum}.")
-    short = notation().write_short
-    return [
-        text.format(
-            name=limit_name(one), value=notation().write(one.value, 4), unit=one.unit,
-            minimum=short(one.minimum) or _("any"), maximum=short(one.maximum) or _("any"),
-        )
-        for one in (batch.limits[index] for index in batch.broken)
-    ]

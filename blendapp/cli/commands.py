@@ -10,7 +10,7 @@ from collections.abc import Callable, Sequence
 from dataclasses import replace
 from pathlib import Path
 
-from blendapp.cli import as_json, as_text
+from blendapp.cli import as_json, as_text, sheet_text
 from blendapp.cli.parser import CallFault, make_parser
 from blendapp.domain.cautions import general_caution
 from blendapp.domain.list_rows import Fate
@@ -111,24 +111,32 @@ def _prices(given: argparse.Namespace) -> int:
 
 
 def _sheet(given: argparse.Namespace) -> int:
-    from blendapp.services.batch import make_batch, print_sheet
-    from blendapp.services.formulate import FailedCertificate, formulas_named
+    from blendapp.cli.ordering import ordered
+    from blendapp.services.batch import clean_out_question, print_sheet
+    from blendapp.services.formulate import FailedCertificate
+    from blendapp.services.sheets import write_page
 
     if bool(given.accept) != bool(given.by):
         raise CallFault(_("blendapp sheet: --accept and --by go together; give both or neither."))
+    recorded = given.page == "sheet"
+    pdf = None
     with _Open(given.mill) as mill:
-        if not mill.writable:
+        if recorded and not mill.writable:
             raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
-        (formula,) = formulas_named(mill.library, [given.formula])
         try:
-            batch = make_batch(mill.library, formula.id, given.batch_kg, datetime.date.today(), mill.composition)
+            batch = ordered(mill, given, datetime.date.today())
         except FailedCertificate as failure:
             raise Refused(Problem(str(failure), Place(file=given.mill))) from failure
-        pdf = None
-        if batch.cause is None:
+        if batch.cause is None and recorded and batch.lacks_clean_out and not given.accept:
+            batch = replace(batch, cause=clean_out_question(batch))
+        if batch.cause is None and recorded:
             batch = print_sheet(mill, batch, Path(given.pdf), reason=given.accept or "", by=given.by or "")
             pdf = given.pdf
-    _print(as_json.text_of(as_json.sheet(batch, pdf)) if given.json else as_text.sheet(batch, pdf))
+        elif batch.cause is None:
+            batch = replace(batch, accepted_reason=given.accept or "", accepted_by=given.by or "")
+            write_page(batch, Path(given.pdf), given.page)
+            pdf = given.pdf
+    _print(as_json.text_of(as_json.sheet(batch, pdf)) if given.json else sheet_text.sheet(batch, pdf))
     return DONE if batch.cause is None and batch.fit_to_mix else NO
 
 

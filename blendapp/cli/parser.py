@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import argparse
 import math
+from collections.abc import Callable
 from typing import NoReturn
 
 from blendapp.domain.cautions import general_caution
@@ -80,14 +81,17 @@ def make_parser() -> argparse.ArgumentParser:
 
     sheet = _command(
         commands, "sheet", _("make the batches of an order and their sheet"),
-        'blendapp sheet valley.mill "Layer peak" --batch-kg 2000 -o layer.pdf',
+        'blendapp sheet valley.mill "Layer peak" --batch-kg 2000 -o layer.pdf --mixer "Mixer 1" --rework "Fines=2"',
     )
     sheet.add_argument("mill", metavar="MILL")
     sheet.add_argument("formula", metavar="FORMULA")
     sheet.add_argument("--batch-kg", type=_mass, required=True, metavar="KG", help=_("mass of the order"))
     sheet.add_argument("-o", dest="pdf", required=True, metavar="PDF", help=_("the sheet to write"))
-    sheet.add_argument("--accept", metavar="REASON", help=_("why limits that the weighing breaks are accepted"))
+    sheet.add_argument(
+        "--accept", metavar="REASON", help=_("why limits that the weighing breaks, or no clean-out, are accepted")
+    )
     sheet.add_argument("--by", metavar="NAME", help=_("who accepts them"))
+    _of_a_batch(sheet)
 
     export = _command(
         commands, "export", _("write the exchange workbook"), "blendapp export valley.mill valley.xlsx"
@@ -95,6 +99,59 @@ def make_parser() -> argparse.ArgumentParser:
     export.add_argument("mill", metavar="MILL")
     export.add_argument("workbook", metavar="WORKBOOK")
     return parser
+
+
+def _of_a_batch(sheet: argparse.ArgumentParser) -> None:
+    """What may be said of a batch besides its mass."""
+    sheet.add_argument(
+        "--approved", action="store_true", help=_("the approved version in its approved proportions, not the draft")
+    )
+    sheet.add_argument("--site", metavar="NAME", help=_("where it is made; else where the mill works"))
+    sheet.add_argument("--mixer", metavar="NAME", help=_("the mixer to use; else the smallest that takes the batch"))
+    sheet.add_argument(
+        "--rework", type=_share_of, action="append", default=[], metavar="NAME=PERCENT",
+        help=_("what comes back into the batch, in percent of it; may be given several times"),
+    )
+    sheet.add_argument(
+        "--fix", type=_mass_of, action="append", default=[], metavar="NAME=KG",
+        help=_("the mass of a line of one batch; the rest is made around it; may be given several times"),
+    )
+    sheet.add_argument(
+        "--clean-out", choices=("physical", "flush", "sequence", "none"), metavar="HOW",
+        help=_("what is done to the mixer before: physical, flush, sequence or none"),
+    )
+    sheet.add_argument(
+        "--previous", metavar="TEXT", help=_("what went through the mixer before; else by its last sheet")
+    )
+    sheet.add_argument("--paper", choices=("A4", "letter"), metavar="SIZE", help=_("A4 or letter; else the mill's own"))
+    sheet.add_argument("--mass", choices=("kg", "lb"), metavar="UNIT", help=_("kg or lb on paper; else the mill's own"))
+    sheet.add_argument(
+        "--page", choices=("sheet", "master", "blank"), default="sheet", metavar="PAGE",
+        help=_("sheet unless said, master (formula record) or blank (record to fill in); only a sheet takes a number"),
+    )
+
+
+def _share_of(text: str) -> tuple[str, float]:
+    return _of_name(text, _percent)
+
+
+def _mass_of(text: str) -> tuple[str, float]:
+    return _of_name(text, _fixed_mass)
+
+
+def _fixed_mass(text: str) -> float:
+    value = _number(text)
+    if value < 0:
+        raise argparse.ArgumentTypeError(_("“{text}” is below 0; give a mass in kg").format(text=text))
+    return value
+
+
+def _of_name(text: str, read: Callable[[str], float]) -> tuple[str, float]:
+    """An ingredient's name, which may itself hold "=", and a number."""
+    name, sign, number = text.rpartition("=")
+    if not sign or not name.strip():
+        raise argparse.ArgumentTypeError(_("“{text}” names nothing; write it like Fines=2").format(text=text))
+    return name.strip(), read(number)
 
 
 def _command(

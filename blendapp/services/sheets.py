@@ -4,15 +4,17 @@ from __future__ import annotations
 
 import contextlib
 import datetime
+import json
 import os
 import secrets
 from collections.abc import Callable, Iterator
-from dataclasses import asdict
+from dataclasses import asdict, replace
 from pathlib import Path
 from typing import Any
 
 from blendapp.domain.batches import Batch, BatchLine, BatchPage, CleanOut, Step, ToMake
 from blendapp.domain.formulas import LimitKind
+from blendapp.domain.mills import PrintedBatch
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.results import LimitResult, NutrientResult, Result, Side
 from blendapp.domain.wording import _
@@ -29,6 +31,12 @@ def batch_pdf(batch: Batch, paper: str = "", page: str = BatchPage.SHEET) -> byt
         BatchPage.BLANK: documents.blank_record,
     }[BatchPage(page)]
     return draw(batch, documents.Paper[paper.upper()] if paper else None)
+
+
+def write_page(batch: Batch, path: Path, page: str, paper: str = "") -> None:
+    """Write a page of a batch that takes no number and is not recorded. Raises Refused as `unfinished` does."""
+    with unfinished(path, batch_pdf(batch, paper, page)) as finish:
+        finish()
 
 
 def report_pdf(result: Result, mill: str, version: str, paper: str = "A4") -> bytes:
@@ -80,6 +88,11 @@ def _put(beside: Path, path: Path) -> None:
 def _unwritable(path: Path, error: OSError) -> Refused:
     text = _("The file cannot be written ({reason}); choose another place.")
     return Refused(Problem(text.format(reason=error.strerror or error), Place(file=str(path))))
+
+
+def printed_batch(record: PrintedBatch, copy: int = 0) -> Batch:
+    """The batch of a printed sheet, as it was printed or as such a copy of it."""
+    return replace(batch_from_plain(json.loads(record.sheet)), copy=copy)
 
 
 def batch_to_plain(batch: Batch) -> dict[str, Any]:

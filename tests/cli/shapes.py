@@ -90,9 +90,12 @@ PRICES = {
 SHEET = {
     "formula": {TEXT}, "version": {TEXT}, "order_kg": {NUMBER}, "batches": {NUMBER}, "batch_kg": {NUMBER},
     "lines": [{"ingredient": {TEXT}, "scale": {TEXT, NULL}, "step_kg": {NUMBER}, "share_kg": {NUMBER},
-               "target_kg": {NUMBER}, "hand_add": {YES_NO}}],
+               "target_kg": {NUMBER}, "hand_add": {YES_NO}, "bins": [{TEXT}], "target_l": FIGURE,
+               "tolerance_kg": FIGURE, "fixed": {YES_NO}, "rework": {YES_NO}}],
     "total_kg": FIGURE, "limits": [LIMIT], "broken": [{NUMBER}], "cause": {TEXT, NULL}, "cautions": [{TEXT}],
-    "pdf": {TEXT, NULL},
+    "pdf": {TEXT, NULL}, "site": {TEXT, NULL}, "mixer": {TEXT, NULL}, "yield_kg": FIGURE,
+    "to_make": [{"ingredient": {TEXT}, "formula": {TEXT}, "mass_kg": {NUMBER}}], "previous_feed": {TEXT, NULL},
+    "clean_out": {NULL, "physical", "flush", "sequence", "none needed"},
 }
 
 NEW = {"mill": {TEXT}, "warnings": [{TEXT}]}
