@@ -10,6 +10,7 @@ from types import TracebackType
 from PySide6.QtCore import QObject, QSettings, QTimer
 from PySide6.QtWidgets import QMenu, QWidget
 
+from blendapp.desk.arrivals import Arrivals
 from blendapp.desk.commands import Command, Commands
 from blendapp.desk.files import Files
 from blendapp.desk.finder.ask import Ask
@@ -25,7 +26,7 @@ from blendapp.desk.meet.pane import MeetPane
 from blendapp.desk.mill.pane import MillPane
 from blendapp.desk.mix.pane import MixPane
 from blendapp.desk.prices.effect import EffectPane
-from blendapp.desk.prices.pane import PricesPane
+from blendapp.desk.prices.pane import ListPane
 from blendapp.desk.sheet.pane import SheetPane
 from blendapp.desk.sheet.printed import PrintedPane
 from blendapp.desk.shell.frame import Frame
@@ -37,6 +38,7 @@ from blendapp.domain.formulas import LimitKind
 from blendapp.domain.library import Library
 from blendapp.domain.wording import _
 from blendapp.services.approved import outside_their_limits
+from blendapp.domain.mills import ListAbout
 from blendapp.services.versions import altered
 
 
@@ -61,14 +63,18 @@ class Bench(QObject):
             zone.put(pane)
         self.head = Head(self.work, frame)
         self.welcome = Welcome(self.files)
-        self.prices = PricesPane(self.work)
+        self.prices = ListPane(self.work, self.finder, self.ask)
+        self.arrivals = Arrivals(frame, self.prices, self.files, self.strip, self.settings, self.show_page)
+        self.head.page_undo, self.head.page_redo = self.arrivals.undo_words, self.arrivals.redo_words
         self.effect = EffectPane(self.work)
         self.sheet = SheetPane(self.work)
         self.printed = PrintedPane(self.work, self.sheet.printing)
         self.mill = MillPane(self.work)
         self.versions = VersionsPane(self.work)
         self.history = HistoryPane(self.work)
-        for page in (self.welcome, self.prices, self.effect, self.sheet, self.printed, self.mill, self.versions, self.history):
+        for page in (
+            self.welcome, self.prices, self.effect, self.sheet, self.printed, self.mill, self.versions, self.history,
+        ):
             frame.middle.addWidget(page)
         self.commands = Commands(frame, command_list(self), self._before_command)
         self._effect_taken = True
@@ -78,8 +84,8 @@ class Bench(QObject):
 
     def _connect(self) -> None:
         header = self.frame.header
-        header.undo.clicked.connect(self.work.undo)
-        header.redo.clicked.connect(self.work.redo)
+        header.undo.clicked.connect(self.undo)
+        header.redo.clicked.connect(self.redo)
         header.finder.clicked.connect(self.find_anything)
         header.formula.clicked.connect(self.choose_formula)
         header.menu.clicked.connect(self.open_menu)
@@ -89,7 +95,7 @@ class Bench(QObject):
         self.have.add.clicked.connect(self.have.add_ingredient)
         self.have.column_asked.connect(self._offer_column)
         self.have.history_asked.connect(self.show_history)
-        self.prices.ingredient_wanted.connect(self._ask_ingredient)
+        self.prices.changed.connect(self.head.say_undo)
         self.mix.limit_wanted.connect(lambda name: self.meet.adding.begin(LimitKind.INGREDIENT, name))
         # What is said of an edit is said after it, so that the edit takes away only what was said before.
         self.work.edited.connect(lambda _edit: self.strip.clear())
@@ -152,6 +158,7 @@ class Bench(QObject):
         if self.work.is_open:
             # After the answer is in view, and behind whatever else there is to say of the file.
             QTimer.singleShot(0, self, self._say_approved)
+        self.prices.reader.forget()
 
     def _say_approved(self) -> None:
         """Say which approved versions may not be fed as they stand, and which other hands have changed."""
@@ -188,9 +195,11 @@ class Bench(QObject):
 
     def bring_in_prices(self, path: Path | None = None) -> None:
         """Read a price list and show what would become of each row."""
-        chosen = path or self.files.ask_price_list()
-        if chosen is not None and self.prices.read(chosen):
-            self.show_page(self.prices)
+        self.arrivals.choose(ListAbout.PRICES, path)
+
+    def bring_in_analyses(self, path: Path | None = None) -> None:
+        """Read a list of analyses and show what would become of each row."""
+        self.arrivals.choose(ListAbout.COMPOSITION, path)
 
     def show_effect(self, before: Library, after: Library, taken: bool) -> None:
         """Show what prices do to every formula, or would do if they were taken."""
@@ -200,6 +209,16 @@ class Bench(QObject):
         self.show_page(self.effect)
 
     def back_to_effect(self) -> None:
+    def undo(self) -> None:
+        """Take the last answer for the list in view back, else the last edit."""
+        if not (self.arrivals.undo_words() and self.prices.take_back()):
+            self.work.undo()
+
+    def redo(self) -> None:
+        """Take the last undo back."""
+        if not (self.arrivals.redo_words() and self.prices.give_again()):
+            self.work.redo()
+
         """Show once more what the last prices did."""
         if self.effect.has_any:
             self.show_page(self.effect)
@@ -313,14 +332,8 @@ class Bench(QObject):
         things += [
             Found(one.name, _("nutrient"), partial(self.to_nutrient, one.id)) for one in library.nutrients
         ]
-        return things + self.mill.found() + self.printed.found(self.show_printed) + self.commands.found()
-
-    def _ask_ingredient(self, name: str) -> None:
-        things = [
-            Found(one.name, _("ingredient"), partial(self.prices.answer, name, one.id))
-            for one in self.work.library.ingredients
-        ]
-        self.finder.open(things, _("“{name}” in this list is…").format(name=name))
+        things += self.mill.found() + self.printed.found(self.show_printed) + self.commands.found()
+        return self.prices.found() + things + self.arrivals.found()
 
     def to_ingredient(self, ingredient_id: int) -> None:
         """Show an ingredient in the first zone."""

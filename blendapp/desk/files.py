@@ -9,6 +9,7 @@ from PySide6.QtCore import QObject, QSettings, Signal
 from PySide6.QtWidgets import QFileDialog, QWidget
 
 from blendapp.desk.work import Work
+from blendapp.domain.mills import ListAbout
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _
 from blendapp.services import workbook
@@ -30,6 +31,7 @@ class Files(QObject):
         self.settings = settings
         self.ask_open: Callable[[str, str], str] = self._system_open
         self.ask_save: Callable[[str, str, str], str] = self._system_save
+        self._begin_in: Path | None = None
 
     def _system_open(self, title: str, kinds: str) -> str:
         return QFileDialog.getOpenFileName(self.window_of, title, self._folder(), kinds)[0]
@@ -38,6 +40,8 @@ class Files(QObject):
         return QFileDialog.getSaveFileName(self.window_of, title, str(Path(self._folder()) / name), kinds)[0]
 
     def _folder(self) -> str:
+        if self._begin_in is not None:
+            return str(self._begin_in)
         return str(self.work.mill.path.parent) if self.work.is_open else str(Path.home())
 
     # -- mill files
@@ -131,11 +135,13 @@ class Files(QObject):
 
         self._try(job)
 
-    def ask_price_list(self) -> Path | None:
-        """Choose a price list."""
+    def ask_list(self, about: ListAbout, folder: Path | None) -> Path | None:
+        """Choose a list of prices or of analyses, beginning in a folder."""
         patterns = "*.xlsx *.xlsm *.xls *.xlsb *.ods *.csv *.txt *.tsv"
-        kinds = _("Price lists ({patterns});;All files (*)").format(patterns=patterns)
-        path = self.ask_open(_("Bring in a price list"), kinds)
+        kinds = _("Lists ({patterns});;All files (*)").format(patterns=patterns)
+        self._begin_in = folder
+        path = self.ask_open(_("Read a price list") if about is ListAbout.PRICES else _("Read analyses"), kinds)
+        self._begin_in = None
         return Path(path) if path else None
 
     # -- recent

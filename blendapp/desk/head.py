@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
+
 from PySide6.QtCore import QObject, QTimer
 
 from blendapp.desk.mix.lines import cost_decimals
@@ -26,6 +28,9 @@ class Head(QObject):
         super().__init__(frame)
         self.work = work
         self.frame = frame
+        # What a page would take back before the mill does, in words; "" for nothing.
+        self.page_undo: Callable[[], str] = str
+        self.page_redo: Callable[[], str] = str
         self._approved: tuple[object, float | None] = (None, None)
         # What a formula stands as is found by comparing, which must not hold up an edit.
         self._rest = QTimer(self, singleShot=True, interval=STANDING_MS)
@@ -44,7 +49,7 @@ class Head(QObject):
         if formula is None:
             header.state.say("")
         self._rest.start()
-        self._say_undo()
+        self.say_undo()
         name = work.library.mill.name if work.is_open else ""
         file = work.mill.path.name if work.is_open else ""
         title = " – ".join(part for part in (formula.name if formula is not None else "", name or file) if part)
@@ -82,10 +87,11 @@ class Head(QObject):
             return _("as approved")
         return _("{change} since approved").format(change=signed(result.cost - approved, decimals))
 
-    def _say_undo(self) -> None:
+    def say_undo(self) -> None:
+        """Say what undo and redo would do now."""
         work, header = self.work, self.frame.header
-        undo = work.mill.undo_text if work.is_open and work.mill.writable else None
-        redo = work.mill.redo_text if work.is_open and work.mill.writable else None
+        undo = self.page_undo() or (work.mill.undo_text if work.is_open and work.mill.writable else None)
+        redo = self.page_redo() or (work.mill.redo_text if work.is_open and work.mill.writable else None)
         header.undo.setEnabled(undo is not None)
         header.undo.say(_("Undo: {what} (Ctrl+Z)").format(what=undo) if undo else _("Nothing to undo"))
         header.redo.setEnabled(redo is not None)

@@ -34,7 +34,12 @@ def _file(bench: Bench) -> list[Command]:
         Command("new from", _("New mill file from a workbook…"), "mill", files.new_from),
         Command("open", _("Open a mill file…"), "mill", files.open, "Ctrl+O"),
         Command("copy file", _("Save a copy as…"), "mill", files.save_copy, "Ctrl+Shift+S", is_open),
-        Command("prices", _("Bring in a price list…"), "exchange", bench.bring_in_prices, "Ctrl+I", writable),
+        Command("prices", _("Read a price list…"), "exchange", bench.bring_in_prices, "Ctrl+I", writable),
+        Command("analyses", _("Read analyses…"), "exchange", bench.bring_in_analyses, "Ctrl+Shift+I", writable),
+        Command("latest list", _("Read the list that arrived last"), "exchange", bench.arrivals.latest, "Ctrl+J",
+                lambda: writable() and bench.arrivals.folder is not None),
+        Command("back to list", _("Back to the list that was read"), "exchange", bench.arrivals.back, "",
+                lambda: is_open() and bench.arrivals.has_list),
         Command("effect", _("What the last prices did"), "exchange", bench.back_to_effect, "",
                 lambda: bench.effect.has_any),
         Command("history", _("Prices of this ingredient over time"), "exchange", bench.show_history, "Ctrl+H",
@@ -51,18 +56,18 @@ def _edit(bench: Bench) -> list[Command]:
         return work.is_open and work.mill.writable
 
     def undo_words() -> str:
-        what = work.mill.undo_text if work.is_open else None
+        what = bench.arrivals.undo_words() or (work.mill.undo_text if work.is_open else None)
         return _("Undo: {what}").format(what=what) if what else _("Undo")
 
     def redo_words() -> str:
-        what = work.mill.redo_text if work.is_open else None
+        what = bench.arrivals.redo_words() or (work.mill.redo_text if work.is_open else None)
         return _("Redo: {what}").format(what=what) if what else _("Redo")
 
     return [
-        Command("undo", _("Undo"), "edit", work.undo, "Ctrl+Z",
-                lambda: writable() and work.mill.undo_text is not None, words_now=undo_words),
-        Command("redo", _("Redo"), "edit", work.redo, "Ctrl+Shift+Z | Ctrl+Y",
-                lambda: writable() and work.mill.redo_text is not None, words_now=redo_words),
+        Command("undo", _("Undo"), "edit", bench.undo, "Ctrl+Z",
+                lambda: writable() and bool(bench.arrivals.undo_words() or work.mill.undo_text), words_now=undo_words),
+        Command("redo", _("Redo"), "edit", bench.redo, "Ctrl+Shift+Z | Ctrl+Y",
+                lambda: writable() and bool(bench.arrivals.redo_words() or work.mill.redo_text), words_now=redo_words),
         Command("find", _("Find anything"), "edit", bench.find_anything, "Ctrl+K", in_menu=False),
         Command("filter", _("Show only some ingredients"), "edit", bench.have.filter.setFocus, "Ctrl+F",
                 lambda: work.is_open, False),

@@ -18,7 +18,7 @@ from blendapp.desk.shell.frame import Frame
 from blendapp.desk.start import make_app
 from blendapp.desk.theme import dress
 from blendapp.domain.formulas import Amounts, LimitKind
-from blendapp.domain.price_rows import PriceListReading
+from blendapp.domain.list_rows import Fate
 from blendapp.domain.versions import Snapshot
 from blendapp.services import edits, people, sheets, versions
 from blendapp.services import workbook as workbooks
@@ -227,9 +227,10 @@ def _prices(studio: Studio, bench: Bench, price_list: Path) -> None:
         return
     bench.bring_in_prices(price_list)
     studio.settle()
-    reading: PriceListReading | None = bench.prices.reading
+    studio.settle(lambda: bench.prices.isVisible())
+    reading = bench.prices.reading
     studio.take(bench.frame, "20-price-list")
-    if reading is not None and reading.accepted:
+    if reading is not None and reading.count(Fate.ACCEPTED):
         bench.prices.apply()
         studio.settle()
         studio.settle(lambda: not bench.effect.running)

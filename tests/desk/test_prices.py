@@ -11,8 +11,10 @@ from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
 from blendapp.desk.prices import effect
+from blendapp.domain.list_rows import Fate
 from blendapp.services.formulate import formulate
 from blendapp.services.movers import movers
+from tests.desk.arriving import price, read, wait, watch
 from tests.desk.conftest import Hands
 
 
@@ -23,32 +25,55 @@ def price_list(tmp_path: Path) -> Path:
     return path
 
 
-def test_every_row_shows_its_fate_and_nothing_is_stored_before_it_is_taken(bench: Bench, price_list: Path) -> None:
-    bench.bring_in_prices(price_list)
-    assert bench.frame.middle.currentWidget() is bench.prices
+def shown(bench: Bench, key: str) -> list[str]:
     rows = bench.prices.rows
-    fates = [str(rows.cell(owner, "fate").data()) for owner in rows.owners]
-    assert sorted(fates) == ["question", "taken", "taken"]
-    bench.prices.ignored.setChecked(True)
+    return [str(rows.cell(owner, key).data()) for owner in rows.owners]
+
+
+def test_every_row_shows_its_fate_and_nothing_is_stored_before_it_is_taken(
+    bench: Bench, hands: Hands, price_list: Path
+) -> None:
+    testers = watch(bench)
+    read(bench, price_list)
+    assert bench.frame.middle.currentWidget() is bench.prices
+    assert shown(bench, "fate") == ["question", "accepted", "accepted"]
+    assert shown(bench, "ingredient") == ["Unobtainium", "Maize", "Soybean meal"]
+    assert shown(bench, "price") == ["5.00", "210.00", "440.00"]
+    assert shown(bench, "old") == ["", "200.00", "420.00"]
+    assert shown(bench, "change") == ["", "+10.00", "+20.00"]
+    assert price(bench, 1) == 200
+    assert testers
+
+
+def test_the_counts_add_up_to_the_rows_read_and_each_shows_its_own(
+    bench: Bench, hands: Hands, price_list: Path
+) -> None:
+    read(bench, price_list)
+    counts = bench.prices.parts.counts
+    assert counts.read.text() == "5 rows read:"
+    figures = [counts.buttons[fate].text() for fate in (Fate.ACCEPTED, Fate.QUESTION, Fate.REFUSED, Fate.IGNORED)]
+    assert figures == ["2 accepted", "1 in question", "0 refused", "2 left alone"]
+    hands.click(counts.buttons[Fate.IGNORED])
     # The heading row is left alone, and so is the row whose price is “n/q”.
-    assert len(rows.owners) == 5
-    assert bench.work.library.price_per_t(1, bench.work.on) == 200
+    assert shown(bench, "place") == ["1", "3"]
+    hands.click(counts.buttons[None])
+    assert len(bench.prices.rows.owners) == 3
 
 
 def test_taking_the_list_records_every_accepted_price_as_one_undo(bench: Bench, hands: Hands, price_list: Path) -> None:
-    bench.bring_in_prices(price_list)
+    read(bench, price_list)
     hands.click(bench.prices.take)
-    assert bench.work.library.price_per_t(1, bench.work.on) == 210
-    assert bench.work.library.price_per_t(2, bench.work.on) == pytest.approx(440)
+    assert price(bench, 1) == 210
+    assert price(bench, 2) == pytest.approx(440)
     assert bench.frame.middle.currentWidget() is bench.effect
     assert "Unobtainium" in bench.strip.list.text()
     bench.work.undo()
-    assert bench.work.library.price_per_t(1, bench.work.on) == 200
-    assert bench.work.library.price_per_t(2, bench.work.on) == 420
+    assert price(bench, 1) == 200
+    assert price(bench, 2) == 420
 
 
 def test_leaving_the_list_changes_nothing(bench: Bench, hands: Hands, price_list: Path) -> None:
-    bench.bring_in_prices(price_list)
+    read(bench, price_list)
     hands.click(bench.prices.leave)
     assert bench.frame.middle.currentWidget() is bench.frame.bench
     assert bench.work.mill.undo_text is None
@@ -57,24 +82,38 @@ def test_leaving_the_list_changes_nothing(bench: Bench, hands: Hands, price_list
 def test_a_file_that_cannot_be_read_is_named_in_a_sentence(bench: Bench, tmp_path: Path) -> None:
     path = tmp_path / "photo.xlsx"
     path.write_bytes(b"PK\x03\x04 half a workbook")
-    bench.bring_in_prices(path)
+    read(bench, path)
     assert bench.frame.middle.currentWidget() is bench.frame.bench
     assert "photo.xlsx" in bench.strip.words.text()
 
 
-def test_a_question_about_a_name_is_answered_once_and_remembered(bench: Bench, hands: Hands, price_list: Path) -> None:
-    bench.bring_in_prices(price_list)
-    rows = bench.prices.rows
-    question = next(owner for owner in rows.owners if str(rows.cell(owner, "fate").data()) == "question")
-    hands.go(bench.prices.table, question, "fate")
-    hands.key(Qt.Key.Key_Return)
-    hands.write("peas")
-    hands.key(Qt.Key.Key_Return)
-    assert "question" not in [str(rows.cell(owner, "fate").data()) for owner in rows.owners]
+def test_a_list_that_was_taken_says_so_and_is_not_taken_twice_by_a_second_key(
+    bench: Bench, hands: Hands, price_list: Path
+) -> None:
+    read(bench, price_list)
     hands.click(bench.prices.take)
-    assert bench.work.library.price_per_t(4, bench.work.on) == 5
-    bench.bring_in_prices(price_list)
-    assert "question" not in [str(rows.cell(owner, "fate").data()) for owner in rows.owners]
+    bench.arrivals.back()
+    assert not bench.prices.take.isEnabled()
+    assert bench.prices.take.text() == "Taken"
+    bench.undo()
+    wait(bench)
+    assert bench.prices.take.isEnabled()
+    hands.click(bench.prices.take)
+    assert price(bench, 1) == 210
+    read(bench, price_list)
+    assert "taken before" in bench.prices.parts.remark.whole
+
+
+def test_an_edit_of_the_mill_is_followed_by_the_list_in_view(bench: Bench, hands: Hands, price_list: Path) -> None:
+    from blendapp.services import edits
+
+    read(bench, price_list)
+    bench.work.do(lambda mill: edits.add_ingredient(mill, "Unobtainium"))
+    wait(bench)
+    assert shown(bench, "fate") == ["accepted"] * 3
+    bench.work.undo()
+    wait(bench)
+    assert shown(bench, "fate").count("question") == 1
 
 
 def worked_out(bench: Bench, qtbot: QtBot) -> None:
@@ -89,7 +128,7 @@ def test_what_the_new_prices_do_stands_in_a_table_after_they_are_taken(
     bench: Bench, hands: Hands, price_list: Path, qtbot: QtBot
 ) -> None:
     cost = {one.id: formulate(bench.work.library, one.id, bench.work.on).cost for one in bench.work.library.formulas}
-    bench.bring_in_prices(price_list)
+    read(bench, price_list)
     hands.click(bench.prices.take)
     worked_out(bench, qtbot)
     for key, before in cost.items():
@@ -111,7 +150,7 @@ def test_what_the_new_prices_do_stands_in_a_table_after_they_are_taken(
 def test_a_preview_says_the_same_and_stores_nothing(
     bench: Bench, hands: Hands, price_list: Path, qtbot: QtBot
 ) -> None:
-    bench.bring_in_prices(price_list)
+    read(bench, price_list)
     hands.click(bench.prices.look)
     worked_out(bench, qtbot)
     before = {key: text(bench, key, "after") for key in (1, 2)}
@@ -138,7 +177,7 @@ def test_stopping_keeps_what_is_worked_out_and_the_rest_can_follow(
         return rows[:1]
 
     monkeypatch.setattr(effect, "movers", slow)
-    bench.bring_in_prices(price_list)
+    read(bench, price_list)
     hands.click(bench.prices.take)
     qtbot.waitUntil(lambda: begun.is_set() and bench.effect.remark.whole == "1 of 2 formulas", timeout=20000)
     hands.click(bench.effect.stop)
@@ -155,7 +194,7 @@ def test_stopping_keeps_what_is_worked_out_and_the_rest_can_follow(
 def test_what_prices_did_can_be_come_back_to_and_says_when_it_is_of_before_an_edit(
     bench: Bench, hands: Hands, price_list: Path, qtbot: QtBot
 ) -> None:
-    bench.bring_in_prices(price_list)
+    read(bench, price_list)
     hands.click(bench.prices.take)
     worked_out(bench, qtbot)
     assert bench.effect.remark.whole == "2 mixes kept, 0 changed"

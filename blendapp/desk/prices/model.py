@@ -1,84 +1,71 @@
-"""The rows of a price list as a table."""
+"""The rows of a price list as they were understood."""
 
 from __future__ import annotations
 
-from typing import Any
-
-from blendapp.desk.table.grid import AnyIndex, Grid, Heading
+from blendapp.desk.prices.understood import UnderstoodRows
+from blendapp.desk.table.grid import Heading
 from blendapp.desk.table.look import EMPTY, Look, number_look
-from blendapp.domain.list_rows import Fate
+from blendapp.domain.list_rows import Fate, ListReading, ListRow
+from blendapp.domain.names import fold
 from blendapp.domain.notation import notation
 from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.wording import _
 
 
-def fate_word(fate: Fate) -> str:
-    """What becomes of a row, in a word."""
-    return {Fate.ACCEPTED: _("taken"), Fate.QUESTION: _("question"), Fate.REFUSED: _("refused"),
-            Fate.IGNORED: _("left alone")}[fate]
+class PriceRows(UnderstoodRows):
+    """A line a row: ingredient, price as read and per tonne, the old one and the change."""
 
-
-class PriceRows(Grid):
-    """Owners are places among the rows of the reading. with_ignored: also rows that are no price."""
-
-    def __init__(self, parent: Any = None) -> None:
-        super().__init__(parent)
-        self.reading: PriceListReading | None = None
-        self.with_ignored = False
-
-    def show(self, reading: PriceListReading) -> None:
-        """Show a price list: what needs a look first, then what is taken, then what is left alone."""
-        self.reading = reading
-        self._looks.clear()
+    def make_headings(self, reading: ListReading) -> list[Heading]:
+        assert isinstance(reading, PriceListReading)
         per_t = _("{currency}/t").format(currency=reading.currency)
-        self.set_headings([
-            Heading("fate", "", 82), Heading("place", _("row"), 88), Heading("source_name", _("in the list"), 170),
-            Heading("ingredient", _("Ingredient"), 170), Heading("entered", _("price as listed"), 110, True),
-            Heading("price", per_t, 82, True), Heading("old", _("was"), 82, True),
-            Heading("change", _("change"), 72, True),
-            *([Heading("from", _("from"), 92)] if any(row.valid_from for row in reading.rows) else []),
-            Heading("reason", _("why"), 420),
-        ])
-        order = {Fate.REFUSED: 0, Fate.QUESTION: 1, Fate.ACCEPTED: 2, Fate.IGNORED: 3}
-        shown = [at for at, row in enumerate(reading.rows) if self.with_ignored or row.fate is not Fate.IGNORED]
-        self.set_rows(sorted(shown, key=lambda at: (order[reading.rows[at].fate], at)))
+        return [
+            Heading("fate", "", 76), Heading("place", _("row"), 46, True), Heading("ingredient", _("Ingredient"), 170),
+            Heading("entered", _("as listed"), 104, True), Heading("price", per_t, 82, True),
+            Heading("old", _("was"), 76, True), Heading("change", _("change"), 70, True),
+            Heading("percent", "%", 58, True),
+        ]
 
-    def row(self, index: AnyIndex) -> PriceRow | None:
-        """The source row behind a cell."""
-        if self.reading is None or not index.isValid():
-            return None
-        return self.reading.rows[self.owner(index)]
-
-    def make_look(self, owner: int, key: str) -> Look:
-        if self.reading is None or owner >= len(self.reading.rows):
-            return EMPTY
-        row = self.reading.rows[owner]
+    def line_look(self, row: ListRow, line: int, key: str) -> Look:
+        assert isinstance(row, PriceRow)
         quiet = row.fate is Fate.IGNORED
-        if key == "fate":
-            return Look(text=fate_word(row.fate), strong=row.fate in (Fate.QUESTION, Fate.REFUSED), quiet=quiet,
-                        hint=_("Enter says which ingredient it is") if row.fate is Fate.QUESTION else "")
         if key in ("price", "old"):
             value = row.price_per_t if key == "price" else row.old_price_per_t
-            return number_look(value, 2, unknown="", quiet=key == "old", strong=key == "price")
-        if key == "change":
-            return _change(row)
-        text = {
-            "source_name": row.source_name, "ingredient": row.ingredient or "",
-            "entered": f"{row.entered} {row.unit or ''}".strip(), "reason": row.reason,
-            "from": "" if row.valid_from is None else row.valid_from.isoformat(),
-            "place": _("{sheet} {row}").format(sheet=row.sheet, row=row.row).strip(),
-        }[key]
-        return Look(text=text, quiet=quiet or key in ("place", "from"), number=key == "entered",
-                    hint=text if key in ("reason", "source_name") else "")
+            return number_look(value, 2, unknown="", quiet=key == "old" or quiet, strong=key == "price" and not quiet)
+        if key in ("change", "percent"):
+            return _change(row, key == "percent")
+        if key == "entered":
+            text = f"{row.entered} {row.unit or ''}".strip()
+            return Look(text=text, quiet=quiet, number=True, hint=text)
+        name = row.ingredient or row.source_name
+        # A name that only the list knows is set apart from one of the mill's.
+        return Look(text=name, quiet=quiet, italic=row.ingredient is None, hint=name)
 
-    def write(self, owner: int, key: str, text: str) -> None:
-        raise ValueError(_("A price list is not changed here; mend it in its file and read it again."))
+    def detail(self, row: ListRow, line: int) -> str:
+        assert isinstance(row, PriceRow)
+        parts = []
+        if row.ingredient and row.source_name and fold(row.ingredient) != fold(row.source_name):
+            parts.append(_("“{name}” in the list").format(name=row.source_name))
+        first, last = row.valid_from, row.valid_to
+        if first is not None:
+            parts.append(_("from {day}").format(day=first.isoformat()))
+        if last is not None:
+            parts.append(_("to {day}").format(day=last.isoformat()))
+        if row.terms is not None:
+            parts.append(_(row.terms.value))
+        if row.dry_matter_price_per_t is not None:
+            figure = notation().write(row.dry_matter_price_per_t, 2)
+            parts.append(_("{price} per t of dry matter").format(price=figure))
+        facts = ", ".join(parts)
+        if facts and row.reason:
+            return f"{row.reason}   {facts}" if row.fate is not Fate.ACCEPTED else f"{facts}. {row.reason}"
+        return facts or row.reason
 
 
-def _change(row: PriceRow) -> Look:
-    if row.price_per_t is None or row.old_price_per_t is None or row.fate is not Fate.ACCEPTED:
+def _change(row: PriceRow, percent: bool) -> Look:
+    if row.price_per_t is None or not row.old_price_per_t or row.fate is Fate.IGNORED:
         return EMPTY
     change = row.price_per_t - row.old_price_per_t
+    value, decimals = (100 * change / row.old_price_per_t, 1) if percent else (change, 2)
     if abs(change) < 0.005:
-        return Look(text="0", number=True, quiet=True, lack=2)
-    return Look(text=("+" if change > 0 else "−") + notation().write(abs(change), 2), number=True)
+        return Look(text="0", number=True, quiet=True, lack=decimals)
+    return Look(text=("+" if change > 0 else "−") + notation().write(abs(value), decimals), number=True, quiet=percent)

@@ -1,165 +1,395 @@
-"""The page on which a price list is looked at before it is taken."""
+"""The page on which a list is looked at before it is taken: on the left as it stands, on the right as understood."""
 
 from __future__ import annotations
 
 from pathlib import Path
 
 from PySide6.QtCore import QModelIndex, Qt, Signal
-from PySide6.QtGui import QKeyEvent
-from PySide6.QtWidgets import QCheckBox, QHBoxLayout, QLabel, QPushButton, QVBoxLayout, QWidget
+from PySide6.QtGui import QKeyEvent, QShowEvent
+from PySide6.QtWidgets import QWidget
 
-from blendapp.desk.prices.model import PriceRows
-from blendapp.desk.prices.view import PriceTable
-from blendapp.desk.shell.zone import Elided
-from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
+from blendapp.desk.finder.ask import Ask
+from blendapp.desk.finder.panel import Finder
+from blendapp.desk.finder.search import Found
+from blendapp.desk.prices.asking import Open, open_questions, said_words
+from blendapp.desk.prices.layout import Parts
+from blendapp.desk.prices.reader import ListReader
+from blendapp.desk.prices.roles import sayings
+from blendapp.desk.prices.session import Session, Sessions
 from blendapp.desk.work import Work
-from blendapp.domain.list_rows import Fate
+from blendapp.domain.list_rows import Answer, Fate, ListReading, SourceSheet
+from blendapp.domain.mills import Asked, ListAbout
 from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _, plural
-from blendapp.services import plant, prices
+from blendapp.services.arriving import apply_list, taken_before
+from blendapp.services.mill import Edit
 from blendapp.services.movers import with_prices
 
 
-class PricesPane(QWidget):
-    """closed: back to the bench. said: a sentence with what can be listed below it. ingredient_wanted: the person is to
-    say which ingredient a name is. effect_wanted: the person wants to see what prices do, between two libraries, with
-    whether they are taken.
+class ListPane(QWidget):
+    """arrived: a list has been read for the first time and can be shown. closed: back to the bench. said: a sentence
+    with what can be listed below it. changed: what taking back would do has changed. effect_wanted: the person wants to
+    see what prices do, between two libraries, with whether they are taken.
     """
 
+    arrived = Signal()
     closed = Signal()
     said = Signal(str, list)
-    ingredient_wanted = Signal(str)
+    changed = Signal()
     effect_wanted = Signal(object, object, bool)
 
-    def __init__(self, work: Work) -> None:
+    def __init__(self, work: Work, finder: Finder, ask: Ask) -> None:
         super().__init__()
-        self.work = work
-        self.reading: PriceListReading | None = None
-        self.rows = PriceRows(self)
-        self.table = PriceTable(self.rows, self)
-        self.table.setAccessibleName(_("Rows of the price list"))
-        self.title = QLabel(_("Price list"))
-        self.title.setFont(text_font(strong=True))
-        self.remark = Elided()
-        self.remark.setObjectName("quiet")
-        self.ignored = QCheckBox(_("Show rows that are no price"))
-        self.ignored.toggled.connect(self._turn_ignored)
-        self.notes = QLabel()
-        self.notes.setObjectName("quiet")
-        self.notes.setWordWrap(True)
-        self.leave = QPushButton(_("Leave it"))
-        self.leave.setObjectName("plain")
-        self.leave.clicked.connect(self.closed)
-        self.take = QPushButton(_("Take the prices"))
-        self.take.setObjectName("first")
-        self.take.clicked.connect(self.apply)
-        self.look = QPushButton(_("What they would do"))
-        self.look.setObjectName("plain")
-        self.look.clicked.connect(self.preview)
-        head = QHBoxLayout()
-        head.setSpacing(GAP_PX * 2)
-        head.addWidget(self.title)
-        head.addWidget(self.remark, 1)
-        head.addWidget(self.ignored)
-        head.addWidget(self.look)
-        head.addWidget(self.leave)
-        head.addWidget(self.take)
-        column = QVBoxLayout(self)
-        column.setContentsMargins(MARGIN_PX, GAP_PX * 2, MARGIN_PX, 0)
-        column.setSpacing(GAP_PX)
-        column.addLayout(head)
-        column.addWidget(self.notes)
-        column.addWidget(self.table, 1)
-        self.setFocusProxy(self.table)
-        self.path: Path | None = None
-        self.table.asked.connect(self._ask)
-        self.table.doubleClicked.connect(self._ask)
+        self.work, self.finder = work, finder
+        self.sessions = Sessions()
+        self.session: Session | None = None
+        self.reading: ListReading | None = None
+        self.reader = ListReader(work, self)
+        self.parts = Parts(self, finder, ask)
+        self.rows, self.table = self.parts.price_rows, self.parts.price_table
+        self.questions, self.source = self.parts.questions, self.parts.source
+        self.take, self.look, self.leave = self.parts.take, self.parts.look, self.parts.leave
+        self._coming: Session | None = None
+        self._go_to: Answer | None = None
+        self._fault = ""
+        self._only: Fate | None = None
+        self._stale = self._taking = False
+        self._connect()
 
-    def read(self, path: Path) -> bool:
-        """Read a price list and show it; False where it cannot be read, which is said."""
-        try:
-            self.reading = prices.read_price_list(self.work.mill, path, self.work.on)
-        except Refused as refusal:
-            self.said.emit(str(refusal), [])
+    def _connect(self) -> None:
+        parts = self.parts
+        parts.leave.clicked.connect(self.closed)
+        parts.take.clicked.connect(self.apply)
+        parts.look.clicked.connect(self.preview)
+        parts.other.clicked.connect(self._read_as_other)
+        parts.counts.chosen.connect(self._show_only)
+        parts.sheets.chosen.connect(lambda name: self._show_sheet(name))
+        parts.whose.answered.connect(self.give)
+        parts.whose.source_said.connect(self._say_source)
+        self.questions.answered.connect(self.give)
+        self.questions.back.connect(self.take_back)
+        self.questions.left.connect(self._escape)
+        self.questions.take.connect(self.apply)
+        self.questions.shown.connect(self._mark_question)
+        self.source.role_asked.connect(self._offer_roles)
+        self.source.looked_at.connect(self._mark_understood)
+        for table in (parts.price_table, parts.sample_table):
+            table.asked.connect(self._ask)
+            table.doubleClicked.connect(self._ask)
+            table.cleared.connect(lambda _cells: self.take_back())
+            table.selectionModel().currentChanged.connect(lambda index, _old: self._mark_row(index))
+        self.reader.came.connect(self._came)
+        self.reader.failed.connect(self._failed)
+        self.work.edited.connect(self._edited)
+        self.work.opened.connect(self._forget)
+
+    # -- reading
+
+    def begin(self, path: Path, about: ListAbout = ListAbout.PRICES) -> None:
+        """Read a list, with what was answered for it before; arrived follows, or a sentence."""
+        session = self.sessions.of(path, about)
+        if session.taken_as is not None and self._is_taken(session):
+            session = self.sessions.begin_anew(session)
+        self._coming = session
+        self._fault, self._go_to = "", None
+        self.reader.begin(session)
+
+    def again(self) -> None:
+        """Read the list in view again, as its file and the mill are now."""
+        if self.session is not None:
+            self._stale = False
+            self.reader.begin(self._coming or self.session)
+            self._say_state()
+
+    def _came(self, reading: ListReading) -> None:
+        session = self._coming or self.session
+        if session is None:
+            return
+        if not session.is_of(reading):
+            session.forget_rows()
+            session.digest = reading.digest
+            self.reader.begin(session)
+            return
+        session.digest = reading.digest
+        first = session is not self.session or self.reading is None or self._coming is not None
+        dropped = None if first else session.drop_unsettled(self.reading, reading)
+        if dropped is not None:
+            self._go_to = dropped
+            self._fault = _("That does not answer it; the list reads as before. Answer otherwise, or leave it.")
+            self.reader.begin(session)
+            return
+        self.session, self._coming, self.reading = session, None, reading
+        self._show(first)
+        if first:
+            self.arrived.emit()
+
+    def _failed(self, sentence: str) -> None:
+        coming, self._coming = self._coming, None
+        if coming is None and self.session is not None and self.session.answers:
+            # The answer is what the reader stumbled over: it goes, and the reading before stands.
+            self.session.answers.pop()
+            self.reader.begin(self.session)
+        self.said.emit(sentence, [])
+        self._say_state()
+
+    def _forget(self) -> None:
+        """Another mill file: its lists are not this one's."""
+        self.reader.forget()
+        self.sessions.clear()
+        self.session = self._coming = self.reading = None
+        self.parts.show_nothing()
+        self.changed.emit()
+
+    def _edited(self, edit: Edit) -> None:
+        if self.session is None or self._taking or not edit.changes:
+            return
+        if self.isVisible():
+            self.again()
+        else:
+            self._stale = True
+
+    def showEvent(self, event: QShowEvent) -> None:
+        super().showEvent(event)
+        if self._stale:
+            self.again()
+
+    # -- answering
+
+    def give(self, answer: Answer) -> None:
+        """Take an answer in and read the list again with it."""
+        if self.session is not None:
+            self.session.give(answer)
+            self._go_to, self._fault = None, ""
+            self.again()
+            self.changed.emit()
+
+    def take_back(self) -> bool:
+        """Take the last answer back; returns whether there was one."""
+        return self._step(None if self.session is None else self.session.take_back())
+
+    def give_again(self) -> bool:
+        """Give the answer again that was taken back last."""
+        return self._step(None if self.session is None else self.session.give_again())
+
+    def _step(self, answer: Answer | None) -> bool:
+        if answer is None:
             return False
-        self.path = path
-        self.ignored.setChecked(False)
-        self._show()
+        self._go_to = answer
+        self.again()
+        self.changed.emit()
         return True
 
-    def _ask(self, index: QModelIndex) -> None:
-        row = self.rows.row(index)
-        if row is not None and row.fate is Fate.QUESTION and row.source_name:
-            self.ingredient_wanted.emit(row.source_name)
+    @property
+    def last_answer(self) -> str:
+        """What taking back would take back, in words; "" for nothing."""
+        if self.session is None or not self.session.answers or self._is_taken(self.session):
+            return ""
+        return said_words(self.session.answers[-1], self.work.library)
 
-    def answer(self, name: str, ingredient_id: int) -> None:
-        """Remember which ingredient the list means by a name, and read the list again."""
-        reading, path = self.reading, self.path
-        if reading is None or path is None:
-            return
-        try:
-            self.work.do(lambda mill: plant.name_means(mill, reading.file_name, name, ingredient_id))
-        except Refused as refusal:
-            self.said.emit(str(refusal), [])
-            return
-        self.read(path)
-        self.table.setFocus()
+    @property
+    def last_taken_back(self) -> str:
+        """What would be answered again, in words; "" for nothing."""
+        back = [] if self.session is None else self.session.back
+        return said_words(back[-1], self.work.library) if back else ""
 
-    def _turn_ignored(self, shown: bool) -> None:
-        self.rows.with_ignored = shown
-        if self.reading is not None:
-            self.rows.show(self.reading)
+    def _say_source(self, source: str) -> None:
+        if self.session is not None:
+            self.session.source = source
+            self.again()
 
-    def _show(self) -> None:
+    def _read_as_other(self) -> None:
+        if self.session is not None:
+            other = ListAbout.COMPOSITION if self.session.about is ListAbout.PRICES else ListAbout.PRICES
+            self.begin(self.session.path, other)
+
+    # -- showing
+
+    def _show(self, first: bool) -> None:
         reading = self.reading
         assert reading is not None
-        self.rows.show(reading)
-        self.title.setText(reading.file_name)
-        accepted = reading.count(Fate.ACCEPTED)
-        parts = [plural("{count} price to take", "{count} prices to take", accepted).format(count=accepted)]
-        for fate, one, many in (
-            (Fate.QUESTION, _("{count} question"), _("{count} questions")),
-            (Fate.REFUSED, _("{count} refused"), _("{count} refused")),
-            (Fate.IGNORED, _("{count} left alone"), _("{count} left alone")),
-        ):
-            count = reading.count(fate)
-            if count:
-                parts.append((one if count == 1 else many).format(count=count))
-        self.remark.say(", ".join(parts))
-        self.notes.setText("\n".join(reading.notes))
-        self.notes.setVisible(bool(reading.notes))
-        self.take.setText(plural("Take {count} price", "Take {count} prices", accepted).format(count=accepted))
-        self.take.setEnabled(accepted > 0)
-        self.look.setEnabled(accepted > 0)
+        library = self.work.library
+        if first:
+            self._only = None
+        if self._only is not None and not reading.count(self._only):
+            self._only = None
+        self.parts.show_reading(reading, library, self._only)
+        self._show_sheet(None if not first else reading.sheets[0].name if reading.sheets else None)
+        self.questions.show_questions(
+            open_questions(reading), library, reading.source, len(reading.sheets) > 1, self.work.on)
+        if self._go_to is not None:
+            back = next((one for one in self.questions.open if one.key == self._go_to.key), None)
+            if back is not None:
+                self.questions.go_to(back)
+        self.questions.say_fault(self._fault)
+        self._go_to, self._fault = None, ""
+        self._mark_question(self.questions.current)
+        self._say_state()
+        if first or self.questions.has_keyboard():
+            self.focus_first()
+
+    def focus_first(self) -> None:
+        """Put the keyboard on the question in view, else where the list is taken."""
+        if self.questions.current is not None:
+            self.questions.setFocus()
+        elif self.take.isEnabled():
+            self.take.setFocus()
+        else:
+            self.parts.table.setFocus()
+
+    def _say_state(self) -> None:
+        reading, session = self.reading, self.session
+        if reading is None or session is None:
+            return
+        self.questions.say_last(self.last_answer)
+        taken, running = self._is_taken(session), self.reader.running
+        count = reading.count(Fate.ACCEPTED)
+        if taken:
+            self.take.setText(_("Taken"))
+        elif session.about is ListAbout.PRICES:
+            self.take.setText(plural("Take {count} price", "Take {count} prices", count).format(count=count))
+        else:
+            self.take.setText(plural("Take {count} sample", "Take {count} samples", count).format(count=count))
+        ready = count > 0 and not taken and not running and self.work.is_open and self.work.mill.writable
+        self.take.setEnabled(ready)
+        self.look.setVisible(session.about is ListAbout.PRICES)
+        self.look.setEnabled(count > 0 and not running)
+        earlier = taken_before(self.work.library, reading.digest)
+        self.parts.say_remark(_("reading…") if running else self._remark(taken, earlier is not None))
+
+    def _remark(self, taken: bool, before: bool) -> str:
+        if taken:
+            return _("taken; Ctrl+Z takes it back")
+        if before:
+            return _("this very file was taken before; taking it again records everything a second time")
+        return _("nothing is stored before it is taken")
+
+    def _show_only(self, fate: Fate | None) -> None:
+        self._only = fate
+        if self.reading is not None:
+            self.parts.show_rows(self.reading, fate)
+
+    # -- the source
+
+    def _sheet(self, name: str | None) -> SourceSheet | None:
+        sheets = () if self.reading is None else self.reading.sheets
+        wanted = self.source.rows.sheet.name if name is None else name
+        return next((one for one in sheets if one.name == wanted), sheets[0] if sheets else None)
+
+    def _show_sheet(self, name: str | None) -> None:
+        reading, sheet = self.reading, self._sheet(name)
+        if reading is None:
+            return
+        name = "" if sheet is None else sheet.name
+        rows = [row for row in reading.rows if row.sheet == name]
+        struck = frozenset(row.row for row in rows if any(one.asked is Asked.STRUCK for one in row.questions))
+        self.parts.sheets.choose(name)
+        self.source.rows.show(sheet, reading.digest, {row.row: row.fate for row in rows}, struck)
+        self.source.mark(self.source.marked_row)
+
+    def _mark(self, sheet: str, row: int, about: Asked | None = None, heading: str = "") -> None:
+        if sheet != self.source.rows.sheet.name:
+            self._show_sheet(sheet)
+        self.source.mark(row, about, heading)
+
+    def _mark_question(self, one: Open | None) -> None:
+        if one is not None:
+            self._mark(one.row.sheet, one.row.row, one.question.asked, one.question.about)
+
+    def _mark_row(self, index: QModelIndex) -> None:
+        row = self.parts.model.row(index)
+        if row is not None and self.parts.table.has_keyboard():
+            self._mark(row.sheet, row.row)
+
+    def _mark_understood(self, row: int) -> None:
+        self.source.mark_only(row)
+        line = self.parts.model.line_of(self.source.rows.sheet.name, row)
+        if line is not None:
+            self.parts.table.setCurrentIndex(self.parts.model.index(line, 0))
+
+    def _ask(self, index: QModelIndex) -> None:
+        """Bring the question of a row into view."""
+        row = self.parts.model.row(index)
+        if row is None or not row.questions:
+            return
+        first = Open(row.questions[0], row, 0)
+        self.questions.go_to(first)
+        self.questions.setFocus()
+
+    def _offer_roles(self, row: int, column: int) -> None:
+        self.finder.open(self.sayings(row, column), _("What stands here"))
+
+    def sayings(self, row: int, column: int) -> list[Found]:
+        """What a person may say of a place in the source."""
+        sheet, session = self._sheet(None), self.session
+        if sheet is None or session is None:
+            return []
+        return sayings(sheet, self.source.rows.table_at(max(row, 1)), row, column, session.about, self.give)
+
+    def found(self) -> list[Found]:
+        """What can be found while this page is in view: what stands where the keyboard is in the source."""
+        here = self.source.currentIndex()
+        if not self.isVisible() or not here.isValid():
+            return []
+        return self.sayings(here.row() + 1, here.column())
+
+    # -- taking
+
+    def _is_taken(self, session: Session) -> bool:
+        kept = self.work.library.records["price_list"].get(session.taken_as or 0)
+        return kept is not None and kept.withdrawn is None
 
     def preview(self) -> None:
         """Show what the accepted prices would do, with nothing stored."""
-        if self.reading is not None:
+        if isinstance(self.reading, PriceListReading):
             before = self.work.library.copy()
             self.effect_wanted.emit(before, with_prices(before, self.reading, self.work.on), False)
 
     def apply(self) -> None:
-        """Record every accepted row as one undo, and show what they do."""
-        reading = self.reading
-        if reading is None:
+        """Record every accepted row as one undo; of prices, show what they do."""
+        reading, session = self.reading, self.session
+        if reading is None or session is None or not self.take.isEnabled():
             return
         before = self.work.library.copy()
+        self._taking = True
         try:
-            self.work.do(lambda mill: prices.apply_price_list(mill, reading, self.work.on))
+            self.work.do(lambda mill: apply_list(mill, reading, self.work.on))
         except Refused as refusal:
             self.said.emit(str(refusal), [])
             return
+        finally:
+            self._taking = False
+        session.taken_as = max(self.work.library.records["price_list"], default=None)
+        self._say_state()
+        self.changed.emit()
         count = reading.count(Fate.ACCEPTED)
-        self.effect_wanted.emit(before, self.work.library.copy(), True)
-        left = [f"{row.sheet} {row.row}, {row.source_name}: {row.reason}" for row in reading.rows
+        left = [f"{row.sheet} {row.row}, {row.source_name}: {row.reason}".strip() for row in reading.rows
                 if row.fate in (Fate.QUESTION, Fate.REFUSED)]
-        text = plural("{count} price from {file} is in force; Ctrl+Z takes it back.",
-                      "{count} prices from {file} are in force; Ctrl+Z takes them back.", count)
+        if session.about is ListAbout.PRICES:
+            self.effect_wanted.emit(before, self.work.library.copy(), True)
+            text = plural("{count} price from {file} is in force; Ctrl+Z takes it back.",
+                          "{count} prices from {file} are in force; Ctrl+Z takes them back.", count)
+        else:
+            self.closed.emit()
+            text = plural("{count} sample from {file} is taken; Ctrl+Z takes it back.",
+                          "{count} samples from {file} are taken; Ctrl+Z takes them back.", count)
         self.said.emit(text.format(count=count, file=reading.file_name), left)
 
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
+    # -- keys
+
+    def _escape(self) -> None:
+        if not self.take_back():
             self.closed.emit()
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        enter = event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter)
+        if event.key() == Qt.Key.Key_Escape:
+            self._escape()
+        elif event.key() == Qt.Key.Key_Backspace:
+            self.take_back()
+        elif event.key() == Qt.Key.Key_F5:
+            self.again()
+        elif enter and event.modifiers() & Qt.KeyboardModifier.ControlModifier:
+            self.apply()
         else:
             super().keyPressEvent(event)

@@ -1,57 +1,81 @@
-"""The table of a price list: reasons are wrapped, since they are sentences to be read."""
+"""The table of what was understood: under each line, over its whole width, the sentence about it."""
 
 from __future__ import annotations
 
-from PySide6.QtCore import QRect, QRectF, Qt
-from PySide6.QtGui import QFontMetrics, QPainter
+from PySide6.QtCore import QRect, QRectF, Qt, QTimer
+from PySide6.QtGui import QFontMetrics, QPainter, QPaintEvent
 from PySide6.QtWidgets import QWidget
 
-from blendapp.desk.prices.model import PriceRows
-from blendapp.desk.table.cell import PAD_PX, AnyIndex, CellDelegate
-from blendapp.desk.table.look import Look
+from blendapp.desk.prices.understood import UnderstoodRows
+from blendapp.desk.table.cell import PAD_PX
 from blendapp.desk.table.view import DeskTable
-from blendapp.desk.theme import ROW_PX, Tokens, text_font
+from blendapp.desk.theme import ROW_PX, text_font, tokens
 
-_WRAP = int(Qt.TextFlag.TextWordWrap)
-_PLACE = int(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignTop)
-LEAST_PX = 240
-
-
-class _Wrapped(CellDelegate):
-    def paint_inside(self, painter: QPainter, rect: QRectF, look: Look, scheme: Tokens, index: AnyIndex) -> None:
-        model = index.model()
-        assert isinstance(model, PriceRows)
-        if model.key(index) != "reason":
-            super().paint_inside(painter, rect, look, scheme, index)
-            return
-        painter.setPen(scheme.colour("quiet" if look.quiet else "text"))
-        whole = QRectF(rect.left() + PAD_PX, rect.top() + 8, rect.width() - 2 * PAD_PX, 10000)
-        painter.drawText(whole, _WRAP | _PLACE, look.text)
+_WRAP = int(Qt.TextFlag.TextWordWrap) | int(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignTop)
+_INSET_PX = 128
+# Columns that give way where there is no room, the first first.
+_GIVE_WAY = ("percent", "sampled", "sample")
+_STRETCH, _LEAST_PX = "ingredient", 110
 
 
-class PriceTable(DeskTable):
-    """A DeskTable of PriceRows; the reason takes the width that is left."""
+class UnderstoodTable(DeskTable):
+    """A DeskTable of UnderstoodRows."""
 
-    def __init__(self, model: PriceRows, parent: QWidget | None = None) -> None:
-        super().__init__(model, parent)
-        self.rows = model
-        self.cells = _Wrapped(self)
-        self.setItemDelegate(self.cells)
-        self.resized.connect(self.lay)
-        model.modelReset.connect(self.lay)
+    def __init__(self, model: UnderstoodRows, parent: QWidget | None = None) -> None:
+        super().__init__(model, parent, ruled=False)
+        self.understood = model
+        # After every view of the model was reset; heights are of no use before.
+        self._soon = QTimer(self, singleShot=True, interval=0)
+        self._soon.timeout.connect(self.lay)
+        self.resized.connect(self._soon.start)
+        model.modelReset.connect(self._soon.start)
 
     def lay(self) -> None:
-        """Lay out the reason and the heights of rows."""
-        column = self.rows.column_of("reason")
-        if column is None:
-            return
-        others = sum(self.columnWidth(at) for at in range(self.rows.columnCount()) if at != column)
-        width = max(self.viewport().width() - others, LEAST_PX)
-        self.setColumnWidth(column, width)
+        """Share the width out, and give each line the height that its sentence needs."""
+        model = self.understood
+        width = self.viewport().width()
+        widths = {heading.key: heading.width for heading in model.headings if heading.key != _STRETCH}
+        spare = width - sum(widths.values())
+        for key in _GIVE_WAY:
+            column = model.column_of(key)
+            if column is not None:
+                hidden = spare < _LEAST_PX + 30
+                self.setColumnHidden(column, hidden)
+                spare += widths[key] if hidden else 0
+        column = model.column_of(_STRETCH)
+        if column is not None and not self.has_own_width(_STRETCH):
+            self.setColumnWidth(column, max(spare, _LEAST_PX))
         metrics = QFontMetrics(text_font())
-        box = QRect(0, 0, width - 2 * PAD_PX, 10000)
-        for row in range(self.rows.rowCount()):
-            text = self.rows.look(row, column).text
-            height = max(ROW_PX, metrics.boundingRect(box, _WRAP, text).height() + 15) if text else ROW_PX
-            if self.rowHeight(row) != height:
-                self.setRowHeight(row, height)
+        room, line = max(width - _INSET_PX - PAD_PX, 100), metrics.height()
+        head = self.verticalHeader()
+        head.blockSignals(True)
+        for row, owner in enumerate(model.owners):
+            text = model.detail_of(owner)
+            height = ROW_PX
+            if text:
+                # Most fit on one line, which is quicker to tell than where words break.
+                fits = metrics.horizontalAdvance(text) < room
+                tall = line if fits else metrics.boundingRect(QRect(0, 0, room, 10000), _WRAP, text).height()
+                height += tall + 2
+            if head.sectionSize(row) != height:
+                head.resizeSection(row, height)
+        head.blockSignals(False)
+        self.updateGeometries()
+        self.viewport().update()
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        super().paintEvent(event)
+        painter, look, model = QPainter(self.viewport()), tokens(), self.understood
+        painter.setFont(text_font())
+        width, height = self.viewport().width(), self.viewport().height()
+        first = max(self.rowAt(0), 0)
+        for row in range(first, model.rowCount()):
+            top, tall = self.rowViewportPosition(row), self.rowHeight(row)
+            if top > height:
+                break
+            text = model.detail_of(model.owners[row])
+            if text and tall > ROW_PX:
+                painter.setPen(look.colour("quiet"))
+                box = QRectF(_INSET_PX, top + ROW_PX - 5, width - _INSET_PX - PAD_PX, tall - ROW_PX + 6)
+                painter.drawText(box, _WRAP, text)
+            painter.fillRect(QRectF(0, top + tall - 1, width, 1), look.colour("hairline"))

@@ -1,0 +1,98 @@
+"""What a person has answered for a list, kept while the mill file is open: taken back, and given again. No Qt."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from pathlib import Path
+
+from blendapp.domain.list_rows import Answer, ListReading
+from blendapp.domain.mills import ListAbout
+from blendapp.domain.names import fold
+
+
+@dataclass
+class Session:
+    """One file that is looked at. answers: in the order in which they were given; back: those taken back, the last
+    one last. digest: of the file that the answers were given for. taken_as: the record of the list once it is taken.
+    """
+
+    path: Path
+    about: ListAbout
+    source: str = ""
+    answers: list[Answer] = field(default_factory=list)
+    back: list[Answer] = field(default_factory=list)
+    digest: str = ""
+    taken_as: int | None = None
+
+    def give(self, answer: Answer) -> None:
+        """Take an answer in; of two to the same question the later one holds."""
+        self.answers.append(answer)
+        self.back.clear()
+
+    def take_back(self) -> Answer | None:
+        """Take the last answer back."""
+        if not self.answers:
+            return None
+        answer = self.answers.pop()
+        self.back.append(answer)
+        return answer
+
+    def give_again(self) -> Answer | None:
+        """Give the answer again that was taken back last."""
+        if not self.back:
+            return None
+        answer = self.back.pop()
+        self.answers.append(answer)
+        return answer
+
+    def is_of(self, reading: ListReading) -> bool:
+        """Whether the answers were given for this very file; those about rows hold for no other."""
+        return not self.digest or self.digest == reading.digest
+
+    def forget_rows(self) -> None:
+        """Keep only what was answered about the list as a whole: the rows of the file have changed."""
+        self.answers = [one for one in self.answers if not one.asked.is_of_row]
+        self.back.clear()
+
+    def drop_unsettled(self, before: ListReading | None, after: ListReading) -> Answer | None:
+        """Drop the last answer where it has changed nothing: its question stands for as many rows as before."""
+        if not self.answers or before is None:
+            return None
+        answer = self.answers[-1]
+        if not (asked := _rows_asking(after, answer)) or asked != _rows_asking(before, answer):
+            return None
+        return self.answers.pop()
+
+
+def _rows_asking(reading: ListReading, answer: Answer) -> set[tuple[str, int]]:
+    return {
+        (row.sheet, row.row)
+        for row in reading.rows
+        for one in row.questions
+        if one.asked is answer.asked and (
+            (row.sheet, row.row) == (answer.sheet, answer.row) if one.asked.is_of_row
+            else fold(one.about) == fold(answer.about)
+        )
+    }
+
+
+class Sessions:
+    """The lists of one open mill file that were looked at."""
+
+    def __init__(self) -> None:
+        self._found: dict[tuple[Path, ListAbout], Session] = {}
+
+    def of(self, path: Path, about: ListAbout) -> Session:
+        """The session of a file, a new one where it was not looked at before."""
+        key = (path.resolve(), about)
+        return self._found.setdefault(key, Session(path, about))
+
+    def begin_anew(self, session: Session) -> Session:
+        """A session without answers in place of one whose list was taken."""
+        key = (session.path.resolve(), session.about)
+        self._found[key] = Session(session.path, session.about, session.source)
+        return self._found[key]
+
+    def clear(self) -> None:
+        """Forget them all: another mill file is opened."""
+        self._found.clear()
