@@ -56,7 +56,7 @@ def code_text(batch: Batch, page: BatchPage) -> str:
     name = letters.plain(batch.formula).encode()[:_CODE_NAME_BYTES].decode(errors="ignore")
     version = letters.plain(batch.version).encode()[:_CODE_NAME_BYTES].decode(errors="ignore")
     of = _("not numbered") if page is BatchPage.BLANK else number_words(batch, page)
-    return "\n".join([name, version, letters.plain(of)])
+    return "\n".join([name, version, letters.plain(of.replace("\u00a0", " "))])
 
 
 def _draw_code(pen: Pen, left: float, top: float, text: str) -> None:

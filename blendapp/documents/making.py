@@ -65,10 +65,21 @@ def clean_out(batch: Batch, page: BatchPage, width: float) -> list[Block]:
     blocks.append(forms.fields([Field(_("Feed before, and its batch"), value=before)], width, gap=0, keep_next=True))
     if batch.clean_out_reason and page is BatchPage.SHEET:
         reason = paragraph(batch.clean_out_reason, STRONG, width - 10, gap=6, keep_next=True)
+        reason += paragraph(_answer_to_reason(batch), STRONG, width - 10, gap=2, keep_next=True)
         blocks += [_with_next(block) for block in sections.barred(reason)]
     blocks.append(forms.boxes([(words[one], one is chosen) for one in CleanOut], width, gap=4))
     row = [Field(_("How: flushed with, or batches between"), 2.4), Field(_("Time"), 0.8), Field(_("Initials"), 0.8)]
     return [*blocks, forms.fields(row, width, gap=0)]
+
+
+def _answer_to_reason(batch: Batch) -> str:
+    """What was chosen where a clean-out is needed, or who answers for none."""
+    if not batch.lacks_clean_out:
+        return _("Do what is crossed below before anything is weighed into the mixer.")
+    if batch.accepted_reason and batch.accepted_by:
+        words = _("Mixed without a clean-out; accepted by {name}: {reason}")
+        return words.format(name=batch.accepted_by, reason=batch.accepted_reason)
+    return _("No clean-out is chosen: choose one before anything is weighed into the mixer.")
 
 
 def mixing(batch: Batch, page: BatchPage, width: float) -> list[Block]:

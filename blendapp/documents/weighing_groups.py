@@ -98,7 +98,7 @@ class Group:
 
     def tolerance(self, line: BatchLine, unit: str) -> str:
         """"± 5 kg": in whole steps of the scale, since it shows no others; "" where none is known."""
-        if line.tolerance_kg is None:
+        if line.tolerance_kg is None or not line.target_kg:
             return ""
         steps = figures.within_steps(line.tolerance_kg, line.step_kg)
         if line.step_l is not None:

@@ -18,6 +18,8 @@ _TAG_PAD = 5.0
 def details(line: BatchLine, page: BatchPage) -> list[str]:
     """Sentences under the name. Which bin holds it is true of one batch: only its sheet names them."""
     found = []
+    if not line.target_kg:
+        return [_("Left out of this batch")]
     if line.bins and page is BatchPage.SHEET:
         found.append(_("From {bins}").format(bins=_(" or ").join(line.bins)))
     if line.rework:

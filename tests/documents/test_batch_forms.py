@@ -10,7 +10,8 @@ import pytest
 from page_reading import Piece, figures_under, pieces, places_under, rules, squeezed
 
 from blendapp.documents import batch_sheet, blank_record, master_record, page_text
-from blendapp.domain.batches import CleanOut
+from blendapp.documents.batch_head import code_text
+from blendapp.domain.batches import BatchPage, CleanOut
 from blendapp.domain.cautions import GENERAL_CAUTION
 
 
@@ -88,6 +89,32 @@ def test_the_feed_before_and_why_a_clean_out_is_needed_stand_on_the_sheet() -> N
     text = words(batch_sheet(made.FULL))
     assert squeezed("Broiler finisher, batch 1039") in text
     assert squeezed(made.FULL.clean_out_reason) in text
+
+
+def test_a_clean_out_that_is_needed_and_not_chosen_is_asked_for_or_answered_for_by_name() -> None:
+    asked = "No clean-out is chosen: choose one before anything is weighed into the mixer."
+    for chosen in (None, CleanOut.NONE):
+        lacking = dataclasses.replace(made.FULL, clean_out=chosen)
+        assert squeezed(asked) in words(batch_sheet(lacking))
+        accepted = dataclasses.replace(lacking, accepted_by="Marta Okonjo", accepted_reason="Washed last night.")
+        text = words(batch_sheet(accepted))
+        assert squeezed("Mixed without a clean-out; accepted by Marta Okonjo: Washed last night.") in text
+        assert squeezed(asked) not in text
+    assert squeezed("Do what is crossed below before anything is weighed") in words(batch_sheet(made.FULL))
+    assert squeezed("is weighed into the mixer") not in words(blank_record(made.FULL))
+
+
+def test_a_line_of_nothing_says_that_it_is_left_out() -> None:
+    lines = (dataclasses.replace(made.FULL.lines[6], target_kg=0.0), *made.FULL.lines[:6])
+    text = words(batch_sheet(dataclasses.replace(made.FULL, lines=lines)))
+    assert squeezed("Left out of this batch") in text
+
+
+def test_the_code_says_formula_version_and_which_batch_or_record_it_is() -> None:
+    assert code_text(made.FULL, BatchPage.SHEET) == "Grower pig 30 to 60 kg\nversion 3\nBatch 1041"
+    assert code_text(made.FULL, BatchPage.BLANK).endswith("\nnot numbered")
+    assert code_text(made.US, BatchPage.MASTER).endswith("\nfor 4200 lb")
+    assert len(code_text(made.EXTREME, BatchPage.SHEET).encode()) < 200
 
 
 def test_each_step_has_its_minutes_setting_and_places_for_time_and_initials() -> None:
