@@ -318,7 +318,7 @@ def print_copy(mill: Mill, batch_record_id: int, path: Path, *, paper: str = "")
     """Write the sheet of a printed batch again, digit for digit, marked COPY with its count. paper: "" is its own."""
     record: PrintedBatch = mill.library.records["batch"][batch_record_id]
     copies = record.copies + 1
-    batch = replace(sheets.batch_from_plain(json.loads(record.sheet)), copy=copies)
+    batch = sheets.printed_batch(record, copies)
     with sheets.unfinished(path, sheets.batch_pdf(batch, paper)) as finish:
         what = _("Copy {count} of batch sheet {number}").format(count=copies, number=record.number)
         mill.record(what, [Change(record, replace(record, copies=copies))])

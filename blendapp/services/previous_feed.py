@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import json
 from collections.abc import Collection
 from dataclasses import replace
 
@@ -14,14 +13,14 @@ from blendapp.domain.library import Library
 from blendapp.domain.mills import PrintedBatch
 from blendapp.domain.wording import _
 from blendapp.services.making import Makers
-from blendapp.services.sheets import batch_from_plain
+from blendapp.services.sheets import printed_batch
 
 
 def previous_sheet(library: Library, mixer_id: int | None) -> Batch | None:
     """The batch of the last sheet of a mixer; None is the mixer of a mill that has entered none."""
     found: list[PrintedBatch] = [one for one in library.records["batch"].values() if one.mixer_id == mixer_id]
     last = max(found, key=lambda one: one.number, default=None)
-    return None if last is None else batch_from_plain(json.loads(last.sheet))
+    return None if last is None else printed_batch(last)
 
 
 def feed_text(batch: Batch) -> str:

@@ -102,7 +102,7 @@ def weigh(
     faults = no_batch.not_fixable(library, built.formula, asked, shares, _opened(built))
     fixed = {key: _as_dosed(library, key, mass) for key, mass in asked.items() if key in shares and math.isfinite(mass)}
     scales = [scales_for(library, ingredient) for ingredient in ingredients]
-    order = _order(library, built, ingredients, scales, shares, batch_kg, total, fixed, (least_kg, greatest_kg))
+    order = order_of(built, ingredients, scales, shares, batch_kg, total, fixed, (least_kg, greatest_kg))
     found = whole_batch(order, time_limit_s)
     if isinstance(found, NoBatch):
         sentences = no_batch.sentences(order, found, ingredients, scales)
@@ -166,11 +166,16 @@ def _as_dosed(library: Library, ingredient_id: int, mass_kg: float) -> float:
     return dosed if abs(dosed - mass_kg) <= _READ_KG * (1 + 1e-9) else mass_kg
 
 
-def _order(
-    library: Library, built: FormulaProgram, ingredients: Sequence[Ingredient],
-    scales: Sequence[Sequence[Scale | None]], shares: Mapping[int, float], batch_kg: float, total: float,
-    fixed: Mapping[int, float], ends: tuple[float | None, float | None],
+def order_of(
+    built: FormulaProgram, ingredients: Sequence[Ingredient], scales: Sequence[Sequence[Scale | None]],
+    shares: Mapping[int, float], batch_kg: float, total: float, fixed: Mapping[int, float],
+    ends: tuple[float | None, float | None] = (None, None),
 ) -> Order:
+    """A batch as numbers alone: one line an ingredient, on the scales that may weigh it, and the limits of its program.
+
+    shares: exact kg by ingredient identifier. total: what the batch stands for in the amounts of a ration. ends:
+    between which totals it must come.
+    """
     column = {ingredient.id: j for j, ingredient in enumerate(built.ingredients)}
     columns = [column[ingredient.id] for ingredient in ingredients]
     place = {j: at for at, j in enumerate(columns)}

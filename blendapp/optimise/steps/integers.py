@@ -14,6 +14,7 @@ import scipy.sparse
 from blendapp.optimise.program import Array
 from blendapp.optimise.quiet import quiet
 from blendapp.optimise.steps.problem import Task
+from blendapp.optimise.steps.totals import common_measure
 
 _milp: Any = scipy.optimize.milp
 # Sides and aims are scaled so that what the solver neglects (1e-7 to 1e-6) is small beside what one step does.
@@ -74,6 +75,8 @@ class Integers:
         aim = np.zeros(self.columns)
         aim[self._marks()] = 1.0
         found = self._solve(aim, [], time_limit_s)
+        if found.none:
+            return found
         return found._replace(bound=self.always + math.ceil(found.bound - 1e-6))
 
     def least_deviation(self, most_broken: int, time_limit_s: float) -> Found:
@@ -159,8 +162,13 @@ class Integers:
         if self.second:
             row[-1] = ends[0] - ends[1]
         rows.append(row)
-        low.append(ends[0])
-        high.append(ends[0])
+        # Where a step is no multiple of the finest one (litres times a density) an equality is at the mercy of
+        # rounding, and the solver may find it met nowhere. Totals lie a common measure apart: a part of it lets in no
+        # other.
+        common = common_measure(placed)
+        play = 0.0 if common == finest else 0.3 * float(common / finest)
+        low.append(ends[0] - play)
+        high.append(ends[0] + play)
         for j, p in enumerate(placed):
             off = float((p.step * self.origin[j] - p.share) / p.allowed)
             for sign in (1.0, -1.0):

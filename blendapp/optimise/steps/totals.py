@@ -17,7 +17,7 @@ def nearest_totals(order: Order, placed: Sequence[Placed]) -> list[Fraction] | N
 
     None where there are too many sums to mark. Exact otherwise: no other total is as near.
     """
-    common = _common([p.step for p in placed])
+    common = common_measure(placed)
     base = 0
     spread: list[tuple[int, int, int, bool]] = []  # per line: size of a step, lo, hi, and whether 0 too
     for p in placed:
@@ -53,8 +53,9 @@ def nearest_totals(order: Order, placed: Sequence[Placed]) -> list[Fraction] | N
     return [total * common for total in sorted(set(found)) if abs(total - wanted) == error]
 
 
-def _common(steps: Sequence[Fraction]) -> Fraction:
-    """The greatest mass of which every step is a whole multiple."""
+def common_measure(placed: Sequence[Placed]) -> Fraction:
+    """The greatest mass in kg of which every step is a whole multiple."""
+    steps = [p.step for p in placed]
     by = math.lcm(*(s.denominator for s in steps))
     return Fraction(math.gcd(*(int(s * by) for s in steps)), by)
 
