@@ -14,6 +14,7 @@ from blendapp.desk.bench import Bench
 from blendapp.desk.rail.geometry import End
 from blendapp.domain.formulas import Admits, Animal, LimitKind
 from blendapp.services import workbook
+from tests.desk.arriving import read
 from tests.desk.conftest import Hands
 
 
@@ -52,7 +53,7 @@ def add_limit(bench: Bench, _folder: Path) -> None:
 def take_prices(bench: Bench, folder: Path) -> None:
     path = folder / "list.csv"
     path.write_text("Ingredient,Price,Unit\nMaize,210,t\nPeas,300,t\n")
-    bench.bring_in_prices(path)
+    read(bench, path)
     bench.prices.apply()
 
 

@@ -221,6 +221,7 @@ class ListPane(QWidget):
             back = next((one for one in self.questions.open if one.key == self._go_to.key), None)
             if back is not None:
                 self.questions.go_to(back)
+                first = True
         self.questions.say_fault(self._fault)
         self._go_to, self._fault = None, ""
         self._mark_question(self.questions.current)
