@@ -56,9 +56,9 @@ def _yield_words(batch: Batch) -> str:
 
 
 def _write_yield(kg: float, unit: str) -> str:
-    """A worked-out mass with five significant digits, or those of whole units."""
+    """A worked-out mass with five significant digits, or all of whole units."""
     value = figures.mass_in(kg, unit)
-    return notation().write(value, figures.decimals_of(value, 5))
+    return notation().write_short(round(value, figures.decimals_of(value, 5)))
 
 
 def sample_and_release(width: float) -> list[Block]:
