@@ -9,6 +9,10 @@ from collections.abc import Sequence
 def main(arguments: Sequence[str] | None = None) -> int:
     """Returns the exit status."""
     given = list(sys.argv[1:] if arguments is None else arguments)
+    if given == ["--parse-table"]:  # how the frozen program starts the process that opens foreign files
+        from blendapp.exchange import parse_child
+
+        return parse_child.main()
     from blendapp import cli
 
     if cli.is_command(given):

@@ -2,18 +2,18 @@
 
 from __future__ import annotations
 
-import datetime
-from collections.abc import Mapping, Sequence
-from pathlib import Path
 from typing import TYPE_CHECKING
 
-from blendapp.domain.composition_rows import CompositionReading
-from blendapp.domain.library import Library
-from blendapp.domain.list_rows import Answer
-from blendapp.domain.price_rows import PriceListReading
-from blendapp.domain.problems import Problem
+if TYPE_CHECKING:  # the process that parses foreign files imports this room and shall start at once
+    import datetime
+    from collections.abc import Mapping, Sequence
+    from pathlib import Path
 
-if TYPE_CHECKING:
+    from blendapp.domain.composition_rows import CompositionReading
+    from blendapp.domain.library import Library
+    from blendapp.domain.list_rows import Answer
+    from blendapp.domain.price_rows import PriceListReading
+    from blendapp.domain.problems import Problem
     from blendapp.exchange.workbook_read import WorkbookReading
 
 

@@ -14,13 +14,15 @@ from blendapp.exchange.tables import NO_STORED_VALUE, CellValue, ErrorCell, RawT
 GREATEST_TEXT_BYTES = 20_000_000
 SEPARATORS = ("\t", ";", ",")
 _LINES_LOOKED_AT = 200
+# What spreadsheets hold.
+MOST_COLUMNS = 16_384
 _ERRORS = frozenset({"#N/A", "#REF!", "#VALUE!", "#DIV/0!", "#NAME?", "#NULL!", "#NUM!", "#NV", "#SPILL!", "#CALC!"})
 
 
 def read_delimited(source: SourceFile) -> RawTable:
     """The text as a table without a sheet name; a row is the line of the text on which it begins.
 
-    Raises Refused if the file is too large.
+    Raises Refused if the file is too large or too wide.
     """
     if len(source.data) > GREATEST_TEXT_BYTES:
         raise refusal(source.name, _("The text is too large to be a table of a mill; keep only the rows needed."))
@@ -34,6 +36,10 @@ def read_delimited(source: SourceFile) -> RawTable:
         except csv.Error:
             sentence = _("A cell of the text is too long to be one of a table; check the file.")
             raise refusal(source.name, sentence) from None
+    widest = max(map(len, rows), default=0)
+    if widest > MOST_COLUMNS:
+        sentence = _("A row of the text has {count} columns, far more than a table; check how its cells are separated.")
+        raise refusal(source.name, sentence.format(count=widest))
     return RawTable("", rows, hidden_rows=frozenset(), hidden_columns=frozenset())
 
 

@@ -10,20 +10,32 @@ from dataclasses import dataclass, field
 
 from blendapp.exchange.tables import NO_STORED_VALUE, ErrorCell, NoStoredValue, column_number
 from blendapp.exchange.xlsx_parser import ForbiddenEntities, careful_parser
-from blendapp.exchange.xlsx_styles import CellStyles, read_styles
+from blendapp.exchange.xlsx_styles import CellStyles, is_set, read_struck_texts, read_styles
 
-__all__ = ["ForbiddenEntities", "SheetScan", "careful_parser", "scan_sheets", "sheet_parts"]
+# calamine lays a sheet out as a full rectangle, so a cell far out costs memory for everything before it.
+GREATEST_AREA = 5_000_000
+
+__all__ = ["ForbiddenEntities", "SheetScan", "TooFarOut", "careful_parser", "scan_sheets", "sheet_parts"]
 
 _REFERENCE = re.compile(r"([A-Z]{1,3})([0-9]{1,7})")
 _ROW = re.compile(r"[0-9]{1,7}")
 _COLUMNS: dict[str, int] = {}
 
 
+class TooFarOut(Exception):
+    """A cell of a sheet stands so far out that no memory would hold everything before it; row, column from 0."""
+
+    def __init__(self, row: int, column: int) -> None:
+        super().__init__(row, column)
+        self.row, self.column, self.sheet = row, column, ""
+
+
 @dataclass
 class SheetScan:
     """marks: cells, by (row, column) from 0, that hold no value. last_row, last_column: of cells that hold anything.
 
-    formats: number formats that tell something, of cells with a number. struck: filled cells that are struck through.
+    formats: number formats that tell something, of cells with a number. struck: filled cells that are struck through,
+    wholly or in part.
     merged: ranges of merged cells as the file writes them, B1:C1.
     """
 
@@ -36,22 +48,26 @@ class SheetScan:
     struck: set[tuple[int, int]] = field(default_factory=set)
     merged: list[str] = field(default_factory=list)
 
-    @property
-    def area(self) -> int:
-        """Cells of the rectangle from A1 to the last cell that holds anything."""
-        return (self.last_row + 1) * (self.last_column + 1)
-
 
 def scan_sheets(data: bytes) -> dict[str, SheetScan]:
-    """Each sheet of an .xlsx file by name. Raises ForbiddenEntities, expat.ExpatError, KeyError, zipfile.BadZipFile."""
+    """Each sheet of an .xlsx file by name.
+
+    Raises ForbiddenEntities, TooFarOut, expat.ExpatError, KeyError, zipfile.BadZipFile.
+    """
     with zipfile.ZipFile(io.BytesIO(data)) as archive:
         parts = {part.filename for part in archive.infolist()}
         found: dict[str, SheetScan] = {}
         by_name = sheet_parts(archive)
         styles = read_styles(archive)
+        texts = {part for part in parts if part.startswith("xl/") and part.casefold().endswith("sharedstrings.xml")}
+        struck = frozenset(place for part in texts for place in read_struck_texts(archive.read(part)))
         for name, part in by_name.items():
-            found[name] = _scan(archive.read(part), styles) if part in parts else SheetScan()
-        for part in parts - set(by_name.values()):
+            try:
+                found[name] = _scan(archive.read(part), styles, struck) if part in parts else SheetScan()
+            except TooFarOut as far:
+                far.sheet = name
+                raise
+        for part in parts - set(by_name.values()) - texts:
             if part.startswith("xl/") and part.endswith((".xml", ".rels")):
                 careful_parser().Parse(archive.read(part), True)  # so that no other parser meets a broken part
         return found
@@ -100,9 +116,12 @@ def _column(letters: str) -> int:
 class _Cells:
     """The handlers of one sheet; a class, since the parser calls them a few hundred thousand times."""
 
-    def __init__(self, styles: CellStyles) -> None:
+    def __init__(self, styles: CellStyles, struck_texts: frozenset[int]) -> None:
         self.scan = SheetScan()
         self.styles, self.telling = styles, styles.telling
+        self.read_kinds = ("e", "s") if struck_texts else ("e",)
+        self.struck_texts = struck_texts
+        self.struck_run = False
         self.style = "0"
         self.row, self.column = -1, -1
         self.kind = ""
@@ -121,7 +140,7 @@ class _Cells:
                 self.column += 1
             self.kind = attributes.get("t", "")
             self.style = attributes.get("s", "0")
-            self.formula = self.holds = False
+            self.formula = self.holds = self.struck_run = False
             self.text.clear()
         elif tag in ("v", "is"):
             self.in_value = True
@@ -133,6 +152,8 @@ class _Cells:
             self.column = -1
             if attributes.get("hidden") in ("1", "true"):
                 self.scan.hidden_rows.add(self.row)
+        elif tag == "strike" and is_set(attributes):
+            self.struck_run = True
         elif tag == "mergeCell":
             self.scan.merged.append(attributes.get("ref", ""))
         elif tag == "col" and attributes.get("hidden") in ("1", "true"):
@@ -142,7 +163,7 @@ class _Cells:
     def characters(self, text: str) -> None:
         if self.in_value:
             self.holds = True
-            if self.kind == "e":
+            if self.kind in self.read_kinds:
                 self.text.append(text)
 
     def end(self, tag: str) -> None:
@@ -152,8 +173,13 @@ class _Cells:
             if not self.holds and not self.formula:
                 return
             scan = self.scan
-            scan.last_row = max(scan.last_row, self.row)
-            scan.last_column = max(scan.last_column, self.column)
+            if self.row > scan.last_row or self.column > scan.last_column:
+                scan.last_row = max(scan.last_row, self.row)
+                scan.last_column = max(scan.last_column, self.column)
+                if (scan.last_row + 1) * (scan.last_column + 1) > GREATEST_AREA:
+                    raise TooFarOut(scan.last_row, scan.last_column)
+            if self.struck_run or (self.struck_texts and self.kind == "s" and self._is_struck_text()):
+                scan.struck.add((self.row, self.column))
             if self.kind == "e":
                 scan.marks[self.row, self.column] = ErrorCell("".join(self.text).strip() or "#ERROR")
             elif self.formula and not self.holds and self.kind != "str":
@@ -163,6 +189,10 @@ class _Cells:
         elif tag in ("v", "is"):
             self.in_value = False
 
+    def _is_struck_text(self) -> bool:
+        place = "".join(self.text).strip()
+        return place.isascii() and place.isdigit() and int(place) in self.struck_texts
+
     def _take_style(self) -> None:
         place = self.row, self.column
         if self.style in self.styles.struck:
@@ -171,8 +201,8 @@ class _Cells:
             self.scan.formats[place] = self.styles.formats[self.style]
 
 
-def _scan(data: bytes, styles: CellStyles) -> SheetScan:
-    cells = _Cells(styles)
+def _scan(data: bytes, styles: CellStyles, struck_texts: frozenset[int]) -> SheetScan:
+    cells = _Cells(styles, struck_texts)
     parser = careful_parser()
     parser.StartElementHandler = cells.start
     parser.EndElementHandler = cells.end

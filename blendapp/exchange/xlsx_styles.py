@@ -40,6 +40,34 @@ def read_styles(archive: zipfile.ZipFile) -> CellStyles:
     return reading.styles
 
 
+def is_set(attributes: dict[str, str]) -> bool:
+    """Whether a property that is on where it stands alone is not switched off."""
+    return attributes.get("val", "1") not in ("0", "false")
+
+
+def read_struck_texts(data: bytes) -> set[int]:
+    """Which of the shared texts of a workbook, from 0, hold words that are struck through.
+
+    Raises ForbiddenEntities, expat.ExpatError.
+    """
+    struck: set[int] = set()
+    texts = 0
+
+    def start(tag: str, attributes: dict[str, str]) -> None:
+        nonlocal texts
+        tag = tag.rpartition(":")[2]
+        if tag == "si":
+            texts += 1
+        elif tag == "strike" and is_set(attributes):
+            struck.add(texts - 1)
+
+    parser = careful_parser()
+    if b"strike" in data:
+        parser.StartElementHandler = start
+    parser.Parse(data, True)
+    return struck
+
+
 class _Reading:
     def __init__(self) -> None:
         self.styles = CellStyles()
@@ -56,7 +84,7 @@ class _Reading:
             self.codes[attributes.get("numFmtId", "")] = attributes.get("formatCode", "")
         elif tag == "font" and above == "fonts":
             self.font += 1
-        elif tag == "strike" and above == "font" and attributes.get("val", "1") not in ("0", "false"):
+        elif tag == "strike" and above == "font" and is_set(attributes):
             self.struck_fonts.add(str(self.font))
         elif tag == "xf" and above == "cellXfs":
             self.style += 1

@@ -182,5 +182,5 @@ def test_every_row_has_one_fate_whatever_is_answered(read: Read) -> None:
         for row in range(7):
             for role in ColumnRole:
                 for about in ("column 1", "column 2", "Preis", "Price $/t"):
-                    reading = read(rows, table(f"row {row}"), column(about, role))
+                    reading = read(rows, table(f"row {row}", ""), column(about, role), write=write_text)
                     assert [one.row for one in reading.rows] == filled

@@ -41,7 +41,8 @@ SETTLED: dict[str, tuple[Rows, Asked, str, dict[str, Any], float]] = {
         [[*HEAD, "Valid from"], ["Maize", 205, "t", "3/4/2026"]], Asked.DATES, "Valid from",
         {"answer": MONTH_FIRST}, 205),
     "a day that may be two in a note": (
-        [["Prices valid from 3/4/2026"], HEAD, ["Maize", 205, "t"]], Asked.DATES, "3/4/2026", {"answer": DAY_FIRST}, 205),
+        [["Prices valid from 3/4/2026"], HEAD, ["Maize", 205, "t"]],
+        Asked.DATES, "3/4/2026", {"answer": DAY_FIRST}, 205),
     "an end before the beginning": (
         [[*HEAD, "Valid from", "Valid to"], ["Maize", 205, "t", datetime.date(2026, 4, 1), PAST]],
         Asked.EXPIRED, "", {"answer": TAKE}, 205),
