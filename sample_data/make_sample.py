@@ -2,8 +2,8 @@
 
     python sample_data/make_sample.py [FOLDER]
 
-The mill, its people, prices, limits, premixes and drug are invented. In the composition tables each cell is a value
-and the mark of its source in sources.csv; a blank cell is unknown, and "0 n" is a known absence.
+The mill, its people, sites, suppliers, lots, prices, limits, premixes and drug are invented. In the composition tables
+each cell is a value and the mark of its source in sources.csv; a blank cell is unknown, and "0 n" is a known absence.
 """
 
 from __future__ import annotations
@@ -27,6 +27,9 @@ LIMITS = ("poultry", "pig", "cattle", "sheep_horse")
 # Sources give these per kg of dry matter, whatever the basis of the rest of the row.
 PER_DRY_MATTER = ("NEL cattle", "ME ruminant", "DE horse")
 
+# Headings of the columns that hold days.
+DAYS = ("Received", "Date")
+
 # mEq in 1 g, from the atomic masses 22.990, 39.098 and 35.453; chloride is an anion and counts against the others.
 MEQ_PER_G = {"Sodium": 1000 / 22.990, "Potassium": 1000 / 39.098, "Chloride": -1000 / 35.453}
 
@@ -35,10 +38,18 @@ MILL: list[Row] = [
     ["Currency", "USD"],
     ["Ton means", None],
     ["Cwt means", "100 lb"],
+    ["Site", "Larkwater"],
+    ["Sheets in", "kg"],
+    ["Paper", "A4"],
 ]
 
+# Prices per these masses as prices per tonne (1 lb is 0.45359237 kg).
+PER_T = {"t": 1.0, "cwt": 1000 / 45.359237, "kg": 1000.0}
+
 ABOUT: list[Row] = [
-    ["Otterfold Mill at Larkwater is invented, with its people, prices, stock, limits, premixes and drug."],
+    ["Otterfold Mill at Larkwater is invented, with its people, plant, suppliers, lots, prices, stock, limits, premixes"
+     " and drug."],
+    ["Mixing times and settings, tolerances, the loss and the dry matter of pellets: common practice, no source."],
     ["No feed should be made from these formulas: a qualified nutritionist must review any ration before it is fed."],
     ["Composition: see the columns Origin and Source of the sheet Values; Ingredients repeats the same values."],
     ["Values from named handbooks are from memory and may differ from the printed tables."],
@@ -86,13 +97,49 @@ def compositions() -> dict[str, dict[str, tuple[float, str]]]:
         if all(name in values for name in MEQ_PER_G):
             balance = sum(values[name][0] * 10 * factor for name, factor in MEQ_PER_G.items())
             values["Electrolyte balance"] = (round(balance, 1) + 0.0, "x")
+    for name, shares in made().items():
+        known = set.intersection(*(set(found[part]) for part in shares))
+        found[name] = {
+            nutrient: (six(sum(share * found[part][nutrient][0] for part, share in shares.items())), "f")
+            for nutrient in next(iter(found.values())) if nutrient in known
+        }
     return found
+
+
+def made() -> dict[str, dict[str, float]]:
+    """By ingredient that a formula makes: the fractions of its parts, which the limits of the formula fix."""
+    limits = [row for name in LIMITS for row in table(f"limits_{name}")]
+    return {
+        row["Ingredient"]: {
+            limit["Name"]: float(limit["Minimum"]) / 100 for limit in limits
+            if limit["Formula"] == row["Made by formula"]
+        }
+        for row in table("ingredients") if row["Made by formula"]
+    }
+
+
+def six(number: float) -> float:
+    """To six figures."""
+    return float(f"{number:.6g}")
+
+
+def ingredient_table() -> list[dict[str, str]]:
+    """The rows of ingredients.csv, those that a formula makes with the dry matter and the price of their parts."""
+    rows = table("ingredients")
+    by_name = {row["Ingredient"]: row for row in rows}
+    for name, shares in made().items():
+        dry = sum(share * float(by_name[part]["Dry matter %"]) for part, share in shares.items())
+        price = sum(
+            share * float(by_name[part]["Price"]) * PER_T[by_name[part]["Price per"]] for part, share in shares.items()
+        )
+        by_name[name] |= {"Dry matter %": str(six(dry)), "Price": str(round(price, 2)), "Price per": "t"}
+    return rows
 
 
 def ingredient_rows() -> list[Row]:
     """The sheet Ingredients: identity and price, then one column per nutrient."""
     units = {row["Nutrient"]: row["Unit"] for row in table("nutrients")}
-    ingredients, contents = table("ingredients"), compositions()
+    ingredients, contents = ingredient_table(), compositions()
     if strangers := set(contents) - {row["Ingredient"] for row in ingredients}:
         raise SystemExit(f"ingredients.csv lacks these of the composition tables: {sorted(strangers)}")
     columns = [f"{name} ({unit}{' DM' if name in PER_DRY_MATTER else ''})" for name, unit in units.items()]
@@ -118,8 +165,7 @@ def value_rows() -> list[Row]:
             basis = "dry matter" if key[1] in PER_DRY_MATTER else ingredient["Basis"]
             row: Row = [*key, whole(amount), nutrient["Unit"], basis, sources[mark]["Origin"], sources[mark]["Source"]]
             if analysis := measured.pop(key, None):
-                day = datetime.date.fromisoformat(analysis["Date"])
-                row += [day, cell(analysis["n"]), cell(analysis["SD"])]
+                row += [day(analysis["Date"]), cell(analysis["n"]), cell(analysis["SD"])]
             rows.append(row)
     if measured:
         raise SystemExit(f"measured.csv has analyses of values that the composition tables lack: {sorted(measured)}")
@@ -129,7 +175,14 @@ def value_rows() -> list[Row]:
 def plain_rows(*names: str) -> list[Row]:
     """Tables of one shape, one under the other below one row of headings."""
     tables = [table(name) for name in names]
-    return [list(tables[0][0]), *([cell(text) for text in row.values()] for rows in tables for row in rows)]
+    return [
+        list(tables[0][0]),
+        *([day(text) if name in DAYS else cell(text) for name, text in row.items()] for rows in tables for row in rows),
+    ]
+
+
+def day(text: str) -> datetime.date | None:
+    return datetime.date.fromisoformat(text) if text else None
 
 
 def plant_rows(kind: str, *columns: str) -> list[Row]:
@@ -158,10 +211,17 @@ def mill_workbook() -> Workbook:
         "Nutrients": plain_rows("nutrients"),
         "Ingredients": ingredient_rows(),
         "Values": value_rows(),
-        "Scales": plant_rows("Scale", "Step kg", "Least kg", "Greatest kg", "Tolerance %", "Hand add"),
-        "Mixers": plant_rows("Mixer", "Least kg", "Greatest kg"),
+        "Scales": plant_rows("Scale", "Step kg", "Least kg", "Greatest kg", "Tolerance %", "Hand add", "Step l",
+                             "Least l", "Greatest l", "Site"),
+        "Mixers": plant_rows("Mixer", "Least kg", "Greatest kg", "Site"),
         "Formulas": plain_rows("formulas"),
         "Limits": plain_rows(*(f"limits_{name}" for name in LIMITS)),
+        "Sites": plain_rows("sites"),
+        "Suppliers": plain_rows("suppliers"),
+        "Lots": plain_rows("lots"),
+        "Lot values": plain_rows("lot_values"),
+        "Bins": plain_rows("bins"),
+        "Steps": plain_rows("steps"),
         "About": [["About this mill"], *ABOUT],
     }
     for name, rows in sheets.items():

@@ -24,8 +24,8 @@ from blendapp.domain.yields import part_left
 from blendapp.services import edits
 from blendapp.services.mill import Edit, Mill
 
-# Two figures that differ by less, relatively, are the same.
-_HAIR = 1e-6
+# Two figures that differ by less, relatively, are the same: a price may be rounded to cents, an analysis to its digits.
+_HAIR = 1e-4
 
 
 @dataclass(frozen=True)

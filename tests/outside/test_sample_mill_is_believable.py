@@ -16,7 +16,7 @@ from blendapp.domain.formulas import Amounts
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import Fate
 from blendapp.domain.results import Result, Status
-from blendapp.services import prices, workbook
+from blendapp.services import made, prices, workbook
 from blendapp.services.formulate import formulate
 from blendapp.services.mill import Mill
 
@@ -158,6 +158,24 @@ def test_the_workbook_warns_only_of_its_own_notes_and_of_admits_left_blank(tmp_p
         ("About", ""),
         ("Formulas", "Admits"),
     ]
+
+
+def test_what_the_mill_makes_itself_is_what_its_formula_makes(mill: Mill) -> None:
+    assert [i.name for i in mill.library.ingredients if i.made_by_formula_id is not None] == ["Horse minerals"]
+    assert made.stale(mill, TODAY) == []
+
+
+def test_an_ingredient_stands_in_two_bins_and_every_liquid_has_a_meter_and_a_density(library: Library) -> None:
+    maize = library.named("ingredient", "Maize")
+    assert [one.name for one in library.bins_of(maize.id)] == ["Bin 1", "Bin 2"]
+    metered = [i for i in library.ingredients if i.scale_id and library.records["scale"][i.scale_id].by_volume]
+    assert [(i.name, i.density_kg_per_l) for i in metered] == [("Cane molasses", 1.4), ("Soya oil", 0.92)]
+
+
+def test_every_formula_has_steps_and_the_medicated_one_its_own(library: Library) -> None:
+    assert all(library.steps_of(formula.id) for formula in library.formulas)
+    own = {step.formula_id for step in library.all("mixing_step") if step.formula_id is not None}
+    assert {library.formula(key).name for key in own} == {"Broiler starter", "Broiler finisher"}
 
 
 @pytest.mark.parametrize(("file", "maker"), [("mill.xlsx", "mill_workbook"), ("price_list.xlsx", "price_workbook")])
