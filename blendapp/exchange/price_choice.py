@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 
-from blendapp.domain.list_rows import ADD, LEAVE_OUT, ColumnRole, Question
+from blendapp.domain.list_rows import ADD, LEAVE_OUT, TAKE, ColumnRole, Question
 from blendapp.domain.mills import Asked
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
@@ -43,6 +43,8 @@ def choose_price(table: Table, prices: list[Priced], answers: Answers) -> Choice
         held = [(column, cell) for column, cell in prices if column.heading == answer.answer]
         if len(held) == 1:
             return Choice((held[0],), _("The price under “{name}” holds, as answered.").format(name=answer.answer))
+    if answer is not None and len(prices) == 1:
+        return _only_one(prices[0], answers)
     order = (ColumnRole.SUM, ColumnRole.PRICE, ColumnRole.FREIGHT)
     likeliest = min(prices, key=lambda found: order.index(found[0].role))
     named = ", ".join(f"“{column.heading}”" for column, _cell in prices)
@@ -56,6 +58,17 @@ def choose_price(table: Table, prices: list[Priced], answers: Answers) -> Choice
         text = _("The row has several prices, under {names}; say which holds.")
     text = text.format(names=named)
     return Choice((likeliest,), doubt=text, open=(Question(Asked.PRICE, table.prices_key, text, tuple(choices)),))
+
+
+def _only_one(price: Priced, answers: Answers) -> Choice:
+    """A row with one price, which is not the one that was answered for the list: asked about for itself, so that its
+    answer does not take the place of the other."""
+    heading = price[0].heading
+    taken = answers.find(Asked.PRICE, heading)
+    if taken is not None and taken.answer == TAKE:
+        return Choice((price,), _("The price under “{name}” was taken, as answered.").format(name=heading))
+    text = _("The row has no price but the one under “{name}”; say whether it is to be taken.").format(name=heading)
+    return Choice((price,), doubt=text, open=(Question(Asked.PRICE, heading, text, (TAKE,)),))
 
 
 def _sum_given(by_role: dict[ColumnRole, Priced]) -> Choice:

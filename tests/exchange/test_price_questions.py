@@ -8,7 +8,7 @@ from typing import Any
 import pytest
 
 from blendapp.domain.library import Library
-from blendapp.domain.list_rows import DAY_FIRST, LEAVE_OUT, MONTH_FIRST, TAKE, Answer, Fate, Question
+from blendapp.domain.list_rows import ADD, DAY_FIRST, LEAVE_OUT, MONTH_FIRST, TAKE, Answer, Fate, Question
 from blendapp.domain.mills import Asked
 from blendapp.domain.plant import Site, Supplier
 from blendapp.domain.quotes import Quote
@@ -170,3 +170,15 @@ def test_a_supplier_that_the_mill_does_not_know_is_a_note(read: Read, library: L
         "The mill has no site “East”; add it there.",
     )
     assert len(reading.accepted) == 1
+
+
+def test_a_row_with_one_of_several_prices_is_settled_beside_the_answer_for_the_others(read: Read) -> None:
+    rows: Rows = [["Ingredient", "USD/t", "Freight USD/t"], ["Maize", 190, 14], ["Wheat", 212, None]]
+    (question,) = read(rows).questions
+    added_up = Answer(Asked.PRICE, question.about, ADD)
+    reading = read(rows, added_up)
+    assert [row.fate for row in reading.rows[1:]] == [A, Q]
+    (further,) = reading.questions
+    assert further.about == "USD/t"
+    reading = read(rows, added_up, Answer(Asked.PRICE, further.about, TAKE))
+    assert [row.price_per_t for row in reading.accepted] == [204, 212]
