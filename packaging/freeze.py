@@ -15,7 +15,9 @@ from start import PROJECT, Stop, call, install_pins, install_project, make_envir
 PYINSTALLER = "pyinstaller==6.22.3"
 FROZEN = PROJECT / "build" / "frozen"
 # What the program fetches by name while it runs, so that following its imports does not find it.
-WHOLE = ("blendapp", "alembic", "highspy", "python_calamine", "reportlab", "pypdfium2", "pypdfium2_raw")
+WHOLE = (
+    "blendapp", "alembic", "highspy", "python_calamine", "rapidfuzz", "reportlab", "pypdfium2", "pypdfium2_raw",
+)
 # In the pinned set for the tests, or reached only by parts of libraries that the program does not use.
 LEFT_OUT = ("pytest", "hypothesis", "mypy", "pint", "swiglpk", "tkinter", "IPython", "matplotlib", "setuptools", "pip",
             "PySide6.QtQml", "PySide6.QtQuick")

@@ -16,7 +16,7 @@ from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.suggestions import Suggester
 
 LEAST_LIKENESS = 0.5
-MOST_LOOKED_FOR = 100
+MOST_LOOKED_FOR = 1000
 _BETWEEN_DIGITS = re.compile(r"(?<=[0-9])[^0-9a-z%+]+(?=[0-9])")
 # Marks of what stood between two digits; a plus sign tells grades apart.
 _POINT, _GAP = "\x01", "\x02"

@@ -28,6 +28,7 @@ HOMES = {
     "pandas": {"exchange"},
     "openpyxl": {"exchange"},
     "python_calamine": {"exchange"},
+    "rapidfuzz": {"exchange"},
     "defusedxml": {"exchange"},
     "sqlalchemy": {"storage"},
     "alembic": {"storage"},
