@@ -59,6 +59,45 @@ def test_a_quote_of_the_site_counts_before_one_of_the_mill_and_of_another_site_n
     assert found(*quotes) == 2
 
 
+def bought(*quotes: Quote, supplier_id: int | None, site_id: int | None = None) -> int | None:
+    best = in_force(quotes, MONDAY, site_id, supplier_id)
+    return None if best is None else best.id
+
+
+def test_a_quote_of_the_ingredients_own_supplier_counts_before_a_later_one_of_another() -> None:
+    quotes = (quote(1, -5, supplier_id=7), quote(2, 0, supplier_id=8))
+    assert bought(*quotes, supplier_id=7) == 1
+    assert bought(*quotes, supplier_id=8) == 2
+    assert bought(*quotes, supplier_id=9) == 2
+
+
+def test_a_quote_of_no_supplier_counts_like_one_of_the_own_supplier() -> None:
+    assert bought(quote(1, -5, supplier_id=7), quote(2, -3), quote(3, 0, supplier_id=8), supplier_id=7) == 2
+    assert bought(quote(1, -1, supplier_id=7), quote(2, -3), quote(3, 0, supplier_id=8), supplier_id=7) == 1
+
+
+def test_without_a_supplier_of_its_own_whose_quote_it_is_makes_no_difference() -> None:
+    assert bought(quote(1, -5), quote(2, -1, supplier_id=8), quote(3, -2, supplier_id=7), supplier_id=None) == 2
+
+
+def test_the_site_decides_before_the_supplier_and_the_supplier_before_the_day() -> None:
+    at_site = quote(1, -9, site_id=1, supplier_id=8)
+    own = quote(2, -5, supplier_id=7)
+    late = quote(3, 0, supplier_id=8)
+    assert bought(at_site, own, late, supplier_id=7, site_id=1) == 1
+    assert bought(at_site, own, late, supplier_id=7) == 2
+    assert bought(own, late, supplier_id=7, site_id=1) == 2
+
+
+def test_a_quote_of_the_own_supplier_that_has_ended_gives_way_to_another_suppliers() -> None:
+    assert bought(quote(1, -5, -1, supplier_id=7), quote(2, -9, supplier_id=8), supplier_id=7) == 2
+
+
+def test_a_replaced_quote_counts_no_more_though_it_is_valid() -> None:
+    assert found(quote(1, -1), quote(2, -5, replaces_id=1)) == 2
+    assert found(quote(1, -1), quote(2, 3, replaces_id=1)) is None
+
+
 def test_a_withdrawn_price_is_in_force_and_is_unknown() -> None:
     withdrawn = Quote(2, 1, None, valid_from=MONDAY)
     best = in_force([quote(1, -1), withdrawn], MONDAY)
