@@ -151,6 +151,8 @@ FIELDS: tuple[Field, ...] = (
     Field("lot", "received", N_("Received"), help=N_("The day it came, year first.")),
     Field("lot", "mass_kg", N_("Mass kg"), "kg", 0, above=0),
     Field("lot", "supplier_id", N_("Supplier")),
+    Field("lot", "dry_matter_percent", N_("Dry matter %"), "%", 1, least=0, greatest=100,
+          help=N_("Dry matter of the lot as fed.")),
     Field("lot", "note", N_("Note")),
     Field("formula", "name", N_("Formula")),
     Field("formula", "amounts", N_("Amounts")),

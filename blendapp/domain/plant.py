@@ -85,7 +85,10 @@ class Bin:
 
 @dataclass(frozen=True)
 class Lot:
-    """One delivery or sample of an ingredient. price_list_id: the list of analyses that brought it, if one did."""
+    """One delivery or sample of an ingredient. price_list_id: the list of analyses that brought it, if one did.
+
+    dry_matter_percent: of the lot as fed, None if unknown.
+    """
 
     id: int
     ingredient_id: int
@@ -95,6 +98,7 @@ class Lot:
     supplier_id: int | None = None
     note: str = ""
     price_list_id: int | None = None
+    dry_matter_percent: float | None = None
 
 
 @dataclass(frozen=True)

@@ -84,8 +84,8 @@ SUPPLIERS = Layout(
     "Suppliers", _headings("supplier", "name", "note"), ("Supplier",), optional=True, only_filled=True
 )
 LOTS = Layout(
-    "Lots", ("Ingredient", "Lot", "Received", "Mass kg", "Supplier", "Note"), ("Ingredient", "Lot"), optional=True,
-    only_filled=True,
+    "Lots", ("Ingredient", "Lot", "Received", "Mass kg", "Dry matter %", "Supplier", "Note"), ("Ingredient", "Lot"),
+    optional=True, only_filled=True,
 )
 LOT_VALUES = Layout(
     "Lot values", ("Ingredient", "Lot", "Nutrient", "Value", "Unit", "Basis", "Source", "Date"),

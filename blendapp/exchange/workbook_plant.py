@@ -127,13 +127,14 @@ def read_lots(draft: Draft, sheet: Sheet) -> None:
             base,
             received=row.date("Received") or base.received,
             mass_kg=number_or(row, "Mass kg", base.mass_kg),
+            dry_matter_percent=number_or(row, "Dry matter %", base.dry_matter_percent),
             supplier_id=supplier.id if supplier else base.supplier_id,
             note=row.text("Note") or base.note,
         )
         if key:
             draft.put(before, lot)
         if name:
-            draft.check(lot, row, {"name": "Lot", "mass_kg": "Mass kg"})
+            draft.check(lot, row, {"name": "Lot", "mass_kg": "Mass kg", "dry_matter_percent": "Dry matter %"})
 
 
 def read_lot_values(draft: Draft, sheet: Sheet) -> None:

@@ -31,6 +31,7 @@ def plant_tables(library: Library, problems: Problems) -> dict[str, Table]:
         LOTS.name: _table(LOTS, (
             [
                 name_of(library, "ingredient", lot.ingredient_id), lot.name.strip(), lot.received, lot.mass_kg,
+                lot.dry_matter_percent,
                 name_of(library, "supplier", lot.supplier_id), free(lot.note),
             ]
             for lot in lots.values()

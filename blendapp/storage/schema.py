@@ -147,7 +147,7 @@ _table(
 _table(
     "lot", _link("ingredient_id", "ingredient"), _text("name"), _day("received"), _number("mass_kg"),
     _link("supplier_id", "supplier", optional=True), _text("note"),
-    _link("price_list_id", "price_list", optional=True),
+    _link("price_list_id", "price_list", optional=True), _number("dry_matter_percent"),
 )
 _table(
     "lot_value", _link("lot_id", "lot"), _link("nutrient_id", "nutrient"), _number("amount", optional=False),

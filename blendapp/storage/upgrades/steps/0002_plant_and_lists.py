@@ -12,6 +12,7 @@ depends_on = None
 _NUMBERS = {
     "scale": ("step_l", "least_l", "greatest_l"),
     "formula": ("loss_percent", "product_dry_matter_percent"),
+    "lot": ("dry_matter_percent",),
 }
 _LINKS = (
     ("mill", "site_id", "site"),
