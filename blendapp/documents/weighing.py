@@ -85,18 +85,21 @@ def _total(batch: Batch, page: BatchPage, groups: Sequence[Group], rows: Rows) -
     # The places to write in are the lot, then the mass.
     written = [span for column, span in zip(rows.columns, rows.spans, strict=True) if column.write]
     indent = name[0]
+    # Very wide figures leave no room for the word beside them.
+    above = 0.0 if indent + _GROUP.width(words) + TARGET.width(total) + 6 <= target[1] else _GROUP.line
 
     def draw(pen: Pen, left: float, top: float) -> None:
         pen.rule(left, left + rows.width, top, 1.2, INK)
-        middle = top + _TOTAL_LINE / 2
-        pen.text(left + indent, middle - _GROUP.line / 2, words, _GROUP)
+        middle = top + above + _TOTAL_LINE / 2
+        pen.text(left + indent, middle - above - _GROUP.line / 2, words, _GROUP)
         pen.text_right(left + target[1], middle - TARGET.line / 2, total, TARGET)
         pen.text_right(left + rows.width, middle - BESIDE.line / 2, whole, BESIDE)
         for start, end in written[1:2]:
-            pen.text_right(left + end, top + _TOTAL_LINE - LABEL.line - 2, letters.plain(batch.mass_unit), LABEL)
-            pen.rule(left + start, left + end, top + _TOTAL_LINE, 0.9, INK)
+            bottom = top + above + _TOTAL_LINE
+            pen.text_right(left + end, bottom - LABEL.line - 2, letters.plain(batch.mass_unit), LABEL)
+            pen.rule(left + start, left + end, bottom, 0.9, INK)
 
-    block = Block(_TOTAL_LINE + 5, draw, keep_next=True, heads=[rows.head()])
+    block = Block(above + _TOTAL_LINE + 5, draw, keep_next=True, heads=[rows.head()])
     return [block, *_rounding(batch, groups, rows, indent), *_residue(batch, groups, rows, indent)]
 
 

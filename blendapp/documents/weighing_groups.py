@@ -27,6 +27,9 @@ DETAIL = Style(10, leading=11.5)
 _WEIGHED, _LOT, _INITIALS, _CHECK = 62.0, 60.0, 44.0, 44.0
 # Figures of two groups stand under one another where that costs the names no more than this.
 _MOST_SPARE = 40.0
+# Names keep this width; places to write in give up to a quarter of theirs for it.
+_LEAST_NAME = 110.0
+_LEAST_ROOM = 0.75
 # Nothing is written into a master record.
 _LEAST_RECORD_ROW = 8.5 * MM
 
@@ -135,7 +138,7 @@ class Layout:
         self._number = LABEL.width(str(len(batch.lines))) + 2
         shown = [(group, line) for group in groups for line in group.lines]
         figure_widths = [TARGET.width(group.target(line)) for group, line in shown]
-        tolerances = [DETAIL.width(group.tolerance(line, group.unit)) for group, line in shown]
+        tolerances = [DETAIL.width(self._tolerance_words(group, line)) for group, line in shown]
         self._tolerance = max([*tolerances, 54.0]) + 2
         self._target = max([*figure_widths, *([] if self._master else tolerances), TARGET.width(total), 52.0]) + 2
         tails = [self._tail(group) for group in groups]
@@ -148,12 +151,16 @@ class Layout:
             # The first place to write in takes what another group needs more; on the record, the last figure.
             takes = next((place for place, column in enumerate(tail) if column.write), len(tail) - 1)
             tail[takes] = dataclasses.replace(tail[takes], width=tail[takes].width + spare)
+        fixed = self._number + self._target + 2 * GUTTER + _taken(tail)
+        lacking = _LEAST_NAME - (self.width - fixed)
+        if lacking > 0:
+            tail = _narrower(tail, lacking)
         columns = (Column("", self._number), Column(_("Ingredient")), self._target_column(group), *tail)
         return Rows(columns, self.width, *([_LEAST_RECORD_ROW] if self._master else []))
 
     def cells(self, group: Group, number: int, line: BatchLine, running: str) -> list[list[Text]]:
         target = [(group.target(line), TARGET)]
-        tolerance = group.tolerance(line, group.own_unit if self._master else group.unit)
+        tolerance = self._tolerance_words(group, line)
         if tolerance and not self._master:
             target.append((tolerance, DETAIL))
         name = [(line.ingredient, NAME), *((words, DETAIL) for words in details(line, self._page))]
@@ -164,6 +171,9 @@ class Layout:
         if self._master:
             tail[-2:] = [[(tolerance, DETAIL)], [(write_share(line.target_kg / self._total_kg), BESIDE)]]
         return [[(str(number), LABEL)], name, target, *tail]
+
+    def _tolerance_words(self, group: Group, line: BatchLine) -> str:
+        return group.tolerance(line, group.own_unit if self._master else group.unit)
 
     def has_running(self, group: Group) -> bool:
         """A running total helps on a scale that stands at it; on one that shows another unit it would mislead."""
@@ -221,6 +231,13 @@ def running(group: Group) -> list[str]:
 def write_share(fraction: float) -> str:
     """A share in %, with three significant digits where three decimals are too few for them."""
     return notation().write(fraction * 100, figures.decimals_of(fraction * 100, 3, least=3))
+
+
+def _narrower(tail: Sequence[Column], lacking: float) -> list[Column]:
+    """The columns with less room to write in, where very wide figures leave too little for the names."""
+    room = sum(column.width for column in tail if column.write)
+    part = max(_LEAST_ROOM, 1 - lacking / room) if room else 1.0
+    return [dataclasses.replace(c, width=c.width * part) if c.write else c for c in tail]
 
 
 def _taken(tail: Sequence[Column]) -> float:
