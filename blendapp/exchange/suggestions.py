@@ -12,6 +12,8 @@ LEAST_LIKENESS = 0.6
 MOST_SUGGESTED = 3
 # Of two names equally alike, the one with the same numbers is proposed first: 48 % is rather 48 % than 44 %.
 _SAME_NUMBERS = 5.0
+# What is so much less alike than the best is no longer meant.
+_FAR_BEHIND = 25.0
 
 
 class Suggester:
@@ -40,8 +42,9 @@ class Suggester:
             )
             for _text, score, name in found:
                 likeness[name] = max(score, likeness.get(name, 0.0))
-        numbers = _numbers(folded)
-        best = sorted(likeness, key=lambda name: (-likeness[name] - _SAME_NUMBERS * (_numbers(name) == numbers), name))
+        numbers, most = _numbers(folded), max(likeness.values(), default=0.0)
+        near = [name for name, score in likeness.items() if score >= most - _FAR_BEHIND]
+        best = sorted(near, key=lambda name: (-likeness[name] - _SAME_NUMBERS * (_numbers(name) == numbers), name))
         return [self._names[name] for name in best[:MOST_SUGGESTED]]
 
 
