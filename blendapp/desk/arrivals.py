@@ -8,7 +8,7 @@ from pathlib import Path
 
 from PySide6.QtCore import QEvent, QObject, QSettings, QTimer
 from PySide6.QtGui import QDropEvent
-from PySide6.QtWidgets import QWidget
+from PySide6.QtWidgets import QLineEdit, QWidget
 
 from blendapp.desk.files import Files
 from blendapp.desk.finder.search import Found
@@ -39,6 +39,9 @@ class Arrivals(QObject):
         pane.arrived.connect(self._arrived)
         pane.reader.failed.connect(lambda _sentence: self._patience.stop())
         window.setAcceptDrops(True)
+        for field in window.findChildren(QLineEdit):
+            # A field would take a file that is dropped on it for a text.
+            field.setAcceptDrops(False)
         window.installEventFilter(self)
 
     # -- choosing

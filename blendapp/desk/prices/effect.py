@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import threading
 from collections.abc import Callable
+from pathlib import Path
 
 from PySide6.QtCore import QModelIndex, Qt, Signal
 from PySide6.QtGui import QKeyEvent
@@ -17,7 +18,8 @@ from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.desk.work import Work
 from blendapp.domain.library import Library
 from blendapp.domain.problems import Refused
-from blendapp.domain.wording import _, plural
+from blendapp.domain.wording import _
+from blendapp.services.effect_table import summary, write_effect
 from blendapp.services.kept_answers import AnswersNow
 from blendapp.services.mill import Edit
 from blendapp.services.movers import Mover, movers
@@ -25,9 +27,10 @@ from blendapp.services.movers import Mover, movers
 
 class EffectPane(QWidget):
     """closed: away from here, to the bench or back to the list. chosen: the identifier of a formula to show. said: a
-    sentence with a list below it."""
+    sentence with a list below it. table_wanted: the rows are to be written into a file, see write_table."""
 
     closed = Signal()
+    table_wanted = Signal()
     chosen = Signal(int)
     said = Signal(str, list)
     _went_on = Signal(int, int)
@@ -49,6 +52,11 @@ class EffectPane(QWidget):
         self.stop = QPushButton(_("Stop"))
         self.stop.setObjectName("plain")
         self.stop.clicked.connect(self._stop_or_go)
+        self.write = QPushButton(_("Write the table…"))
+        self.write.setObjectName("plain")
+        self.write.setToolTip(_("All formulas and their ingredients, as .xlsx or .csv"))
+        self.write.setEnabled(False)
+        self.write.clicked.connect(self.table_wanted)
         self.leave = QPushButton(_("Back to the bench"))
         self.leave.setObjectName("plain")
         self.leave.clicked.connect(self.closed)
@@ -56,7 +64,7 @@ class EffectPane(QWidget):
         head.setSpacing(GAP_PX * 2)
         head.addWidget(self.title)
         head.addWidget(self.remark, 1)
-        for one in (self.bar, self.stop, self.leave):
+        for one in (self.bar, self.stop, self.write, self.leave):
             head.addWidget(one)
         column = QVBoxLayout(self)
         column.setContentsMargins(MARGIN_PX, GAP_PX * 2, MARGIN_PX, 0)
@@ -95,6 +103,7 @@ class EffectPane(QWidget):
         before, after = self._both
         on, tell = self.work.on, self._teller(enough)
         self.running = True
+        self.write.setEnabled(False)
         self._of = 0
         self.bar.setRange(0, 0)
         self.bar.show()
@@ -131,6 +140,7 @@ class EffectPane(QWidget):
             self.said.emit(str(fault), [])
             return
         self.found = found
+        self.write.setEnabled(bool(found))
         self.rows.show(found, self.work.library.mill.currency)
         if len(found) < self._of:
             self.remark.say(_("stopped after {done} of {count} formulas").format(done=len(found), count=self._of))
@@ -138,6 +148,10 @@ class EffectPane(QWidget):
             return
         self.stop.hide()
         self.remark.say(summary(found))
+
+    def write_table(self, path: Path) -> None:
+        """Write the rows as they stand, as .xlsx or .csv. Raises Refused."""
+        write_effect(path, self.rows.shown, self.work.library.mill.currency)
 
     def _choose(self, index: QModelIndex) -> None:
         if index.isValid():
@@ -159,6 +173,7 @@ class EffectPane(QWidget):
 
     def _forget(self) -> None:
         self.found = []
+        self.write.setEnabled(False)
         self._enough.set()
         self._aside.forget()
         self._both = None
@@ -170,18 +185,3 @@ class EffectPane(QWidget):
             self.closed.emit()
         else:
             super().keyPressEvent(event)
-
-
-def summary(found: list[Mover]) -> str:
-    """How many keep their mix and how many change."""
-    if not found:
-        return _("No formula admits an ingredient whose price changed.")
-    kept = sum(one.kept is True for one in found)
-    changed = sum(one.kept is False for one in found)
-    parts = [plural("{count} mix kept", "{count} mixes kept", kept).format(count=kept),
-             plural("{count} changed", "{count} changed", changed).format(count=changed)]
-    rest = len(found) - kept - changed
-    if rest:
-        parts.append(plural("{count} without an answer on one side", "{count} without an answer on one side",
-                            rest).format(count=rest))
-    return ", ".join(parts)

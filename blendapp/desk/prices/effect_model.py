@@ -10,9 +10,11 @@ from blendapp.desk.table.grid import Grid, Heading
 from blendapp.desk.table.look import EMPTY, Look
 from blendapp.domain.formulas import Amounts
 from blendapp.domain.notation import notation
-from blendapp.domain.results import Status
 from blendapp.domain.wording import _
-from blendapp.services.movers import Mover
+from blendapp.services.effect_table import changed_words, status_words
+from blendapp.services.movers import Mover, biggest_first
+
+_SHOWN_DECIMALS = 2
 
 
 class EffectRows(Grid):
@@ -26,16 +28,21 @@ class EffectRows(Grid):
     def show(self, rows: Sequence[Mover], currency: str) -> None:
         """Show rows: those without an answer on one side first, then by the share of the cost that changes."""
         self.currency = currency
-        self._row = {one.formula_id: one for one in rows}
+        self._row = {one.formula_id: one for one in biggest_first(rows)}
         self.set_headings([
             Heading("formula", _("formula"), 210),
             Heading("before", _("before, {currency}").format(currency=currency), 110, True),
             Heading("after", _("after, {currency}").format(currency=currency), 110, True),
             Heading("change", _("change"), 84, True), Heading("percent", "%", 70, True), Heading("per", _("per"), 60),
-            Heading("mix", _("mix"), 240), Heading("most", _("the price that did most"), 380),
+            Heading("most", _("the price that did most"), 330), Heading("mix", _("mix"), 460),
         ])
-        self.set_rows(sorted(self._row, key=lambda key: _order(self._row[key])))
+        self.set_rows(list(self._row))
         self.refresh()
+
+    @property
+    def shown(self) -> list[Mover]:
+        """The rows in the order in which they stand."""
+        return [self._row[owner] for owner in self.owners]
 
     def mover(self, owner: int) -> Mover | None:
         """The row of a formula."""
@@ -74,9 +81,11 @@ class EffectRows(Grid):
     def _mix_hint(self, row: Mover, decimals: int) -> str:
         if row.fault or row.kept is not False or row.as_before is None or row.after is None:
             return row.fault
-        text = _("The old mix would cost {old} now; changing it saves {saved} {currency}.")
-        return text.format(old=notation().write(row.as_before, decimals), currency=self.currency,
-                           saved=notation().write(row.as_before - row.after, decimals))
+        text = _("{changes}. The old mix would cost {old} now; changing it saves {saved} {currency}.")
+        write = notation().write
+        return text.format(
+            changes=changed_words(row, _SHOWN_DECIMALS), old=write(row.as_before, decimals), currency=self.currency,
+            saved=write(row.as_before - row.after, decimals))
 
     def _most_hint(self, row: Mover) -> str:
         if row.most is None or row.most.effect is None:
@@ -89,22 +98,10 @@ class EffectRows(Grid):
         raise ValueError(_("What prices do is worked out, not typed in."))
 
 
-def _order(row: Mover) -> tuple[bool, float, str]:
-    share = 0.0 if row.change is None or not row.before else abs(row.change / row.before)
-    return (row.change is not None, -share, row.formula)
-
-
 def mix_words(row: Mover) -> str:
-    """What becomes of a mix, in a word or two."""
-    if row.fault:
-        return _("not worked out")
-    if row.status_after is not Status.OPTIMAL:
-        return _("no answer at the new prices") if row.before is not None else _("no answer, as before")
-    if row.before is None:
-        return _("an answer at the new prices")
-    if row.kept:
-        return _("kept")
-    return _("changed")
+    """What becomes of a mix: "kept", or "changed: Wheat 12.00 to 18.50 %, Maize 60.00 to 53.50 %"."""
+    changed = changed_words(row, _SHOWN_DECIMALS)
+    return _("{status}: {changes}").format(status=status_words(row), changes=changed) if changed else status_words(row)
 
 
 def most_words(row: Mover) -> str:

@@ -143,7 +143,6 @@ class QuestionPanel(QWidget):
         if one is not None:
             self.text.setText(one.question.text)
             self.text.setAccessibleName(one.question.text)
-            self.kept.setText(kept_words(one.question.asked, self.source))
             self.field.ask(typed, bool(one.question.choices))
             if typed == RATE:
                 self.rate.ask(one.question.about, self.library.mill.currency, self.on)
@@ -167,6 +166,7 @@ class QuestionPanel(QWidget):
                            if count else _("No questions"))
         self.count.setAccessibleName(self.count.text())
         self.place.say("" if one is None else place_words(one, self.several_sheets))
+        self.kept.setText("" if one is None else kept_words(one.question.asked, self.source))
         # In the order in which Page Down comes to them.
         others = self.open[self.at + 1:] + self.open[: self.at]
         self.others.show_choices(
