@@ -215,8 +215,8 @@ def test_what_a_formula_is_for_is_stored_as_it_is_changed(bench: Bench, hands: H
     about.stage.setFocus()
     hands.write("from 25 kg")
     hands.key(Qt.Key.Key_Return)
-    about.batch.setFocus()
-    about.batch.clear()
+    about.numbers["batch_kg"].setFocus()
+    about.numbers["batch_kg"].clear()
     hands.write("-5")
     hands.key(Qt.Key.Key_Return)
     assert bench.work.formula is not None

@@ -14,9 +14,9 @@ from PySide6.QtWidgets import QApplication, QLabel
 from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
+from blendapp.desk.sheet import asked
 from blendapp.domain.batches import Batch
 from blendapp.domain.results import Status
-from blendapp.services import batch as batches
 from blendapp.services.batch import make_batch
 from tests.desk.conftest import Hands
 
@@ -24,22 +24,23 @@ from tests.desk.conftest import Hands
 @pytest.fixture
 def sheet(bench: Bench, qtbot: QtBot) -> Bench:
     """The window with the sheet of the usual batch in view."""
-    with qtbot.waitSignal(bench.sheet.pages.shown, timeout=20000):
+    bench.sheet.view.turn("sheet")
+    with qtbot.waitSignal(bench.sheet.view.pages.shown, timeout=20000):
         bench.show_sheet()
     return bench
 
 
 def test_the_preview_shows_the_pages_of_the_usual_batch(sheet: Bench) -> None:
-    assert sheet.sheet.order.text() == "1000"
-    assert sheet.sheet.pages.pages
-    assert sheet.sheet.pages.pages[0].startswith(b"\x89PNG")
+    assert sheet.sheet.form.order.text() == "1000"
+    assert sheet.sheet.view.pages.pages
+    assert sheet.sheet.view.pages.pages[0].startswith(b"\x89PNG")
     assert sheet.frame.footer.caution.isVisible()
 
 
 def test_another_order_is_worked_out_as_it_is_typed(sheet: Bench, hands: Hands, qtbot: QtBot) -> None:
-    with qtbot.waitSignal(sheet.sheet.pages.shown, timeout=20000):
-        sheet.sheet.order.setFocus()
-        sheet.sheet.order.selectAll()
+    with qtbot.waitSignal(sheet.sheet.view.pages.shown, timeout=20000):
+        sheet.sheet.form.order.setFocus()
+        sheet.sheet.form.order.selectAll()
         hands.write("500")
     assert sheet.sheet.batch is not None
     assert sheet.sheet.batch.order_kg == 500
@@ -51,25 +52,25 @@ def test_an_order_that_is_no_mass_says_so_and_pressing_print_leads_back_to_it(
 ) -> None:
     pane = sheet.sheet
     assert pane.batch is not None
-    pane.order.setFocus()
-    pane.order.selectAll()
+    pane.form.order.setFocus()
+    pane.form.order.selectAll()
     hands.key(Qt.Key.Key_Delete)
     hands.write(text)
     pane.make()
     assert text in pane.words.text()
     assert pane.words.font().weight() == QFont.Weight.DemiBold
-    assert not pane.pages.pages
-    assert not [page for page in pane.pages.inside.findChildren(QLabel) if page.isVisible()]
+    assert not pane.view.pages.pages
+    assert not [page for page in pane.view.pages.inside.findChildren(QLabel) if page.isVisible()]
     asked: list[str] = []
-    pane.ask_save = lambda title, _name: asked.append(title) or ""  # type: ignore[func-returns-value]
-    for button in (pane.print_button, pane.save_button):
-        pane.table.setFocus()
+    pane.printing.ask_save = lambda title, _name: asked.append(title) or ""  # type: ignore[func-returns-value]
+    for button in (pane.view.print_button, pane.view.save_button):
+        pane.view.table.setFocus()
         hands.click(button)
-        assert pane.order.hasFocus()
-        assert pane.order.selectedText() == text
+        assert pane.form.order.hasFocus()
+        assert pane.form.order.selectedText() == text
     assert not asked
     assert not list(sheet.work.library.all("batch"))
-    with qtbot.waitSignal(pane.pages.shown, timeout=20000):
+    with qtbot.waitSignal(pane.view.pages.shown, timeout=20000):
         hands.write("500")
     assert pane.batch is not None
     assert pane.words.font().weight() == QFont.Weight.Normal
@@ -84,7 +85,7 @@ def test_what_is_said_takes_no_room_from_the_sheet_and_leaves_with_the_next_figu
     assert sheet.strip.isVisible()
     assert sheet.frame.middle.geometry() == page
     assert page.contains(sheet.strip.geometry())
-    sheet.sheet.order.setFocus()
+    sheet.sheet.form.order.setFocus()
     hands.write("7")
     assert not sheet.strip.isVisible()
     sheet.strip.say("Again.")
@@ -95,19 +96,23 @@ def test_what_is_said_takes_no_room_from_the_sheet_and_leaves_with_the_next_figu
     assert not sheet.frame.middle.geometry().intersects(sheet.strip.geometry())
 
 
-def test_keeping_the_sheet_gives_it_a_number_and_a_copy_is_counted(sheet: Bench, tmp_path: Path) -> None:
+def test_keeping_the_sheet_gives_it_a_number_and_a_copy_is_counted(
+    sheet: Bench, hands: Hands, tmp_path: Path
+) -> None:
     pane = sheet.sheet
     if pane.batch is not None and pane.batch.broken:
         pane.reason.setText("trial")
         pane.by.setText("Ann")
-    pane.ask_save = lambda _title, _name: str(tmp_path / "sheet")
+    pane.printing.ask_save = lambda _title, _name: str(tmp_path / "sheet")
     pane.to_file()
     (record,) = sheet.work.library.all("batch")
     assert record.number == 1
     assert (tmp_path / "sheet.pdf").read_bytes().startswith(b"%PDF")
     assert "1" in sheet.strip.words.text()
-    pane.ask_save = lambda _title, _name: str(tmp_path / "copy.pdf")
-    pane.copy_to_file(record.id)
+    pane.printing.ask_save = lambda _title, _name: str(tmp_path / "copy.pdf")
+    hands.click(pane.printed)
+    assert sheet.frame.middle.currentWidget() is sheet.printed
+    hands.click(sheet.printed.save_button)
     (record,) = sheet.work.library.all("batch")
     assert record.copies == 1
     assert (tmp_path / "copy.pdf").is_file()
@@ -119,7 +124,7 @@ def test_a_formula_without_an_answer_has_no_sheet(bench: Bench, hands: Hands) ->
         hands.key(Qt.Key.Key_Delete)
     bench.show_sheet()
     assert bench.sheet.batch is None
-    assert not bench.sheet.print_button.isEnabled()
+    assert not bench.sheet.view.print_button.isEnabled()
     assert bench.sheet.words.text()
 
 
@@ -139,19 +144,19 @@ def test_a_line_fixed_by_hand_stays_and_the_others_make_up_the_batch(
         assert go_on.wait(20)
         return make_batch(*given, **named)
 
-    monkeypatch.setattr(batches, "make_batch", held)
-    hands.go(pane.table, 1, "kg")
+    monkeypatch.setattr(asked, "make_batch", held)
+    hands.go(pane.view.table, 1, "kg")
     hands.write(f"{before - 2:g}")
-    with qtbot.waitSignal(pane.pages.shown, timeout=20000):
+    with qtbot.waitSignal(pane.view.pages.shown, timeout=20000):
         hands.key(Qt.Key.Key_Return)
         assert pane.batch is None
-        assert not pane.print_button.isEnabled()
+        assert not pane.view.print_button.isEnabled()
         go_on.set()
     assert line_kg(sheet, "Maize") == before - 2
     assert pane.batch is not None
     assert pane.batch.total_kg == pytest.approx(1000)
-    with qtbot.waitSignal(pane.pages.shown, timeout=20000):
-        hands.go(pane.table, 1, "kg")
+    with qtbot.waitSignal(pane.view.pages.shown, timeout=20000):
+        hands.go(pane.view.table, 1, "kg")
         hands.key(Qt.Key.Key_Delete)
     assert line_kg(sheet, "Maize") == before
 
@@ -159,11 +164,11 @@ def test_a_line_fixed_by_hand_stays_and_the_others_make_up_the_batch(
 def test_a_mass_that_cannot_be_is_refused_beside_its_line(sheet: Bench, hands: Hands, qtbot: QtBot) -> None:
     pane = sheet.sheet
     before = line_kg(sheet, "Maize")
-    hands.go(pane.table, 1, "kg")
+    hands.go(pane.view.table, 1, "kg")
     hands.write("0.37")
-    with qtbot.waitSignal(pane.pages.shown, timeout=20000):
+    with qtbot.waitSignal(pane.view.pages.shown, timeout=20000):
         hands.key(Qt.Key.Key_Return)
-    look = pane.lines.look(pane.lines.owners.index(1), 1)
+    look = pane.lines.look(pane.lines.owners.index(1), pane.lines.column_of("kg") or 0)
     assert "0.37" in look.text
     assert look.fault
     assert line_kg(sheet, "Maize") == before
@@ -174,10 +179,10 @@ def test_an_old_page_is_greyed_and_not_printed_while_the_new_answer_is_worked_ou
     sheet.work.answered.emit()
     pane = sheet.sheet
     assert pane.batch is None
-    assert pane.pages.pages
+    assert pane.view.pages.pages
     assert "tale" in pane.words.text()
-    assert not pane.print_button.isEnabled()
-    assert not pane.save_button.isEnabled()
+    assert not pane.view.print_button.isEnabled()
+    assert not pane.view.save_button.isEnabled()
 
 
 def test_a_stopped_answer_is_refused_in_a_sentence(sheet: Bench, qtbot: QtBot) -> None:
@@ -187,7 +192,7 @@ def test_a_stopped_answer_is_refused_in_a_sentence(sheet: Bench, qtbot: QtBot) -
     work.stored_result = stopped
     sheet.sheet.make()
     assert sheet.sheet.batch is None
-    assert not sheet.sheet.print_button.isEnabled()
+    assert not sheet.sheet.view.print_button.isEnabled()
     assert "not printed" in sheet.sheet.words.text()
     batch = make_batch(work.library, work.formula_id or 0, 1000.0, work.on, result=stopped)
     assert batch.cause is not None

@@ -1,25 +1,63 @@
-"""What is said of a batch beside its page. No Qt."""
+"""What is said of a batch beside its lines and pages. No Qt."""
 
 from __future__ import annotations
 
-from blendapp.domain.batches import Batch, proof_words
+from blendapp.domain.batches import Batch, CleanOut, proof_words
+from blendapp.domain.figures import write_measure
 from blendapp.domain.notation import notation
+from blendapp.domain.results import LimitResult
 from blendapp.domain.wording import _, plural
 
 
 def batch_words(batch: Batch) -> str:
-    """How many batches of what mass, what rounding does to them, and whether that is proven."""
+    """How many batches of what mass and where, what rounding does to them, and whether that is proven."""
     write = notation().write_short
-    lines = [plural("{count} batch of {kg} kg", "{count} equal batches of {kg} kg", batch.batches).format(
-        count=batch.batches, kg=write(batch.batch_kg, 3))]
+    head = plural("{count} batch of {kg} kg", "{count} equal batches of {kg} kg", batch.batches).format(
+        count=batch.batches, kg=write(batch.batch_kg, 3))
+    lines = [_("{batches}, in {mixer}").format(batches=head, mixer=batch.mixer) if batch.mixer else head]
     if batch.residue_kg:
         text = _("The lines come to {kg} kg less than the batch.") if batch.residue_kg < 0 else _(
             "The lines come to {kg} kg more than the batch.")
         lines.append(text.format(kg=write(abs(batch.residue_kg), 3)))
     if batch.broken:
-        names = ", ".join(batch.limits[at].name for at in batch.broken)
-        lines.append(_("Rounding to the scales breaks: {names}. It may be mixed only if somebody accepts that.").format(
-            names=names))
-    if not batch.proven:
-        lines.append(proof_words(batch))
+        lines.append(_("Rounding to the scales breaks a limit. It may be mixed only if somebody accepts that:"))
+        lines += [broken_words(batch.limits[at]) for at in batch.broken]
+    lines.append(proof_words(batch) or _("Proven: no batch in whole steps of these scales comes nearer."))
     return "\n".join(lines)
+
+
+def broken_words(limit: LimitResult) -> str:
+    """A limit that a batch does not keep, with by how much."""
+    name = limit.name if limit.per is None else _("{name} over {per}").format(name=limit.name, per=limit.per)
+    under = limit.minimum is not None and limit.value is not None and limit.value < limit.minimum
+    bound = limit.minimum if under else limit.maximum
+    by = None if limit.value is None or bound is None else abs(limit.value - bound)
+    text = _("{limit}: {value} {unit}, {by} below its minimum of {bound}.") if under else _(
+        "{limit}: {value} {unit}, {by} above its maximum of {bound}.")
+    return text.format(
+        limit=name, value=write_measure(limit.value), unit=limit.unit, by=write_measure(by), bound=write_measure(bound),
+    ).replace("  ", " ").replace(" ,", ",")
+
+
+def yield_words(batch: Batch) -> str:
+    """What leaves as feed of what is weighed, "" where nothing is lost and no water goes or comes."""
+    if batch.yield_unknown:
+        return _("Expected yield: not known. {why}").format(why=batch.yield_unknown)
+    if batch.yield_kg is None or (batch.loss_percent is None and batch.product_dry_matter_percent is None):
+        return ""
+    write = notation().write_short
+    parts = [_("Expected yield: {kg} kg of one batch").format(kg=write(batch.yield_kg, 1))]
+    if batch.loss_percent:
+        parts.append(_("after a loss of {percent} %").format(percent=write(batch.loss_percent, 2)))
+    if batch.product_dry_matter_percent:
+        parts.append(_("at {percent} % dry matter").format(percent=write(batch.product_dry_matter_percent, 1)))
+    return ", ".join(parts) + "."
+
+
+def clean_out_words() -> dict[CleanOut | None, str]:
+    """What may be done to the mixer before a batch, and what each is called."""
+    return {
+        None: _("written on the sheet by hand"), CleanOut.PHYSICAL: _("physical: emptied and cleaned"),
+        CleanOut.FLUSH: _("flush: with a material that is kept apart"),
+        CleanOut.SEQUENCE: _("sequence: the feeds may follow each other"), CleanOut.NONE: _("none needed"),
+    }
