@@ -93,21 +93,42 @@ def _formulate(given: argparse.Namespace) -> int:
 
 
 def _prices(given: argparse.Namespace) -> int:
+    from blendapp.services.effect_table import effect_of, summary, write_effect
     from blendapp.services.prices import apply_price_list, read_price_list
 
     today = datetime.date.today()
     with _Open(given.mill) as mill:
         if given.apply and not mill.writable:
             raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
+        if given.effect is not None:
+            _refuse_effect(given)
         reading = read_price_list(mill, given.list, today, given.sheet)
+        if given.effect is not None:
+            # Before anything is recorded, so that a file that cannot be written leaves the mill as it was.
+            moved = effect_of(mill.library, reading, today, mill.answers.view())
+            write_effect(given.effect, moved, mill.library.mill.currency)
         applied = bool(given.apply and reading.accepted)
         if applied:
             apply_price_list(mill, reading, today)
     if given.json:
-        _print(as_json.text_of(as_json.prices(reading, applied)))
+        written = {} if given.effect is None else {"effect": given.effect}
+        _print(as_json.text_of({**as_json.prices(reading, applied), **written}))
     else:
         _print(as_text.prices(reading, applied))
+        if given.effect is not None:
+            _print("  " + _("{summary}; the table is in {file}.").format(
+                summary=summary(moved).rstrip("."), file=given.effect))
     return NO if reading.count(Fate.QUESTION) or reading.count(Fate.REFUSED) else DONE
+
+
+def _refuse_effect(given: argparse.Namespace) -> None:
+    """Raises Refused for a file of --effect that cannot be written as asked, or would take the place of the list."""
+    from blendapp.services.effect_table import refuse_name
+
+    refuse_name(given.effect)
+    if Path(given.effect).resolve() == Path(given.list).resolve():
+        text = _("The table would take the place of the price list; choose another name for --effect.")
+        raise Refused(Problem(text, Place(file=given.effect)))
 
 
 def _sheet(given: argparse.Namespace) -> int:

@@ -72,11 +72,12 @@ def make_parser() -> argparse.ArgumentParser:
 
     prices = _command(
         commands, "prices", _("read a price list and show what becomes of each row"),
-        "blendapp prices valley.mill monday.xlsx --apply",
+        "blendapp prices valley.mill monday.xlsx --apply --effect effect.xlsx",
     )
     prices.add_argument("mill", metavar="MILL")
     prices.add_argument("list", metavar="LIST", help=_("a workbook or a delimited text"))
     prices.add_argument("--apply", action="store_true", help=_("record every accepted row"))
+    prices.add_argument("--effect", metavar="FILE", help=_("write what the prices do to every formula: .xlsx or .csv"))
     prices.add_argument("--sheet", metavar="NAME", help=_("read this sheet only; else every visible one"))
 
     sheet = _command(

@@ -8,6 +8,8 @@ from blendapp.domain.notation import notation
 from blendapp.domain.units import LB_KG, VOLUME_L
 
 _MOST_DECIMALS = 9
+PERCENT_DECIMALS = 3  # of a share of a mix in %: 10 g in a tonne still show
+DAY_COST_DECIMALS = 4  # of money per head and day: a day of a hen costs cents
 # A step that needs no more decimals than this in a unit is taken to be what its scale shows.
 _PLAIN_DECIMALS = {"kg": 6, "lb": 4}
 _PLAIN_DECIMALS_OF_VOLUME = 4
@@ -40,7 +42,7 @@ def write_measure(value: float | None) -> str:
 
 def write_percent(fraction: float | None) -> str:
     """A fraction of a mix in %, with three decimals: 10 g in a tonne still show."""
-    return notation().write(None if fraction is None else fraction * 100, 3)
+    return notation().write(None if fraction is None else fraction * 100, PERCENT_DECIMALS)
 
 
 def write_price(value: float | None) -> str:
@@ -50,7 +52,7 @@ def write_price(value: float | None) -> str:
 
 def write_day_cost(value: float | None) -> str:
     """Money per head and day, four decimals: a day of a hen costs cents."""
-    return notation().write(value, 4)
+    return notation().write(value, DAY_COST_DECIMALS)
 
 
 def write_shadow_price(value: float | None) -> str:

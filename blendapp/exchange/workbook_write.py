@@ -3,31 +3,24 @@
 from __future__ import annotations
 
 import datetime
-import os
-import re
-import tempfile
 from collections.abc import Iterable, Iterator
-from contextlib import suppress
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 from blendapp.domain.library import Library
-from blendapp.domain.problems import Place, Problem, Problems, Refused
+from blendapp.domain.problems import Place, Problem, Problems
 from blendapp.domain.wording import _, plural
 from blendapp.exchange.workbook_layout import LAYOUTS, Layout
 from blendapp.exchange.workbook_plant_tables import WrittenCell
 from blendapp.exchange.workbook_tables import tables_of
+from blendapp.exchange.written_cells import LONGEST_TEXT, fill_number, fill_text, replace_file
 
 if TYPE_CHECKING:
     from openpyxl import Workbook
     from openpyxl.cell.cell import Cell
     from openpyxl.worksheet.worksheet import Worksheet
 
-LONGEST_TEXT = 32_767  # of one cell, a limit of the format
 _WIDEST, _NARROWEST = 42, 9
-_MARKED_AS_TEXT = ("=", "+", "-", "@")
-# What XML cannot hold, and text that would be taken for the escape of it (ISO/IEC 29500, ST_Xstring).
-_UNWRITABLE = re.compile("[\x00-\x08\x0b-\x0d\x0e-\x1f\ufffe\uffff]|_(?=x[0-9A-Fa-f]{4}_)")
 
 
 def write_workbook(path: str | Path, library: Library, today: datetime.date) -> list[Problem]:
@@ -40,7 +33,7 @@ def write_workbook(path: str | Path, library: Library, today: datetime.date) -> 
     tables = tables_of(library, today, problems)
     _say_not_carried(library, path.name, problems)
     workbook = _workbook(tables, path.name, problems)
-    _replace_file(path, workbook)
+    replace_file(path, workbook.save)
     return [Problem(p.text, Place(path.name, p.place.sheet, p.place.row, p.place.column, p.place.record), p.severity)
             for p in problems]
 
@@ -76,23 +69,9 @@ def _fill(cell: Cell, value: str | float | datetime.date, layout: Layout, proble
         if len(value) > LONGEST_TEXT:
             text = _("The text is longer than a cell can hold and was cut after {count} characters.")
             problems.oddity(text.format(count=LONGEST_TEXT), Place("", layout.name, cell.row))
-        _fill_text(cell, value[:LONGEST_TEXT])
+        fill_text(cell, value[:LONGEST_TEXT])
     else:
-        # Written out by hand, since the library rounds to 16 digits and a double may need 17.
-        cell.value = _digits(value)
-        cell.data_type = "n"
-
-
-def _fill_text(cell: Cell, text: str) -> None:
-    """A text that stays one: never a formula, an error or a date, whatever it begins with."""
-    cell.value = _UNWRITABLE.sub(lambda found: f"_x{ord(found[0]):04X}_", text)
-    cell.data_type = "s"
-    if text.startswith(_MARKED_AS_TEXT):
-        cell.quotePrefix = True  # so that it is still a text after somebody has edited the cell
-
-
-def _digits(value: float) -> str:
-    return str(int(value)) if value == int(value) and abs(value) < 1e15 else repr(float(value))
+        fill_number(cell, value)
 
 
 def _set_widths(sheet: Worksheet, rows: list[list[WrittenCell]]) -> None:
@@ -103,36 +82,6 @@ def _set_widths(sheet: Worksheet, rows: list[list[WrittenCell]]) -> None:
         heading = max(len(word) for word in str(rows[0][column]).split(" ")) + 2
         width = min(max(longest + 2, heading, _NARROWEST), _WIDEST)
         sheet.column_dimensions[get_column_letter(column + 1)].width = width
-
-
-def _replace_file(path: Path, workbook: Workbook) -> None:
-    """Writes beside the file and puts it in its place when it is whole."""
-    temporary = ""
-    try:
-        if path.is_dir():
-            raise IsADirectoryError(0, _("it is a folder"))
-        handle, temporary = tempfile.mkstemp(".part", f".{path.name[:80]}.", path.parent)
-        with os.fdopen(handle, "wb") as stream:
-            workbook.save(stream)
-            stream.flush()
-            os.fsync(stream.fileno())
-        os.chmod(temporary, _mode_of(path))
-        os.replace(temporary, path)
-    except OSError as error:
-        if temporary:
-            with suppress(OSError):
-                os.unlink(temporary)
-        text = _("The workbook cannot be written: {reason}. Choose another place, or close it where it is open.")
-        raise Refused(Problem(text.format(reason=error.strerror or error), Place(file=path.name))) from None
-
-
-def _mode_of(path: Path) -> int:
-    """Permissions of the file in the place, or those that a new file gets."""
-    with suppress(OSError):
-        return path.stat().st_mode & 0o777
-    mask = os.umask(0)
-    os.umask(mask)
-    return 0o666 & ~mask
 
 
 def _say_not_carried(library: Library, file: str, problems: Problems) -> None:

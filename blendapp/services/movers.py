@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import datetime
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 
 from blendapp.domain.formulas import Amounts, Formula
@@ -35,12 +35,31 @@ class PriceMove:
 
 
 @dataclass(frozen=True)
+class MixLine:
+    """An ingredient in the two mixes of a formula: amounts as fractions of a blend or kg per day, None without an
+    answer; prices in money per tonne, None where unknown."""
+
+    ingredient_id: int
+    ingredient: str
+    before: float | None
+    after: float | None
+    price_before: float | None
+    price_after: float | None
+
+    @property
+    def change(self) -> float | None:
+        """What the amount rises by."""
+        return None if self.before is None or self.after is None else self.after - self.before
+
+
+@dataclass(frozen=True)
 class Mover:
     """One formula of which an admitted price moved.
 
     before, after: the cost in money per tonne of mix or per head and day, None without an answer. as_before: the cost
     of the old mix at the new prices. kept: whether the old mix is still the cheapest, None where either side has none.
     most: the price that moved the cost most, None where none did. fault: why it could not be worked out, else "".
+    lines: the ingredients that either mix holds or whose price differs.
     """
 
     formula_id: int
@@ -54,6 +73,16 @@ class Mover:
     kept: bool | None
     most: PriceMove | None
     fault: str = ""
+    lines: tuple[MixLine, ...] = ()
+
+    @property
+    def changed_lines(self) -> list[MixLine]:
+        """The ingredients of which the new mix holds more or less, those that change most first; [] if it is kept."""
+        if self.kept is not False:
+            return []
+        size = max((max(one.before or 0.0, one.after or 0.0) for one in self.lines), default=1.0)
+        found = [one for one in self.lines if abs(one.change or 0.0) > _SAME * size]
+        return sorted(found, key=lambda one: -abs(one.change or 0.0))
 
     @property
     def change(self) -> float | None:
@@ -86,6 +115,15 @@ def movers(
     if progress is not None:
         progress(len(moved), len(moved))
     return rows
+
+
+def biggest_first(rows: Iterable[Mover]) -> list[Mover]:
+    """Rows without an answer on one side first, then by the share of the cost that changes, the greatest first."""
+    def place(row: Mover) -> tuple[bool, float, str]:
+        share = 0.0 if row.change is None or not row.before else abs(row.change / row.before)
+        return row.change is not None, -share, row.formula
+
+    return sorted(rows, key=place)
 
 
 def with_prices(library: Library, reading: PriceListReading, on: datetime.date) -> Library:
@@ -126,7 +164,20 @@ def _mover(
         most = most if most is not None and most.effect is None else None
     return Mover(
         formula.id, formula.name, formula.amounts, old.status, new.status, old.cost, new.cost, as_before, kept, most,
+        lines=_lines(before, formula, prices, old, new, both),
     )
+
+
+def _lines(
+    library: Library, formula: Formula, prices: Moved, old: Position, new: Position, both: tuple[Prices, Prices]
+) -> tuple[MixLine, ...]:
+    found = []
+    for one in library.admitted(formula):
+        was = None if old.cost is None else old.amounts.get(one.id, 0.0)
+        now = None if new.cost is None else new.amounts.get(one.id, 0.0)
+        if was or now or one.id in prices:
+            found.append(MixLine(one.id, one.name, was, now, both[0][one.id], both[1][one.id]))
+    return tuple(found)
 
 
 def _cost_at(old: Position, formula: Formula, prices: Prices) -> float | None:

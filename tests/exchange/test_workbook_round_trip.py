@@ -169,7 +169,7 @@ def test_an_export_that_fails_leaves_the_older_file_and_no_leftover(
     def full(*_arguments: object) -> None:
         raise OSError(28, "No space left on device")
 
-    monkeypatch.setattr("blendapp.exchange.workbook_write.os.fsync", full)
+    monkeypatch.setattr("blendapp.exchange.written_cells.os.fsync", full)
     with pytest.raises(Refused, match="No space left"):
         write_workbook(path, Maker().library, TODAY)
     assert path.read_bytes() == b"older"
