@@ -203,7 +203,8 @@ def test_a_medicated_line_shows_drug_level_species_and_withdrawal_as_entered() -
 def test_medicated_details_stand_on_the_page_of_their_line() -> None:
     fillers = tuple(made.line(f"Filler {n}", 10) for n in range(60))
     last = dataclasses.replace(made.MEDICATED, scale="Z")
-    for count in range(6, 28):
+    # Around the ends of the first two pages.
+    for count in (*range(3, 9), *range(27, 33)):
         batch = dataclasses.replace(made.PLAIN, lines=(*fillers[:count], last))
         for text in page_text(batch_sheet(batch)):
             tagged = bool(re.search(r"^MEDICATED (?!FEED)", text, re.MULTILINE))
