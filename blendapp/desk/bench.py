@@ -22,6 +22,8 @@ from blendapp.desk.have.reading import NUTRIENT
 from blendapp.desk.head import Head
 from blendapp.desk.history.pane import HistoryPane
 from blendapp.desk.listing import command_list
+from blendapp.desk.lists.applied import AppliedPane
+from blendapp.desk.lists.memory import MemoryPane
 from blendapp.desk.meet.pane import MeetPane
 from blendapp.desk.mill.pane import MillPane
 from blendapp.desk.mix.pane import MixPane
@@ -36,9 +38,9 @@ from blendapp.desk.welcome import Welcome
 from blendapp.desk.work import Work
 from blendapp.domain.formulas import LimitKind
 from blendapp.domain.library import Library
+from blendapp.domain.mills import ListAbout
 from blendapp.domain.wording import _
 from blendapp.services.approved import outside_their_limits
-from blendapp.domain.mills import ListAbout
 from blendapp.services.versions import altered
 
 
@@ -81,6 +83,7 @@ class Bench(QObject):
         self.menu = QMenu(frame)
         self.recent_menu = QMenu(_("Opened last"), self.menu)
         self._connect()
+        self._add_list_pages()
 
     def _connect(self) -> None:
         header = self.frame.header
@@ -118,7 +121,20 @@ class Bench(QObject):
         self.effect.closed.connect(self._leave_effect)
         self.effect.said.connect(self.strip.say)
         self.effect.chosen.connect(self._show_formula)
+        self.effect.table_wanted.connect(lambda: self.files.write_table(
+            _("Write what the prices do"), _("price effect") + ".xlsx", self.effect.write_table))
         self.frame.closing.connect(self.close)
+
+    def _add_list_pages(self) -> None:
+        """The pages of the lists that were applied, and of what is remembered of lists."""
+        self.applied, self.memory = AppliedPane(self.work), MemoryPane(self.work)
+        for page in (self.applied, self.memory):
+            self.frame.middle.addWidget(page)
+            page.closed.connect(self.strip.clear)
+            page.closed.connect(self.to_bench)
+            page.said.connect(self.strip.say)
+        self.history.list_wanted.connect(self.show_applied)
+        self.applied.memory_wanted.connect(self.show_memory)
 
     # -- beginning and ending
 
@@ -144,6 +160,7 @@ class Bench(QObject):
             typing.clearFocus()
         self.finder.hide()
         self.effect.stop_all()
+        self.prices.reader.forget()
         self.work.close()
 
     def tell_of_fault(self, kind: type[BaseException], fault: BaseException, trace: TracebackType | None) -> None:
@@ -158,7 +175,6 @@ class Bench(QObject):
         if self.work.is_open:
             # After the answer is in view, and behind whatever else there is to say of the file.
             QTimer.singleShot(0, self, self._say_approved)
-        self.prices.reader.forget()
 
     def _say_approved(self) -> None:
         """Say which approved versions may not be fed as they stand, and which other hands have changed."""
@@ -193,6 +209,16 @@ class Bench(QObject):
         self.frame.middle.setCurrentWidget(page)
         page.setFocus()
 
+    def undo(self) -> None:
+        """Take the last answer for the list in view back, else the last edit."""
+        if not (self.arrivals.undo_words() and self.prices.take_back()):
+            self.work.undo()
+
+    def redo(self) -> None:
+        """Take the last undo back."""
+        if not (self.arrivals.redo_words() and self.prices.give_again()):
+            self.work.redo()
+
     def bring_in_prices(self, path: Path | None = None) -> None:
         """Read a price list and show what would become of each row."""
         self.arrivals.choose(ListAbout.PRICES, path)
@@ -209,16 +235,6 @@ class Bench(QObject):
         self.show_page(self.effect)
 
     def back_to_effect(self) -> None:
-    def undo(self) -> None:
-        """Take the last answer for the list in view back, else the last edit."""
-        if not (self.arrivals.undo_words() and self.prices.take_back()):
-            self.work.undo()
-
-    def redo(self) -> None:
-        """Take the last undo back."""
-        if not (self.arrivals.redo_words() and self.prices.give_again()):
-            self.work.redo()
-
         """Show once more what the last prices did."""
         if self.effect.has_any:
             self.show_page(self.effect)
@@ -240,6 +256,16 @@ class Bench(QObject):
         if chosen is not None:
             self.show_page(self.history)
             self.history.begin(chosen)
+
+    def show_applied(self, list_id: int | None = None) -> None:
+        """Show the lists that were applied, with one of them opened."""
+        self.show_page(self.applied)
+        self.applied.begin(list_id)
+
+    def show_memory(self, source: str = "") -> None:
+        """Show what is remembered of lists, or of the lists of one source."""
+        self.show_page(self.memory)
+        self.memory.begin(source)
 
     def show_mill(self, section: str = "") -> None:
         """Show the mill's own page, at one of its sections if one is named."""

@@ -135,6 +135,20 @@ class Files(QObject):
 
         self._try(job)
 
+    def write_table(self, title: str, name: str, write: Callable[[Path], object]) -> None:
+        """Have a table written where the person says. name: of the file that is proposed."""
+        kinds = _("Workbooks ({workbook});;Delimited text ({text})").format(workbook="*.xlsx", text="*.csv")
+        path = self.ask_save(title, name, kinds)
+        if not path:
+            return
+        target = with_ending(path, ".xlsx")
+
+        def job() -> None:
+            write(target)
+            self.said.emit(_("The table is in {file}.").format(file=target), [])
+
+        self._try(job)
+
     def ask_list(self, about: ListAbout, folder: Path | None) -> Path | None:
         """Choose a list of prices or of analyses, beginning in a folder."""
         patterns = "*.xlsx *.xlsm *.xls *.xlsb *.ods *.csv *.txt *.tsv"

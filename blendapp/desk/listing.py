@@ -44,6 +44,8 @@ def _file(bench: Bench) -> list[Command]:
                 lambda: bench.effect.has_any),
         Command("history", _("Prices of this ingredient over time"), "exchange", bench.show_history, "Ctrl+H",
                 lambda: bench.have.current() is not None),
+        Command("applied", _("Lists that were applied: open, roll back"), "exchange", bench.show_applied, "", is_open),
+        Command("memory", _("What is remembered of lists"), "exchange", bench.show_memory, "", is_open),
         Command("import", _("Bring in a workbook…"), "exchange", files.import_workbook, "", writable),
         Command("export", _("Write the workbook…"), "exchange", files.export_workbook, "Ctrl+E", is_open),
     ]

@@ -3,12 +3,17 @@
 from __future__ import annotations
 
 import datetime
+from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 from blendapp.desk.bench import Bench
+from blendapp.domain.list_rows import ADD, DAY_FIRST, LEAVE_OUT, Answer
+from blendapp.domain.mills import Asked
 from blendapp.domain.quotes import QuoteKind, Terms
-from blendapp.services import edits, plant, price_history
+from blendapp.services import edits, list_memory, plant, price_history
+from blendapp.services.lists import roll_back
+from blendapp.services.prices import apply_price_list, read_price_list
 
 if TYPE_CHECKING:
     from blendapp.desk.scenes import Studio
@@ -57,3 +62,29 @@ def history(studio: Studio, bench: Bench, _price_list: Path) -> None:
     studio.settle()
     studio.take(bench.frame, "32-price-history-small-window")
     bench.frame.resize(1440, 900)
+
+
+def lists(studio: Studio, bench: Bench, price_list: Path) -> None:
+    """Lists that were applied, one of them rolled back, and what is remembered of their sources."""
+    work = bench.work
+    first = work.library.ingredients[0]
+    for source, answer in (
+        ("marsh", Answer(Asked.INGREDIENT, "Corn, yellow no 2", ingredient_id=first.id)),
+        ("marsh", Answer(Asked.INGREDIENT, "Pallet deposit", LEAVE_OUT)),
+        ("marsh", Answer(Asked.UNIT, "ton", "short ton")), ("marsh", Answer(Asked.PRICE, "Price | Freight", ADD)),
+        ("north quay", Answer(Asked.DATES, "Valid from", DAY_FIRST)),
+        ("north quay", Answer(Asked.RATE, "EUR", "", rate=1.085, given=work.on)),
+        ("north quay", Answer(Asked.COLUMN, "Rem.", "note")),
+    ):
+        work.do(partial(list_memory.remember, source=source, answer=answer))
+    work.do(lambda mill: list_memory.set_usual_change(mill, "", 25.0))
+    for _time in range(2):
+        reading = read_price_list(work.mill, price_list, work.on)
+        work.do(partial(apply_price_list, reading=reading, on=work.on))
+    work.do(lambda mill: roll_back(mill, 1))
+    bench.show_applied()
+    studio.settle()
+    studio.take(bench.frame, "33-applied-lists")
+    bench.show_memory()
+    studio.settle()
+    studio.take(bench.frame, "34-what-is-remembered")

@@ -72,6 +72,8 @@ def empty_bench(qapp: QApplication, tmp_path: Path) -> Iterator[Bench]:
         for model in (
             bench.have.model, bench.meet.model, bench.mix.model, bench.prices.rows, bench.effect.rows,
             bench.finder.found, bench.versions.rows, bench.versions.found, bench.sheet.lines,
+            bench.sheet.form.rework, bench.printed.rows,
+            bench.history.rows, bench.applied.rows, bench.applied.opened, bench.memory.rows,
             *(bench.mill.model(kind) for kind in bench.mill.tables),
         )
     ]

@@ -8,7 +8,7 @@ import sys
 
 import pytest
 from PySide6.QtCore import Qt
-from PySide6.QtTest import QAbstractItemModelTester, QTest
+from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication
 
 from blendapp.desk.bench import Bench
@@ -35,8 +35,6 @@ def page(bench: Bench) -> Bench:
     bench.have.table.go_to(1, "price")
     bench.commands.run("history")
     QApplication.processEvents()
-    tester = QAbstractItemModelTester(bench.history.rows, QAbstractItemModelTester.FailureReportingMode.Warning)
-    bench.history.destroyed.connect(tester.deleteLater)
     return bench
 
 

@@ -84,7 +84,9 @@ class QuoteRows(Grid):
         if key == "recorded":
             return Look(text=day_words(quote.recorded), quiet=True)
         if key == "source":
-            return Look(text=line.source, quiet=True, hint=line.source)
+            hint = line.source if line.price_list_id is None else _("{source}; Enter opens the list").format(
+                source=line.source)
+            return Look(text=line.source, quiet=True, hint=hint)
         return self._field_look(quote, key, counts)
 
     def _quoted(self, quote: Quote, counts: bool, why: str) -> Look:

@@ -39,10 +39,12 @@ SIDE_PX = 320
 
 
 class HistoryPane(QWidget):
-    """closed: back to the bench. said: a sentence with what can be listed below it."""
+    """closed: back to the bench. said: a sentence with what can be listed below it. list_wanted: the list that a price
+    came with is to be opened."""
 
     closed = Signal()
     said = Signal(str, list)
+    list_wanted = Signal(int)
 
     def __init__(self, work: Work) -> None:
         super().__init__()
@@ -86,6 +88,8 @@ class HistoryPane(QWidget):
         self.form.bought_from.connect(self._buy)
         self.table.selectionModel().currentRowChanged.connect(lambda _now, _before: self._row_chosen())
         self.table.cleared.connect(self._clear)
+        self.table.asked.connect(self._asked)
+        self.table.doubleClicked.connect(self._asked)
         work.edited.connect(self._edited)
         work.opened.connect(self._forget)
         work.reversed.connect(self.rows.forgive_all)
@@ -236,6 +240,12 @@ class HistoryPane(QWidget):
         if index.isValid():
             self.table.setCurrentIndex(index)
             self.table.scrollTo(index)
+
+    def _asked(self, index: QModelIndex) -> None:
+        """Enter on where a price comes from opens the list."""
+        line = self.rows.line(self.rows.owner(index)) if index.isValid() else None
+        if line is not None and line.price_list_id is not None and self.rows.key(index) == "source":
+            self.list_wanted.emit(line.price_list_id)
 
     # -- entries
 

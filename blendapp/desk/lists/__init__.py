@@ -1,0 +1,1 @@
+"""Lists after they were taken: what was applied, and what is remembered of each source."""
