@@ -13,8 +13,9 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from blendapp.optimise.program import Row
-from blendapp.optimise.steps.problem import LeastIfUsed, Line, Load, Order, exact
+from blendapp.optimise.steps.problem import LeastIfUsed, Line, Load, Order, Placed, exact, place
 from blendapp.optimise.steps.search import NoBatch, WholeBatch, whole_batch
+from blendapp.optimise.steps.totals import nearest_mixed
 from tests.optimise import made_batches
 from tests.optimise.orders import BIG, HAND, MIDDLE, SMALL, limit, order
 from tests.optimise.whole_batch_check import broken_limits, check_none_better, recheck
@@ -262,6 +263,54 @@ def test_steps_without_a_common_measure_that_can_be_counted_still_make_the_neare
     # The fine line may differ by 2 % of 10 g, the others by whole kilograms only.
     assert float(found.error_kg) == pytest.approx(0.0098, abs=1e-6)
     assert found.stage("total").proven
+
+
+def in_pounds_and_gallons(seed: int) -> Order:
+    """A made batch whose small scale shows half pounds, and every third large line of which is dosed in tenths of a
+    gallon."""
+    order_ = order(seed, lines=25, limits=20, binding=6)
+    lines = list(order_.lines)
+    for j, line in enumerate(lines):
+        if line.loads[0] is BIG and j % 3 == 0:
+            density = round(0.9 + 0.017 * j, 3)
+            lines[j] = replace(line, loads=(Load(0.1 * 3.785411784 * density, 1.0), *line.loads))
+        elif line.loads[0] is SMALL:
+            lines[j] = replace(line, loads=(Load(0.5 * 0.45359237, 0.45359237), *line.loads))
+    return replace(order_, lines=tuple(lines))
+
+
+@pytest.mark.parametrize("seed", range(6))
+def test_kilograms_pounds_and_gallons_side_by_side_make_the_total_as_near_as_the_finest_step_tells(seed: int) -> None:
+    order_ = in_pounds_and_gallons(seed)
+    found = made(whole_batch(order_, 0.4))
+    recheck(order_, found)
+    finest = min(p.step for p in found.placed)
+    assert found.stage("total").proven
+    assert found.error_kg <= finest / 5
+
+
+def test_two_metered_lines_make_the_nearest_of_all_their_totals() -> None:
+    gallons = Load(0.1 * 3.785411784 * 0.917, tolerance=0.1)
+    pounds = Load(0.1 * 0.45359237, tolerance=0.04)
+    grams = Load(0.0137, tolerance=0.04)
+    order_ = Order(60.0, (Line(30.0, (gallons,)), Line(20.0, (pounds,)), Line(10.0, (grams,))))
+    mixed = nearest_mixed(order_, tuple(p for p in map(place, order_.lines) if isinstance(p, Placed)))
+    every = [choices(line, line.loads[0]) for line in order_.lines]
+    error = min(abs(sum(kg, Fraction(0)) - 60) for kg in itertools.product(*every[:2], every[2]))
+    assert mixed is not None
+    assert mixed.total is not None
+    assert mixed.whole
+    assert float(abs(mixed.total - 60)) == pytest.approx(float(error), abs=1e-9)
+
+
+def test_a_fixed_line_that_spoils_a_total_in_pounds_and_gallons_is_refused() -> None:
+    order_ = in_pounds_and_gallons(1)
+    j = next(k for k, line in enumerate(order_.lines) if line.loads[0] is BIG)
+    lines = list(order_.lines)
+    lines[j] = replace(lines[j], fixed_kg=float(round(lines[j].share_kg * 2 / 5) * 5))
+    found = whole_batch(replace(order_, lines=tuple(lines)))
+    assert isinstance(found, NoBatch)
+    assert [reason.why for reason in found.reasons] == ["fixed total"]
 
 
 def test_made_batches_hold_what_they_say_and_an_independent_solver_finds_none_better() -> None:

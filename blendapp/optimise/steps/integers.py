@@ -34,11 +34,12 @@ class Integers:
     """Columns: steps less the nearest whole ones (n), relative deviations (n), presence of lines that may be absent,
     one mark a limit that may break, and one for the second of two totals.
 
-    guard: limits whose sides must hold by that much more, because the solver took dust for holding.
+    play: how far from the totals another one is as good. guard: limits whose sides must hold by that much more,
+    because the solver took dust for holding.
     """
 
-    def __init__(self, task: Task, totals: Sequence[Fraction]) -> None:
-        self.task, self.totals = task, list(totals)
+    def __init__(self, task: Task, totals: Sequence[Fraction], play: Fraction = Fraction(0)) -> None:
+        self.task, self.totals, self.play = task, list(totals), play
         placed = task.placed
         n = self.size = len(placed)
         self.origin = [0 if p.absent else min(max(round(p.share / p.step), p.lo), p.hi) for p in placed]
@@ -75,8 +76,8 @@ class Integers:
         aim = np.zeros(self.columns)
         aim[self._marks()] = 1.0
         found = self._solve(aim, [], time_limit_s)
-        if found.none:
-            return found
+        if not math.isfinite(found.bound):
+            return found if found.none else found._replace(bound=float(self.always))
         return found._replace(bound=self.always + math.ceil(found.bound - 1e-6))
 
     def least_deviation(self, most_broken: int, time_limit_s: float) -> Found:
@@ -166,7 +167,7 @@ class Integers:
         # rounding, and the solver may find it met nowhere. Totals lie a common measure apart: a part of it lets in no
         # other.
         common = common_measure(placed)
-        play = 0.0 if common == finest else 0.3 * float(common / finest)
+        play = float(max(self.play, 0 if common == finest else Fraction(3, 10) * common) / finest)
         low.append(ends[0] - play)
         high.append(ends[0] + play)
         for j, p in enumerate(placed):

@@ -11,7 +11,7 @@ from typing import Literal
 from blendapp.optimise.steps.integers import Found, Integers
 from blendapp.optimise.steps.problem import Order, Placed, Reason, Task, exact, place, place_fixed, task
 from blendapp.optimise.steps.start import start
-from blendapp.optimise.steps.totals import nearest_totals
+from blendapp.optimise.steps.totals import nearest_mixed, nearest_totals, steps_to
 
 Aim = Literal["total", "limits", "deviation", "cost"]
 # Deviations or costs closer than this (relative above one) are equal.
@@ -19,6 +19,9 @@ EQUAL = 1e-6
 _GUARD = 1e-5
 _MOST_GUARDED = 3
 _START_SHARE = 0.2  # of the time
+# Where the totals are too many to mark (pounds, kilograms and litres side by side), two that differ by less than this
+# part of the finest step are equally near: no scale tells them apart.
+_PLAY = Fraction(1, 10)
 
 
 @dataclass(frozen=True)
@@ -85,12 +88,11 @@ def whole_batch(order: Order, time_limit_s: float = 1.5) -> WholeBatch | NoBatch
     if isinstance(placed, NoBatch):
         return placed
     totals = nearest_totals(order, placed)
-    if totals is not None:
-        if not totals:
-            return NoBatch((Reason(None, "total"),))
-        worse = _fixed_spoils(order, totals)
-        if worse is not None:
-            return worse
+    if totals is not None and not totals:
+        return NoBatch((Reason(None, "total"),))
+    worse = _fixed_spoils(order, placed)
+    if worse is not None:
+        return worse
     return _Search(task(order, placed), totals, began, time_limit_s).run()
 
 
@@ -102,17 +104,29 @@ def _placed(order: Order) -> tuple[Placed, ...] | NoBatch:
     return NoBatch(tuple(reasons)) if reasons else tuple(one for one in found if isinstance(one, Placed))
 
 
-def _fixed_spoils(order: Order, totals: Sequence[Fraction]) -> NoBatch | None:
+def _fixed_spoils(order: Order, placed: Sequence[Placed]) -> NoBatch | None:
     """Where the fixed lines keep the total further from the batch than the same lines could come unfixed."""
     if all(line.fixed_kg is None for line in order.lines):
         return None
     free = replace(order, lines=tuple(replace(line, fixed_kg=None) for line in order.lines))
-    placed = _placed(free)
-    best = None if isinstance(placed, NoBatch) else nearest_totals(free, placed)
-    wanted = exact(order.batch_kg)
-    if not best or abs(totals[0] - wanted) <= abs(best[0] - wanted):
+    unfixed = _placed(free)
+    if isinstance(unfixed, NoBatch):
         return None
-    return NoBatch((Reason(None, "fixed total", totals[0]),))
+    here, play = _nearest(order, placed)
+    best, its_play = _nearest(free, unfixed)
+    wanted = exact(order.batch_kg)
+    if here is None or best is None or abs(here - wanted) <= abs(best - wanted) + max(play, its_play):
+        return None
+    return NoBatch((Reason(None, "fixed total", here),))
+
+
+def _nearest(order: Order, placed: Sequence[Placed]) -> tuple[Fraction | None, Fraction]:
+    """The total nearest to the batch, None where it is not known, and how far another one is as near."""
+    totals = nearest_totals(order, placed)
+    if totals is not None:
+        return (totals[0] if totals else None), Fraction(0)
+    mixed = nearest_mixed(order, placed)
+    return (None if mixed is None else mixed.total), _PLAY * min(p.step for p in placed)
 
 
 class _Search:
@@ -120,6 +134,8 @@ class _Search:
         self.task, self.began, self.ends = task, began, began + time_limit_s
         self.wanted = exact(task.order.batch_kg)
         self.totals = totals
+        self.play = Fraction(0)
+        self.first: tuple[int, ...] | None = None  # steps that come to the nearest total
         self.best: tuple[int, ...] | None = None
 
     def run(self) -> WholeBatch | NoBatch:
@@ -127,23 +143,30 @@ class _Search:
         if isinstance(total, NoBatch):
             return total
         assert self.totals is not None
-        self.best = start(self.task, self.totals, _START_SHARE * self._left())
-        self.programs = Integers(self.task, self.totals)
+        self.near = abs(self.totals[0] - self.wanted) + self.play
+        self.best = start(self.task, self.totals, _START_SHARE * self._left(), self.play)
+        if not self._on_total(self.best):
+            first = self.first or steps_to(self.task.placed, float(self.totals[0]))
+            self.best = start(self.task, self.totals, _START_SHARE * self._left(), self.play, first)
+        self.programs = Integers(self.task, self.totals, self.play)
         limits = self._limits()
         deviation = self._deviation()
         cost = self._cost()
         assert self.best is not None
         n = self.best
+        broken = self.task.broken(n)
+        if len(broken) < limits.value:  # a later aim came upon it
+            limits = replace(limits, value=len(broken), proven=len(broken) <= limits.bound)
         error = abs(self.task.total(n) - self.wanted)
         if float(error) > total.value:
-            total = replace(total, value=float(error), proven=False)
+            total = replace(total, value=float(error), proven=total.proven and error <= self.near)
         return WholeBatch(
             placed=self.task.placed,
             steps=n,
             kilograms=tuple(p.step * k for p, k in zip(self.task.placed, n, strict=True)),
             total_kg=self.task.total(n),
             error_kg=error,
-            broken=self.task.broken(n),
+            broken=broken,
             deviation=float(self.task.deviation(n)),
             cost=self.task.money(n),
             stages=(total, limits, deviation, cost),
@@ -158,13 +181,28 @@ class _Search:
         if self.totals is not None:
             error = float(abs(self.totals[0] - self.wanted))
             return Stage("total", error, error, True)
-        found = Integers(self.task, [self.wanted]).nearest_total(0.4 * self._left())
-        if found.none:
+        self.play = _PLAY * min(p.step for p in self.task.placed)
+        mixed = nearest_mixed(self.task.order, self.task.placed)
+        if mixed is not None and mixed.total is None and mixed.whole:
             return NoBatch((Reason(None, "total"),))
-        near = found.steps or tuple(p.nearest for p in self.task.placed)
-        self.totals = [self.task.total(near)]
-        error = float(abs(self.totals[0] - self.wanted))
-        return Stage("total", error, max(found.bound, 0.0), error <= found.bound + EQUAL * float(self.wanted) * 1e-6)
+        if mixed is not None and mixed.total is not None:
+            total, self.first = mixed.total, mixed.steps
+            bound = float(abs(total - self.wanted)) if mixed.whole else 0.0
+        else:
+            found = Integers(self.task, [self.wanted]).nearest_total(0.4 * self._left())
+            if found.none:
+                return NoBatch((Reason(None, "total"),))
+            self.first = found.steps or tuple(p.nearest for p in self.task.placed)
+            total = self.task.total(self.first)
+            bound = max(found.bound, 0.0)
+        self.totals = [self.wanted if abs(total - self.wanted) <= self.play and self._held(self.wanted) else total]
+        error = float(abs(total - self.wanted))
+        return Stage("total", error, bound, error <= bound + float(self.play))
+
+    def _held(self, total: Fraction) -> bool:
+        """Whether a total lies between the ends of the order."""
+        least, greatest = self.task.order.least_total_kg, self.task.order.greatest_total_kg
+        return (least is None or total >= exact(least)) and (greatest is None or total <= exact(greatest))
 
     def _limits(self) -> Stage:
         assert self.best is not None
@@ -231,6 +269,7 @@ class _Search:
 
     def _key(self, steps: tuple[int, ...]) -> tuple[Fraction, int, float, float]:
         error = abs(self.task.total(steps) - self.wanted)
+        error = error if error > self.near else Fraction(0)
         deviation = round(float(self.task.deviation(steps)) / EQUAL * 10)
         return error, len(self.task.broken(steps)), deviation, self.task.money(steps)
 
@@ -241,7 +280,7 @@ class _Search:
         return steps if inside else None
 
     def _on_total(self, steps: tuple[int, ...]) -> bool:
-        return self.totals is not None and self.task.total(steps) in self.totals
+        return abs(self.task.total(steps) - self.wanted) <= self.near and self._held(self.task.total(steps))
 
     def _broken(self) -> int:
         assert self.best is not None

@@ -18,17 +18,21 @@ _SAME = 1e-12
 _DUST = 1e-10  # of a scaled side: what adding floats may miss
 
 
-def start(task: Task, totals: Sequence[Fraction], time_limit_s: float) -> tuple[int, ...]:
+def start(
+    task: Task, totals: Sequence[Fraction], time_limit_s: float, play: Fraction = Fraction(0),
+    first: Sequence[int] | None = None,
+) -> tuple[int, ...]:
     """Whole steps within what every line is allowed; near one of the totals, with few limits broken.
 
-    Improves in the order of total, broken limits, deviation, cost, until no move of one or two lines helps.
+    play: how far from the totals another one is as good. first: where to begin, else at the rounded shares. Improves in
+    the order of total, broken limits, deviation, cost, until no move of one or two lines helps.
     """
-    return _Walk(task, totals, time.perf_counter() + time_limit_s).run()
+    return _Walk(task, totals, time.perf_counter() + time_limit_s, float(play)).run(first)
 
 
 class _Walk:
-    def __init__(self, task: Task, totals: Sequence[Fraction], deadline: float) -> None:
-        self.placed = task.placed
+    def __init__(self, task: Task, totals: Sequence[Fraction], deadline: float, play_kg: float) -> None:
+        self.placed, self.same_kg = task.placed, max(play_kg, 1e-9)
         self.size = len(self.placed)
         self.deadline = deadline
         self.step = np.array([float(p.step) for p in self.placed])
@@ -63,8 +67,8 @@ class _Walk:
         moves = np.array(found, dtype=np.int64).reshape(-1, 4)
         return moves[:, 0], moves[:, 1], moves[:, 2], moves[:, 3]
 
-    def run(self) -> tuple[int, ...]:
-        n = self._filled()
+    def run(self, first: Sequence[int] | None = None) -> tuple[int, ...]:
+        n = self._filled() if first is None else np.array(first, dtype=np.int64)
         n = self._descend(n, eager=True)
         n = self._descend(n, eager=False)
         return tuple(int(v) for v in n)
@@ -144,7 +148,7 @@ class _Walk:
 
     def _keys(self, mass: Array, short: Array, deviation: Array, money: Array, eager: bool) -> list[Array]:
         error = np.abs(mass[:, None] - self.totals).min(axis=1)
-        error[error < 1e-9] = 0.0
+        error[error < self.same_kg] = 0.0
         count = (short < 0.0).sum(axis=0).astype(float)
         keys = [error, count, deviation, money]
         if eager:
