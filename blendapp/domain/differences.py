@@ -73,6 +73,8 @@ def _text(value: Any) -> str:
         return ", ".join(_text(part) for part in value)
     if isinstance(value, Enum):
         return _(str(value.value))
+    if isinstance(value, bool):
+        return _("yes") if value else _("no")
     return "" if value is None else str(value)
 
 
@@ -170,9 +172,10 @@ def _whole_limit(snapshot: Snapshot, limit: Limit, came: bool) -> Iterator[Diffe
 
 # -- ingredients, prices, composition
 
-# What an answer and its sheet do not rest on; the dry matter is told among the composition.
+# What an answer and its sheet do not rest on; the dry matter is told among the composition, and another supplier's
+# price among the prices.
 _LEFT = frozenset({"id", "dry_matter_percent", "basis", "code", "scale_id", "stock_kg", "density_kg_per_l", "bushel_lb",
-                   "note"})
+                   "note", "supplier_id"})
 
 
 def _admitted(before: Snapshot, after: Snapshot) -> Iterator[Difference]:

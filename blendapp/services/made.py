@@ -92,7 +92,8 @@ def take_from_formula(mill: Mill, ingredient_id: int, on: datetime.date) -> Edit
     if made.dry_matter_percent is not None:
         changes += edits.field_changes(mill, ingredient, dry_matter_percent=_rounded(made.dry_matter_percent))
     for nutrient_id, amount in made.as_fed.items():
-        changes += _value(mill, ingredient_id, nutrient_id, amount, source, on)
+        if not _stands(library.value(ingredient_id, nutrient_id), library.nutrient(nutrient_id).unit, amount):
+            changes += _value(mill, ingredient_id, nutrient_id, amount, source, on)
     changes += [
         removed(value) for nutrient_id, value in library.values_of(ingredient_id).items()
         if nutrient_id not in made.as_fed and _was_taken(value)
@@ -211,6 +212,13 @@ def _was_taken(value: Value) -> bool:
     """Whether a value once came from a formula, whatever it was called then."""
     pattern = re.escape(_source_template()).replace(r"\{name\}", ".*").replace(r"\{day\}", r"\d{4}-\d\d-\d\d")
     return value.origin is Origin.ESTIMATED and re.fullmatch(pattern, value.source, re.DOTALL) is not None
+
+
+def _stands(value: Value | None, unit: str, amount: float) -> bool:
+    """Whether a value was taken from a formula before, as it would be now: then it keeps its day, and what was
+    approved with it stands."""
+    return value is not None and _was_taken(value) and (value.amount, value.unit, value.basis) == (
+        _rounded(amount), unit, Basis.AS_FED)
 
 
 def _source_template() -> str:

@@ -111,6 +111,13 @@ def test_an_edit_shows_as_what_it_changes(change: Callable[[Library], Change], r
     assert all(row.area in ENTERED for row in rows)
 
 
+def test_whom_an_ingredient_is_bought_from_is_no_difference_but_what_a_batch_takes_of_it_is() -> None:
+    assert after(edit("ingredient", MAIZE, supplier_id=3)) == ()
+    (opened,) = after(edit("ingredient", MAIZE, opened=True))
+    assert (opened.area, opened.name, opened.detail, opened.before, opened.after) == (
+        Area.ADMITTED, "Maize", "Opened", "no", "yes")
+
+
 def test_a_limit_removed_and_entered_again_alike_is_no_difference() -> None:
     def again(held: Library) -> Change:
         return Change(None, replace(library().limit(1), id=99))

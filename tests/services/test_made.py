@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import datetime
 from collections.abc import Callable
 
 import pytest
@@ -65,6 +66,16 @@ def test_composition_dry_matter_and_price_are_those_of_the_mix_in_one_undo(mill:
     mill.undo()
     assert held(mill) == {}
     assert mill.library.price_per_t(PREMIX, TODAY) is None
+
+
+def test_what_stands_already_is_not_taken_again_and_keeps_its_day(mill: Mill) -> None:
+    made.take_from_formula(mill, PREMIX, TODAY)
+    later = TODAY + datetime.timedelta(days=30)
+    assert made.take_from_formula(mill, PREMIX, later).changes == ()
+    edits.set_value(mill, 1, 2, 40.0)
+    made.take_from_formula(mill, PREMIX, later)
+    days = {mill.library.nutrient(key).name: value.date for key, value in mill.library.values_of(PREMIX).items()}
+    assert days == {"Calcium": later, "Protein": TODAY, "Ash": TODAY}
 
 
 def test_a_nutrient_that_one_part_has_no_value_of_stays_unknown_and_is_said(mill: Mill) -> None:
