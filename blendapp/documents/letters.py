@@ -20,6 +20,7 @@ ITALIC = "PageItalic"
 _FILES = {REGULAR: "IBMPlexSans-Regular.ttf", BOLD: "IBMPlexSans-SemiBold.ttf", ITALIC: "IBMPlexSans-Italic.ttf"}
 # Every run of white space but those that keep a figure and its unit on one line.
 _SPACES = re.compile("[^\\S\u00a0\u202f]+")
+_UNITS = frozenset(("%", "kg", "g", "mg", "t", "l", "lb"))
 _FOLDER = Path(__file__).resolve().parent.parent / "fonts"
 
 
@@ -57,7 +58,7 @@ def wrapped(text: str, font: str, size: float, width: float) -> list[str]:
     """The text in lines no wider than `width` points; a word wider than that is cut. At least one line."""
     lines: list[str] = []
     line = ""
-    for word in plain(text).split(" "):
+    for word in _words(plain(text)):
         candidate = f"{line} {word}" if line else word
         if width_of(candidate, font, size) <= width:
             line = candidate
@@ -70,6 +71,17 @@ def wrapped(text: str, font: str, size: float, width: float) -> list[str]:
             word = word[cut:]
         line = word
     return [*lines, line]
+
+
+def _words(text: str) -> list[str]:
+    """The words of a plain text; a unit stays with its figure, as in "Choline chloride 60 %"."""
+    words: list[str] = []
+    for word in text.split(" "):
+        if word in _UNITS and words and words[-1][-1:].isdigit():
+            words[-1] += f" {word}"
+        else:
+            words.append(word)
+    return words
 
 
 def _break(word: str, most: int) -> int:

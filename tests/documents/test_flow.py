@@ -51,6 +51,13 @@ def test_a_figure_stays_with_its_unit() -> None:
         assert ("20.8" in line) == ("%" in line)
 
 
+def test_a_typed_figure_stays_with_its_unit_and_keeps_its_own_space() -> None:
+    lines = letters.wrapped("Sunflower meal 36 % protein, in bags of 25 kg each", REGULAR, 10, 75)
+    assert len(lines) > 3
+    assert any("36 %" in line for line in lines)
+    assert any("25 kg" in line for line in lines)
+
+
 def test_invisible_signs_go_and_a_letter_that_the_font_lacks_shows_its_code() -> None:
     assert letters.plain("  a\tb\u200b\u00adc \n 大 \x07") == "a bc ‹5927›"
 
