@@ -9,7 +9,7 @@ from pathlib import Path
 from blendapp.domain.composition_rows import CompositionReading, CompositionRow
 from blendapp.domain.ingredients import Basis
 from blendapp.domain.library import Library
-from blendapp.domain.list_rows import Answer, ColumnRole, Fate, SourceColumn, SourceSheet, SourceTable, source_of
+from blendapp.domain.list_rows import Answer, ColumnRole, Fate, SourceColumn, SourceSheet, SourceTable
 from blendapp.domain.wording import _
 from blendapp.exchange.composition_cells import result_sign
 from blendapp.exchange.composition_checks import (
@@ -44,8 +44,8 @@ def read_composition_list(
 
     One row is one sample; each row that is not blank has one entry, in the order of the file.
     """
-    opened = open_list(path, sheet)
-    source = source_of(source or opened.file.name)
+    opened = open_list(path, sheet, source)
+    source = opened.source
     answered = Answers(library, source, answers, today)
     sender = read_sender(answered, library)
     finders = Finders(

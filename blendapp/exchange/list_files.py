@@ -5,11 +5,13 @@ from __future__ import annotations
 from dataclasses import dataclass
 from pathlib import Path
 
+from blendapp.domain.list_rows import source_of
 from blendapp.domain.names import fold
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.wording import _
 from blendapp.exchange.delimited import read_delimited
 from blendapp.exchange.files import Format, SourceFile, open_source
+from blendapp.exchange.list_source import find_source
 from blendapp.exchange.spreadsheets import read_spreadsheet
 from blendapp.exchange.suggestions import did_you_mean
 from blendapp.exchange.tables import RawTable
@@ -17,15 +19,19 @@ from blendapp.exchange.tables import RawTable
 
 @dataclass(frozen=True)
 class OpenedList:
-    """tables: the sheets to be read, in the order of the file. notes: about the file as a whole."""
+    """tables: the sheets to be read, in the order of the file. notes: about the file as a whole.
+
+    source: whom its answers are remembered for.
+    """
 
     file: SourceFile
     tables: tuple[RawTable, ...]
     notes: tuple[str, ...]
+    source: str
 
 
-def open_list(path: str | Path, sheet: str | None) -> OpenedList:
-    """Opens a list. sheet: None takes every visible sheet.
+def open_list(path: str | Path, sheet: str | None, source: str = "") -> OpenedList:
+    """Opens a list. sheet: None takes every visible sheet. source: whom it is from, "" for list_source.find_source.
 
     Raises Refused with one sentence for a file that cannot be read, or that has no sheet of that name.
     """
@@ -34,7 +40,10 @@ def open_list(path: str | Path, sheet: str | None) -> OpenedList:
     tables = _chosen(_tables(file), sheet, file.name, notes)
     if file.format in (Format.XLS, Format.XLSB, Format.ODS):
         notes.append(_("What is hidden, struck through or in error cannot be told in this file; check it by eye."))
-    return OpenedList(file, tuple(tables), tuple(notes))
+    if source:
+        return OpenedList(file, tuple(tables), tuple(notes), source_of(source))
+    source, note = find_source(Path(path), tables)
+    return OpenedList(file, tuple(tables), (*notes, *filter(None, [note])), source)
 
 
 def _tables(source: SourceFile) -> list[RawTable]:

@@ -7,7 +7,7 @@ from collections.abc import Iterator, Sequence
 from pathlib import Path
 
 from blendapp.domain.library import Library
-from blendapp.domain.list_rows import Answer, Fate, SourceSheet, source_of
+from blendapp.domain.list_rows import Answer, Fate, SourceSheet
 from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.wording import _
 from blendapp.exchange.list_answers import Answers
@@ -35,11 +35,11 @@ def read_price_list(
 
     sheet: None reads every visible sheet. Each row that is not blank has one entry, in the order of the file.
     answers: those given for this list; those remembered for the source count as well. source: whom the list is from,
-    "" as the name of the file tells.
+    "" as its file name, its title or its folder tell.
     Raises Refused with one sentence for a file that cannot be read, or that has no sheet of that name.
     """
-    opened = open_list(path, sheet)
-    source = source_of(source or opened.file.name)
+    opened = open_list(path, sheet, source)
+    source = opened.source
     answered = Answers(library, source, answers, today)
     sender = read_sender(answered, library)
     if sender.site_id is not None:
