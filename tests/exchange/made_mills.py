@@ -117,7 +117,8 @@ def _keep_some(draw: st.DrawFn, library: Library, put: Callable[[Any], None]) ->
     for ingredient in library.ingredients:
         for name in draw(unique_names(0, 2)):
             lot = Lot(len(library.records["lot"]) + 1, ingredient.id, name, draw(maybe(dates)),
-                      draw(maybe(st.floats(1e-3, 1e6))), draw(st.sampled_from(suppliers)), draw(texts))
+                      draw(maybe(st.floats(1e-3, 1e6))), draw(st.sampled_from(suppliers)), draw(texts),
+                      dry_matter_percent=draw(maybe(st.floats(0, 100))))
             put(lot)
             for nutrient in library.nutrients:
                 for _sample in range(draw(st.integers(0, 2))):

@@ -40,8 +40,8 @@ def equipped() -> dict[str, Rows]:
     ]
     sheets["Mixers"] = [["Mixer", "Greatest kg", "Site"], ["Drum", 2000, "South"]]
     sheets["Lots"] = [
-        ["Ingredient", "Lot", "Received", "Mass kg", "Supplier", "Note"],
-        ["Maize", "M-7", DAY, 28000, "Vela grain", "wet"], ["Soybean meal", "M-7", None, None, None, None],
+        ["Ingredient", "Lot", "Received", "Mass kg", "Supplier", "Note", "Dry matter %"],
+        ["Maize", "M-7", DAY, 28000, "Vela grain", "wet", 84.5], ["Soybean meal", "M-7", *[None] * 5],
     ]
     sheets["Lot values"] = [
         ["Ingredient", "Lot", "Nutrient", "Value", "Unit", "Basis", "Source", "Date"],
@@ -76,6 +76,7 @@ def test_every_sheet_of_the_plant_is_read(mill: Reader) -> None:
     assert library.all("mixer")[0].site_id == 2
     lot = library.all("lot")[0]
     assert (lot.ingredient_id, lot.received, lot.mass_kg, lot.supplier_id, lot.note) == (1, DAY, 28000, 1, "wet")
+    assert lot.dry_matter_percent == 84.5
     assert [(v.lot_id, v.amount, v.unit, v.basis, v.source, v.date) for v in library.all("lot_value")] == [
         (1, 84, "g/kg", "as fed", "own laboratory", DAY), (1, 9.6, "%", "dry matter", "", None),
     ]
@@ -230,6 +231,7 @@ def test_a_lot_that_a_workbook_cannot_tell_from_another_is_left_out_and_said(mil
         ("Lots", 2, "Ingredient", "Mais", "There is no ingredient “Mais”; add it to the sheet Ingredients. Did you"),
         ("Lots", 2, "Lot", None, "A name is needed here."),
         ("Lots", 2, "Supplier", "Vela Grian", "There is no supplier “Vela Grian”; add it to the sheet Suppliers. Did"),
+        ("Lots", 2, "Dry matter %", 101, "Dry matter % must lie between 0 and 100 %; 101 does not."),
         ("Lots", 2, "Received", "soon", "“soon” is no date; write it like 2024-03-31."),
         ("Lot values", 2, "Lot", "M-8", "There is no lot “M-8” of Maize; add it to the sheet Lots. Did you mean “M-7”"),
         ("Lot values", 2, "Unit", "MJ/kg", "MJ/kg does not measure Crude protein"),
