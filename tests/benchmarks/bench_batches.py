@@ -1,10 +1,10 @@
 """Time and quality of whole batches: 500 made ones of 25 lines, each rechecked and put to an independent solver.
 
-Run: python -m tests.benchmarks.bench_batches [BATCHES]. The time allowed is the program's own, 1.5 s a batch. Half of the
-batches have scales alone, in three kinds by how many of their 20 limits stand at the very value of the mix: 4, 8 and 12.
-The other half have it all: two liquids on meters, a premix opened into its parts, two of which are lines already, and
-mostly rework, made through the road that a mill's batches take. Last the whole job of such a batch is timed, from the
-answer to the batch with its cautions, as the window asks for it.
+Run: python -m tests.benchmarks.bench_batches [BATCHES]. The time allowed is the program's own, 1.5 s a batch. Half of
+the batches have scales alone, in three kinds by how many of their 20 limits stand at the very value of the mix: 4, 8
+and 12. The other half have it all: two liquids on meters, a premix opened into its parts, two of which are lines
+already, and mostly rework, made through the road that a mill's batches take. Last the whole job of such a batch is
+timed, from what goes into it to the batch held against its limits.
 """
 
 from __future__ import annotations
