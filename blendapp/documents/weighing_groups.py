@@ -7,7 +7,6 @@ import itertools
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from blendapp.documents import letters
 from blendapp.documents.flow import Style
 from blendapp.documents.letters import BOLD
 from blendapp.documents.paper import MM
@@ -213,12 +212,12 @@ class Layout:
 
     def _beside_column(self, group: Group) -> Column:
         if self.has_running(group):
-            title, texts = _("Running {unit}").format(unit=group.unit), running(group)
+            title, cells = _("Running {unit}").format(unit=group.unit), [[(text, BESIDE)] for text in running(group)]
         else:
             unit = group.unit if group.by_volume else group.own_unit
             title = _("That is {unit}").format(unit=unit)
-            texts = [cell[0][0] for cell in (self._beside(group, line, "") for line in group.lines)]
-        widest = max(BESIDE.width(letters.plain(text)) for text in texts)
+            cells = [self._beside(group, line, "") for line in group.lines]
+        widest = max(style.width(text) for cell in cells for text, style in cell)
         return Column(title, max(widest, 46.0) + 2, right=True)
 
 
