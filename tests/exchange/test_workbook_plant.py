@@ -7,16 +7,20 @@ from pathlib import Path
 from typing import Any
 
 import pytest
+from hypothesis import HealthCheck, given, settings
+from hypothesis import strategies as st
 
+from blendapp.domain.checks import faults
 from blendapp.domain.library import Library
 from blendapp.domain.mills import MillInfo
 from blendapp.domain.plant import Bin, Scale, Site
-from blendapp.domain.problems import Problems
+from blendapp.domain.problems import Problems, Refused
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import Change
+from blendapp.exchange import read_workbook
 from blendapp.exchange.workbook_tables import tables_of
 from tests.exchange.altered_mill import Reader, said
-from tests.exchange.made_files import Rows, small_mill
+from tests.exchange.made_files import Rows, small_mill, write_sheets
 from tests.exchange.test_workbook_faults import refused, set_cell
 from tests.mills import TODAY
 
@@ -297,3 +301,32 @@ def test_an_unknown_item_of_the_mill_is_left_alone_with_the_one_that_was_meant(m
     assert mill.read().mill.sheet_mass == "kg"
     assert said(mill, "Did you mean “Sheets in”")
     assert isinstance(mill.library, Library)
+
+
+_PLANT = ("Mill", "Sites", "Suppliers", "Scales", "Mixers", "Lots", "Lot values", "Bins", "Steps")
+_ANYTHING = st.one_of(
+    st.none(), st.booleans(), st.integers(-5, 10**6), st.floats(allow_nan=False, allow_infinity=False),
+    st.sampled_from(["", " ", "0", "yes", "North", "Maize", "M-7", "1", "2", "Layer", "2026-02-30", "=1+1", "9" * 400]),
+    st.text(st.characters(codec="utf-8", exclude_categories=("Cs", "Cc")), max_size=8), st.dates(),
+)
+
+
+@given(st.data())
+@settings(max_examples=60, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
+def test_whatever_stands_in_cells_of_the_plant_is_read_or_refused_at_its_place(
+    tmp_path: Path, data: st.DataObject
+) -> None:
+    sheets = equipped()
+    for _cell in range(data.draw(st.integers(1, 4))):
+        rows = sheets[data.draw(st.sampled_from(_PLANT))]
+        row = rows[data.draw(st.integers(1, len(rows) - 1))]
+        row[data.draw(st.integers(0, len(row) - 1))] = data.draw(_ANYTHING)
+    path = write_sheets(tmp_path / "any.xlsx", sheets)
+    library, problems = Library(), []
+    try:
+        library.apply(read_workbook(path, library, {}, TODAY).changes)
+    except Refused as refusal:
+        problems = refusal.problems
+    assert all(problem.place.sheet and problem.place.row for problem in problems)
+    assert not [fault for kind in library.records for one in library.all(kind) for fault in faults(one, library)]
+    assert problems or read_workbook(path, library, {}, TODAY).changes == []
