@@ -7,12 +7,12 @@ from collections.abc import Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from blendapp.domain.composition_rows import CompositionReading
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import ListReading, source_of
 from blendapp.domain.mills import ListAbout, PriceList
 from blendapp.domain.price_rows import PriceListReading
-from blendapp.domain.problems import Refused
-from blendapp.domain.wording import _
+from blendapp.services.composition import apply_composition_list
 from blendapp.services.mill import Edit, Mill
 from blendapp.services.prices import apply_price_list
 
@@ -32,14 +32,17 @@ def read_list(
         from blendapp.exchange import read_price_list
 
         return read_price_list(path, library, on, None, answers, source)
-    raise Refused(_("Lists of analyses cannot be read yet."))
+    from blendapp.exchange import read_composition_list
+
+    return read_composition_list(path, library, on, None, answers, source)
 
 
 def apply_list(mill: Mill, reading: ListReading, on: datetime.date) -> Edit:
     """Record every accepted row of a reading, its answers and the list itself as one undo. Raises Refused."""
     if isinstance(reading, PriceListReading):
         return apply_price_list(mill, reading, on)
-    raise Refused(_("Lists of analyses cannot be taken yet."))
+    assert isinstance(reading, CompositionReading)
+    return apply_composition_list(mill, reading, on)
 
 
 def likely_about(library: Library, file_name: str) -> ListAbout:

@@ -1,4 +1,4 @@
-"""How lists come in: chosen, dropped, or the latest of their folder; the same broker's list takes two actions a week."""
+"""How lists come in: chosen, dropped, or the latest of their folder; a known list takes two actions a week."""
 
 from __future__ import annotations
 

@@ -178,7 +178,7 @@ def test_only_the_cells_in_view_of_a_long_wide_list_are_made_and_painted(
     painted: list[tuple[int, int]] = []
     text = source.rows.text
     monkeypatch.setattr(source.rows, "text", lambda *place: (painted.append(place), text(*place))[1])
-    source.rows.show(sheet, "another file", {row: Fate.ACCEPTED for row in range(1, 5001)}, frozenset())
+    source.rows.show(sheet, "another file", dict.fromkeys(range(1, 5001), Fate.ACCEPTED), frozenset())
     QApplication.processEvents()
     source.grab()
     assert source.rows.rowCount() == 5000

@@ -138,7 +138,7 @@ def _take_words(asked: Asked) -> str:
         Asked.HIDDEN: lambda: _("It counts: take it"), Asked.STRUCK: lambda: _("It counts: take it"),
         Asked.HIDDEN_COLUMN: lambda: _("The column counts"),
         Asked.CENTS: lambda: _("They are hundredths: divide by 100"),
-        Asked.TWIN: lambda: _("This one holds"), Asked.CHANGE: lambda: _("The new price is right"),
+        Asked.TWIN: lambda: _("This one holds"), Asked.CHANGE: lambda: _("It is right: take it"),
         Asked.EXPIRED: lambda: _("Take it all the same"), Asked.TERMS: lambda: _("Take it with its new terms"),
         Asked.PRICE: lambda: _("Take the price as it is"),
     }

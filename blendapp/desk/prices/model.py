@@ -19,9 +19,9 @@ class PriceRows(UnderstoodRows):
         assert isinstance(reading, PriceListReading)
         per_t = _("{currency}/t").format(currency=reading.currency)
         return [
-            Heading("fate", "", 76), Heading("place", _("row"), 46, True), Heading("ingredient", _("Ingredient"), 170),
-            Heading("entered", _("as listed"), 104, True), Heading("price", per_t, 82, True),
-            Heading("old", _("was"), 76, True), Heading("change", _("change"), 70, True),
+            Heading("fate", "", 72), Heading("place", _("row"), 44, True), Heading("ingredient", _("Ingredient"), 170),
+            Heading("entered", _("as listed"), 98, True), Heading("price", per_t, 78, True),
+            Heading("old", _("was"), 72, True), Heading("change", _("change"), 70, True),
             Heading("percent", "%", 58, True),
         ]
 
@@ -43,7 +43,8 @@ class PriceRows(UnderstoodRows):
     def detail(self, row: ListRow, line: int) -> str:
         assert isinstance(row, PriceRow)
         parts = []
-        if row.ingredient and row.source_name and fold(row.ingredient) != fold(row.source_name):
+        other_name = bool(row.ingredient) and fold(row.ingredient or "") != fold(row.source_name)
+        if other_name and row.source_name and row.source_name not in row.reason:
             parts.append(_("“{name}” in the list").format(name=row.source_name))
         first, last = row.valid_from, row.valid_to
         if first is not None:

@@ -26,13 +26,15 @@ from blendapp.desk.prices.asking import (
     place_words,
     row_words,
 )
-from blendapp.desk.prices.choices import ChoiceList
+from blendapp.desk.prices.choices import LINE_PX, ChoiceList
 from blendapp.desk.shell.zone import Elided
 from blendapp.desk.theme import GAP_PX, text_font
 from blendapp.domain.library import Library
 from blendapp.domain.wording import _, plural
 
-MOST_OTHERS = 4
+MOST_OTHERS, FEW_OTHERS, LOW_PX = 4, 2, 620
+# Further questions than these are counted, and come up as those before them are answered.
+MOST_LISTED = 60
 
 
 class QuestionPanel(QWidget):
@@ -70,6 +72,8 @@ class QuestionPanel(QWidget):
         self.fault = QLabel()
         self.fault.setWordWrap(True)
         self.fault.setFont(text_font(strong=True))
+        self.later = QLabel(_("Page Down leaves it for later and goes to the next:"))
+        self.later.setObjectName("quiet")
         self.others = ChoiceList()
         self.others.setAccessibleName(_("Other questions"))
         self.last = Elided()
@@ -82,7 +86,7 @@ class QuestionPanel(QWidget):
         column.setContentsMargins(0, 0, 0, GAP_PX)
         column.setSpacing(6)
         column.addLayout(head)
-        for part in (self.text, self.rate, self.field, self.choices, self.fault, self.kept, self.others, self.last):
+        for part in (self.text, self.rate, self.field, self.choices, self.fault, self.kept, self.later, self.others, self.last):
             column.addWidget(part)
         self.choices.clicked.connect(self._clicked)
         self.others.clicked.connect(self._go_to_other)
@@ -171,9 +175,14 @@ class QuestionPanel(QWidget):
         others = self.open[self.at + 1:] + self.open[: self.at]
         self.others.show_choices(
             [Choice("", other.question.text, row_words(other.row, self.several_sheets), is_aside=True)
-             for other in others], numbered=False)
-        self.others.setFixedHeight(min(len(others), MOST_OTHERS) * 28 + 2)
+             for other in others[:MOST_LISTED]], numbered=False)
+        self.others.setFixedHeight(min(len(others), self._room_for_others()) * LINE_PX + 2)
         self.others.clearSelection()
+        self.later.setVisible(bool(others))
+
+    def _room_for_others(self) -> int:
+        page = self.parentWidget()
+        return FEW_OTHERS if page is not None and page.height() < LOW_PX else MOST_OTHERS
 
     # -- answering
 

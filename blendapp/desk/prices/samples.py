@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+from blendapp.desk.prices.asking import answer_words
 from blendapp.desk.prices.understood import UnderstoodRows
 from blendapp.desk.table.grid import Heading
 from blendapp.desk.table.look import EMPTY, Look, fitting_decimals, number_look
 from blendapp.domain.composition_rows import CompositionRow
 from blendapp.domain.ingredients import Basis
 from blendapp.domain.list_rows import Fate, ListReading, ListRow
+from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
 from blendapp.domain.notation import notation
 from blendapp.domain.wording import _
@@ -16,9 +18,11 @@ from blendapp.domain.wording import _
 class SampleRows(UnderstoodRows):
     """A line a value: sample and day stand on the first line of their row."""
 
+    stretch = "nutrient"
+
     def make_headings(self, reading: ListReading) -> list[Heading]:
         return [
-            Heading("fate", "", 76), Heading("place", _("row"), 46, True), Heading("ingredient", _("Ingredient"), 150),
+            Heading("fate", "", 72), Heading("place", _("row"), 44, True), Heading("ingredient", _("Ingredient"), 130),
             Heading("sample", _("sample"), 84), Heading("sampled", _("day"), 88),
             Heading("nutrient", _("nutrient"), 130), Heading("value", _("value"), 74, True),
             Heading("old", _("was"), 70, True), Heading("change", _("change"), 70, True),
@@ -43,8 +47,9 @@ class SampleRows(UnderstoodRows):
             return EMPTY
         value = row.values[line]
         if key == "nutrient":
-            unit = value.unit if value.basis is Basis.AS_FED else _("{unit} of dry matter").format(unit=value.unit)
-            return Look(text=value.nutrient, unit=unit, quiet=quiet, hint=f"{value.nutrient}, {unit}")
+            unit = value.unit if value.basis is Basis.AS_FED else _("{unit} DM").format(unit=value.unit)
+            return Look(text=value.nutrient, unit=unit, quiet=quiet, hint=_("{nutrient}, {unit} {basis}").format(
+                nutrient=value.nutrient, unit=value.unit, basis=answer_words(Asked.BASIS, value.basis.value)))
         decimals = max(fitting_decimals(value.amount, 1, 4), 1)
         if key == "change":
             if value.old is None:
@@ -61,6 +66,7 @@ class SampleRows(UnderstoodRows):
         if line:
             return ""
         listed = ""
-        if row.ingredient and row.source_name and fold(row.ingredient) != fold(row.source_name):
+        other_name = bool(row.ingredient) and fold(row.ingredient or "") != fold(row.source_name)
+        if other_name and row.source_name and row.source_name not in row.reason:
             listed = _("“{name}” in the list").format(name=row.source_name)
         return " ".join(part for part in (listed + "." if listed and row.reason else listed, row.reason) if part)

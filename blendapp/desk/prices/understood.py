@@ -22,8 +22,10 @@ def fate_word(fate: Fate) -> str:
 class UnderstoodRows(Grid):
     """A line, or several, for each source row. only: the fate that is shown, None for all but rows left alone.
 
-    A subclass gives make_headings(reading), lines_of(row), what a line shows, and the sentence below it.
+    stretch: the column that takes the width that is left. A subclass gives make_headings(reading), lines_of(row), what a line shows, and the sentence below it.
     """
+
+    stretch = "ingredient"
 
     def __init__(self, parent: Any = None) -> None:
         super().__init__(parent)
@@ -75,6 +77,10 @@ class UnderstoodRows(Grid):
     def detail_of(self, owner: int) -> str:
         """What stands below a line of the table."""
         return self.detail(*self._lines[owner])
+
+    def begins_row(self, owner: int) -> bool:
+        """Whether a line is the first of its source row; so is what lies below the last line."""
+        return owner >= len(self._lines) or self._lines[owner][1] == 0
 
     def make_look(self, owner: int, key: str) -> Look:
         if owner >= len(self._lines):

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+
 from PySide6.QtCore import QRect, QRectF, Qt, QTimer
 from PySide6.QtGui import QFontMetrics, QPainter, QPaintEvent
 from PySide6.QtWidgets import QWidget
@@ -12,10 +14,10 @@ from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import ROW_PX, text_font, tokens
 
 _WRAP = int(Qt.TextFlag.TextWordWrap) | int(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignTop)
-_INSET_PX = 128
+_INSET_PX, _MOST_MEASURED = 122, 500
 # Columns that give way where there is no room, the first first.
 _GIVE_WAY = ("percent", "sampled", "sample")
-_STRETCH, _LEAST_PX = "ingredient", 110
+_LEAST_PX, _FURTHER_PX = 110, 25
 
 
 class UnderstoodTable(DeskTable):
@@ -34,7 +36,7 @@ class UnderstoodTable(DeskTable):
         """Share the width out, and give each line the height that its sentence needs."""
         model = self.understood
         width = self.viewport().width()
-        widths = {heading.key: heading.width for heading in model.headings if heading.key != _STRETCH}
+        widths = {heading.key: heading.width for heading in model.headings if heading.key != model.stretch}
         spare = width - sum(widths.values())
         for key in _GIVE_WAY:
             column = model.column_of(key)
@@ -42,20 +44,25 @@ class UnderstoodTable(DeskTable):
                 hidden = spare < _LEAST_PX + 30
                 self.setColumnHidden(column, hidden)
                 spare += widths[key] if hidden else 0
-        column = model.column_of(_STRETCH)
-        if column is not None and not self.has_own_width(_STRETCH):
+        column = model.column_of(model.stretch)
+        if column is not None and not self.has_own_width(model.stretch):
             self.setColumnWidth(column, max(spare, _LEAST_PX))
         metrics = QFontMetrics(text_font())
         room, line = max(width - _INSET_PX - PAD_PX, 100), metrics.height()
+        # In a long list the letters are counted; measuring each sentence would hold the window up.
+        exact, letter = model.rowCount() <= _MOST_MEASURED, metrics.averageCharWidth() * 0.95
         head = self.verticalHeader()
         head.blockSignals(True)
         for row, owner in enumerate(model.owners):
             text = model.detail_of(owner)
-            height = ROW_PX
+            height = ROW_PX if model.begins_row(owner) else _FURTHER_PX
             if text:
-                # Most fit on one line, which is quicker to tell than where words break.
-                fits = metrics.horizontalAdvance(text) < room
-                tall = line if fits else metrics.boundingRect(QRect(0, 0, room, 10000), _WRAP, text).height()
+                if not exact:
+                    tall = line * math.ceil(len(text) * letter / room)
+                elif metrics.horizontalAdvance(text) < room:
+                    tall = line
+                else:
+                    tall = metrics.boundingRect(QRect(0, 0, room, 10000), _WRAP, text).height()
                 height += tall + 2
             if head.sectionSize(row) != height:
                 head.resizeSection(row, height)
@@ -78,4 +85,5 @@ class UnderstoodTable(DeskTable):
                 painter.setPen(look.colour("quiet"))
                 box = QRectF(_INSET_PX, top + ROW_PX - 5, width - _INSET_PX - PAD_PX, tall - ROW_PX + 6)
                 painter.drawText(box, _WRAP, text)
-            painter.fillRect(QRectF(0, top + tall - 1, width, 1), look.colour("hairline"))
+            if model.begins_row(model.owners[row] + 1):
+                painter.fillRect(QRectF(0, top + tall - 1, width, 1), look.colour("hairline"))
