@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-COMMANDS = ("new", "formulate", "prices", "sheet", "export")
+COMMANDS = ("new", "formulate", "prices", "composition", "lists", "sheet", "export")
 
 
 def is_command(arguments: Sequence[str]) -> bool:

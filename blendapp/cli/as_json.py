@@ -9,7 +9,7 @@ from typing import Any
 
 from blendapp.domain.batches import Batch
 from blendapp.domain.formulas import Amounts
-from blendapp.domain.price_rows import PriceListReading
+from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.results import Conflict, IngredientResult, LimitResult, Result
 
 
@@ -108,22 +108,23 @@ def _conflict(conflict: Conflict) -> dict[str, Any]:
 def prices(reading: PriceListReading, applied: bool) -> dict[str, Any]:
     return {
         "currency": reading.currency,
-        "rows": [
-            {
-                "sheet": row.sheet or None,
-                "row": row.row,
-                "fate": str(row.fate),
-                "reason": row.reason or None,
-                "source_name": row.source_name or None,
-                "ingredient": row.ingredient,
-                "price_per_t": row.price_per_t,
-                "unit": row.unit or None,
-                "valid_from": None if row.valid_from is None else row.valid_from.isoformat(),
-                "old_price_per_t": row.old_price_per_t,
-            }
-            for row in reading.rows
-        ],
+        "rows": [price_row(row) for row in reading.rows],
         "applied": applied,
+    }
+
+
+def price_row(row: PriceRow) -> dict[str, Any]:
+    return {
+        "sheet": row.sheet or None,
+        "row": row.row,
+        "fate": str(row.fate),
+        "reason": row.reason or None,
+        "source_name": row.source_name or None,
+        "ingredient": row.ingredient,
+        "price_per_t": row.price_per_t,
+        "unit": row.unit or None,
+        "valid_from": None if row.valid_from is None else row.valid_from.isoformat(),
+        "old_price_per_t": row.old_price_per_t,
     }
 
 

@@ -8,7 +8,7 @@ from blendapp.domain.figures import write_measure, write_shadow_price
 from blendapp.domain.formulas import Amounts
 from blendapp.domain.list_rows import Fate
 from blendapp.domain.notation import notation
-from blendapp.domain.price_rows import PriceListReading
+from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.results import Conflict, LimitResult, Result, Side
 from blendapp.domain.wording import _
 
@@ -152,18 +152,23 @@ def _side(one: LimitResult, side: str, value: float, costs: bool) -> str:
 
 def prices(reading: PriceListReading, applied: bool) -> str:
     """Every row with its fate, and the counts."""
+    lines = price_rows(reading.rows, reading.currency)
+    lines += [f"  {note}" for note in reading.notes]
+    counts = ", ".join(f"{_(fate)} {reading.count(fate)}" for fate in Fate)
+    lines += ["", f"  {counts}. " + (_("Recorded.") if applied else _("Nothing recorded."))]
+    return "\n".join(lines)
+
+
+def price_rows(listed: Iterable[PriceRow], currency: str) -> list[str]:
+    """A table of the rows of a price list."""
     write = notation().write
     rows = [
         (
             row.sheet, str(row.row), _(row.fate), row.source_name, row.ingredient or "",
             write(row.price_per_t, 2), write(row.old_price_per_t, 2), row.reason,
         )
-        for row in reading.rows
+        for row in listed
     ]
-    money = f"{reading.currency}/t"
+    money = f"{currency}/t"
     heads = (_("sheet"), _("row"), _("fate"), _("name in the list"), _("ingredient"), money, _("was"), _("reason"))
-    lines = table(heads, rows, (False, True, False, False, False, True, True, False))
-    lines += [f"  {note}" for note in reading.notes]
-    counts = ", ".join(f"{_(fate)} {reading.count(fate)}" for fate in Fate)
-    lines += ["", f"  {counts}. " + (_("Recorded.") if applied else _("Nothing recorded."))]
-    return "\n".join(lines)
+    return table(heads, rows, (False, True, False, False, False, True, True, False))

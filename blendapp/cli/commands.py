@@ -10,7 +10,7 @@ from collections.abc import Callable, Sequence
 from dataclasses import replace
 from pathlib import Path
 
-from blendapp.cli import as_json, as_text, sheet_text
+from blendapp.cli import as_json, as_text, lists, sheet_text
 from blendapp.cli.parser import CallFault, make_parser
 from blendapp.domain.cautions import general_caution
 from blendapp.domain.list_rows import Fate
@@ -102,7 +102,8 @@ def _prices(given: argparse.Namespace) -> int:
             raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
         if given.effect is not None:
             _refuse_effect(given)
-        reading = read_price_list(mill, given.list, today, given.sheet)
+        answers = lists.sender_answers(mill.library, given)
+        reading = read_price_list(mill, given.list, today, given.sheet, answers, given.source)
         if given.effect is not None:
             # Before anything is recorded, so that a file that cannot be written leaves the mill as it was.
             moved = effect_of(mill.library, reading, today, mill.answers.view())
@@ -119,6 +120,51 @@ def _prices(given: argparse.Namespace) -> int:
             _print("  " + _("{summary}; the table is in {file}.").format(
                 summary=summary(moved).rstrip("."), file=given.effect))
     return NO if reading.count(Fate.QUESTION) or reading.count(Fate.REFUSED) else DONE
+
+
+def _composition(given: argparse.Namespace) -> int:
+    from blendapp.services.approved import outside_their_limits
+    from blendapp.services.composition import apply_composition_list, read_composition_list
+
+    today = datetime.date.today()
+    with _Open(given.mill) as mill:
+        if given.apply and not mill.writable:
+            raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
+        reading = read_composition_list(mill, given.list, today, given.sheet, source=given.source)
+        applied = bool(given.apply and reading.accepted)
+        if applied:
+            apply_composition_list(mill, reading, today)
+        outside = outside_their_limits(mill, today) if applied and not given.json else []
+        library = mill.library
+    if given.json:
+        _print(as_json.text_of(lists.composition_json(reading, applied)))
+    else:
+        _print(lists.composition_text(reading, applied, library, outside))
+    return NO if reading.count(Fate.QUESTION) or reading.count(Fate.REFUSED) else DONE
+
+
+def _lists(given: argparse.Namespace) -> int:
+    from blendapp.services.lists import applied_lists, open_list, roll_back
+
+    if given.roll_back and given.number is None:
+        raise CallFault(_("blendapp lists: --roll-back needs the number of a list; see blendapp lists MILL."))
+    with _Open(given.mill) as mill:
+        if given.roll_back and not mill.writable:
+            raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
+        rows = [] if given.number is None else open_list(mill, given.number)
+        left = [str(one) for one in roll_back(mill, given.number).oddities] if given.roll_back else []
+        kept = [one for one in applied_lists(mill) if given.number in (None, one.id)]
+        currency = mill.library.mill.currency
+    if given.json:
+        found = {"lists": [lists.kept_json(one) for one in kept], "left": left}
+        if given.number is not None:
+            found["rows"] = lists.list_rows_json(kept[0], rows)
+        _print(as_json.text_of(found))
+    elif given.number is None:
+        _print(lists.lists_text(kept))
+    else:
+        _print("\n".join([lists.list_rows_text(kept[0], rows, currency), *(f"  ! {one}" for one in left)]))
+    return DONE
 
 
 def _refuse_effect(given: argparse.Namespace) -> None:
@@ -192,6 +238,8 @@ _COMMANDS: dict[str, Callable[[argparse.Namespace], int]] = {
     "new": _new,
     "formulate": _formulate,
     "prices": _prices,
+    "composition": _composition,
+    "lists": _lists,
     "sheet": _sheet,
     "export": _export,
 }

@@ -78,7 +78,28 @@ def make_parser() -> argparse.ArgumentParser:
     prices.add_argument("list", metavar="LIST", help=_("a workbook or a delimited text"))
     prices.add_argument("--apply", action="store_true", help=_("record every accepted row"))
     prices.add_argument("--effect", metavar="FILE", help=_("write what the prices do to every formula: .xlsx or .csv"))
-    prices.add_argument("--sheet", metavar="NAME", help=_("read this sheet only; else every visible one"))
+    _of_a_list(prices)
+    prices.add_argument("--supplier", metavar="NAME", help=_("whose prices they are; remembered for the source"))
+    prices.add_argument("--site", metavar="NAME", help=_("for which site they hold; remembered for the source"))
+
+    composition = _command(
+        commands, "composition", _("read a list of analyses and show what becomes of each sample"),
+        "blendapp composition valley.mill laboratory.xlsx --apply",
+    )
+    composition.add_argument("mill", metavar="MILL")
+    composition.add_argument("list", metavar="LIST", help=_("a workbook or a delimited text, one row a sample"))
+    composition.add_argument(
+        "--apply", action="store_true", help=_("record every accepted sample, and their means as the composition")
+    )
+    _of_a_list(composition)
+
+    lists = _command(
+        commands, "lists", _("show the lists that were applied, of prices and of analyses, or one of them"),
+        "blendapp lists valley.mill 7 --roll-back",
+    )
+    lists.add_argument("mill", metavar="MILL")
+    lists.add_argument("number", metavar="NUMBER", nargs="?", type=int, help=_("show the rows of this one"))
+    lists.add_argument("--roll-back", action="store_true", help=_("withdraw what that list brought"))
 
     sheet = _command(
         commands, "sheet", _("make the batches of an order and their sheet"),
@@ -153,6 +174,13 @@ def _of_name(text: str, read: Callable[[str], float]) -> tuple[str, float]:
     if not sign or not name.strip():
         raise argparse.ArgumentTypeError(_("“{text}” names nothing; write it like Fines=2").format(text=text))
     return name.strip(), read(number)
+
+
+def _of_a_list(command: argparse.ArgumentParser) -> None:
+    command.add_argument("--sheet", metavar="NAME", help=_("read this sheet only; else every visible one"))
+    command.add_argument(
+        "--source", default="", metavar="NAME", help=_("whom it is from; else as its name, title or folder tell")
+    )
 
 
 def _command(

@@ -87,6 +87,23 @@ PRICES = {
     "applied": {YES_NO},
 }
 
+COMPOSITION = {
+    "rows": [{
+        "sheet": {TEXT, NULL}, "row": {NUMBER}, "fate": {"accepted", "question", "refused", "ignored"},
+        "reason": {TEXT, NULL}, "source_name": {TEXT, NULL}, "ingredient": {TEXT, NULL}, "sample": {TEXT, NULL},
+        "sampled": {TEXT, NULL},
+        "values": [{"nutrient": {TEXT}, "amount": {NUMBER}, "unit": {TEXT}, "basis": {"as fed", "dry matter"},
+                    "old": FIGURE}],
+    }],
+    "applied": {YES_NO},
+}
+
+LIST = {
+    "number": {NUMBER}, "about": {"prices", "composition"}, "file": {TEXT}, "digest": {TEXT}, "source": {TEXT, NULL},
+    "applied": {TEXT}, "rows": {NUMBER}, "accepted": {NUMBER}, "withdrawn": {TEXT, NULL},
+}
+LISTS = {"lists": [LIST], "left": [{TEXT}]}
+
 SHEET = {
     "formula": {TEXT}, "version": {TEXT}, "order_kg": {NUMBER}, "batches": {NUMBER}, "batch_kg": {NUMBER},
     "lines": [{"ingredient": {TEXT}, "scale": {TEXT, NULL}, "step_kg": {NUMBER}, "share_kg": {NUMBER},
