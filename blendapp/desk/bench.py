@@ -12,6 +12,7 @@ from PySide6.QtWidgets import QMenu, QWidget
 
 from blendapp.desk.arrivals import Arrivals
 from blendapp.desk.commands import Command, Commands
+from blendapp.desk.day import DayWatch
 from blendapp.desk.files import Files
 from blendapp.desk.finder.ask import Ask
 from blendapp.desk.finder.panel import Finder
@@ -84,6 +85,7 @@ class Bench(QObject):
         self.recent_menu = QMenu(_("Opened last"), self.menu)
         self._connect()
         self._add_list_pages()
+        self.day = DayWatch(self.work)
 
     def _connect(self) -> None:
         header = self.frame.header

@@ -7,6 +7,7 @@ is stale until then.
 
 from __future__ import annotations
 
+import datetime
 import threading
 import time
 from collections.abc import Callable, Sequence
@@ -39,23 +40,26 @@ class Work(QObject):
 
     reversed: after the Edit of an undo or a redo.
     answered: the result changed, or its staleness did; trying is true while a value is being tried and not stored.
+    day_came: it is another day than before, whose prices count from now on.
     learned: more is known of the result that is shown already: near-optimal ranges, or why there is none.
     said: a sentence for the person, with what can be listed below it.
     """
 
     opened = Signal()
     reversed = Signal()
+    day_came = Signal()
     edited = Signal(object)
     chosen = Signal()
     answered = Signal()
     learned = Signal()
     said = Signal(str, list)
 
-    def __init__(self, parent: QObject | None = None) -> None:
+    def __init__(self, parent: QObject | None = None, day: Callable[[], datetime.date] = today) -> None:
         super().__init__(parent)
         self._mill: Mill | None = None
         self._empty = Library()
-        self.on = today()
+        self.day = day
+        self.on = day()
         self.formula_id: int | None = None
         self.result: Result | None = None
         self.stored_result: Result | None = None
@@ -108,6 +112,7 @@ class Work(QObject):
         self._slow.clear()
         self.formula_id = None
         self.result = self.stored_result = self.answer = None
+        self.on = self.day()
         self.opened.emit()
         formulas = self.library.formulas
         self.choose(formulas[0].id if formulas else None)
@@ -119,6 +124,15 @@ class Work(QObject):
         if self._mill is not None:
             self._mill.close()
             self._mill = None
+
+    def take_day(self) -> bool:
+        """Work on the prices of today from now on. Returns whether that is another day than before."""
+        if self.day() == self.on:
+            return False
+        self.on = self.day()
+        self.day_came.emit()
+        self.solve()
+        return True
 
     def choose(self, formula_id: int | None) -> None:
         """Work on another formula."""

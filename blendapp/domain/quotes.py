@@ -93,7 +93,14 @@ def in_force(
 
     supplier_id: whom the ingredient is bought from; None makes no difference between suppliers.
     """
-    valid = [quote for quote in counting(quotes, site_id) if is_valid(quote, on)]
+    quotes = list(quotes)
+    replaced = {quote.replaces_id for quote in quotes}
+    # counting and is_valid, written out: every price of every answer is asked for here.
+    valid = [
+        quote for quote in quotes
+        if (quote.valid_from is None or quote.valid_from <= on) and (quote.valid_to is None or quote.valid_to >= on)
+        and (quote.site_id is None or quote.site_id == site_id) and quote.id not in replaced
+    ]
     if len(valid) < 2:
         return valid[0] if valid else None
     return max(valid, key=lambda quote: rank(quote, supplier_id))

@@ -6,13 +6,13 @@ A price that was taken stays on record. Other days, another price or other terms
 from __future__ import annotations
 
 import datetime
-from dataclasses import replace
+from dataclasses import dataclass, replace
 from typing import Any
 
 from blendapp.domain.library import Library
 from blendapp.domain.names import fold
 from blendapp.domain.plant import Site, Supplier
-from blendapp.domain.price_history import PriceHistory, day_words, price_history, steps
+from blendapp.domain.price_history import PriceHistory, Step, day_words, price_history, steps
 from blendapp.domain.problems import Refused
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import Change, Record, added
@@ -143,11 +143,29 @@ def expired(library: Library, ingredient_id: int, on: datetime.date) -> Quote | 
     return before[-1].quote if before else None
 
 
-def turned(library: Library, before: datetime.date, on: datetime.date) -> list[tuple[int, float | None, float | None]]:
-    """The ingredients whose price differs between two days, by identifier, with both in money per tonne, None where
-    unknown."""
-    pairs = [(i.id, library.price_per_t(i.id, before), library.price_per_t(i.id, on)) for i in library.ingredients]
-    return [pair for pair in pairs if pair[1] != pair[2]]
+@dataclass(frozen=True)
+class Turn:
+    """A price on two days, in money per tonne, None where unknown."""
+
+    ingredient_id: int
+    before: float | None
+    after: float | None
+
+
+def turned(library: Library, before: datetime.date, on: datetime.date) -> list[Turn]:
+    """The ingredients whose price differs between two days."""
+    turns = [Turn(i.id, library.price_per_t(i.id, before), library.price_per_t(i.id, on)) for i in library.ingredients]
+    return [turn for turn in turns if turn.before != turn.after]
+
+
+def coming(library: Library, ingredient_id: int, on: datetime.date) -> Step | None:
+    """The next stretch of days on which another quote is in force than on a day, or none; None where that stays."""
+    quotes = library.quotes_of(ingredient_id)
+    if not any((q.valid_from is not None and q.valid_from > on) or (q.valid_to is not None and q.valid_to >= on)
+               for q in quotes):
+        return None
+    found = steps(quotes, library.mill.site_id, library.ingredient(ingredient_id).supplier_id)
+    return next((step for step in found if step.first is not None and step.first > on), None)
 
 
 def _counting(mill: Mill, quote_id: int) -> Quote:

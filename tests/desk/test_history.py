@@ -276,3 +276,19 @@ def test_the_library_of_plots_is_not_imported_before_a_page_needs_it() -> None:
     code = "import sys, blendapp.desk.bench; print(sorted({'pyqtgraph', 'colorama'} & set(sys.modules)))"
     ran = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
     assert ran.stdout.strip() == "[]"
+
+
+def test_a_price_typed_in_the_first_zone_may_name_its_supplier_and_site(page: Bench, hands: Hands) -> None:
+    page.to_bench()
+    hands.go(page.have.table, 1, "quoted")
+    hands.write("20.5 / cwt from Delta at North yard")
+    hands.key(Qt.Key.Key_Return)
+    quote = page.work.library.quotes_of(1)[-1]
+    assert (quote.price, quote.per, quote.supplier_id, quote.site_id) == (20.5, "cwt", 2, 1)
+    hands.go(page.have.table, 1, "price")
+    hands.write("199 from Bay Grain")
+    hands.key(Qt.Key.Key_Return)
+    assert page.work.library.price_per_t(1, page.work.on) == 199
+    assert page.have.model.cell(1, "source").data() == "Bay Grain, typed by hand"
+    page.work.undo()
+    assert page.work.library.price_per_t(1, page.work.on) == 210

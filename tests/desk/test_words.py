@@ -8,13 +8,16 @@ from hypothesis import strategies as st
 
 from blendapp.desk.finder.search import Found, best
 from blendapp.desk.formulas import read_nutrient
-from blendapp.desk.have.reading import read_price
+from blendapp.desk.have.reading import read_price, whose_price
 from blendapp.desk.meet.telling import price_sentence
 from blendapp.desk.meet.words import cost_rank, step_words, tag_step, tag_words
 from blendapp.desk.table.block import read_block, write_block
 from blendapp.desk.table.look import fitting_decimals, number_look
 from blendapp.domain.formulas import LimitKind
+from blendapp.domain.library import Library
 from blendapp.domain.notation import COMMA, PLAIN, use_notation
+from blendapp.domain.plant import Site, Supplier
+from blendapp.domain.records import added
 from blendapp.domain.results import LimitResult, Side
 
 NO_CELL = "\r\x0b\x0c\x1c\x1d\x1e\x85\u2028\u2029\x00"
@@ -147,3 +150,34 @@ def test_what_begins_with_the_typed_text_is_found_first() -> None:
     things = [Found(words, "", lambda: None) for words in ("Soya oil", "Fish oil", "Oil, mixed", "Maize")]
     assert [one.words for one in best(things, "oil")] == ["Oil, mixed", "Soya oil", "Fish oil"]
     assert [one.words for one in best(things, "fi oi")] == ["Fish oil"]
+
+
+def whose_library() -> Library:
+    library = Library()
+    library.apply(added(one) for one in (
+        Supplier(1, "Bay Grain"), Supplier(2, "Hay from Hill"), Site(1, "North yard"), Site(2, "Mill at Sea")))
+    return library
+
+
+@pytest.mark.parametrize(
+    ("text", "expected"),
+    [
+        ("452", ("452", None, None)),
+        ("18.2 / cwt from bay grain", ("18.2 / cwt", 1, None)),
+        ("210 from Bay Grain at North Yard", ("210", 1, 1)),
+        ("210 at north yard", ("210", None, 1)),
+        ("4.1 per bu from Bay  Grain", ("4.1 per bu", 1, None)),
+        ("210 from Hay from Hill at Mill at Sea", ("210", 2, 2)),
+        ("210 at mill at sea", ("210", None, 2)),
+    ],
+)
+def test_a_typed_price_may_name_its_supplier_and_site(text: str, expected: tuple[str, int | None, int | None]) -> None:
+    assert whose_price(whose_library(), text) == expected
+
+
+@pytest.mark.parametrize(
+    ("text", "known"), [("210 from Nobody", "Bay Grain, Hay from Hill"), ("210 at Home", "North yard"),
+                        ("210 from Bay Grain at Home", "North yard"), ("210 from Nobody at North yard", "Bay Grain")])
+def test_an_unknown_supplier_or_site_is_refused_with_those_that_are_known(text: str, known: str) -> None:
+    with pytest.raises(ValueError, match=known):
+        whose_price(whose_library(), text)

@@ -19,9 +19,11 @@ from blendapp.services import edits
 from blendapp.services.mill import Edit, Mill
 from blendapp.services.movers import with_prices
 from blendapp.services.price_history import (
+    Turn,
     add_quote,
     buy_from,
     change_quote,
+    coming,
     end_quote,
     expired,
     history,
@@ -191,7 +193,20 @@ def test_a_withdrawn_price_has_not_expired(mill: Mill) -> None:
 def test_what_turns_over_night_is_told_with_both_prices(mill: Mill) -> None:
     add_quote(mill, 1, 210.0, TODAY, valid_from=TODAY + DAY)
     assert turned(mill.library, TODAY, TODAY) == []
-    assert turned(mill.library, TODAY, TODAY + DAY) == [(1, 200.0, 210.0)]
+    assert turned(mill.library, TODAY, TODAY + DAY) == [Turn(1, 200.0, 210.0)]
+
+
+def test_what_is_to_come_is_the_next_day_on_which_another_quote_holds(mill: Mill) -> None:
+    assert coming(mill.library, 1, TODAY) is None
+    add_quote(mill, 1, 210.0, TODAY, valid_from=TODAY + 5 * DAY)
+    step = coming(mill.library, 1, TODAY)
+    assert step is not None
+    assert (step.first, step.price_per_t) == (TODAY + 5 * DAY, 210)
+    end_quote(mill, 1, TODAY + DAY, TODAY)
+    end_quote(mill, 2, TODAY + DAY, TODAY)
+    step = coming(mill.library, 1, TODAY)
+    assert step is not None
+    assert (step.first, step.price_per_t) == (TODAY + 2 * DAY, None)
 
 
 def test_a_price_of_a_list_keeps_the_list_when_its_days_change(mill: Mill) -> None:

@@ -19,6 +19,7 @@ from blendapp.domain.notation import notation
 from blendapp.domain.wording import _
 from blendapp.services import edits, typed
 from blendapp.services.mill import Edit, record_name
+from blendapp.services.price_history import coming, expired
 
 if TYPE_CHECKING:
     from blendapp.desk.work import Work
@@ -92,7 +93,8 @@ class HaveModel(Grid):
             Heading("price", _("Price {currency}/t").format(currency=money), 88, True, _("Money per tonne as fed")),
             Heading("holds", _("holds from / to"), 106, False, _("Drag the mark to see at which price the mix turns")),
             Heading("stock_kg", field_of("ingredient", "stock_kg").label, 72, True),
-            Heading("quoted", _("as quoted"), 136, True, _("The price in force, as it was given")),
+            Heading("quoted", _("as quoted"), 136, True,
+                    _("The price in force, as it was given. Type 18.2 / cwt, or 210 from a supplier at a site")),
             Heading("since", _("since"), 84), Heading("source", _("source"), 160),
         ]
 
@@ -184,11 +186,15 @@ class HaveModel(Grid):
             price = trial[1]
         if key == "price":
             tried = trial is not None and trial[0] == ingredient.id
-            return number_look(price, 2, editable=True, unknown=_("no price"), strong=tried,
+            lacking = _("expired") if price is None and self._expired(ingredient) else _("no price")
+            return number_look(price, 2, editable=True, unknown=lacking, strong=tried,
                                hint=self._price_hint(ingredient))
         if key == "holds":
             return self._rail_look(ingredient, price)
         if quote is None or quote.price is None:
+            gone = expired(self.work.library, ingredient.id, on) if key == "since" else None
+            if gone is not None:
+                return Look(text=_("until {day}").format(day=_date(gone.valid_to)), quiet=True)
             return Look(editable=key == "quoted", number=key == "quoted")
         if key == "quoted":
             words = _("{price} per {mass}")
@@ -197,16 +203,38 @@ class HaveModel(Grid):
             return Look(text=text, typed=typed, number=True, editable=True, quiet=True)
         if key == "since":
             return Look(text=age(quote.valid_from, on), quiet=True, hint=_date(quote.valid_from))
-        return Look(text=quote.source, quiet=True, hint=quote.source)
+        whose = [str(self.work.library.records[kind][key].name)
+                 for kind, key in (("supplier", quote.supplier_id), ("site", quote.site_id)) if key is not None]
+        text = ", ".join([*whose, _("typed by hand") if quote.source == edits.TYPED else quote.source])
+        return Look(text=text, quiet=True, hint=text)
 
     def _price_hint(self, ingredient: Ingredient) -> str:
         quote = self.work.library.quote_in_force(ingredient.id, self.work.on)
         if quote is None or quote.price is None:
-            return _("No price is in force; the ingredient is left out of every mix.")
-        return _("{price} per {mass}, {age}, {source}").format(
+            gone = expired(self.work.library, ingredient.id, self.work.on)
+            if gone is None:
+                return _("No price is in force; the ingredient is left out of every mix.")
+            text = _("Its last price, {price} per {mass}, held until {day}; without a new one it is left out of every "
+                     "mix.")
+            return text.format(price=notation().write_short(gone.price), mass=gone.per, day=_date(gone.valid_to))
+        words = _("{price} per {mass}, {age}, {source}").format(
             price=notation().write_short(quote.price), mass=quote.per, age=age(quote.valid_from, self.work.on),
             source=quote.source or _("no source"),
         )
+        parts = [words, self._coming(ingredient.id), _("Ctrl+H shows all of its prices")]
+        return ". ".join(part for part in parts if part)
+
+    def _expired(self, ingredient: Ingredient) -> bool:
+        return expired(self.work.library, ingredient.id, self.work.on) is not None
+
+    def _coming(self, ingredient_id: int) -> str:
+        """What the price is going to be, "" where nothing is known of it."""
+        step = coming(self.work.library, ingredient_id, self.work.on)
+        if step is None:
+            return ""
+        if step.price_per_t is None:
+            return _("From {day} no price is known").format(day=_date(step.first))
+        return _("From {day} it is {price}").format(day=_date(step.first), price=notation().write(step.price_per_t, 2))
 
     def _rail_look(self, ingredient: Ingredient, price: float | None) -> Look:
         if price is None:
@@ -276,6 +304,10 @@ class HaveModel(Grid):
         for owner, key in gone:
             self.forgive(owner, key)
         self.forgive_owners({change.id for change in edit.changes if change.kind == "ingredient"})
+
+    def count_expired(self) -> int:
+        """How many ingredients have had a price that ended, and have none now."""
+        return sum(map(self._expired, self.work.library.ingredients))
 
     def has_price(self, owner: int) -> bool:
         """Whether a price of an ingredient is in force."""

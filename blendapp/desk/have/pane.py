@@ -42,6 +42,7 @@ class HavePane(QWidget):
         self.work = work
         self.zone = zone
         self.model = HaveModel(work, self)
+        self._ended = 0
         self.table = FrozenTable(self.model, self)
         self.table.setAccessibleName(_("Ingredients"))
         self.filter = QLineEdit()
@@ -81,6 +82,7 @@ class HavePane(QWidget):
         work.edited.connect(self._edited)
         work.reversed.connect(self.model.forgive_all)
         work.chosen.connect(self._chosen)
+        work.day_came.connect(self._day_came)
         work.answered.connect(self._answered)
         table.resized.connect(self._fit_name)
         table.pasted.connect(self._paste)
@@ -113,6 +115,7 @@ class HavePane(QWidget):
     def _opened(self) -> None:
         self.model.refusals.clear()
         self.model.take_decimals()
+        self._ended = self.model.count_expired()
         self.model.rebuild()
         self._fit_name()
         self.table.go_to_top()
@@ -151,6 +154,8 @@ class HavePane(QWidget):
 
     def _edited(self, edit: Edit) -> None:
         self.model.forgive_stored(edit)
+        if edit.touches("quote", "ingredient", "mill"):
+            self._ended = self.model.count_expired()
         if edit.touches("nutrient"):
             self.model.take_decimals()
         if edit.touches("ingredient", "nutrient", "mill", "scale", "formula", "supplier"):
@@ -173,6 +178,12 @@ class HavePane(QWidget):
         self._say()
         self.model.refresh()
 
+    def _day_came(self) -> None:
+        """Other prices may be in force, and ages are counted from another day."""
+        self._ended = self.model.count_expired()
+        self._keep(self.model.rebuild)
+        self._say()
+
     def _answered(self) -> None:
         self._say()
         if not self.work.trying or self.work.result is not self.work.stored_result:
@@ -183,8 +194,11 @@ class HavePane(QWidget):
         if self.work.formula is None:
             self.zone.remark.say(plural("{count} ingredient", "{count} ingredients", count).format(count=count))
         else:
-            text = _("{admitted} admitted of {count}")
-            self.zone.remark.say(text.format(admitted=len(self.work.admitted_ids), count=count))
+            text = _("{admitted} admitted of {count}").format(admitted=len(self.work.admitted_ids), count=count)
+            if self._ended:
+                text = plural("{text}, {count} price expired", "{text}, {count} prices expired", self._ended).format(
+                    text=text, count=self._ended)
+            self.zone.remark.say(text)
 
     # -- blocks
 

@@ -9,6 +9,7 @@ from collections.abc import Callable
 from blendapp.domain import units
 from blendapp.domain.fields import field_of
 from blendapp.domain.ingredients import Basis, Ingredient, Tag
+from blendapp.domain.library import Library
 from blendapp.domain.names import fold
 from blendapp.domain.notation import notation
 from blendapp.domain.records import Change
@@ -45,7 +46,7 @@ def changes_of(mill: Mill, owner: int, key: str, text: str, on: datetime.date) -
 
 def pasted_changes(mill: Mill, owner: int, key: str, text: str, on: datetime.date) -> list[Change]:
     """As changes_of, for a cell of a block from outside, in which a price of 0 or below is most often a slip."""
-    if key in PRICE_KEYS and text.strip() and read_price(text.strip())[0] <= 0:
+    if key in PRICE_KEYS and text.strip() and read_price(whose_price(mill.library, text.strip())[0])[0] <= 0:
         raise ValueError(_("A price of 0 or below is kept out of what is pasted; type it if it is meant."))
     return changes_of(mill, owner, key, text, on)
 
@@ -57,12 +58,42 @@ def _text(_mill: Mill, text: str) -> str:
 def _price(mill: Mill, ingredient: Ingredient, text: str, on: datetime.date, per: str | None) -> list[Change]:
     if not text:
         return edits.price_changes(mill, ingredient.id, None, on)
+    text, supplier_id, site_id = whose_price(mill.library, text)
     amount, stated = read_price(text)
     old = mill.library.quote_in_force(ingredient.id, on)
     chosen = stated or per or (old.per if old is not None else "t")
     if chosen == units.BUSHEL:
         units.price_per_t(amount, chosen, ingredient.bushel_lb)
-    return edits.price_changes(mill, ingredient.id, amount, on, per=chosen, entered=text)
+    return edits.price_changes(
+        mill, ingredient.id, amount, on, per=chosen, entered=text, supplier_id=supplier_id, site_id=site_id)
+
+
+def whose_price(library: Library, text: str) -> tuple[str, int | None, int | None]:
+    """A typed price without "from Bay Grain" and "at North yard" behind it, and the supplier and the site that these
+    name, None where they are not there. Raises ValueError for a name that the mill does not know."""
+    by, at = f" {_('from')} ", f" {_('at')} "
+    if by not in text and at not in text:
+        return text, None, None
+    # Names may hold these words themselves: every way of reading the text is tried.
+    for head, rest in _cuts(text, by):
+        for supplier, site in _cuts(rest, at) if rest else ():
+            known = library.named("supplier", supplier), library.named("site", site) if site else None
+            if known[0] is not None and (not site or known[1] is not None):
+                return head, int(known[0].id), None if known[1] is None else int(known[1].id)
+    for head, site in _cuts(text, at):
+        known_site = library.named("site", site) if site else None
+        if known_site is not None and by not in head:
+            return head, None, int(known_site.id)
+    names = {kind: ", ".join(one.name for one in library.all(kind)) or _("none yet") for kind in ("supplier", "site")}
+    sentence = _("“{text}” names a supplier or a site that the mill does not know. Its suppliers: {suppliers}; its "
+                 "sites: {sites}.")
+    raise ValueError(sentence.format(text=text, suppliers=names["supplier"], sites=names["site"]))
+
+
+def _cuts(text: str, word: str) -> list[tuple[str, str]]:
+    """A text cut in two at each place of a word, and uncut at last."""
+    places = [at for at in range(len(text)) if text.startswith(word, at)]
+    return [(text[:at].strip(), text[at + len(word):].strip()) for at in places] + [(text, "")]
 
 
 def read_price(text: str) -> tuple[float, str | None]:

@@ -92,6 +92,7 @@ class HistoryPane(QWidget):
         self.table.doubleClicked.connect(self._asked)
         work.edited.connect(self._edited)
         work.opened.connect(self._forget)
+        work.day_came.connect(self._day_came)
         work.reversed.connect(self.rows.forgive_all)
 
     def _lay(self) -> None:
@@ -213,6 +214,10 @@ class HistoryPane(QWidget):
         """The quote and the column under the keyboard."""
         index = self.table.currentIndex()
         return (self.rows.owner(index), self.rows.key(index)) if index.isValid() else (None, "")
+
+    def _day_came(self) -> None:
+        if self.isVisible():
+            self.fill()
 
     def _span(self, days: int | None) -> None:
         self._span_days = days
