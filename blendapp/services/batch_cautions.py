@@ -99,7 +99,7 @@ def _counted_in_part(library: Library, formula: Formula, mix: BatchMix, weighed:
         if parts is None or not weighed.get(key) or (limit.minimum is None and limit.maximum is None):
             continue
         found.append(text.format(
-            ingredient=library.ingredient(key).name, part=kg(parts.get(key, 0.0) * weighed[key]),
-            whole=kg(weighed[key]), opened=", ".join(mix.of_opened.get(key, ())),
+            ingredient=library.ingredient(key).name, part=kg(parts.get(key, 0.0) * weighed[key], 3),
+            whole=kg(weighed[key], 3), opened=", ".join(mix.of_opened.get(key, ())),
         ))
     return found

@@ -9,7 +9,7 @@ from typing import Any
 import pytest
 
 from blendapp.domain.batches import Batch
-from blendapp.domain.formulas import Animal
+from blendapp.domain.formulas import Amounts, Animal
 from blendapp.domain.ingredients import Tag
 from blendapp.domain.plant import Scale
 from blendapp.domain.problems import Refused
@@ -153,6 +153,20 @@ def test_a_line_of_rework_can_be_fixed_like_any_other() -> None:
     batch = batch_of(mill(), rework={RETURNS: 5.0}, fixed={RETURNS: 51.0})
     assert lines(batch)["Returns"] == 51.0
     assert batch.total_kg == 1000.0
+
+
+def test_a_ration_with_rework_feeds_the_same_kilograms_a_day() -> None:
+    make = Maker()
+    for name in ("Hay", "Barley"):
+        make.ingredient(name, 100.0)
+    make.ingredient("Returns", 10.0, tags=(Tag.ONLY_WHEN_LISTED,))
+    feed = make.formula(amounts=Amounts.RATION)
+    make.limit(feed, "ingredient", "Hay", 6.0, 6.0)
+    make.limit(feed, "ingredient", "Barley", 4.0, 4.0)
+    make.limit(feed, "nutrient", "Dry matter", basis="per day")
+    batch = make_batch(make.library, 1, 1000.0, TODAY, rework={RETURNS: 10.0})
+    assert lines(batch) == {"Hay": 540.0, "Barley": 360.0, "Returns": 100.0}
+    assert [limit.value for limit in batch.limits[:2]] == pytest.approx([5.4, 3.6])
 
 
 def test_rework_without_a_scale_is_a_question_with_a_proposal() -> None:
