@@ -6,21 +6,19 @@ import time
 from collections.abc import Callable
 from pathlib import Path
 
-from PySide6.QtCore import QEvent, QSettings, Qt
-from PySide6.QtGui import QKeyEvent
-from PySide6.QtWidgets import QApplication, QLineEdit, QWidget
+from PySide6.QtCore import QSettings
+from PySide6.QtWidgets import QApplication, QWidget
 
 from blendapp.desk.bench import Bench
-from blendapp.desk.furnishing import furnish
 from blendapp.desk.rail.geometry import End
-from blendapp.desk.scenes_lists import history
+from blendapp.desk.scenes_batches import mill, sheet, version
+from blendapp.desk.scenes_lists import history, lists
+from blendapp.desk.scenes_prices import prices
 from blendapp.desk.shell.frame import Frame
 from blendapp.desk.start import make_app
 from blendapp.desk.theme import dress
 from blendapp.domain.formulas import Amounts, LimitKind
-from blendapp.domain.list_rows import Fate
-from blendapp.domain.versions import Snapshot
-from blendapp.services import edits, people, sheets, versions
+from blendapp.services import edits
 from blendapp.services import workbook as workbooks
 
 WAIT_S = 20.0
@@ -65,11 +63,12 @@ def take_all(out_dir: Path, workbook: Path, price_list: Path, folder: Path, scal
     studio.settle()
     studio.take(frame, "02-no-mill-yet")
     path = folder / "Sample mill.mill"
-    mill, _warnings = workbooks.new_mill(path, workbook)
-    mill.close()
+    made, _warnings = workbooks.new_mill(path, workbook)
+    made.close()
     bench.start(str(path))
     frame.activateWindow()
-    scenes = (_bench, _hands, _wide, _forms, _faults, _finding, _formulas, _prices, _sheet, _mill, _versions, history)
+    scenes = (_bench, _hands, _wide, _forms, _faults, _finding, _formulas, prices, sheet, mill, version, history,
+              lists)
     for scene in scenes:
         if only and scene.__name__.lstrip("_") != only:
             continue
@@ -220,102 +219,3 @@ def _formulas(studio: Studio, bench: Bench, _price_list: Path) -> None:
     studio.take(bench.frame, "19-stale")
     work.stale = False
     work.answered.emit()
-
-
-def _prices(studio: Studio, bench: Bench, price_list: Path) -> None:
-    if not price_list.is_file():
-        return
-    bench.bring_in_prices(price_list)
-    studio.settle()
-    studio.settle(lambda: bench.prices.isVisible())
-    reading = bench.prices.reading
-    studio.take(bench.frame, "20-price-list")
-    if reading is not None and reading.count(Fate.ACCEPTED):
-        bench.prices.apply()
-        studio.settle()
-        studio.settle(lambda: not bench.effect.running)
-        studio.take(bench.frame, "21-what-the-new-prices-do")
-        bench.to_bench()
-        studio.settle()
-        studio.take(bench.frame, "21-prices-taken")
-        bench.work.undo()
-
-
-def _versions(studio: Studio, bench: Bench, _price_list: Path) -> None:
-    """A formula approved once and changed since, and a draft whose cautions are to be taken on."""
-    work = bench.work
-    words = {"Ada Marsh": "prepares the feeds", "Ben Holt": "approves the feeds"}
-    for name, word in words.items():
-        person = people.add_person(work.mill, name, "nutritionist" if name.startswith("Ada") else "head of feeds")
-        people.set_password(work.mill, person.id, word)
-    ada, ben = (work.library.named("person", name) for name in words)
-    assert ada is not None
-    assert ben is not None
-    assert work.formula_id is not None
-
-    def approve(formula_id: int) -> None:
-        draft = versions.prepare(work.mill, formula_id, ada.id, words["Ada Marsh"], work.on)
-        result = Snapshot.decode(draft.snapshot).result
-        reasons = {} if result is None else dict.fromkeys(versions.to_acknowledge(result), "checked")
-        versions.approve(work.mill, draft.id, ben.id, words["Ben Holt"], reasons=reasons, on=work.on)
-        work.recorded()
-
-    approve(work.formula_id)
-    limit = next(one for one in work.library.limits(work.formula_id) if one.minimum and one.kind is LimitKind.NUTRIENT)
-    work.do(lambda mill: edits.set_bound(mill, limit.id, "minimum", round((limit.minimum or 0.0) * 0.99, 3)))
-    bench.show_versions()
-    studio.settle()
-    studio.take(bench.frame, "25-versions")
-    versions.prepare(work.mill, work.formula_id, ada.id, words["Ada Marsh"], work.on)
-    work.recorded()
-    bench.versions.form.approve.emit()
-    studio.settle()
-    studio.take(bench.frame, "26-a-draft-to-approve")
-    bench.show_mill()
-    studio.settle()
-    studio.take(bench.frame, "27-persons")
-
-
-def _mill(studio: Studio, bench: Bench, _price_list: Path) -> None:
-    """Every section of the mill's page, at the size of a small screen."""
-    size = bench.frame.size()
-    bench.frame.resize(1100, 700)
-    bench.show_mill("facts")
-    studio.settle()
-    studio.take(bench.frame, "24-mill-facts")
-    furnish(bench.work)
-    for key in ("sites", "scales", "mixers", "bins", "lots", "steps", "suppliers", "nutrients", "persons"):
-        bench.show_mill(key)
-        studio.settle()
-        studio.take(bench.frame, f"24-mill-{key}")
-    table = bench.mill.tables["bin"]
-    bench.show_mill("bins")
-    table.go_to(table.grid.owners[1], "ingredient_id")
-    table.edit(table.currentIndex())
-    field = bench.frame.focusWidget()
-    assert isinstance(field, QLineEdit)
-    field.setText("ma")
-    field.textEdited.emit("ma")
-    studio.settle()
-    studio.take(bench.frame, "24-mill-a-name-typed")
-    for kind in (QEvent.Type.KeyPress, QEvent.Type.KeyRelease):
-        studio.app.sendEvent(field, QKeyEvent(kind, Qt.Key.Key_Escape, Qt.KeyboardModifier.NoModifier))
-    bench.frame.resize(size)
-
-
-def _sheet(studio: Studio, bench: Bench, _price_list: Path) -> None:
-    bench.show_sheet()
-    studio.settle(lambda: bool(bench.sheet.pages.pages))
-    studio.take(bench.frame, "22-batch-sheet")
-    batch = bench.sheet.batch
-    bench.work.stale = True
-    bench.work.answered.emit()
-    studio.settle()
-    studio.take(bench.frame, "22-batch-sheet-stale")
-    bench.work.stale = False
-    bench.work.answered.emit()
-    if batch is not None:
-        for number, image in enumerate(sheets.page_images(sheets.batch_pdf(batch), 96.0 * studio.scale), 1):
-            (studio.out_dir / f"23-batch-sheet-page-{number}-{studio.scale}00.png").write_bytes(image)
-
-

@@ -90,6 +90,13 @@ def _unwritable(path: Path, error: OSError) -> Refused:
     return Refused(Problem(text.format(reason=error.strerror or error), Place(file=str(path))))
 
 
+def broken_sentences(batch: Batch) -> list[str]:
+    """The limits that a batch does not keep, with by how much, as its pages say it."""
+    from blendapp.documents.phrases import broken_words
+
+    return [broken_words(batch.limits[at]) for at in batch.broken]
+
+
 def printed_batch(record: PrintedBatch, copy: int = 0) -> Batch:
     """The batch of a printed sheet, as it was printed or as such a copy of it."""
     return replace(batch_from_plain(json.loads(record.sheet)), copy=copy)

@@ -32,6 +32,10 @@ class BatchForm(QWidget):
         self.work = work
         self.order, self.before = QLineEdit(), QLineEdit()
         self.made, self.mixer, self.clean_out, self.paper, self.mass = (Choice() for _at in range(5))
+        for box in (self.made, self.mixer, self.clean_out, self.paper, self.mass):
+            # Long words are for the open list; closed, a box is as wide as the form.
+            box.setSizeAdjustPolicy(Choice.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
+            box.setMinimumContentsLength(8)
         for one, words in clean_out_words().items():
             self.clean_out.addItem(words, one)
         for words, key in ((_("A4"), "A4"), (_("US letter"), "letter")):
@@ -91,6 +95,7 @@ class BatchForm(QWidget):
         for box in (self.paper, self.mass):
             box.currentIndexChanged.connect(lambda _at: self.paper_changed.emit())
         self.rework.modelReset.connect(self._fit_rework)
+        self.rework.named.connect(lambda owner: self.rework_table.go_to(owner, "percent"))
 
     def _fit_rework(self) -> None:
         rows = min(len(self.rework.owners), REWORK_ROWS)

@@ -61,8 +61,8 @@ class LineModel(Grid):
         if self.batch is None:
             return EMPTY
         if owner == HAND_ADDS:
-            words = _("Hand-adds, weighed apart, with a second check")
-            return Look(text=words, strong=True, stale=self.stale, hint=words) if key == "name" else EMPTY
+            hint = _("Weighed apart, and checked by a second person.")
+            return Look(text=_("Hand-adds"), strong=True, hint=hint, stale=self.stale) if key == "name" else EMPTY
         if owner == TOTAL:
             return replace(self._total_look(self.batch, key), stale=self.stale)
         line = self._line.get(owner)
@@ -74,7 +74,7 @@ class LineModel(Grid):
         if key == "share_kg":
             return _mass(batch.batch_kg)
         if key == "kg":
-            return replace(_mass(batch.total_kg), strong=True)
+            return replace(_mass(batch.total_kg), strong=True, quiet=False)
         if key == "deviation" and batch.residue_kg:
             return _signed(batch.residue_kg)
         return EMPTY
@@ -91,8 +91,9 @@ class LineModel(Grid):
         if key == "scale":
             return Look(text=line.scale, hint=line.scale)
         if key == "step":
-            step, unit = (line.step_l, "l") if line.step_l is not None else (line.step_kg, "")
-            return replace(number_look(step, fitting_decimals(step, 0), widest=WIDEST), unit=unit)
+            step = line.step_kg if line.step_l is None else line.step_l
+            words = _("{step} kg") if line.step_l is None else _("{step} l")
+            return Look(text=words.format(step=notation().write(step, fitting_decimals(step, 0))), number=True)
         if key == "share_kg":
             return _mass(line.share_kg)
         if key == "kg":
@@ -125,20 +126,20 @@ class LineModel(Grid):
 
 def _headings(lines: tuple[BatchLine, ...]) -> list[Heading]:
     """The columns; bins and litres only where some line has them."""
-    found = [Heading("name", _("Ingredient"), 168)]
+    found = [Heading("name", _("Ingredient"), 130)]
     if any(line.bins for line in lines):
-        found.append(Heading("bins", _("Bin, lot"), 108))
+        found.append(Heading("bins", _("Bin, lot"), 84))
     found += [
-        Heading("scale", _("Scale"), 94), Heading("step", _("Step kg"), 68, True),
-        Heading("share_kg", _("Share kg"), 80, True, _("The exact share of one batch")),
-        Heading("kg", _("Target kg"), 80, True, _("What is weighed: whole steps of the scale")),
+        Heading("scale", _("Scale"), 80), Heading("step", _("Step"), 62, True),
+        Heading("share_kg", _("Share kg"), 72, True, _("The exact share of one batch")),
+        Heading("kg", _("Target kg"), 78, True, _("What is weighed: whole steps of the scale")),
     ]
     if any(line.target_l is not None for line in lines):
-        found.append(Heading("litres", _("Target l"), 72, True))
+        found.append(Heading("litres", _("Target l"), 66, True))
     return [
         *found,
-        Heading("tolerance_kg", _("May be off kg"), 96, True, _("How far the target may lie from the share")),
-        Heading("deviation", _("Is off kg"), 76, True, _("Target less share")),
+        Heading("tolerance_kg", _("May be off"), 78, True, _("How many kg the target may lie from the share")),
+        Heading("deviation", _("Is off kg"), 66, True, _("Target less share")),
     ]
 
 

@@ -5,8 +5,11 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import TYPE_CHECKING, Any
 
+from PySide6.QtCore import QTimer, Signal
+
 from blendapp.desk.table.grid import Grid, Heading
 from blendapp.desk.table.look import Look, fitting_decimals, number_look
+from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.names import fold
 from blendapp.domain.notation import notation
 from blendapp.domain.wording import _
@@ -19,10 +22,13 @@ NEXT = 0
 
 
 class ReworkRows(Grid):
-    """Owners are ingredients, and NEXT. changed: after a share was given, changed or taken away.
+    """Owners are ingredients, and NEXT. changed: after a share was given, changed or taken away. named: the share of
+    an ingredient is to be typed now.
 
     An ingredient that was named and has no share yet counts for nothing until it has one.
     """
+
+    named = Signal(int)
 
     def __init__(self, work: Work, changed: Callable[[], None], parent: Any = None) -> None:
         super().__init__(parent)
@@ -59,29 +65,36 @@ class ReworkRows(Grid):
         hint = _("Type the name of an ingredient; enter rework as an ingredient with its own composition.")
         names = tuple(sorted((one.name for one in library.ingredients), key=fold))
         if owner == NEXT:
-            return Look(editable=True, choices=names, hint=hint, words=_("none"))
+            return Look(text=_("type a name…"), quiet=True, editable=True, choices=names, hint=hint, words=_("none"))
         text = library.ingredient(owner).name if owner in library.records["ingredient"] else ""
         return Look(text=text, typed=text, editable=True, choices=names, hint=hint)
 
     def write(self, owner: int, key: str, text: str) -> None:
         text = text.strip()
+        # The rows change once the cell that is typed into is shut.
+        QTimer.singleShot(0, self, self.show)
         if key == "percent":
             self.percent[owner] = self._read(text)
-        elif not text:
-            self.take_out(owner)
-            return
+            self.changed()
+        elif text:
+            self._name(owner, text)
         else:
-            found = self.work.library.named("ingredient", text)
-            if found is None:
-                words = _("There is no ingredient “{name}”; rework is entered as an ingredient first.")
-                raise ValueError(words.format(name=text))
-            if found.id in self.percent and found.id != owner:
-                raise ValueError(_("“{name}” goes in as rework already; change its share.").format(name=found.name))
-            self.percent = {
-                found.id if one == owner else one: percent for one, percent in self.percent.items()
-            } | ({found.id: None} if owner == NEXT else {})
-        self.show()
-        if key == "percent" or self.percent.get(owner) is not None:
+            self.take_out(owner)
+
+    def _name(self, owner: int, text: str) -> None:
+        found: Ingredient | None = self.work.library.named("ingredient", text)
+        if found is None:
+            words = _("There is no ingredient “{name}”; rework is entered as an ingredient first.")
+            raise ValueError(words.format(name=text))
+        key = found.id
+        if key in self.percent and key != owner:
+            raise ValueError(_("“{name}” goes in as rework already; change its share.").format(name=found.name))
+        self.percent = {key if one == owner else one: percent for one, percent in self.percent.items()}
+        if owner == NEXT:
+            self.percent[key] = None
+        if self.percent[key] is None:
+            QTimer.singleShot(0, self, lambda: self.named.emit(key))
+        else:
             self.changed()
 
     @staticmethod
@@ -96,4 +109,4 @@ class ReworkRows(Grid):
         if self.percent.pop(owner, None) is not None:
             self.changed()
         self.forgive_owners({owner})
-        self.show()
+        QTimer.singleShot(0, self, self.show)

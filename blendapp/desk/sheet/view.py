@@ -25,6 +25,8 @@ from blendapp.domain.notation import notation
 from blendapp.domain.wording import _
 
 LINES = "lines"
+# By how many pixels the columns of words grow where there is room, those that need it most first.
+_MAY_GROW = {"name": 70, "bins": 90, "scale": 40}
 
 
 def view_words() -> dict[str, str]:
@@ -45,6 +47,8 @@ class BatchView(QWidget):
         super().__init__()
         self.table = FrozenTable(lines, self)
         self.table.setAccessibleName(_("Lines of the batch"))
+        self.table.resized.connect(self._fit)
+        lines.modelReset.connect(self._fit)
         self.pages = PageView()
         self.yielding = QLabel()
         self.yielding.setWordWrap(True)
@@ -108,6 +112,17 @@ class BatchView(QWidget):
         """Look at the view so many places to the right."""
         keys = list(self.buttons)
         self.turn(keys[(keys.index(self.shown) + by) % len(keys)])
+
+    def _fit(self) -> None:
+        """Let the words have what the figures leave."""
+        table, grid = self.table, self.table.grid
+        spare = table.viewport().width() - sum(heading.width for heading in grid.headings)
+        for key, most in _MAY_GROW.items():
+            at = grid.column_of(key)
+            if at is not None and not table.has_own_width(key):
+                more = min(max(spare, 0), most)
+                table.setColumnWidth(at, grid.headings[at].width + more)
+                spare -= more
 
     def say(self, batch: Batch | None) -> None:
         """Say what the batch gives and what must be made first; None says nothing."""

@@ -3,10 +3,9 @@
 from __future__ import annotations
 
 from blendapp.domain.batches import Batch, CleanOut, proof_words
-from blendapp.domain.figures import write_measure
 from blendapp.domain.notation import notation
-from blendapp.domain.results import LimitResult
 from blendapp.domain.wording import _, plural
+from blendapp.services import sheets
 
 
 def batch_words(batch: Batch) -> str:
@@ -20,23 +19,12 @@ def batch_words(batch: Batch) -> str:
             "The lines come to {kg} kg more than the batch.")
         lines.append(text.format(kg=write(abs(batch.residue_kg), 3)))
     if batch.broken:
-        lines.append(_("Rounding to the scales breaks a limit. It may be mixed only if somebody accepts that:"))
-        lines += [broken_words(batch.limits[at]) for at in batch.broken]
+        text = plural("This weighing breaks {count} limit; it may be mixed only if somebody accepts that.",
+                      "This weighing breaks {count} limits; it may be mixed only if somebody accepts that.",
+                      len(batch.broken))
+        lines += [text.format(count=len(batch.broken)), *sheets.broken_sentences(batch)]
     lines.append(proof_words(batch) or _("Proven: no batch in whole steps of these scales comes nearer."))
     return "\n".join(lines)
-
-
-def broken_words(limit: LimitResult) -> str:
-    """A limit that a batch does not keep, with by how much."""
-    name = limit.name if limit.per is None else _("{name} over {per}").format(name=limit.name, per=limit.per)
-    under = limit.minimum is not None and limit.value is not None and limit.value < limit.minimum
-    bound = limit.minimum if under else limit.maximum
-    by = None if limit.value is None or bound is None else abs(limit.value - bound)
-    text = _("{limit}: {value} {unit}, {by} below its minimum of {bound}.") if under else _(
-        "{limit}: {value} {unit}, {by} above its maximum of {bound}.")
-    return text.format(
-        limit=name, value=write_measure(limit.value), unit=limit.unit, by=write_measure(by), bound=write_measure(bound),
-    ).replace("  ", " ").replace(" ,", ",")
 
 
 def yield_words(batch: Batch) -> str:
