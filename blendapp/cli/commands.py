@@ -179,7 +179,7 @@ def _refuse_effect(given: argparse.Namespace) -> None:
 
 def _sheet(given: argparse.Namespace) -> int:
     from blendapp.cli.ordering import ordered
-    from blendapp.services.batch import clean_out_question, print_sheet
+    from blendapp.services.batch import clean_out_question, lacks_clean_out, print_sheet
     from blendapp.services.formulate import FailedCertificate
     from blendapp.services.sheets import write_page
 
@@ -194,7 +194,7 @@ def _sheet(given: argparse.Namespace) -> int:
             batch = ordered(mill, given, datetime.date.today())
         except FailedCertificate as failure:
             raise Refused(Problem(str(failure), Place(file=given.mill))) from failure
-        if batch.cause is None and recorded and batch.lacks_clean_out and not given.accept:
+        if batch.cause is None and recorded and lacks_clean_out(batch, given.accept or ""):
             batch = replace(batch, cause=clean_out_question(batch))
         if batch.cause is None and recorded:
             batch = print_sheet(mill, batch, Path(given.pdf), reason=given.accept or "", by=given.by or "")

@@ -273,7 +273,7 @@ def print_sheet(mill: Mill, batch: Batch, path: Path, *, reason: str = "", by: s
     if bool(reason.strip()) != bool(by.strip()):
         raise Refused(_("Accepting broken limits needs both a reason and a name."))
     batch = _as_it_stands(mill, batch)
-    if batch.lacks_clean_out and not reason.strip():
+    if lacks_clean_out(batch, reason):
         raise Refused(clean_out_question(batch))
     number = mill.store.next_batch_number()
     printed = replace(
@@ -291,9 +291,18 @@ def print_sheet(mill: Mill, batch: Batch, path: Path, *, reason: str = "", by: s
     return printed
 
 
+def lacks_clean_out(batch: Batch, reason: str) -> bool:
+    """Whether a batch is not printed for want of a clean-out, with this reason given by name.
+
+    A reason that may have been meant for a broken limit waives no clean-out: then "none needed" must be chosen as well.
+    """
+    waived = bool(reason.strip()) and (batch.clean_out is CleanOut.NONE or not batch.broken)
+    return batch.lacks_clean_out and not waived
+
+
 def clean_out_question(batch: Batch) -> str:
     """What a batch that lacks a clean-out asks for."""
-    text = _("{reason} Choose physical, flush or sequence, or say why none is needed, and who says so.")
+    text = _("{reason} Choose physical, flush or sequence; or choose none needed, and say why and who says so.")
     return text.format(reason=batch.clean_out_reason)
 
 

@@ -10,12 +10,12 @@ from typing import Any
 import pytest
 
 from blendapp.domain.batches import Batch, CleanOut
-from blendapp.domain.formulas import Admits, Animal
+from blendapp.domain.formulas import Admits, Animal, Limit, LimitKind, Subject
 from blendapp.domain.ingredients import Tag
 from blendapp.domain.library import Library
 from blendapp.domain.plant import Mixer, Scale
 from blendapp.domain.problems import Refused
-from blendapp.domain.records import Change
+from blendapp.domain.records import Change, added
 from blendapp.services import edits
 from blendapp.services.batch import make_batch, print_copy, print_sheet
 from blendapp.services.mill import Mill
@@ -130,12 +130,29 @@ def test_a_sheet_after_a_drug_is_not_printed_until_somebody_says_what_is_done(
     printed(mill, tmp_path, "Drugged")
     batch = batch_of(mill, "Plain", clean_out=clean_out)
     assert batch.lacks_clean_out
-    with pytest.raises(Refused, match="Choose physical, flush or sequence, or say why none is needed"):
+    with pytest.raises(Refused, match="Choose physical, flush or sequence; or choose none needed, and say why"):
         print_sheet(mill, batch, tmp_path / "b.pdf")
     assert not (tmp_path / "b.pdf").exists()
     assert mill.store.next_batch_number() == 2
     accepted = print_sheet(mill, batch, tmp_path / "b.pdf", reason="the mixer was washed last night", by="Ann")
     assert (accepted.number, accepted.accepted_by, accepted.clean_out) == (2, "Ann", clean_out)
+
+
+def test_a_reason_for_a_broken_limit_waives_no_clean_out(mill: Mill, tmp_path: Path) -> None:
+    printed(mill, tmp_path, "Drugged")
+    cow = mill.library.named("formula", "Cow")
+    assert cow is not None
+    edits.change(mill, cow, admits=Admits.ALL)
+    mill.apply("A limit that no scale keeps", [added(Limit(
+        99, cow.id, LimitKind.INGREDIENT, Subject.ingredients(6), None, 0.033, 0.034
+    ))])
+    batch = batch_of(mill, "Cow")
+    assert batch.broken
+    assert batch.lacks_clean_out
+    with pytest.raises(Refused, match="Choose physical"):
+        print_sheet(mill, batch, tmp_path / "b.pdf", reason="within the analysis", by="Ann")
+    chosen = replace(batch, clean_out=CleanOut.NONE)
+    assert print_sheet(mill, chosen, tmp_path / "b.pdf", reason="washed, within the analysis", by="Ann").number == 2
 
 
 @pytest.mark.parametrize("clean_out", [CleanOut.PHYSICAL, CleanOut.FLUSH, CleanOut.SEQUENCE])
