@@ -6,7 +6,9 @@ from dataclasses import replace
 
 import pytest
 
+from blendapp.domain.formulas import MixingStep
 from blendapp.domain.library import Library
+from blendapp.domain.plant import Bin, Lot, Site, Supplier
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import Change, added
 from blendapp.optimise.build.composition import Composition
@@ -86,3 +88,38 @@ def test_an_ingredient_that_loses_its_price_is_no_longer_in_the_mix() -> None:
     found = answers.at(gone, feed, TODAY, composition, prices_of(gone, TODAY))
     assert 2 not in found.amounts
     assert found.cost == pytest.approx(formulate(gone, feed.id, TODAY).cost)
+
+
+@pytest.mark.parametrize("where", ["site", "supplier"])
+def test_another_site_or_supplier_is_followed_like_any_other_price(where: str) -> None:
+    library, feed = three_ingredients()
+    library.apply([
+        added(Site(1, "North")), added(Supplier(1, "Vela")), added(Supplier(2, "Moor")),
+        added(Quote(901, 1, 300.0, site_id=1)), added(Quote(902, 2, 500.0, supplier_id=1)),
+        added(Quote(903, 2, 420.0, supplier_id=2)),
+    ])
+    kept, composition = KeptAnswers(), Composition(library)
+    before = kept.view().at(library, feed, TODAY, composition, prices_of(library, TODAY)).cost
+    if where == "site":
+        change = Change(library.mill, replace(library.mill, site_id=1))
+    else:
+        meal = library.ingredient(2)
+        change = Change(meal, replace(meal, supplier_id=1))
+    library.apply([change])
+    kept.refresh([change])
+    composition.refresh(library, [change])
+    after = kept.view().at(library, feed, TODAY, composition, prices_of(library, TODAY)).cost
+    assert before == pytest.approx(255.0)  # 75 % at 200 and 25 % at 420
+    # In the north 75 % at 300; from the supplier of the meal 25 % at 500.
+    assert after == pytest.approx({"site": 330.0, "supplier": 275.0}[where])
+
+
+def test_a_new_step_bin_or_lot_leaves_kept_answers_alone(monkeypatch: pytest.MonkeyPatch) -> None:
+    library, feed = three_ingredients()
+    solved = count_solves(monkeypatch)
+    kept, composition = KeptAnswers(), Composition(library)
+    view = kept.view()
+    view.at(library, feed, TODAY, composition, prices_of(library, TODAY))
+    kept.refresh([added(MixingStep(1, None, 1, "mix")), added(Lot(1, 1, "L")), added(Bin(1, "1", 1))])
+    view.at(library, feed, TODAY, composition, prices_of(library, TODAY))
+    assert solved == [feed.id]
