@@ -7,10 +7,11 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from blendapp.domain import units
-from blendapp.domain.formulas import Admits, Formula
+from blendapp.domain.formulas import Admits, Amounts, Formula
 from blendapp.domain.library import Library
 from blendapp.domain.plant import Scale
 from blendapp.domain.records import Change
+from blendapp.domain.results import IngredientResult, Result, Status
 from blendapp.optimise.build.formula import FormulaProgram, build
 from blendapp.optimise.build.weigh import order_of, scales_for
 from blendapp.optimise.steps.problem import Order
@@ -145,6 +146,16 @@ def order(found: MadeBatch) -> Order:
     shares = {key: amount / total * found.batch_kg for key, amount in amounts.items()}
     scales = [scales_for(found.library, one) for one in ingredients]
     return order_of(built, ingredients, scales, shares, found.batch_kg, total, {})
+
+
+def answer(found: MadeBatch) -> Result:
+    """The mix as an answer of the formula, without a solve."""
+    parts = tuple(
+        IngredientResult(key, found.library.ingredient(key).name, 0.0, amount) for key, amount in found.mix.items()
+    )
+    return Result(
+        found.feed.id, found.feed.name, Amounts.BLEND, Status.OPTIMAL, "USD", TODAY, parts, (), (), (), (), (), cost=0.0
+    )
 
 
 def scale_of(found: MadeBatch, line: int, load: int) -> Scale:
