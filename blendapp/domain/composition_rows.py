@@ -99,13 +99,13 @@ def _mean(ingredient_id: int, nutrient_id: int | None, of: list[tuple[Compositio
 
 
 def _turned(row: CompositionRow, value: ReadValue, unit: str, basis: Basis) -> float:
-    amount = value.amount if value.unit == unit else units.convert(value.amount, value.unit, unit)
+    amount = value.amount if value.unit == unit else _exact(units.convert(value.amount, value.unit, unit))
     if value.basis is basis:
         return amount
     dry = row.dry_matter_percent
     if not dry:
         raise ValueError(f"{value.nutrient} of row {row.row} cannot be turned without its dry matter")
-    return amount * dry / 100 if basis is Basis.AS_FED else amount * 100 / dry
+    return _exact(amount * dry / 100 if basis is Basis.AS_FED else amount * 100 / dry)
 
 
 def _exact(amount: float) -> float:

@@ -25,27 +25,44 @@ _LEAST_FOR_MEDIAN = 3
 
 
 def ask_about_same_samples(rows: Sequence[CompositionRow], answers: Answers) -> list[CompositionRow]:
-    """Rows of one ingredient, sample number and day are a question; several samples of an ingredient are none."""
-    def sample(row: CompositionRow) -> object | None:
-        return None if row.ingredient_id is None else (row.ingredient_id, fold(row.sample), row.sampled)
+    """Rows of one ingredient, sample number and day that give the same nutrient are a question.
+
+    Several samples of an ingredient are none, nor is one sample whose analyses stand in several tables.
+    """
+    nutrients: dict[object, list[int | None]] = defaultdict(list)
+    for row in rows:
+        if row.fate in (Fate.ACCEPTED, Fate.QUESTION):
+            nutrients[_sample(row)] += {value.nutrient_id for value in row.values}
+
+    def twin(row: CompositionRow) -> object | None:
+        found = nutrients[_sample(row)]
+        return None if row.ingredient_id is None or len(found) == len(set(found)) else _sample(row)
 
     return ask_about_twins(
-        rows, sample, answers, _("Left out, as answered: the sample in {place} holds."),
+        rows, twin, answers, _("Left out, as answered: the sample in {place} holds."),
         _("This sample of “{name}” stands in {others} too; say which holds."),
     )
+
+
+def _sample(row: CompositionRow) -> tuple[int | None, str, datetime.date | None]:
+    return row.ingredient_id, fold(row.sample), row.sampled
 
 
 def ask_about_known_samples(
     rows: Sequence[CompositionRow], answers: Answers, library: Library
 ) -> list[CompositionRow]:
-    """A sample that an earlier list brought is a question."""
+    """A sample of which an earlier list brought the same nutrient is a question."""
     known: dict[object, Lot] = {}
     for lot in library.all("lot"):
         if lot.price_list_id is not None:
             known[lot.ingredient_id, fold(lot.name), lot.received] = lot
+    held = {(value.lot_id, value.nutrient_id) for value in library.all("lot_value")}
+    held |= {(lot.id, None) for lot in known.values() if lot.dry_matter_percent is not None}
     found = []
     for row in rows:
-        lot = known.get((row.ingredient_id, fold(row.sample), row.sampled)) if row.sample else None
+        lot = known.get(_sample(row)) if row.sample else None
+        if lot is not None and not any((lot.id, value.nutrient_id) in held for value in row.values):
+            lot = None
         kept = None if lot is None else library.records["price_list"].get(lot.price_list_id or 0)
         taken = answers.of_row(Asked.TWIN, row.sheet, row.row) == TAKE
         if row.fate not in (Fate.ACCEPTED, Fate.QUESTION) or kept is None or taken:

@@ -28,6 +28,7 @@ from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.list_cells import first_text, holds_number
 from blendapp.exchange.list_columns import answered_sign, date_order
 from blendapp.exchange.list_files import open_list
+from blendapp.exchange.list_headings import known_names
 from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_numbers import DecimalSign
 from blendapp.exchange.list_placing import Placing
@@ -71,8 +72,12 @@ def read_composition_list(
 
 def read_table(raw: RawTable, library: Library, finders: Finders) -> tuple[list[CompositionRow], SourceSheet]:
     """The fate of every row of one sheet that is not blank, and the sheet with the tables that were found on it."""
-    tables = [] if is_transposed(raw, finders) else find_tables(raw, finders)
-    if not tables:
+    tables = find_tables(raw, finders)
+    named = any(
+        table.name is not None and known_names(raw, table.name, table.first_row, finders.names.is_known)
+        for table, _first, _last in tables
+    )
+    if not tables or (not named and is_transposed(raw, finders)):
         return list(_without_table(raw, finders)), source_sheet(raw, ())
     rows: list[CompositionRow] = []
     shown = []

@@ -50,18 +50,33 @@ def apply_composition_list(mill: Mill, reading: CompositionReading, on: datetime
     kept = kept_list(mill, reading, len(rows), ListAbout.COMPOSITION)
     changes: list[Change] = [added(kept)]
     taken = {(lot.ingredient_id, fold(lot.name)) for lot in mill.library.all("lot")}
+    samples: dict[object, list[CompositionRow]] = {}
     for row in rows:
-        changes += _sample(mill, row, kept, on, taken)
+        samples.setdefault((row.ingredient_id, fold(row.sample), row.sampled), []).append(row)
+    for of in samples.values():
+        changes += _lots(mill, of, kept, on, taken)
     for mean in sample_means(rows):
         changes += _mean_taken(mill, mean, reading.file_name, on)
     changes += memory_changes(mill, reading)
     return mill.apply(_("Analyses from {file}").format(file=reading.file_name), changes)
 
 
-def _sample(
+def _lots(
+    mill: Mill, of: Sequence[CompositionRow], kept: PriceList, on: datetime.date, taken: set[tuple[int, str]]
+) -> list[Change]:
+    """The rows of one sample as one lot; each row as its own where they measured the same.
+
+    taken: the names that lots have by ingredient; new ones are added.
+    """
+    values = [value for row in of for value in row.values]
+    if len({value.nutrient_id for value in values}) < len(values):
+        return [change for row in of for change in _lot(mill, row, kept, on, taken)]
+    return _lot(mill, replace(of[0], values=tuple(values)), kept, on, taken)
+
+
+def _lot(
     mill: Mill, row: CompositionRow, kept: PriceList, on: datetime.date, taken: set[tuple[int, str]]
 ) -> list[Change]:
-    """A row as a lot. taken: the names that lots have by ingredient; the new one is added."""
     assert row.ingredient_id is not None
     wanted = row.sample or (row.sampled.isoformat() if row.sampled else "")
     wanted = wanted or _("{file}, row {row}").format(file=kept.file_name, row=row.row)

@@ -97,7 +97,7 @@ def test_a_list_its_samples_and_its_answers_are_one_undo(mill: Mill, tmp_path: P
     text = LIST.replace("CP % as fed", "CF % as fed")
     reading = read(mill, tmp_path, "lab.csv", text, Answer(Asked.NUTRIENT, "CF % as fed", LEAVE_OUT))
     apply_composition_list(mill, reading, TODAY)
-    assert [(one.asked, one.answer) for one in remembered(mill, "lab.csv")] == [(Asked.NUTRIENT, LEAVE_OUT)]
+    assert [(one.asked, one.answer) for one in remembered(mill)] == [(Asked.NUTRIENT, LEAVE_OUT)]
     mill.undo()
     assert mill.store.dump() == before
     mill.redo()
@@ -132,6 +132,16 @@ def test_an_applied_list_opens_again_with_every_row(mill: Mill, tmp_path: Path) 
     assert applied_lists(mill, ListAbout.PRICES) == []
     assert open_list(mill, kept.id) == [replace(row, questions=()) for row in reading.rows]
     assert [row.fate for row in open_list(mill, kept.id)][-2:] == [Fate.QUESTION, Fate.REFUSED]
+
+
+def test_one_sample_whose_analyses_stand_in_two_tables_is_one_lot(mill: Mill, tmp_path: Path) -> None:
+    text = "Ingredient,Sample,CP % as fed\nMaize,A1,8.2\n\nIngredient,Sample,Lysine % as fed\nMaize,A1,0.26\n"
+    apply_composition_list(mill, read(mill, tmp_path, "lab.csv", text), TODAY)
+    assert [lot.name for lot in mill.library.all("lot")] == ["A1"]
+    assert [(one.lot_id, one.nutrient_id) for one in mill.library.all("lot_value")] == [(1, PROTEIN), (1, LYSINE)]
+    later = read(mill, tmp_path, "later.csv", "Ingredient,Sample,DM %\nMaize,A1,87\n")
+    assert len(later.accepted) == 1, "what was not measured before is no second time"
+    assert read(mill, tmp_path, "later.csv", "Ingredient,Sample,CP % as fed\nMaize,A1,8.3\n").accepted == []
 
 
 def test_nothing_is_recorded_where_no_row_was_accepted(mill: Mill, tmp_path: Path) -> None:
