@@ -6,7 +6,7 @@ import datetime
 from collections.abc import Iterable
 
 from blendapp.domain.library import Library
-from blendapp.domain.list_rows import Answer, source_of
+from blendapp.domain.list_rows import LEAVE_OUT, Answer, source_of
 from blendapp.domain.mills import Asked, Synonym
 from blendapp.domain.names import fold
 
@@ -23,6 +23,10 @@ class Answers:
             fold(one.name): one.answer for one in library.all("synonym") if one.asked is Asked.USUAL_CHANGE
         }
         self._given = {answer.key: answer for answer in given}
+        self._left_out = {
+            (answer.sheet, answer.row) for answer in self._given.values()
+            if answer.asked.is_of_row and answer.answer == LEAVE_OUT
+        }
         self._remembered: dict[tuple[Asked, str], Synonym] = {
             (one.asked, fold(one.name)): one
             for one in library.all("synonym")
@@ -59,6 +63,10 @@ class Answers:
         """TAKE, LEAVE_OUT, or nothing; row from 1."""
         found = self._given.get((asked, "", sheet, row))
         return "" if found is None else found.answer
+
+    def is_left_out(self, sheet: str, row: int) -> bool:
+        """Whether any question about a row was answered by leaving it out; row from 1."""
+        return (sheet, row) in self._left_out
 
     def about_row(self, asked: Asked, sheet: str, row: int) -> Answer | None:
         """The whole answer to a question about a row; row from 1."""

@@ -2,9 +2,14 @@
 
 from __future__ import annotations
 
+import re
+
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
 from blendapp.exchange.tables import CellKind, CellValue, RawTable, column_letters, kind_of
+
+_LONG = 240
+_LONG_QUOTE = re.compile(r"(“[^”]{80})[^”]+")
 
 
 def place(row: int, column: int) -> str:
@@ -22,6 +27,11 @@ def error_in(value: CellValue, row: int, column: int) -> str:
         text = _("The formula in the cell {place} has no stored result; open the list, let it calculate, and save it.")
         return text.format(place=place(row, column))
     return ""
+
+
+def shortened(sentence: str) -> str:
+    """A sentence in which what the list says is cut off after some words, where it says very much."""
+    return _LONG_QUOTE.sub(r"\1…", sentence) if len(sentence) > _LONG else sentence
 
 
 def holds_number(value: CellValue) -> bool:

@@ -16,6 +16,9 @@ from blendapp.exchange.list_answers import Answers
 # A figure this near to 10, 100 or 1000 times the old one has more likely lost its decimal sign or its unit.
 _NEAR_POWER = 0.35
 
+# Twins that a question names one by one.
+MOST_NAMED = 6
+
 Row = TypeVar("Row", bound=ListRow)
 
 
@@ -31,22 +34,27 @@ def ask_about_twins(
     for row in rows:
         if row.fate in (Fate.ACCEPTED, Fate.QUESTION) and (key := key_of(row)) is not None:
             places[key].append(row)
+    held = {
+        key: [twin for twin in twins if answers.of_row(Asked.TWIN, twin.sheet, twin.row) == TAKE]
+        for key, twins in places.items() if len(twins) > 1
+    }
     found = []
     for row in rows:
         key = key_of(row) if row.fate in (Fate.ACCEPTED, Fate.QUESTION) else None
-        twins = [] if key is None else places[key]
-        found.append(_asked_about_twins(row, twins, answers, left_out, text) if len(twins) > 1 else row)
+        found.append(_asked_about_twins(row, places[key], held[key], left_out, text) if key in held else row)
     return found
 
 
-def _asked_about_twins(row: Row, twins: list[Row], answers: Answers, left_out: str, text: str) -> Row:
-    held = [twin for twin in twins if answers.of_row(Asked.TWIN, twin.sheet, twin.row) == TAKE]
+def _asked_about_twins(row: Row, twins: list[Row], held: list[Row], left_out: str, text: str) -> Row:
     if len(held) == 1:
         if held[0] is row:
             return row
         reason = left_out.format(place=place_of(held[0], row))
         return replace(row, fate=Fate.IGNORED, reason=reason, questions=())
-    others = _(" and ").join(place_of(twin, row) for twin in twins if twin is not row)
+    named = [place_of(twin, row) for twin in twins[: MOST_NAMED + 1] if twin is not row][:MOST_NAMED]
+    if len(twins) - 1 > len(named):
+        named.append(_("{count} more").format(count=len(twins) - 1 - len(named)))
+    others = _(" and ").join(named)
     return asked(row, text.format(name=row.ingredient, others=others), Asked.TWIN)
 
 

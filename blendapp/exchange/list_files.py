@@ -10,11 +10,15 @@ from blendapp.domain.names import fold
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.wording import _
 from blendapp.exchange.delimited import read_delimited
-from blendapp.exchange.files import Format, SourceFile, open_source
+from blendapp.exchange.files import Format, SourceFile, open_source, refusal
 from blendapp.exchange.list_source import find_source
 from blendapp.exchange.spreadsheets import read_spreadsheet
 from blendapp.exchange.suggestions import did_you_mean
-from blendapp.exchange.tables import RawTable
+from blendapp.exchange.tables import CellKind, RawTable, column_letters, kind_of
+
+# Far above any list of a mill; every row and every heading costs time.
+MOST_ROWS = 50_000
+MOST_COLUMNS = 300
 
 
 @dataclass(frozen=True)
@@ -38,12 +42,29 @@ def open_list(path: str | Path, sheet: str | None, source: str = "") -> OpenedLi
     file = open_source(path)
     notes: list[str] = []
     tables = _chosen(_tables(file), sheet, file.name, notes)
+    _check_extent(tables, file.name)
     if file.format in (Format.XLS, Format.XLSB, Format.ODS):
         notes.append(_("What is hidden, struck through or in error cannot be told in this file; check it by eye."))
     if source:
         return OpenedList(file, tuple(tables), tuple(notes), source_of(source))
     source, note = find_source(Path(path), tables)
     return OpenedList(file, tuple(tables), (*notes, *filter(None, [note])), source)
+
+
+def _check_extent(tables: list[RawTable], file: str) -> None:
+    """Cuts off blank ends of rows, and refuses what is no list: looking through it would take minutes."""
+    filled = 0
+    for table in tables:
+        for number, cells in enumerate(table.rows, start=1):
+            while cells and kind_of(cells[-1]) is CellKind.BLANK:
+                cells.pop()
+            filled += bool(cells)
+            if len(cells) > MOST_COLUMNS:
+                text = _("Row {row} reaches to column {column}, further than lists do; keep only the columns needed.")
+                raise refusal(file, text.format(row=number, column=column_letters(len(cells) - 1)))
+    if filled > MOST_ROWS:
+        text = _("The list has {count} filled rows, more than a mill buys by; keep only those needed.")
+        raise refusal(file, text.format(count=filled))
 
 
 def _tables(source: SourceFile) -> list[RawTable]:

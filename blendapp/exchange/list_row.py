@@ -9,7 +9,7 @@ from blendapp.domain.list_rows import LEAVE_OUT, TAKE, Question
 from blendapp.domain.mills import Asked
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
-from blendapp.exchange.list_cells import error_in
+from blendapp.exchange.list_cells import error_in, shortened
 from blendapp.exchange.list_names import Match, NameFinder
 from blendapp.exchange.list_numbers import DateOrder, date_in_column, date_readings
 from blendapp.exchange.tables import CellKind, RawTable, column_letters, kind_of
@@ -56,7 +56,8 @@ class RowReading:
 
     def ask(self, asked: Asked, about: str, text: str, choices: tuple[str, ...] = (), reason: str = "") -> None:
         """Asks. reason: what is said of this row, where that is more than the question."""
-        self.questions.append(reason or text)
+        text = shortened(text)
+        self.questions.append(shortened(reason) or text)
         self.open.append(Question(asked, about, text, choices))
 
     def confirm(self, asked: Asked, text: str) -> None:
@@ -74,10 +75,7 @@ class RowReading:
         """Whether a person has answered that the row, or whatever bears its name, is nothing for the mill."""
         if self.names.is_left_out(self.name):
             return True
-        place = self.raw.sheet, self.row + 1
-        return any(
-            self.answers.of_row(asked, *place) == LEAVE_OUT for asked in Asked if asked.is_of_row
-        )
+        return self.answers.is_left_out(self.raw.sheet, self.row + 1)
 
     def error(self, columns: Iterable[int]) -> str:
         """The sentence for the first cell among columns that holds an error, or no stored value; "" if none does."""

@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Callable
 from dataclasses import dataclass, field
+from functools import lru_cache
 
 from blendapp.domain.list_rows import ColumnRole
 from blendapp.exchange.price_words import Words, read_heading_words, split_dry
@@ -123,6 +124,11 @@ RoleOf = Callable[[str, int], tuple[ColumnRole, Words]]
 
 def role_of(heading: str, _index: int = 0) -> tuple[ColumnRole, Words]:
     """The role that a heading gives its column."""
+    return _role_of(heading)
+
+
+@lru_cache(4096)
+def _role_of(heading: str) -> tuple[ColumnRole, Words]:
     words = read_heading_words(heading)
     plain = " ".join(re.sub(r"[^a-z0-9%]+", " ", split_dry(heading)[1].casefold()).split())
     tokens = set(plain.split())

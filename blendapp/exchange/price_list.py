@@ -10,6 +10,7 @@ from blendapp.domain.library import Library
 from blendapp.domain.list_rows import Answer, Fate, SourceSheet
 from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.wording import _
+from blendapp.exchange.files import refusal
 from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.list_cells import first_text
 from blendapp.exchange.list_files import open_list
@@ -20,7 +21,14 @@ from blendapp.exchange.price_checks import ask_about_duplicates, ask_about_leaps
 from blendapp.exchange.price_columns import LIST_ROLES
 from blendapp.exchange.price_days import ask_once_about_expired
 from blendapp.exchange.price_row import read_row
-from blendapp.exchange.price_segments import Segment, pointed_out_table, read_segments, source_table
+from blendapp.exchange.price_segments import (
+    MOST_TABLES,
+    Segment,
+    TooManyTables,
+    pointed_out_table,
+    read_segments,
+    source_table,
+)
 from blendapp.exchange.price_tables import find_table
 from blendapp.exchange.price_unplaced import without_columns, without_table
 from blendapp.exchange.source_sheets import source_sheet
@@ -49,7 +57,11 @@ def read_price_list(
     sheets = []
     placing = Placing(answered, LIST_ROLES)
     for table in opened.tables:
-        found, sheet_read = read_table(table, library, names, today, placing)
+        try:
+            found, sheet_read = read_table(table, library, names, today, placing)
+        except TooManyTables:
+            text = _("A sheet has more than {count} rows of headings; keep only those needed.")
+            raise refusal(opened.file.name, text.format(count=MOST_TABLES)) from None
         rows += found
         sheets.append(sheet_read)
     placing.note_what_was_not_used(

@@ -15,6 +15,7 @@ from blendapp.domain.notation import PLAIN
 from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.quotes import Terms
 from blendapp.domain.wording import _
+from blendapp.exchange.list_cells import shortened
 from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_numbers import DecimalSign
 from blendapp.exchange.list_row import TOTALS, RowReading
@@ -64,7 +65,7 @@ class _Reading(RowReading):
         super().__init__(raw, row, names, self.table.name, self.table.headings)
 
     def _entry(self, fate: Fate, reason: str, **known: object) -> PriceRow:
-        return PriceRow(self.raw.sheet, self.row + 1, fate, reason, self.name, **known)  # type: ignore[arg-type]
+        return PriceRow(self.raw.sheet, self.row + 1, fate, shortened(reason), self.name, **known)  # type: ignore[arg-type]
 
     def result(self) -> PriceRow:
         if error := self._error():

@@ -19,6 +19,12 @@ from blendapp.exchange.price_tables import headed_table
 from blendapp.exchange.price_words import Words
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
 
+MOST_TABLES = 500
+
+
+class TooManyTables(Exception):
+    """A sheet holds more tables than anybody makes."""
+
 
 @dataclass(frozen=True)
 class Segment:
@@ -33,8 +39,8 @@ class Segment:
 
 
 def read_segments(raw: RawTable, table: Table, names: NameFinder, placing: Placing) -> Iterator[Segment]:
-    """The table, and every further one below it that has headings of its own."""
-    first, titles = 0, Notes()
+    """The table, and every further one below it that has headings of its own. Raises TooManyTables."""
+    first, titles, count = 0, Notes(), 1
     for row in range(table.first_row, len(raw.rows)):
         if row < table.first_row:  # the second heading row of a table found meanwhile
             continue
@@ -44,7 +50,9 @@ def read_segments(raw: RawTable, table: Table, names: NameFinder, placing: Placi
         segment = _segment(raw, table, first, row, names.answers, titles)
         yield segment
         titles = segment.notes
-        table, first = found, row
+        table, first, count = found, row, count + 1
+        if count > MOST_TABLES:
+            raise TooManyTables
     yield _segment(raw, table, first, len(raw.rows), names.answers, titles)
 
 

@@ -10,6 +10,7 @@ from blendapp.domain.wording import _
 
 LEAST_LIKENESS = 0.6
 MOST_SUGGESTED = 3
+LONGEST_NAME = 200
 # Of two names equally alike, the one with the same numbers is proposed first: 48 % is rather 48 % than 44 %.
 _SAME_NUMBERS = 5.0
 # What is so much less alike than the best is no longer meant.
@@ -35,6 +36,8 @@ class Suggester:
         from rapidfuzz import fuzz, process
 
         folded = fold(text)
+        if len(folded) > LONGEST_NAME:
+            return []
         likeness: dict[str, float] = {}
         for query, choices in ((folded, self._plain), (_in_order(folded), self._sorted)):
             found = process.extract(

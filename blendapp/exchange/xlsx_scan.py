@@ -14,6 +14,8 @@ from blendapp.exchange.xlsx_styles import CellStyles, is_set, read_struck_texts,
 
 # calamine lays a sheet out as a full rectangle, so a cell far out costs memory for everything before it.
 GREATEST_AREA = 5_000_000
+# What spreadsheets hold.
+MOST_COLUMNS = 16_384
 
 __all__ = ["ForbiddenEntities", "SheetScan", "TooFarOut", "careful_parser", "scan_sheets", "sheet_parts"]
 
@@ -176,7 +178,8 @@ class _Cells:
             if self.row > scan.last_row or self.column > scan.last_column:
                 scan.last_row = max(scan.last_row, self.row)
                 scan.last_column = max(scan.last_column, self.column)
-                if (scan.last_row + 1) * (scan.last_column + 1) > GREATEST_AREA:
+                area = (scan.last_row + 1) * (scan.last_column + 1)
+                if area > GREATEST_AREA or scan.last_column >= MOST_COLUMNS:
                     raise TooFarOut(scan.last_row, scan.last_column)
             if self.struck_run or (self.struck_texts and self.kind == "s" and self._is_struck_text()):
                 scan.struck.add((self.row, self.column))

@@ -12,6 +12,7 @@ from pathlib import Path
 import pytest
 
 from blendapp.domain.library import Library
+from blendapp.domain.list_rows import Fate
 from blendapp.domain.problems import Refused
 from blendapp.exchange import read_price_list, read_workbook
 from tests.exchange.made_files import small_mill, write_sheets
@@ -223,3 +224,47 @@ def test_a_part_with_damaged_bytes_is_read_or_refused_in_sentences(tmp_path: Pat
         ):
             with suppress(Refused):
                 read()
+
+
+def test_a_text_of_a_million_columns_is_refused(tmp_path: Path) -> None:
+    path = tmp_path / "wide.csv"
+    path.write_text(",".join(["x"] * 1_000_000) + "\n")
+    assert "1000000 columns" in sentence(lambda: read_price_list(path, library(), TODAY))
+
+
+def test_a_workbook_of_a_million_columns_is_refused(tmp_path: Path) -> None:
+    chance = random.Random(1)  # so that it packs no better than a table does
+    cells = b"".join(b"<c><v>%d</v></c>" % chance.randrange(10**9) for _cell in range(1_000_000))
+    path = repacked(
+        write_xlsx(tmp_path / "a.xlsx", ROWS), tmp_path / "wide.xlsx",
+        lambda name, data: data.replace(b"<sheetData>", b'<sheetData><row r="1">' + cells + b"</row>")
+        if name.endswith("sheet1.xml") else data,
+    )
+    assert "and column 16385" in sentence(lambda: read_price_list(path, library(), TODAY))
+
+
+@pytest.mark.parametrize(
+    ("text", "said"),
+    [
+        ("x," * 900 + "\nIngredient,Price,Unit\n", "reaches to column AHP"),
+        ("Maize,205,t\n" * 60_000, "60000 filled rows"),
+        ("Ingredient,Price,Unit\nMaize,205,t\n" * 600, "more than 500 rows of headings"),
+    ],
+)
+def test_what_is_no_list_of_a_mill_is_refused_at_once(tmp_path: Path, text: str, said: str) -> None:
+    path = tmp_path / "much.csv"
+    path.write_text(text.replace("x,", "word,"))
+    assert said in sentence(lambda: read_price_list(path, library(), TODAY))
+
+
+def test_a_very_long_cell_does_not_fill_the_screen(tmp_path: Path) -> None:
+    path = write_text(tmp_path / "long.csv", [*ROWS, ["Maize", "1,5 " * 9000, "t"], ["Soy " * 9000, 205, "t"]])
+    rows = read_price_list(path, library(), TODAY).rows
+    assert [row.fate for row in rows[2:]] == [Fate.QUESTION, Fate.QUESTION]
+    assert all(len(row.reason) < 500 and all(len(one.text) < 500 for one in row.questions) for row in rows)
+
+
+def test_many_twins_are_told_in_a_short_sentence(tmp_path: Path) -> None:
+    path = write_text(tmp_path / "twins.csv", [*ROWS, *([["Maize", 205, "t"]] * 3000)])
+    rows = read_price_list(path, library(), TODAY).rows
+    assert rows[1].reason.endswith("row 7 and row 8 and 2994 more; say which holds.")

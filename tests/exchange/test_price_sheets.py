@@ -66,7 +66,7 @@ def test_each_table_says_where_it_stands_and_what_its_columns_hold(read: Read) -
     assert lower.columns == (
         SourceColumn(0, "Ingredient", ColumnRole.NAME),
         SourceColumn(1, "EUR/t", ColumnRole.PRICE, "EUR per t, decimal comma"),
-        SourceColumn(2, "Code", ColumnRole.NOTE), SourceColumn(3, "", ColumnRole.OTHER),
+        SourceColumn(2, "Code", ColumnRole.NOTE),
     )
 
 
