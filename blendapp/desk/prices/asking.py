@@ -128,6 +128,8 @@ def answer_words(asked: Asked, answer: str) -> str:
         number = answer.removeprefix("row ")
         if number.isdigit() and number != "0":
             return _("Its headings are in row {row}").format(row=number)
+    elif asked is Asked.PRICE and answer not in said:
+        return _("The price under “{name}” holds").format(name=answer)
     elif asked is Asked.BASIS:
         said = {"as fed": _("as fed"), "dry matter": _("of dry matter")}
     return said.get(answer, answer)

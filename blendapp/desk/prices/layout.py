@@ -34,6 +34,8 @@ from blendapp.domain.list_rows import Fate, ListReading
 from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.wording import _
 
+LEAST_SOURCE_PX = 320
+
 
 class _Handle(QSplitterHandle):
     def paintEvent(self, event: QPaintEvent) -> None:
@@ -117,8 +119,8 @@ class Parts:
         self.leave.setToolTip(_("Back to the bench; what you have answered is kept while the mill file is open"))
         self.take.setToolTip(_("Ctrl+Enter from anywhere on this page"))
         self.whose = Whose(finder, ask)
-        self.notes = Elided()
-        self.notes.setObjectName("quiet")
+        self.notes = QLabel()
+        self.notes.setWordWrap(True)
         self.sheets = SheetChoice()
         self.source = SourceTableView()
         self.questions = QuestionPanel()
@@ -142,7 +144,7 @@ class Parts:
         whose.setContentsMargins(0, 0, 0, 0)
         whose.setSpacing(GAP_PX)
         whose.addWidget(self.whose)
-        whose.addWidget(self.notes, 1)
+        whose.addStretch(1)
         whose.addWidget(self.other)
         left, right = QWidget(), QWidget()
         self.halves = _Halves()
@@ -154,17 +156,30 @@ class Parts:
             for part in parts:
                 column.addWidget(part, 1 if part in (self.source, self.tables) else 0)
             self.halves.addWidget(side)
-        left.setMinimumWidth(320)
-        right.setMinimumWidth(440)
+        left.setMinimumWidth(LEAST_SOURCE_PX)
+        right.setMinimumWidth(480)
         self.halves.setSizes([460, 560])
-        self.halves.setStretchFactor(0, 46)
-        self.halves.setStretchFactor(1, 54)
+        self.halves.setStretchFactor(0, 0)
+        self.halves.setStretchFactor(1, 1)
+        self.halves.splitterMoved.connect(lambda _place, _index: self._moved())
+        self._is_moved = False
         column = QVBoxLayout(page)
         column.setContentsMargins(MARGIN_PX, GAP_PX * 2, MARGIN_PX, 0)
         column.setSpacing(GAP_PX // 2)
         column.addLayout(head)
         column.addLayout(whose)
+        column.addWidget(self.notes)
         column.addWidget(self.halves, 1)
+
+    def _moved(self) -> None:
+        self._is_moved = True
+
+    def share_width(self) -> None:
+        """Give the source as much of the width as it needs, at most half; where the person has drawn it, it stays."""
+        whole = sum(self.halves.sizes())
+        if whole and not self._is_moved:
+            left = max(min(self.source.wanted_width(), whole * 46 // 100), LEAST_SOURCE_PX)
+            self.halves.setSizes([left, whole - left])
 
     # -- what is shown
 
@@ -188,7 +203,8 @@ class Parts:
         self.title.setText(reading.file_name)
         self.other.setText(_("Read it as analyses") if prices else _("Read it as prices"))
         self.whose.show_reading(reading, library)
-        self.notes.say("   ".join(reading.notes))
+        self.notes.setText("\n".join(reading.notes))
+        self.notes.setVisible(bool(reading.notes))
         self.sheets.show_names([sheet.name for sheet in reading.sheets])
         self.counts.show_reading(reading)
         self.show_rows(reading, only)
@@ -203,7 +219,3 @@ class Parts:
         for model in (self.price_rows, self.sample_rows):
             model.show(None)
         self.source.rows.show(None, "", {}, frozenset())
-
-    def say_remark(self, text: str) -> None:
-        """Say something quietly beside the title."""
-        self.remark.say(text)

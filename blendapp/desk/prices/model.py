@@ -19,8 +19,8 @@ class PriceRows(UnderstoodRows):
         assert isinstance(reading, PriceListReading)
         per_t = _("{currency}/t").format(currency=reading.currency)
         return [
-            Heading("fate", "", 72), Heading("place", _("row"), 44, True), Heading("ingredient", _("Ingredient"), 170),
-            Heading("entered", _("as listed"), 98, True), Heading("price", per_t, 78, True),
+            Heading("fate", "", 72), Heading("place", _("row"), 40, True), Heading("ingredient", _("Ingredient"), 170),
+            Heading("entered", _("as listed"), 112, True), Heading("price", per_t, 78, True),
             Heading("old", _("was"), 72, True), Heading("change", _("change"), 70, True),
             Heading("percent", "%", 58, True),
         ]

@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 from PySide6.QtCore import QModelIndex, Qt, Signal
-from PySide6.QtGui import QKeyEvent, QShowEvent
+from PySide6.QtGui import QKeyEvent, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QWidget
 
 from blendapp.desk.finder.ask import Ask
@@ -16,12 +16,13 @@ from blendapp.desk.prices.layout import Parts
 from blendapp.desk.prices.reader import ListReader
 from blendapp.desk.prices.roles import sayings
 from blendapp.desk.prices.session import Session, Sessions
+from blendapp.desk.prices.words import left_open, state_words, take_words, taken_words
 from blendapp.desk.work import Work
 from blendapp.domain.list_rows import Answer, Fate, ListReading, SourceSheet
 from blendapp.domain.mills import Asked, ListAbout
 from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.problems import Refused
-from blendapp.domain.wording import _, plural
+from blendapp.domain.wording import _
 from blendapp.services.arriving import apply_list, taken_before
 from blendapp.services.mill import Edit
 from blendapp.services.movers import with_prices
@@ -151,8 +152,13 @@ class ListPane(QWidget):
 
     def showEvent(self, event: QShowEvent) -> None:
         super().showEvent(event)
+        self.parts.share_width()
         if self._stale:
             self.again()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self.parts.share_width()
 
     # -- answering
 
@@ -215,6 +221,8 @@ class ListPane(QWidget):
             self._only = None
         self.parts.show_reading(reading, library, self._only)
         self._show_sheet(None if not first else reading.sheets[0].name if reading.sheets else None)
+        if first:
+            self.parts.share_width()
         self.questions.show_questions(
             open_questions(reading), library, reading.source, len(reading.sheets) > 1, self.work.on)
         if self._go_to is not None:
@@ -245,25 +253,13 @@ class ListPane(QWidget):
         self.questions.say_last(self.last_answer)
         taken, running = self._is_taken(session), self.reader.running
         count = reading.count(Fate.ACCEPTED)
-        if taken:
-            self.take.setText(_("Taken"))
-        elif session.about is ListAbout.PRICES:
-            self.take.setText(plural("Take {count} price", "Take {count} prices", count).format(count=count))
-        else:
-            self.take.setText(plural("Take {count} sample", "Take {count} samples", count).format(count=count))
+        self.take.setText(_("Taken") if taken else take_words(session.about, count))
         ready = count > 0 and not taken and not running and self.work.is_open and self.work.mill.writable
         self.take.setEnabled(ready)
         self.look.setVisible(session.about is ListAbout.PRICES)
         self.look.setEnabled(count > 0 and not running)
-        earlier = taken_before(self.work.library, reading.digest)
-        self.parts.say_remark(_("reading…") if running else self._remark(taken, earlier is not None))
-
-    def _remark(self, taken: bool, before: bool) -> str:
-        if taken:
-            return _("taken; Ctrl+Z takes it back")
-        if before:
-            return _("this very file was taken before; taking it again records everything a second time")
-        return _("nothing is stored before it is taken")
+        before = taken_before(self.work.library, reading.digest) is not None
+        self.parts.remark.say(state_words(running=running, taken=taken, before=before))
 
     def _show_only(self, fate: Fate | None) -> None:
         self._only = fate
@@ -363,18 +359,12 @@ class ListPane(QWidget):
         session.taken_as = max(self.work.library.records["price_list"], default=None)
         self._say_state()
         self.changed.emit()
-        count = reading.count(Fate.ACCEPTED)
-        left = [f"{row.sheet} {row.row}, {row.source_name}: {row.reason}".strip() for row in reading.rows
-                if row.fate in (Fate.QUESTION, Fate.REFUSED)]
         if session.about is ListAbout.PRICES:
             self.effect_wanted.emit(before, self.work.library.copy(), True)
-            text = plural("{count} price from {file} is in force; Ctrl+Z takes it back.",
-                          "{count} prices from {file} are in force; Ctrl+Z takes them back.", count)
         else:
             self.closed.emit()
-            text = plural("{count} sample from {file} is taken; Ctrl+Z takes it back.",
-                          "{count} samples from {file} are taken; Ctrl+Z takes them back.", count)
-        self.said.emit(text.format(count=count, file=reading.file_name), left)
+        words = taken_words(session.about, reading.count(Fate.ACCEPTED), reading.file_name)
+        self.said.emit(words, left_open(reading))
 
     # -- keys
 

@@ -6,7 +6,7 @@ import datetime
 from collections.abc import Sequence
 
 from PySide6.QtCore import QEvent, QModelIndex, QObject, Qt, Signal
-from PySide6.QtGui import QKeyEvent
+from PySide6.QtGui import QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QLineEdit, QVBoxLayout, QWidget
 
 from blendapp.desk.prices.answer_field import AnswerField, RateFields
@@ -86,11 +86,12 @@ class QuestionPanel(QWidget):
         column.setContentsMargins(0, 0, 0, GAP_PX)
         column.setSpacing(6)
         column.addLayout(head)
-        for part in (self.text, self.rate, self.field, self.choices, self.fault, self.kept, self.later, self.others, self.last):
+        answers = (self.rate, self.field, self.choices, self.fault, self.kept)
+        for part in (self.text, *answers, self.later, self.others, self.last):
             column.addWidget(part)
         self.choices.clicked.connect(self._clicked)
         self.others.clicked.connect(self._go_to_other)
-        self.field.textEdited.connect(self._narrow)
+        self.field.textEdited.connect(self.narrow)
         for field in (self.field, self.rate.rate, self.rate.day):
             field.installEventFilter(self)
 
@@ -176,17 +177,22 @@ class QuestionPanel(QWidget):
         self.others.show_choices(
             [Choice("", other.question.text, row_words(other.row, self.several_sheets), is_aside=True)
              for other in others[:MOST_LISTED]], numbered=False)
-        self.others.setFixedHeight(min(len(others), self._room_for_others()) * LINE_PX + 2)
+        self._fit_others()
         self.others.clearSelection()
         self.later.setVisible(bool(others))
 
-    def _room_for_others(self) -> int:
+    def _fit_others(self) -> None:
         page = self.parentWidget()
-        return FEW_OTHERS if page is not None and page.height() < LOW_PX else MOST_OTHERS
+        room = FEW_OTHERS if page is not None and page.height() < LOW_PX else MOST_OTHERS
+        self.others.setFixedHeight(min(len(self.others.rows.choices), room) * LINE_PX + 2)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._fit_others()
 
     # -- answering
 
-    def _narrow(self, typed: str) -> None:
+    def narrow(self, typed: str) -> None:
         one = self.current
         if one is None:
             return
@@ -208,7 +214,7 @@ class QuestionPanel(QWidget):
         self.go_to(order[index.row()])
         self.setFocus()
 
-    def _enter(self) -> None:
+    def enter(self) -> None:
         one = self.current
         if one is None:
             self.take.emit()
@@ -277,11 +283,11 @@ class QuestionPanel(QWidget):
             if event.modifiers() & Qt.KeyboardModifier.ControlModifier:
                 self.take.emit()
             else:
-                self._enter()
+                self.enter()
         elif key == Qt.Key.Key_Escape:
             if field is self.field and text:
                 self.field.clear()
-                self._narrow("")
+                self.narrow("")
             else:
                 self.left.emit()
         elif key == Qt.Key.Key_Backspace and (field is None or not text):

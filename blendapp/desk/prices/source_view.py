@@ -113,6 +113,10 @@ class SourceTableView(QTableView):
         self.verticalScrollBar().valueChanged.connect(self._scrolled)
         self.rows.modelReset.connect(self._lay)
 
+    def wanted_width(self) -> int:
+        """The width at which every column is in view."""
+        return self.gutter.room() + self.head.length() + 2 * PAD_PX + self.verticalScrollBar().sizeHint().width()
+
     # -- what is in view
 
     @property

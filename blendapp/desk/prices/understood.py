@@ -22,7 +22,8 @@ def fate_word(fate: Fate) -> str:
 class UnderstoodRows(Grid):
     """A line, or several, for each source row. only: the fate that is shown, None for all but rows left alone.
 
-    stretch: the column that takes the width that is left. A subclass gives make_headings(reading), lines_of(row), what a line shows, and the sentence below it.
+    stretch: the column that takes the width that is left. A subclass gives make_headings(reading), lines_of(row), what
+    a line shows, and the sentence below it.
     """
 
     stretch = "ingredient"

@@ -14,10 +14,10 @@ from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import ROW_PX, text_font, tokens
 
 _WRAP = int(Qt.TextFlag.TextWordWrap) | int(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignTop)
-_INSET_PX, _MOST_MEASURED = 122, 500
+_INSET_PX, _MOST_MEASURED = 118, 500
 # Columns that give way where there is no room, the first first.
 _GIVE_WAY = ("percent", "sampled", "sample")
-_LEAST_PX, _FURTHER_PX = 110, 25
+_LEAST_PX, _MOST_PX, _FURTHER_PX = 110, 360, 25
 
 
 class UnderstoodTable(DeskTable):
@@ -46,7 +46,7 @@ class UnderstoodTable(DeskTable):
                 spare += widths[key] if hidden else 0
         column = model.column_of(model.stretch)
         if column is not None and not self.has_own_width(model.stretch):
-            self.setColumnWidth(column, max(spare, _LEAST_PX))
+            self.setColumnWidth(column, min(max(spare, _LEAST_PX), _MOST_PX))
         metrics = QFontMetrics(text_font())
         room, line = max(width - _INSET_PX - PAD_PX, 100), metrics.height()
         # In a long list the letters are counted; measuring each sentence would hold the window up.
