@@ -67,7 +67,7 @@ def test_what_expired_over_night_is_said_in_its_cell_in_the_zone_and_on_the_stri
     calendar.day += DAY
     bench.day.look()
     assert cell(bench, 3, "price") == "expired"
-    assert cell(bench, 3, "since") == f"until {calendar.day - DAY}"
+    assert cell(bench, 3, "since") == "ended 1 d"
     look = bench.have.model.look(2, bench.have.model.column_of("price") or 0)
     assert "held until" in look.hint
     assert bench.have.zone.remark.whole.endswith("1 price expired")

@@ -154,6 +154,12 @@ def test_supplier_and_terms_are_chosen_in_their_cells(page: Bench) -> None:
     assert page.history.rows.setData(page.history.rows.cell(owner, "terms"), "delivered")
     owner = page.work.library.quotes_of(1)[-1].id
     assert cell(page, owner, "terms") == "delivered"
+    assert not page.history.rows.setData(page.history.rows.cell(owner, "terms"), "by ship")
+    assert page.history.rows.setData(page.history.rows.cell(owner, "terms"), "")
+    owner = page.work.library.quotes_of(1)[-1].id
+    assert page.history.rows.setData(page.history.rows.cell(owner, "kind"), "Contract")
+    owner = page.work.library.quotes_of(1)[-1].id
+    assert (cell(page, owner, "terms"), cell(page, owner, "kind")) == ("", "contract")
     assert not page.history.rows.setData(page.history.rows.cell(owner, "supplier_id"), "Nobody Known")
     assert not page.history.rows.setData(page.history.rows.cell(owner, "valid_from"), "soon")
 

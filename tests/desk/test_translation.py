@@ -16,6 +16,9 @@ from blendapp.desk.start import make_app
 from blendapp.desk.table.grid import Grid
 from blendapp.domain import wording
 from blendapp.domain.formulas import LimitKind
+from blendapp.domain.list_rows import Answer
+from blendapp.domain.mills import Asked
+from blendapp.services.list_memory import remember, set_usual_change
 
 DATA = re.compile(
     r"Maize|Soybean meal|Limestone|Peas|Grower|Finisher|Crude protein|Lysine|Calcium|Big scale|Test mill(\.mill)?|USD|"
@@ -103,6 +106,17 @@ def test_no_visible_text_goes_past_the_catalogue(
     seen += texts_of(frame)
     seen += [(thing.words, "found") for thing in bench.things()]
     seen += [(thing.kind, "found") for thing in bench.things()]
+    bench.show_history(1)
+    bench.history.form.add.emit()
+    seen += [*looks_of(bench.history.rows), *texts_of(bench.history)]
+    bench.work.do(lambda mill: set_usual_change(mill, "", 20.0))
+    bench.work.do(lambda mill: remember(mill, "csv", Answer(Asked.INGREDIENT, "Maize", ingredient_id=1)))
+    bench.show_memory()
+    bench.memory.keep.click()
+    seen += [*looks_of(bench.memory.rows), *texts_of(bench.memory)]
+    bench.show_applied()
+    seen += [*looks_of(bench.applied.rows), *looks_of(bench.applied.opened), *texts_of(bench.applied)]
+    bench.to_bench()
     bench.have.model.setData(bench.have.model.cell(1, "price"), "x")
     seen.append((bench.have.model.look(0, 1).fault, "fault"))
     paths = {str(path) for path in bench.files.recent()}

@@ -78,6 +78,48 @@ def change_scale(bench: Bench) -> None:
     assert model.setData(model.cell(1, "step_kg"), "2")
 
 
+def on_history(bench: Bench, job: Callable[[], object]) -> None:
+    """Do a job on the price in force of the first ingredient."""
+    bench.show_history(1)
+    job()
+
+
+def add_price(bench: Bench, _folder: Path) -> None:
+    bench.show_history(1)
+    form = bench.history.form
+    form.price.setText("9 / cwt")
+    form.supplier.box.setCurrentIndex(form.supplier.box.count() - 1)
+    form.supplier.name.setText("Bay Grain")
+    form.add.emit()
+
+
+def change_days(bench: Bench, _folder: Path) -> None:
+    bench.show_history(1)
+    owner = bench.history.rows.owners[0]
+    assert bench.history.rows.setData(bench.history.rows.cell(owner, "valid_to"), "+7")
+
+
+def buy_from(bench: Bench, _folder: Path) -> None:
+    bench.show_history(1)
+    suppliers = bench.history.form.buy
+    suppliers.box.setCurrentIndex(suppliers.box.count() - 1)
+    suppliers.name.setText("Bay Grain")
+    suppliers.chosen.emit()
+
+
+def set_usual_change(bench: Bench, _folder: Path) -> None:
+    bench.show_memory()
+    bench.memory.percent.setText("20 %")
+    bench.memory.set_change.click()
+
+
+def keep_name(bench: Bench, _folder: Path) -> None:
+    bench.show_memory()
+    bench.memory.source.setText("Bay Grain.csv")
+    bench.memory.name.setText("Corn no 2")
+    bench.memory.keep.click()
+
+
 ACTIONS: dict[str, Callable[[Bench, Path], Any]] = {
     "a price": typed("price", "233"),
     "a price as quoted": typed("quoted", "21 / 100 kg"),
@@ -117,6 +159,11 @@ ACTIONS: dict[str, Callable[[Bench, Path], Any]] = {
     "a bin added": scale(lambda bench: bench.mill.add("bin")),
     "a step added": scale(lambda bench: bench.mill.add("own step")),
     "a price list": take_prices,
+    "a price in the history": add_price, "days of a price": change_days,
+    "a price withdrawn in the history": lambda bench, _folder: on_history(bench, bench.history._withdraw),
+    "a price ended": lambda bench, _folder: on_history(bench, bench.history._end),
+    "whom it is bought from": buy_from,
+    "a usual change": set_usual_change, "another name": keep_name,
     "a workbook": bring_in_workbook,
 }
 

@@ -95,7 +95,7 @@ class HaveModel(Grid):
             Heading("stock_kg", field_of("ingredient", "stock_kg").label, 72, True),
             Heading("quoted", _("as quoted"), 136, True,
                     _("The price in force, as it was given. Type 18.2 / cwt, or 210 from a supplier at a site")),
-            Heading("since", _("since"), 84), Heading("source", _("source"), 160),
+            Heading("since", _("since"), 96), Heading("source", _("source"), 160),
         ]
 
     def _heading(self, key: str, width: int) -> Heading:
@@ -194,7 +194,8 @@ class HaveModel(Grid):
         if quote is None or quote.price is None:
             gone = expired(self.work.library, ingredient.id, on) if key == "since" else None
             if gone is not None:
-                return Look(text=_("until {day}").format(day=_date(gone.valid_to)), quiet=True)
+                return Look(text=_("ended {age}").format(age=age(gone.valid_to, on)), quiet=True,
+                            hint=_date(gone.valid_to))
             return Look(editable=key == "quoted", number=key == "quoted")
         if key == "quoted":
             words = _("{price} per {mass}")

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime
+from collections.abc import Callable
 from typing import TYPE_CHECKING, Any
 
 from blendapp.desk.have.reading import read_price
@@ -10,9 +11,10 @@ from blendapp.desk.history.marks import marks_of, sign_of
 from blendapp.desk.table.grid import Grid, Heading
 from blendapp.desk.table.look import EMPTY, Look, fitting_decimals, number_look
 from blendapp.domain.fields import field_of
+from blendapp.domain.names import fold
 from blendapp.domain.notation import notation
 from blendapp.domain.price_history import PriceHistory, QuoteLine, Standing, day_words
-from blendapp.domain.quotes import Quote
+from blendapp.domain.quotes import Quote, QuoteKind, Terms
 from blendapp.domain.wording import _
 from blendapp.services.price_history import change_quote
 from blendapp.services.typed import choices, read_typed
@@ -23,6 +25,11 @@ if TYPE_CHECKING:
 _FIELDS = (("supplier_id", 130), ("site_id", 92), ("valid_from", 88), ("valid_to", 88))
 _FURTHER = (("terms", 84), ("kind", 104))
 _LEAST, _MOST = 2, 4
+# What may be chosen, by its words.
+_WORDS: dict[str, Callable[[], dict[str, Terms | QuoteKind | None]]] = {
+    "terms": lambda: {"": None, **{_(str(one)): one for one in Terms}},
+    "kind": lambda: {_(str(one)): one for one in QuoteKind},
+}
 
 
 class QuoteRows(Grid):
@@ -100,7 +107,7 @@ class QuoteRows(Grid):
 
     def _field_look(self, quote: Quote, key: str, counts: bool) -> Look:
         value = getattr(quote, key)
-        if isinstance(value, datetime.date):
+        if key in ("valid_from", "valid_to"):
             return Look(text=day_words(value), typed=day_words(value), editable=counts)
         if key in ("supplier_id", "site_id"):
             kind = key.removesuffix("_id")
@@ -108,9 +115,8 @@ class QuoteRows(Grid):
             shown = text or (_("whole mill") if key == "site_id" else "")
             offered = tuple(choices(self.work.library, quote, key) or ())
             return Look(text=shown, typed=text, editable=counts, choices=offered, quiet=not text)
-        offered = tuple(choices(self.work.library, quote, key) or ())
-        text = "" if value is None else str(value)
-        return Look(text=_(text) if text else "", typed=text, editable=counts, choices=offered, quiet=True)
+        text = "" if value is None else _(str(value))
+        return Look(text=text, typed=text, editable=counts, choices=tuple(_WORDS[key]()), quiet=True)
 
     def write(self, owner: int, key: str, text: str) -> None:
         quote = self.work.library.records["quote"].get(owner)
@@ -129,6 +135,12 @@ class QuoteRows(Grid):
             return {key: read_day(text, self.work.on)}
         if key not in dict((*_FIELDS, *_FURTHER)):
             raise ValueError(_("This says where the price comes from, and stays."))
+        if key in _WORDS:
+            words = {fold(said): one for said, one in _WORDS[key]().items()}
+            if fold(text) not in words:
+                offered = ", ".join(said for said in _WORDS[key]() if said)
+                raise ValueError(_("“{text}” is none of {offered}.").format(text=text, offered=offered))
+            return {key: words[fold(text)]}
         return {key: read_typed(self.work.library, quote, key, text)}
 
 

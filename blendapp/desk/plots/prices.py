@@ -92,7 +92,7 @@ class PricePlot(pg.GraphicsView):
         self.setMinimumHeight(170)
         # The scene would offer an export of its own.
         for action in self.scene().contextMenu:
-            action.deleteLater()
+            action.setParent(None)
         self.scene().contextMenu.clear()
         inside = pg.GraphicsLayout()
         inside.setContentsMargins(0, 6, 8, 0)
