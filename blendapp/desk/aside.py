@@ -20,8 +20,11 @@ class Aside(QObject):
         super().__init__(parent)
         self._expected = expected
         self._asked = 0
+        self._taken = 0
         self._running = False
         self._next: Callable[[], Any] | None = None
+        self._thread: threading.Thread | None = None
+        self._gave: tuple[int, object, object] | None = None
         self._came.connect(self._take)
 
     def ask(self, job: Callable[[], Any]) -> None:
@@ -49,13 +52,31 @@ class Aside(QObject):
                 given = job()
             except self._expected as failure:
                 fault = failure
+            self._gave = (asked, given, fault)
             # The window may have been closed meanwhile; then nobody waits for this.
             with contextlib.suppress(RuntimeError):
                 self._came.emit(asked, given, fault)
 
-        threading.Thread(target=run, daemon=True, name="aside").start()
+        self._thread = threading.Thread(target=run, daemon=True, name="aside")
+        self._thread.start()
+
+    @property
+    def running(self) -> bool:
+        """Whether a job is being done."""
+        return self._running
+
+    def finish(self) -> None:
+        """Wait for the job that is being done, and hand on what it gives: for what must not be lost."""
+        if self._running and self._thread is not None:
+            self._thread.join()
+            if self._gave is not None:
+                self._take(*self._gave)
 
     def _take(self, asked: int, given: object, fault: object) -> None:
+        if asked <= self._taken:
+            # It was waited for, and has been handed on.
+            return
+        self._taken = asked
         self._running = False
         if self._next is not None:
             self._begin()

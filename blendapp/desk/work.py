@@ -38,6 +38,7 @@ Extra = TypeVar("Extra")
 class Work(QObject):
     """opened: another mill, or none. edited: an Edit was taken. chosen: another formula, or none.
 
+    leaving: the mill is about to be closed; what is to be put on record is finished now.
     reversed: after the Edit of an undo or a redo.
     answered: the result changed, or its staleness did; trying is true while a value is being tried and not stored.
     day_came: it is another day than before, whose prices count from now on.
@@ -46,6 +47,7 @@ class Work(QObject):
     """
 
     opened = Signal()
+    leaving = Signal()
     reversed = Signal()
     day_came = Signal()
     edited = Signal(object)
@@ -106,6 +108,8 @@ class Work(QObject):
 
     def open(self, mill: Mill | None) -> None:
         """Work on a mill from now on, and close the one before."""
+        if self._mill is not None and mill is not self._mill:
+            self.leaving.emit()
         before, self._mill = self._mill, mill
         if before is not None and before is not mill:
             before.close()
@@ -119,6 +123,8 @@ class Work(QObject):
 
     def close(self) -> None:
         """Close the mill file."""
+        if self._mill is not None:
+            self.leaving.emit()
         self._aside.forget()
         self._leave_further()
         if self._mill is not None:

@@ -6,7 +6,7 @@ What only preparing and approving need is imported there: the window asks for ve
 from __future__ import annotations
 
 import datetime
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
@@ -31,6 +31,7 @@ from blendapp.domain.versions import (
 from blendapp.domain.wording import _
 
 if TYPE_CHECKING:
+    from blendapp.optimise.build.composition import Composition
     from blendapp.services.mill import Mill
 
 
@@ -125,6 +126,14 @@ def differences_between(library: Library, before_id: int, after_id: int) -> tupl
 # -- preparing
 
 
+@dataclass(frozen=True)
+class WorkedDraft:
+    """A draft that may be put on record: what it holds, and who prepared it."""
+
+    snapshot: Snapshot
+    person: Person
+
+
 def prepare(
     mill: Mill, formula_id: int, person_id: int, password: str, on: datetime.date | None = None, *,
     site_id: int | None = None,
@@ -134,14 +143,31 @@ def prepare(
     A draft that was prepared before gives way to it under the same number. Raises Refused where the formula has no
     checked, proven answer, the person is not who they say, or nothing has changed since the last approval.
     """
+    return record_draft(mill, work_out_draft(
+        mill.library, formula_id, person_id, password, on, site_id=site_id, composition=mill.composition))
+
+
+def work_out_draft(
+    library: Library, formula_id: int, person_id: int, password: str, on: datetime.date | None = None, *,
+    site_id: int | None = None, composition: Composition | None = None,
+) -> WorkedDraft:
+    """All of prepare that takes time, on a library that a thread may have to itself. Raises Refused as prepare does."""
     from blendapp.services.people import identified
 
-    person = identified(mill.library, person_id, password)
-    now = _snapshot(mill, formula_id, on or datetime.date.today(), site_id)
-    state = standing(mill.library, formula_id, now.on, site_id=site_id, result=now.result)
+    person = identified(library, person_id, password)
+    now = _snapshot(library, formula_id, on or datetime.date.today(), site_id, composition)
+    state = standing(library, formula_id, now.on, site_id=site_id, result=now.result)
     if not state.draft:
         text = _("{version} of {formula} is approved, and nothing has changed since.")
         raise Refused(text.format(version=state.text.capitalize(), formula=now.formula.name))
+    return WorkedDraft(now, person)
+
+
+def record_draft(mill: Mill, worked: WorkedDraft) -> FormulaVersion:
+    """Put a draft on record. Raises Refused where the mill has changed since it was worked out."""
+    now, person = worked.snapshot, worked.person
+    formula_id = now.formula.id
+    _refuse_changed(mill.library, now, person)
     before = in_state(mill.library, formula_id, VersionState.DRAFT)
     draft = FormulaVersion(
         mill.new_id("version") if before is None else before.id, formula_id, draft_number(mill.library, formula_id),
@@ -152,20 +178,39 @@ def prepare(
     return draft
 
 
-def _snapshot(mill: Mill, formula_id: int, on: datetime.date, site_id: int | None) -> Snapshot:
+def _refuse_changed(library: Library, worked: Snapshot, person: Person) -> None:
+    """Raises Refused where what was worked out is no longer what the mill holds."""
+    if library.records["person"].get(person.id) != person:
+        raise Refused(_("{name} was changed meanwhile; do it again.").format(name=person.name))
+    if worked.formula.id not in library.records["formula"]:
+        raise Refused(_("{formula} was removed meanwhile.").format(formula=worked.formula.name))
+    now = Snapshot.of(library, worked.formula.id, worked.on, worked.site_id, worked.result, worked.whole)
+    rows = differences(worked, now)
+    if rows:
+        text = _("{formula} was changed while it was worked out (different: {what}); do it again.")
+        raise Refused(text.format(formula=worked.formula.name, what=_first_of(rows)))
+
+
+def _first_of(rows: Sequence[Difference]) -> str:
+    return ", ".join(dict.fromkeys(f"{_(row.area)}: {row.name}" for row in rows[:3]))
+
+
+def _snapshot(
+    library: Library, formula_id: int, on: datetime.date, site_id: int | None, composition: Composition | None
+) -> Snapshot:
     """The formula with an answer that may be approved. Raises Refused where it has none."""
     from blendapp.services.formulate import FailedCertificate, formulate
 
-    name = mill.library.formula(formula_id).name
+    name = library.formula(formula_id).name
     try:
-        result = formulate(mill.library, formula_id, on, mill.composition, site_id=site_id)
+        result = formulate(library, formula_id, on, composition, site_id=site_id)
     except FailedCertificate as failure:
         raise Refused(Problem(str(failure), Place(record=name))) from failure
     if result.status is not Status.OPTIMAL or not result.mix:
         text = _("{formula} has no answer that could be approved ({reason}).")
         reason = result.cause or (_(result.status) if result.status is not Status.OPTIMAL else _("a mix of nothing"))
         raise Refused(text.format(formula=name, reason=reason))
-    return Snapshot.of(mill.library, formula_id, on, site_id, result)
+    return Snapshot.of(library, formula_id, on, site_id, result)
 
 
 def to_acknowledge(result: Result) -> tuple[str, ...]:
@@ -180,6 +225,18 @@ def to_acknowledge(result: Result) -> tuple[str, ...]:
 # -- approving
 
 
+@dataclass(frozen=True)
+class WorkedApproval:
+    """An approval that may be put on record. now: what the formula came to when it was worked out; said: the capacity
+    and the note; given: the reason for every caution."""
+
+    draft: FormulaVersion
+    now: Snapshot
+    person: Person
+    said: tuple[str, str]
+    given: Mapping[str, str]
+
+
 def approve(
     mill: Mill, version_id: int, person_id: int, password: str, *, capacity: str = "", note: str = "",
     reasons: Mapping[str, str] | None = None, on: datetime.date | None = None,
@@ -191,31 +248,52 @@ def approve(
     password, the one who prepared it), a draft that is no longer what the formula comes to, a caution without a
     reason; and MillFileError where another window or program was first.
     """
+    return record_approval(mill, work_out_approval(
+        mill.library, version_id, person_id, password, capacity=capacity, note=note, reasons=reasons, on=on,
+        composition=mill.composition))
+
+
+def work_out_approval(
+    library: Library, version_id: int, person_id: int, password: str, *, capacity: str = "", note: str = "",
+    reasons: Mapping[str, str] | None = None, on: datetime.date | None = None, composition: Composition | None = None,
+) -> WorkedApproval:
+    """All of approve that takes time, on a library that a thread may have to itself. Raises Refused as approve does."""
     from blendapp.services.people import identified
 
-    library = mill.library
     draft: FormulaVersion | None = library.records["version"].get(version_id)
     if draft is None or draft.state is not VersionState.DRAFT:
         raise Refused(_("This is no draft that was prepared; prepare the formula first."))
     person = identified(library, person_id, password)
     snapshot = sound_snapshot(library, draft)
-    _hold_against_now(mill, draft, snapshot, on or datetime.date.today())
+    now = _hold_against_now(library, draft, snapshot, on or datetime.date.today(), composition)
     assert snapshot.result is not None
     given = {text: (reasons or {}).get(text, "").strip() for text in to_acknowledge(snapshot.result)}
     problems = [*_person_faults(library, draft, person, capacity), *_reason_faults(given, reasons or {})]
     if problems:
         raise Refused(problems)
-    return _approved(mill, draft, person, (capacity.strip() or person.capacity, note.strip()), given)
+    return WorkedApproval(draft, now, person, (capacity.strip() or person.capacity, note.strip()), given)
 
 
-def _hold_against_now(mill: Mill, draft: FormulaVersion, snapshot: Snapshot, on: datetime.date) -> None:
-    """Raises Refused where a draft is not what its formula comes to now."""
-    now = _snapshot(mill, draft.formula_id, on, snapshot.site_id)
+def record_approval(mill: Mill, worked: WorkedApproval) -> FormulaVersion:
+    """Put an approval on record. Raises Refused where the mill has changed since it was worked out, and MillFileError
+    where another window or program was first."""
+    if mill.library.records["version"].get(worked.draft.id) != worked.draft:
+        text = _("Draft {number} was prepared again or approved meanwhile; look at it before you approve.")
+        raise Refused(text.format(number=worked.draft.number))
+    _refuse_changed(mill.library, worked.now, worked.person)
+    return _approved(mill, worked.draft, worked.person, worked.said, worked.given)
+
+
+def _hold_against_now(
+    library: Library, draft: FormulaVersion, snapshot: Snapshot, on: datetime.date, composition: Composition | None
+) -> Snapshot:
+    """What a formula comes to now. Raises Refused where its draft is something else."""
+    now = _snapshot(library, draft.formula_id, on, snapshot.site_id, composition)
     rows = differences(snapshot, now)
     if rows:
         text = _("Draft {number} is not what {formula} comes to now (different: {what}); prepare it again.")
-        what = ", ".join(dict.fromkeys(f"{_(row.area)}: {row.name}" for row in rows[:3]))
-        raise Refused(text.format(number=draft.number, formula=snapshot.formula.name, what=what))
+        raise Refused(text.format(number=draft.number, formula=snapshot.formula.name, what=_first_of(rows)))
+    return now
 
 
 def _person_faults(library: Library, draft: FormulaVersion, person: Person, capacity: str) -> list[Problem]:

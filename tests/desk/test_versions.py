@@ -2,18 +2,22 @@
 
 from __future__ import annotations
 
+import threading
+import time
 from pathlib import Path
+from typing import Any
 
 import pytest
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QApplication, QLineEdit
+from PySide6.QtTest import QTest
+from PySide6.QtWidgets import QApplication, QLineEdit, QPushButton
 from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
 from blendapp.domain.mills import VersionState
 from blendapp.domain.records import KINDS, added
 from blendapp.domain.versions import acknowledgements_of, in_state
-from blendapp.services import edits
+from blendapp.services import edits, versions
 from blendapp.services.mill import open_mill
 from blendapp.storage import create
 from tests.desk.conftest import Hands
@@ -64,14 +68,23 @@ def act(bench: Bench, hands: Hands, name: str, word: str) -> None:
     type_into(hands, form.password, word)
 
 
+def press(hands: Hands, button: QPushButton) -> None:
+    """Press a button of the form, and wait until what it asked for is done or refused."""
+    hands.click(button)
+    end = time.monotonic() + 20
+    while not button.isEnabled() and time.monotonic() < end:
+        QTest.qWait(5)
+    assert button.isEnabled()
+
+
 def approve(bench: Bench, hands: Hands) -> None:
     act(bench, hands, "Ann", ANN_WORD)
-    hands.click(bench.versions.form.prepare_button)
+    press(hands, bench.versions.form.prepare_button)
     assert not bench.versions.form.fault.isVisible(), bench.versions.form.fault.text()
     act(bench, hands, "Ben", BEN_WORD)
     for text, field in bench.versions.form.reasons.items():
         type_into(hands, field, f"seen: {text[:5]}")
-    hands.click(bench.versions.form.approve_button)
+    press(hands, bench.versions.form.approve_button)
     assert not bench.versions.form.fault.isVisible(), bench.versions.form.fault.text()
 
 
@@ -91,13 +104,13 @@ def test_a_draft_is_prepared_by_one_person_and_approved_by_another(page: Bench, 
 def test_the_wrong_password_or_the_same_person_is_refused_in_place(page: Bench, hands: Hands) -> None:
     form = page.versions.form
     act(page, hands, "Ann", "no such word")
-    hands.click(form.prepare_button)
+    press(hands, form.prepare_button)
     assert "not the password of Ann" in form.fault.text()
     assert page.work.library.all("version") == []
     act(page, hands, "Ann", ANN_WORD)
-    hands.click(form.prepare_button)
+    press(hands, form.prepare_button)
     act(page, hands, "Ann", ANN_WORD)
-    hands.click(form.approve_button)
+    press(hands, form.approve_button)
     assert "another person must approve" in form.fault.text()
     assert in_state(page.work.library, MASH, VersionState.APPROVED) is None
 
@@ -106,17 +119,17 @@ def test_every_caution_needs_its_own_reason(page: Bench, hands: Hands) -> None:
     page.work.choose(LAMB)
     form = page.versions.form
     act(page, hands, "Ann", ANN_WORD)
-    hands.click(form.prepare_button)
+    press(hands, form.prepare_button)
     cautions = form.cautions
     assert cautions
     act(page, hands, "Ben", BEN_WORD)
-    hands.click(form.approve_button)
+    press(hands, form.approve_button)
     assert "needs a reason" in form.fault.text()
     for field in form.reasons.values():
         type_into(hands, field, "the shepherd knows")
     type_into(hands, form.capacity, "chief")
     type_into(hands, form.password, BEN_WORD)
-    hands.click(form.approve_button)
+    press(hands, form.approve_button)
     version = in_state(page.work.library, LAMB, VersionState.APPROVED)
     assert version is not None
     assert version.capacity == "chief"
@@ -143,7 +156,7 @@ def test_what_differs_from_the_approved_version_stands_in_a_table(page: Bench, h
 def test_a_stale_answer_is_not_approved(page: Bench, hands: Hands) -> None:
     act(page, hands, "Ann", ANN_WORD)
     page.work.stale = True
-    hands.click(page.versions.form.prepare_button)
+    press(hands, page.versions.form.prepare_button)
     assert "stale" in page.versions.form.fault.text()
     assert page.work.library.all("version") == []
 
@@ -188,3 +201,70 @@ def test_a_person_is_added_on_the_mill_page_and_given_a_password(bench: Bench, h
     hands.key(Qt.Key.Key_Delete)
     assert bench.work.library.named("person", "Cara") is not None
     assert QApplication.activeModalWidget() is None
+
+
+@pytest.fixture
+def held(monkeypatch: pytest.MonkeyPatch) -> threading.Event:
+    """Working out a draft waits until this is set."""
+    go_on = threading.Event()
+    real = versions.work_out_draft
+
+    def waiting(*given: Any, **named: Any) -> versions.WorkedDraft:
+        assert go_on.wait(20)
+        return real(*given, **named)
+
+    monkeypatch.setattr(versions, "work_out_draft", waiting)
+    return go_on
+
+
+def test_the_window_lives_while_a_draft_is_worked_out_and_a_second_press_does_nothing(
+    page: Bench, hands: Hands, qtbot: QtBot, held: threading.Event
+) -> None:
+    form = page.versions.form
+    act(page, hands, "Ann", ANN_WORD)
+    form.prepare_button.setFocus()
+    hands.key(Qt.Key.Key_Space)
+    assert not form.prepare_button.isEnabled()
+    assert "once more" in form.fault.text()
+    hands.click(form.prepare_button)
+    form.prepare.emit()
+    # The window goes on: another page, typing, and back.
+    hands.key(Qt.Key.Key_Escape)
+    assert page.frame.middle.currentWidget() is page.frame.bench
+    assert page.work.library.all("version") == []
+    held.set()
+    qtbot.waitUntil(lambda: bool(page.work.library.all("version")), timeout=20000)
+    (draft,) = page.work.library.all("version")
+    assert draft.state is VersionState.DRAFT
+    assert "Draft 1 of Mash is prepared" in page.strip.words.text()
+    QTest.qWait(50)
+    assert len([one for one in page.work.mill.store.entries() if "Prepare" in one.what]) == 1
+
+
+def test_an_edit_while_a_draft_is_worked_out_refuses_it_and_loses_nothing(
+    page: Bench, hands: Hands, qtbot: QtBot, held: threading.Event
+) -> None:
+    form = page.versions.form
+    act(page, hands, "Ann", ANN_WORD)
+    hands.click(form.prepare_button)
+    page.work.do(lambda mill: edits.set_bound(mill, 1, "minimum", 18.5))
+    held.set()
+    qtbot.waitUntil(form.prepare_button.isEnabled, timeout=20000)
+    assert page.work.library.all("version") == []
+    assert "changed while it was worked out" in form.fault.text()
+    assert page.work.library.limit(1).minimum == 18.5
+    press(hands, form.prepare_button)
+    assert len(page.work.library.all("version")) == 1
+
+
+def test_closing_the_window_meanwhile_finishes_what_was_pressed(
+    page: Bench, hands: Hands, approved_mill: Path, held: threading.Event
+) -> None:
+    act(page, hands, "Ann", ANN_WORD)
+    hands.click(page.versions.form.prepare_button)
+    threading.Timer(0.2, held.set).start()
+    page.close()
+    mill = open_mill(approved_mill)
+    (draft,) = mill.library.all("version")
+    mill.close()
+    assert (draft.made_by, draft.state) == ("Ann", VersionState.DRAFT)

@@ -117,6 +117,12 @@ class VersionForm(QWidget):
         self.fault.setText(sentence)
         self.fault.setVisible(bool(sentence))
 
+    def say_busy(self, words: str) -> None:
+        """Say that something is being worked out, and let nothing be asked for meanwhile; "" is over."""
+        for button in (self.prepare_button, self.approve_button):
+            button.setEnabled(not words)
+        self.say(words)
+
     def done(self) -> None:
         """Nobody's password stays in a field."""
         self.password.clear()

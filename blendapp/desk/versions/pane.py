@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import datetime
 from collections.abc import Callable
 from typing import Any
 
@@ -9,18 +10,21 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QScrollArea, QVBoxLayout, QWidget
 
+from blendapp.desk.aside import Aside
 from blendapp.desk.shell.zone import Elided
 from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.desk.versions.form import VersionForm
 from blendapp.desk.versions.model import DifferenceRows, VersionRows
 from blendapp.desk.work import Work
+from blendapp.domain.library import Library
 from blendapp.domain.mills import FormulaVersion, Person, VersionState
 from blendapp.domain.problems import Refused
 from blendapp.domain.results import Status
 from blendapp.domain.versions import alterations, in_state, sound_snapshot, versions_of
 from blendapp.domain.wording import _
 from blendapp.services import versions
+from blendapp.services.formulate import FailedCertificate
 from blendapp.services.mill import Mill, MillFileError
 
 SIDE_PX = 340
@@ -56,6 +60,12 @@ class VersionsPane(QWidget):
         self.found = DifferenceRows(self)
         self.differences = DeskTable(self.found, self)
         self.differences.setAccessibleName(_("Differences"))
+        self._record: Callable[[Mill, Any], FormulaVersion] | None = None
+        self._done_text = ""
+        # Working an answer out once more may take seconds, and checking a password is slow by intention.
+        self._aside = Aside(self, (Exception,))
+        self._aside.done.connect(self._take)
+        work.leaving.connect(self._aside.finish)
         self._lay()
         self.setFocusProxy(self.table)
         self.form.prepare.connect(self._prepare)
@@ -168,55 +178,88 @@ class VersionsPane(QWidget):
     # -- what is done
 
     def _prepare(self) -> None:
-        def job(mill: Mill, formula_id: int, person_id: int) -> FormulaVersion:
-            return versions.prepare(mill, formula_id, person_id, self.form.password.text(), self.work.on)
-
-        done = self._do(job)
-        if done is not None:
-            text = _("Draft {number} of {formula} is prepared; another person approves it.")
-            self._told(text, done)
+        """Work the draft out on a thread, and put it on record."""
+        ready = self._ready()
+        if ready is None:
+            return
+        formula_id, person_id, password, on = ready
+        self._begin(
+            lambda library: versions.work_out_draft(library, formula_id, person_id, password, on),
+            versions.record_draft, _("Draft {number} of {formula} is prepared; another person approves it."),
+        )
 
     def _approve(self) -> None:
-        def job(mill: Mill, formula_id: int, person_id: int) -> FormulaVersion:
-            draft = in_state(mill.library, formula_id, VersionState.DRAFT)
-            if draft is None:
-                raise Refused(_("There is no prepared draft; prepare the formula first."))
-            return versions.approve(
-                mill, draft.id, person_id, self.form.password.text(), capacity=self.form.capacity.text(),
-                note=self.form.note.text(), reasons=self.form.given(), on=self.work.on)
+        """Work the answer out again on a thread, and put the approval on record."""
+        ready = self._ready()
+        if ready is None:
+            return
+        formula_id, person_id, password, on = ready
+        draft = in_state(self.work.library, formula_id, VersionState.DRAFT)
+        if draft is None:
+            self._refuse(_("There is no prepared draft; prepare the formula first."))
+            return
+        version_id, form = draft.id, self.form
+        capacity, note, reasons = form.capacity.text(), form.note.text(), form.given()
+        self._begin(
+            lambda library: versions.work_out_approval(
+                library, version_id, person_id, password, capacity=capacity, note=note, reasons=reasons, on=on),
+            versions.record_approval, _("Version {number} of {formula} is approved."),
+        )
 
-        done = self._do(job)
-        if done is not None:
+    def _ready(self) -> tuple[int, int, str, datetime.date] | None:
+        """Formula, person, password and day of what was asked for; None, with the reason said, where it cannot be."""
+        work, person_id = self.work, self.form.person_id()
+        # A second press asks for what is being done already.
+        if work.formula_id is None or self._record is not None:
+            return None
+        if person_id is None:
+            self._refuse(_("This mill knows no person yet; add one with a password first."))
+        elif work.stale or work.trying:
+            self._refuse(_("The answer is stale; wait until the new one is in."))
+        elif work.stored_result is not None and work.stored_result.status is Status.STOPPED:
+            self._refuse(_("Time was up before this answer was proven; it cannot be approved as if it were."))
+        else:
+            return work.formula_id, person_id, self.form.password.text(), work.on
+        return None
+
+    def _begin(
+        self, job: Callable[[Library], Any], record: Callable[[Mill, Any], FormulaVersion], done_text: str
+    ) -> None:
+        library = self.work.library.copy()
+        self._record, self._done_text = record, done_text
+        self.form.say_busy(_("The answer is worked out once more…"))
+        self._aside.ask(lambda: job(library))
+
+    def _take(self, worked: object, fault: Exception | None) -> None:
+        """Record what was worked out: here, since one thread alone writes the mill."""
+        record, self._record = self._record, None
+        self.form.say_busy("")
+        if record is None or not self.work.is_open:
+            return
+        try:
+            if fault is not None:
+                raise fault
+            done = record(self.work.mill, worked)
+        except (Refused, MillFileError, ValueError, FailedCertificate) as failure:
+            texts = [one.text for one in failure.problems] if isinstance(failure, Refused) else [str(failure)]
+            self._refuse("\n".join(texts))
+            return
+        self.form.done()
+        if done.state is VersionState.APPROVED:
             self.form.note.clear()
             self.form.capacity.clear()
-            self._told(_("Version {number} of {formula} is approved."), done)
-
-    def _told(self, text: str, done: FormulaVersion) -> None:
+        self.work.recorded()
         formula = self.work.library.formula(done.formula_id)
-        self.said.emit(text.format(number=done.number, formula=formula.name), [])
+        self.said.emit(self._done_text.format(number=done.number, formula=formula.name), [])
 
-    def _do(self, job: Callable[[Mill, int, int], FormulaVersion]) -> FormulaVersion | None:
-        """Run a job that cannot be undone; what stands against it is said under the form."""
-        work, person_id = self.work, self.form.person_id()
-        try:
-            if work.formula_id is None:
-                return None
-            if person_id is None:
-                raise Refused(_("This mill knows no person yet; add one with a password first."))
-            if work.stale or work.trying:
-                raise Refused(_("The answer is stale; wait until the new one is in."))
-            if work.stored_result is not None and work.stored_result.status is Status.STOPPED:
-                raise Refused(_("Time was up before this answer was proven; it cannot be approved as if it were."))
-            done = job(work.mill, work.formula_id, person_id)
-        except (Refused, MillFileError, ValueError) as fault:
-            texts = [one.text for one in fault.problems] if isinstance(fault, Refused) else [str(fault)]
-            self.form.say("\n".join(texts))
-            self.form.password.setFocus()
-            self.form.password.selectAll()
-            return None
-        self.form.done()
-        work.recorded()
-        return done
+    def _refuse(self, sentence: str) -> None:
+        """Say what stands against it: under the form, and on the strip where the person has gone elsewhere."""
+        self.form.say(sentence)
+        if not self.isVisible():
+            self.said.emit(sentence, [])
+            return
+        self.form.password.setFocus()
+        self.form.password.selectAll()
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape:
