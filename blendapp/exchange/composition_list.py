@@ -22,7 +22,8 @@ from blendapp.exchange.composition_checks import (
 from blendapp.exchange.composition_columns import COMPOSITION_ROLES, AnalysisTable
 from blendapp.exchange.composition_notes import TableNotes, read_notes
 from blendapp.exchange.composition_nutrients import NutrientFinder
-from blendapp.exchange.composition_row import Segment, read_row
+from blendapp.exchange.composition_row import read_row
+from blendapp.exchange.composition_segments import Segment
 from blendapp.exchange.composition_tables import Finders, find_tables, is_transposed
 from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.list_cells import first_text, holds_number

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from blendapp.domain import checks, units
 from blendapp.domain.composition_rows import CompositionRow, ReadValue
 from blendapp.domain.ingredients import Basis, Ingredient, Value
@@ -15,14 +13,14 @@ from blendapp.domain.notation import PLAIN
 from blendapp.domain.nutrients import DRY_MATTER, MOISTURE, Nutrient
 from blendapp.domain.wording import _
 from blendapp.exchange.composition_cells import ResultCell, read_result
-from blendapp.exchange.composition_columns import AnalysisTable, ValueColumn
-from blendapp.exchange.composition_notes import TableNotes
+from blendapp.exchange.composition_columns import ValueColumn
+from blendapp.exchange.composition_segments import Segment
 from blendapp.exchange.composition_words import read_basis, read_unit
 from blendapp.exchange.list_answers import LARGEST_USUAL_CHANGE
 from blendapp.exchange.list_cells import first_text
 from blendapp.exchange.list_checks import leaps, near_power
 from blendapp.exchange.list_names import Match, NameFinder
-from blendapp.exchange.list_numbers import DateOrder, DecimalSign
+from blendapp.exchange.list_numbers import DecimalSign
 from blendapp.exchange.list_row import TOTALS, RowReading
 from blendapp.exchange.tables import RawTable
 
@@ -35,18 +33,6 @@ _ABOUT_SEVERAL = TOTALS | {
 _PERCENT_OF_WHOLE = ("%", "g/kg")
 # Dry matter and moisture of one sample add up to 100 within what rounding and two methods leave.
 _APART = 0.5
-
-
-@dataclass(frozen=True)
-class Segment:
-    """The rows of one table, and what was decided over its columns."""
-
-    table: AnalysisTable
-    first: int
-    last: int
-    signs: dict[int, DecimalSign | None]
-    day_order: DateOrder | None
-    notes: TableNotes
 
 
 def read_row(raw: RawTable, row: int, segment: Segment, library: Library, names: NameFinder) -> CompositionRow:
@@ -124,7 +110,7 @@ class _Reading(RowReading):
                 self._dry_matter(column, cell, match.ingredient)
         self._one_dry_matter()
         for column, cell in filled:
-            if not column.is_built_in:
+            if not column.is_built_in and not self._plain_result(column, cell, match.ingredient):
                 self._result(column, cell, match.ingredient)
         self._needs_dry_matter(match.ingredient)
         if any(cell.as_text for _column, cell in filled):
@@ -197,9 +183,26 @@ class _Reading(RowReading):
             text = _("{nutrient} of {value} {unit} is more than the whole; check the unit.")
             said = text.format(nutrient=nutrient.name, value=PLAIN.write_short(amount), unit=unit)
             self.confirm(Asked.CHANGE, said)
-        old = None if ingredient is None else self._old(ingredient, nutrient, unit, basis)
+        self._take(nutrient, amount, unit, basis, cell, ingredient)
+
+    def _take(
+        self, nutrient: Nutrient, amount: float, unit: str, basis: Basis, cell: ResultCell,
+        ingredient: Ingredient | None,
+    ) -> None:
+        old = None if ingredient is None else self.segment.old(self.library, ingredient, nutrient, unit, basis)
         self._leap(nutrient.name, amount, old, unit)
         self.values.append(ReadValue(nutrient.id, nutrient.name, amount, unit, basis, cell.entered, old))
+
+    def _plain_result(self, column: ValueColumn, cell: ResultCell, ingredient: Ingredient | None) -> bool:
+        """Takes an amount of a column that says all of them; whether it could."""
+        plain = self.segment.plain(column)
+        if plain is None or cell.amount is None or cell.unit or cell.basis is not None:
+            return False
+        amount = cell.amount if plain.factor == 1 else float(f"{cell.amount * plain.factor:.12g}")
+        if not plain.least <= amount <= plain.greatest:
+            return False
+        self._take(plain.nutrient, amount, plain.unit, plain.basis, cell, ingredient)
+        return True
 
     def _counts(self, column: ValueColumn, basis: Basis | None) -> bool:
         """Whether a column is the one to read among those of its nutrient; asks where that is open."""
@@ -235,7 +238,6 @@ class _Reading(RowReading):
     def _unit(self, column: ValueColumn, cell: ResultCell, of: Nutrient | str) -> tuple[str, float] | None:
         name, own = (of, "%") if isinstance(of, str) else (of.name, of.unit)
         family = units.concentration(own).family
-        known = _PERCENT_OF_WHOLE if isinstance(of, str) else _names_of(family)
         said = (column.words.unit, column.words.factor) if column.words.unit else None
         beside = (cell.unit, cell.factor) if cell.unit else None
         if said and beside and said != beside:
@@ -259,6 +261,7 @@ class _Reading(RowReading):
             said_text = _("“{heading}” names two units; say which holds.").format(heading=column.heading)
         else:
             said_text = _("“{heading}” does not say its unit; say which.").format(heading=column.heading)
+        known = _PERCENT_OF_WHOLE if isinstance(of, str) else _names_of(family)
         self.ask(Asked.CONCENTRATION, column.heading, said_text, known)
         return None
 
@@ -290,19 +293,6 @@ class _Reading(RowReading):
         text = _("The list does not say whether its values are as fed or on dry matter; say which.")
         self.ask(Asked.BASIS, "", text, tuple(map(str, Basis)))
         return None
-
-    def _old(self, ingredient: Ingredient, nutrient: Nutrient, unit: str, basis: Basis) -> float | None:
-        """The value in use, in the unit and on the basis of the list."""
-        value = self.library.value(ingredient.id, nutrient.id)
-        if value is None:
-            return None
-        amount = units.convert(value.amount, value.unit, unit)
-        if value.basis is basis:
-            return amount
-        fraction = ingredient.dry_matter_fraction
-        if not fraction:
-            return None
-        return amount * fraction if basis is Basis.AS_FED else amount / fraction
 
     def _leap(self, name: str, new: float, old: float | None, unit: str) -> None:
         """Asks where a value differs from the one in use by more than is usual."""
