@@ -57,6 +57,8 @@ def _edit(bench: Bench) -> list[Command]:
     def writable() -> bool:
         return work.is_open and work.mill.writable
 
+    making = bench.have.making
+
     def undo_words() -> str:
         what = bench.arrivals.undo_words() or (work.mill.undo_text if work.is_open else None)
         return _("Undo: {what}").format(what=what) if what else _("Undo")
@@ -75,6 +77,10 @@ def _edit(bench: Bench) -> list[Command]:
                 lambda: work.is_open, False),
         Command("add ingredient", _("Add an ingredient"), "library", bench.have.add_ingredient, "", writable),
         Command("add nutrient", _("Add a nutrient…"), "library", bench.records.new_nutrient, "", writable),
+        Command("take made", _("Take composition and price from its formula"), "library", making.take_chosen, "",
+                lambda: writable() and making.chosen() is not None, words_now=making.words_now),
+        Command("compare made", _("Compare made ingredients with their formulas"), "library", making.compare_all, "",
+                lambda: work.is_open and making.has_any, False),
         Command("mill", _("The mill: scales, bins, steps, persons"), "library", bench.show_mill, "Ctrl+Shift+M",
                 lambda: work.is_open),
         *(

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QApplication
 
 from blendapp.desk.bench import Bench
 from blendapp.desk.table.names import NameField
-from blendapp.services import plant
+from blendapp.domain.formulas import Admits
+from blendapp.services import edits, plant
 from tests.desk.conftest import Hands
 
 
@@ -60,3 +62,42 @@ def test_from_whom_an_ingredient_is_bought_is_chosen_by_name(bench: Bench, hands
     hands.go(bench.have.table, 1, "supplier_id")
     hands.key(Qt.Key.Key_Delete)
     assert bench.work.library.ingredient(1).supplier_id is None
+
+
+def test_a_made_ingredient_takes_composition_and_price_from_its_formula_as_one_undo(bench: Bench, hands: Hands) -> None:
+    work = bench.work
+    work.do(lambda mill: edits.set_admits(mill, 2, Admits.LISTED))
+    work.do(lambda mill: edits.admit(mill, 2, 1))
+    work.do(lambda mill: edits.admit(mill, 2, 2))
+    bench.have.show_set("keeping")
+    hands.go(bench.have.table, 4, "made_by_formula_id")
+    hands.write("finisher")
+    hands.key(Qt.Key.Key_Return)
+    assert work.library.ingredient(4).made_by_formula_id == 2
+    assert work.library.price_per_t(4, work.on) is None
+    hands.go(bench.have.table, 4, "name")
+    entries = len(work.mill.store.entries())
+    bench.find_anything()
+    hands.write("take composition")
+    field = QApplication.focusWidget()
+    assert field is bench.finder.field
+    assert bench.finder.found.found[0].words == "Take composition and price of Peas from its formula"
+    hands.key(Qt.Key.Key_Return)
+    assert len(work.mill.store.entries()) == entries + 1
+    value = work.library.value(4, 1)
+    assert value is not None
+    assert value.amount == pytest.approx(15.0)
+    price = work.library.price_per_t(4, work.on)
+    assert price is not None
+    assert 200 < price < 420
+    assert "Finisher" in bench.strip.words.text()
+    bench.commands.run("compare made")
+    assert "Every made ingredient" in bench.strip.words.text()
+    work.do(lambda mill: edits.set_value(mill, 4, 1, 16.0))
+    bench.commands.run("compare made")
+    assert "Peas is no longer what Finisher makes" in bench.strip.list.text()
+    work.undo()
+    work.undo()
+    assert work.library.value(4, 1).amount == 22.0  # type: ignore[union-attr]
+    actions = [one.text() for one in bench.have.row_menu(4).actions()]
+    assert "Take composition and price of Peas from its formula" in actions

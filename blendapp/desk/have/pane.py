@@ -8,6 +8,7 @@ from functools import partial
 from PySide6.QtCore import QModelIndex, QPoint, Qt, Signal
 from PySide6.QtWidgets import QButtonGroup, QHBoxLayout, QLineEdit, QMenu, QPushButton, QTableView, QVBoxLayout, QWidget
 
+from blendapp.desk.have.making import Making
 from blendapp.desk.have.model import PRICES, HaveModel, column_sets
 from blendapp.desk.have.reading import NUTRIENT, PRICE_KEYS
 from blendapp.desk.rail.geometry import End
@@ -45,6 +46,7 @@ class HavePane(QWidget):
         self._ended = 0
         self.table = FrozenTable(self.model, self)
         self.table.setAccessibleName(_("Ingredients"))
+        self.making = Making(work, self.table)
         self.filter = QLineEdit()
         self.filter.setPlaceholderText(_("Show only…"))
         self.filter.setAccessibleName(_("Show only ingredients that hold this text"))
@@ -308,6 +310,8 @@ class HavePane(QWidget):
         elif self.work.formula_id is not None and owner in self.work.library.listed_ids(self.work.formula_id):
             menu.addAction(_("Take {name} off this formula's list").format(name=name), lambda: self.unlist(owner))
         menu.addAction(_("Prices of {name} over time").format(name=name), lambda: self.history_asked.emit(owner))
+        if self.making.maker(owner) is not None:
+            menu.addAction(self.making.words(owner), lambda: self.making.take(owner))
         menu.addAction(_("Rename"), lambda: self.rename(owner))
         menu.addAction(_("Remove {name}").format(name=name), lambda: self.remove(owner))
         return menu
