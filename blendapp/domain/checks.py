@@ -116,6 +116,19 @@ def _ingredient(record: Ingredient, library: Library) -> list[Finding]:
     return [("made_by_formula_id", sentence)] if sentence else []
 
 
+def _odd_ingredient(record: Ingredient, library: Library) -> list[Finding]:
+    """A made ingredient is used as what its own tags say; what it may hold of tagged parts is worth saying."""
+    if record.made_by_formula_id is None:
+        return []
+    lacking = [tag for tag in making.held(library, record).tags if tag not in record.tags]
+    if not lacking:
+        return []
+    names = [part.name for part in making.parts(library, record.id) if not set(lacking).isdisjoint(part.tags)]
+    text = _("{name} may hold {parts} and lacks their tags: {tags}. Add them, so that formulas and cautions know.")
+    said = text.format(name=record.name, parts=", ".join(names), tags=", ".join(_(str(tag)) for tag in lacking))
+    return [("tags", said)]
+
+
 def _value(record: Value | LotValue, library: Library) -> list[Finding]:
     nutrient = library.records["nutrient"].get(record.nutrient_id)
     try:
@@ -348,6 +361,7 @@ _FAULTS: dict[str, Callable[[Any, Library], list[Finding]]] = {
     "limit": _limit,
 }
 _ODDITIES: dict[str, Callable[[Any, Library], list[Finding]]] = {
+    "ingredient": _odd_ingredient,
     "value": _odd_value,
     "lot": _odd_lot,
     "lot_value": _odd_value,

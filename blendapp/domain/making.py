@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from blendapp.domain.formulas import Formula, LimitKind
+from blendapp.domain.ingredients import Ingredient, Tag
 from blendapp.domain.library import Library
 from blendapp.domain.wording import _
 
@@ -68,6 +69,28 @@ def cycle_fault(library: Library, ingredient_id: int) -> str | None:
     return text.format(name=chain[0], chain=" < ".join(chain))
 
 
+def parts(library: Library, ingredient_id: int) -> list[Ingredient]:
+    """Everything that a made ingredient may hold, through other made ones too, in the order of identifiers."""
+    found: set[int] = set()
+    edge = [ingredient_id]
+    while edge:
+        ingredient = library.records["ingredient"].get(edge.pop())
+        formula = None if ingredient is None else library.records["formula"].get(ingredient.made_by_formula_id or 0)
+        if formula is not None:
+            new = used_ids(library, formula) - found
+            found |= new
+            edge += new
+    return [library.ingredient(key) for key in sorted(found)]
+
+
+def held(library: Library, ingredient: Ingredient) -> Ingredient:
+    """An ingredient with the tags of everything that it may be made of, for rules about what a feed holds."""
+    if ingredient.made_by_formula_id is None:
+        return ingredient
+    inside = [tag for part in parts(library, ingredient.id) for tag in part.tags if tag is not Tag.ONLY_WHEN_LISTED]
+    return replace(ingredient, tags=tuple(dict.fromkeys([*ingredient.tags, *inside])))
+
+
 @dataclass(frozen=True)
 class Mixture:
     """What a mix holds. dry_matter_percent: None where a part's is unknown. as_fed: by nutrient identifier, in the
@@ -84,14 +107,14 @@ def mixture(library: Library, amounts: Mapping[int, float]) -> Mixture:
     A nutrient of which one part has no value is unknown, never the sum of the others; one that no part has is left out.
     """
     whole = sum(amounts.values())
-    parts = [(library.ingredient(key), amount / whole) for key, amount in amounts.items() if amount > 0]
-    dry = [i.dry_matter_percent for i, _share in parts]
+    shares = [(library.ingredient(key), amount / whole) for key, amount in amounts.items() if amount > 0]
+    dry = [i.dry_matter_percent for i, _share in shares]
     as_fed: dict[int, float] = {}
     missing: dict[int, tuple[str, ...]] = {}
     for nutrient in library.nutrients:
         found: list[float] = []
         lacking: list[str] = []
-        for ingredient, share in parts:
+        for ingredient, share in shares:
             value = library.value(ingredient.id, nutrient.id)
             amount = None if value is None else value.as_fed(nutrient.unit, ingredient.dry_matter_percent)
             if amount is None:
@@ -103,5 +126,5 @@ def mixture(library: Library, amounts: Mapping[int, float]) -> Mixture:
         elif found:
             missing[nutrient.id] = tuple(lacking)
     known = [d for d in dry if d is not None]
-    mean = sum(share * d for (_i, share), d in zip(parts, known, strict=True)) if len(known) == len(parts) else None
+    mean = sum(share * d for (_i, share), d in zip(shares, known, strict=True)) if len(known) == len(shares) else None
     return Mixture(mean, as_fed, missing)

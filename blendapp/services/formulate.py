@@ -6,7 +6,7 @@ import datetime
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
-from blendapp.domain import cautions
+from blendapp.domain import cautions, making
 from blendapp.domain.formulas import Formula, LimitKind
 from blendapp.domain.library import Library
 from blendapp.domain.notation import notation
@@ -74,7 +74,8 @@ def answer_to(
     not hold; no answer is shown then.
     """
     formula = library.formula(formula_id)
-    forbidden = cautions.forbidden_by_admission(formula, library.admitted(formula))
+    admitted = [making.held(library, ingredient) for ingredient in library.admitted(formula)]
+    forbidden = cautions.forbidden_by_admission(formula, admitted)
     built = build(library, formula, on, composition, site_id)
     unknown = unknown_values(library, built)
     if forbidden is not None:

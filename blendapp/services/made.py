@@ -10,8 +10,9 @@ import datetime
 import re
 from dataclasses import dataclass, replace
 
+from blendapp.domain import making
 from blendapp.domain.formulas import Formula
-from blendapp.domain.ingredients import Basis, Ingredient, Origin, Value
+from blendapp.domain.ingredients import Basis, Ingredient, Origin, Tag, Value
 from blendapp.domain.library import Library
 from blendapp.domain.making import mixture
 from blendapp.domain.notation import notation
@@ -34,7 +35,8 @@ class Made:
 
     as_fed: by nutrient identifier in its own unit; missing: parts without a value, of nutrients that stay unknown.
     price_per_t: money of the mill per tonne. site_id: for which site the price holds, None for the whole mill.
-    version: number of the approved version, None where it is today's answer.
+    tags: those of its parts, for what cautions must know. version: number of the approved version, None where it is
+    today's answer.
     """
 
     formula: Formula
@@ -44,6 +46,7 @@ class Made:
     missing: dict[int, tuple[str, ...]]
     price_per_t: float
     site_id: int | None
+    tags: tuple[Tag, ...] = ()
 
 
 def made_now(mill: Mill, ingredient_id: int, on: datetime.date) -> Made:
@@ -74,11 +77,12 @@ def made_now(mill: Mill, ingredient_id: int, on: datetime.date) -> Made:
     return Made(
         formula, None if version is None else version.number, dry,
         {key: amount * thicker for key, amount in mix.as_fed.items()}, mix.missing, price / left, site_id,
+        _tags(library, seen, amounts),
     )
 
 
 def take_from_formula(mill: Mill, ingredient_id: int, on: datetime.date) -> Edit:
-    """Write into a made ingredient the composition, dry matter and price that its formula makes: one edit, one undo.
+    """Write into a made ingredient the composition, dry matter, tags and price that its formula makes: one undo.
 
     Values are estimated, with the formula and the day as their source. What the formula does not know stays as it is,
     and what was once taken from a formula and is not known now is forgotten; the oddities of the edit name it. Raises
@@ -88,9 +92,9 @@ def take_from_formula(mill: Mill, ingredient_id: int, on: datetime.date) -> Edit
     ingredient = library.ingredient(ingredient_id)
     made = made_now(mill, ingredient_id, on)
     source = _source(made.formula, on)
-    changes: list[Change] = []
-    if made.dry_matter_percent is not None:
-        changes += edits.field_changes(mill, ingredient, dry_matter_percent=_rounded(made.dry_matter_percent))
+    tags = tuple(dict.fromkeys([*ingredient.tags, *made.tags]))
+    dry = ingredient.dry_matter_percent if made.dry_matter_percent is None else _rounded(made.dry_matter_percent)
+    changes = edits.field_changes(mill, ingredient, tags=tags, dry_matter_percent=dry)
     for nutrient_id, amount in made.as_fed.items():
         if not _stands(library.value(ingredient_id, nutrient_id), library.nutrient(nutrient_id).unit, amount):
             changes += _value(mill, ingredient_id, nutrient_id, amount, source, on)
@@ -169,6 +173,12 @@ def _todays_answer(mill: Mill, formula: Formula, on: datetime.date) -> dict[int,
     if not amounts:
         raise Refused(_("{formula} is a mix of nothing; there is nothing to take.").format(formula=formula.name))
     return amounts
+
+
+def _tags(library: Library, seen: Library, amounts: dict[int, float]) -> tuple[Tag, ...]:
+    """The tags of everything in the mix, those of what its made parts are made of included."""
+    held = [tag for key in sorted(amounts) for tag in making.held(library, seen.ingredient(key)).tags]
+    return tuple(dict.fromkeys(tag for tag in held if tag is not Tag.ONLY_WHEN_LISTED))
 
 
 def _price(

@@ -7,14 +7,16 @@ from collections.abc import Callable
 
 import pytest
 
-from blendapp.domain.formulas import Admits
-from blendapp.domain.ingredients import Basis, Ingredient, Origin, Value
+from blendapp.domain.formulas import Admits, Animal
+from blendapp.domain.ingredients import Basis, Ingredient, Origin, Tag, Value
 from blendapp.domain.library import Library
 from blendapp.domain.plant import Site
 from blendapp.domain.problems import Refused
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import added
+from blendapp.domain.results import Status
 from blendapp.services import edits, made
+from blendapp.services.formulate import formulate
 from blendapp.services.mill import Mill
 from tests.mills import TODAY, Maker
 from tests.services.approving import approve, staffed
@@ -179,3 +181,54 @@ def test_what_an_edit_elsewhere_makes_stale_is_said_until_it_is_taken_again(mill
     )
     made.take_from_formula(mill, PREMIX, TODAY)
     assert made.stale(mill, TODAY) == []
+
+
+def medicated_library() -> Library:
+    """A base for broilers that may hold an ionophore, a premix of that base, and a feed for horses that admits it."""
+    make = Maker()
+    make.ingredient("Maize", 200.0)
+    make.ingredient("Ionophore premix", 9000.0, tags=(Tag.MEDICATED, Tag.IONOPHORE, Tag.ONLY_WHEN_LISTED))
+    base = make.formula("Base", admits=Admits.LISTED)
+    make.limit(base, "ingredient", "Maize", 99, 99)
+    make.limit(base, "ingredient", "Ionophore premix", 1, 1)
+    make.put(Ingredient(3, "Base", made_by_formula_id=base.id))
+    make.put(Quote(3, 3, 250.0))
+    twice = make.formula("Base twice", admits=Admits.LISTED)
+    make.limit(twice, "ingredient", ["Base"])
+    make.put(Ingredient(4, "Base twice", made_by_formula_id=twice.id))
+    make.put(Quote(4, 4, 250.0))
+    for animal in (Animal.HORSE, Animal.POULTRY):
+        feed = make.formula(f"Feed for {animal}", animal=animal, admits=Admits.LISTED)
+        make.limit(feed, "ingredient", "Maize")
+        make.limit(feed, "ingredient", ["Base twice"], 10)
+    return make.library
+
+
+def test_a_feed_for_horses_admits_nothing_that_is_made_with_an_ionophore_however_deep(opened: Opened) -> None:
+    mill = opened(medicated_library())
+    found = {f.name: formulate(mill.library, f.id, TODAY) for f in mill.library.formulas if f.animal is not None}
+    assert found["Feed for horse"].status is Status.CONFLICT
+    assert "Base twice holds an ionophore" in str(found["Feed for horse"].cause)
+    assert found["Feed for poultry"].status is Status.OPTIMAL
+
+
+def test_the_tags_of_the_parts_come_along_with_what_they_hold(opened: Opened) -> None:
+    mill = opened(medicated_library())
+    made.take_from_formula(mill, 3, TODAY)
+    assert mill.library.ingredient(3).tags == (Tag.MEDICATED, Tag.IONOPHORE)
+    made.take_from_formula(mill, 4, TODAY)
+    assert mill.library.ingredient(4).tags == (Tag.MEDICATED, Tag.IONOPHORE)
+    mill.undo()
+    assert mill.library.ingredient(4).tags == ()
+
+
+def test_a_made_ingredient_that_lacks_the_tags_of_its_parts_is_said_to(opened: Opened) -> None:
+    mill = opened(medicated_library())
+    (odd,) = edits.change(mill, mill.library.ingredient(3), code="B").oddities
+    assert odd.text == (
+        "Base may hold Ionophore premix and lacks their tags: medicated, ionophore. Add them, so that formulas and "
+        "cautions know."
+    )
+    (above,) = edits.change(mill, mill.library.ingredient(3), tags=(Tag.IONOPHORE, Tag.MEDICATED)).oddities
+    assert above.place.record == "Base twice"
+    assert edits.change(mill, mill.library.ingredient(4), tags=(Tag.IONOPHORE, Tag.MEDICATED)).oddities == ()
