@@ -15,10 +15,13 @@ from blendapp.domain.ingredients import Tag
 from blendapp.domain.library import Library
 from blendapp.domain.plant import Bin, Lot, Mixer, Scale, Site
 from blendapp.domain.records import KINDS, Change, added
+from blendapp.services import edits
+from blendapp.services.mill import open_mill
 from blendapp.storage import create
 from tests.cli import shapes
 from tests.cli.conftest import Run
 from tests.mills import Maker
+from tests.services.approving import approve, staffed
 
 Runner = Callable[..., Run]
 
@@ -174,6 +177,25 @@ def test_after_a_drug_the_answer_is_no_until_a_clean_out_is_chosen(
     accepted = sheet("Feed", 1000, "--accept", "washed by hand", "--by", "Ann")
     assert accepted.status == 0
     assert "Batch sheet 4 " in accepted.out
+
+
+def test_the_approved_version_is_made_in_its_approved_proportions(sheet: Callable[..., Run], mill: Path) -> None:
+    before = by_name(checked(sheet("Feed", 1000, "--json")))
+    opened = open_mill(mill, "Ann")
+    staffed(opened)
+    approve(opened, 1)
+    edits.set_bound(opened, 3, "maximum", 5.0)
+    edits.set_bound(opened, 3, "minimum", 4.5)
+    opened.close()
+    draft = checked(sheet("Feed", 1000, "--json"))
+    assert draft["version"] == "draft 2"
+    approved = checked(sheet("Feed", 1000, "--approved", "--rework", "Fines = old=10", "--json"), 1)
+    lines = by_name(approved)
+    assert approved["version"] == "version 1"
+    assert lines["Fines = old"]["target_kg"] == 100.0
+    assert lines["Oil"]["share_kg"] == pytest.approx(0.9 * before["Oil"]["share_kg"])
+    assert lines["Maize"]["bins"] == ["Bin 4, lot L-77"]
+    assert approved["to_make"][0]["ingredient"] == "Premix"
 
 
 def test_paper_and_mass_are_chosen_for_the_page(sheet: Callable[..., Run], tmp_path: Path) -> None:
