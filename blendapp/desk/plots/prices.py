@@ -15,7 +15,6 @@ from blendapp.desk.history.marks import SIGNS, marks_of
 from blendapp.desk.theme import Tokens, text_font, tokens
 from blendapp.domain.notation import notation
 from blendapp.domain.price_history import PriceHistory, QuoteLine, Standing, day_words
-from blendapp.domain.quotes import Quote
 from blendapp.domain.wording import _
 
 MARK_PX, LINE_PX, THIN_PX = 9.0, 2.0, 1.0
@@ -112,6 +111,7 @@ class PricePlot(pg.GraphicsView):
         self.span_days: int | None = None
         self.quote_id: int | None = None
         self._points: dict[int, Point] = {}
+        self._ring: pg.ScatterPlotItem | None = None
 
     # -- what is shown
 
@@ -127,7 +127,7 @@ class PricePlot(pg.GraphicsView):
         """Put the ring round the mark of a quote."""
         if quote_id != self.quote_id:
             self.quote_id = quote_id
-            self.draw()
+            self._draw_ring()
 
     def span(self) -> tuple[float, float]:
         """The first and the last day that are shown, as ordinals."""
@@ -180,22 +180,25 @@ class PricePlot(pg.GraphicsView):
         item.setPos(x, y)
         self.box.addItem(item, ignoreBounds=True)
 
-    def _line(self, pen: QPen, points: Sequence[Point]) -> None:
-        self.box.addItem(pg.PlotCurveItem([x for x, _y in points], [y for _x, y in points], pen=pen, antialias=True))
+    def _line(self, pen: QPen, points: Sequence[Point], connect: str = "all") -> None:
+        x, y = ([point[part] for point in points] for part in (0, 1))
+        self.box.addItem(pg.PlotCurveItem(x, y, pen=pen, antialias=True, connect=connect))
 
     def _draw_validities(self, look: Tokens, first: float, last: float) -> None:
         """A thin line for as long as each quote holds, until the next one of the same supplier and site."""
-        lines = self._lines()
-        for at, line in enumerate(lines):
+        pairs: list[Point] = []
+        next_first: dict[tuple[int | None, int | None], float] = {}
+        for line in reversed(self._lines()):
             price, quote = line.quote.price_per_t, line.quote
-            if price is None:
-                continue
             begin = first if quote.valid_from is None else float(quote.valid_from.toordinal())
             end = last if quote.valid_to is None else quote.valid_to.toordinal() + 1.0
-            follows = next((one.quote for one in lines[at + 1 :] if _alike(one.quote, quote)), None)
-            if follows is not None and follows.valid_from is not None:
-                end = min(end, float(follows.valid_from.toordinal()))
-            self._line(_pen(look, "hairline", THIN_PX), [(max(begin, first), price), (min(end, last), price)])
+            whose = (quote.supplier_id, quote.site_id)
+            begin, end = max(begin, first), min(end, last, next_first.get(whose, last))
+            if price is not None and begin < end:
+                pairs += [(begin, price), (end, price)]
+            next_first[whose] = begin
+        if pairs:
+            self._line(_pen(look, "hairline", THIN_PX), pairs, "pairs")
 
     def _draw_steps(self, look: Tokens, first: float, last: float) -> None:
         """What was in force, solid up to the end of today and dashed from then on; broken where no price was known."""
@@ -241,13 +244,21 @@ class PricePlot(pg.GraphicsView):
             })
             if line.site:
                 self._write(line.site, x, price, look, (-0.05, 1.1))
-        ring = self._points.get(self.quote_id) if self.quote_id is not None else None
-        if ring is not None:
-            spots.append({"pos": ring, "symbol": "o", "data": self.quote_id, "size": MARK_PX * 2.1,
-                          "pen": _pen(look, "text" if self.hasFocus() else "quiet", 1.4), "brush": None})
         items = pg.ScatterPlotItem(spots, antialias=True)
         items.sigClicked.connect(self._clicked)
         self.box.addItem(items)
+        self._ring = pg.ScatterPlotItem(antialias=True)
+        self.box.addItem(self._ring)
+        self._draw_ring()
+
+    def _draw_ring(self) -> None:
+        """Draw the ring round the mark that is pointed at, and nothing else."""
+        if self._ring is None:
+            return
+        place = self._points.get(self.quote_id) if self.quote_id is not None else None
+        pen = _pen(tokens(), "text" if self.hasFocus() else "quiet", 1.4)
+        self._ring.setData([] if place is None else [
+            {"pos": place, "symbol": "o", "size": MARK_PX * 2.1, "pen": pen, "brush": None}])
 
     # -- hands
 
@@ -276,15 +287,11 @@ class PricePlot(pg.GraphicsView):
 
     def focusInEvent(self, event: QFocusEvent) -> None:
         super().focusInEvent(event)
-        self.draw()
+        self._draw_ring()
 
     def focusOutEvent(self, event: QFocusEvent) -> None:
         super().focusOutEvent(event)
-        self.draw()
-
-
-def _alike(one: Quote, other: Quote) -> bool:
-    return (one.supplier_id, one.site_id) == (other.supplier_id, other.site_id)
+        self._draw_ring()
 
 
 def _pen(look: Tokens, name: str, width: float, style: Qt.PenStyle = Qt.PenStyle.SolidLine) -> QPen:
