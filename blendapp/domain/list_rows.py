@@ -126,7 +126,7 @@ class SourceSheet:
     """A sheet as it stands in the file: rows[0] is its row 1; each cell as its text, "" if blank.
 
     rows may make their texts only when they are asked for; all have as many cells as the widest. hidden_rows from 1,
-    hidden_columns from 0.
+    hidden_columns from 0. struck: cells that are struck through, by (row from 1, column from 0).
     """
 
     name: str
@@ -134,6 +134,7 @@ class SourceSheet:
     tables: tuple[SourceTable, ...] = ()
     hidden_rows: frozenset[int] = frozenset()
     hidden_columns: frozenset[int] = frozenset()
+    struck: frozenset[tuple[int, int]] = frozenset()
 
 
 @dataclass(frozen=True)

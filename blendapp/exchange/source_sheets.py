@@ -49,7 +49,9 @@ class ShownRows(Sequence[tuple[str, ...]]):
 def source_sheet(raw: RawTable, tables: Iterable[SourceTable]) -> SourceSheet:
     """The sheet of a raw table. tables: those that were found on it, from the top."""
     hidden_rows = frozenset(row + 1 for row in raw.hidden_rows or ())
-    return SourceSheet(raw.sheet, ShownRows(raw), tuple(tables), hidden_rows, raw.hidden_columns or frozenset())
+    struck = frozenset((row + 1, column) for row, column in raw.struck)
+    columns = raw.hidden_columns or frozenset()
+    return SourceSheet(raw.sheet, ShownRows(raw), tuple(tables), hidden_rows, columns, struck)
 
 
 def shown_text(value: CellValue) -> str:

@@ -56,7 +56,7 @@ def test_hidden_and_struck_rows_are_told_from_others(bench: Bench, tmp_path: Pat
     read(bench, hide_and_strike(write(tmp_path / "list.xlsx", rows), hidden=3, struck=4))
     source = bench.prices.source
     assert source.gutter.word(3) == "hidden"
-    assert source.rows.struck == {4}
+    assert source.rows.sheet.struck == {(4, 0), (4, 1)}
 
 
 def test_the_row_of_the_question_is_outlined_and_comes_into_view(bench: Bench, hands: Hands, tmp_path: Path) -> None:
@@ -178,7 +178,7 @@ def test_only_the_cells_in_view_of_a_long_wide_list_are_made_and_painted(
     painted: list[tuple[int, int]] = []
     text = source.rows.text
     monkeypatch.setattr(source.rows, "text", lambda *place: (painted.append(place), text(*place))[1])
-    source.rows.show(sheet, "another file", dict.fromkeys(range(1, 5001), Fate.ACCEPTED), frozenset())
+    source.rows.show(sheet, "another file", dict.fromkeys(range(1, 5001), Fate.ACCEPTED))
     QApplication.processEvents()
     source.grab()
     assert source.rows.rowCount() == 5000

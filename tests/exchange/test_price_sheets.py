@@ -6,6 +6,7 @@ import datetime
 from pathlib import Path
 
 import openpyxl
+from openpyxl.styles import Font
 
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import ColumnRole, SourceColumn
@@ -25,6 +26,7 @@ def test_a_sheet_shows_every_cell_as_it_stands(tmp_path: Path, library: Library)
     sheet["B5"].data_type = "e"
     sheet["E4"], sheet["E4"].number_format = 0.125, "0.0%"
     sheet.row_dimensions[5].hidden = True
+    sheet["C4"].font = Font(strike=True)
     sheet.column_dimensions["D"].hidden = True
     book.save(path)
     (shown,) = read_price_list(path, library, TODAY).sheets
@@ -34,7 +36,7 @@ def test_a_sheet_shows_every_cell_as_it_stands(tmp_path: Path, library: Library)
         ("Maize", "205.25", "t", "2026-03-09", "12.5 %"), ("Wheat", "#N/A", "t", "", ""),
         ("Limestone", "(no result)", "TRUE", "", ""),
     ]
-    assert (shown.hidden_rows, shown.hidden_columns) == ({5}, {3})
+    assert (shown.hidden_rows, shown.hidden_columns, shown.struck) == ({5}, {3}, {(4, 2)})
 
 
 def test_the_rows_of_a_text_have_the_numbers_that_the_editor_shows(read: Read) -> None:

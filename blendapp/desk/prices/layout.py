@@ -218,4 +218,4 @@ class Parts:
         """Forget the list."""
         for model in (self.price_rows, self.sample_rows):
             model.show(None)
-        self.source.rows.show(None, "", {}, frozenset())
+        self.source.rows.show(None, "", {})

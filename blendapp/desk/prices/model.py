@@ -21,7 +21,7 @@ class PriceRows(UnderstoodRows):
         return [
             Heading("fate", "", 72), Heading("place", _("row"), 40, True), Heading("ingredient", _("Ingredient"), 170),
             Heading("entered", _("as listed"), 112, True), Heading("price", per_t, 78, True),
-            Heading("old", _("was"), 72, True), Heading("change", _("change"), 70, True),
+            Heading("old", _("was"), 68, True), Heading("change", _("change"), 66, True),
             Heading("percent", "%", 58, True),
         ]
 

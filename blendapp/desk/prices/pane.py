@@ -279,9 +279,8 @@ class ListPane(QWidget):
             return
         name = "" if sheet is None else sheet.name
         rows = [row for row in reading.rows if row.sheet == name]
-        struck = frozenset(row.row for row in rows if any(one.asked is Asked.STRUCK for one in row.questions))
         self.parts.sheets.choose(name)
-        self.source.rows.show(sheet, reading.digest, {row.row: row.fate for row in rows}, struck)
+        self.source.rows.show(sheet, reading.digest, {row.row: row.fate for row in rows})
         self.source.mark(self.source.marked_row)
 
     def _mark(self, sheet: str, row: int, about: Asked | None = None, heading: str = "") -> None:

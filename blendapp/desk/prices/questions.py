@@ -148,6 +148,7 @@ class QuestionPanel(QWidget):
         if one is not None:
             self.text.setText(one.question.text)
             self.text.setAccessibleName(one.question.text)
+            self.setAccessibleDescription(one.question.text)
             self.field.ask(typed, bool(one.question.choices))
             if typed == RATE:
                 self.rate.ask(one.question.about, self.library.mill.currency, self.on)
@@ -285,8 +286,8 @@ class QuestionPanel(QWidget):
             else:
                 self.enter()
         elif key == Qt.Key.Key_Escape:
-            if field is self.field and text:
-                self.field.clear()
+            if field is not None and field is not self.rate.day and text:
+                field.clear()
                 self.narrow("")
             else:
                 self.left.emit()

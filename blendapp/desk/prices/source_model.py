@@ -32,23 +32,20 @@ class SourceRows(QAbstractTableModel):
         super().__init__(parent)
         self.sheet = _EMPTY
         self.fates: Mapping[int, Fate] = {}
-        self.struck: frozenset[int] = frozenset()
         self._digest = ""
         self._height = 0
         self._width = 0
         self._texts: dict[int, tuple[str, ...]] = {}
         self._headings: frozenset[int] = frozenset()
 
-    def show(
-        self, sheet: SourceSheet | None, digest: str, fates: Mapping[int, Fate], struck: frozenset[int]
-    ) -> None:
-        """Show a sheet. digest: of its file; fates: of every row that is not blank, from 1; struck: rows that are
-        struck through. A sheet of the same file keeps its place and changes its marks only."""
+    def show(self, sheet: SourceSheet | None, digest: str, fates: Mapping[int, Fate]) -> None:
+        """Show a sheet. digest: of its file; fates: of every row that is not blank, from 1. A sheet of the same file
+        keeps its place and changes its marks only."""
         sheet = sheet or _EMPTY
         same = digest == self._digest and sheet.name == self.sheet.name and bool(self._width)
         if not same:
             self.beginResetModel()
-        self.sheet, self._digest, self.fates, self.struck = sheet, digest, fates, struck
+        self.sheet, self._digest, self.fates = sheet, digest, fates
         self._headings = frozenset(row for table in sheet.tables for row in table.heading_rows)
         if not same:
             # Rows may be made when they are asked for: what lies below the last one with a fate is never asked for.

@@ -58,7 +58,7 @@ class _Cell(QStyledItemDelegate):
         heading = rows.is_heading(row)
         read = heading or (rows.is_read(row, column) and not rows.is_hidden(row)
                            and column not in rows.sheet.hidden_columns)
-        font = self._strong if heading else self._struck if row in rows.struck else self._plain
+        font = self._strong if heading else self._struck if (row, column) in rows.sheet.struck else self._plain
         painter.setFont(font)
         painter.setPen(look.colour("text" if read else "quiet"))
         box = rect.adjusted(PAD_PX, 0, -PAD_PX, 0)
