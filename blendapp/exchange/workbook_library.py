@@ -189,6 +189,7 @@ def read_made_by(draft: Draft, rows: list[tuple[Row, Ingredient]]) -> None:
         if formula is not None or not row.has("Made by formula"):
             making.append((row, made))
     for row, made in making:
+        draft.say_oddities(made, row)
         for name, text in checks.faults(made, draft.library):
             if name in ("made_by_formula_id", "opened"):
                 row.fault("Made by formula" if name == "made_by_formula_id" else "Opened", text)

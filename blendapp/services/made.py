@@ -141,6 +141,9 @@ def _differing(library: Library, ingredient: Ingredient, made: Made, on: datetim
         (_("dry matter"), ingredient.dry_matter_percent, made.dry_matter_percent),
         (_("price"), library.price_per_t(ingredient.id, on, made.site_id), made.price_per_t),
     ]
+    lacking = [_(str(tag)) for tag in made.tags if tag not in ingredient.tags]
+    if lacking:
+        found.append(_("also {tags}").format(tags=", ".join(lacking)))
     for nutrient_id, amount in made.as_fed.items():
         value = library.value(ingredient.id, nutrient_id)
         nutrient = library.nutrient(nutrient_id)

@@ -197,6 +197,14 @@ def test_an_ingredient_that_a_formula_makes_is_opened_and_closed(mill: Reader) -
     assert mill.read().ingredient(3).opened is False
 
 
+def test_a_made_ingredient_without_the_tags_of_its_parts_is_warned_of(mill: Reader) -> None:
+    mill.sheets["Ingredients"].append(["Layer premix", *[None] * 8])
+    mill.column("Ingredients", "Made by formula", [None, None, "Layer"])
+    mill.column("Ingredients", "Tags", [None, "medicated", None])
+    mill.read()
+    assert said(mill, "Ingredients:4:Tags: Layer premix may hold Soybean meal and lacks their tags: medicated.")
+
+
 def test_a_price_of_the_workbook_counts_where_the_mill_works(mill: Reader) -> None:
     library = mill.read()
     library.apply([

@@ -214,6 +214,7 @@ def test_a_feed_for_horses_admits_nothing_that_is_made_with_an_ionophore_however
 
 def test_the_tags_of_the_parts_come_along_with_what_they_hold(opened: Opened) -> None:
     mill = opened(medicated_library())
+    assert "also medicated, ionophore" in made.stale(mill, TODAY)[0].text
     made.take_from_formula(mill, 3, TODAY)
     assert mill.library.ingredient(3).tags == (Tag.MEDICATED, Tag.IONOPHORE)
     made.take_from_formula(mill, 4, TODAY)
