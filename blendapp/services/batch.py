@@ -25,7 +25,14 @@ from blendapp.domain.results import Result, Status
 from blendapp.domain.wording import _
 from blendapp.optimise.build.composition import Composition
 from blendapp.optimise.build.formula import FormulaProgram, build
-from blendapp.optimise.build.weigh import FixedRefused, NotWeighable, WeighedLine, Weighing, weigh
+from blendapp.optimise.build.weigh import (
+    FixedRefused,
+    NotWeighable,
+    WeighedLine,
+    Weighing,
+    scales_for,
+    weigh,
+)
 from blendapp.services import batch_cautions, sheets
 from blendapp.services.batch_mix import BatchMix, batch_mix
 from blendapp.services.formulate import formulate
@@ -161,7 +168,8 @@ def _unscaled(library: Library, mix: BatchMix) -> str | None:
         return None
     usable = [scale for scale in library.scales if not scale.by_volume and (scale.step_kg or 0.0) > 0]
     lacking: list[Ingredient] = [
-        one for one in map(library.ingredient, mix.contents.amounts) if one.scale_id not in every
+        one for one in map(library.ingredient, mix.contents.amounts)
+        if one.scale_id not in every or not scales_for(library, one)
     ]
     names = ", ".join(one.name for one in lacking)
     if not library.scales:

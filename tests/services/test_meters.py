@@ -117,6 +117,16 @@ def test_a_proposal_names_no_meter_and_no_scale_without_a_step() -> None:
     assert batch_of(only).cause == "No scale weighs Meal. Enter one with a step in kg, and choose it under Scale."
 
 
+def test_where_only_pumps_stand_what_they_do_not_dose_is_a_question() -> None:
+    library = mill()
+    library.apply([Change(None, Site(1, "North")), Change(None, Site(2, "South"))])
+    for scale_id, site_id in ((BIG, 2), (HAND, 2), (PUMP, 1)):
+        changed(library, scale_id, site_id=site_id)
+    assert batch_of(library.at_site(1)).cause == (
+        "No scale weighs Maize, Meal. Enter one with a step in kg, and choose it under Scale."
+    )
+
+
 def test_a_mass_read_from_the_sheet_in_grams_fixes_whole_steps_of_litres() -> None:
     fine = mill(density=0.9173, step_l=0.05)  # steps of 0.045865 kg
     oil = next(line for line in batch_of(fine).lines if line.ingredient == "Oil")

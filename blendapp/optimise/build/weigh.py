@@ -155,7 +155,7 @@ _READ_KG = 0.0005
 def _as_dosed(library: Library, ingredient_id: int, mass_kg: float) -> float:
     """A fixed mass, brought to the whole steps of litres that it was read from where a meter doses it."""
     ingredient = library.ingredient(ingredient_id)
-    own = next(iter(scales_for(library, ingredient)))
+    own = next(iter(scales_for(library, ingredient)), None)
     if own is None or not own.by_volume:
         return mass_kg
     span = own.span(ingredient.density_kg_per_l)
