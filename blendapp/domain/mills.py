@@ -115,8 +115,8 @@ class Asked(StrEnum):
     DECIMAL: a heading; "." or ",". DATES: a heading; DAY_FIRST or MONTH_FIRST. HIDDEN_COLUMN: a heading; TAKE.
     TABLE: a sheet; "row 5", the row of its headings, or "row 0" where it has none. COLUMN: a heading, or "column 3"
     where it has none; one of list_rows.ColumnRole. SUPPLIER, SITE: ""; a name, whose list it is and for which site.
-    NUTRIENT: a heading; a nutrient's name, "Dry matter", or LEAVE_OUT. CONCENTRATION: a heading; a unit. BASIS: a
-    heading, or "" for all; one of ingredients.Basis.
+    NUTRIENT: a heading; a nutrient's name, "Dry matter", or LEAVE_OUT. CONCENTRATION: a heading, or "" for all
+    without a unit that are kept in % or g/kg; a unit. BASIS: a heading, or "" for all; one of ingredients.Basis.
     USUAL_CHANGE, of every source: a class of ingredients, "" for all others; by how many percent a price may change
     without a question.
     EXPIRED_LIST, of this list alone, and not remembered: a day as 2026-03-09, on which all of its prices ended; TAKE or

@@ -44,8 +44,12 @@ _NOTE_HEADINGS = frozenset({
     "laboratory", "lab", "method", "analyst", "sampled by", "sampler", "truck", "vehicle", "ticket", "invoice", "order",
     "order no", "po", "po number", "quantity", "qty", "weight", "tonnage", "mass", "price", "cost", "site", "location",
     "place", "silo", "bin", "store", "grade", "class", "quality", "status", "country", "season", "week", "month",
-    "year", "page", "line", "row", "pos", "position", "depot", "port", "vessel", "time", "n", "count", "samples", "kg",
+    "year", "page", "line", "row", "pos", "position", "depot", "port", "vessel", "time", "kg", "sd", "std", "std dev",
+    "stdev", "cv", "uncertainty", "error", "expanded uncertainty", "repeatability", "lod", "loq", "detection limit",
+    "min", "max", "minimum", "maximum", "limit", "spec", "specification", "guarantee", "target",
 })
+# How many samples a row stands for.
+COUNT_HEADINGS = frozenset({"n", "count", "samples", "no of samples", "number of samples", "sample count"})
 
 
 @dataclass(frozen=True)
@@ -66,7 +70,7 @@ class ValueColumn:
 class AnalysisTable:
     """A table of analyses within a sheet. heading_row: from 0, None where it has no headings.
 
-    twins: the columns, by index, of one nutrient that stands several times.
+    name, count: the columns of the names, and of how many samples a row stands for.
     """
 
     heading_row: int | None
@@ -74,6 +78,7 @@ class AnalysisTable:
     headings: dict[int, str] = field(default_factory=dict)
     values: list[ValueColumn] = field(default_factory=list)
     name: int | None = None
+    count: int | None = None
     first_heading_row: int | None = None
     last_heading_row: int | None = None
 
@@ -131,10 +136,12 @@ def role_of(
     for headings, role in (
         (_NAME_HEADINGS, ColumnRole.NAME), (_SAMPLE_HEADINGS, ColumnRole.SAMPLE),
         (frozenset(_DAY_HEADINGS), ColumnRole.SAMPLED), (_BASIS_HEADINGS, ColumnRole.BASIS),
-        (_NOTE_HEADINGS, ColumnRole.NOTE),
+        (_NOTE_HEADINGS | COUNT_HEADINGS, ColumnRole.NOTE),
     ):
         if plain in headings:
             return role, match
+    if heading and not plain and "%" not in heading:  # "±", "#"
+        return ColumnRole.NOTE, match
     words = read_heading(heading)
     return (ColumnRole.NUTRIENT if words.name and (words.says_unit or match.may_be) else ColumnRole.OTHER), match
 

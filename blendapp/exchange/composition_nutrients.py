@@ -68,6 +68,12 @@ _QUALIFIERS = frozenset({
 })
 
 
+# "Lysine, % of protein" is no part of the material.
+_OF_PROTEIN = re.compile(
+    r"(?:%|g/16\s?g\s*n\b|g/100\s?g)\s*(?:(?:of|in)\s+)?(?:the\s+)?(?:crude\s+)?(?:cp|protein|xp)\b|g/16\s?g\s*n\b"
+)
+
+
 @dataclass(frozen=True)
 class NutrientMatch:
     """nutrient: None where it is not known, and reason is the question. built_in: DRY_MATTER or MOISTURE, else "".
@@ -158,6 +164,9 @@ class NutrientFinder:
 
     def _asked(self, heading: str, words: HeadingWords) -> NutrientMatch:
         """The question, with those that the words may mean and those of like names, none of another kind of unit."""
+        if _OF_PROTEIN.search(re.sub(r"[()\[\]]", " ", fold(heading))):
+            text = _("“{heading}” is a part of the protein; give it as a part of the material, or leave it out.")
+            return NutrientMatch(reason=text.format(heading=heading), choices=(LEAVE_OUT,), may_be=True)
         key = _key(words.name)
         meanings = _SEVERAL.get(key) or tuple(filter(None, [_MEANING.get(key)]))
         likely = [one for meaning in meanings for one in self._by_meaning.get(meaning, [])]

@@ -8,19 +8,18 @@ from blendapp.domain.ingredients import Basis, Ingredient, Value
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import LEAVE_OUT, ColumnRole, Fate
 from blendapp.domain.mills import Asked
-from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.nutrients import DRY_MATTER, MOISTURE, Nutrient
 from blendapp.domain.wording import _
 from blendapp.exchange.composition_cells import ResultCell, read_result
-from blendapp.exchange.composition_columns import ValueColumn
+from blendapp.exchange.composition_columns import ValueColumn, plain_heading
 from blendapp.exchange.composition_segments import Segment
 from blendapp.exchange.composition_words import read_basis, read_unit
 from blendapp.exchange.list_answers import LARGEST_USUAL_CHANGE
 from blendapp.exchange.list_cells import first_text
 from blendapp.exchange.list_checks import leaps, near_power
 from blendapp.exchange.list_names import Match, NameFinder
-from blendapp.exchange.list_numbers import DecimalSign
+from blendapp.exchange.list_numbers import DecimalSign, split_number
 from blendapp.exchange.list_row import TOTALS, RowReading
 from blendapp.exchange.tables import RawTable
 
@@ -96,12 +95,21 @@ class _Reading(RowReading):
         texts = [self.text(index) for index in self.sample_columns]
         if not known:
             texts += [self.name, first_text(self.raw, self.row)]
-        return any(fold(text).rstrip(" :.") in _ABOUT_SEVERAL for text in texts)
+        return any(plain_heading(text) in _ABOUT_SEVERAL for text in texts)
+
+    def _ask_about_count(self) -> None:
+        """A row that stands for several samples is a mean, and none."""
+        found = split_number(self.text(self.table.count))
+        count = None if found is None else found[0].value(DecimalSign.POINT)
+        if count is not None and count > 1:
+            text = _("The row stands for {count} samples; say whether it counts as one.")
+            self.confirm(Asked.CHANGE, text.format(count=f"{count:g}"))
 
     def _sampled(self, filled: list[tuple[ValueColumn, ResultCell]], places: list[int]) -> CompositionRow:
         self.ask_about_place(
             places, _("The column “{name}” with names or values is hidden in the list; say whether it counts.")
         )
+        self._ask_about_count()
         match = self.match(_("The sample has no name; say which ingredient it is of."))
         day = self.table.first(ColumnRole.SAMPLED)
         sampled = None if day is None else self.date(day, self.segment.day_order)
@@ -250,13 +258,21 @@ class _Reading(RowReading):
             found = fitting[0] if len(fitting) == 1 and len(self.segment.notes.units) == 1 else None
         if found is not None and units.concentration(found[0]).family is family:
             return found
-        answer = self.answers.find(Asked.CONCENTRATION, column.heading)
-        answered = None if answer is None else read_unit(answer.answer)
+        answered = self._answered_unit(column.heading)
+        silent = found is None and not column.words.says_unit and own in _PERCENT_OF_WHOLE
+        of_many = silent and len(self._without_unit()) > 1
+        if answered is None and of_many:
+            answered = self._answered_unit("")
         if answered is not None and units.concentration(answered[0]).family is family:
             return answered
         if found is not None:
             text = _("“{heading}” is in {unit}, which does not measure {nutrient}; say in which unit it is.")
             said_text = text.format(heading=column.heading, unit=found[0], nutrient=name)
+        elif of_many:
+            names = ", ".join(f"“{one.heading}”" for one in self._without_unit())
+            text = _("{names} do not say their unit; say which holds for all of them.").format(names=names)
+            self.ask(Asked.CONCENTRATION, "", text, _PERCENT_OF_WHOLE)
+            return None
         elif column.words.says_unit:
             said_text = _("“{heading}” names two units; say which holds.").format(heading=column.heading)
         else:
@@ -264,6 +280,18 @@ class _Reading(RowReading):
         known = _PERCENT_OF_WHOLE if isinstance(of, str) else _names_of(family)
         self.ask(Asked.CONCENTRATION, column.heading, said_text, known)
         return None
+
+    def _answered_unit(self, about: str) -> tuple[str, float] | None:
+        answer = self.answers.find(Asked.CONCENTRATION, about)
+        return None if answer is None else read_unit(answer.answer)
+
+    def _without_unit(self) -> list[ValueColumn]:
+        """The columns without a unit that are kept in parts of the whole: one answer may hold for all."""
+        return [
+            one for one in self.table.values
+            if not one.words.says_unit and one.match.name
+            and (one.is_built_in or (one.match.nutrient is not None and one.match.nutrient.unit in _PERCENT_OF_WHOLE))
+        ]
 
     def _basis(self, column: ValueColumn, cell: ResultCell) -> Basis | None:
         """Per kg of what: as the cell, the heading, the row or a note says, else as answered; never guessed."""

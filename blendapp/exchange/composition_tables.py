@@ -10,6 +10,7 @@ from blendapp.domain.list_rows import ColumnRole
 from blendapp.domain.mills import Asked
 from blendapp.domain.wording import _
 from blendapp.exchange.composition_columns import (
+    COUNT_HEADINGS,
     VALUE_ROLES,
     AnalysisTable,
     ValueColumn,
@@ -189,6 +190,7 @@ def _settle(found: AnalysisTable, raw: RawTable, finders: Finders) -> None:
     _numbers_without_meaning(found, raw, finders)
     _settle_name(found, raw, finders)
     best_day(found)
+    found.count = next((i for i, heading in found.headings.items() if plain_heading(heading) in COUNT_HEADINGS), None)
     samples = [index for index, role in found.roles.items() if role is ColumnRole.SAMPLE]
     if len(samples) > 1:
         for index in samples:

@@ -33,7 +33,7 @@ _UNITS = re.compile(
 _STATED = re.compile(r"[0-9]+(?:[.,][0-9]+)?\s*%\s*(?:dm\b|dry\s+matter)")
 _BASIS = r"(?:[ -]?bas(?:is|ed))?"
 _AS_FED = re.compile(
-    r"\b(?:(?:on|in|of)\s+(?:an?\s+|the\s+)?)?(?:as[ -]?(?:fed|is|received|sampled|delivered)|"
+    r"\b(?:(?:on|in|of)\s+(?:an?\s+|the\s+)?)?(?:as[ -]?(?:fed|is|received|sampled|delivered)|af|ar|"
     rf"fresh[ -](?:matter|weight)|wet[ -](?:basis|weight)|original[ -](?:matter|substance))\b{_BASIS}"
 )
 _DRY = re.compile(

@@ -26,6 +26,7 @@ FED, DRY = "as fed", "dry matter"
     ("Crude protein [% w/w, as received]", 8.4, "Crude protein", (8.4, "%", FED)),
     ("Ether extract g/100 g as fed", 4.1, "Crude fat", (4.1, "%", FED)),
     ("EE% (dry basis)", 4.1, "Crude fat", (4.1, "%", DRY)),
+    ("CP % (AR)", 8.4, "Crude protein", (8.4, "%", FED)),
     ("Crude fiber % as fed", 2.2, "Crude fibre", (2.2, "%", FED)),
     ("Lysine g/kg as fed", 2.5, "Lysine", (2.5, "g/kg", FED)),
     ("Lys (%DM)", 0.29, "Lysine", (0.29, "%", DRY)),
@@ -71,7 +72,6 @@ def test_dry_matter_is_read_and_moisture_is_what_is_missing_to_the_whole(
     ("Energy MJ/kg as fed", Asked.NUTRIENT, LEAVE_OUT), ("ME MJ/kg as fed", Asked.NUTRIENT, LEAVE_OUT),
     ("Fibre % as fed", Asked.NUTRIENT, "Crude fibre"), ("Zearalenone ug/kg as fed", Asked.NUTRIENT, LEAVE_OUT),
     ("Crud protien % as fed", Asked.NUTRIENT, "Crude protein"),
-    ("Lysine % of CP as fed", Asked.NUTRIENT, LEAVE_OUT),
 ])
 def test_what_may_be_several_things_or_none_is_asked_and_never_taken_by_likeness(
     heading: str, about: Asked, choice: str
@@ -111,6 +111,38 @@ def test_a_missing_a_double_or_an_unfitting_unit_is_asked_once(
     assert answer in reading.questions[0].choices
     reading = read(rows, Answer(Asked.CONCENTRATION, unit, answer))
     assert [values_of(row) for row in reading.accepted] == [{"Calcium": expected}] * 2
+
+
+def test_several_columns_without_a_unit_are_one_question_and_those_kept_in_other_units_their_own() -> None:
+    rows = [["Ingredient", "Moisture", "Protein", "Fat", "Zn"], ["Maize", 12.5, 8.4, 4, 22]]
+    fed = Answer(Asked.BASIS, "", FED)
+    assert asked(read(rows, fed)) == {("concentration", ""), ("concentration", "Zn")}
+    answers = fed, Answer(Asked.CONCENTRATION, "", "%"), Answer(Asked.CONCENTRATION, "Zn", "mg/kg")
+    (row,) = read(rows, *answers).accepted
+    assert values_of(row) == {
+        "Dry matter": (87.5, "%", FED), "Crude protein": (8.4, "%", FED), "Crude fat": (4, "%", FED),
+        "Zinc": (22, "mg/kg", FED),
+    }
+    (row,) = read(rows, *answers, Answer(Asked.CONCENTRATION, "Fat", "g/kg")).accepted
+    assert values_of(row)["Crude fat"] == (4, "g/kg", FED)
+
+
+@pytest.mark.parametrize("heading", ["Lys (% CP)", "Lysine, % of crude protein", "Lysine g/16 g N"])
+def test_a_part_of_the_protein_is_no_part_of_the_material(heading: str) -> None:
+    (question,) = read([["Ingredient", heading, "CP % as fed"], ["Maize", 3, 8.4]]).questions
+    assert (question.asked, question.about, question.choices) == (Asked.NUTRIENT, heading, (LEAVE_OUT,))
+
+
+def test_columns_of_uncertainty_and_limits_are_no_results() -> None:
+    rows = [["Ingredient", "CP % as fed", "+/-", "SD", "Min", "Lab fee"], ["Maize", 8.4, 0.2, 0.1, 8, "none"]]
+    (row,) = read(rows).accepted
+    assert values_of(row) == {"Crude protein": (8.4, "%", FED)}
+
+
+def test_a_row_that_stands_for_several_samples_is_asked_about() -> None:
+    rows = [["Ingredient", "n", "CP % as fed"], ["Maize", 12, 8.4], ["Soybean meal", 1, 45]]
+    assert fates(read(rows)) == ["ignored", "question", "accepted"]
+    assert "12 samples" in read(rows).rows[1].reason
 
 
 def test_an_unknown_basis_is_asked_once_for_the_whole_list() -> None:

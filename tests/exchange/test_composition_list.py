@@ -236,7 +236,7 @@ def test_sample_numbers_are_kept_as_they_stand() -> None:
 
 
 @pytest.mark.parametrize("cells", [
-    ["Mean", None, None, 8.5, 60], ["Maize", "Average", None, 8.5, 60], ["SD", None, None, 0.2, 1],
+    ["Mean", None, None, 8.5, 60], ["Maize", "Average", None, 8.5, 60], ["Std. dev.", None, None, 0.2, 1],
     [None, "n", None, 3, 3], ["Detection limit", None, None, 0.1, 0.1], ["Method", None, None, "ISO 1", "ISO 2"],
     ["All samples were ground", None, None, None, None], ["Maize", "A", None, None, None], ["Total", None, None, 9, 1],
     ["Maize", "A", None, "n.d.", "-"],
