@@ -17,6 +17,9 @@ _DATED = re.compile(
     r"\b[0-9]{1,2}(?:st|nd|rd|th)?\s+(?=jan|feb|mar|apr|may|jun|jul|aug|sep|oct|nov|dec)|"
     r"(?<=\b[a-z]{3} )[0-9]{1,2}\b", re.IGNORECASE,
 )
+# A note in a title row speaks of prices too, and heads none; the second one may be a heading beside one of names.
+_NOTE = re.compile(r"\b(?:all|our|these)\s+(?:prices|quotes|offers)\b", re.IGNORECASE)
+_NOTE_ALONE = re.compile(r"\b(?:prices|quotes|offers)\s+(?:are|is|subject|valid|per|in)\b", re.IGNORECASE)
 
 
 def read_headings(table: RawTable, row: int, role: RoleOf = role_of) -> Table | None:
@@ -32,6 +35,11 @@ def read_headings(table: RawTable, row: int, role: RoleOf = role_of) -> Table | 
     if below and _holds_price(below):
         below = None
     found = _headed(row, texts, role)
+    if found is not None and found.name is None and below:
+        both = _headed(row, joined(spread_over(table, row, texts, below), below), role)
+        if both is not None and both.name in below:  # the name is headed in the second row alone
+            both.last_heading_row = row + 1
+            return both
     if found is not None:
         split = _split_below(table, row, texts, below, found, role) if below else None
         if split is not None:
@@ -132,6 +140,10 @@ def _headed(row: int, texts: dict[int, str], role_of_heading: RoleOf) -> Table |
                 heading = f"{heading} ({column_letters(index)})"
             found.prices.append(PriceColumn(index, role, heading, words))
     if not any(column.role is not ColumnRole.FREIGHT for column in found.prices) or len(found.roles) < 2:
+        return None
+    if any(_NOTE.search(column.heading) for column in found.prices):
+        return None
+    if not names and any(_NOTE_ALONE.search(column.heading) for column in found.prices):
         return None
     found.name = names[0] if names else None
     found.side_by_side = _is_side_by_side(names, found.prices)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 
 from blendapp.exchange.list_numbers import date_readings
@@ -27,6 +27,8 @@ _DATE = (
 _FROM = re.compile(r"\b(?:from|effective|as\s+of|as\s+from)[ :]+" + _DATE, re.IGNORECASE)
 _TO = re.compile(r"\b(?:until|till|to|expir\w+|through)[ :]+(?:on\s+)?" + _DATE, re.IGNORECASE)
 
+MOST_TEXTS_IN_A_TITLE = 3
+
 
 @dataclass(frozen=True)
 class Notes:
@@ -41,15 +43,14 @@ class Notes:
     without_freight: str = ""
 
 
-def read_notes(table: RawTable, rows: Iterable[int]) -> Notes:
-    """The notes among rows: those with one filled cell, a text that speaks of prices."""
+def read_notes(table: RawTable, rows: Iterable[int], headings: int = 0) -> Notes:
+    """The notes among rows: texts that speak of prices, alone in a row or, above the headings, beside one or two more.
+
+    headings: the row, from 0, in which the headings begin.
+    """
     units: list[Words] = []
     first = last = freight = ""
-    for row in rows:
-        cells = [value for value in table.rows[row] if kind_of(value) is not CellKind.BLANK]
-        if len(cells) != 1 or not isinstance(cells[0], str):
-            continue
-        text = " ".join(cells[0].split())
+    for text in _texts(table, rows, headings):
         if _OF_SOMETHING_ELSE.search(text):
             freight = freight or (text if _FREIGHT.search(text) else "")
             continue
@@ -62,6 +63,13 @@ def read_notes(table: RawTable, rows: Iterable[int]) -> Notes:
             first = first or _found(_FROM, text)
             last = last or _found(_TO, text)
     return Notes(tuple(dict.fromkeys(units)), first, last, freight)
+
+
+def _texts(table: RawTable, rows: Iterable[int], headings: int) -> Iterator[str]:
+    for row in rows:
+        cells = [value for value in table.rows[row] if kind_of(value) is not CellKind.BLANK]
+        if len(cells) <= (MOST_TEXTS_IN_A_TITLE if row < headings else 1):
+            yield from (" ".join(cell.split()) for cell in cells if isinstance(cell, str))
 
 
 def _found(pattern: re.Pattern[str], text: str) -> str:

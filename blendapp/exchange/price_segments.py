@@ -81,7 +81,7 @@ def _segment(
         index = table.first(role)
         if index is not None:
             dates[index] = date_order(raw, index, body, answers, table.headings[index])
-    notes = read_notes(raw, range(first, last))
+    notes = read_notes(raw, range(first, last), table.heading_rows.start if table.heading_rows else 0)
     notes = Notes(
         notes.units or titles.units, notes.valid_from or titles.valid_from, notes.valid_to or titles.valid_to,
         notes.without_freight or titles.without_freight,
