@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 import tempfile
 from collections.abc import Callable
 from decimal import Decimal
@@ -12,9 +13,12 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from blendapp.domain import units
+from blendapp.domain import checks, units
+from blendapp.domain.composition_rows import sample_means
+from blendapp.domain.ingredients import Value
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import Fate
+from blendapp.domain.problems import Refused
 from blendapp.exchange import read_composition_list
 from tests.exchange.made_lists import Rows, write_ods, write_text, write_xls, write_xlsx
 from tests.mills import TODAY, Maker
@@ -130,3 +134,49 @@ def test_any_table_in_any_format_comes_back_as_the_same_values(
             assert set(got) == set(wanted["values"])
         else:
             assert {str(one.asked) for one in row.questions} <= {"change", "decimal"}, row.reason
+
+
+NASTY = (
+    None, "", "Maize", "Ingredient", "CP % as fed", "CP", "% DM", "Sample", "Date", "Basis", "as fed", "DM %", "8,5",
+    "8.5", "1,234", 8.5, -1.0, 0.0, 1e300, "n.d.", "<", ">", "#N/A", "=A1", "2026-02-03", "3/4/2026", "Mean", "(", ")",
+    "%", "Zn", "mg/kg", "\u00b5", "\x00", "\u01c5", "12-14", "1e9", "N/A", "-", "Lysine (", "((%", "Ca) g/kg", "\u017f",
+    "\u0663", "\uff18", "\u00bd", "\u00b2", "Moisture", "All results on dry matter basis", True, 5e-324, "9" * 400,
+    "1.2.3,4", "' ", "kg" * 50, "\u202f8,5",
+)
+HEADS = (
+    [], [["Ingredient", "CP % as fed", "DM %", "Zn mg/kg as fed", "Date"]], [["Sample", "Ingredient", "CP", "Ca"]],
+    [["Ingredient", "CP", "DM"], [None, "%", "g/kg"]], [["Results as fed basis"], ["Maize"], ["No", "CP %", "n"]],
+)
+
+
+@settings(max_examples=150, deadline=None)
+@given(
+    st.sampled_from(HEADS), st.lists(st.lists(st.sampled_from(NASTY), max_size=6), max_size=12),
+    st.sampled_from((write_xlsx, write_text, write_ods)),
+)
+def test_whatever_stands_in_a_table_every_row_has_one_fate_and_what_is_accepted_can_be_recorded(
+    heads: Rows, below: Rows, write: Callable[[Path, Rows], Path]
+) -> None:
+    rows = [*heads, *below]
+    if write is not write_text:
+        rows = [[None if cell in ("\x00", "#N/A", "=A1") else cell for cell in cells] for cells in rows]
+    with tempfile.TemporaryDirectory() as folder:
+        path = write(Path(folder, "Larkwater"), rows)
+        try:
+            reading = read_composition_list(path, LIBRARY, TODAY)
+        except Refused:  # an empty file
+            return
+    places = [(row.sheet, row.row) for row in reading.rows]
+    assert len(places) == len(set(places))
+    for row in reading.accepted:
+        assert row.ingredient_id is not None
+        assert row.values
+        for one in row.values:
+            assert math.isfinite(one.amount)
+            if one.nutrient_id is None:
+                assert 0 <= one.amount <= 100
+            else:
+                value = Value(1, row.ingredient_id, one.nutrient_id, one.amount, one.unit, one.basis)
+                assert checks.faults(value, LIBRARY) == []
+    for mean in sample_means(reading.accepted):
+        assert math.isfinite(mean.amount)
