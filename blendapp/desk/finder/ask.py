@@ -5,24 +5,24 @@ from __future__ import annotations
 from collections.abc import Callable
 
 from PySide6.QtCore import Qt
-from PySide6.QtGui import QKeyEvent, QPainter, QPaintEvent, QPen
-from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QLineEdit, QPushButton, QVBoxLayout, QWidget
+from PySide6.QtGui import QKeyEvent
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QLineEdit, QPushButton, QVBoxLayout, QWidget
 
 from blendapp.desk.finder.focus import Return
+from blendapp.desk.finder.raised import Raised
 from blendapp.desk.table.grid import sentence_of
-from blendapp.desk.theme import GAP_PX, text_font, tokens
+from blendapp.desk.theme import GAP_PX, text_font
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _
 
 WIDTH_PX = 420
 
 
-class Ask(QFrame):
+class Ask(Raised):
     """Opened with a question and what to do with the answer, which may refuse it."""
 
     def __init__(self, window: QWidget) -> None:
         super().__init__(window)
-        self.inside = window
         self._return = Return()
         self._take: Callable[[str], object] = str
         self.title = QLabel()
@@ -51,7 +51,6 @@ class Ask(QFrame):
         for part in (self.title, self.field, self.hint, self.fault):
             column.addWidget(part)
         column.addLayout(buttons)
-        self.hide()
 
     def open(self, title: str, begin: str, go: str, take: Callable[[str], object], hint: str = "") -> None:
         """Ask for a text. take: what is done with it; where it raises Refused or ValueError the panel says so."""
@@ -100,11 +99,3 @@ class Ask(QFrame):
             self.take()
         else:
             super().keyPressEvent(event)
-
-    def paintEvent(self, event: QPaintEvent) -> None:
-        look = tokens()
-        painter = QPainter(self)
-        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        painter.setPen(QPen(look.colour("quiet"), 1))
-        painter.setBrush(look.colour("raised"))
-        painter.drawRoundedRect(self.rect().toRectF().adjusted(0.5, 0.5, -0.5, -0.5), 6, 6)

@@ -16,9 +16,8 @@ from PySide6.QtCore import (
     Qt,
     Signal,
 )
-from PySide6.QtGui import QKeyEvent, QPainter, QPaintEvent, QPen
+from PySide6.QtGui import QKeyEvent, QPainter
 from PySide6.QtWidgets import (
-    QFrame,
     QLineEdit,
     QListView,
     QStyle,
@@ -29,6 +28,7 @@ from PySide6.QtWidgets import (
 )
 
 from blendapp.desk.finder.focus import Return
+from blendapp.desk.finder.raised import Raised
 from blendapp.desk.finder.search import Found, best
 from blendapp.desk.table.roles import ACCESSIBLE_TEXT, DISPLAY
 from blendapp.desk.theme import ROW_PX, tokens
@@ -88,14 +88,13 @@ class _Row(QStyledItemDelegate):
         painter.drawText(inside, Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter, shown)
 
 
-class Finder(QFrame):
+class Finder(Raised):
     """Opened with what can be found; runs what is chosen. closed: whichever way it went."""
 
     closed = Signal()
 
     def __init__(self, window: QWidget) -> None:
         super().__init__(window)
-        self.inside = window
         self._return = Return()
         self.things: list[Found] = []
         self.field = QLineEdit()
@@ -122,7 +121,6 @@ class Finder(QFrame):
         self.field.installEventFilter(self)
         self.list.clicked.connect(self._run)
         self.list.entered.connect(self.list.setCurrentIndex)
-        self.hide()
 
     def open(self, things: Sequence[Found], prompt: str, below: QWidget | None = None) -> None:
         """Offer things; below: a button under which the panel stands, else it is centred."""
@@ -183,11 +181,3 @@ class Finder(QFrame):
             if window.isActiveWindow():
                 self.leave()
         return super().eventFilter(watched, event)
-
-    def paintEvent(self, event: QPaintEvent) -> None:
-        look = tokens()
-        painter = QPainter(self)
-        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        painter.setPen(QPen(look.colour("quiet"), 1))
-        painter.setBrush(look.colour("raised"))
-        painter.drawRoundedRect(self.rect().toRectF().adjusted(0.5, 0.5, -0.5, -0.5), 6, 6)
