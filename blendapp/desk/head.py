@@ -37,6 +37,7 @@ class Head(QObject):
         self._rest.timeout.connect(self._say_standing)
         work.opened.connect(self.say_all)
         work.chosen.connect(self.say_all)
+        work.day_came.connect(self.say_all)
         work.edited.connect(lambda _edit: self.say_all())
         work.answered.connect(self.say_answer)
 

@@ -31,6 +31,8 @@ def history(studio: Studio, bench: Bench, _price_list: Path) -> None:
     site = work.library.all("site")[0]
     work.do(lambda mill: edits.set_mill(mill, site_id=site.id))
 
+    work.do(lambda mill: price_history.buy_from(mill, first.id, ""))
+
     def add(days: int, change: float | None, supplier: str, lasting: int | None = None, **more: object) -> None:
         begin = on + days * DAY
         work.do(lambda mill: price_history.add_quote(

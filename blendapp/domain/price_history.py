@@ -222,6 +222,10 @@ class _Teller:
             return _("a quote of {site} comes before one of the whole mill").format(
                 site=self.name("site", best.site_id))
         own = [rank(quote, self.supplier_id)[1] for quote in (best, other)]
+        if own[0] is not own[1] and best.supplier_id is None:
+            return _("it is bought from {supplier}, and a quote of nobody in particular comes before one of {other}"
+                     ).format(supplier=self.name("supplier", self.supplier_id),
+                              other=self.name("supplier", other.supplier_id))
         if own[0] is not own[1]:
             return _("it is bought from {supplier}, whose quotes come before those of {other}").format(
                 supplier=self.name("supplier", self.supplier_id), other=self.name("supplier", other.supplier_id))

@@ -7,6 +7,7 @@ import datetime
 import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QApplication
+from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
 from blendapp.services import edits, price_history
@@ -126,6 +127,16 @@ def test_the_page_of_a_price_follows_the_day(bench: Bench, calendar: Calendar) -
     calendar.day += DAY
     bench.day.look()
     assert "In force is 500 per t" in bench.history.why.text()
+
+
+def test_what_prices_did_says_of_which_day_it_is(bench: Bench, calendar: Calendar, qtbot: QtBot) -> None:
+    before = bench.work.library.copy()
+    bench.work.do(lambda mill: edits.set_price(mill, 1, 230.0, bench.work.on))
+    bench.show_effect(before, bench.work.library.copy(), True)
+    qtbot.waitUntil(lambda: not bench.effect.running, timeout=20000)
+    calendar.day += DAY
+    bench.day.look()
+    assert bench.effect.remark.whole.endswith(f"; at the prices of {calendar.day - DAY}")
 
 
 def test_an_edit_after_midnight_is_of_the_new_day(bench: Bench, calendar: Calendar) -> None:

@@ -212,12 +212,12 @@ def test_whom_it_is_bought_from_is_chosen_beside_the_rule(page: Bench) -> None:
 def test_the_plot_follows_keys_and_clicks_and_names_the_quote(page: Bench, hands: Hands) -> None:
     plot = page.history.plot
     assert plot is not None
-    assert plot.accessibleDescription() == page.history.why.text()
     plot.setFocus()
     hands.key(Qt.Key.Key_Home)
     assert plot.quote_id == ids(page)[200.0]
     hands.key(Qt.Key.Key_End)
     assert plot.quote_id == ids(page)[190.0]
+    assert plot.accessibleDescription() == f"{page.work.on + 4 * DAY}, 190 per t, Delta, to come"
     hands.key(Qt.Key.Key_Left)
     assert plot.quote_id == ids(page)[210.0]
     assert page.history.chosen_cell()[0] == ids(page)[210.0]

@@ -125,6 +125,8 @@ def test_what_ended_says_until_when_and_the_price_is_unknown() -> None:
          "a quote of North yard comes before one of the whole mill"),
         ((quote(1, 200.0, 0, supplier_id=1), quote(2, 190.0, 1, supplier_id=2)),
          "it is bought from Bay Grain, whose quotes come before those of Delta"),
+        ((quote(1, 200.0, 0), quote(2, 190.0, 1, supplier_id=2)),
+         "it is bought from Bay Grain, and a quote of nobody in particular comes before one of Delta"),
         ((quote(1, 200.0, 1), quote(2, 190.0, 0)), "its first day, 2026-03-03, is later than 2026-03-02"),
         ((quote(1, 200.0, 0), quote(2, 190.0)),
          "its first day, 2026-03-02, is later than that of one without a first day"),

@@ -11,7 +11,7 @@ from PySide6.QtCore import QPointF, Qt, Signal
 from PySide6.QtGui import QFocusEvent, QFontMetricsF, QKeyEvent, QPen
 from PySide6.QtWidgets import QWidget
 
-from blendapp.desk.history.marks import SIGNS, marks_of
+from blendapp.desk.history.marks import SIGNS, marks_of, supplier_words
 from blendapp.desk.theme import Tokens, text_font, tokens
 from blendapp.domain.notation import notation
 from blendapp.domain.price_history import PriceHistory, QuoteLine, Standing, day_words
@@ -128,6 +128,10 @@ class PricePlot(pg.GraphicsView):
         if quote_id != self.quote_id:
             self.quote_id = quote_id
             self._draw_ring()
+            line = None if self.history is None else next(
+                (one for one in self.history.lines if one.quote.id == quote_id), None)
+            if line is not None:
+                self.setAccessibleDescription(line_words(line))
 
     def span(self) -> tuple[float, float]:
         """The first and the last day that are shown, as ordinals."""
@@ -292,6 +296,15 @@ class PricePlot(pg.GraphicsView):
     def focusOutEvent(self, event: QFocusEvent) -> None:
         super().focusOutEvent(event)
         self._draw_ring()
+
+
+def line_words(line: QuoteLine) -> str:
+    """A quote in a line, for who cannot see its mark."""
+    quote = line.quote
+    price = _("withdrawn") if quote.price is None else _("{price} per {mass}").format(
+        price=notation().write_short(quote.price), mass=quote.per)
+    parts = (day_words(quote.valid_from), price, supplier_words(line.supplier), line.site, line.standing.label)
+    return ", ".join(part for part in parts if part)
 
 
 def _pen(look: Tokens, name: str, width: float, style: Qt.PenStyle = Qt.PenStyle.SolidLine) -> QPen:

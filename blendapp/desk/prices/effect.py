@@ -77,6 +77,7 @@ class EffectPane(QWidget):
         self._enough = threading.Event()
         self._of = 0
         self.found: list[Mover] = []
+        self._on = work.on
         self.running = False
         self._aside = Aside(self, (Refused, ValueError))
         self._aside.done.connect(self._take)
@@ -85,6 +86,7 @@ class EffectPane(QWidget):
         self.table.doubleClicked.connect(self._choose)
         work.opened.connect(self._forget)
         work.edited.connect(self._edited)
+        work.day_came.connect(self._day_came)
 
     def begin(self, before: Library, after: Library, title: str, leave: str) -> None:
         """Work out what prices do between two libraries that nobody edits. leave: words of the way back."""
@@ -102,6 +104,7 @@ class EffectPane(QWidget):
         enough = self._enough = threading.Event()
         before, after = self._both
         on, tell = self.work.on, self._teller(enough)
+        self._on = on
         self.running = True
         self.write.setEnabled(False)
         self._of = 0
@@ -166,6 +169,11 @@ class EffectPane(QWidget):
         """What stands here is of two sets of prices, and stays so; it says when they are no longer today's."""
         if self._both is not None and not self.running and edit.touches("quote", "value", "limit", "ingredient"):
             self.remark.say(_("{what}; edited since").format(what=summary(self.found)))
+
+    def _day_came(self) -> None:
+        if self._both is not None and not self.running:
+            self.remark.say(_("{what}; at the prices of {day}").format(
+                what=summary(self.found), day=self._on.isoformat()))
 
     def stop_all(self) -> None:
         """Nobody waits any more: the window closes, or another mill is opened."""
