@@ -16,6 +16,7 @@ from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.problems import Refused
 from blendapp.domain.quotes import Quote, QuoteKind, Terms
 from blendapp.services import edits
+from blendapp.services.lists import roll_back
 from blendapp.services.mill import Edit, Mill
 from blendapp.services.movers import with_prices
 from blendapp.services.price_history import (
@@ -55,14 +56,14 @@ def price(mill: Mill, days: int = 0) -> float | None:
     return mill.library.price_per_t(1, TODAY + days * DAY)
 
 
-def undone(mill: Mill, job: Callable[[], Edit]) -> Edit:
+def undone(mill: Mill, job: Callable[[], Edit], overwrites: bool = False) -> Edit:
     """Do a job, and see that one undo gives the file of before and one redo the file of after."""
     before = mill.store.dump()
     quotes = dict(mill.library.records["quote"])
     edit = job()
     after = mill.store.dump()
     assert after != before
-    for key, old in quotes.items():
+    for key, old in () if overwrites else quotes.items():
         assert mill.library.records["quote"][key] == old, "a price that was taken was overwritten"
     mill.undo()
     assert mill.store.dump() == before
@@ -250,3 +251,18 @@ def test_a_list_of_another_supplier_gives_way_to_the_one_it_is_bought_from(mill:
     assert with_prices(mill.library, reading(2, None), TODAY).price_per_t(1, TODAY) == 200
     apply_price_list(mill, reading(2, None), TODAY)
     assert price(mill) == 200
+
+
+def test_rolling_a_list_back_takes_its_price_and_what_stands_in_its_place(mill: Mill) -> None:
+    apply_price_list(mill, reading(1, None), TODAY)
+    before = mill.store.dump()
+    listed = mill.library.quotes_of(1)[-1]
+    change_quote(mill, listed.id, TODAY, price=181.0)
+    change_quote(mill, listed.id + 1, TODAY, valid_to=TODAY + DAY)
+    assert price(mill) == 181
+    undone(mill, lambda: roll_back(mill, 1), overwrites=True)
+    assert price(mill) == 200
+    assert [quote.id for quote in mill.library.quotes_of(1)] == [1, 2]
+    for _time in range(3):
+        mill.undo()
+    assert mill.store.dump() == before
