@@ -74,7 +74,8 @@ def test_a_name_is_answered_by_its_figure_and_the_next_question_comes_up(
     panel = bench.prices.questions
     assert panel.count.text() == "3 questions left"
     assert clerk.asked == "ingredient: Soya bean ml"
-    assert clerk.offered == ["Soybean meal", "Nothing of ours: leave it out"]
+    assert clerk.offered == ["Soybean meal", "Nothing of ours: leave it out",
+                             "A new ingredient of the mill: add “Soya bean ml”"]
     assert panel.kept.text() == "Remembered for bay grain: its next list is not asked."
     assert [one.words[:35] for one in panel.others.rows.choices] == [
         "The mill has no ingredient “Chalk”.", "The mill has no ingredient “Oddity”"]
@@ -108,7 +109,30 @@ def test_a_name_that_the_mill_does_not_have_is_said_and_stays_asked(
     assert "granite" in bench.prices.questions.fault.text()
     assert clerk.asked == "ingredient: Soya bean ml"
     clerk.press(Qt.Key.Key_Escape)
-    assert clerk.offered == ["Soybean meal", "Nothing of ours: leave it out"]
+    assert clerk.offered[0] == "Soybean meal"
+
+
+def test_a_name_may_be_a_new_ingredient_of_the_mill(bench: Bench, clerk: Clerk, tmp_path: Path) -> None:
+    read(bench, write(tmp_path / "list.xlsx", UNKNOWN_NAMES))
+    clerk.press(Qt.Key.Key_1)
+    assert clerk.offered[-1] == "A new ingredient of the mill: add “Chalk”"
+    clerk.press(Qt.Key.Key_2)
+    assert bench.work.library.named("ingredient", "Chalk") is not None
+    assert count(bench, Fate.ACCEPTED) == 3
+    assert clerk.asked == "ingredient: Oddity"
+    assert bench.prices.questions.last.whole == "Add Chalk   Backspace takes it back"
+    # Taken back in the order in which it was done: first the ingredient, then the answer.
+    clerk.press(Qt.Key.Key_Z, CTRL)
+    assert bench.work.library.named("ingredient", "Chalk") is None
+    assert clerk.asked == "ingredient: Chalk"
+    clerk.press(Qt.Key.Key_Backspace)
+    assert clerk.asked == "ingredient: Soya bean ml"
+    clerk.press(Qt.Key.Key_3)
+    clerk.press(Qt.Key.Key_1)
+    clerk.press(Qt.Key.Key_Backspace)
+    clerk.press(Qt.Key.Key_Backspace)
+    assert bench.work.library.named("ingredient", "Soya bean ml") is None
+    assert bench.work.mill.undo_text is None
 
 
 def test_a_unit_is_chosen_or_typed_for_all_rows_at_once(bench: Bench, clerk: Clerk, tmp_path: Path) -> None:

@@ -24,6 +24,8 @@ from blendapp.domain.names import fold
 from blendapp.domain.notation import notation
 from blendapp.domain.wording import _, plural
 
+# Not an answer: the mill is to have an ingredient of that name.
+NEW = "new"
 Key = tuple[Asked, str, str, int]
 # Answers of a name or of a unit may also be typed.
 NAMES, RATE, TEXT, FIGURE = "names", "rate", "text", "figure"
@@ -86,7 +88,8 @@ def choices_of(one: Open, library: Library) -> list[Choice]:
     asked = question.asked
     if asked is Asked.INGREDIENT:
         found = [_ingredient(library, name) for name in question.choices]
-        return [*found, Choice(LEAVE_OUT, _("Nothing of ours: leave it out"))]
+        new = Choice(NEW, _("A new ingredient of the mill: add “{name}”").format(name=question.about))
+        return [*found, Choice(LEAVE_OUT, _("Nothing of ours: leave it out")), new]
     if asked is Asked.NUTRIENT:
         names = [name for name in question.choices if name != LEAVE_OUT]
         return [*(Choice(name, name) for name in names), Choice(LEAVE_OUT, _("Leave the column out"))]

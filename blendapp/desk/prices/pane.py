@@ -15,14 +15,15 @@ from blendapp.desk.prices.asking import Open, open_questions, said_words
 from blendapp.desk.prices.layout import Parts
 from blendapp.desk.prices.reader import ListReader
 from blendapp.desk.prices.roles import sayings
-from blendapp.desk.prices.session import Session, Sessions
-from blendapp.desk.prices.words import left_open, state_words, take_words, taken_words
+from blendapp.desk.prices.session import Session
+from blendapp.desk.prices.words import left_open, state_words, take_words, taken_words, unsettled_words
 from blendapp.desk.work import Work
 from blendapp.domain.list_rows import Answer, Fate, ListReading, SourceSheet
 from blendapp.domain.mills import Asked, ListAbout
 from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _
+from blendapp.services import edits
 from blendapp.services.arriving import apply_list, taken_before
 from blendapp.services.mill import Edit
 from blendapp.services.movers import with_prices
@@ -43,17 +44,12 @@ class ListPane(QWidget):
     def __init__(self, work: Work, finder: Finder, ask: Ask) -> None:
         super().__init__()
         self.work, self.finder = work, finder
-        self.sessions = Sessions()
-        self.session: Session | None = None
-        self.reading: ListReading | None = None
         self.reader = ListReader(work, self)
         self.parts = Parts(self, finder, ask)
         self.rows, self.table = self.parts.price_rows, self.parts.price_table
         self.questions, self.source = self.parts.questions, self.parts.source
         self.take, self.look, self.leave = self.parts.take, self.parts.look, self.parts.leave
-        self._coming: Session | None = None
         self._go_to: Answer | None = None
-        self._fault = ""
         self._only: Fate | None = None
         self._stale = self._taking = False
         self._connect()
@@ -69,6 +65,7 @@ class ListPane(QWidget):
         parts.whose.answered.connect(self.give)
         parts.whose.source_said.connect(self._say_source)
         self.questions.answered.connect(self.give)
+        self.questions.new_wanted.connect(self.add_ingredient)
         self.questions.back.connect(self.take_back)
         self.questions.left.connect(self._escape)
         self.questions.take.connect(self.apply)
@@ -87,64 +84,48 @@ class ListPane(QWidget):
 
     # -- reading
 
+    @property
+    def session(self) -> Session | None:
+        """What was answered for the list in view."""
+        return self.reader.session
+
+    @property
+    def reading(self) -> ListReading | None:
+        """The list in view."""
+        return self.reader.reading
+
     def begin(self, path: Path, about: ListAbout = ListAbout.PRICES) -> None:
         """Read a list, with what was answered for it before; arrived follows, or a sentence."""
-        session = self.sessions.of(path, about)
-        if session.taken_as is not None and self._is_taken(session):
-            session = self.sessions.begin_anew(session)
-        self._coming = session
-        self._fault, self._go_to = "", None
-        self.reader.begin(session)
+        self._go_to = None
+        self.reader.begin(path, about)
 
     def again(self) -> None:
         """Read the list in view again, as its file and the mill are now."""
-        if self.session is not None:
-            self._stale = False
-            self.reader.begin(self._coming or self.session)
-            self._say_state()
+        self._stale = False
+        self.reader.again()
+        self._say_state()
 
-    def _came(self, reading: ListReading) -> None:
-        session = self._coming or self.session
-        if session is None:
-            return
-        if not session.is_of(reading):
-            session.forget_rows()
-            session.digest = reading.digest
-            self.reader.begin(session)
-            return
-        session.digest = reading.digest
-        first = session is not self.session or self.reading is None or self._coming is not None
-        dropped = None if first else session.drop_unsettled(self.reading, reading)
-        if dropped is not None:
-            self._go_to = dropped
-            self._fault = _("That does not answer it; the list reads as before. Answer otherwise, or leave it.")
-            self.reader.begin(session)
-            return
-        self.session, self._coming, self.reading = session, None, reading
+    def _came(self, first: bool) -> None:
         self._show(first)
         if first:
             self.arrived.emit()
 
     def _failed(self, sentence: str) -> None:
-        coming, self._coming = self._coming, None
-        if coming is None and self.session is not None and self.session.answers:
-            # The answer is what the reader stumbled over: it goes, and the reading before stands.
-            self.session.answers.pop()
-            self.reader.begin(self.session)
         self.said.emit(sentence, [])
         self._say_state()
 
     def _forget(self) -> None:
-        """Another mill file: its lists are not this one's."""
-        self.reader.forget()
-        self.sessions.clear()
-        self.session = self._coming = self.reading = None
+        self.reader.forget_all()
         self.parts.show_nothing()
         self.changed.emit()
 
     def _edited(self, edit: Edit) -> None:
         if self.session is None or self._taking or not edit.changes:
             return
+        for change in edit.changes:
+            if change.kind == "ingredient" and change.after is None:
+                # An ingredient that was added for this list is gone again: its name is asked about once more.
+                self._go_to = Answer(Asked.INGREDIENT, change.before.name)  # type: ignore[union-attr]
         if self.isVisible():
             self.again()
         else:
@@ -166,12 +147,29 @@ class ListPane(QWidget):
         """Take an answer in and read the list again with it."""
         if self.session is not None:
             self.session.give(answer)
-            self._go_to, self._fault = None, ""
+            self._go_to = None
             self.again()
             self.changed.emit()
 
+    def add_ingredient(self, name: str) -> None:
+        """Add an ingredient to the mill under the name that the list has for it; one undo of the mill."""
+        if self.session is None:
+            return
+        try:
+            edit = self.work.do(lambda mill: edits.add_ingredient(mill, name))
+        except Refused as refusal:
+            self.questions.say_fault(" ".join(one.text for one in refusal.problems))
+            return
+        self.session.edits.append((len(self.session.answers), edit.what))
+        self._say_state()
+        self.changed.emit()
+
     def take_back(self) -> bool:
-        """Take the last answer back; returns whether there was one."""
+        """Take back what was done last for the list, an answer or an ingredient added; returns whether there was any.
+        """
+        if self._is_edit_last:
+            self.work.undo()
+            return True
         return self._step(None if self.session is None else self.session.take_back())
 
     def give_again(self) -> bool:
@@ -187,9 +185,13 @@ class ListPane(QWidget):
         return True
 
     @property
+    def _is_edit_last(self) -> bool:
+        return self.session is not None and self.work.is_open and self.session.is_edit_last(self.work.mill.undo_text)
+
+    @property
     def last_answer(self) -> str:
         """What taking back would take back, in words; "" for nothing."""
-        if self.session is None or not self.session.answers or self._is_taken(self.session):
+        if self.session is None or not self.session.answers or self.reader.is_taken(self.session) or self._is_edit_last:
             return ""
         return said_words(self.session.answers[-1], self.work.library)
 
@@ -225,13 +227,15 @@ class ListPane(QWidget):
             self.parts.share_width()
         self.questions.show_questions(
             open_questions(reading), library, reading.source, len(reading.sheets) > 1, self.work.on)
-        if self._go_to is not None:
-            back = next((one for one in self.questions.open if one.key == self._go_to.key), None)
+        unsettled = self.reader.unsettled
+        wanted = unsettled or self._go_to
+        if wanted is not None:
+            back = next((one for one in self.questions.open if one.key == wanted.key), None)
             if back is not None:
                 self.questions.go_to(back)
                 first = True
-        self.questions.say_fault(self._fault)
-        self._go_to, self._fault = None, ""
+        self.questions.say_fault(unsettled_words() if unsettled is not None else "")
+        self._go_to = None
         self._mark_question(self.questions.current)
         self._say_state()
         if first or self.questions.has_keyboard():
@@ -250,8 +254,9 @@ class ListPane(QWidget):
         reading, session = self.reading, self.session
         if reading is None or session is None:
             return
-        self.questions.say_last(self.last_answer)
-        taken, running = self._is_taken(session), self.reader.running
+        added = self.work.mill.undo_text if self._is_edit_last else None
+        self.questions.say_last(added or (self.last_answer and _("Answered {what}").format(what=self.last_answer)))
+        taken, running = self.reader.is_taken(session), self.reader.running
         count = reading.count(Fate.ACCEPTED)
         self.take.setText(_("Taken") if taken else take_words(session.about, count))
         ready = count > 0 and not taken and not running and self.work.is_open and self.work.mill.writable
@@ -330,10 +335,6 @@ class ListPane(QWidget):
         return self.sayings(here.row() + 1, here.column())
 
     # -- taking
-
-    def _is_taken(self, session: Session) -> bool:
-        kept = self.work.library.records["price_list"].get(session.taken_as or 0)
-        return kept is not None and kept.withdrawn is None
 
     def preview(self) -> None:
         """Show what the accepted prices would do, with nothing stored."""

@@ -13,6 +13,7 @@ from blendapp.desk.prices.answer_field import AnswerField, RateFields
 from blendapp.desk.prices.asking import (
     FIGURE,
     NAMES,
+    NEW,
     RATE,
     TEXT,
     Choice,
@@ -38,10 +39,13 @@ MOST_LISTED = 60
 
 
 class QuestionPanel(QWidget):
-    """answered: an Answer. back: the last answer is to be taken back. shown: another question is in view, or None.
-    left: the person wants away. take: the person wants the list taken."""
+    """answered: an Answer. new_wanted: the mill is to have an ingredient of that name. back: the last answer is to be
+    taken back. shown: another question is in view, or None. left: the person wants away. take: the person wants the
+    list taken.
+    """
 
     answered = Signal(object)
+    new_wanted = Signal(str)
     back = Signal()
     shown = Signal(object)
     left = Signal()
@@ -126,8 +130,8 @@ class QuestionPanel(QWidget):
         self.fault.setVisible(bool(sentence))
 
     def say_last(self, words: str) -> None:
-        """Say what was answered last."""
-        self.last.say(_("Answered {what}   Backspace takes it back").format(what=words) if words else "")
+        """Say what was done last."""
+        self.last.say(_("{what}   Backspace takes it back").format(what=words) if words else "")
         self.last.setVisible(bool(words))
 
     @property
@@ -247,8 +251,11 @@ class QuestionPanel(QWidget):
         self._gone(answer)
 
     def _give(self, choice: Choice) -> None:
-        if self.current is not None:
-            self._gone(make_answer(self.current, choice))
+        one = self.current
+        if one is not None and choice.answer == NEW:
+            self.new_wanted.emit(one.question.about)
+        elif one is not None:
+            self._gone(make_answer(one, choice))
 
     def _gone(self, answer: object) -> None:
         """Show the next question at once; what the list makes of the answer follows."""

@@ -1,15 +1,17 @@
-"""Reads lists beside the window: the last reading asked for wins."""
+"""Reads lists beside the window, with what was answered for each: the last reading asked for wins."""
 
 from __future__ import annotations
 
 from collections.abc import Callable
+from pathlib import Path
 
 from PySide6.QtCore import QObject, Signal
 
 from blendapp.desk.aside import Aside
-from blendapp.desk.prices.session import Session
+from blendapp.desk.prices.session import Session, Sessions
 from blendapp.desk.work import Work
-from blendapp.domain.list_rows import ListReading
+from blendapp.domain.list_rows import Answer, ListReading
+from blendapp.domain.mills import ListAbout
 from blendapp.domain.problems import Refused
 from blendapp.services.arriving import read_list
 
@@ -17,21 +19,44 @@ Read = Callable[..., ListReading]
 
 
 class ListReader(QObject):
-    """came: the reading of a session. failed: the sentence why there is none. read can be replaced by a test."""
+    """session, reading: of the list in view, None before the first. came: after another reading, with whether it is
+    the first of its list. unsettled: an answer that changed nothing and was dropped. failed: the sentence why there is
+    no reading. read can be replaced by a test.
+    """
 
-    came = Signal(object)
+    came = Signal(bool)
     failed = Signal(str)
 
     def __init__(self, work: Work, parent: QObject) -> None:
         super().__init__(parent)
         self.work = work
+        self.sessions = Sessions()
+        self.session: Session | None = None
+        self.reading: ListReading | None = None
+        self.unsettled: Answer | None = None
         self.running = False
         self.read: Read = read_list
+        self._coming: Session | None = None
         self._aside = Aside(self, (Refused, OSError, ValueError))
         self._aside.done.connect(self._take)
 
-    def begin(self, session: Session) -> None:
-        """Read the list of a session as the mill is now, with the answers given so far."""
+    def begin(self, path: Path, about: ListAbout) -> None:
+        """Read a list, with what was answered for it before; one that was taken begins without answers."""
+        session = self.sessions.of(path, about)
+        if self.is_taken(session):
+            session = self.sessions.begin_anew(session)
+        self._coming = session
+        self.again()
+
+    def again(self) -> None:
+        """Read the list again, as its file and the mill are now, with the answers given so far."""
+        session = self._coming or self.session
+        if session is None:
+            return
+        self.unsettled = None
+        self._ask(session)
+
+    def _ask(self, session: Session) -> None:
         library, on, read = self.work.library.copy(), self.work.on, self.read
         path, about, answers, source = session.path, session.about, tuple(session.answers), session.source
         self.running = True
@@ -42,11 +67,49 @@ class ListReader(QObject):
         self.running = False
         self._aside.forget()
 
+    def forget_all(self) -> None:
+        """Another mill file is opened: its lists are not these."""
+        self.forget()
+        self.sessions.clear()
+        self.session = self._coming = self.reading = self.unsettled = None
+
+    def is_taken(self, session: Session) -> bool:
+        """Whether the list of a session was taken, and stands."""
+        kept = self.work.library.records["price_list"].get(session.taken_as or 0)
+        return kept is not None and kept.withdrawn is None
+
     def _take(self, reading: ListReading | None, fault: Exception | None) -> None:
         self.running = False
         if reading is not None:
-            self.came.emit(reading)
+            self._took(reading)
         elif isinstance(fault, Refused):
-            self.failed.emit(" ".join(str(one) for one in fault.problems))
+            self._fail(" ".join(str(one) for one in fault.problems))
         else:
-            self.failed.emit(str(fault))
+            self._fail(str(fault))
+
+    def _took(self, reading: ListReading) -> None:
+        session = self._coming or self.session
+        if session is None:
+            return
+        changed = not session.is_of(reading)
+        session.digest = reading.digest
+        if changed:
+            session.forget_rows()
+            self._ask(session)
+            return
+        first = self._coming is not None or self.reading is None
+        dropped = None if first else session.drop_unsettled(self.reading, reading)
+        if dropped is not None:
+            self.unsettled = dropped
+            self._ask(session)
+            return
+        self.session, self._coming, self.reading = session, None, reading
+        self.came.emit(first)
+
+    def _fail(self, sentence: str) -> None:
+        coming, self._coming = self._coming, None
+        if coming is None and self.session is not None and self.session.answers:
+            # The answer is what the reader stumbled over: it goes, and the list stands as before.
+            self.session.answers.pop()
+            self._ask(self.session)
+        self.failed.emit(sentence)

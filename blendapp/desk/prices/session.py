@@ -14,6 +14,7 @@ from blendapp.domain.names import fold
 class Session:
     """One file that is looked at. answers: in the order in which they were given; back: those taken back, the last
     one last. digest: of the file that the answers were given for. taken_as: the record of the list once it is taken.
+    edits: what was done to the mill from the page of the list, with how many answers there were before it.
     """
 
     path: Path
@@ -23,11 +24,18 @@ class Session:
     back: list[Answer] = field(default_factory=list)
     digest: str = ""
     taken_as: int | None = None
+    edits: list[tuple[int, str]] = field(default_factory=list)
 
     def give(self, answer: Answer) -> None:
         """Take an answer in; of two to the same question the later one holds."""
         self.answers.append(answer)
         self.back.clear()
+
+    def is_edit_last(self, undo_text: str | None) -> bool:
+        """Whether an edit of the mill was done after the last answer, and is what the mill would undo."""
+        while self.edits and self.edits[-1][0] > len(self.answers):
+            self.edits.pop()
+        return bool(self.edits) and self.edits[-1] == (len(self.answers), undo_text)
 
     def take_back(self) -> Answer | None:
         """Take the last answer back."""

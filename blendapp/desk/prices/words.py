@@ -25,6 +25,11 @@ def state_words(*, running: bool, taken: bool, before: bool) -> str:
     return _("nothing is stored before it is taken")
 
 
+def unsettled_words() -> str:
+    """What is said of an answer that changed nothing."""
+    return _("That does not answer it; the list reads as before. Answer otherwise, or leave it.")
+
+
 def taken_words(about: ListAbout, count: int, file_name: str) -> str:
     """What is said once a list is taken."""
     if about is ListAbout.PRICES:
