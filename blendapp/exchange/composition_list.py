@@ -34,6 +34,7 @@ from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_numbers import DecimalSign
 from blendapp.exchange.list_placing import Placing
 from blendapp.exchange.list_sender import read_sender
+from blendapp.exchange.list_walk import TooManyTables, rows_of_table, too_many_tables
 from blendapp.exchange.source_sheets import source_sheet
 from blendapp.exchange.tables import RawTable
 
@@ -56,7 +57,10 @@ def read_composition_list(
     rows: list[CompositionRow] = []
     sheets = []
     for raw in opened.tables:
-        found, shown = read_table(raw, library, finders)
+        try:
+            found, shown = read_table(raw, library, finders)
+        except TooManyTables:
+            raise too_many_tables(opened.file.name) from None
         rows += found
         sheets.append(shown)
     finders.placing.note_what_was_not_used(
@@ -109,17 +113,10 @@ def _segment(
 
 
 def _rows(raw: RawTable, segment: Segment, library: Library, names: NameFinder) -> Iterator[CompositionRow]:
-    headings = segment.table.heading_rows
-    for row in range(segment.first, segment.last):
-        if raw.is_blank(row):
-            continue
-        if row in headings:
-            yield CompositionRow(raw.sheet, row + 1, Fate.IGNORED, _("Heading."))
-        elif row < segment.table.first_row:
-            text = _("Title above the table.")
-            yield CompositionRow(raw.sheet, row + 1, Fate.IGNORED, text, first_text(raw, row))
-        else:
-            yield read_row(raw, row, segment, library, names)
+    return rows_of_table(
+        raw, range(segment.first, segment.last), segment.table.heading_rows, segment.table.first_row, CompositionRow,
+        lambda row: read_row(raw, row, segment, library, names),
+    )
 
 
 def _without_table(raw: RawTable, finders: Finders) -> Iterator[CompositionRow]:

@@ -23,6 +23,7 @@ from blendapp.exchange.composition_words import read_heading
 from blendapp.exchange.list_headings import FURTHEST, best_name_column, joined, known_names, spread_over, texts_of
 from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_placing import NO_HEADINGS, Placing, column_name
+from blendapp.exchange.list_walk import MOST_COLUMNS, MOST_TABLES, TooManyTables
 from blendapp.exchange.source_sheets import shown_text
 from blendapp.exchange.tables import CellKind, RawTable, column_letters, kind_of
 
@@ -40,7 +41,10 @@ class Finders:
 
 
 def find_tables(raw: RawTable, finders: Finders) -> list[tuple[AnalysisTable, int, int]]:
-    """Every table of a sheet, one below the other, with the rows from which and before which it counts, from 0."""
+    """Every table of a sheet, one below the other, with the rows from which and before which it counts, from 0.
+
+    Raises TooManyTables.
+    """
     found = list(_found(raw, finders))
     ends = [table.heading_rows.start for table in found[1:]] + [len(raw.rows)]
     starts = [0, *ends[:-1]]
@@ -63,10 +67,13 @@ def _found(raw: RawTable, finders: Finders) -> Iterator[AnalysisTable]:
             text = _("The headings were last in row {said}; those in row {row} were read.")
             finders.placing.note(text.format(said=said + 1, row=(first.heading_row or 0) + 1))
     yield first
-    row = first.first_row
+    row, count = first.first_row, 1
     while row < len(raw.rows):
         table = headed_table(raw, row, finders) if _may_be_heading(raw, row, finders) else None
         if table is not None:
+            count += 1
+            if count > MOST_TABLES:
+                raise TooManyTables
             yield table
         row = row + 1 if table is None else table.first_row
 
@@ -78,7 +85,7 @@ def is_transposed(raw: RawTable, finders: Finders) -> bool:
     across = 0
     for cells in raw.rows[:FURTHEST]:
         known = [
-            index for index, value in enumerate(cells)
+            index for index, value in enumerate(cells[:MOST_COLUMNS])
             if isinstance(value, str) and value.strip() and nutrients.knows(value) and not names.is_known(value)
         ]
         across = max(across, len(known))
@@ -98,7 +105,7 @@ def _may_be_heading(raw: RawTable, row: int, finders: Finders) -> bool:
 def headed_table(raw: RawTable, row: int, finders: Finders) -> AnalysisTable | None:
     """The table whose headings begin in a row, None where they head nothing that is measured."""
     texts = texts_of(raw, row)
-    if not texts or any(map(_NUMBER_LIKE.fullmatch, texts.values())):
+    if not texts or len(texts) > MOST_COLUMNS or any(map(_NUMBER_LIKE.fullmatch, texts.values())):
         return None
     below = texts_of(raw, row + 1) if row + 1 < len(raw.rows) else None
     if below and any(map(_NUMBER_LIKE.fullmatch, below.values())):

@@ -7,28 +7,19 @@ from collections.abc import Iterator, Sequence
 from pathlib import Path
 
 from blendapp.domain.library import Library
-from blendapp.domain.list_rows import Answer, Fate, SourceSheet
+from blendapp.domain.list_rows import Answer, SourceSheet
 from blendapp.domain.price_rows import PriceListReading, PriceRow
-from blendapp.domain.wording import _
-from blendapp.exchange.files import refusal
 from blendapp.exchange.list_answers import Answers
-from blendapp.exchange.list_cells import first_text
 from blendapp.exchange.list_files import open_list
 from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_placing import Placing
 from blendapp.exchange.list_sender import read_sender
+from blendapp.exchange.list_walk import TooManyTables, rows_of_table, too_many_tables
 from blendapp.exchange.price_checks import ask_about_duplicates, ask_about_leaps
 from blendapp.exchange.price_columns import LIST_ROLES
 from blendapp.exchange.price_days import ask_once_about_expired
 from blendapp.exchange.price_row import read_row
-from blendapp.exchange.price_segments import (
-    MOST_TABLES,
-    Segment,
-    TooManyTables,
-    pointed_out_table,
-    read_segments,
-    source_table,
-)
+from blendapp.exchange.price_segments import Segment, pointed_out_table, read_segments, source_table
 from blendapp.exchange.price_tables import find_table
 from blendapp.exchange.price_unplaced import without_columns, without_table
 from blendapp.exchange.source_sheets import source_sheet
@@ -60,8 +51,7 @@ def read_price_list(
         try:
             found, sheet_read = read_table(table, library, names, today, placing)
         except TooManyTables:
-            text = _("A sheet has more than {count} rows of headings; keep only those needed.")
-            raise refusal(opened.file.name, text.format(count=MOST_TABLES)) from None
+            raise too_many_tables(opened.file.name) from None
         rows += found
         sheets.append(sheet_read)
     placing.note_what_was_not_used(
@@ -94,13 +84,7 @@ def read_table(
 def _rows(
     raw: RawTable, segment: Segment, library: Library, names: NameFinder, today: datetime.date
 ) -> Iterator[PriceRow]:
-    headings = segment.table.heading_rows
-    for row in range(segment.first, segment.last):
-        if raw.is_blank(row):
-            continue
-        if row in headings:
-            yield PriceRow(raw.sheet, row + 1, Fate.IGNORED, _("Heading."))
-        elif row < segment.table.first_row:
-            yield PriceRow(raw.sheet, row + 1, Fate.IGNORED, _("Title above the table."), first_text(raw, row))
-        else:
-            yield read_row(raw, row, segment, library, names, today)
+    return rows_of_table(
+        raw, range(segment.first, segment.last), segment.table.heading_rows, segment.table.first_row, PriceRow,
+        lambda row: read_row(raw, row, segment, library, names, today),
+    )

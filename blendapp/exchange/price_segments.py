@@ -12,18 +12,13 @@ from blendapp.exchange.list_columns import answered_sign, date_order
 from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_numbers import DateOrder, DecimalSign
 from blendapp.exchange.list_placing import Placing
+from blendapp.exchange.list_walk import MOST_TABLES, TooManyTables
 from blendapp.exchange.price_cells import column_sign
 from blendapp.exchange.price_columns import Table
 from blendapp.exchange.price_notes import Notes, read_notes
 from blendapp.exchange.price_tables import headed_table
 from blendapp.exchange.price_words import Words
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
-
-MOST_TABLES = 500
-
-
-class TooManyTables(Exception):
-    """A sheet holds more tables than anybody makes."""
 
 
 @dataclass(frozen=True)
