@@ -35,7 +35,7 @@ def read_headings(table: RawTable, row: int, role: RoleOf = role_of) -> Table | 
     if below and _holds_price(below):
         below = None
     found = _headed(row, texts, role)
-    if found is not None and found.name is None and below:
+    if found is not None and found.name is None and below and _headed(row + 1, below, role) is None:
         both = _headed(row, joined(spread_over(table, row, texts, below), below), role)
         if both is not None and both.name in below:  # the name is headed in the second row alone
             both.last_heading_row = row + 1
