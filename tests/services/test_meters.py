@@ -136,6 +136,26 @@ def test_a_mass_read_from_the_sheet_in_grams_fixes_whole_steps_of_litres() -> No
         batch_of(changed(fine, HAND, step_kg=0.5), fixed={OIL: 30.02})
 
 
+def test_a_mass_read_in_grams_fixes_whole_half_pounds_and_a_scale_in_kilograms_is_taken_at_its_word() -> None:
+    library = changed(mill(), BIG, step_kg=0.5 * 0.45359237, least_kg=None)
+    maize = next(line for line in batch_of(library).lines if line.ingredient == "Maize")
+    fixed = batch_of(library, fixed={1: round(maize.target_kg, 3)})
+    assert next(line for line in fixed.lines if line.ingredient == "Maize").target_kg == maize.target_kg
+    in_kg = changed(mill(), HAND, step_kg=5.0)
+    with pytest.raises(Refused, match=r"Maize is fixed at 700\.0004 kg, no multiple"):
+        batch_of(in_kg, fixed={1: 700.0004})
+
+
+def test_a_dose_that_no_scale_takes_is_said_in_litres() -> None:
+    library = changed(mill(greatest_l=30.0), HAND, greatest_kg=2.0)
+    changed(library, BIG, least_kg=200.0)
+    assert batch_of(library, 1500.0).cause == (
+        "Oil: no scale can weigh 40.5 kg within its tolerance (Oil pump: steps of 0.5 l (0.4585 kg) from 0 to 30 l; "
+        "Big scale: steps of 5 kg from 200 to 2000 kg; Bench: steps of 0.001 kg from 0 to 2 kg). Enter a scale that "
+        "can."
+    )
+
+
 def test_scales_and_mixers_of_another_site_do_not_count() -> None:
     library = mill()
     library.apply([Change(None, Site(1, "North")), Change(None, Site(2, "South"))])

@@ -150,15 +150,24 @@ def _fixed(reason: Reason, line: Line, ingredient: Ingredient, scales: Sequence[
 
 def _spans(scales: Sequence[Scale | None], loads: Sequence[Load]) -> str:
     """Every scale with what it weighs."""
-    kg = notation().write_short
+    short = notation().write_short
     found = []
     for scale, load in zip(scales, loads, strict=True):
+        if scale is not None and scale.step_l is not None:
+            text = _("{scale}: steps of {step} l ({step_kg} kg) from {least} to {greatest} l")
+            if scale.greatest_l is None:
+                text = _("{scale}: steps of {step} l ({step_kg} kg) from {least} l")
+            found.append(text.format(
+                scale=scale.name, step=short(scale.step_l), step_kg=short(load.step_kg),
+                least=short(scale.least_l or 0.0), greatest=short(scale.greatest_l),
+            ))
+            continue
         name = _("without a scale") if scale is None else scale.name
         if load.greatest_kg is None:
             text = _("{scale}: steps of {step} kg from {least} kg")
         else:
             text = _("{scale}: steps of {step} kg from {least} to {greatest} kg")
         found.append(text.format(
-            scale=name, step=kg(load.step_kg), least=kg(load.least_kg or 0.0), greatest=kg(load.greatest_kg)
+            scale=name, step=short(load.step_kg), least=short(load.least_kg or 0.0), greatest=short(load.greatest_kg)
         ))
     return "; ".join(found)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from fractions import Fraction
 
 import numpy as np
 
@@ -100,7 +101,9 @@ def weigh(
     if lacking:
         raise NotWeighable(" ".join(lacking))
     faults = no_batch.not_fixable(library, built.formula, asked, shares, _opened(built))
-    fixed = {key: _as_dosed(library, key, mass) for key, mass in asked.items() if key in shares and math.isfinite(mass)}
+    fixed = {
+        key: _as_weighed(library, key, mass) for key, mass in asked.items() if key in shares and math.isfinite(mass)
+    }
     scales = [scales_for(library, ingredient) for ingredient in ingredients]
     order = order_of(built, ingredients, scales, shares, batch_kg, total, fixed, (least_kg, greatest_kg))
     found = whole_batch(order, time_limit_s)
@@ -148,22 +151,22 @@ def scales_for(library: Library, ingredient: Ingredient) -> list[Scale | None]:
     return [own, *others] if own is not None and own in here else [*others]
 
 
-# How far, in kg, a fixed mass of a metered line may lie from whole steps of litres: it is read from a sheet in grams.
+# How far, in kg, a fixed mass may lie from whole steps that are no whole grams: it is read from a sheet in grams.
 _READ_KG = 0.0005
 
 
-def _as_dosed(library: Library, ingredient_id: int, mass_kg: float) -> float:
-    """A fixed mass, brought to the whole steps of litres that it was read from where a meter doses it."""
+def _as_weighed(library: Library, ingredient_id: int, mass_kg: float) -> float:
+    """A fixed mass, brought to the whole steps that it was read from where these are litres or pounds."""
     ingredient = library.ingredient(ingredient_id)
     own = next(iter(scales_for(library, ingredient)), None)
-    if own is None or not own.by_volume:
-        return mass_kg
-    span = own.span(ingredient.density_kg_per_l)
-    if span is None or not span.step_kg > 0:
+    span = None if own is None else own.span(ingredient.density_kg_per_l)
+    if span is None or not span.step_kg > 2 * _READ_KG:
         return mass_kg
     step = exact(span.step_kg)
-    dosed = float(round(exact(mass_kg) / step) * step)
-    return dosed if abs(dosed - mass_kg) <= _READ_KG * (1 + 1e-9) else mass_kg
+    if step % Fraction(1, 1000) == 0:
+        return mass_kg
+    shown = float(round(exact(mass_kg) / step) * step)
+    return shown if abs(shown - mass_kg) <= _READ_KG * (1 + 1e-9) else mass_kg
 
 
 def order_of(
