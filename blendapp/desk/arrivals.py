@@ -34,6 +34,7 @@ class Arrivals(QObject):
         super().__init__(window)
         self.pane, self.files, self.strip, self.settings, self.show = pane, files, strip, settings, show
         self._reading: Path | None = None
+        self._from_list = False
         self._patience = QTimer(self, singleShot=True, interval=PATIENCE_MS)
         self._patience.timeout.connect(self._say_wait)
         pane.arrived.connect(self._arrived)
@@ -74,6 +75,15 @@ class Arrivals(QObject):
         if self.has_list:
             self.show(self.pane)
             self.pane.focus_first()
+
+    def leave_for_memory(self) -> None:
+        """What is remembered is looked at from the page of a list; afterwards that page comes back."""
+        self._from_list = True
+
+    def return_from_memory(self) -> None:
+        if self._from_list:
+            self._from_list = False
+            self.back()
 
     @property
     def has_list(self) -> bool:

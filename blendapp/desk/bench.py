@@ -137,6 +137,9 @@ class Bench(QObject):
             page.said.connect(self.strip.say)
         self.history.list_wanted.connect(self.show_applied)
         self.applied.memory_wanted.connect(self.show_memory)
+        self.prices.parts.whose.memory_wanted.connect(self.show_memory)
+        self.prices.parts.whose.memory_wanted.connect(self.arrivals.leave_for_memory)
+        self.memory.closed.connect(self.arrivals.return_from_memory)
 
     # -- beginning and ending
 

@@ -15,6 +15,7 @@ from blendapp.desk.bench import Bench
 from blendapp.domain.mills import ListAbout, PriceList
 from blendapp.domain.records import added
 from blendapp.services.arriving import likely_about
+from blendapp.services.list_memory import forget, remembered
 from tests.desk.arriving import UNKNOWN_NAMES, price, read, wait, write
 from tests.desk.conftest import Hands
 
@@ -171,6 +172,27 @@ def test_a_dropped_list_is_read_as_what_the_last_of_its_source_was(bench: Bench)
     kept = PriceList(1, "Lab report 48.xlsx", "", when, 1, 1, source="lab report", about=ListAbout.COMPOSITION)
     library.apply([added(kept)])
     assert likely_about(library, "Lab report 49.xlsx") is ListAbout.COMPOSITION
+
+
+def test_what_is_remembered_is_a_press_away_and_forgetting_it_asks_again(
+    bench: Bench, hands: Hands, tmp_path: Path
+) -> None:
+    read(bench, write(tmp_path / "bay grain 48.xlsx", UNKNOWN_NAMES))
+    whose = bench.prices.parts.whose
+    assert not whose.memory.isVisible()
+    for _question in range(3):
+        hands.key(Qt.Key.Key_1)
+        wait(bench)
+    hands.key(Qt.Key.Key_Return)
+    read(bench, write(tmp_path / "bay grain 49.xlsx", UNKNOWN_NAMES))
+    assert whose.memory.text() == "3 answers remembered"
+    hands.click(whose.memory)
+    assert bench.frame.middle.currentWidget() is bench.memory
+    bench.work.do(lambda mill: forget(mill, [one.id for one in remembered(mill, "bay grain")]))
+    bench.memory.closed.emit()
+    wait(bench)
+    assert bench.frame.middle.currentWidget() is bench.prices
+    assert bench.prices.questions.count.text() == "3 questions left"
 
 
 def test_the_list_that_was_read_can_be_come_back_to(bench: Bench, hands: Hands, tmp_path: Path) -> None:

@@ -13,15 +13,17 @@ from blendapp.desk.finder.panel import Finder
 from blendapp.desk.finder.search import Found
 from blendapp.desk.theme import GAP_PX
 from blendapp.domain.library import Library
-from blendapp.domain.list_rows import Answer, ListReading
+from blendapp.domain.list_rows import Answer, ListReading, source_of
 from blendapp.domain.mills import Asked
-from blendapp.domain.wording import _
+from blendapp.domain.wording import _, plural
 
 
 class Whose(QWidget):
-    """source_said: whom the list is from. answered: an Answer about supplier or site."""
+    """source_said: whom the list is from. answered: an Answer about supplier or site. memory_wanted: the person wants
+    to see what is remembered for a source."""
 
     source_said = Signal(str)
+    memory_wanted = Signal(str)
     answered = Signal(object)
 
     def __init__(self, finder: Finder, ask: Ask) -> None:
@@ -30,14 +32,17 @@ class Whose(QWidget):
         self.library = Library()
         self.source_name = ""
         self.source, self.supplier, self.site = QPushButton(), QPushButton(), QPushButton()
+        self.memory = QPushButton()
         row = QHBoxLayout(self)
         row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(GAP_PX)
-        for button in (self.source, self.supplier, self.site):
+        for button in (self.source, self.supplier, self.site, self.memory):
             button.setObjectName("order")
             row.addWidget(button)
         self.source.setToolTip(_("Whom answers are remembered for; press to say another"))
         self.source.clicked.connect(self._ask_source)
+        self.memory.setToolTip(_("See, change and forget what is remembered of this source"))
+        self.memory.clicked.connect(lambda: self.memory_wanted.emit(self.source_name))
         self.supplier.clicked.connect(partial(self._offer, Asked.SUPPLIER, "supplier"))
         self.site.clicked.connect(partial(self._offer, Asked.SITE, "site"))
 
@@ -45,6 +50,10 @@ class Whose(QWidget):
         """Say what a reading knows; supplier and site only where the mill has any."""
         self.library, self.source_name = library, reading.source
         self.source.setText(_("list of: {source}").format(source=reading.source))
+        count = sum(source_of(one.source) == source_of(reading.source) for one in library.all("synonym"))
+        self.memory.setText(plural("{count} answer remembered", "{count} answers remembered", count)
+                            .format(count=count))
+        self.memory.setVisible(count > 0)
         for button, kind, words, key in (
             (self.supplier, "supplier", _("supplier: {name}"), reading.supplier_id),
             (self.site, "site", _("for site: {name}"), reading.site_id),
