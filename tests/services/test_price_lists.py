@@ -12,6 +12,7 @@ import pytest
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import ADD, LEAVE_OUT, TAKE, Answer, Fate
 from blendapp.domain.mills import Asked, Synonym
+from blendapp.domain.plant import Site, Supplier
 from blendapp.domain.price_rows import PriceListReading
 from blendapp.domain.problems import Refused
 from blendapp.domain.records import added
@@ -204,3 +205,30 @@ def test_the_unit_of_a_name_is_remembered_where_the_list_leaves_it_open(mill: Mi
     assert [row.fate for row in read(mill, tmp_path, "a.csv", text).rows[1:]] == [Fate.ACCEPTED, Fate.QUESTION]
     (row,) = read(mill, tmp_path, "a.csv", text.replace("0.2,", "200,t")).accepted
     assert row.price_per_t == 200
+
+
+STRANGE = "Larkwater\nFutter,Preis,je\nMaize,205,t\nSoybean meal,410,t\n"
+PLACES = [
+    Answer(Asked.TABLE, "", "row 2"), Answer(Asked.COLUMN, "Preis", "price"), Answer(Asked.COLUMN, "je", "unit"),
+    Answer(Asked.SUPPLIER, "", "Larkwater Ltd"), Answer(Asked.SITE, "", "North yard"),
+]
+
+
+def test_where_the_table_stands_and_whose_it_is_are_known_the_next_week(mill: Mill, tmp_path: Path) -> None:
+    mill.apply("supplier and site", [added(Supplier(4, "Larkwater Ltd")), added(Site(5, "North yard"))])
+    assert read(mill, tmp_path, "Larkwater week 10.csv", STRANGE).sheets[0].tables[0].heading_rows == ()
+    answered = read(mill, tmp_path, "Larkwater week 10.csv", STRANGE, *PLACES)
+    apply_price_list(mill, answered, TODAY)
+    again = read(mill, tmp_path, "Larkwater week 11.csv", STRANGE.replace("205", "206"), on=MONDAY)
+    assert (again.questions, again.supplier_id, again.site_id) == ([], 4, 5)
+    assert [row.price_per_t for row in again.accepted] == [206, 410]
+    assert again.sheets[0].tables[0].heading_rows == (2,)
+    assert {one.asked for one in remembered(mill)} == {one.asked for one in PLACES}
+
+
+def test_an_expired_list_is_asked_about_again_the_next_time(mill: Mill, tmp_path: Path) -> None:
+    text = "Product,Price,Unit,Valid to\nMaize,205,t,2026-02-01\nSoybean meal,410,t,2026-02-01\n"
+    answered = read(mill, tmp_path, "Larkwater.csv", text, Answer(Asked.EXPIRED_LIST, "2026-02-01", TAKE))
+    apply_price_list(mill, answered, TODAY)
+    assert mill.library.price_per_t(1, TODAY) == 205
+    assert [one.asked for one in read(mill, tmp_path, "Larkwater.csv", text).questions] == [Asked.EXPIRED_LIST]
