@@ -34,6 +34,13 @@ if TYPE_CHECKING:
     from blendapp.exchange.price_segments import Segment
 
 
+# What stands in these columns changes what a price means.
+_TELLING = frozenset({
+    ColumnRole.UNIT, ColumnRole.CURRENCY, ColumnRole.VALID_FROM, ColumnRole.VALID_TO, ColumnRole.PACK, ColumnRole.TERMS,
+    ColumnRole.ADJUSTMENT,
+})
+
+
 def read_row(
     raw: RawTable, row: int, segment: Segment, library: Library, names: NameFinder, today: datetime.date
 ) -> PriceRow:
@@ -99,10 +106,8 @@ class _Reading(RowReading):
         return _("The price is empty.") if known else _("A heading or a note without a price.")
 
     def _priced(self, prices: list[Priced]) -> PriceRow:
-        used = [self.table.name, *(column.index for column in self.table.prices)]
         self.ask_about_place(
-            [index for index in used if index is not None],
-            _("The column “{name}” with names or prices is hidden in the list; say whether it counts."),
+            self._used(), _("The column “{name}”, on which prices hang, is hidden in the list; say whether it counts.")
         )
         parts = self._parts(prices)
         match = self.match(_("The price has no name; say which ingredient it is for."))
@@ -144,6 +149,13 @@ class _Reading(RowReading):
             questions=tuple(dict.fromkeys(self.open)),
             currency=read[0].foreign,
         )
+
+    def _used(self) -> list[int]:
+        """The columns that the row fills and its price hangs on."""
+        said = [index for index, role in self.table.roles.items() if role in _TELLING]
+        used = [self.table.name, *(column.index for column in self.table.prices), *said]
+        filled = (index for index in dict.fromkeys(used) if index is not None)
+        return [index for index in filled if kind_of(self.raw.cell(self.row, index)) is not CellKind.BLANK]
 
     def _parts(self, prices: list[Priced]) -> tuple[Priced, ...]:
         """The price that counts, or a base price and a freight to be added, with what is to be asked about them."""

@@ -9,7 +9,7 @@ from pathlib import Path
 from typing import Any
 
 import pytest
-from hypothesis import given, settings
+from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 
 from blendapp.domain import units
@@ -28,12 +28,14 @@ UNIT_WORDS = {
     "25 kg bag": ("25 kg bag", "bag of 25 kg"),
 }
 # Group and decimal sign.
-DIALECTS = (("", "."), ("", ","), (",", "."), (".", ","), (" ", ","), (" ", "."), ("'", "."), ("\u00a0", ","))
+DIALECTS = (
+    ("", "."), ("", ","), (",", "."), (".", ","), (" ", ","), (" ", "."), ("'", "."), ("\u00a0", ","), ("\u202f", ","),
+)
 FORMATS: tuple[tuple[str, Callable[[Path, Rows], Path]], ...] = (
     ("xlsx", write_xlsx), ("ods", write_ods), ("xls", write_xls),
     *(
         (f"text {separator!r} {encoding}", lambda path, rows, s=separator, e=encoding: write_text(path, rows, s, e))
-        for separator in (",", ";", "\t") for encoding in ("utf-8", "utf-8-sig", "utf-16", "cp1252")
+        for separator in (",", ";", "\t") for encoding in ("utf-8", "utf-8-sig", "utf-16", "utf-16-be", "cp1252")
     ),
 )
 
@@ -101,7 +103,8 @@ def test_any_table_in_any_format_comes_back_as_the_same_prices(
     table: tuple[Rows, dict[str, float], bool], made: tuple[str, Callable[[Path, Rows], Path]]
 ) -> None:
     rows, expected, _texts = table
-    _name, write = made
+    name, write = made
+    assume("cp1252" not in name or not any("\u202f" in str(cell) for cells in rows for cell in cells))
     with tempfile.TemporaryDirectory() as folder:
         reading = read_price_list(write(Path(folder, "list"), rows), LIBRARY, TODAY)
     assert [(row.row, row.reason) for row in reading.rows if row.questions] == []

@@ -186,3 +186,19 @@ def test_each_row_of_a_built_workbook_has_the_expected_fate(
     tmp_path: Path, library: Library, build: Build, expected: list[Fate]
 ) -> None:
     assert fates(built(tmp_path / "list.xlsx", library, build)) == expected
+
+
+@pytest.mark.parametrize(
+    ("letter", "expected"), [("C", [IGNORED, Q, Q]), ("D", [IGNORED, Q, A]), ("E", [IGNORED, A, A])]
+)
+def test_a_hidden_column_on_which_prices_hang_is_asked_about(
+    tmp_path: Path, library: Library, letter: str, expected: list[Fate]
+) -> None:
+    def hidden_column(book: openpyxl.Workbook) -> None:
+        book["Prices"].column_dimensions[letter].hidden = True
+
+    rows: Rows = [[*HEAD, "Currency", "Remark"], ["Maize", 205, "t", "USD", "x"], ["Wheat", 212, "t", None, "y"]]
+    reading = built(tmp_path / "list.xlsx", library, hidden_column, rows)
+    assert fates(reading) == expected
+    answer = Answer(Asked.HIDDEN_COLUMN, {"C": "Unit", "D": "Currency", "E": "Remark"}[letter], TAKE)
+    assert fates(built(tmp_path / "list.xlsx", library, hidden_column, rows, answer)) == [IGNORED, A, A]
