@@ -16,6 +16,7 @@ from blendapp.domain.list_rows import ADD, DAY_FIRST, LEAVE_OUT, TAKE, Answer, C
 from blendapp.domain.mills import Asked, Synonym
 from blendapp.domain.notation import PLAIN, use_notation
 from blendapp.domain.plant import Site, Supplier
+from blendapp.services.composition import apply_composition_list, read_composition_list
 from blendapp.services.list_memory import remember, remembered
 from blendapp.services.prices import apply_price_list, read_price_list
 from tests.desk.conftest import Hands
@@ -252,3 +253,26 @@ def test_every_answer_that_is_remembered_has_a_question_in_words() -> None:
     for asked in Asked:
         if asked.is_remembered:
             assert telling.question_words(Synonym(1, "a", "b", asked=asked)) != str(asked), asked
+
+
+def test_a_list_of_analyses_opens_with_its_samples_and_is_rolled_back(
+    lists: Bench, hands: Hands, tmp_path: Path
+) -> None:
+    path = tmp_path / "lab.csv"
+    path.write_text("Ingredient,Sample,Crude protein (% as fed)\nMaize,S-1,8.8\nMaize,S-2,9.2\nNobody knows,S-3,12\n")
+    work = lists.work
+    reading = read_composition_list(work.mill, path, work.on)
+    work.do(lambda mill: apply_composition_list(mill, reading, work.on))
+    assert work.library.value(1, 1).amount == pytest.approx(9.0)  # type: ignore[union-attr]
+    lists.commands.run("applied")
+    assert text(lists.applied.rows, 3, "about") == "analyses"
+    opened = lists.applied.opened
+    at = next(at for at in opened.owners if text(opened, at, "sample") == "S-1")
+    assert text(opened, at, "fate") == "taken"
+    assert text(opened, at, "ingredient") == "Maize"
+    assert text(opened, at, "values") == "Crude protein 8.8 %"
+    hands.click(lists.applied.roll)
+    assert work.library.value(1, 1).amount == 10.0  # type: ignore[union-attr]
+    assert text(lists.applied.rows, 3, "stands").startswith("rolled back")
+    work.undo()
+    assert work.library.value(1, 1).amount == pytest.approx(9.0)  # type: ignore[union-attr]

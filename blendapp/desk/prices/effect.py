@@ -24,6 +24,8 @@ from blendapp.services.kept_answers import AnswersNow
 from blendapp.services.mill import Edit
 from blendapp.services.movers import Mover, movers
 
+LEAST_MIX_PX = 260
+
 
 class EffectPane(QWidget):
     """closed: away from here, to the bench or back to the list. chosen: the identifier of a formula to show. said: a
@@ -82,6 +84,8 @@ class EffectPane(QWidget):
         self._aside = Aside(self, (Refused, ValueError))
         self._aside.done.connect(self._take)
         self._went_on.connect(self._show_progress)
+        self.table.resized.connect(self._fit_mix)
+        self.rows.modelReset.connect(self._fit_mix)
         self.table.asked.connect(self._choose)
         self.table.doubleClicked.connect(self._choose)
         work.opened.connect(self._forget)
@@ -151,6 +155,13 @@ class EffectPane(QWidget):
             return
         self.stop.hide()
         self.remark.say(summary(found))
+
+    def _fit_mix(self) -> None:
+        """Let what changes in a mix take the width that the other columns leave."""
+        column = self.rows.column_of("mix")
+        if column is not None and not self.table.has_own_width("mix"):
+            others = sum(self.table.columnWidth(at) for at in range(self.rows.columnCount()) if at != column)
+            self.table.setColumnWidth(column, max(self.table.viewport().width() - others, LEAST_MIX_PX))
 
     def write_table(self, path: Path) -> None:
         """Write the rows as they stand, as .xlsx or .csv. Raises Refused."""

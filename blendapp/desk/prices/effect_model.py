@@ -30,11 +30,11 @@ class EffectRows(Grid):
         self.currency = currency
         self._row = {one.formula_id: one for one in biggest_first(rows)}
         self.set_headings([
-            Heading("formula", _("formula"), 210),
-            Heading("before", _("before, {currency}").format(currency=currency), 110, True),
-            Heading("after", _("after, {currency}").format(currency=currency), 110, True),
+            Heading("formula", _("formula"), 180),
+            Heading("before", _("before, {currency}").format(currency=currency), 96, True),
+            Heading("after", _("after, {currency}").format(currency=currency), 96, True),
             Heading("change", _("change"), 84, True), Heading("percent", "%", 70, True), Heading("per", _("per"), 60),
-            Heading("most", _("the price that did most"), 330), Heading("mix", _("mix"), 460),
+            Heading("most", _("the price that did most"), 310), Heading("mix", _("mix"), 460),
         ])
         self.set_rows(list(self._row))
         self.refresh()
