@@ -56,7 +56,8 @@ def test_the_page_shows_every_quote_the_rule_and_why(page: Bench) -> None:
     assert [words.split("  ")[1] for words in standings] == ["to come", "in force", "gives way"]
     # Three suppliers, three marks.
     assert len({words.split("  ")[0] for words in standings}) == 3
-    assert page.history.legend.whole == "● nobody in particular   ■ Bay Grain   ▲ Delta"
+    assert page.history.legend.whole == (
+        "● nobody in particular   ■ Bay Grain   ▲ Delta   hollow: to come, or of another site")
     assert page.history.table.currentIndex().row() == 1
 
 
@@ -94,6 +95,9 @@ def test_a_price_is_added_with_supplier_site_and_days_and_taken_back(page: Bench
     assert form.fault.text() == ""
     assert form.price.text() == ""
     assert "another site" in cell(page, new.id, "standing")
+    assert page.history.legend.whole.endswith("by name: a site's own")
+    assert page.history.plot is not None
+    assert page.history.plot.where(new.id).x() > 0
     page.work.undo()
     assert new.id not in page.history.rows.owners
 

@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
-
-from blendapp.domain.price_history import PriceHistory, QuoteLine
+from blendapp.domain.price_history import PriceHistory, QuoteLine, Standing
 from blendapp.domain.wording import _
 
 # As text, and as the plot calls it. Each is told from the others by its outline alone.
 SIGNS: tuple[tuple[str, str], ...] = (("●", "o"), ("■", "s"), ("▲", "t1"), ("◆", "d"), ("▼", "t"), ("✚", "+"))
 WITHDRAWN = "✕"
+# Quotes whose mark in the plot is not filled.
+HOLLOW = (Standing.TO_COME, Standing.ELSEWHERE)
 
 
 def marks_of(history: PriceHistory) -> dict[str, int]:
@@ -29,11 +29,11 @@ def supplier_words(name: str) -> str:
     return name or _("nobody in particular")
 
 
-def legend(marks: dict[str, int], sites: Iterable[str]) -> str:
+def legend(history: PriceHistory) -> str:
     """The marks in words, for the line under the plot."""
-    parts = [f"{SIGNS[at][0]} {supplier_words(name)}" for name, at in marks.items()]
-    text = "   ".join(parts)
-    named = sorted({site for site in sites if site})
-    if named:
-        text = _("{marks}   by name: a site's own").format(marks=text)
-    return text
+    parts = [f"{SIGNS[at][0]} {supplier_words(name)}" for name, at in marks_of(history).items()]
+    if any(line.standing in HOLLOW for line in history.lines):
+        parts.append(_("hollow: to come, or of another site"))
+    if any(line.site for line in history.lines):
+        parts.append(_("by name: a site's own"))
+    return "   ".join(parts)

@@ -18,7 +18,7 @@ from PySide6.QtWidgets import (
 )
 
 from blendapp.desk.history.form import PriceForm
-from blendapp.desk.history.marks import legend, marks_of
+from blendapp.desk.history.marks import legend
 from blendapp.desk.history.model import QuoteRows
 from blendapp.desk.shell.zone import Elided
 from blendapp.desk.table.grid import sentence_of
@@ -183,7 +183,7 @@ class HistoryPane(QWidget):
         where = history.site or _("the whole mill")
         text = plural("{count} entry, as of {day}, for {site}", "{count} entries, as of {day}, for {site}", count)
         self.remark.say(text.format(count=count, day=history.on.isoformat(), site=where))
-        self.legend.say(legend(marks_of(history), [line.site for line in history.lines]))
+        self.legend.say(legend(history))
         self.replaced.setVisible(any(line.standing is Standing.REPLACED for line in history.lines))
         self._row_chosen()
 

@@ -11,7 +11,7 @@ from PySide6.QtCore import QPointF, Qt, Signal
 from PySide6.QtGui import QFocusEvent, QFontMetricsF, QKeyEvent, QPen
 from PySide6.QtWidgets import QWidget
 
-from blendapp.desk.history.marks import SIGNS, marks_of, supplier_words
+from blendapp.desk.history.marks import HOLLOW, SIGNS, marks_of, supplier_words
 from blendapp.desk.theme import Tokens, text_font, tokens
 from blendapp.domain.notation import notation
 from blendapp.domain.price_history import PriceHistory, QuoteLine, Standing, day_words
@@ -145,10 +145,9 @@ class PricePlot(pg.GraphicsView):
         return first - 0.02 * (last - first), last
 
     def _lines(self) -> list[QuoteLine]:
-        """The quotes that are drawn: those that count here, the earliest first."""
+        """The quotes that are drawn: all but replaced ones, the earliest first."""
         assert self.history is not None
-        left_out = (Standing.REPLACED, Standing.ELSEWHERE)
-        return [line for line in reversed(self.history.lines) if line.standing not in left_out]
+        return [line for line in reversed(self.history.lines) if line.standing is not Standing.REPLACED]
 
     def draw(self) -> None:
         """Draw everything anew, in the scheme of now."""
@@ -241,7 +240,7 @@ class PricePlot(pg.GraphicsView):
             if price is None or not first <= x <= last:
                 continue
             self._points[quote.id] = (x, price)
-            filled = line.standing is not Standing.TO_COME
+            filled = line.standing not in HOLLOW
             spots.append({
                 "pos": (x, price), "symbol": SIGNS[marks[line.supplier]][1], "data": quote.id, "size": MARK_PX,
                 "pen": _pen(look, "text", 1.2), "brush": look.colour("text" if filled else "ground"),
