@@ -33,6 +33,9 @@ _NO_AMOUNT = frozenset({
 })
 
 
+_LONGEST = 200
+
+
 @dataclass(frozen=True)
 class ResultCell:
     """amount: None where there is none or it is in doubt. entered: as shown. unit, factor, basis: said beside it.
@@ -60,7 +63,7 @@ class ResultCell:
 def result_sign(raw: RawTable, column: int, rows: Iterable[int]) -> DecimalSign | None:
     """The decimal sign of the texts of a column, decided over all of its rows."""
     texts = (raw.cell(row, column) for row in rows)
-    found = (split_number(text) for text in texts if isinstance(text, str))
+    found = (split_number(text) for text in texts if isinstance(text, str) and len(text) <= _LONGEST)
     return decide_decimal_sign([one[0] for one in found if one is not None and not one[1].strip(" <>~≤≥")])
 
 
@@ -81,6 +84,9 @@ def read_result(raw: RawTable, row: int, column: int, sign: DecimalSign | None) 
 
 
 def _text_cell(text: str, sign: DecimalSign | None, spreadsheet: bool) -> ResultCell:
+    if len(text) > _LONGEST:
+        wordy = not any(letter.isdigit() for letter in text)
+        return ResultCell(entered=text[:_LONGEST], doubt=_("A text that long is not one amount."), wordy=wordy)
     plain = fold(plain_text(text))
     if plain in _BLANK:
         return ResultCell(entered=text)
@@ -91,7 +97,7 @@ def _text_cell(text: str, sign: DecimalSign | None, spreadsheet: bool) -> Result
     if found is None:
         return ResultCell(entered=text, doubt=doubt, wordy=True)
     number, before, after = found
-    words = read_heading(after)
+    words = read_heading(after.strip())
     if before.strip() or words.name or words.stated or (words.says_unit and not words.unit):
         return ResultCell(entered=text, doubt=doubt)
     value = value_in_column(number, sign)

@@ -29,14 +29,17 @@ def ask_about_same_samples(rows: Sequence[CompositionRow], answers: Answers) -> 
 
     Several samples of an ingredient are none, nor is one sample whose analyses stand in several tables.
     """
-    nutrients: dict[object, list[int | None]] = defaultdict(list)
+    seen: set[tuple[object, int | None]] = set()
+    twice = set()
     for row in rows:
         if row.fate in (Fate.ACCEPTED, Fate.QUESTION):
-            nutrients[_sample(row)] += {value.nutrient_id for value in row.values}
+            own = {(_sample(row), value.nutrient_id) for value in row.values}
+            if not seen.isdisjoint(own):
+                twice.add(_sample(row))
+            seen |= own
 
     def twin(row: CompositionRow) -> object | None:
-        found = nutrients[_sample(row)]
-        return None if row.ingredient_id is None or len(found) == len(set(found)) else _sample(row)
+        return _sample(row) if row.ingredient_id is not None and _sample(row) in twice else None
 
     return ask_about_twins(
         rows, twin, answers, _("Left out, as answered: the sample in {place} holds."),
@@ -105,13 +108,13 @@ def ask_about_outliers(rows: Sequence[CompositionRow], answers: Answers) -> list
         if row.fate is Fate.ACCEPTED:
             for value in row.values:
                 amounts[row.ingredient_id, value.nutrient_id, value.unit, value.basis].append(value.amount)
+    middles = {key: statistics.median(of) for key, of in amounts.items() if len(of) >= _LEAST_FOR_MEDIAN}
     found = []
     for row in rows:
         taken = answers.of_row(Asked.CHANGE, row.sheet, row.row) == TAKE
         for value in row.values if row.fate is Fate.ACCEPTED and not taken else ():
-            all_ = amounts[row.ingredient_id, value.nutrient_id, value.unit, value.basis]
-            middle = statistics.median(all_)
-            if value.old is None and len(all_) >= _LEAST_FOR_MEDIAN and middle and near_power(middle, value.amount):
+            middle = middles.get((row.ingredient_id, value.nutrient_id, value.unit, value.basis))
+            if value.old is None and middle and near_power(middle, value.amount):
                 text = _("{nutrient} of {value} {unit} is far from the {middle} of the other samples; check the unit.")
                 said = text.format(
                     nutrient=value.nutrient, value=PLAIN.write_short(value.amount, 4), unit=value.unit,

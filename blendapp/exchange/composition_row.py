@@ -16,7 +16,7 @@ from blendapp.exchange.composition_columns import ValueColumn, plain_heading
 from blendapp.exchange.composition_segments import Segment
 from blendapp.exchange.composition_words import read_basis, read_unit
 from blendapp.exchange.list_answers import LARGEST_USUAL_CHANGE
-from blendapp.exchange.list_cells import first_text
+from blendapp.exchange.list_cells import first_text, shortened
 from blendapp.exchange.list_checks import leaps, near_power
 from blendapp.exchange.list_names import Match, NameFinder
 from blendapp.exchange.list_numbers import DecimalSign, split_number
@@ -57,7 +57,7 @@ class _Reading(RowReading):
         found = None if match is None else match.ingredient
         name = self.name or (first_text(self.raw, self.row) if fate is Fate.IGNORED else "")
         return CompositionRow(
-            self.raw.sheet, self.row + 1, fate, reason, name, None if found is None else found.id,
+            self.raw.sheet, self.row + 1, fate, shortened(reason), name, None if found is None else found.id,
             None if found is None else found.name, tuple(dict.fromkeys(self.open)), self.sample,
             None, tuple(self.values),
         )

@@ -28,6 +28,7 @@ from blendapp.exchange.source_sheets import shown_text
 from blendapp.exchange.tables import CellKind, RawTable, column_letters, kind_of
 
 _NUMBER_LIKE = re.compile(r"[<>~≤≥]?\s*[-+]?[0-9][0-9.,' ]*\s*%?")
+_LONGEST_NUMBER = 60
 _RUNNING_NUMBERS = frozenset({"no", "number"})
 
 
@@ -97,7 +98,7 @@ def is_transposed(raw: RawTable, finders: Finders) -> bool:
 def _may_be_heading(raw: RawTable, row: int, finders: Finders) -> bool:
     """A quick look: a row of texts only, at least two, one of which names something that is measured."""
     filled = [value for value in raw.rows[row] if kind_of(value) is not CellKind.BLANK]
-    if len(filled) < 2 or any(kind_of(value) is not CellKind.TEXT for value in filled):
+    if len(filled) < 2 or any(not isinstance(value, str) or _is_number_like(value.strip()) for value in filled):
         return False
     return any(finders.nutrients.knows(str(value)) for value in filled)
 
@@ -105,10 +106,10 @@ def _may_be_heading(raw: RawTable, row: int, finders: Finders) -> bool:
 def headed_table(raw: RawTable, row: int, finders: Finders) -> AnalysisTable | None:
     """The table whose headings begin in a row, None where they head nothing that is measured."""
     texts = texts_of(raw, row)
-    if not texts or len(texts) > MOST_COLUMNS or any(map(_NUMBER_LIKE.fullmatch, texts.values())):
+    if not texts or len(texts) > MOST_COLUMNS or any(map(_is_number_like, texts.values())):
         return None
     below = texts_of(raw, row + 1) if row + 1 < len(raw.rows) else None
-    if below and any(map(_NUMBER_LIKE.fullmatch, below.values())):
+    if below and any(map(_is_number_like, below.values())):
         below = None
     found = _headed(row, texts, finders)
     if below and found is not None and _says_how(below):
@@ -124,6 +125,10 @@ def headed_table(raw: RawTable, row: int, finders: Finders) -> AnalysisTable | N
     found = _under_a_wider_heading(raw, row, found, finders)
     _settle(found, raw, finders)
     return found if found.values else None
+
+
+def _is_number_like(text: str) -> bool:
+    return len(text) <= _LONGEST_NUMBER and _NUMBER_LIKE.fullmatch(text) is not None
 
 
 def _headed(row: int, texts: dict[int, str], finders: Finders) -> AnalysisTable | None:
@@ -236,7 +241,7 @@ def _is_numeric(found: AnalysisTable, raw: RawTable, index: int) -> bool:
     numbers = [
         cell for cell in filled
         if kind_of(cell) in (CellKind.NUMBER, CellKind.PERCENT)
-        or (isinstance(cell, str) and _NUMBER_LIKE.fullmatch(cell.strip()))
+        or (isinstance(cell, str) and _is_number_like(cell.strip()))
     ]
     return len(numbers) * 2 > len(filled)
 

@@ -42,6 +42,7 @@ _DRY = re.compile(
 )
 _DRY_MATTER_NAMES = frozenset({"dm", "dry matter", "dry matter content", "dry substance"})
 _MOISTURE_NAMES = frozenset({"moisture", "water", "moisture content", "water content", "h2o"})
+_LONGEST = 300
 # What closes the name of a property without being part of it.
 _CLOSING = re.compile(r"(?:[\s,;:\-–/]|\b(?:in|on|of|per|content|result|results|value)\b)+$")
 
@@ -78,7 +79,9 @@ class HeadingWords:
 
 @lru_cache(2048)
 def read_heading(text: str) -> HeadingWords:
-    """The words of a heading: "Crude protein (%)", "CP % DM", "Lysine g/kg as fed", "Ca"."""
+    """The words of a heading: "Crude protein (%)", "CP % DM", "Lysine g/kg as fed", "Ca". A very long text has none."""
+    if len(text) > _LONGEST:
+        return HeadingWords("", "")
     plain = _tidy(re.sub(r"[()\[\]{}|]", " ", fold(text)))
     stated = _STATED.search(plain) is not None
     named = {_SPELLINGS[found] for found in _UNITS.findall(plain)}
@@ -100,7 +103,7 @@ def read_unit(text: str) -> tuple[str, float] | None:
 
 def read_basis(text: str) -> Basis | None:
     """The basis that words name; None where they name none, both, or that of a stated dry matter such as 88 %."""
-    plain = _tidy(fold(text))
+    plain = _tidy(fold(text[:_LONGEST]))
     if _STATED.search(plain):
         return None
     fed, dry = _AS_FED.search(plain), _DRY.search(plain)

@@ -329,3 +329,21 @@ def test_nothing_of_the_mill_changes_by_reading() -> None:
     before = {kind: dict(found) for kind, found in LIBRARY.records.items()}
     read([HEAD, ["Maize", "A", None, 85]])
     assert LIBRARY.records == before
+
+
+def test_a_cell_of_very_much_text_is_a_question_in_few_words() -> None:
+    row = one("Maize", "A", None, "1" * 20_000 + " %", 60)
+    assert row.fate is Fate.QUESTION
+    assert len(row.reason) < 300
+    assert fates(read([["Ingredient", "CP % as fed" + " x" * 5000], ["Maize", 8.5]])) == ["ignored", "question"]
+
+
+def test_more_tables_than_anybody_makes_are_refused() -> None:
+    with pytest.raises(Refused, match="rows of headings"):
+        read([["Ingredient", "CP % as fed"], ["Maize", 8.5]] * 600, write=write_text)
+
+
+def test_very_many_rows_of_one_sample_are_each_a_question() -> None:
+    reading = read([["Ingredient", "CP % as fed"], *([["Maize", 8.5]] * 5000)], write=write_text)
+    assert reading.count(Fate.QUESTION) == 5000
+    assert max(len(row.reason) for row in reading.rows) < 300
