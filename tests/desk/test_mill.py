@@ -252,6 +252,14 @@ def test_steps_are_entered_in_order_and_moved_by_the_keyboard(bench: Bench, hand
         hands.write(text)
         hands.key(Qt.Key.Key_Return)
     assert steps(bench, None) == ["Weigh", "Mix", "Empty"]
+    # Insert puts a new one under the one that has the keyboard.
+    hands.go(bench.mill.tables["general step"], bench.mill.tables["general step"].grid.owners[0], "text")
+    hands.key(Qt.Key.Key_Insert)
+    hands.write("Look")
+    hands.key(Qt.Key.Key_Return)
+    assert steps(bench, None) == ["Weigh", "Look", "Mix", "Empty"]
+    bench.work.undo()
+    bench.work.undo()
     table = bench.mill.tables["general step"]
     hands.go(table, table.grid.owners[2], "minutes")
     hands.write("2.5")

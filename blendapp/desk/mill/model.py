@@ -119,7 +119,7 @@ class RecordTable(Grid):
         names = tuple(typed.choices(library, record, key) or ())
         if key == "unit":
             names = tuple(name for name in units.CONCENTRATION if name != "/kg")
-        return Look(text=text, typed=text, editable=True, choices=names)
+        return Look(text=text, typed=text, editable=True, choices=names, hint=text if key in ("text", "note") else "")
 
     def write(self, owner: int, key: str, text: str) -> None:
         record = self.record(owner)

@@ -10,6 +10,7 @@ from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QStackedWidget, QVBoxLayout, QWidget
 
 from blendapp.desk.finder.search import Found
+from blendapp.desk.mill.adding import adder
 from blendapp.desk.mill.facts import MillFacts
 from blendapp.desk.mill.model import SHOWN, RecordTable
 from blendapp.desk.mill.people import PasswordForm, PeopleTable
@@ -20,15 +21,10 @@ from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.desk.work import Work
-from blendapp.domain.mills import Person
 from blendapp.domain.problems import Refused
-from blendapp.domain.records import added
 from blendapp.domain.wording import _
 from blendapp.services import edits, mixing, plant
 from blendapp.services.mill import Edit, Mill
-
-# A new step of a scale or a meter, until the person types their own.
-NEW_STEP_KG, NEW_STEP_L = 1.0, 0.1
 
 
 class MillPane(QWidget):
@@ -103,7 +99,7 @@ class MillPane(QWidget):
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(GAP_PX)
         for place, (kind, words, own_title, stretch) in enumerate(tables):
-            add = GlyphButton("add", words)
+            add = GlyphButton("add", _("{what} (Insert)").format(what=words))
             add.clicked.connect(partial(self.add, kind))
             column.addLayout(_head(own_title or title, hint if place == 0 else "", add))
             model = PeopleTable(self.work, self) if kind == "person" else RecordTable(self.work, SHOWN[kind], self)
@@ -135,7 +131,8 @@ class MillPane(QWidget):
             table = StepTable(model, self)
             table.setAccessibleName(_("Steps of this formula") if own else title.text())
             table.moved.connect(self._move_step)
-            add = GlyphButton("add", _("Add a step to this formula") if own else _("Add a step to every formula"))
+            words = _("Add a step to this formula") if own else _("Add a step to every formula")
+            add = GlyphButton("add", _("{what} (Insert)").format(what=words))
             add.clicked.connect(partial(self.add, kind))
             up, down = GlyphButton("up", _("Move the step up (Alt+Up)")), GlyphButton(
                 "down", _("Move the step down (Alt+Down)"))
@@ -153,6 +150,8 @@ class MillPane(QWidget):
     def _take_table(self, kind: str, section: str, table: DeskTable) -> None:
         table.cleared.connect(partial(self._clear, kind))
         table.pasted.connect(partial(self._paste, kind))
+        table.resized.connect(partial(self._fit, table))
+        table.grid.modelReset.connect(partial(self._fit, table))
         self.tables[kind] = table
         self._section_of[kind] = section
         self._beginners.setdefault(section, table)
@@ -233,6 +232,16 @@ class MillPane(QWidget):
         self.own_title.setText("" if formula is None else _("Steps of {formula}").format(formula=formula.name))
         self.copy_steps.setVisible(own and bool(self.model("general step").owners))
 
+    @staticmethod
+    def _fit(table: DeskTable) -> None:
+        """Let a column of free text have what the others leave."""
+        grid = table.grid
+        spare = table.viewport().width() - sum(heading.width for heading in grid.headings)
+        for key in ("text", "note"):
+            at = grid.column_of(key)
+            if at is not None and not table.has_own_width(key):
+                table.setColumnWidth(at, grid.headings[at].width + max(spare, 0))
+
     def _keep(self, table: DeskTable) -> None:
         """Rebuild a table with the keyboard on the same cell as before."""
         model, index = table.grid, table.currentIndex()
@@ -248,41 +257,21 @@ class MillPane(QWidget):
     def add(self, table: str) -> None:
         """Add a record under a free name and open the name for typing."""
         self.sections.choose(self._section_of[table])
-        words = {
-            "site": _("New site"), "supplier": _("New supplier"), "scale": _("New scale"),
-            "meter": _("New liquid meter"), "mixer": _("New mixer"), "bin": _("New bin"), "lot": _("New lot"),
-            "nutrient": _("New nutrient"), "person": _("New person"),
-        }.get(table, _("New step"))
-        name = words if "step" in table else edits.free_name(self.work.library, self._kind(table), words)
-        edit = self._try(self._adder(table, name))
+        edit = self._try(adder(self.work, table, self._kind(table), self._after(table)))
         if edit is not None and edit.changes:
             self._type_into(table, edit, "text" if "step" in table else "name")
 
-    def _adder(self, table: str, name: str) -> Callable[[Mill], Edit]:
-        def add_lot(mill: Mill) -> Edit:
-            first = next(iter(mill.library.ingredients), None)
-            if first is None:
-                raise Refused(_("The mill has no ingredient yet of which a lot could be."))
-            lots = self.model("lot").owners
-            last = mill.library.records["lot"][lots[-1]].ingredient_id if lots else first.id
-            return plant.add_lot(mill, last, name, received=self.work.on)
+    def _add_here(self) -> None:
+        """Add to the table that has the keyboard, else to the first of the section."""
+        tables = [key for key in self.tables if self.tables[key].isVisible()]
+        here = next((key for key in tables if self.tables[key].has_keyboard()), next(iter(tables), None))
+        if here is not None:
+            self.add(here)
 
-        here = self.work.library.mill.site_id
-        jobs: dict[str, Callable[[Mill], Edit]] = {
-            "site": lambda mill: plant.add_site(mill, name),
-            "supplier": lambda mill: plant.add_supplier(mill, name),
-            "scale": lambda mill: plant.add_scale(mill, name, NEW_STEP_KG, here),
-            "meter": lambda mill: plant.add_meter(mill, name, NEW_STEP_L, here),
-            "mixer": lambda mill: plant.add_mixer(mill, name, here),
-            "bin": lambda mill: plant.add_bin(mill, name, site_id=here),
-            "lot": add_lot,
-            "nutrient": lambda mill: edits.add_nutrient(mill, name),
-            "person": lambda mill: mill.apply(
-                _("Add {name}").format(name=name), [added(Person(mill.new_id("person"), name))]),
-            "general step": lambda mill: mixing.add_step(mill, None, name),
-            "own step": lambda mill: mixing.add_step(mill, self.work.formula_id, name),
-        }
-        return jobs[table]
+    def _after(self, table: str) -> int | None:
+        """The position of a new row: after the one under the keyboard, None is at the end."""
+        index = self.tables[table].currentIndex()
+        return index.row() + 2 if index.isValid() else None
 
     def _type_into(self, table: str, edit: Edit, key: str) -> None:
         kind = self._kind(table)
@@ -355,6 +344,8 @@ class MillPane(QWidget):
     def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() == Qt.Key.Key_Escape:
             self.closed.emit()
+        elif event.key() == Qt.Key.Key_Insert:
+            self._add_here()
         else:
             super().keyPressEvent(event)
 

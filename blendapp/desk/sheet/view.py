@@ -56,6 +56,7 @@ class BatchView(QWidget):
         self.making.setSpacing(4)
         self.print_button = QPushButton(_("Print…"))
         self.print_button.setObjectName("first")
+        self.print_button.setToolTip(_("Print the page that is looked at; from the lines, the batch sheet (Ctrl+P)"))
         self.save_button = QPushButton(_("Keep as PDF…"))
         self.save_button.setObjectName("plain")
         self.buttons: dict[str, QPushButton] = {}
@@ -66,6 +67,7 @@ class BatchView(QWidget):
             button = QPushButton(words)
             button.setCheckable(True)
             button.setObjectName("set")
+            button.setToolTip(_("Ctrl with Page Down or Page Up goes from one to the next"))
             button.clicked.connect(partial(self.turn, key))
             self._group.addButton(button)
             self.buttons[key] = button
