@@ -53,6 +53,7 @@ class BatchLine:
 
     bins: where it stands, each with its lot if one is known. step_l, target_l: of a line that a liquid meter doses.
     rework: whether it was put in at a stated share. of_opened: the made ingredients in whose place it stands, in part.
+    tags: its own and those of all that it is made of, so that a later batch knows what went through the mixer.
     scale: its name, "" in a mill without scales. drug, drug_level, drug_species, withdrawal: as entered, of a
     medicated line. tolerance_kg: how far target_kg may lie from share_kg, None in a batch that did not keep it. fixed:
     whether a person set target_kg.
@@ -76,6 +77,7 @@ class BatchLine:
     target_l: float | None = None
     rework: bool = False
     of_opened: tuple[str, ...] = ()
+    tags: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -93,7 +95,8 @@ class Batch:
     sheet, None where a person said what it was, or nothing is known. clean_out: what was chosen, None to be filled in
     by hand; clean_out_reason: why one is needed, "" where nothing says so. yield_kg: of one batch, after loss_percent
     is lost and the dry matter of the mix is brought to product_dry_matter_percent; None where yield_unknown says why.
-    mass_unit: in which the sheet shows masses, "kg" or "lb".
+    mass_unit: in which the sheet shows masses, "kg" or "lb". place:
+    which of the equal batches a sheet is for, from 1; 0 is all of them.
     """
 
     formula_id: int
@@ -135,6 +138,7 @@ class Batch:
     yield_unknown: str = ""
     mass_unit: str = "kg"
     paper: str = "A4"
+    place: int = 0
     previous_number: int | None = None
 
     @property

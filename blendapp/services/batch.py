@@ -38,7 +38,7 @@ from blendapp.services.batch_mix import BatchMix, batch_mix
 from blendapp.services.formulate import formulate
 from blendapp.services.making import CannotBeMade, Makers
 from blendapp.services.order_split import mixer_taking, mixers_for, no_split, split_order, totals_held
-from blendapp.services.previous_feed import clean_out_reason, feed_text, previous_sheet
+from blendapp.services.previous_feed import clean_out_reason, feed_text, previous_sheet, tags_of
 from blendapp.services.versions import standing
 
 if TYPE_CHECKING:
@@ -217,7 +217,7 @@ def _whole(
     altered = batch.cautions[len(answer.cautions):]
     done = replace(
         batch,
-        lines=tuple(sorted((_line(library, mix, line) for line in weighing.lines), key=_order)),
+        lines=tuple(sorted((_line(library, makers, mix, line) for line in weighing.lines), key=_order)),
         limits=weighing.limits,
         nutrients=weighing.nutrients,
         broken=weighing.broken,
@@ -240,7 +240,7 @@ def _with_yield(batch: Batch, weighing: Weighing) -> Batch:
     return replace(batch, yield_unknown=text.format(ingredients=", ".join(yields.without_dry_matter(weighed))))
 
 
-def _line(library: Library, mix: BatchMix, line: WeighedLine) -> BatchLine:
+def _line(library: Library, makers: Makers, mix: BatchMix, line: WeighedLine) -> BatchLine:
     ingredient, scale = line.ingredient, line.scale
     return BatchLine(
         ingredient_id=ingredient.id, ingredient=ingredient.name, scale="" if scale is None else scale.name,
@@ -249,7 +249,7 @@ def _line(library: Library, mix: BatchMix, line: WeighedLine) -> BatchLine:
         drug_species=ingredient.drug_species, withdrawal=ingredient.withdrawal, tolerance_kg=line.tolerance_kg,
         fixed=line.fixed, bins=tuple(_place(library, one) for one in library.bins_of(ingredient.id)),
         step_l=None if scale is None else scale.step_l, target_l=line.target_l, rework=ingredient.id in mix.rework,
-        of_opened=mix.of_opened.get(ingredient.id, ()),
+        of_opened=mix.of_opened.get(ingredient.id, ()), tags=tags_of(makers, ingredient.id),
     )
 
 

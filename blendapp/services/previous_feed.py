@@ -29,31 +29,45 @@ def feed_text(batch: Batch) -> str:
     return text.format(formula=batch.formula, number=batch.number, day=batch.made.isoformat())
 
 
+def tags_of(makers: Makers, ingredient_id: int) -> tuple[str, ...]:
+    """What a sheet keeps of an ingredient and of all that it is made of, of their tags."""
+    held = [_with_tags(makers.library, one) for one in makers.records([ingredient_id])]
+    return tuple(sorted({str(tag) for one in held for tag in one.tags} - {Tag.ONLY_WHEN_LISTED}))
+
+
 def clean_out_reason(makers: Makers, formula: Formula, held: Collection[int], before: Batch | None) -> str:
     """Why the mixer must be cleaned out before a feed, "" where nothing says so.
 
-    held: identifiers of what the feed is weighed from. before: the batch that went through. What ingredients are by
-    now counts, and so does what was printed on the sheet before of their drugs.
+    held: identifiers of what the feed is weighed from. before: the batch that went through. What its sheet says of its
+    lines counts, and what is known of them by now.
     """
     if before is None:
         return ""
-    lines = {line.ingredient_id: line for line in before.lines if line.target_kg}
-    went = {one.id: one for one in makers.records(lines)}
-    for key, line in lines.items():
-        known = went.setdefault(key, Ingredient(key, line.ingredient))
-        went[key] = replace(known, name=line.ingredient, drug=known.drug or line.drug)
-    tagged = [_with_copper(makers.library, one) for one in went.values()]
-    found = carry_over.harmful(formula, tagged, makers.records(held))
+    lines = [line for line in before.lines if line.target_kg]
+    went: dict[int, Ingredient] = {}
+    for line in lines:
+        now = {one.id: _with_tags(makers.library, one) for one in makers.records([line.ingredient_id])}
+        known = now.get(line.ingredient_id, Ingredient(line.ingredient_id, line.ingredient))
+        # Only what nothing of today says is taken from the sheet, so that a drug in a premix is named by its own name.
+        gone = {Tag(tag) for tag in line.tags} - {tag for one in now.values() for tag in one.tags}
+        now[known.id] = _with_tags(makers.library, replace(
+            known, name=line.ingredient, drug=known.drug or line.drug, tags=(*known.tags, *sorted(gone)),
+        ))
+        went.update(now)
+    found = carry_over.harmful(formula, went.values(), makers.records(held))
     if not found:
         return ""
     text = _("{feed} went through before: {materials}. Clean out before this feed.")
     return text.format(feed=feed_text(before), materials="; ".join(found))
 
 
-def _with_copper(library: Library, ingredient: Ingredient) -> Ingredient:
-    """The ingredient, tagged as adding copper where its composition says that it does."""
+def _with_tags(library: Library, ingredient: Ingredient) -> Ingredient:
+    """The ingredient, tagged as adding copper where its composition says so, and as medicated where a drug is named."""
     keyed = [n.id for n in library.nutrients if n.key == "added copper"]
     values = [library.value(ingredient.id, key) for key in keyed]
-    if Tag.ADDED_COPPER in ingredient.tags or not any(v is not None and v.amount > 0 for v in values):
-        return ingredient
-    return replace(ingredient, tags=(*ingredient.tags, Tag.ADDED_COPPER))
+    tags = set(ingredient.tags)
+    if any(value is not None and value.amount > 0 for value in values):
+        tags.add(Tag.ADDED_COPPER)
+    if ingredient.medicated:
+        tags.add(Tag.MEDICATED)
+    return replace(ingredient, tags=tuple(sorted(tags)))

@@ -125,7 +125,7 @@ def batch_from_plain(plain: dict[str, Any]) -> Batch:
         **plain,
         "made": datetime.date.fromisoformat(plain["made"]),
         "lines": tuple(
-            BatchLine(**{**line, **{name: tuple(line.get(name, ())) for name in ("bins", "of_opened")}})
+            BatchLine(**{**line, **{name: tuple(line.get(name, ())) for name in ("bins", "of_opened", "tags")}})
             for line in plain["lines"]
         ),
         "steps": tuple(Step(**step) for step in plain.get("steps", ())),

@@ -19,6 +19,7 @@ from blendapp.domain.records import Change, added
 from blendapp.services import edits
 from blendapp.services.batch import make_batch, print_copy, print_sheet
 from blendapp.services.mill import Mill
+from blendapp.services.sheets import printed_batch
 from tests.mills import TODAY, Maker
 
 Opened = Callable[[Library], Mill]
@@ -194,6 +195,14 @@ def test_a_drug_inside_what_went_through_counts_and_so_does_one_whose_record_is_
     assert sheet.lines
 
 
+def test_what_a_sheet_said_of_its_lines_counts_whatever_becomes_of_their_tags(mill: Mill, tmp_path: Path) -> None:
+    printed(mill, tmp_path, "Broiler")
+    edits.change(mill, mill.library.ingredient(4), tags=())
+    (record,) = mill.library.all("batch")
+    assert {line.ingredient: line.tags for line in printed_batch(record).lines}["Ionophore"] == ("ionophore",)
+    assert "Ionophore (ionophore) can kill horses" in batch_of(mill, "Horse").clean_out_reason
+
+
 def test_a_premix_that_holds_a_drug_asks_for_a_clean_out(opened: Opened, tmp_path: Path) -> None:
     found = library()
     premix, drugged = found.ingredient(6), found.named("formula", "Drugged")
@@ -201,7 +210,8 @@ def test_a_premix_that_holds_a_drug_asks_for_a_clean_out(opened: Opened, tmp_pat
     found.apply([Change(premix, replace(premix, made_by_formula_id=drugged.id))])
     mill = opened(found)
     printed(mill, tmp_path, "Fattener")
-    assert "Drug (drug: Tylosin) is not in this feed" in batch_of(mill, "Plain").clean_out_reason
+    reason = batch_of(mill, "Plain").clean_out_reason
+    assert "before: Drug (drug: Tylosin) is not in this feed. Clean out" in reason, "named once, and by its own name"
 
 
 def test_a_batch_that_was_made_before_another_went_through_is_not_printed_as_if_nothing_had(
