@@ -187,12 +187,17 @@ def row_words(row: ListRow, several_sheets: bool) -> str:
     return _("row {row}").format(row=row.row)
 
 
+def listed_price(row: ListRow) -> str:
+    """A price as the list has it: "203.50 / t"; "" for a row that is no price."""
+    entered, unit = getattr(row, "entered", ""), (getattr(row, "unit", None) or "").lstrip("/ ")
+    return f"{entered} / {unit}" if entered and unit else entered
+
+
 def place_words(one: Open, several_sheets: bool) -> str:
-    """Where a question stands: "row 7, “Wheat fd” 210, and 11 more rows"."""
+    """Where a question stands: "row 7, “Wheat fd 210 / t”, and 11 more rows"."""
     row = one.row
     parts = [row_words(row, several_sheets)]
-    said = " ".join(part for part in (row.source_name, getattr(row, "entered", ""), getattr(row, "unit", None) or "")
-                    if part)
+    said = " ".join(part for part in (row.source_name, listed_price(row)) if part)
     if said:
         parts.append(f"“{said}”")
     text = ", ".join(parts)

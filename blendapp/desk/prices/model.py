@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from blendapp.desk.prices.asking import listed_price
 from blendapp.desk.prices.understood import UnderstoodRows
 from blendapp.desk.table.grid import Heading
 from blendapp.desk.table.look import EMPTY, Look, number_look
@@ -34,7 +35,7 @@ class PriceRows(UnderstoodRows):
         if key in ("change", "percent"):
             return _change(row, key == "percent")
         if key == "entered":
-            text = f"{row.entered} {row.unit or ''}".strip()
+            text = listed_price(row)
             return Look(text=text, quiet=quiet, number=True, hint=text)
         name = row.ingredient or row.source_name
         # A name that only the list knows is set apart from one of the mill's.
