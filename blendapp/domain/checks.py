@@ -162,6 +162,9 @@ def _quote(record: Quote, library: Library) -> list[Finding]:
         found.append(("per", _("A price per bushel needs the weight of a bushel; enter it under Bushel lb.")))
     if record.valid_from and record.valid_to and record.valid_from > record.valid_to:
         found.append(("valid_to", _("The last day of a price lies before its first.")))
+    replaced = None if record.replaces_id is None else library.records["quote"].get(record.replaces_id)
+    if record.replaces_id == record.id or (replaced is not None and replaced.ingredient_id != record.ingredient_id):
+        found.append(("price", _("A price takes the place of another one of the same ingredient only.")))
     return found
 
 

@@ -9,6 +9,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from blendapp.domain.checks import faults
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
 from blendapp.domain.mills import MillInfo, PriceList
@@ -167,3 +168,14 @@ def test_a_replaced_quote_stays_on_record_and_counts_on_no_day() -> None:
 def test_the_last_day_of_the_calendar_is_a_day_like_any_other() -> None:
     forever = Quote(1, 1, 200.0, valid_from=day(0), valid_to=datetime.date.max)
     assert steps([forever]) == (Step(None, day(-1), None), Step(day(0), None, forever))
+
+
+@pytest.mark.parametrize(("replaces_id", "wrong"), [(1, False), (7, True), (3, True), (None, False)])
+def test_a_price_takes_the_place_of_another_one_of_the_same_ingredient_only(
+    replaces_id: int | None, wrong: bool
+) -> None:
+    made = library(quote(1, 200.0), Quote(7, 2, 50.0))
+    made.apply([added(Ingredient(2, "Salt"))])
+    found = faults(quote(3, 210.0, replaces_id=replaces_id), made)
+    assert bool(found) is wrong
+    assert all("same ingredient" in sentence for _field, sentence in found)
