@@ -8,6 +8,8 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from enum import Enum
 
+# Before the decimal sign; no figure of a mill has more.
+MOST_DIGITS = 15
 _GROUPED = re.compile(r"[1-9][0-9]{0,2}(?:([ '.,])[0-9]{3})(?:\1[0-9]{3})*")
 _NUMBER = re.compile(r"[0-9]{1,3}(?:[ '][0-9]{3})+(?:[.,][0-9]+)?|[0-9]+(?:[.,'][0-9]+)*|[.,][0-9]+")
 _SPACES = dict.fromkeys(map(ord, "\u00a0\u202f\u2009\u2007"), " ")
@@ -70,7 +72,9 @@ def read_digits(digits: str, sign: DecimalSign) -> float | None:
         if not _GROUPED.fullmatch(whole):
             return None
         whole = re.sub(r"[ '.,]", "", whole)
-    return float(f"{whole}.{fraction}" if fraction else whole) if whole.isascii() else None
+    if not whole.isascii() or len(whole) > MOST_DIGITS:
+        return None
+    return float(f"{whole}.{fraction}" if fraction else whole)
 
 
 def decide_decimal_sign(texts: Iterable[NumberText]) -> DecimalSign | None:

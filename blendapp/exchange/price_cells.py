@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable
 from dataclasses import dataclass
 
@@ -14,6 +15,9 @@ from blendapp.exchange.price_columns import PriceColumn
 from blendapp.exchange.price_numbers import NO_PRICE, PriceText, read_price_text
 from blendapp.exchange.price_words import NO_MONEY, Money, money_of_format
 from blendapp.exchange.tables import CellKind, PercentCell, RawTable, kind_of
+
+# Nobody pays so much for any unit; beyond it sums are no longer exact.
+MOST_PAID = 1e15
 
 
 @dataclass(frozen=True)
@@ -54,6 +58,9 @@ def read_price_cell(table: RawTable, row: int, column: PriceColumn, sign: Decima
         assert isinstance(value, float | int)
         number_format = table.formats.get((row, column.index), "")
         money = money_of_format(number_format) if number_format else NO_MONEY
+        if not abs(value) < MOST_PAID:
+            shown = PLAIN.write_exact(float(value)) if math.isfinite(value) else str(value)
+            return PriceCell(entered=shown, doubt=_("“{text}” is not one price.").format(text=shown), money=money)
         return PriceCell(float(value), entered=PLAIN.write_exact(float(value)), money=money)
     text = _("The cell {place} holds a date, a time, a percentage or a truth value; say what the price is.")
     entered = f"{value.amount:%}" if isinstance(value, PercentCell) else str(value)

@@ -14,6 +14,8 @@ from blendapp.exchange.list_row import RowReading
 from blendapp.exchange.price_units_read import foreign_money
 from blendapp.exchange.price_words import Money, split_money
 
+GREATEST_RATE = 1e9
+
 
 @dataclass(frozen=True)
 class OwnMoney:
@@ -79,7 +81,7 @@ def _at_rate(
     row: RowReading, value: float | None, theirs: str, own: str, text: str, choices: tuple[str, ...]
 ) -> OwnMoney:
     answer = row.answers.find(Asked.RATE, theirs)
-    if answer is not None and answer.rate is not None and answer.rate > 0 and answer.given is not None:
+    if answer is not None and answer.rate is not None and 0 < answer.rate < GREATEST_RATE and answer.given is not None:
         remark = _("Converted at {rate} {own} for one {theirs}, the rate of {day}.")
         row.remarks.append(remark.format(
             rate=PLAIN.write_exact(answer.rate), own=own, theirs=theirs, day=answer.given.isoformat()

@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import dataclass
 
-from blendapp.exchange.list_numbers import NumberText, split_number
+from blendapp.exchange.list_numbers import NumberText, plain_text, split_number
 from blendapp.exchange.price_words import Money, read_unit_words
 
 # What stands in a price cell where there is no price.
@@ -14,6 +15,10 @@ NO_PRICE = frozenset({
     "no quote", "no price", "not quoted", "not available", "unavailable", "sold out", "out of stock", "nil", "x",
     ".", "?", "call for price", "please call", "ask", "nominal", "unquoted", "*",
 })
+
+
+# 205,- and 205.-- are 205.
+_NO_CENTS = re.compile(r"(?<=[0-9])[.,]-{1,2}(?![0-9])")
 
 
 @dataclass(frozen=True)
@@ -27,7 +32,7 @@ class PriceText(NumberText):
 
 def read_price_text(text: str) -> PriceText | None:
     """The number, currency and unit in a text such as "$ 1,234.50 / short ton"; None if it holds anything else."""
-    found = split_number(text)
+    found = split_number(_NO_CENTS.sub("", plain_text(text)))
     if found is None:
         return None
     number, before, after = found

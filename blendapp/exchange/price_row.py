@@ -19,7 +19,7 @@ from blendapp.exchange.list_cells import shortened
 from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_numbers import DecimalSign
 from blendapp.exchange.list_row import TOTALS, RowReading
-from blendapp.exchange.price_cells import PriceCell, read_price_cell
+from blendapp.exchange.price_cells import MOST_PAID, PriceCell, read_price_cell
 from blendapp.exchange.price_choice import Priced, choose_price
 from blendapp.exchange.price_columns import PriceColumn
 from blendapp.exchange.price_days import read_days
@@ -164,6 +164,8 @@ class _Reading(RowReading):
         if answer:
             try:
                 amount = PLAIN.read(answer)
+                if not abs(amount) < MOST_PAID:
+                    raise ValueError(_("“{text}” is not one price.").format(text=answer))
             except ValueError as error:
                 self.ask(Asked.AMOUNT, "", str(error), (LEAVE_OUT,))
                 return choice.parts[:1]

@@ -76,6 +76,8 @@ def is_price_unit(text: str) -> bool:
 _BAG_NAMES = r"(?:bags?|sacks?|big bags?|totes?|super ?sacks?|drums?)"
 _MASS = r"([0-9]+(?:[.,][0-9]+)?) ?(kgs?|lbs?)"
 _BAGS = re.compile(rf"{_BAG_NAMES}(?: of| a| @|,)? {_MASS}|{_MASS}[ -]?{_BAG_NAMES}")
+# Of any unit; what is no bag is no number to reckon with either.
+_LEAST_BAG, _GREATEST_BAG = 1e-3, 1e5
 _BARE_BAG = re.compile(_BAG_NAMES)
 _BAG_OF_MASS = re.compile(_MASS)
 
@@ -86,7 +88,7 @@ def _bag(words: str) -> PriceUnit | None:
     if found is None:
         return None
     mass = float((found[1] or found[3]).replace(",", "."))
-    if mass <= 0:
+    if not _LEAST_BAG < mass < _GREATEST_BAG:
         return None
     return PriceUnit("t", 1000 / mass) if (found[2] or found[4]).startswith("kg") else PriceUnit("cwt", 100 / mass)
 

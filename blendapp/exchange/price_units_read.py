@@ -81,7 +81,7 @@ def bushel_said(answer: str) -> float | None:
     """A bushel in lb, as it was answered: 56, 56 lb or 25.4 kg; None where it is no mass above 0."""
     found = re.fullmatch(r"([0-9]+(?:[.,][0-9]+)?) *(lbs?|kg)?", answer.strip().casefold())
     mass = float(found[1].replace(",", ".")) if found else 0.0
-    if not mass:
+    if not 1e-3 < mass < 1e5:
         return None
     return mass / units.LB_KG if found and found[2] == "kg" else mass
 

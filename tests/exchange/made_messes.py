@@ -36,6 +36,12 @@ MESSES: dict[str, tuple[Rows, list[Fate], list[float]]] = {
         [HEAD, ["Maize", "call", "t"], ["Wheat", "n/q", "t"], ["Soybean meal", "-", "t"],
          ["Limestone", "see note", "t"], ["Molasses", None, "t"]], [IGNORED] * 6, []),
     "two prices in one cell": ([HEAD, ["Maize", "205/210", "t"], ["Wheat", "212 or 215", "t"]], [IGNORED, Q, Q], []),
+    "whole prices with a dash for the cents": (
+        [HEAD, ["Maize", "205,-", "t"], ["Wheat", "€ 212.–", "t"], ["Limestone", "$44,--", "t"]], [IGNORED, A, Q, A],
+        [205, 44]),
+    "numbers that nobody reckons with": (
+        [HEAD, ["Maize", "9" * 400, "t"], ["Wheat", 1e308, "t"], ["Limestone", 44, "0.0000001 kg bag"],
+         ["Molasses", 99, "9" * 400 + " kg bag"]], [IGNORED, Q, Q, Q, Q], []),
     "a percentage for a price": ([HEAD, ["Maize", "5 %", "t"]], [IGNORED, Q], []),
     # Money
     "the mill's own sign and code": (
