@@ -47,11 +47,22 @@ class _Reading(RowReading):
         super().__init__(raw, row, names, self.table.name, self.table.headings)
         if self.table.name is None:
             self.name = segment.notes.name
+        elif not self.name:
+            self.name = self._name_of_the_rows_above()
         self.refused: list[str] = []
         self.values: list[ReadValue] = []
         samples = [index for index, role in sorted(self.table.roles.items()) if role is ColumnRole.SAMPLE]
         self.sample_columns = samples
         self.sample = " / ".join(dict.fromkeys(text for index in samples if (text := self.text(index))))
+
+    def _name_of_the_rows_above(self) -> str:
+        """The name in a cell that is merged over this row and some above it; "" where there is none."""
+        for merged in self.raw.merged:
+            over = merged.first_column <= (self.table.name or 0) <= merged.last_column
+            if over and merged.first_row < self.row <= merged.last_row:
+                value = self.raw.cell(merged.first_row, merged.first_column)
+                return " ".join(value.split()) if isinstance(value, str) else ""
+        return ""
 
     def _entry(self, fate: Fate, reason: str, match: Match | None = None) -> CompositionRow:
         found = None if match is None else match.ingredient

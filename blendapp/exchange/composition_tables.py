@@ -108,23 +108,38 @@ def headed_table(raw: RawTable, row: int, finders: Finders) -> AnalysisTable | N
     texts = texts_of(raw, row)
     if not texts or len(texts) > MOST_COLUMNS or any(map(_is_number_like, texts.values())):
         return None
-    below = texts_of(raw, row + 1) if row + 1 < len(raw.rows) else None
-    if below and any(map(_is_number_like, below.values())):
-        below = None
+    below = _texts_below(raw, row, 1)
     found = _headed(row, texts, finders)
-    if below and found is not None and _says_how(below):
-        found = _headed(row, joined(texts, below), finders) or found
-        found.last_heading_row = row + 1
+    how = 0 if found is None else next((n for n in (1, 2) if _says_how(_texts_below(raw, row, n))), 0)
+    if how and found is not None and (how == 1 or _is_method(below)):
+        found = _headed(row, joined(texts, _texts_below(raw, row, how)), finders) or found
+        found.last_heading_row = row + how
     elif below and not any(finders.names.is_known(text) for text in below.values()):
-        both = _headed(row, joined(spread_over(raw, row, texts, below), below), finders)
-        if both is not None and both.known > (0 if found is None else found.known):
-            both.last_heading_row = row + 1
-            found = both
+        # The upper row says more of the columns below it, or heads those that the lower one leaves blank.
+        twos = [joined(spread_over(raw, row, texts, below), below)]
+        if len(texts) > 1 and set(texts) - set(below):
+            twos.append({**texts, **below})
+        for two in twos:
+            both = _headed(row, two, finders)
+            if both is not None and both.known > (0 if found is None else found.known):
+                both.last_heading_row = row + 1
+                found = both
     if found is None:
         return None
     found = _under_a_wider_heading(raw, row, found, finders)
     _settle(found, raw, finders)
     return found if found.values else None
+
+
+def _texts_below(raw: RawTable, row: int, by: int) -> dict[int, str]:
+    """The texts of a row some rows further down; none where a number stands in it, or the sheet ends."""
+    found = texts_of(raw, row + by) if row + by < len(raw.rows) else None
+    return {} if found is None or any(map(_is_number_like, found.values())) else found
+
+
+def _is_method(texts: dict[int, str]) -> bool:
+    """Whether a row between the headings and their units says how was measured."""
+    return bool(texts) and plain_heading(texts[min(texts)]) in ("method", "methods", "analysis method")
 
 
 def _is_number_like(text: str) -> bool:

@@ -30,7 +30,8 @@ _UNITS = re.compile(
     r"(?<![\w/.])(?:" + "|".join(re.escape(word) for word in sorted(_SPELLINGS, key=len, reverse=True))
     + r")(?![\w/])|%"
 )
-_STATED = re.compile(r"[0-9]+(?:[.,][0-9]+)?\s*%\s*(?:dm\b|dry\s+matter)")
+# Neither as fed nor dry: "at 88 % dry matter", "air-dry".
+_STATED = re.compile(r"[0-9]+(?:[.,][0-9]+)?\s*%\s*(?:dm\b|dry\s+matter)|\bair[ -]?dr(?:y|ied)\b")
 _BASIS = r"(?:[ -]?bas(?:is|ed))?"
 _AS_FED = re.compile(
     r"\b(?:(?:on|in|of)\s+(?:an?\s+|the\s+)?)?(?:as[ -]?(?:fed|is|received|sampled|delivered)|af|ar|"
@@ -52,7 +53,7 @@ class HeadingWords:
     """name: the words that are neither unit nor basis; whole: those that are no unit. unit: of the table, "" if none.
 
     factor: what a number under the heading is multiplied by to be in `unit`. basis: None where none is said. stated:
-    whether it speaks of a stated dry matter such as 88 %. says_unit: whether it names a unit, or several.
+    whether it speaks of a stated dry matter such as 88 %, or of air-dry goods. says_unit: whether it names any unit.
     """
 
     name: str

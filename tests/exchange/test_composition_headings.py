@@ -177,7 +177,7 @@ def test_a_title_or_a_footnote_says_the_basis(title: str, basis: str, below: boo
 
 @pytest.mark.parametrize("title", [
     "The results relate to the samples as received", "Dry matter and protein of the week", "Results at 88 % dry matter",
-    "Dry matter by oven, protein by combustion",
+    "Dry matter by oven, protein by combustion", "Results on air-dry basis",
 ])
 def test_a_title_that_speaks_of_something_else_says_no_basis(title: str) -> None:
     assert asked(read([[title], ["Ingredient", "CP %"], ["Maize", 8.6]])) == {("basis", "")}
@@ -245,6 +245,8 @@ PLAIN: list[list[Any]] = [["Ingredient", "CP % as fed", "Zn mg/kg as fed"], ["Ma
      *([n, f"P{n}", *row] for n, row in enumerate(PLAIN[1:]))],
     [[*PLAIN[0], "Remarks"], *([*row, "fine"] for row in PLAIN[1:])],
     [["Material", *PLAIN[0][1:]], *PLAIN[1:]],
+    [["Ingredient", "Proximates", "Minerals"], [None, *PLAIN[0][1:]], *PLAIN[1:]],
+    [["Ingredient", "CP", "Zn"], ["Method", "Dumas", "ICP"], ["Unit", "% as fed", "mg/kg as fed"], *PLAIN[1:]],
 ])
 @pytest.mark.parametrize("write", [None, write_text, write_ods, write_xls])
 def test_the_table_is_found_under_any_headings(rows: list[list[Any]], write: Any) -> None:
@@ -336,6 +338,21 @@ def test_merged_headings_stand_over_all_their_columns(tmp_path: Any) -> None:
     assert asked(read(rows, write=write)) == {("basis", "")}
     (row,) = read(rows, Answer(Asked.BASIS, "", DRY), write=write).accepted
     assert values_of(row) == {"Crude protein": (9.8, "%", DRY), "Calcium": (0.023, "%", DRY)}
+
+
+def test_a_name_that_is_merged_over_several_samples_is_that_of_each() -> None:
+    def write(path: Any, rows: Any) -> Any:
+        book = openpyxl.Workbook()
+        for row in rows:
+            book.worksheets[0].append(row)
+        book.worksheets[0].merge_cells("A2:A3")
+        book.save(path)
+        return path
+
+    rows = [["Ingredient", "Sample", "CP % as fed"], ["Maize", 1, 8.4], [None, 2, 8.5], [None, 3, 8.6]]
+    reading = read(rows, write=write)
+    assert [row.ingredient for row in reading.rows[1:]] == ["Maize", "Maize", None]
+    assert reading.rows[3].questions[0].asked is Asked.NAMELESS
 
 
 def test_words_of_a_heading_are_told_apart() -> None:
