@@ -27,7 +27,10 @@ def number_words(batch: Batch, page: BatchPage) -> str:
         return _("Batch {number}").format(number="_" * 12)
     if page is BatchPage.MASTER:
         return _("for {mass}").format(mass=_one_batch(batch))
-    return _("not numbered") if batch.number is None else _("Batch {number}").format(number=batch.number)
+    words = _("not numbered") if batch.number is None else _("Batch {number}").format(number=batch.number)
+    if batch.batches < 2 or not batch.place:
+        return words
+    return _("{batch}, {place} of {count}").format(batch=words, place=batch.place, count=batch.batches)
 
 
 def _one_batch(batch: Batch) -> str:
@@ -73,6 +76,9 @@ def _draw_code(pen: Pen, left: float, top: float, text: str) -> None:
 def facts(batch: Batch, page: BatchPage, width: float) -> list[Block]:
     """Where and for whom it is made, and who approved the version."""
     where = [(_("Site"), batch.site), (_("Mixer"), batch.mixer), (_("Animal"), batch.animal), (_("Stage"), batch.stage)]
+    if page is BatchPage.SHEET and batch.batches > 1 and batch.place:
+        of = _("{place} of {count}").format(place=batch.place, count=batch.batches)
+        where.insert(0, (_("This batch"), of))
     known = [(label, value) for label, value in where if value]
     blocks = [sections.facts(known, width)] if known else []
     if batch.approved_by:
@@ -85,7 +91,7 @@ def facts(batch: Batch, page: BatchPage, width: float) -> list[Block]:
 
 
 def places_to_name(batch: Batch, page: BatchPage, width: float) -> list[Block]:
-    """Places for what a blank record leaves open, and for which of several equal batches a sheet is."""
+    """Places for what a blank record leaves open, and for when and by whom each of several equal batches is made."""
     row = []
     if page is BatchPage.BLANK:
         row = [
@@ -94,8 +100,7 @@ def places_to_name(batch: Batch, page: BatchPage, width: float) -> list[Block]:
         ]
     elif page is BatchPage.SHEET and batch.batches > 1:
         row = [
-            Field(_("Which of the {count} equal batches").format(count=batch.batches), 1.2), Field(_("Made on")),
-            Field(_("Made by"), 1.8),
+            Field(_("Made on")), Field(_("Made by"), 1.8),
         ]
     return [forms.fields(row, width, gap=10)] if row and batch.lines else []
 

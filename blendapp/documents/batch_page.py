@@ -12,13 +12,13 @@ import dataclasses
 from blendapp.documents import closing, making, phrases, sections
 from blendapp.documents.batch_head import code, facts, number_words, places_to_name
 from blendapp.documents.flow import Block, Style, paragraph
-from blendapp.documents.frame import Frame, Mark
+from blendapp.documents.frame import Frame, Mark, draw_all
 from blendapp.documents.letters import BOLD
 from blendapp.documents.paper import Paper
 from blendapp.documents.sections import BODY, STRONG
 from blendapp.documents.weighing import weighing_table
 from blendapp.documents.weighing_words import is_medicated, tagged, use
-from blendapp.domain.batches import Batch, BatchPage
+from blendapp.domain.batches import Batch, BatchPage, proof_words
 from blendapp.domain.wording import _, plural
 
 _WITHDRAWAL = Style(12, BOLD, leading=15)
@@ -27,10 +27,16 @@ _MOST_CAUTIONS = 120.0
 
 
 def draw(batch: Batch, page: BatchPage, paper: Paper) -> bytes:
-    """The page as a PDF."""
+    """The page as a PDF; of a sheet one for each of the equal batches, unless batch.place names one."""
     if page is not BatchPage.SHEET:
         # A record of a version has no number of its own and is no copy of a sheet.
         batch = dataclasses.replace(batch, number=None, copy=0)
+    places = range(1, batch.batches + 1) if page is BatchPage.SHEET and batch.lines and not batch.place else ()
+    each = [dataclasses.replace(batch, place=place) for place in places] or [batch]
+    return draw_all([_document(one, page, paper) for one in each])
+
+
+def _document(batch: Batch, page: BatchPage, paper: Paper) -> tuple[Frame, list[Block]]:
     kinds = {
         BatchPage.SHEET: _("Batch sheet"),
         BatchPage.MASTER: _("Master formula record"),
@@ -46,7 +52,7 @@ def draw(batch: Batch, page: BatchPage, paper: Paper) -> bytes:
         rest=f"{batch.version} · {of}",
         marks=_marks(batch),
     )
-    return frame.draw(_blocks(batch, page, frame.width))
+    return frame, _blocks(batch, page, frame.width)
 
 
 def _marks(batch: Batch) -> list[Mark]:
@@ -70,7 +76,7 @@ def _blocks(batch: Batch, page: BatchPage, width: float) -> list[Block]:
         blocks += making.to_make(batch, page, width)
         if page is not BatchPage.MASTER:
             blocks += making.clean_out(batch, page, width)
-        blocks += weighing_table(batch, page, width) + ([] if before else cautions)
+        blocks += weighing_table(batch, page, width) + _proof(batch, width) + ([] if before else cautions)
         blocks += making.mixing(batch, page, width) + closing.yields(batch, page, width)
         blocks += closing.signatures(batch, width) if page is BatchPage.MASTER else closing.sample_and_release(width)
     if page is not BatchPage.BLANK:
@@ -86,6 +92,12 @@ def _pointer(batch: Batch, width: float) -> list[Block]:
         count,
     ).format(count=count)
     return paragraph(words, STRONG, width, gap=10)
+
+
+def _proof(batch: Batch, width: float) -> list[Block]:
+    """How much better another weighing could be, where time was up before it was known."""
+    words = proof_words(batch)
+    return paragraph(words, BODY, width, gap=4) if words else []
 
 
 def _medicated_feed(batch: Batch, width: float) -> list[Block]:

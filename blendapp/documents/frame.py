@@ -74,12 +74,11 @@ class Frame:
 
     def draw(self, blocks: Sequence[Block]) -> bytes:
         """The document. The same blocks give the same bytes."""
+        return draw_all([(self, blocks)])
+
+    def draw_pages(self, canvas: Canvas, blocks: Sequence[Block]) -> None:
+        """The pages of one document on a canvas, numbered from 1."""
         pages = paginate([*self._whole_owner(), *blocks], self.height)
-        out = io.BytesIO()
-        canvas = Canvas(out, pagesize=self.paper.size_pt, invariant=1, pageCompression=1)
-        canvas.setTitle(self.title)
-        canvas.setCreator("blendapp")
-        canvas.setAuthor(self.owner or "blendapp")
         pen = Pen(canvas, self.paper.size_pt[1])
         for number, page in enumerate(pages, start=1):
             self._draw_across(canvas)
@@ -88,8 +87,6 @@ class Frame:
             for placed in page:
                 placed.block.draw(pen, MARGIN, self._top + placed.top)
             canvas.showPage()
-        canvas.save()
-        return out.getvalue()
 
     def _whole_owner(self) -> list[Block]:
         """The owner's name once more, where the head of the first page is too short for it."""
@@ -156,6 +153,20 @@ class Frame:
         for place, line in enumerate(self._foot()):
             pen.text(left, top + place * _FOOT.line, line, _FOOT)
         pen.text_right(right, top, letters.plain(_page_words(number, of)), _FOOT)
+
+
+def draw_all(documents: Sequence[tuple[Frame, Sequence[Block]]]) -> bytes:
+    """Several documents of one paper in one file, under the title of the first, each with its own numbers of pages."""
+    first = documents[0][0]
+    out = io.BytesIO()
+    canvas = Canvas(out, pagesize=first.paper.size_pt, invariant=1, pageCompression=1)
+    canvas.setTitle(first.title)
+    canvas.setCreator("blendapp")
+    canvas.setAuthor(first.owner or "blendapp")
+    for frame, blocks in documents:
+        frame.draw_pages(canvas, blocks)
+    canvas.save()
+    return out.getvalue()
 
 
 def _page_words(number: int, of: int) -> str:

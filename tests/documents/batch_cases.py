@@ -67,7 +67,7 @@ _METRIC = _lines(5.0, 0.5, 0.5, 122)
 
 FULL = dataclasses.replace(
     made.PLAIN,
-    lines=_METRIC, batch_kg=_total_kg(_METRIC), order_kg=round(4 * _total_kg(_METRIC), 6), batches=4,
+    lines=_METRIC, batch_kg=_total_kg(_METRIC), order_kg=round(4 * _total_kg(_METRIC), 6), batches=4, place=2,
     animal="pig", stage="grower", site="North mill", mixer="Mixer 2",
     steps=(
         Step("Cereals and meals from the hopper", 1.5, "32 rpm"), Step("Minerals and hand-adds by the side port", 1.0),

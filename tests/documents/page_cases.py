@@ -59,7 +59,7 @@ LINES = (
 PLAIN = Batch(
     formula_id=1, formula="Grower pig 30 to 60 kg", version="version 3", mill="Old Weir Mill", currency="EUR",
     draft=False, approved_by="Marta Okonjo, nutritionist, 2026-01-30",
-    made=datetime.date(2026, 2, 3), order_kg=7480, batches=4, batch_kg=1870, lines=LINES,
+    made=datetime.date(2026, 2, 3), order_kg=7480, batches=4, place=2, batch_kg=1870, lines=LINES,
     limits=(limit("Lysine", 1.05, None, 1.0497), limit("Calcium", 0.7, 0.9, 0.7211)),
     nutrients=NUTRIENTS, broken=(), cautions=(GENERAL_CAUTION, "Feed nothing else with copper."), number=1041,
 )
@@ -81,7 +81,7 @@ MANY = dataclasses.replace(
     limits=(limit("Lysine", 1.05, None, 1.0497), limit("Calcium", 0.7, 0.9, 0.9211)),
     nutrients=NUTRIENTS * 5,
     cautions=(GENERAL_CAUTION, *(f"Caution {n}: " + "the words of a rule that goes on " * 12 for n in range(1, 5))),
-    order_kg=63000, batches=4, batch_kg=15750,
+    order_kg=63000, batches=4, place=1, batch_kg=15750,
 )
 
 NO_SCALES = dataclasses.replace(
@@ -93,7 +93,7 @@ UNICODE = dataclasses.replace(
     formula="Färsenaufzucht Ωmega · тёлки №2",
     mill="Mühle Łódź & Søn",
     lines=(line("Ačiū grūdai — žirniai", 900), line("Корм", 500), line("大麦", 300), line("大豆", 170)),
-    batches=1, order_kg=1870,
+    batches=1, place=0, order_kg=1870,
 )
 
 NOT_FIT = dataclasses.replace(PLAIN, broken=(0,), copy=1)

@@ -54,7 +54,7 @@ def any_batch(chance: random.Random) -> Batch:
         to_make=tuple(ToMake(words(chance, 5), 1, words(chance, 4), chance.random() * 1e3) for _ in range(2)),
         previous_feed=words(chance, 8), clean_out=chance.choice((None, *CleanOut)),
         clean_out_reason=words(chance, 12), mixer=words(chance, 5), site=words(chance, 3),
-        cautions=tuple(words(chance, 40) for _ in range(chance.randint(0, 25))), batches=chance.choice((1, 3)),
+        cautions=tuple(words(chance, 40) for _ in range(chance.randint(0, 25))), batches=3, place=chance.randint(1, 3),
         yield_kg=chance.choice((None, 1.5, 12345.678)), yield_unknown=words(chance, 9),
     )
 

@@ -9,7 +9,7 @@ import batch_cases as made
 import pytest
 from page_reading import Piece, figures_under, pieces, places_under, rules, squeezed
 
-from blendapp.documents import batch_sheet, blank_record, master_record, page_text
+from blendapp.documents import batch_sheet, blank_record, master_record, page_count, page_text
 from blendapp.documents.batch_head import code_text
 from blendapp.domain.batches import BatchPage, CleanOut
 from blendapp.domain.cautions import GENERAL_CAUTION
@@ -111,7 +111,7 @@ def test_a_line_of_nothing_says_that_it_is_left_out() -> None:
 
 
 def test_the_code_says_formula_version_and_which_batch_or_record_it_is() -> None:
-    assert code_text(made.FULL, BatchPage.SHEET) == "Grower pig 30 to 60 kg\nversion 3\nBatch 1041"
+    assert code_text(made.FULL, BatchPage.SHEET) == "Grower pig 30 to 60 kg\nversion 3\nBatch 1041, 2 of 4"
     assert code_text(made.FULL, BatchPage.BLANK).endswith("\nnot numbered")
     assert code_text(made.US, BatchPage.MASTER).endswith("\nfor 4200 lb")
     assert len(code_text(made.EXTREME, BatchPage.SHEET).encode()) < 200
@@ -206,9 +206,16 @@ def test_a_blank_record_has_the_targets_of_the_sheet_and_is_no_other_for_another
     assert blank_record(made.FULL) == blank_record(other)
 
 
-def test_which_of_several_equal_batches_a_sheet_is_has_a_place_and_one_batch_has_none() -> None:
-    assert squeezed("Which of the 4 equal batches") in words(batch_sheet(made.FULL))
-    assert squeezed("equal batches") not in words(batch_sheet(dataclasses.replace(made.FULL, batches=1)))
+def test_each_of_several_equal_batches_has_a_sheet_of_its_own_that_says_which_it_is() -> None:
+    one = page_count(batch_sheet(made.FULL))
+    order = page_text(batch_sheet(dataclasses.replace(made.FULL, place=0)))
+    assert len(order) == 4 * one
+    for place in range(4):
+        first = order[place * one]
+        assert squeezed(f"{place + 1} of 4") in squeezed(first)
+        assert f"Page 1 of {one}" in first
+        assert f"Batch 1041, {place + 1} of 4" in order[place * one + 1]
+    assert "of 1" not in page_text(batch_sheet(dataclasses.replace(made.FULL, batches=1, place=0)))[0].split("Page")[0]
 
 
 def test_many_cautions_follow_the_lines_and_the_sheet_says_so_above_them() -> None:

@@ -14,7 +14,7 @@ from page_reading import pieces, rules, squeezed
 from PIL import Image
 
 from blendapp.documents import Paper, batch_sheet, blank_record, master_record, page_count, page_text, render_png
-from blendapp.domain.batches import Batch
+from blendapp.domain.batches import Batch, proof_words
 from blendapp.domain.cautions import GENERAL_CAUTION
 from blendapp.domain.notation import COMMA, PLAIN, use_notation
 from blendapp.domain.wording import use_language, use_translator
@@ -219,3 +219,10 @@ def test_a_medicated_feed_without_a_withdrawal_says_that_none_is_entered() -> No
     lines = (*made.FULL.lines[:-1], dataclasses.replace(made.FULL.lines[-1], withdrawal=""))
     text = squeezed(page_text(batch_sheet(dataclasses.replace(made.FULL, lines=lines))))
     assert squeezed("Worm premix 2 % · Species: pigs · no withdrawal is entered") in text
+
+
+@every_page
+def test_a_weighing_that_is_not_proven_best_says_how_much_better_one_could_be(draw: Page) -> None:
+    unproven = dataclasses.replace(made.FULL, unproven="total", gap=0.2)
+    assert squeezed(proof_words(unproven)) in squeezed(" ".join(page_text(draw(unproven))))
+    assert "Time was up" not in " ".join(page_text(draw(made.FULL)))
