@@ -296,6 +296,12 @@ class Bench(QObject):
             self.show_page(self.sheet)
             self.sheet.begin_anew()
 
+    def show_batch_page(self, view: str) -> None:
+        """Show the lines or one of the pages of a batch of the chosen formula."""
+        if self.frame.middle.currentWidget() is not self.sheet:
+            self.show_sheet()
+        self.sheet.view.turn(view)
+
     def batch_or_print(self) -> None:
         """Show the batch of the chosen formula; print the page that is looked at where it is shown already."""
         if self.frame.middle.currentWidget() is self.sheet:

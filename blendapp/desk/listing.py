@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 from PySide6.QtWidgets import QApplication
 
 from blendapp.desk.commands import Command
+from blendapp.desk.sheet.view import view_words
 from blendapp.desk.theme import dress
 from blendapp.domain.wording import _
 
@@ -116,6 +117,11 @@ def _paper(bench: Bench) -> list[Command]:
     return [
         Command("sheet", _("Batch of this formula…"), "paper", bench.batch_or_print, "Ctrl+P",
                 lambda: bench.work.formula is not None),
+        *(
+            Command(f"batch {view}", _("Batch: {view}").format(view=words), "paper",
+                    partial(bench.show_batch_page, view), "", lambda: bench.work.formula is not None, False)
+            for view, words in view_words().items()
+        ),
         Command("printed", _("Printed batch sheets"), "paper", bench.show_printed, "", lambda: bench.work.is_open),
     ]
 

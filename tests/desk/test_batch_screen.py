@@ -19,6 +19,7 @@ from blendapp.domain.library import Library
 from blendapp.domain.plant import Bin, Lot, Mixer, Scale
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import KINDS, Change, added
+from blendapp.services import edits
 from blendapp.storage import create
 from tests.desk.conftest import Hands, small_mill
 
@@ -305,3 +306,24 @@ def test_a_printed_sheet_is_found_by_its_number_and_looked_at(
     hands.key(Qt.Key.Key_Escape)
     assert screen.frame.middle.currentWidget() is screen.frame.bench
     assert QApplication.activeModalWidget() is None
+
+
+def test_a_page_of_the_batch_is_found_by_typing_its_name(screen: Bench, hands: Hands, qtbot: QtBot) -> None:
+    screen.to_bench()
+    screen.find_anything()
+    hands.write("master formula")
+    with qtbot.waitSignal(screen.sheet.view.pages.shown, timeout=20000):
+        hands.key(Qt.Key.Key_Return)
+    assert screen.sheet.view.shown == "master"
+    assert screen.sheet.view.pages.isVisible()
+
+
+def test_a_made_ingredient_that_is_opened_is_named_beside_the_lines(screen: Bench, qtbot: QtBot) -> None:
+    premix = screen.work.library.ingredient(PREMIX)
+    screen.work.do(lambda mill: edits.change(mill, premix, opened=True))
+    settled(screen, qtbot)
+    batch = screen.sheet.batch
+    assert batch is not None
+    assert not batch.to_make
+    assert PREMIX not in {line.ingredient_id for line in batch.lines}
+    assert "Opened: Premix" in screen.sheet.view.yielding.text()

@@ -17,7 +17,7 @@ from PySide6.QtWidgets import (
 
 from blendapp.desk.sheet.lines import LineModel
 from blendapp.desk.sheet.pages import PageView
-from blendapp.desk.sheet.words import yield_words
+from blendapp.desk.sheet.words import opened_words, yield_words
 from blendapp.desk.table.frozen import FrozenTable
 from blendapp.desk.theme import GAP_PX
 from blendapp.domain.batches import Batch, BatchPage, ToMake
@@ -128,7 +128,8 @@ class BatchView(QWidget):
 
     def say(self, batch: Batch | None) -> None:
         """Say what the batch gives and what must be made first; None says nothing."""
-        words = "" if batch is None else yield_words(batch)
+        parts = [] if batch is None else [opened_words(batch), yield_words(batch)]
+        words = "\n".join(part for part in parts if part)
         self.yielding.setText(words)
         self.yielding.setVisible(bool(words))
         while self.making.count():

@@ -27,6 +27,14 @@ def batch_words(batch: Batch) -> str:
     return "\n".join(lines)
 
 
+def opened_words(batch: Batch) -> str:
+    """Which made ingredients were opened, "" for none."""
+    names = dict.fromkeys(name for line in batch.lines for name in line.of_opened)
+    if not names:
+        return ""
+    return _("Opened: {names}. What it is made of stands among the lines.").format(names=", ".join(names))
+
+
 def yield_words(batch: Batch) -> str:
     """What leaves as feed of what is weighed, "" where nothing is lost and no water goes or comes."""
     if batch.yield_unknown:
