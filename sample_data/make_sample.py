@@ -1,4 +1,4 @@
-"""Makes the sample mill, mill.xlsx, and its price list, price_list.xlsx, from the tables beside this script.
+"""Makes the sample mill, its price list and its laboratory's list, as workbooks, from the tables beside this script.
 
     python sample_data/make_sample.py [FOLDER]
 
@@ -237,10 +237,19 @@ def price_workbook() -> Workbook:
     return book
 
 
+def laboratory_workbook() -> Workbook:
+    """A laboratory's list: samples, one far off what is in use, a name that is not known, amounts that are none."""
+    book = Workbook()
+    book.active.title = "Results"
+    write_sheet(book.active, plain_rows("laboratory"))
+    return book
+
+
 def main(folder: Path = HERE) -> None:
-    """Writes both workbooks into the folder."""
+    """Writes the three workbooks into the folder."""
     mill_workbook().save(folder / "mill.xlsx")
     price_workbook().save(folder / "price_list.xlsx")
+    laboratory_workbook().save(folder / "laboratory.xlsx")
 
 
 if __name__ == "__main__":

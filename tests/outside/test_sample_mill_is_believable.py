@@ -16,7 +16,7 @@ from blendapp.domain.formulas import Amounts
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import Fate
 from blendapp.domain.results import Result, Status
-from blendapp.services import made, prices, workbook
+from blendapp.services import composition, made, prices, workbook
 from blendapp.services.formulate import formulate
 from blendapp.services.mill import Mill
 
@@ -151,6 +151,15 @@ def test_the_price_list_has_plain_rows_and_one_of_each_thing_to_ask_or_ignore(mi
     assert sum(row.fate is Fate.ACCEPTED for row in rows) == len(rows) - 5 == 24
 
 
+def test_the_laboratory_s_list_has_samples_and_one_of_each_thing_to_ask_or_ignore(mill: Mill) -> None:
+    rows = composition.read_composition_list(mill, SAMPLE / "laboratory.xlsx", TODAY).rows
+    asked = [row.source_name for row in rows if row.fate is Fate.QUESTION]
+    assert asked == ["Sunflower meal", "Maize gluten feed"]
+    assert [row.source_name for row in rows if row.fate is Fate.IGNORED] == ["", "Mean"]
+    assert sum(row.fate is Fate.ACCEPTED for row in rows) == len(rows) - 4 == 7
+    assert sum("Left unknown" in row.reason for row in rows) == 2
+
+
 def test_the_workbook_warns_only_of_its_own_notes_and_of_admits_left_blank(tmp_path: Path) -> None:
     made, warnings = workbook.new_mill(tmp_path / "sample.mill", SAMPLE / "mill.xlsx")
     made.close()
@@ -178,7 +187,9 @@ def test_every_formula_has_steps_and_the_medicated_one_its_own(library: Library)
     assert {library.formula(key).name for key in own} == {"Broiler starter", "Broiler finisher"}
 
 
-@pytest.mark.parametrize(("file", "maker"), [("mill.xlsx", "mill_workbook"), ("price_list.xlsx", "price_workbook")])
+@pytest.mark.parametrize(("file", "maker"), [
+    ("mill.xlsx", "mill_workbook"), ("price_list.xlsx", "price_workbook"), ("laboratory.xlsx", "laboratory_workbook"),
+])
 def test_the_workbooks_are_what_their_script_makes(file: str, maker: str, script: ModuleType) -> None:
     assert cells(load_workbook(SAMPLE / file)) == cells(getattr(script, maker)())
 
