@@ -21,6 +21,8 @@ from blendapp.domain.wording import _
 from blendapp.services.mill import Edit, Mill, kind_of, problems_in_place, record_name
 
 TYPED = "typed"
+# Places that a refusal names one by one.
+_MOST_NAMED = 6
 
 
 # -- one field of one record
@@ -164,7 +166,10 @@ def remove_ingredient(mill: Mill, ingredient_id: int) -> Edit:
     blocking += [b.name for b in library.all("bin") if b.ingredient_id == ingredient_id]
     if blocking:
         text = _("{name} is still named by {places}; take it out there first.")
-        raise Refused(text.format(name=ingredient.name, places="; ".join(blocking)))
+        places = blocking[:_MOST_NAMED]
+        if len(blocking) > len(places):  # a laboratory's lists bring many lots
+            places.append(_("{count} more").format(count=len(blocking) - len(places)))
+        raise Refused(text.format(name=ingredient.name, places="; ".join(places)))
     rest: list[Record] = [*own, *library.values_of(ingredient_id).values(), *library.quotes_of(ingredient_id)]
     rest += [s for s in library.all("synonym") if s.ingredient_id == ingredient_id]
     what = _("Remove {name}").format(name=ingredient.name)

@@ -9,7 +9,7 @@ from pathlib import Path
 
 import pytest
 
-from blendapp.domain.composition_rows import CompositionReading
+from blendapp.domain.composition_rows import CompositionReading, CompositionRow
 from blendapp.domain.ingredients import Basis, Origin, Value
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import LEAVE_OUT, TAKE, Answer, Fate
@@ -18,7 +18,7 @@ from blendapp.domain.plant import Bin
 from blendapp.domain.problems import Refused
 from blendapp.domain.records import added
 from blendapp.services.composition import apply_composition_list, read_composition_list
-from blendapp.services.edits import set_value
+from blendapp.services.edits import change, remove_ingredient, remove_nutrient, set_value
 from blendapp.services.list_memory import remembered
 from blendapp.services.lists import applied_lists, open_list, roll_back
 from blendapp.services.mill import Mill
@@ -193,8 +193,6 @@ def test_a_value_that_was_changed_since_stays_and_is_said(mill: Mill, tmp_path: 
 
 
 def test_of_an_ingredient_the_dry_matter_alone_is_taken_back(mill: Mill, tmp_path: Path) -> None:
-    from blendapp.services.edits import change
-
     apply_composition_list(mill, read(mill, tmp_path, "lab.csv", LIST.replace("89.0", "90.5")), TODAY)
     assert mill.library.ingredient(MAIZE).dry_matter_percent == 88.5
     change(mill, mill.library.ingredient(MAIZE), note="bought in autumn")
@@ -234,3 +232,47 @@ def test_lists_of_both_kinds_stand_in_one_order(mill: Mill, tmp_path: Path) -> N
     apply_price_list(mill, read_price_list(mill, tmp_path / "prices.csv", TODAY), TODAY)
     assert [one.file_name for one in applied_lists(mill)] == ["prices.csv", "lab.csv"]
     assert [one.file_name for one in applied_lists(mill, ListAbout.PRICES)] == ["prices.csv"]
+
+
+def test_an_ingredient_with_many_samples_is_not_removed_and_the_reason_is_short(mill: Mill, tmp_path: Path) -> None:
+    rows = "".join(f"Maize,S{n},8.{n % 10}\n" for n in range(40))
+    apply_composition_list(mill, read(mill, tmp_path, "lab.csv", "Ingredient,Sample,CP % as fed\n" + rows), TODAY)
+    with pytest.raises(Refused, match="S5; 34 more"):
+        remove_ingredient(mill, MAIZE)
+    roll_back(mill, applied_lists(mill)[0].id)
+    remove_ingredient(mill, MAIZE)
+    assert MAIZE not in mill.library.records["ingredient"]
+
+
+def test_a_nutrient_that_is_gone_is_not_brought_back_by_rolling_back(mill: Mill, tmp_path: Path) -> None:
+    apply_composition_list(mill, read(mill, tmp_path, "lab.csv", LIST), TODAY)
+    remove_nutrient(mill, LYSINE)
+    done = roll_back(mill, applied_lists(mill)[0].id)
+    assert done.oddities == ()
+    assert value(mill, MAIZE, PROTEIN).amount == 8.5
+    assert mill.library.all("lot") == []
+
+
+def test_what_was_typed_between_two_lists_comes_back(mill: Mill, tmp_path: Path) -> None:
+    text = "Ingredient,Sample,CP % as fed\nMaize,{},{}\n"
+    apply_composition_list(mill, read(mill, tmp_path, "one.csv", text.format("A", 8.2)), TODAY)
+    set_value(mill, MAIZE, PROTEIN, 9.0)
+    typed = value(mill, MAIZE, PROTEIN)
+    apply_composition_list(mill, read(mill, tmp_path, "two.csv", text.format("B", 8.9)), TODAY)
+    roll_back(mill, applied_lists(mill)[0].id)
+    assert value(mill, MAIZE, PROTEIN) == typed
+    (said,) = roll_back(mill, applied_lists(mill)[1].id).oddities
+    assert "changed since" in said.text
+    assert value(mill, MAIZE, PROTEIN) == typed
+
+
+def test_it_holds_after_the_mill_was_closed_and_opened(
+    mill: Mill, tmp_path: Path, reopened: Callable[[Mill], Mill]
+) -> None:
+    before = mill.store.dump()["value"]
+    apply_composition_list(mill, read(mill, tmp_path, "lab.csv", LIST), TODAY)
+    again = reopened(mill)
+    samples = [row.sample for row in open_list(again, 1) if isinstance(row, CompositionRow)]
+    assert samples == ["", "A1", "A2", "A3", "B1"]
+    roll_back(again, 1)
+    assert again.store.dump()["value"] == before

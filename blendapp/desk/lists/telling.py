@@ -40,7 +40,7 @@ def question_words(one: Synonym) -> str:
         Asked.SUPPLIER: lambda: _("whose prices they are"),
         Asked.SITE: lambda: _("for which site they are"),
         Asked.NUTRIENT: lambda: _("the column is"),
-        Asked.CONCENTRATION: lambda: _("the unit of the column"),
+        Asked.CONCENTRATION: lambda: _("the unit of the column") if one.name else _("the unit of columns without one"),
         Asked.BASIS: lambda: _("the basis of the column") if one.name else _("the basis of all columns"),
         Asked.USUAL_CHANGE: lambda: _("a price may change without a question by"),
     }
