@@ -38,6 +38,8 @@ class Arrivals(QObject):
         self._patience = QTimer(self, singleShot=True, interval=PATIENCE_MS)
         self._patience.timeout.connect(self._say_wait)
         pane.arrived.connect(self._arrived)
+        # What was said of the list leaves with the next answer, before its reading says anything new.
+        pane.questions.answered.connect(lambda _answer: strip.clear())
         pane.reader.failed.connect(lambda _sentence: self._patience.stop())
         window.setAcceptDrops(True)
         for field in window.findChildren(QLineEdit):

@@ -287,6 +287,39 @@ def test_enter_on_a_row_goes_to_its_question_and_a_click_to_another(
     assert clerk.asked == "ingredient: Soya bean ml"
 
 
+def test_a_file_that_is_gone_meanwhile_is_said_and_no_answer_is_lost(
+    bench: Bench, clerk: Clerk, tmp_path: Path
+) -> None:
+    path = write(tmp_path / "list.xlsx", UNKNOWN_NAMES)
+    read(bench, path)
+    clerk.press(Qt.Key.Key_1)
+    path.rename(tmp_path / "moved.xlsx")
+    clerk.press(Qt.Key.Key_1)
+    assert "list.xlsx" in bench.strip.words.text()
+    assert bench.frame.middle.currentWidget() is bench.prices
+    assert count(bench, Fate.ACCEPTED) == 2
+    (tmp_path / "moved.xlsx").rename(path)
+    clerk.press(Qt.Key.Key_F5)
+    assert clerk.asked == "ingredient: Oddity"
+    assert fates(bench) == ["ignored", "accepted", "accepted", "ignored", "question"]
+
+
+def test_a_fault_of_the_reader_is_said_and_the_page_goes_on(
+    bench: Bench, clerk: Clerk, tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    def broken(*_arguments: object) -> None:
+        raise KeyError("a fault")
+
+    read(bench, write(tmp_path / "list.xlsx", UNKNOWN_NAMES))
+    bench.prices.reader.read = broken  # type: ignore[assignment]
+    clerk.press(Qt.Key.Key_1)
+    assert "KeyError" in bench.strip.words.text()
+    assert "a fault" in capsys.readouterr().err
+    bench.prices.reader.read = read_list
+    clerk.press(Qt.Key.Key_F5)
+    assert clerk.asked == "ingredient: Chalk"
+
+
 def test_the_next_question_does_not_wait_for_the_list_and_a_list_being_read_is_not_taken(
     bench: Bench, clerk: Clerk, tmp_path: Path
 ) -> None:

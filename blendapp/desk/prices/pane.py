@@ -112,7 +112,9 @@ class ListPane(QWidget):
 
     def _failed(self, sentence: str) -> None:
         self.said.emit(sentence, [])
-        self._say_state()
+        if self.reading is not None:
+            # What was answered meanwhile is kept for the next reading; until then the list stands as it was read.
+            self._show(False)
 
     def _forget(self) -> None:
         self.reader.forget_all()
@@ -264,7 +266,7 @@ class ListPane(QWidget):
         self.look.setVisible(session.about is ListAbout.PRICES)
         self.look.setEnabled(count > 0 and not running)
         before = taken_before(self.work.library, reading.digest) is not None
-        self.parts.remark.say(state_words(running=running, taken=taken, before=before))
+        self.parts.remark.say(state_words(session.about, running=running, taken=taken, before=before))
 
     def _show_only(self, fate: Fate | None) -> None:
         self._only = fate

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import traceback
 from collections.abc import Callable
 from pathlib import Path
 
@@ -13,6 +14,7 @@ from blendapp.desk.work import Work
 from blendapp.domain.list_rows import Answer, ListReading
 from blendapp.domain.mills import ListAbout
 from blendapp.domain.problems import Refused
+from blendapp.domain.wording import _
 from blendapp.services.arriving import read_list
 
 Read = Callable[..., ListReading]
@@ -60,7 +62,19 @@ class ListReader(QObject):
         library, on, read = self.work.library.copy(), self.work.on, self.read
         path, about, answers, source = session.path, session.about, tuple(session.answers), session.source
         self.running = True
-        self._aside.ask(lambda: read(library, path, on, about, answers, source))
+
+        def job() -> ListReading:
+            try:
+                return read(library, path, on, about, answers, source)
+            except (Refused, OSError, ValueError):
+                raise
+            except Exception as fault:
+                # A page that waits for ever would be worse; the trace is for whoever mends the program.
+                traceback.print_exc()
+                text = _("The program failed in reading {file} ({fault}); nothing was changed.")
+                raise Refused(text.format(file=path.name, fault=f"{type(fault).__name__}: {fault}")) from fault
+
+        self._aside.ask(job)
 
     def forget(self) -> None:
         """Nobody waits any more."""
@@ -107,9 +121,5 @@ class ListReader(QObject):
         self.came.emit(first)
 
     def _fail(self, sentence: str) -> None:
-        coming, self._coming = self._coming, None
-        if coming is None and self.session is not None and self.session.answers:
-            # The answer is what the reader stumbled over: it goes, and the list stands as before.
-            self.session.answers.pop()
-            self._ask(self.session)
+        self._coming = None
         self.failed.emit(sentence)

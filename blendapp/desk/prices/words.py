@@ -14,7 +14,7 @@ def take_words(about: ListAbout, count: int) -> str:
     return plural("Take {count} sample", "Take {count} samples", count).format(count=count)
 
 
-def state_words(*, running: bool, taken: bool, before: bool) -> str:
+def state_words(about: ListAbout, *, running: bool, taken: bool, before: bool) -> str:
     """How far a list has come. before: whether this very file was taken already."""
     if running:
         return _("reading…")
@@ -22,6 +22,8 @@ def state_words(*, running: bool, taken: bool, before: bool) -> str:
         return _("taken; Ctrl+Z takes it back")
     if before:
         return _("this very file was taken before; taking it again records everything a second time")
+    if about is ListAbout.COMPOSITION:
+        return _("nothing is stored before it is taken; the mean of an ingredient's samples becomes its value")
     return _("nothing is stored before it is taken")
 
 
