@@ -27,6 +27,9 @@ from blendapp.services import edits, mixing, plant
 from blendapp.services.mill import Edit, Mill
 
 
+PASSWORDS_PX = 420
+
+
 class MillPane(QWidget):
     """closed: back to the bench. said: a sentence with what can be listed below it. wanted: the page is to be shown.
 
@@ -86,6 +89,7 @@ class MillPane(QWidget):
         self._page("nutrients", _("Nutrients"), "", [("nutrient", _("Add a nutrient"), "", 1)])
         persons = self._page("persons", _("Persons"), _("Who prepares and approves; a person stays on record."),
                              [("person", _("Add a person"), "", 3)])
+        self.passwords.setFixedWidth(PASSWORDS_PX)
         persons.addWidget(self.passwords)
         persons.addStretch(1)
 
