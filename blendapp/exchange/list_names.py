@@ -13,7 +13,7 @@ from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
 from blendapp.domain.wording import _
 from blendapp.exchange.list_answers import Answers
-from blendapp.exchange.suggestions import Suggester
+from blendapp.exchange.suggestions import LONGEST_NAME, Suggester
 
 LEAST_LIKENESS = 0.5
 MOST_LOOKED_FOR = 1000
@@ -69,7 +69,7 @@ class NameFinder:
         self._suggester: Suggester | None = None
 
     def is_known(self, name: str) -> bool:
-        key = match_key(name)
+        key = match_key(name) if len(name) <= LONGEST_NAME else ""
         return bool(key) and (key in self._by_key or key in self._synonyms or self._answer(name) is not None)
 
     def _answer(self, name: str) -> Answer | None:
@@ -99,15 +99,15 @@ class NameFinder:
         exact: Ingredient | None = self.library.named("ingredient", name)
         if exact is not None:
             return Match(exact)
-        key = match_key(name)
-        same = self._by_key.get(key, [])
+        key = match_key(name) if len(name) <= LONGEST_NAME else ""
+        same = self._by_key.get(key, []) if key else []
         if len(same) == 1:
             return Match(same[0])
         if same:
             names = _(" or ").join(f"“{ingredient.name}”" for ingredient in same)
             return Match(None, _("“{name}” may be {names}; say which.").format(name=name, names=names),
                          candidates=tuple(ingredient.name for ingredient in same))
-        ids = sorted(self._synonyms.get(key, set()))
+        ids = sorted(self._synonyms.get(key, set())) if key else []
         known = [self.library.ingredient(key) for key in ids if key in self.library.records["ingredient"]]
         if len(known) == 1:
             return Match(known[0], _("Known as “{name}” from an earlier list.").format(name=name))

@@ -16,6 +16,8 @@ from blendapp.exchange.xlsx_styles import CellStyles, is_set, read_struck_texts,
 GREATEST_AREA = 5_000_000
 # What spreadsheets hold.
 MOST_COLUMNS = 16_384
+# Only those of headings are looked at, and they come first.
+MOST_MERGED = 20_000
 
 __all__ = ["ForbiddenEntities", "SheetScan", "TooFarOut", "careful_parser", "scan_sheets", "sheet_parts"]
 
@@ -156,7 +158,7 @@ class _Cells:
                 self.scan.hidden_rows.add(self.row)
         elif tag == "strike" and is_set(attributes):
             self.struck_run = True
-        elif tag == "mergeCell":
+        elif tag == "mergeCell" and len(self.scan.merged) < MOST_MERGED:
             self.scan.merged.append(attributes.get("ref", ""))
         elif tag == "col" and attributes.get("hidden") in ("1", "true"):
             first, last = int(attributes.get("min", 1)), int(attributes.get("max", 1))
