@@ -25,11 +25,14 @@ _NAME_HEADINGS = frozenset({
     "sample name", "sample description", "sample type", "product name", "material name", "ingredient name",
     "commodity name", "feed name", "type of sample", "sample material",
 })
-_SAMPLE_HEADINGS = frozenset({
-    "sample", "sample no", "sample number", "sample id", "sample code", "sample ref", "sample reference", "lot",
-    "lot no", "lot number", "lot id", "batch", "batch no", "batch number", "lab no", "lab number", "lab id", "lab code",
-    "lab ref", "laboratory no", "laboratory number", "reference", "ref", "id", "no", "number", "certificate",
-    "certificate no", "certificate number", "report no", "report number", "analysis no", "analysis number", "code",
+# A heading of these words alone, one of the numbered things among them, is that of sample numbers.
+_SAMPLE_WORDS = frozenset({
+    "sample", "samples", "lot", "batch", "lab", "laboratory", "certificate", "report", "analysis", "ref", "reference",
+    "no", "nr", "number", "id", "code", "our", "your", "internal", "of",
+})
+_SAMPLE_HEADINGS = frozenset({"no", "nr", "number", "analysis no", "analysis number"})
+_NUMBERED = frozenset({
+    "sample", "lot", "batch", "lab", "laboratory", "certificate", "report", "ref", "reference", "id", "code",
 })
 # The day that says most of the goods comes first.
 _DAY_HEADINGS = (
@@ -46,7 +49,8 @@ _NOTE_HEADINGS = frozenset({
     "place", "silo", "bin", "store", "grade", "class", "quality", "status", "country", "season", "week", "month",
     "year", "page", "line", "row", "pos", "position", "depot", "port", "vessel", "time", "kg", "sd", "std", "std dev",
     "stdev", "cv", "uncertainty", "error", "expanded uncertainty", "repeatability", "lod", "loq", "detection limit",
-    "min", "max", "minimum", "maximum", "limit", "spec", "specification", "guarantee", "target",
+    "min", "max", "minimum", "maximum", "limit", "spec", "specification", "guarantee", "target", "sr no", "s no",
+    "sl no", "serial no", "serial number", "row no", "line no", "item no",
 })
 # How many samples a row stands for.
 COUNT_HEADINGS = frozenset({"n", "count", "samples", "no of samples", "number of samples", "sample count"})
@@ -140,6 +144,9 @@ def role_of(
     ):
         if plain in headings:
             return role, match
+    tokens = frozenset(plain.split())
+    if tokens <= _SAMPLE_WORDS and tokens & _NUMBERED:
+        return ColumnRole.SAMPLE, match
     if heading and not plain and "%" not in heading:  # "±", "#"
         return ColumnRole.NOTE, match
     words = read_heading(heading)

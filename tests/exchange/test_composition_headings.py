@@ -355,6 +355,17 @@ def test_a_name_that_is_merged_over_several_samples_is_that_of_each() -> None:
     assert reading.rows[3].questions[0].asked is Asked.NAMELESS
 
 
+@pytest.mark.parametrize(("heading", "role"), [
+    ("Sample", "sample"), ("Lot/Batch", "sample"), ("Lab. No.", "sample"), ("Our ref", "sample"), ("Lab", "note"),
+    ("Certificate nr", "sample"), ("Batch number", "sample"), ("Sr. No", "note"), ("Truck", "note"),
+    ("Date of sampling", "day of the sample"),
+    ("Sampled", "day of the sample"), ("Supplier", "note"), ("Sample date", "day of the sample"), ("Order no", "note"),
+])
+def test_what_identifies_a_sample_is_told_from_what_does_not(heading: str, role: str) -> None:
+    reading = read([["Ingredient", heading, "CP % as fed"], ["Maize", "7", 8.4]])
+    assert reading.sheets[0].tables[0].columns[1].role.value == role
+
+
 def test_words_of_a_heading_are_told_apart() -> None:
     words = read_heading("Crude protein, % of the dry matter")
     assert (words.name, words.unit, str(words.basis)) == ("crude protein", "%", DRY)
