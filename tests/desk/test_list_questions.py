@@ -241,6 +241,22 @@ def test_escape_without_an_answer_goes_back_to_the_bench(bench: Bench, clerk: Cl
     assert bench.frame.middle.currentWidget() is bench.frame.bench
 
 
+def test_escape_in_a_table_goes_back_to_the_question_and_takes_nothing_back(
+    bench: Bench, clerk: Clerk, tmp_path: Path
+) -> None:
+    read(bench, write(tmp_path / "list.xlsx", UNKNOWN_NAMES))
+    clerk.press(Qt.Key.Key_1)
+    for table in (bench.prices.table, bench.prices.source):
+        table.setFocus()
+        clerk.press(Qt.Key.Key_Escape)
+        assert bench.prices.questions.has_keyboard()
+        assert count(bench, Fate.ACCEPTED) == 2
+    bench.prices.table.setFocus()
+    bench.prices.table.setCurrentIndex(bench.prices.rows.index(0, 0))
+    clerk.press(Qt.Key.Key_Backspace)
+    assert count(bench, Fate.ACCEPTED) == 1
+
+
 def test_what_was_answered_is_kept_while_the_mill_file_is_open(
     bench: Bench, clerk: Clerk, tmp_path: Path, mill_file: Path
 ) -> None:

@@ -87,6 +87,20 @@ def test_a_file_that_cannot_be_read_is_named_in_a_sentence(bench: Bench, tmp_pat
     assert "photo.xlsx" in bench.strip.words.text()
 
 
+def test_days_terms_and_a_price_for_dry_matter_stand_below_the_row(bench: Bench, tmp_path: Path) -> None:
+    from blendapp.services import edits
+
+    limestone = bench.work.library.ingredient(3)
+    bench.work.do(lambda mill: edits.change(mill, limestone, dry_matter_percent=90.0))
+    path = tmp_path / "list.csv"
+    path.write_text("Ingredient,USD/t DM,Terms,Valid from,Valid to\nLimestone,60,delivered,2030-01-07,2030-01-31\n")
+    read(bench, path)
+    assert shown(bench, "price") == ["54.00"]
+    detail = bench.prices.rows.detail_of(0)
+    assert detail.startswith("from 2030-01-07, to 2030-01-31, delivered, 60.00 per t of dry matter.")
+    assert "54.00 per t as fed at 90 % of dry matter" in detail
+
+
 def test_a_list_that_was_taken_says_so_and_is_not_taken_twice_by_a_second_key(
     bench: Bench, hands: Hands, price_list: Path
 ) -> None:

@@ -377,7 +377,12 @@ class ListPane(QWidget):
     def keyPressEvent(self, event: QKeyEvent) -> None:
         enter = event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter)
         if event.key() == Qt.Key.Key_Escape:
-            self._escape()
+            looking = self.parts.table.has_keyboard() or self.source.hasFocus()
+            if looking and (self.questions.current is not None or self.take.isEnabled()):
+                # From looking about back to what is to be done; nothing is taken back yet.
+                self.focus_first()
+            else:
+                self._escape()
         elif event.key() == Qt.Key.Key_Backspace:
             self.take_back()
         elif event.key() == Qt.Key.Key_F5:

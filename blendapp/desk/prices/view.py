@@ -26,6 +26,8 @@ class UnderstoodTable(DeskTable):
     def __init__(self, model: UnderstoodRows, parent: QWidget | None = None) -> None:
         super().__init__(model, parent, ruled=False)
         self.understood = model
+        # Nothing is typed here, so Tab goes on to the next part of the page.
+        self.setTabKeyNavigation(False)
         # After every view of the model was reset; heights are of no use before.
         self._soon = QTimer(self, singleShot=True, interval=0)
         self._soon.timeout.connect(self.lay)

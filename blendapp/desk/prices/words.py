@@ -9,6 +9,8 @@ from blendapp.domain.wording import _, plural
 
 def take_words(about: ListAbout, count: int) -> str:
     """What the button says that takes so many rows."""
+    if not count:
+        return _("Nothing to take yet")
     if about is ListAbout.PRICES:
         return plural("Take {count} price", "Take {count} prices", count).format(count=count)
     return plural("Take {count} sample", "Take {count} samples", count).format(count=count)
