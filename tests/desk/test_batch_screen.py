@@ -327,3 +327,24 @@ def test_a_made_ingredient_that_is_opened_is_named_beside_the_lines(screen: Benc
     assert not batch.to_make
     assert PREMIX not in {line.ingredient_id for line in batch.lines}
     assert "Opened: Premix" in screen.sheet.view.yielding.text()
+
+
+@pytest.mark.parametrize(("order", "kg"), [("1 t", 1000.0), ("2000 lb", 907.18474), ("1500", 1500.0)])
+def test_an_order_may_be_given_in_another_unit_of_mass(
+    screen: Bench, hands: Hands, qtbot: QtBot, order: str, kg: float
+) -> None:
+    screen.sheet.form.order.setFocus()
+    screen.sheet.form.order.selectAll()
+    hands.write(order)
+    assert screen.sheet.batch is None
+    settled(screen, qtbot)
+    assert screen.sheet.batch is not None
+    assert screen.sheet.batch.order_kg == pytest.approx(kg)
+
+
+def test_an_order_in_an_unknown_unit_says_which_are_known(screen: Bench, hands: Hands, qtbot: QtBot) -> None:
+    screen.sheet.form.order.setFocus()
+    screen.sheet.form.order.selectAll()
+    hands.write("5 stone")
+    qtbot.waitUntil(lambda: "stone" in screen.sheet.words.text(), timeout=5000)
+    assert "short ton" in screen.sheet.words.text()

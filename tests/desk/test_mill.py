@@ -5,6 +5,7 @@ from __future__ import annotations
 from PySide6.QtCore import Qt
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication
+from shiboken6 import isValid
 
 from blendapp.desk.bench import Bench
 from blendapp.desk.table.names import NameField
@@ -149,6 +150,23 @@ def test_a_name_that_is_not_written_out_is_not_guessed_when_the_cell_is_left(ben
     look = table.grid.look(0, 1)
     assert look.text == "ma"
     assert "no ingredient “ma”" in look.fault
+
+
+def test_escape_shuts_a_cell_with_candidates_and_leaves_the_page_where_it_is(bench: Bench, hands: Hands) -> None:
+    bench.show_mill("bins")
+    bench.mill.add("bin")
+    hands.write("Silo 1")
+    hands.key(Qt.Key.Key_Tab)
+    field = QApplication.focusWidget()
+    assert isinstance(field, NameField)
+    offered = field.list
+    hands.write("pe")
+    hands.key(Qt.Key.Key_Escape)
+    assert not isValid(offered) or not offered.isVisible()
+    assert bench.frame.middle.currentWidget() is bench.mill
+    assert bench.work.library.records["bin"][1].ingredient_id is None
+    hands.key(Qt.Key.Key_Escape)
+    assert bench.frame.middle.currentWidget() is bench.frame.bench
 
 
 def test_a_candidate_is_taken_by_a_click(bench: Bench, hands: Hands) -> None:

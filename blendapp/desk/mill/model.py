@@ -62,6 +62,7 @@ class RecordTable(Grid):
         super().__init__(parent)
         self.work = work
         self.shown = shown
+        self._names: dict[str, tuple[str, ...]] = {}
 
     @property
     def kind(self) -> str:
@@ -69,6 +70,7 @@ class RecordTable(Grid):
 
     def rebuild(self) -> None:
         """Show what the mill holds now. Sites are shown where the mill has some."""
+        self._names.clear()
         sites = bool(self.work.library.records["site"])
         self.set_headings([
             self._heading(field_of(self.kind, key), width) for key, width in self.shown.columns
@@ -110,7 +112,7 @@ class RecordTable(Grid):
             return number_look(value, fitting_decimals(value, 0), widest=field.decimals, editable=True, unknown="")
         if key in typed.LINKS:
             text = typed.shown_link(library, record, key)
-            names = tuple(sorted(typed.choices(library, record, key) or (), key=fold))
+            names = self._names_of(record, key)
             return Look(text=text, typed=text, editable=True, choices=names, hint=field.help_text)
         if isinstance(value, bool):
             text = _("yes") if value else _("no")
@@ -120,6 +122,15 @@ class RecordTable(Grid):
         if key == "unit":
             names = tuple(name for name in units.CONCENTRATION if name != "/kg")
         return Look(text=text, typed=text, editable=True, choices=names, hint=text if key in ("text", "note") else "")
+
+    def _names_of(self, record: Any, key: str) -> tuple[str, ...]:
+        """What a link may hold; of all but lots the same in every row, and a mill may have many ingredients."""
+        if key in self._names:
+            return self._names[key]
+        found = tuple(sorted(typed.choices(self.work.library, record, key) or (), key=fold))
+        if key != "lot_id":
+            self._names[key] = found
+        return found
 
     def write(self, owner: int, key: str, text: str) -> None:
         record = self.record(owner)

@@ -26,7 +26,6 @@ from blendapp.domain.wording import _
 from blendapp.services import edits, mixing, plant
 from blendapp.services.mill import Edit, Mill
 
-
 PASSWORDS_PX = 420
 
 

@@ -36,6 +36,7 @@ class StepRows(RecordTable):
 
     def rebuild(self) -> None:
         """Show what the mill holds now."""
+        self._names.clear()
         self.set_headings([
             Heading("position", field_of("mixing_step", "position").label, 56, True),
             *(self._heading(field_of(self.kind, key), width) for key, width in _COLUMNS),

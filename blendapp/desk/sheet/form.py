@@ -17,6 +17,7 @@ from blendapp.domain.notation import notation
 from blendapp.domain.versions import approved_version
 from blendapp.domain.wording import _
 from blendapp.services import batch as batches
+from blendapp.services import typed
 
 REWORK_ROWS = 4
 
@@ -146,7 +147,7 @@ class BatchForm(QWidget):
 
     def asked(self, fixed: dict[int, float]) -> AskedBatch:
         """What is asked for; raises ValueError for an order that is no mass."""
-        order_kg = notation().read(self.order.text())
+        order_kg = self._order_kg(self.order.text().strip())
         if order_kg <= 0:
             text = _("An order must be above 0 kg; {mass} is not.")
             raise ValueError(text.format(mass=self.order.text().strip()))
@@ -159,6 +160,17 @@ class BatchForm(QWidget):
             rework=self.rework.shares, previous_feed=said or None,
             clean_out=None if clean_out is None else CleanOut(clean_out),
         )
+
+    def _order_kg(self, text: str) -> float:
+        """An order in kg, or with another unit of mass behind it: "2 t", "4000 lb"."""
+        try:
+            return notation().read(text)
+        except ValueError:
+            if not text[:1].isdigit() or self.work.formula is None:
+                raise
+            kg = typed.read_typed(self.work.library, self.work.formula, "batch_kg", text)
+            assert kg is not None
+            return float(kg)
 
     @property
     def as_approved(self) -> bool:

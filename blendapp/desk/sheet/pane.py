@@ -58,7 +58,7 @@ class SheetPane(QWidget):
         self.reason, self.by = QLineEdit(), QLineEdit()
         self._last_fixed: int | None = None
         self._order_wrong = False
-        self._came_from: list[tuple[int, str]] = []
+        self._came_from: list[tuple[int, float]] = []
         self._rest = QTimer(self, singleShot=True, interval=REST_MS)
         self._rest.timeout.connect(self.make)
         # Whole numbers of scale steps may take a second or two to find.
@@ -305,15 +305,15 @@ class SheetPane(QWidget):
 
     def _make_first(self, one: ToMake) -> None:
         """Go to the batch of a made ingredient, with the mass that is needed, and remember where from."""
-        before, order = self.work.formula_id, self.form.order.text()
-        assert before is not None
-        self._go_to(one.formula_id, one.mass_kg, [*self._came_from, (before, order)])
+        batch = self.batch
+        if batch is not None:
+            self._go_to(one.formula_id, one.mass_kg, [*self._came_from, (batch.formula_id, batch.order_kg)])
 
     def _go_back(self) -> None:
-        formula_id, order = self._came_from[-1]
-        self._go_to(formula_id, notation().read(order), self._came_from[:-1])
+        formula_id, order_kg = self._came_from[-1]
+        self._go_to(formula_id, order_kg, self._came_from[:-1])
 
-    def _go_to(self, formula_id: int, order_kg: float, came_from: list[tuple[int, str]]) -> None:
+    def _go_to(self, formula_id: int, order_kg: float, came_from: list[tuple[int, float]]) -> None:
         self.work.choose(formula_id)
         self._came_from = came_from
         self.begin(order_kg)
@@ -325,7 +325,7 @@ class SheetPane(QWidget):
         if known:
             text = _("Back to the batch of {formula}, {kg} kg")
             formula = self.work.library.formula(known[-1][0]).name
-            self.back.setText(text.format(formula=formula, kg=known[-1][1]))
+            self.back.setText(text.format(formula=formula, kg=notation().write_short(known[-1][1], 3)))
             self.back.setAccessibleName(self.back.text())
 
     # -- to paper
