@@ -265,8 +265,10 @@ class _Reading(RowReading):
             return None
         found = said or beside
         if found is None and not column.words.says_unit:
-            fitting = [one for one in self.segment.notes.units if units.concentration(one[0]).family is family]
-            found = fitting[0] if len(fitting) == 1 and len(self.segment.notes.units) == 1 else None
+            noted = self.segment.notes.units
+            # "All values in %" is not said of zinc, which the mill keeps in mg/kg.
+            fits = len(noted) == 1 and (noted[0][0] in _PERCENT_OF_WHOLE) == (own in _PERCENT_OF_WHOLE)
+            found = noted[0] if fits and units.concentration(noted[0][0]).family is family else None
         if found is not None and units.concentration(found[0]).family is family:
             return found
         answered = self._answered_unit(column.heading)

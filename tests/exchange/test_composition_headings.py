@@ -127,6 +127,14 @@ def test_several_columns_without_a_unit_are_one_question_and_those_kept_in_other
     assert values_of(row)["Crude fat"] == (4, "g/kg", FED)
 
 
+def test_a_title_says_the_unit_of_what_is_kept_in_parts_of_the_whole() -> None:
+    rows = [["All values in % as fed"], ["Ingredient", "CP", "Zn"], ["Maize", 8.4, 22]]
+    reading = read(rows)
+    assert asked(reading) == {("concentration", "Zn")}
+    (row,) = read(rows, Answer(Asked.CONCENTRATION, "Zn", "mg/kg")).accepted
+    assert values_of(row) == {"Crude protein": (8.4, "%", FED), "Zinc": (22, "mg/kg", FED)}
+
+
 @pytest.mark.parametrize("heading", ["Lys (% CP)", "Lysine, % of crude protein", "Lysine g/16 g N"])
 def test_a_part_of_the_protein_is_no_part_of_the_material(heading: str) -> None:
     (question,) = read([["Ingredient", heading, "CP % as fed"], ["Maize", 3, 8.4]]).questions
