@@ -108,6 +108,7 @@ class Bench(QObject):
         self.sheet.form.order.textEdited.connect(self.strip.clear)
         self.sheet.form.paper.activated.connect(self.strip.clear)
         self.sheet.printed_wanted.connect(self.show_printed)
+        self.sheet.scale_wanted.connect(self.to_scale_of)
         self.printed.sheet_wanted.connect(self.show_sheet)
         self.strip.resized.connect(self.frame.place_strip)
         self.frame.middle.currentChanged.connect(
@@ -377,6 +378,13 @@ class Bench(QObject):
         self.have.filter.clear()
         self.go_to_zone(0)
         self.have.table.go_to(ingredient_id, "name")
+
+    def to_scale_of(self, ingredient_id: int) -> None:
+        """Show where an ingredient gets its scale."""
+        self.have.filter.clear()
+        self.have.show_set("keeping")
+        self.go_to_zone(0)
+        self.have.table.go_to(ingredient_id, "scale_id")
 
     def to_nutrient(self, nutrient_id: int) -> None:
         """Show a nutrient's column in the first zone."""

@@ -348,3 +348,19 @@ def test_an_order_in_an_unknown_unit_says_which_are_known(screen: Bench, hands: 
     hands.write("5 stone")
     qtbot.waitUntil(lambda: "stone" in screen.sheet.words.text(), timeout=5000)
     assert "short ton" in screen.sheet.words.text()
+
+
+def test_an_ingredient_without_a_scale_leads_to_where_it_gets_one(screen: Bench, hands: Hands, qtbot: QtBot) -> None:
+    maize = screen.work.library.ingredient(1)
+    screen.work.do(lambda mill: edits.change(mill, maize, scale_id=None))
+    qtbot.waitUntil(screen.sheet.give_scale.isVisible, timeout=20000)
+    assert "Maize" in screen.sheet.words.text()
+    hands.click(screen.sheet.give_scale)
+    assert screen.frame.middle.currentWidget() is screen.frame.bench
+    assert screen.have.table.hasFocus()
+    hands.write("big")
+    hands.key(Qt.Key.Key_Return)
+    assert screen.work.library.ingredient(1).scale_id == 1
+    screen.show_sheet()
+    settled(screen, qtbot)
+    assert not screen.sheet.give_scale.isVisible()

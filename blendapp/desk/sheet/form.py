@@ -69,6 +69,7 @@ class BatchForm(QWidget):
         paper = QFormLayout()
         paper.setSpacing(GAP_PX)
         paper.setLabelAlignment(Qt.AlignmentFlag.AlignLeft)
+        self.order.setToolTip(_("In kg, or with a unit behind it: 2 t, 4000 lb"))
         self._row(paper, _("Paper"), self.paper)
         self._row(paper, _("Masses in"), self.mass)
         column = QVBoxLayout(self)

@@ -39,10 +39,12 @@ SIDE_PX = 312
 
 
 class SheetPane(QWidget):
-    """closed: back to the bench. printed_wanted: to the printed sheets. said: a sentence and a list below it."""
+    """closed: back to the bench. printed_wanted: to the printed sheets. scale_wanted: to where an ingredient gets its
+    scale. said: a sentence and a list below it."""
 
     closed = Signal()
     printed_wanted = Signal()
+    scale_wanted = Signal(int)
     said = Signal(str, list)
 
     def __init__(self, work: Work) -> None:
@@ -74,6 +76,9 @@ class SheetPane(QWidget):
         self.back.setObjectName("left")
         self.back.setAccessibleName(_("Back to the batch before"))
         self.back.hide()
+        self.give_scale = QPushButton(_("Choose its scale…"))
+        self.give_scale.setObjectName("plain")
+        self.give_scale.hide()
         self.accepting = QWidget()
         accept = QFormLayout(self.accepting)
         accept.setContentsMargins(0, 0, 0, 0)
@@ -91,7 +96,7 @@ class SheetPane(QWidget):
         side = QVBoxLayout(inside)
         side.setContentsMargins(0, 0, GAP_PX, GAP_PX)
         side.setSpacing(GAP_PX + 4)
-        for widget in (title, self.back, self.form, self.words, self.accepting):
+        for widget in (title, self.back, self.form, self.words, self.give_scale, self.accepting):
             side.addWidget(widget)
         side.addStretch(1)
         for button in (self.printed, self.leave):
@@ -117,6 +122,7 @@ class SheetPane(QWidget):
         self.back.clicked.connect(self._go_back)
         self.printed.clicked.connect(self.printed_wanted)
         self.leave.clicked.connect(self.closed)
+        self.give_scale.clicked.connect(self._ask_scale)
         view.table.cleared.connect(self._let_free)
         view.table.pasted.connect(self._paste)
         view.turned.connect(lambda _key: self._draw())
@@ -235,6 +241,7 @@ class SheetPane(QWidget):
         self.form.say_before(found)
         if found.cause is not None:
             self._refuse(found.cause)
+            self.give_scale.setVisible(self._unscaled() is not None)
             return
         self.batch = found
         self._show(found)
@@ -294,12 +301,28 @@ class SheetPane(QWidget):
 
     def _say(self, words: str, *, ready: bool) -> None:
         self._order_wrong = False
+        self.give_scale.hide()
         self.words.setFont(text_font())
         self.words.setText(words)
         batch = self.batch
         self.accepting.setVisible(ready and batch is not None and (bool(batch.broken) or batch.lacks_clean_out))
         for button in (self.view.print_button, self.view.save_button):
             button.setEnabled(ready and self.work.mill.writable)
+
+    # -- what is lacking
+
+    def _unscaled(self) -> int | None:
+        """The first ingredient of today's mix that no scale weighs, where the mill has scales."""
+        result, library = self.work.stored_result, self.work.library
+        if result is None or not library.scales:
+            return None
+        found = (one.ingredient_id for one in result.mix if library.ingredient(one.ingredient_id).scale_id is None)
+        return next(found, None)
+
+    def _ask_scale(self) -> None:
+        ingredient_id = self._unscaled()
+        if ingredient_id is not None:
+            self.scale_wanted.emit(ingredient_id)
 
     # -- what must be made first
 
