@@ -10,7 +10,7 @@ from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
 from blendapp.exchange.composition_words import read_heading
-from blendapp.exchange.list_cells import place
+from blendapp.exchange.list_cells import number_doubt, place
 from blendapp.exchange.list_numbers import (
     DecimalSign,
     decide_decimal_sign,
@@ -102,10 +102,5 @@ def _text_cell(text: str, sign: DecimalSign | None, spreadsheet: bool) -> Result
         return ResultCell(entered=text, doubt=doubt)
     value = value_in_column(number, sign)
     if value is None:
-        values = [PLAIN.write_exact(one) for one in number.readings.values()]
-        if len(values) == 2:
-            doubt = _("“{text}” may be {first} or {second}, and the column does not tell; say which.").format(
-                text=text, first=values[0], second=values[1]
-            )
-        return ResultCell(entered=text, doubt=doubt, both_ways=len(values) == 2)
+        return ResultCell(entered=text, doubt=number_doubt(text, number), both_ways=len(number.readings) == 2)
     return ResultCell(value, text, unit=words.unit, factor=words.factor, basis=words.basis, as_text=spreadsheet)

@@ -6,6 +6,7 @@ import re
 
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
+from blendapp.exchange.list_numbers import NumberText
 from blendapp.exchange.tables import CellKind, CellValue, RawTable, column_letters, kind_of
 
 _LONG = 240
@@ -52,3 +53,12 @@ def first_text(raw: RawTable, row: int) -> str:
             assert isinstance(value, float | int)
             return PLAIN.write_exact(float(value))
     return ""
+
+
+def number_doubt(text: str, found: NumberText) -> str:
+    """The sentence for a number that its column does not tell how to read."""
+    values = [PLAIN.write_exact(value) for value in found.readings.values()]
+    if len(values) == 2:
+        sentence = _("“{text}” may be {first} or {second}, and the column does not tell; say which.")
+        return sentence.format(text=text, first=values[0], second=values[1])
+    return _("“{text}” is not written as the other numbers of its column are; say what it is.").format(text=text)

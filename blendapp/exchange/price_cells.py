@@ -9,10 +9,10 @@ from dataclasses import dataclass
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
-from blendapp.exchange.list_cells import place
+from blendapp.exchange.list_cells import number_doubt, place
 from blendapp.exchange.list_numbers import DecimalSign, decide_decimal_sign, value_in_column
 from blendapp.exchange.price_columns import PriceColumn
-from blendapp.exchange.price_numbers import NO_PRICE, PriceText, read_price_text
+from blendapp.exchange.price_numbers import NO_PRICE, read_price_text
 from blendapp.exchange.price_words import NO_MONEY, Money, money_of_format
 from blendapp.exchange.tables import CellKind, PercentCell, RawTable, kind_of
 
@@ -76,16 +76,8 @@ def _text_cell(text: str, sign: DecimalSign | None, spreadsheet: bool) -> PriceC
         return PriceCell(entered=text, doubt=_("“{text}” is not one price.").format(text=text), wordy=wordy)
     value = value_in_column(found, sign)
     if value is None:
-        return PriceCell(entered=text, doubt=_both_ways(text, found), money=found.money, unit=found.unit,
+        return PriceCell(entered=text, doubt=number_doubt(text, found), money=found.money, unit=found.unit,
                          both_ways=len(found.readings) == 2)
     return PriceCell(
         value, entered=text, money=found.money, unit=found.unit, as_text=spreadsheet, dry=found.dry
     )
-
-
-def _both_ways(text: str, found: PriceText) -> str:
-    values = [PLAIN.write_exact(value) for value in found.readings.values()]
-    if len(values) == 2:
-        sentence = _("“{text}” may be {first} or {second}, and the column does not tell; say which.")
-        return sentence.format(text=text, first=values[0], second=values[1])
-    return _("“{text}” is not written as the other numbers of its column are; say what it is.").format(text=text)
