@@ -1,6 +1,7 @@
 """Reading tables against a bare default openpyxl load of the same file: a workbook of 2,000 ingredients, a price list.
 
-Bare and ours in turn in one process, so that both meet the same load; medians of paired ratios.
+Bare and ours in turn in one process, so that both meet the same load; medians of paired ratios. Memory: the most that
+a process of its own holds, less what it holds before it reads, with the process that parses (from /proc, Linux only).
 Run: python tests/benchmarks/bench_import.py
 """
 
@@ -10,9 +11,10 @@ import argparse
 import datetime
 import random
 import statistics
+import subprocess
+import sys
 import tempfile
 import time
-import tracemalloc
 from collections.abc import Callable
 from pathlib import Path
 
@@ -71,15 +73,38 @@ def seconds(job: Callable[[], object]) -> float:
     return time.perf_counter() - begun
 
 
-def peak(job: Callable[[], object]) -> int:
-    tracemalloc.start()
-    job()
-    found = tracemalloc.get_traced_memory()[1]
-    tracemalloc.stop()
-    return found
+_HELD = """
+import sys
+def most(process="self"):
+    return int(next(line for line in open(f"/proc/{process}/status") if line.startswith("VmHWM")).split()[1])
+from blendapp.domain.library import Library
+from blendapp.exchange import parsing, read_price_list, read_workbook
+import datetime, openpyxl
+path, what, source = sys.argv[1:]
+today = datetime.date(2026, 3, 2)
+library = Library()
+if source:
+    library.apply(read_workbook(source, Library(), {}, today).changes)
+    parsing.end_process()
+ids = {kind: len(found) + 1 for kind, found in library.records.items()}
+before = most()
+found = {
+    "bare": lambda: openpyxl.load_workbook(path), "workbook": lambda: read_workbook(path, library, ids, today),
+    "prices": lambda: read_price_list(path, library, today),
+}[what]()
+print(most() - before + (0 if parsing._kept is None else most(parsing._kept._process.pid)))
+"""
 
 
-def compare(name: str, path: Path, ours: Callable[[], object], runs: int) -> None:
+def held_kb(path: Path, what: str, source: Path | str) -> int:
+    """The most memory held to read a file, in kB. source: a workbook whose library is filled before, "" for none."""
+    done = subprocess.run(
+        [sys.executable, "-c", _HELD, str(path), what, str(source)], check=True, capture_output=True, text=True
+    )
+    return int(done.stdout)
+
+
+def compare(name: str, path: Path, ours: Callable[[], object], runs: int, what: str, source: Path | str) -> None:
     def bare() -> object:
         return openpyxl.load_workbook(path)
 
@@ -88,8 +113,9 @@ def compare(name: str, path: Path, ours: Callable[[], object], runs: int) -> Non
     pairs = [(seconds(bare), seconds(ours)) for _run in range(runs)]
     ratio = statistics.median(b / a for a, b in pairs)
     plain, own = (statistics.median(side) * 1000 for side in zip(*pairs, strict=True))
-    memory = peak(ours) / peak(bare)
-    print(f"{name}: {ratio:.2f} times a bare load ({own:.0f} ms to {plain:.0f} ms), Python memory {memory:.2f} times")
+    most, least = held_kb(path, what, source), held_kb(path, "bare", "")
+    print(f"{name}: {ratio:.2f} times a bare load ({own:.0f} ms to {plain:.0f} ms), "
+          f"memory {most / least:.2f} times ({most / 1024:.0f} MB to {least / 1024:.0f} MB)")
 
 
 def main() -> None:
@@ -102,15 +128,17 @@ def main() -> None:
         library = Library()
         library.apply(read_workbook(workbook, Library(), {}, TODAY).changes)
         compare("workbook, 2,000 x 30, into an empty library", workbook,
-                lambda: read_workbook(workbook, Library(), {}, TODAY), asked.runs)
+                lambda: read_workbook(workbook, Library(), {}, TODAY), asked.runs, "workbook", "")
         ids = {kind: len(found) + 1 for kind, found in library.records.items()}
         compare("workbook, 2,000 x 30, into the same library", workbook,
-                lambda: read_workbook(workbook, library, ids, TODAY), asked.runs)
+                lambda: read_workbook(workbook, library, ids, TODAY), asked.runs, "workbook", workbook)
         prices = Path(folder, "prices.xlsx")
         make_price_list(prices, library, 5000, 20)
-        compare("price list, 5,000 x 20", prices, lambda: read_price_list(prices, library, TODAY), asked.runs)
+        compare("price list, 5,000 x 20", prices, lambda: read_price_list(prices, library, TODAY), asked.runs, "prices",
+                workbook)
         make_price_list(prices, library, 5000, 20, '"$"#,##0.00')
-        compare("the same with currency formats", prices, lambda: read_price_list(prices, library, TODAY), asked.runs)
+        compare("the same with currency formats", prices, lambda: read_price_list(prices, library, TODAY), asked.runs,
+                "prices", workbook)
 
 
 if __name__ == "__main__":
