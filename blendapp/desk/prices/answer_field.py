@@ -19,6 +19,10 @@ _FIGURE_PX, _DAY_PX = 110, 120
 class AnswerField(QLineEdit):
     """A line that leaves undo and redo to the page while nothing is typed in it."""
 
+    def __init__(self) -> None:
+        super().__init__()
+        self.setAccessibleName(_("Answer"))
+
     def event(self, event: QEvent) -> bool:
         if isinstance(event, QKeyEvent) and event.type() == QEvent.Type.ShortcutOverride and not self.text() and (
             event.matches(QKeySequence.StandardKey.Undo) or event.matches(QKeySequence.StandardKey.Redo)

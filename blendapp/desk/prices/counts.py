@@ -5,7 +5,7 @@ from __future__ import annotations
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QButtonGroup, QHBoxLayout, QLabel, QPushButton, QWidget
 
-from blendapp.desk.prices.understood import counts
+from blendapp.desk.prices.understood import counts, fate_word
 from blendapp.domain.list_rows import Fate, ListReading
 from blendapp.domain.wording import _, plural
 
@@ -25,7 +25,7 @@ class FateCounts(QWidget):
         row.setSpacing(2)
         row.addWidget(self.read)
         for fate in (None, Fate.ACCEPTED, Fate.QUESTION, Fate.REFUSED, Fate.IGNORED):
-            button = self.buttons[fate] = QPushButton()
+            button = self.buttons[fate] = QPushButton("" if fate is None else fate_word(fate))
             button.setObjectName("set")
             button.setCheckable(True)
             button.clicked.connect(lambda _checked=False, fate=fate: self.chosen.emit(fate))

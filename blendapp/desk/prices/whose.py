@@ -31,8 +31,8 @@ class Whose(QWidget):
         self.finder, self.ask = finder, ask
         self.library = Library()
         self.source_name = ""
-        self.source, self.supplier, self.site = QPushButton(), QPushButton(), QPushButton()
-        self.memory = QPushButton()
+        self.source, self.supplier = QPushButton(_("Whose list it is")), QPushButton(_("Supplier"))
+        self.site, self.memory = QPushButton(_("Site")), QPushButton(_("Answers remembered"))
         row = QHBoxLayout(self)
         row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(GAP_PX)
