@@ -172,6 +172,7 @@ def test_a_preview_says_the_same_and_stores_nothing(
     assert bench.work.library.price_per_t(1, bench.work.on) == 200
     hands.key(Qt.Key.Key_Escape)
     assert bench.frame.middle.currentWidget() is bench.prices
+    assert bench.prices.questions.has_keyboard()
     hands.click(bench.prices.take)
     worked_out(bench, qtbot)
     assert {key: text(bench, key, "after") for key in (1, 2)} == before

@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 from PySide6.QtCore import QModelIndex, Qt, Signal
-from PySide6.QtGui import QKeyEvent, QResizeEvent, QShowEvent
+from PySide6.QtGui import QFocusEvent, QKeyEvent, QResizeEvent, QShowEvent
 from PySide6.QtWidgets import QWidget
 
 from blendapp.desk.finder.ask import Ask
@@ -138,6 +138,11 @@ class ListPane(QWidget):
         self.parts.share_width()
         if self._stale:
             self.again()
+
+    def focusInEvent(self, event: QFocusEvent) -> None:
+        """The page itself takes no keys; what is to be done does."""
+        if self.reading is not None:
+            self.focus_first()
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
