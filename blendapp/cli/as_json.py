@@ -9,7 +9,7 @@ from typing import Any
 
 from blendapp.domain.batches import Batch
 from blendapp.domain.formulas import Amounts
-from blendapp.domain.price_rows import PriceListReading, PriceRow
+from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.results import Conflict, IngredientResult, LimitResult, Result
 
 
@@ -102,14 +102,6 @@ def _conflict(conflict: Conflict) -> dict[str, Any]:
         ],
         "members": list(conflict.members),
         "repairs": [{"limit": r.limit, "bound": str(r.bound), "from": r.frm, "to": r.to} for r in conflict.repairs],
-    }
-
-
-def prices(reading: PriceListReading, applied: bool) -> dict[str, Any]:
-    return {
-        "currency": reading.currency,
-        "rows": [price_row(row) for row in reading.rows],
-        "applied": applied,
     }
 
 

@@ -6,9 +6,8 @@ from collections.abc import Iterable, Sequence
 
 from blendapp.domain.figures import write_measure, write_shadow_price
 from blendapp.domain.formulas import Amounts
-from blendapp.domain.list_rows import Fate
 from blendapp.domain.notation import notation
-from blendapp.domain.price_rows import PriceListReading, PriceRow
+from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.results import Conflict, LimitResult, Result, Side
 from blendapp.domain.wording import _
 
@@ -148,15 +147,6 @@ def _side(one: LimitResult, side: str, value: float, costs: bool) -> str:
     """One side of a shadow price; a cost below 0 is a saving."""
     text = _("1 {unit} {side} costs {money}") if costs and value > 0 else _("1 {unit} {side} saves {money}")
     return text.format(unit=one.unit or _("unit"), side=side, money=write_shadow_price(abs(value)))
-
-
-def prices(reading: PriceListReading, applied: bool) -> str:
-    """Every row with its fate, and the counts."""
-    lines = price_rows(reading.rows, reading.currency)
-    lines += [f"  {note}" for note in reading.notes]
-    counts = ", ".join(f"{_(fate)} {reading.count(fate)}" for fate in Fate)
-    lines += ["", f"  {counts}. " + (_("Recorded.") if applied else _("Nothing recorded."))]
-    return "\n".join(lines)
 
 
 def price_rows(listed: Iterable[PriceRow], currency: str) -> list[str]:

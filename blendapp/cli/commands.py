@@ -93,6 +93,7 @@ def _formulate(given: argparse.Namespace) -> int:
 
 
 def _prices(given: argparse.Namespace) -> int:
+    from blendapp.services.answering import answered
     from blendapp.services.effect_table import effect_of, summary, write_effect
     from blendapp.services.prices import apply_price_list, read_price_list
 
@@ -102,8 +103,10 @@ def _prices(given: argparse.Namespace) -> int:
             raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
         if given.effect is not None:
             _refuse_effect(given)
-        answers = lists.sender_answers(mill.library, given)
-        reading = read_price_list(mill, given.list, today, given.sheet, answers, given.source)
+        reading = answered(
+            mill.library, lambda known: read_price_list(mill, given.list, today, given.sheet, known, given.source),
+            given.answer, today, lists.sender_answers(mill.library, given),
+        )
         if given.effect is not None:
             # Before anything is recorded, so that a file that cannot be written leaves the mill as it was.
             moved = effect_of(mill.library, reading, today, mill.answers.view())
@@ -113,9 +116,9 @@ def _prices(given: argparse.Namespace) -> int:
             apply_price_list(mill, reading, today)
     if given.json:
         written = {} if given.effect is None else {"effect": given.effect}
-        _print(as_json.text_of({**as_json.prices(reading, applied), **written}))
+        _print(as_json.text_of({**lists.prices_json(reading, applied), **written}))
     else:
-        _print(as_text.prices(reading, applied))
+        _print(lists.prices_text(reading, applied))
         if given.effect is not None:
             _print("  " + _("{summary}; the table is in {file}.").format(
                 summary=summary(moved).rstrip("."), file=given.effect))
@@ -123,6 +126,7 @@ def _prices(given: argparse.Namespace) -> int:
 
 
 def _composition(given: argparse.Namespace) -> int:
+    from blendapp.services.answering import answered
     from blendapp.services.approved import outside_their_limits
     from blendapp.services.composition import apply_composition_list, read_composition_list
 
@@ -130,7 +134,11 @@ def _composition(given: argparse.Namespace) -> int:
     with _Open(given.mill) as mill:
         if given.apply and not mill.writable:
             raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
-        reading = read_composition_list(mill, given.list, today, given.sheet, source=given.source)
+        reading = answered(
+            mill.library,
+            lambda known: read_composition_list(mill, given.list, today, given.sheet, known, given.source),
+            given.answer, today,
+        )
         applied = bool(given.apply and reading.accepted)
         if applied:
             apply_composition_list(mill, reading, today)

@@ -13,7 +13,7 @@ from blendapp.domain.library import Library
 from blendapp.domain.list_rows import Answer, Fate, ListReading, ListRow
 from blendapp.domain.mills import Asked, ListAbout, PriceList
 from blendapp.domain.nutrients import DRY_MATTER
-from blendapp.domain.price_rows import PriceRow
+from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.wording import _
 
@@ -42,8 +42,40 @@ def sender_answers(library: Library, given: argparse.Namespace) -> list[Answer]:
     return answers
 
 
+def question_lines(reading: ListReading) -> list[str]:
+    """Every open question, as --answer names it, with what may be answered."""
+    from blendapp.services.answering import questions
+
+    lines = []
+    for name, question in questions(reading):
+        choices = "; ".join(question.choices)
+        lines.append(f"  --answer \"{name}=…\"   {question.text}" + (f" [{choices}]" if choices else ""))
+    return ["", _("Questions that can be answered:"), *lines] if lines else []
+
+
+def questions_json(reading: ListReading) -> list[dict[str, Any]]:
+    from blendapp.services.answering import questions
+
+    return [{"question": name, "text": one.text, "choices": list(one.choices)} for name, one in questions(reading)]
+
+
+def prices_json(reading: PriceListReading, applied: bool) -> dict[str, Any]:
+    """A price list, with what it leaves open."""
+    return {
+        "currency": reading.currency, "rows": [as_json.price_row(row) for row in reading.rows],
+        "questions": questions_json(reading), "applied": applied,
+    }
+
+
+def prices_text(reading: PriceListReading, applied: bool) -> str:
+    """Every row of a price list with its fate, what can be answered, and the counts."""
+    lines = [*as_text.price_rows(reading.rows, reading.currency), *question_lines(reading)]
+    return "\n".join([*lines, *_closing(reading, applied)])
+
+
 def composition_json(reading: CompositionReading, applied: bool) -> dict[str, Any]:
-    return {"rows": [_row_json(row) for row in reading.rows], "applied": applied}
+    rows = [_row_json(row) for row in reading.rows]
+    return {"rows": rows, "questions": questions_json(reading), "applied": applied}
 
 
 def _row_json(row: CompositionRow) -> dict[str, Any]:
@@ -88,7 +120,7 @@ def composition_text(
             for one in means
         ]
         lines += ["", *as_text.table(heads, rows, (False, False, True, False, False, True, True, True))]
-    lines += _closing(reading, applied)
+    lines += [*question_lines(reading), *_closing(reading, applied)]
     for one in outside:
         text = _("{formula}, version {version}, is outside its limits:")
         lines.append("  ! " + text.format(formula=one.formula, version=one.version))

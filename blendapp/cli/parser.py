@@ -181,6 +181,10 @@ def _of_a_list(command: argparse.ArgumentParser) -> None:
     command.add_argument(
         "--source", default="", metavar="NAME", help=_("whom it is from; else as its name, title or folder tell")
     )
+    command.add_argument(
+        "--answer", action="append", default=[], metavar="QUESTION=ANSWER",
+        help=_("answer a question as the list shows it, such as \"unit: ton=short ton\"; may be given several times"),
+    )
 
 
 def _command(

@@ -84,6 +84,7 @@ PRICES = {
         "source_name": {TEXT, NULL}, "ingredient": {TEXT, NULL}, "price_per_t": FIGURE, "unit": {TEXT, NULL},
         "valid_from": {TEXT, NULL}, "old_price_per_t": FIGURE,
     }],
+    "questions": [{"question": {TEXT}, "text": {TEXT}, "choices": [{TEXT}]}],
     "applied": {YES_NO},
 }
 
@@ -95,6 +96,7 @@ COMPOSITION = {
         "values": [{"nutrient": {TEXT}, "amount": {NUMBER}, "unit": {TEXT}, "basis": {"as fed", "dry matter"},
                     "old": FIGURE}],
     }],
+    "questions": [{"question": {TEXT}, "text": {TEXT}, "choices": [{TEXT}]}],
     "applied": {YES_NO},
 }
 
