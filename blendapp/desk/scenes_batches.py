@@ -15,7 +15,7 @@ from blendapp.domain.versions import Snapshot
 from blendapp.services import edits, people, sheets, versions
 
 if TYPE_CHECKING:
-    from blendapp.desk.scenes import Studio
+    from blendapp.desk.studio import Studio
 
 
 def mill(studio: Studio, bench: Bench, _price_list: Path) -> None:

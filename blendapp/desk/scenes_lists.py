@@ -16,7 +16,7 @@ from blendapp.services.lists import roll_back
 from blendapp.services.prices import apply_price_list, read_price_list
 
 if TYPE_CHECKING:
-    from blendapp.desk.scenes import Studio
+    from blendapp.desk.studio import Studio
 
 DAY = datetime.timedelta(days=1)
 

@@ -12,7 +12,7 @@ from blendapp.domain.list_rows import Fate
 from blendapp.domain.mills import ListAbout
 
 if TYPE_CHECKING:
-    from blendapp.desk.scenes import Studio
+    from blendapp.desk.studio import Studio
 
 MESSY = """North Quay Meals: prices of the week
 Valid from 2026-12-07 and subject to confirmation

@@ -102,6 +102,8 @@ def places_to_name(batch: Batch, page: BatchPage, width: float) -> list[Block]:
         row = [
             Field(_("Made on")), Field(_("Made by"), 1.8),
         ]
+        if not batch.place:
+            row.insert(0, Field(_("Which of the {count} equal batches").format(count=batch.batches), 1.2))
     return [forms.fields(row, width, gap=10)] if row and batch.lines else []
 
 

@@ -24,14 +24,19 @@ from blendapp.domain.wording import _, plural
 _WITHDRAWAL = Style(12, BOLD, leading=15)
 # Cautions higher than this would push the weighing off the first page: they follow it, and the sheet says so above it.
 _MOST_CAUTIONS = 120.0
+MOST_SHEETS = 60
 
 
 def draw(batch: Batch, page: BatchPage, paper: Paper) -> bytes:
-    """The page as a PDF; of a sheet one for each of the equal batches, unless batch.place names one."""
+    """The page as a PDF; of a sheet one for each of the equal batches, unless batch.place names one.
+
+    An order of more than MOST_SHEETS batches has one sheet with room to write which of them it is.
+    """
     if page is not BatchPage.SHEET:
         # A record of a version has no number of its own and is no copy of a sheet.
         batch = dataclasses.replace(batch, number=None, copy=0)
-    places = range(1, batch.batches + 1) if page is BatchPage.SHEET and batch.lines and not batch.place else ()
+    each_has_one = page is BatchPage.SHEET and batch.lines and not batch.place and batch.batches <= MOST_SHEETS
+    places = range(1, batch.batches + 1) if each_has_one else ()
     each = [dataclasses.replace(batch, place=place) for place in places] or [batch]
     return draw_all([_document(one, page, paper) for one in each])
 

@@ -46,11 +46,19 @@ def report_pdf(result: Result, mill: str, version: str, paper: str = "A4") -> by
     return documents.formula_report(result, mill=mill, version=version, paper=documents.Paper[paper.upper()])
 
 
-def page_images(pdf: bytes, dots_per_inch: float) -> list[bytes]:
-    """Every page of a PDF as PNG, for the preview and the printer."""
+def page_images(pdf: bytes, dots_per_inch: float) -> Iterator[bytes]:
+    """Every page of a PDF as PNG, one after the other, for the preview and the printer."""
     from blendapp import documents
 
-    return documents.render_png(pdf, dots_per_inch)
+    for number in range(documents.page_count(pdf)):
+        yield documents.render_png(pdf, dots_per_inch, number)[0]
+
+
+def page_count(pdf: bytes) -> int:
+    """How many pages a PDF has."""
+    from blendapp import documents
+
+    return documents.page_count(pdf)
 
 
 @contextlib.contextmanager

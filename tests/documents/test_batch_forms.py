@@ -218,6 +218,13 @@ def test_each_of_several_equal_batches_has_a_sheet_of_its_own_that_says_which_it
     assert "of 1" not in page_text(batch_sheet(dataclasses.replace(made.FULL, batches=1, place=0)))[0].split("Page")[0]
 
 
+def test_an_order_of_very_many_batches_has_one_sheet_with_room_to_write_which_it_is() -> None:
+    many = dataclasses.replace(made.FULL, batches=61, place=0)
+    assert page_count(batch_sheet(many)) < 2 * page_count(batch_sheet(made.FULL))
+    assert squeezed("Which of the 61 equal batches") in words(batch_sheet(many))
+    assert squeezed("Which of the") not in words(batch_sheet(made.FULL))
+
+
 def test_many_cautions_follow_the_lines_and_the_sheet_says_so_above_them() -> None:
     text = words(batch_sheet(made.EXTREME))
     pointer = text.index(squeezed("25 cautions stand after the lines of this sheet"))

@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+import itertools
+from collections.abc import Callable, Iterator
 
-from PySide6.QtCore import QObject, QSize, Qt, QTimer, Signal
+from PySide6.QtCore import QSize, Qt, QTimer, Signal
 from PySide6.QtGui import QImage, QPixmap, QResizeEvent
 from PySide6.QtWidgets import QGraphicsOpacityEffect, QLabel, QScrollArea, QVBoxLayout, QWidget
 
@@ -15,6 +16,8 @@ from blendapp.domain.wording import _, plural
 from blendapp.services import sheets
 
 PAGE_WIDTH_IN = 8.27
+# Further pages of a long order are counted and printed, and not drawn into the window.
+MOST_PAGES = 24
 REST_MS = 150
 
 
@@ -27,6 +30,7 @@ class PageView(QScrollArea):
     def __init__(self) -> None:
         super().__init__()
         self.pages: list[bytes] = []
+        self.count = 0
         self._making: Callable[[], bytes] | None = None
         self._width = 0
         self._stale = False
@@ -49,7 +53,7 @@ class PageView(QScrollArea):
         self._making = make
         self._width = self.page_width()
         dots = self.page_width() * self.devicePixelRatioF() / PAGE_WIDTH_IN
-        self._aside.ask(lambda: sheets.page_images(make(), dots))
+        self._aside.ask(lambda: _first_pages(make(), dots))
 
     def say_stale(self, stale: bool) -> None:
         """Grey the pages while others are made."""
@@ -72,11 +76,11 @@ class PageView(QScrollArea):
         """Pixels that a page takes in width."""
         return max(min(self.viewport().width() - 4 * GAP_PX, 860), 320)
 
-    def _take(self, images: list[bytes] | None, fault: Exception | None) -> None:
-        if fault is not None or images is None:
+    def _take(self, found: tuple[list[bytes], int] | None, fault: Exception | None) -> None:
+        if fault is not None or found is None:
             self.failed.emit(str(fault))
             return
-        self.pages = images
+        self.pages, self.count = found
         self._fill()
         self.shown.emit()
 
@@ -90,13 +94,18 @@ class PageView(QScrollArea):
             page.setObjectName("page")
             page.setPixmap(pixmap)
             page.setFixedSize(QSize(round(pixmap.width() / ratio) + 2, round(pixmap.height() / ratio) + 2))
-            page.setAccessibleName(_("Page {number} of {count}").format(number=number, count=len(self.pages)))
+            page.setAccessibleName(_("Page {number} of {count}").format(number=number, count=self.count))
             self.column.insertWidget(self.column.count() - 1, page, 0, Qt.AlignmentFlag.AlignHCenter)
+        more = self.count - len(self.pages)
+        if more > 0:
+            words = plural("{count} more page comes with these.", "{count} more pages come with these.", more)
+            rest = QLabel(words.format(count=more))
+            self.column.insertWidget(self.column.count() - 1, rest, 0, Qt.AlignmentFlag.AlignHCenter)
 
     def clear(self, *, keep_pages: bool = False) -> None:
         """Show nothing."""
         if not keep_pages:
-            self.pages = []
+            self.pages, self.count = [], 0
             self._making = None
             self._aside.forget()
         while self.column.count() > 1:
@@ -109,9 +118,13 @@ class PageView(QScrollArea):
 
     def words(self) -> str:
         """How many pages there are."""
-        return plural("{count} page", "{count} pages", len(self.pages)).format(count=len(self.pages))
+        return plural("{count} page", "{count} pages", self.count).format(count=self.count)
 
 
-def images_for_printer(pdf: bytes, dots_per_inch: float, parent: QObject | None = None) -> list[QImage]:
-    """The pages at the printer's resolution."""
-    return [QImage.fromData(data) for data in sheets.page_images(pdf, dots_per_inch)]
+def _first_pages(pdf: bytes, dots_per_inch: float) -> tuple[list[bytes], int]:
+    return list(itertools.islice(sheets.page_images(pdf, dots_per_inch), MOST_PAGES)), sheets.page_count(pdf)
+
+
+def images_for_printer(pdf: bytes, dots_per_inch: float) -> Iterator[QImage]:
+    """The pages at the printer's resolution, one after the other."""
+    return (QImage.fromData(data) for data in sheets.page_images(pdf, dots_per_inch))
