@@ -119,6 +119,8 @@ class Asked(StrEnum):
     without a unit that are kept in % or g/kg; a unit. BASIS: a heading, or "" for all; one of ingredients.Basis.
     USUAL_CHANGE, of every source: a class of ingredients, "" for all others; by how many percent a price may change
     without a question.
+    SIDE, of this list alone, since both tables are read, one after the other: the names' headings of tables that stand
+    side by side; "columns A to B", those of the one that is read now.
     EXPIRED_LIST, of this list alone, and not remembered: a day as 2026-03-09, on which all of its prices ended; TAKE or
     LEAVE_OUT. Of a row: TAKE or LEAVE_OUT; for AMOUNT also the price, as a plain number in the unit of the row, and for
     NAMELESS an ingredient.
@@ -141,6 +143,7 @@ class Asked(StrEnum):
     BASIS = "basis"
     USUAL_CHANGE = "usual change"
 
+    SIDE = "side"
     EXPIRED_LIST = "expired list"
 
     HIDDEN = "hidden"
@@ -163,7 +166,7 @@ class Asked(StrEnum):
 
     @property
     def is_remembered(self) -> bool:
-        return not self.is_of_row and self is not Asked.EXPIRED_LIST
+        return not self.is_of_row and self not in (Asked.EXPIRED_LIST, Asked.SIDE)
 
 
 @dataclass(frozen=True)

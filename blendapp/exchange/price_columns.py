@@ -6,9 +6,13 @@ import re
 from collections.abc import Callable
 from dataclasses import dataclass, field
 from functools import lru_cache
+from typing import TYPE_CHECKING
 
 from blendapp.domain.list_rows import ColumnRole
 from blendapp.exchange.price_words import Words, read_heading_words, split_dry
+
+if TYPE_CHECKING:
+    from blendapp.exchange.price_sides import Side
 
 _NAME_WORDS = frozenset({
     "ingredient", "ingredients", "commodity", "commodities", "product", "products", "material", "materials",
@@ -80,14 +84,20 @@ class PriceColumn:
 
 @dataclass
 class Table:
-    """A table within a sheet. heading_row: from 0, None where the columns were told by their content alone."""
+    """A table within a sheet. heading_row: from 0, None where the columns were told by their content alone.
+
+    sides: where several tables stand side by side, all of them; side: the one that is read, None until that is said.
+    sides_key: what the question is about.
+    """
 
     heading_row: int | None
     roles: dict[int, ColumnRole] = field(default_factory=dict)
     headings: dict[int, str] = field(default_factory=dict)
     prices: list[PriceColumn] = field(default_factory=list)
     name: int | None = None
-    side_by_side: bool = False
+    sides: tuple[Side, ...] = ()
+    side: Side | None = None
+    sides_key: str = ""
     first_heading_row: int | None = None
     last_heading_row: int | None = None
 

@@ -146,12 +146,4 @@ def _headed(row: int, texts: dict[int, str], role_of_heading: RoleOf) -> Table |
     if not names and any(_NOTE_ALONE.search(column.heading) for column in found.prices):
         return None
     found.name = names[0] if names else None
-    found.side_by_side = _is_side_by_side(names, found.prices)
     return found
-
-
-def _is_side_by_side(names: list[int], prices: list[PriceColumn]) -> bool:
-    """Name, price, name, price: two tables beside each other."""
-    if len(names) < 2 or len(prices) < 2:
-        return False
-    return any(names[0] < price.index < names[-1] for price in prices) and prices[-1].index > names[-1]

@@ -20,6 +20,7 @@ from blendapp.exchange.price_columns import LIST_ROLES
 from blendapp.exchange.price_days import ask_once_about_expired
 from blendapp.exchange.price_row import read_row
 from blendapp.exchange.price_segments import Segment, pointed_out_table, read_segments, source_table
+from blendapp.exchange.price_sides import beside, unsettled_row
 from blendapp.exchange.price_tables import find_table
 from blendapp.exchange.price_unplaced import without_columns, without_table
 from blendapp.exchange.source_sheets import source_sheet
@@ -84,7 +85,13 @@ def read_table(
 def _rows(
     raw: RawTable, segment: Segment, library: Library, names: NameFinder, today: datetime.date
 ) -> Iterator[PriceRow]:
+    table = segment.table
+
+    def read(row: int) -> PriceRow:
+        if table.sides and table.side is None:
+            return unsettled_row(raw, row, table)
+        return beside(raw, read_row(raw, row, segment, library, names, today), table)
+
     return rows_of_table(
-        raw, range(segment.first, segment.last), segment.table.heading_rows, segment.table.first_row, PriceRow,
-        lambda row: read_row(raw, row, segment, library, names, today),
+        raw, range(segment.first, segment.last), table.heading_rows, table.first_row, PriceRow, read
     )

@@ -8,12 +8,12 @@ from collections.abc import Callable
 from blendapp.domain.list_rows import ColumnRole
 from blendapp.domain.mills import Asked
 from blendapp.domain.wording import _
-from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.list_headings import FURTHEST, best_name_column, is_known_text, known_names
 from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_placing import NO_HEADINGS, Placing, column_name
 from blendapp.exchange.price_columns import PRICE_ROLES, PriceColumn, RoleOf, Table, role_of
 from blendapp.exchange.price_headings import read_headings
+from blendapp.exchange.price_sides import settle_sides
 from blendapp.exchange.price_units import is_price_unit
 from blendapp.exchange.price_words import NO_WORDS, Words, read_heading_words
 from blendapp.exchange.source_sheets import shown_text
@@ -89,8 +89,7 @@ def _pointed_out(raw: RawTable, row: int, names: NameFinder, placing: Placing) -
 def _settle(found: Table, raw: RawTable, names: NameFinder, placing: Placing) -> None:
     if placing.names_columns:
         _add_columns_without_heading(found, raw, placing)
-    if found.side_by_side:
-        take_one_side(found, names.answers, placing)
+    settle_sides(found, raw, names.is_known, names.answers, placing)
     settle_name_column(found, raw, names.is_known, placing)
     if found.name is not None:
         drop_empty_prices(found, raw)
@@ -121,25 +120,6 @@ def _add_columns_without_heading(found: Table, raw: RawTable, placing: Placing) 
             found.roles[index] = role
             if role in PRICE_ROLES:
                 found.prices.append(PriceColumn(index, role, column_name(index), NO_WORDS))
-
-
-def take_one_side(found: Table, answers: Answers, placing: Placing) -> None:
-    """Of two tables side by side the one whose price was answered to hold; the other is not read, and that is said."""
-    answer = answers.find(Asked.PRICE, found.prices_key)
-    chosen = next((column for column in found.prices if answer and column.heading == answer.answer), None)
-    names = sorted(index for index, role in found.roles.items() if role is ColumnRole.NAME)
-    if chosen is None or not names or chosen.index < names[0]:
-        return
-    first = max(index for index in names if index < chosen.index)
-    end = min((index for index in names if index > chosen.index), default=1 << 20)
-    left_out = [index for index in sorted(found.roles) if not first <= index < end]
-    for index in left_out:
-        found.roles[index] = ColumnRole.OTHER
-    found.prices = [column for column in found.prices if first <= column.index < end]
-    found.side_by_side = False
-    text = _("Of the tables side by side the one under “{name}” was read; the columns {columns} were not.")
-    columns = ", ".join(map(column_letters, left_out))
-    placing.note(text.format(name=chosen.heading, columns=columns))
 
 
 def settle_name_column(

@@ -141,21 +141,6 @@ def test_headings_that_have_moved_since_are_read_where_they_stand(read: Read, li
     assert reading.notes == ("The headings were last in row 2; those in row 3 were read.",)
 
 
-def test_of_tables_side_by_side_one_is_read_as_answered_and_the_other_is_named(read: Read) -> None:
-    rows: Rows = [
-        ["Grain", "Price $/t", None, "Product", "Price $/t"], ["Maize", 205, None, "Soybean meal", 410],
-        ["Wheat", 212, None, None, None],
-    ]
-    (question,) = {one.about: one for one in read(rows).questions if one.asked is Asked.PRICE}.values()
-    assert question.choices == ("Price $/t", "Price $/t (E)")
-    left = read(rows, Answer(Asked.PRICE, question.about, "Price $/t"))
-    assert [(row.ingredient, row.price_per_t) for row in left.accepted] == [("Maize", 205), ("Wheat", 212)]
-    assert any("the columns D, E were not" in note for note in left.notes)
-    right = read(rows, Answer(Asked.PRICE, question.about, "Price $/t (E)"))
-    assert [(row.row, row.fate) for row in right.rows] == [(1, IGNORED), (2, A), (3, IGNORED)]
-    assert right.accepted[0].price_per_t == 410
-
-
 def test_the_text_has_one_table_whose_headings_can_be_pointed_out(read: Read) -> None:
     reading = read(STRANGE, table("row 2", ""), column("Preis", ColumnRole.PRICE), column("je", ColumnRole.UNIT),
                    write=write_text)
