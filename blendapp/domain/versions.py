@@ -252,8 +252,8 @@ def _altered(
 ) -> list[tuple[int, str]]:
     record = library.records["formula"].get(versions[0].formula_id)
     name = "" if record is None else record.name
-    changed = _("Version {number} of {formula} was altered outside this program and counts as not approved; prepare "
-                "and approve it anew.")
+    changed = _("Version {number} of {formula} was altered outside this program: its seal does not fit. It counts as "
+                "not approved; prepare and approve it anew.")
     missing = _("Version {number} of {formula} is missing: it was taken out of the file outside this program.")
     found: list[tuple[int, str]] = []
     numbers = {v.number for v in versions}

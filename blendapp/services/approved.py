@@ -13,7 +13,7 @@ from blendapp.domain.figures import write_measure
 from blendapp.domain.formulas import Limit, LimitKind, Subject
 from blendapp.domain.library import Library
 from blendapp.domain.mills import FormulaVersion, VersionState
-from blendapp.domain.problems import Refused
+from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.records import Record
 from blendapp.domain.results import LimitResult, Result, UnknownValue
 from blendapp.domain.versions import Snapshot, alterations, approved_version, sound_snapshot
@@ -210,8 +210,7 @@ def approved_batch(
     """
     version = approved_version(library, formula_id)
     if version is None:
-        text = _("{formula} has no approved version; prepare and approve one.")
-        raise Refused(text.format(formula=library.formula(formula_id).name))
+        raise Refused(_not_approved(library, formula_id))
     snapshot = sound_snapshot(library, version)
     assert snapshot.result is not None
     makers = Makers(library, on)
@@ -230,6 +229,14 @@ def approved_batch(
         batch, version=version_text(version), draft=False, approved_by=approval_text(version),
         limits=tuple(limit for limit in batch.limits if limit.limit_id in own),
     )
+
+
+def _not_approved(library: Library, formula_id: int) -> list[Problem]:
+    """Why a formula has no approved version: each that other hands have changed or taken out, else that none was."""
+    name = library.formula(formula_id).name
+    altered = [Problem(one.text, Place(record=name)) for one in alterations(library, formula_id)]
+    none = _("{formula} has no approved version; prepare and approve one.")
+    return altered or [Problem(none.format(formula=name))]
 
 
 def _besides(makers: Makers, snapshot: Snapshot, rework: Mapping[int, float]) -> set[int]:

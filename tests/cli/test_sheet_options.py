@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import sqlite3
 from collections.abc import Callable
 from dataclasses import replace
 from pathlib import Path
@@ -196,6 +197,22 @@ def test_the_approved_version_is_made_in_its_approved_proportions(sheet: Callabl
     assert lines["Oil"]["share_kg"] == pytest.approx(0.9 * before["Oil"]["share_kg"])
     assert lines["Maize"]["bins"] == ["Bin 4, lot L-77"]
     assert approved["to_make"][0]["ingredient"] == "Premix"
+
+
+def test_an_approved_version_that_was_altered_from_outside_is_unusable_and_says_so(
+    sheet: Callable[..., Run], mill: Path, tmp_path: Path
+) -> None:
+    opened = open_mill(mill, "Ann")
+    staffed(opened)
+    approve(opened, 1)
+    opened.close()
+    raw = sqlite3.connect(mill)
+    raw.execute("UPDATE version SET note = 'x'")
+    raw.commit()
+    raw.close()
+    (line,) = sheet("Feed", 1000, "--approved").faults
+    assert "Version 1 of Feed was altered outside this program: its seal does not fit." in line
+    assert not (tmp_path / "a.pdf").exists()
 
 
 def test_paper_and_mass_are_chosen_for_the_page(sheet: Callable[..., Run], tmp_path: Path) -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import sqlite3
 from collections.abc import Callable
 from dataclasses import replace
 from typing import Any
@@ -20,7 +21,7 @@ from blendapp.services import formulate as formulating
 from blendapp.services.approved import Outside, approved_batch, outside_their_limits
 from blendapp.services.batch import make_batch
 from blendapp.services.formulate import formulate
-from blendapp.services.mill import Mill
+from blendapp.services.mill import Mill, open_mill
 from tests.mills import TODAY, Maker
 from tests.services.approving import BARLEY, LAMB, MAIZE, MASH, MEAL, approve, feed_library, staffed
 
@@ -221,3 +222,28 @@ def test_a_formula_without_an_approved_version_has_no_approved_batch(opened: Ope
     mill = opened(feed_library())
     with pytest.raises(Refused, match="Mash has no approved version"):
         approved_batch(mill.library, MASH, 1000.0, TODAY)
+
+
+@pytest.mark.parametrize(("statement", "words"), [
+    ("UPDATE version SET note = 'x' WHERE formula_id = 1", "altered outside this program: its seal does not fit"),
+    ("UPDATE version SET snapshot = '{}' WHERE formula_id = 1", "altered outside this program: its seal does not fit"),
+    ("UPDATE version SET state = 'superseded' WHERE formula_id = 1", "altered outside this program"),
+])
+def test_a_version_altered_from_outside_is_not_said_to_be_missing(
+    mill: Mill, statement: str, words: str
+) -> None:
+    mill.close()
+    raw = sqlite3.connect(mill.path)
+    assert raw.execute(statement).rowcount == 1
+    raw.commit()
+    raw.close()
+    again = open_mill(mill.path)
+    try:
+        with pytest.raises(Refused) as refused:
+            approved_batch(again.library, MASH, 1000.0, TODAY)
+        (problem,) = refused.value.problems
+        assert f"Version 1 of Mash was {words}" in problem.text
+        assert "prepare and approve it anew" in problem.text
+        assert approved_batch(again.library, LAMB, 1000.0, TODAY).version == "version 1"
+    finally:
+        again.close()
