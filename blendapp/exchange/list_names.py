@@ -4,7 +4,9 @@ from __future__ import annotations
 
 import re
 import unicodedata
+from collections.abc import Iterator
 from dataclasses import dataclass
+from itertools import permutations
 
 from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
@@ -29,6 +31,19 @@ def match_key(name: str) -> str:
     plain = "".join(letter for letter in letters if not unicodedata.combining(letter))
     plain = _BETWEEN_DIGITS.sub(lambda found: _POINT if found[0].strip() in (".", ",") else _GAP, plain)
     return "".join(letter for letter in plain if letter.isalnum() or letter in _KEPT)
+
+
+# Marks that set a word behind what it belongs to: "Wheat, feed" is feed wheat, and wheat feed is another good.
+_SET_BEHIND = re.compile(r"(?<![0-9]),|,(?![0-9])|[;:()\[\]]|\s[-–—/]\s")
+_MOST_PARTS = 4
+
+
+def turned_keys(name: str) -> Iterator[str]:
+    """The keys of a name with the parts between its commas and brackets in every other order."""
+    parts = [part.strip() for part in _SET_BEHIND.split(name) if part.strip()]
+    if 1 < len(parts) <= _MOST_PARTS:
+        for order in list(permutations(parts))[1:]:
+            yield match_key(" ".join(order))
 
 
 @dataclass(frozen=True)
@@ -101,14 +116,16 @@ class NameFinder:
             return Match(exact)
         key = match_key(name) if len(name) <= LONGEST_NAME else ""
         same = self._by_key.get(key, []) if key else []
+        if same:
+            same = list(dict.fromkeys([*same, *self._turned(name)]))
         if len(same) == 1:
             return Match(same[0])
         if same:
-            names = _(" or ").join(f"“{ingredient.name}”" for ingredient in same)
-            return Match(None, _("“{name}” may be {names}; say which.").format(name=name, names=names),
-                         candidates=tuple(ingredient.name for ingredient in same))
+            return self._either(name, same)
         ids = sorted(self._synonyms.get(key, set())) if key else []
         known = [self.library.ingredient(key) for key in ids if key in self.library.records["ingredient"]]
+        if len(known) == 1 and (turned := [one for one in self._turned(name) if one is not known[0]]):
+            return self._either(name, [*known, *turned])
         if len(known) == 1:
             return Match(known[0], _("Known as “{name}” from an earlier list.").format(name=name))
         if known:
@@ -116,6 +133,16 @@ class NameFinder:
             return Match(None, _("“{name}” has been {names} before; say which.").format(name=name, names=names),
                          candidates=tuple(ingredient.name for ingredient in known))
         return self._unknown(name)
+
+    @staticmethod
+    def _either(name: str, among: list[Ingredient]) -> Match:
+        names = _(" or ").join(f"“{ingredient.name}”" for ingredient in among)
+        return Match(None, _("“{name}” may be {names}; say which.").format(name=name, names=names),
+                     candidates=tuple(ingredient.name for ingredient in among))
+
+    def _turned(self, name: str) -> list[Ingredient]:
+        """The ingredients that a name means where a comma in it turns its words round."""
+        return [one for key in turned_keys(name) for one in self._by_key.get(key, [])]
 
     def _unknown(self, name: str) -> Match:
         text = _("The mill has no ingredient “{name}”.").format(name=name)
