@@ -97,6 +97,7 @@ def _questions(studio: Studio, bench: Bench, path: Path) -> None:
         seen.add(one.typed)
         if one.typed == FIGURE:
             panel.field.setText(getattr(one.row, "entered", "").split(" ")[0])
+        panel.choices.step(1)
         panel.enter()
         studio.settle(lambda: not bench.prices.reader.running)
     studio.take(bench.frame, "20-all-answered")
@@ -108,6 +109,7 @@ def _analyses(studio: Studio, bench: Bench, path: Path) -> None:
     for _turn in range(12):
         if bench.prices.questions.current is None:
             break
+        bench.prices.questions.choices.step(1)
         bench.prices.questions.enter()
         studio.settle(lambda: not bench.prices.reader.running)
     studio.take(bench.frame, "20-analyses-answered")

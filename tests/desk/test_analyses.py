@@ -61,7 +61,7 @@ def test_taking_analyses_changes_the_composition_as_one_undo(bench: Bench, hands
     library = bench.work.library
     read(bench, write(tmp_path / "tidewater.xlsx", RESULTS), ListAbout.COMPOSITION)
     answer_both(bench, hands)
-    hands.key(Qt.Key.Key_Return)
+    hands.key(Qt.Key.Key_Return, Qt.KeyboardModifier.ControlModifier)
     assert bench.frame.middle.currentWidget() is bench.frame.bench
     assert bench.strip.words.text() == "3 samples from tidewater.xlsx are taken; Ctrl+Z takes them back."
     protein = {one.ingredient_id: one.amount for one in library.all("value") if one.nutrient_id == 1}

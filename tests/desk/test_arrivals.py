@@ -111,7 +111,7 @@ def test_the_list_of_a_known_source_is_in_force_after_two_actions(
     for _question in range(3):
         hands.key(Qt.Key.Key_1)
         wait(bench)
-    hands.key(Qt.Key.Key_Return)
+    hands.key(Qt.Key.Key_Return, CTRL)
     bench.to_bench()
     rows = [[one, cost and cost + 7 if isinstance(cost, int) else cost] for one, cost in UNKNOWN_NAMES]
     second = write(tmp_path / "bay grain week 49.xlsx", rows)
@@ -183,7 +183,7 @@ def test_what_is_remembered_is_a_press_away_and_forgetting_it_asks_again(
     for _question in range(3):
         hands.key(Qt.Key.Key_1)
         wait(bench)
-    hands.key(Qt.Key.Key_Return)
+    hands.key(Qt.Key.Key_Return, CTRL)
     read(bench, write(tmp_path / "bay grain 49.xlsx", UNKNOWN_NAMES))
     assert whose.memory.text() == "3 answers remembered"
     hands.click(whose.memory)

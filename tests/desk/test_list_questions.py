@@ -90,8 +90,11 @@ def test_a_name_is_answered_by_its_figure_and_the_next_question_comes_up(
     clerk.press(Qt.Key.Key_1)
     assert panel.count.text() == "No questions"
     assert fates(bench) == ["ignored", "accepted", "accepted", "accepted", "ignored"]
-    # With nothing left to ask, Enter takes the list.
+    # With nothing left to ask, Enter goes to where the list is taken, and Enter there takes it.
+    assert panel.place.whole == "Enter goes to “Take 3 prices”"
+    clerk.press(Qt.Key.Key_Return)
     assert QApplication.focusWidget() is bench.prices.take
+    assert price(bench, 2) == 420
     clerk.press(Qt.Key.Key_Return)
     assert [price(bench, key) for key in (1, 2, 3)] == [210, 430, 51]
     read(bench, write(tmp_path / "bay grain 50.xlsx", UNKNOWN_NAMES))
@@ -151,7 +154,7 @@ def test_a_unit_is_chosen_or_typed_for_all_rows_at_once(bench: Bench, clerk: Cle
     assert clerk.asked == "unit: ton"
     clerk.write("short ton")
     clerk.press(Qt.Key.Key_Return)
-    clerk.press(Qt.Key.Key_Return)
+    clerk.press(Qt.Key.Key_Return, CTRL)
     assert price(bench, 1) == pytest.approx(190 / 0.90718474)
 
 
@@ -174,7 +177,7 @@ def test_a_rate_is_typed_with_its_day(bench: Bench, clerk: Clerk, tmp_path: Path
     clerk.write(bench.work.on.isoformat())
     clerk.press(Qt.Key.Key_Return)
     assert panel.count.text() == "No questions"
-    clerk.press(Qt.Key.Key_Return)
+    clerk.press(Qt.Key.Key_Return, CTRL)
     assert price(bench, 1) == pytest.approx(220)
 
 
@@ -198,7 +201,7 @@ def test_hidden_and_struck_rows_count_only_when_that_is_said(bench: Bench, clerk
     assert clerk.asked == "hidden: 3"
     clerk.press(Qt.Key.Key_1)
     assert clerk.asked == "struck: 4"
-    clerk.press(Qt.Key.Key_Down)
+    clerk.press(Qt.Key.Key_Up)
     clerk.press(Qt.Key.Key_Return)
     assert fates(bench) == ["ignored", "accepted", "accepted", "ignored"]
 

@@ -78,7 +78,7 @@ def open_questions(reading: ListReading) -> list[Open]:
 
 def _turn(one: Open) -> int:
     asked = one.question.asked
-    return (3 if asked.is_of_row else 0 if asked in (Asked.TABLE, Asked.COLUMN)
+    return (3 if asked.is_of_row else 0 if asked in (Asked.TABLE, Asked.COLUMN, Asked.SIDE)
             else 2 if asked is Asked.INGREDIENT else 1)
 
 
@@ -119,7 +119,9 @@ def names_of(one: Open, library: Library) -> list[Choice]:
 def answer_words(asked: Asked, answer: str) -> str:
     """An answer with a fixed word, as a person says it; any other as it is."""
     said: Mapping[str, str] = {
-        TAKE: _take_words(asked), LEAVE_OUT: _("Leave it out"), ADD: _("Add the freight to the price"),
+        TAKE: _take_words(asked),
+        LEAVE_OUT: _("Leave them all out") if asked is Asked.EXPIRED_LIST else _("Leave it out"),
+        ADD: _("Add the freight to the price"),
         DAY_FIRST: _("The day stands first"), MONTH_FIRST: _("The month stands first"),
     }
     if asked is Asked.DECIMAL:
@@ -133,8 +135,12 @@ def answer_words(asked: Asked, answer: str) -> str:
             return _("Its headings are in row {row}").format(row=number)
     elif asked is Asked.PRICE and answer not in said:
         return _("The price under “{name}” holds").format(name=answer)
+    elif asked is Asked.SIDE:
+        return _("Read the one in {columns} now").format(columns=answer)
     elif asked is Asked.BASIS:
         said = {"as fed": _("as fed"), "dry matter": _("of dry matter")}
+    elif asked is Asked.RATE:
+        return _("It is {currency}, the money of the mill").format(currency=answer)
     return said.get(answer, answer)
 
 
@@ -144,7 +150,9 @@ def _take_words(asked: Asked) -> str:
         Asked.HIDDEN_COLUMN: lambda: _("The column counts"),
         Asked.CENTS: lambda: _("They are hundredths: divide by 100"),
         Asked.TWIN: lambda: _("This one holds"), Asked.CHANGE: lambda: _("It is right: take it"),
-        Asked.EXPIRED: lambda: _("Take it all the same"), Asked.TERMS: lambda: _("Take it with its new terms"),
+        Asked.EXPIRED: lambda: _("Take it all the same"), Asked.DATES: lambda: _("It counts as no day"),
+        Asked.EXPIRED_LIST: lambda: _("They count: take them all the same"),
+        Asked.TERMS: lambda: _("Take it with its new terms"),
         Asked.PRICE: lambda: _("Take the price as it is"),
     }
     return said.get(asked, lambda: _("Take it"))()
@@ -205,6 +213,19 @@ def place_words(one: Open, several_sheets: bool) -> str:
         more = plural("and {count} more row", "and {count} more rows", one.more).format(count=one.more)
         text = f"{text}, {more}"
     return text
+
+
+def choose_words(one: Open, count: int) -> str:
+    """What is said where Enter is pressed and nothing was chosen. count: of the choices in view."""
+    if one.typed == FIGURE:
+        return _("Type the price, or choose with the arrows; Enter alone answers nothing.")
+    if not count:
+        return _("Type the answer first; Enter alone answers nothing.")
+    if count == 1:
+        return _("Press 1 to answer so; Enter alone answers nothing.")
+    if count == 2:
+        return _("Choose 1 or 2; Enter alone answers nothing.")
+    return _("Choose 1 to {count}, or with the arrows; Enter alone answers nothing.").format(count=min(count, 9))
 
 
 def kept_words(asked: Asked, source: str) -> str:

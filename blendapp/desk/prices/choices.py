@@ -92,11 +92,13 @@ class ChoiceList(QListView):
         self.setAccessibleName(_("What may be answered"))
 
     def show_choices(self, choices: Sequence[Choice], numbered: bool = True) -> None:
-        """Show choices, the first marked."""
+        """Show choices, none of them marked: an answer is chosen, and never stands ready."""
         self.rows.show(choices, numbered)
         self.setFixedHeight(max(min(len(choices), MOST_LINES), 1) * LINE_PX + 2)
         self.setVisible(bool(choices))
-        self.mark(0)
+        self.clearSelection()
+        self.setCurrentIndex(QModelIndex())
+        self.scrollToTop()
 
     def mark(self, row: int) -> None:
         """Mark a choice."""
@@ -106,8 +108,9 @@ class ChoiceList(QListView):
             self.scrollTo(index)
 
     def step(self, by: int) -> None:
-        """Mark the choice so many lines on."""
-        self.mark(self.currentIndex().row() + by)
+        """Mark the choice so many lines on; where none is marked, the first or the last."""
+        here = self.currentIndex()
+        self.mark(here.row() + by if here.isValid() else 0 if by > 0 else len(self.rows.choices) - 1)
 
     @property
     def marked(self) -> Choice | None:

@@ -60,7 +60,9 @@ class TakeButton(QPushButton):
         if isinstance(event, QKeyEvent) and event.type() == QEvent.Type.KeyPress and (
             event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter)
         ):
-            self.click()
+            # A key that is held since an earlier page takes nothing here.
+            if not event.isAutoRepeat():
+                self.click()
             return True
         return super().event(event)
 

@@ -69,6 +69,7 @@ class ListPane(QWidget):
         self.questions.back.connect(self.take_back)
         self.questions.left.connect(self._escape)
         self.questions.take.connect(self.apply)
+        self.questions.done.connect(self._go_to_take)
         self.questions.shown.connect(self._mark_question)
         self.source.role_asked.connect(self._offer_roles)
         self.source.looked_at.connect(self._mark_understood)
@@ -249,13 +250,24 @@ class ListPane(QWidget):
             self.focus_first()
 
     def focus_first(self) -> None:
-        """Put the keyboard on the question in view, else where the list is taken."""
-        if self.questions.current is not None:
+        """Put the keyboard on the question in view, else where the list is taken.
+
+        A list that needed answers waits for one Enter more, so that none runs on from the last answer into taking it.
+        """
+        if self.questions.current is not None or (self._needed_answers and self.take.isEnabled()):
             self.questions.setFocus()
         elif self.take.isEnabled():
             self.take.setFocus()
         else:
             self.parts.table.setFocus()
+
+    @property
+    def _needed_answers(self) -> bool:
+        return self.session is not None and bool(self.session.answers or self.session.edits)
+
+    def _go_to_take(self) -> None:
+        if self.take.isEnabled():
+            self.take.setFocus()
 
     def _say_state(self) -> None:
         reading, session = self.reading, self.session
@@ -268,6 +280,8 @@ class ListPane(QWidget):
         self.take.setText(_("Taken") if taken else take_words(session.about, count))
         ready = count > 0 and not taken and not running and self.work.is_open and self.work.mill.writable
         self.take.setEnabled(ready)
+        if self.questions.current is None and ready and self._needed_answers:
+            self.questions.place.say(_("Enter goes to “{button}”").format(button=self.take.text()))
         self.look.setVisible(session.about is ListAbout.PRICES)
         self.look.setEnabled(count > 0 and not running)
         before = taken_before(self.work.library, reading.digest) is not None

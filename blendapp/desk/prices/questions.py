@@ -20,6 +20,7 @@ from blendapp.desk.prices.asking import (
     Open,
     best_names,
     choices_of,
+    choose_words,
     figure_choice,
     kept_words,
     make_answer,
@@ -41,7 +42,7 @@ MOST_LISTED = 60
 class QuestionPanel(QWidget):
     """answered: an Answer. new_wanted: the mill is to have an ingredient of that name. back: the last answer is to be
     taken back. shown: another question is in view, or None. left: the person wants away. take: the person wants the
-    list taken.
+    list taken. done: Enter with nothing left to answer. Enter alone never answers: a figure or an arrow comes first.
     """
 
     answered = Signal(object)
@@ -50,6 +51,7 @@ class QuestionPanel(QWidget):
     shown = Signal(object)
     left = Signal()
     take = Signal()
+    done = Signal()
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -156,7 +158,7 @@ class QuestionPanel(QWidget):
             self.field.ask(typed, bool(one.question.choices))
             if typed == RATE:
                 self.rate.ask(one.question.about, self.library.mill.currency, self.on)
-        self.choices.show_choices([] if one is None else choices_of(one, self.library))
+        self._offer_all()
         self._say()
         target = self.field if typed in (NAMES, TEXT, FIGURE) else self.rate.rate if typed == RATE else None
         # Without a field the keys come to the panel itself.
@@ -164,6 +166,12 @@ class QuestionPanel(QWidget):
         if had:
             self.setFocus()
         self.shown.emit(one)
+
+    def _offer_all(self) -> None:
+        """Show every choice; figures take one unless they are typed as a price or a rate."""
+        one = self.current
+        found = [] if one is None else choices_of(one, self.library)
+        self.choices.show_choices(found, one is not None and one.typed not in (FIGURE, RATE))
 
     def has_keyboard(self) -> bool:
         """Whether keys come here."""
@@ -183,7 +191,6 @@ class QuestionPanel(QWidget):
             [Choice("", other.question.text, row_words(other.row, self.several_sheets), is_aside=True)
              for other in others[:MOST_LISTED]], numbered=False)
         self._fit_others()
-        self.others.clearSelection()
         self.later.setVisible(bool(others))
 
     def _fit_others(self) -> None:
@@ -203,12 +210,13 @@ class QuestionPanel(QWidget):
             return
         self.say_fault("")
         if not typed.strip():
-            self.choices.show_choices(choices_of(one, self.library))
+            self._offer_all()
         elif one.typed == NAMES:
             self.choices.show_choices(best_names(names_of(one, self.library), typed), numbered=False)
+            # What is typed is chosen: the name that fits it best.
+            self.choices.mark(0)
         else:
             self.choices.show_choices(best_names(choices_of(one, self.library), typed), numbered=False)
-            self.choices.clearSelection()
 
     def _clicked(self, index: QModelIndex) -> None:
         if index.isValid():
@@ -222,8 +230,8 @@ class QuestionPanel(QWidget):
     def enter(self) -> None:
         one = self.current
         if one is None:
-            self.take.emit()
-        elif one.typed == RATE:
+            self.done.emit()
+        elif one.typed == RATE and (self.rate.rate.text().strip() or self.choices.marked is None):
             self._take_rate()
         elif one.typed in (TEXT, FIGURE) and self.field.text().strip():
             self._give_typed(one, self.field.text().strip())
@@ -232,6 +240,8 @@ class QuestionPanel(QWidget):
         elif self.field.text().strip():
             text = _("The mill has nothing called “{name}”; choose a name, or add it to the mill first.")
             self.say_fault(text.format(name=self.field.text().strip()))
+        else:
+            self.say_fault(choose_words(one, len(self.choices.rows.choices)))
 
     def _give_typed(self, one: Open, text: str) -> None:
         try:
@@ -288,6 +298,9 @@ class QuestionPanel(QWidget):
         steps = {Qt.Key.Key_Down: 1, Qt.Key.Key_Up: -1}
         pages = {Qt.Key.Key_PageDown: 1, Qt.Key.Key_PageUp: -1}
         if key in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
+            if event.isAutoRepeat():
+                # A key held too long is no further answer.
+                return True
             if event.modifiers() & Qt.KeyboardModifier.ControlModifier:
                 self.take.emit()
             else:
@@ -302,7 +315,7 @@ class QuestionPanel(QWidget):
             self.back.emit()
         elif key in pages:
             self.step(pages[Qt.Key(key)])
-        elif key in steps and self.choices.rows.choices and field in (None, self.field):
+        elif key in steps and self.choices.rows.choices and field in (None, self.field, self.rate.rate):
             self.choices.step(steps[Qt.Key(key)])
         else:
             return self._letter(event.text(), field, text)
@@ -310,8 +323,7 @@ class QuestionPanel(QWidget):
 
     def _letter(self, sign: str, field: QLineEdit | None, text: str) -> bool:
         choices = self.choices.rows.choices
-        figures = self.current is not None and self.current.typed == FIGURE
-        if field in (None, self.field) and not text and sign.isdigit() and self.choices.rows.numbered and not figures:
+        if field in (None, self.field) and not text and sign.isdigit() and self.choices.rows.numbered:
             at = int(sign) - 1
             if 0 <= at < len(choices):
                 self._give(choices[at])

@@ -58,8 +58,8 @@ class Session:
         return not self.digest or self.digest == reading.digest
 
     def forget_rows(self) -> None:
-        """Keep only what was answered about the list as a whole: the rows of the file have changed."""
-        self.answers = [one for one in self.answers if not one.asked.is_of_row]
+        """Keep only what holds for the source: the file has changed, and with it what was said of this list alone."""
+        self.answers = [one for one in self.answers if one.asked.is_remembered]
         self.back.clear()
 
     def drop_unsettled(self, before: ListReading | None, after: ListReading) -> Answer | None:
