@@ -16,9 +16,13 @@ _SPEAKS_OF_PRICES = re.compile(
 # A note about something beside the price says nothing of the price itself.
 _OF_SOMETHING_ELSE = re.compile(
     r"\b(?:freight|haulage|carriage|surcharges?|add|plus|less|levy|discounts?|commission|storage|fees?|min|minimum|"
-    r"deliver\w*|shipments?|deposit|demurrage)\b",
+    r"deliver(?:y|ies|ing)?|shipments?|deposit|demurrage)\b",
     re.IGNORECASE,
 )
+# What is said of all prices of a table, wherever in it that stands.
+_OF_ALL = re.compile(r"\b(?:all|our|these|the)\s+(?:prices|quotes|offers|quotations)\b|\ball\s+in\b", re.IGNORECASE)
+_PRICED_PER = re.compile(r"(?:[$€£¢]|\b[A-Z]{3}\b|\bc(?:en)?ts?\b)\s*(?:/|per\b)")
+_CLAUSES = re.compile(r"[;,.](?=\s|$)|\s[-–—]\s")
 _FREIGHT = re.compile(r"\b(?:freight|haulage|carriage|delivery|transport)\b", re.IGNORECASE)
 _DATE = (
     r"([0-9]{4}-[0-9]{1,2}-[0-9]{1,2}|[0-9]{1,2}[./-][0-9]{1,2}[./-](?:[0-9]{4}|[0-9]{2})|"
@@ -43,6 +47,20 @@ class Notes:
     without_freight: str = ""
 
 
+def speaks_of_all(text: str) -> bool:
+    """Whether a text within a table is about all of its prices, and not only about those below it."""
+    return _OF_ALL.search(text) is not None
+
+
+def speaks_of_prices(text: str) -> bool:
+    return _SPEAKS_OF_PRICES.search(text) is not None
+
+
+def speaks_of_something_else(text: str) -> bool:
+    """Whether a text is about something beside the price: freight, a minimum, a discount."""
+    return _OF_SOMETHING_ELSE.search(text) is not None
+
+
 def read_notes(table: RawTable, rows: Iterable[int], headings: int = 0) -> Notes:
     """The notes among rows: texts that speak of prices, alone in a row or, above the headings, beside one or two more.
 
@@ -53,12 +71,12 @@ def read_notes(table: RawTable, rows: Iterable[int], headings: int = 0) -> Notes
     for text in _texts(table, rows, headings):
         if _OF_SOMETHING_ELSE.search(text):
             freight = freight or (text if _FREIGHT.search(text) else "")
-            continue
-        speaks = _SPEAKS_OF_PRICES.search(text)
+            text = "; ".join(part for part in _CLAUSES.split(text) if not _OF_SOMETHING_ELSE.search(part))
+        speaks = _SPEAKS_OF_PRICES.search(text) or _PRICED_PER.search(text)
         if speaks:
             words = read_heading_words(text)
-            if words.unit or words.money.currencies:
-                units.append(Words(words.money, words.unit, "", words.dry))
+            if words.unit or words.money.currencies or words.dry or words.at_dry:
+                units.append(Words(words.money, words.unit, "", words.dry, words.as_fed, words.at_dry))
         if speaks or re.search(r"\bvalid\b|\beffective\b", text, re.IGNORECASE):
             first = first or _found(_FROM, text)
             last = last or _found(_TO, text)

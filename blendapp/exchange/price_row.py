@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
@@ -19,11 +20,12 @@ from blendapp.exchange.list_cells import shortened
 from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_numbers import DecimalSign
 from blendapp.exchange.list_row import TOTALS, RowReading
-from blendapp.exchange.price_cells import MOST_PAID, PriceCell, read_price_cell
+from blendapp.exchange.price_cells import MOST_PAID, PriceCell, read_merged_price
 from blendapp.exchange.price_choice import Priced, choose_price
 from blendapp.exchange.price_columns import PriceColumn
 from blendapp.exchange.price_days import read_days
 from blendapp.exchange.price_money import own_money
+from blendapp.exchange.price_sections import under
 from blendapp.exchange.price_terms import WITHOUT_FREIGHT, read_terms
 from blendapp.exchange.price_units import AmbiguousPriceUnit, UnknownPriceUnit, bag_with_weight, read_price_unit
 from blendapp.exchange.price_units_read import TonnePrice, UnitReading, bushel_said, per_tonne, read_unit
@@ -69,6 +71,7 @@ class _Reading(RowReading):
     ) -> None:
         self.segment, self.table = segment, segment.table
         self.library, self.today = library, today
+        self.section = segment.sections.over(row)
         super().__init__(raw, row, names, self.table.name, self.table.headings)
 
     def _entry(self, fate: Fate, reason: str, **known: object) -> PriceRow:
@@ -78,7 +81,9 @@ class _Reading(RowReading):
         if error := self._error():
             return self._entry(Fate.REFUSED, error)
         cells = [
-            (column, read_price_cell(self.raw, self.row, column, self.segment.signs.get(column.index)))
+            (column, read_merged_price(
+                self.raw, self.row, column, self.segment.signs.get(column.index), self.table.name
+            ))
             for column in self.table.prices
         ]
         prices = [(column, cell) for column, cell in cells if not cell.empty]
@@ -185,22 +190,25 @@ class _Reading(RowReading):
         if cell.both_ways:
             self.ask(Asked.DECIMAL, column.heading, cell.doubt, tuple(sign.value for sign in DecimalSign))
         elif cell.doubt:
-            self.ask(Asked.AMOUNT, "", cell.doubt, (LEAVE_OUT,))
+            self.ask(Asked.AMOUNT, "", cell.doubt, (*filter(None, [cell.proposed]), LEAVE_OUT))
 
     def _part(self, column: PriceColumn, cell: PriceCell, ingredient: Ingredient | None) -> _Part:
         """One price, or one freight, in money of the mill per tonne."""
         beside = self.text(self.table.first(ColumnRole.UNIT))
         pack = self.text(self.table.first(ColumnRole.PACK))
         words = read_unit_words(bag_with_weight(beside, pack)) if beside else NO_WORDS
+        head = under(self.section.words, column.words)
         unit = self._unit(column, cell, words)
         notes = self.segment.notes.units
         money = own_money(
-            self, cell.value, [cell.money, column.words.money, words.money],
+            self, cell.value, [cell.money, head.money, words.money],
             self.text(self.table.first(ColumnRole.CURRENCY)), [note.money for note in notes],
             self.library.mill.currency,
         )
         basis, _rest = split_dry(self.text(self.table.first(ColumnRole.TERMS)))
-        dry = cell.dry or column.words.dry or words.dry or basis or any(note.dry for note in notes)
+        says_as_fed = head.as_fed and not head.dry
+        dry = cell.dry or head.dry or words.dry or basis or (any(note.dry for note in notes) and not says_as_fed)
+        dry = self._basis(dry, head, column.words, notes)
         if money.value is None or unit.unit is None:
             return _Part(None, unit, dry, money.foreign)
         name = "" if ingredient is None else ingredient.name
@@ -214,10 +222,18 @@ class _Reading(RowReading):
 
     def _unit(self, column: PriceColumn, cell: PriceCell, words: Words) -> UnitReading:
         beside = Words(words.money, words.unit, "/" + words.rest if words.rest else "")
-        sources = [Words(cell.money, cell.unit, ""), beside, column.words]
-        if not any(one.unit or one.rest.startswith("/") for one in sources):
-            sources = list(self.segment.notes.units)
-        reading = read_unit(sources, self.library.mill)
+        of_row, notes = [Words(cell.money, cell.unit, ""), beside], self.segment.notes.units
+        section = self.section
+        if section.ended:
+            heads = [column.words, section.words] if _names_unit(column.words) else []
+        else:
+            heads = [under(section.words, column.words)]
+        sources = [*of_row, *heads]
+        if not any(map(_names_unit, sources)):
+            reading = read_unit([] if section.ended and section.words.unit else notes, self.library.mill)
+        else:
+            by_heading = not section.words.unit and not any(map(_names_unit, of_row))
+            reading = read_unit(sources, self.library.mill, notes if by_heading else ())
         if not reading.doubt:
             return reading
         answered = self.answers.unit(self.name, reading.about)
@@ -231,6 +247,26 @@ class _Reading(RowReading):
                 return UnitReading(unit, reading.said)
         self.ask(Asked.UNIT, reading.about, reading.doubt, reading.choices)
         return reading
+
+    def _basis(self, dry: bool, head: Words, column: Words, notes: Sequence[Words]) -> bool:
+        """Whether a price is for dry matter; asked where the list says a share of it beside the price."""
+        section, text = self.section, ""
+        about = head.at_dry or next((note.at_dry for note in notes if note.at_dry), "")
+        if about and not dry:
+            text = _("The list says “{words}” of the price; say whether it is for feed as fed, or for dry matter.")
+            text = text.format(words=about)
+        elif section.ended and section.words.dry and not column.dry:
+            about = section.ended
+            text = _("“{name}” stands below “{section}”; say whether the prices below it are for dry matter too.")
+            text = text.format(name=about, section=section.text)
+        if not text:
+            return dry
+        answer = self.answers.find(Asked.BASIS, about)
+        if answer is not None and answer.answer in tuple(Basis):
+            self.remarks.append(_("The basis was taken as answered: {basis}.").format(basis=_(answer.answer)))
+            return answer.answer == Basis.DRY_MATTER
+        self.ask(Asked.BASIS, about, text, tuple(one.value for one in Basis))
+        return False
 
     def _of_dry_matter(self, found: TonnePrice, ingredient: Ingredient | None) -> tuple[TonnePrice, float | None]:
         """A price for dry matter as one as fed, and the price for dry matter per tonne."""
@@ -284,6 +320,10 @@ class _Reading(RowReading):
         answer = self.answers.find(Asked.PRICE, about)
         if answer is None or answer.answer != TAKE:
             self.ask(Asked.PRICE, about, text, (TAKE,))
+
+
+def _names_unit(words: Words) -> bool:
+    return bool(words.unit) or words.rest.startswith("/")
 
 
 def _added(parts: list[_Part]) -> TonnePrice | None:

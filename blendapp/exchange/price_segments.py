@@ -7,7 +7,6 @@ from dataclasses import dataclass
 
 from blendapp.domain.list_rows import ColumnRole, SourceColumn, SourceTable
 from blendapp.domain.wording import _
-from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.list_columns import answered_sign, date_order
 from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_numbers import DateOrder, DecimalSign
@@ -15,7 +14,8 @@ from blendapp.exchange.list_placing import Placing
 from blendapp.exchange.list_walk import MOST_TABLES, TooManyTables
 from blendapp.exchange.price_cells import column_sign
 from blendapp.exchange.price_columns import Table
-from blendapp.exchange.price_notes import Notes, read_notes
+from blendapp.exchange.price_notes import Notes, read_notes, speaks_of_prices
+from blendapp.exchange.price_sections import NO_SECTION, Section, Sections, read_sections
 from blendapp.exchange.price_tables import headed_table
 from blendapp.exchange.price_words import Words
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
@@ -31,24 +31,25 @@ class Segment:
     signs: dict[int, DecimalSign | None]
     dates: dict[int, DateOrder | None]
     notes: Notes
+    sections: Sections
 
 
 def read_segments(raw: RawTable, table: Table, names: NameFinder, placing: Placing) -> Iterator[Segment]:
     """The table, and every further one below it that has headings of its own. Raises TooManyTables."""
-    first, titles, count = 0, Notes(), 1
+    first, titles, count, above = 0, Notes(), 1, NO_SECTION
     for row in range(table.first_row, len(raw.rows)):
         if row < table.first_row:  # the second heading row of a table found meanwhile
             continue
         found = headed_table(raw, row, names, placing) if _may_be_heading(raw, row, table) else None
         if found is None:
             continue
-        segment = _segment(raw, table, first, row, names.answers, titles)
+        segment = _segment(raw, table, first, row, names, titles, above)
         yield segment
-        titles = segment.notes
+        titles, above = segment.notes, _section_below(raw, segment)
         table, first, count = found, row, count + 1
         if count > MOST_TABLES:
             raise TooManyTables
-    yield _segment(raw, table, first, len(raw.rows), names.answers, titles)
+    yield _segment(raw, table, first, len(raw.rows), names, titles, above)
 
 
 def _may_be_heading(raw: RawTable, row: int, table: Table) -> bool:
@@ -63,9 +64,11 @@ def _may_be_heading(raw: RawTable, row: int, table: Table) -> bool:
 
 
 def _segment(
-    raw: RawTable, table: Table, first: int, last: int, answers: Answers, titles: Notes
+    raw: RawTable, table: Table, first: int, last: int, names: NameFinder, titles: Notes, above: Section
 ) -> Segment:
-    """titles: what notes of the tables above it say, which holds where its own notes are silent."""
+    """titles: what notes of the tables above it say, which holds where its own notes are silent. above: a heading that
+    stands over the table."""
+    answers = names.answers
     body = range(max(first, table.first_row), last)
     signs = {
         column.index: column_sign(raw, column.index, body) or answered_sign(answers, column.heading)
@@ -76,12 +79,26 @@ def _segment(
         index = table.first(role)
         if index is not None:
             dates[index] = date_order(raw, index, body, answers, table.headings[index])
-    notes = read_notes(raw, range(first, last), table.heading_rows.start if table.heading_rows else 0)
+    sections = read_sections(raw, table, body, names.is_known, above)
+    headings = table.heading_rows.start if table.heading_rows else 0
+    end = _last_row(raw, table, last)
+    # What stands below the last price is a footnote, unless it is the title of a further table.
+    taken = {
+        one.row for one in sections.found
+        if one.row < end or (last < len(raw.rows) and not speaks_of_prices(one.text))
+    }
+    notes = read_notes(raw, [row for row in range(first, last) if row not in taken], headings)
     notes = Notes(
         notes.units or titles.units, notes.valid_from or titles.valid_from, notes.valid_to or titles.valid_to,
         notes.without_freight or titles.without_freight,
     )
-    return Segment(table, first, last, signs, dates, notes)
+    return Segment(table, first, last, signs, dates, notes, sections)
+
+
+def _section_below(raw: RawTable, segment: Segment) -> Section:
+    """A heading at the end of a table, over no price of it: it stands over the next one."""
+    last = segment.sections.found[-1] if segment.sections.found else NO_SECTION
+    return last if last.row > _last_row(raw, segment.table, segment.last) and not last.ended else NO_SECTION
 
 
 def source_table(raw: RawTable, segment: Segment) -> SourceTable:
@@ -97,8 +114,9 @@ def source_table(raw: RawTable, segment: Segment) -> SourceTable:
         columns.append(SourceColumn(
             index, table.headings.get(index, ""), role, said or ("" if order is None else _(order.value))
         ))
+    last_row = _last_row(raw, table, segment.last) + 1
     return SourceTable(
-        tuple(row + 1 for row in table.heading_rows), table.first_row + 1, _last_row(raw, segment) + 1, tuple(columns)
+        tuple(row + 1 for row in table.heading_rows), table.first_row + 1, last_row, tuple(columns)
     )
 
 
@@ -131,11 +149,11 @@ def _says(words: Words, segment: Segment, index: int) -> str:
     return ", ".join(part for part in (said, *more) if part)
 
 
-def _last_row(raw: RawTable, segment: Segment) -> int:
+def _last_row(raw: RawTable, table: Table, end: int) -> int:
     """The last row of a table that fills a price, or two cells; what stands below it are its footnotes."""
-    first = segment.table.first_row
-    for row in range(segment.last - 1, first - 1, -1):
+    first = table.first_row
+    for row in range(end - 1, first - 1, -1):
         filled = [index for index, value in enumerate(raw.rows[row]) if kind_of(value) is not CellKind.BLANK]
-        if len(filled) > 1 or any(column.index in filled for column in segment.table.prices):
+        if len(filled) > 1 or any(column.index in filled for column in table.prices):
             return row
-    return max(first, segment.table.first_row)
+    return first

@@ -32,8 +32,45 @@ class UnitReading:
     choices: tuple[str, ...] = ()
 
 
-def read_unit(sources: Sequence[Words], mill: MillInfo) -> UnitReading:
-    """The unit that the sources of a row agree on; the first that names one comes first."""
+def read_unit(sources: Sequence[Words], mill: MillInfo, notes: Sequence[Words] = ()) -> UnitReading:
+    """The unit that the sources of a row agree on; the first that names one comes first.
+
+    notes: what titles say of all prices, which may explain the sources and may not gainsay them.
+    """
+    reading = _of_sources(sources, mill)
+    if reading.unit is None and not reading.choices:
+        return reading
+    meant = [reading.unit] if reading.unit else [read_price_unit(one, mill, True) for one in reading.choices]
+    for note in notes:
+        if not note.unit:
+            continue
+        try:
+            said = read_price_unit(note.unit, mill, cwt_is_100_lb=False)
+        except AmbiguousPriceUnit:
+            words = unit_choices(plain_words(note.unit))
+            if not any(read_price_unit(one, mill, True) in meant for one in words):
+                return _two_units(reading.said, note.unit)
+            continue
+        except UnknownPriceUnit:
+            continue
+        if said not in meant:
+            return _two_units(reading.said, note.unit)
+        if reading.unit is None and len(meant) < len(units.PRICE_PER):
+            reading = UnitReading(said, reading.said)
+            meant = [said]
+    return reading
+
+
+def _two_units(said: str, noted: str) -> UnitReading:
+    doubt = _("The list says {names} of one price; say which holds.")
+    names = _(" and ").join((f"“{said.strip('/')}”", f"“{noted}”"))
+    return UnitReading(
+        None, said, doubt.format(names=names), f"{plain_words(said)} / {plain_words(noted)}",
+        (said.strip("/"), noted),
+    )
+
+
+def _of_sources(sources: Sequence[Words], mill: MillInfo) -> UnitReading:
     found: dict[PriceUnit, str] = {}
     said = next((words.unit for words in sources if words.unit), "")
     for words in sources:

@@ -56,19 +56,32 @@ NO_MONEY = Money()
 class Words:
     """Words with their money and mass told apart. unit: as written, "" if none; rest: what is neither.
 
-    dry: whether they say that the price is for dry matter.
+    dry: whether they say that the price is for dry matter; as_fed: that it is not. at_dry: a share of dry matter that
+    they say beside a price, "85 % DM", which leaves open what the price is for.
     """
 
     money: Money
     unit: str
     rest: str
     dry: bool = False
+    as_fed: bool = False
+    at_dry: str = ""
 
 
 NO_WORDS = Words(NO_MONEY, "", "")
 # "88 % dry matter" names the goods, not what the price is for.
 _DRY = re.compile(
     r"(?<![%\w])(?<!% )(?:(?:on|in|of)\s+(?:a\s+)?)?(?:dry[ -]?(?:matter|basis|weight)|dm)(?:\s+basis)?\b",
+    re.IGNORECASE,
+)
+
+_AS_FED = re.compile(r"\bas[ -](?:fed|received|is)\b|\b(?:fresh|wet)[ -](?:weight|matter|basis)\b", re.IGNORECASE)
+_AT_DRY = re.compile(
+    r"\b(?:at|on|basis)\s+(?:an?\s+)?[0-9]+(?:[.,][0-9]+)? ?% ?(?:dm\b|dry[ -]?matter\b)", re.IGNORECASE
+)
+# What an analysis is on dry matter says nothing of the price.
+_ANALYSIS = re.compile(
+    r"\b(?:analys\w+|protein|fib(?:re|er)|ash|oil|fat|starch|sugars?|energy|ndf|adf|moisture|content|nutrients?)\b",
     re.IGNORECASE,
 )
 
@@ -122,20 +135,24 @@ def read_heading_words(text: str) -> Words:
 
     A mass that is named but not known is left in `rest` behind a slash.
     """
+    at_dry = _AT_DRY.search(text)
+    more = bool(_AS_FED.search(text)), at_dry[0] if at_dry and re.search(r"/|\bper\b|\bprices?\b", text, re.I) else ""
+    spoken = bool(_ANALYSIS.search(text))
     dry, text = split_dry(text)
+    dry = dry and not spoken
     money, rest = split_money(text)
     unknown = ""
     for found in _AFTER_PER.finditer(rest):
         words = re.split(r"[()\[\]]", found[1])[0].split()
         for count in range(len(words), 0, -1):
             if is_price_unit(" ".join(words[:count])):
-                return Words(money, " ".join(words[:count]), rest, dry)
+                return Words(money, " ".join(words[:count]), rest, dry, *more)
         if words and words[0].casefold() not in ("unit", "uom"):
             unknown = "/" + " ".join(words)
     for inside in re.findall(r"[(\[]([^()\[\]]*)[)\]]", rest):
         if is_price_unit(inside):
-            return Words(money, _tidy(inside), rest, dry)
-    return Words(money, "", unknown, dry)
+            return Words(money, _tidy(inside), rest, dry, *more)
+    return Words(money, "", unknown, dry, *more)
 
 
 def _tidy(text: str) -> str:
