@@ -104,7 +104,7 @@ def weigh(
     fixed = {
         key: _as_weighed(library, key, mass) for key, mass in asked.items() if key in shares and math.isfinite(mass)
     }
-    scales = [scales_for(library, ingredient) for ingredient in ingredients]
+    scales = [scales_for(library, ingredient, shares[ingredient.id]) for ingredient in ingredients]
     order = order_of(built, ingredients, scales, shares, batch_kg, total, fixed, (least_kg, greatest_kg))
     found = whole_batch(order, time_limit_s)
     if isinstance(found, NoBatch):
@@ -135,20 +135,51 @@ def tolerance_of(scale: Scale | None, ingredient: Ingredient) -> float:
     return CLOSE_TOLERANCE if close else USUAL_TOLERANCE
 
 
-def scales_for(library: Library, ingredient: Ingredient) -> list[Scale | None]:
+def scales_for(library: Library, ingredient: Ingredient, share_kg: float | None = None) -> list[Scale | None]:
     """The scales that may weigh an ingredient where the mill works, its own first, then the coarsest.
 
-    Hand-adds come last, but first for what is a hand-add itself. A liquid meter doses only what is assigned to it.
+    Hand-adds come last, but first for what is a hand-add itself. A liquid meter doses only what is assigned to it, or
+    to a meter elsewhere. Where its own scale is of another site, those most like that come first, see _like.
     [None] in a mill without scales.
     """
     here = library.scales
     if not here:
         return [None]
     own: Scale | None = None if ingredient.scale_id is None else library.records["scale"].get(ingredient.scale_id)
+    if own is not None and own not in here:
+        dosed = own.by_volume and (ingredient.density_kg_per_l or 0) > 0
+        usable = [scale for scale in here if dosed or not scale.by_volume]
+        return [*sorted(usable, key=lambda scale: _like(scale, own, ingredient, share_kg))]
     by_hand = own is not None and own.hand_add
     others = [scale for scale in here if not scale.by_volume and (own is None or scale.id != own.id)]
     others.sort(key=lambda scale: (scale.hand_add != by_hand, -(scale.step_kg or 0.0), scale.id))
-    return [own, *others] if own is not None and own in here else [*others]
+    return [own, *others] if own is not None else [*others]
+
+
+def _like(
+    scale: Scale, own: Scale, ingredient: Ingredient, share_kg: float | None
+) -> tuple[bool, int, bool, float, int]:
+    """How well a scale stands in for one of another site, the least first.
+
+    What can take the share, then what is of the same kind (meter, weighing, by hand), and else weighing before by hand.
+    Of those the one whose step is nearest by ratio; but what is coarser than the own scale comes after all others
+    unless its step is within the tolerance of the share, since what that scale keeps must still be kept.
+    """
+    span, of_own = scale.span(ingredient.density_kg_per_l), own.span(ingredient.density_kg_per_l)
+    step = 0.0 if span is None else span.step_kg
+    own_step = 0.0 if of_own is None else of_own.step_kg
+    takes = span is None or share_kg is None or (
+        max(step, span.least_kg or 0.0) <= share_kg and (span.greatest_kg is None or share_kg <= span.greatest_kg)
+    )
+    kind = 0 if _kind(scale) == _kind(own) else 1 + scale.hand_add
+    known = step > 0 and own_step > 0
+    ratio = abs(math.log(step / own_step)) if known else -step
+    within = share_kg is not None and step <= tolerance_of(scale, ingredient) * share_kg
+    return not takes, kind, not within and not (known and step <= own_step), ratio, scale.id
+
+
+def _kind(scale: Scale) -> tuple[bool, bool]:
+    return scale.by_volume, scale.hand_add
 
 
 # How far, in kg, a fixed mass may lie from whole steps that are no whole grams: it is read from a sheet in grams.
@@ -158,7 +189,7 @@ _READ_KG = 0.0005
 def _as_weighed(library: Library, ingredient_id: int, mass_kg: float) -> float:
     """A fixed mass, brought to the whole steps that it was read from where these are litres or pounds."""
     ingredient = library.ingredient(ingredient_id)
-    own = next(iter(scales_for(library, ingredient)), None)
+    own = next(iter(scales_for(library, ingredient, mass_kg)), None)
     span = None if own is None else own.span(ingredient.density_kg_per_l)
     if span is None or not span.step_kg > 2 * _READ_KG:
         return mass_kg
@@ -252,9 +283,21 @@ def _result(
     counts = (one.index for one in limits if one.kind is LimitKind.COUNT and broken_by(one) is not None)
     first = next((stage for stage in found.stages if not stage.proven), None)
     return Weighing(
-        lines, limits, nutrients, tuple(sorted({*found.broken, *counts})), tuple(_notes(lines)),
+        lines, limits, nutrients, tuple(sorted({*found.broken, *counts})),
+        (*_notes(lines), *_stand_ins(library, lines)),
         "" if first is None else first.aim, None if first is None else first.gap,
     )
+
+
+def _stand_ins(library: Library, lines: Sequence[WeighedLine]) -> list[str]:
+    """Which ingredients are weighed on which scale in place of their own, which is of another site."""
+    found: dict[tuple[str, str], list[str]] = {}
+    for line in lines:
+        own: Scale | None = library.records["scale"].get(line.ingredient.scale_id or 0)
+        if own is not None and line.scale is not None and line.target_kg and own not in library.scales:
+            found.setdefault((line.scale.name, own.name), []).append(line.ingredient.name)
+    text = _("On {scale} in place of {own}, which is not at this site: {ingredients}.")
+    return [text.format(scale=scale, own=own, ingredients=", ".join(names)) for (scale, own), names in found.items()]
 
 
 def _notes(lines: Sequence[WeighedLine]) -> list[str]:
