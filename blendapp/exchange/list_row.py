@@ -12,7 +12,7 @@ from blendapp.domain.wording import _
 from blendapp.exchange.list_cells import error_in, shortened
 from blendapp.exchange.list_names import Match, NameFinder
 from blendapp.exchange.list_numbers import DateOrder, date_in_column, date_readings
-from blendapp.exchange.tables import CellKind, RawTable, column_letters, kind_of
+from blendapp.exchange.tables import CellKind, CellValue, RawTable, column_letters, kind_of
 
 # What stands in place of a name where a row is about several others.
 TOTALS = frozenset({
@@ -43,9 +43,16 @@ class RowReading:
     def reason(self) -> str:
         return " ".join(dict.fromkeys(self.questions if self.questions else self.remarks))
 
+    def value(self, column: int) -> CellValue:
+        """What stands in a column; of cells that are merged downwards, what stands in the first of them."""
+        value = self.raw.cell(self.row, column)
+        if kind_of(value) is CellKind.BLANK:
+            return self.raw.cell(self.raw.top_of_merged(self.row, column), column)
+        return value
+
     def text(self, column: int | None) -> str:
         """What stands in a column, as the person sees it."""
-        value = None if column is None else self.raw.cell(self.row, column)
+        value = None if column is None else self.value(column)
         kind = kind_of(value)
         if kind is CellKind.TEXT:
             return " ".join(str(value).split())
@@ -115,7 +122,7 @@ class RowReading:
 
     def date(self, column: int, order: DateOrder | None) -> datetime.date | None:
         """The day in a column whose order of day and month is decided or not; None where it holds none."""
-        value = self.raw.cell(self.row, column)
+        value = self.value(column)
         if kind_of(value) is CellKind.BLANK:
             return None
         if isinstance(value, datetime.datetime):

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
@@ -25,7 +25,7 @@ class PriceCell:
     """value: the price, None where there is none or it is in doubt. empty: says that there is none. entered: as shown.
 
     doubt: the question, "" without one. both_ways: the column does not tell its decimal sign.
-    unit, money: what stands beside the number. as_text: a number stored as text.
+    unit, money: what stands beside the number. as_text: a number stored as text. proposed: an answer to the doubt.
     """
 
     value: float | None = None
@@ -38,6 +38,7 @@ class PriceCell:
     both_ways: bool = False
     dry: bool = False
     wordy: bool = False
+    proposed: str = ""
 
 
 def column_sign(table: RawTable, column: int, rows: Iterable[int]) -> DecimalSign | None:
@@ -65,6 +66,22 @@ def read_price_cell(table: RawTable, row: int, column: PriceColumn, sign: Decima
     text = _("The cell {place} holds a date, a time, a percentage or a truth value; say what the price is.")
     entered = f"{value.amount:%}" if isinstance(value, PercentCell) else str(value)
     return PriceCell(entered=entered, doubt=text.format(place=place(row, column.index)))
+
+
+def read_merged_price(
+    table: RawTable, row: int, column: PriceColumn, sign: DecimalSign | None, name_column: int | None
+) -> PriceCell:
+    """As read_price_cell; a price that stands in the row of another name and is merged over this one is in doubt."""
+    found = read_price_cell(table, row, column, sign)
+    top = table.top_of_merged(row, column.index)
+    if top == row or not found.empty or found.entered or name_column is None:
+        return found
+    above = read_price_cell(table, top, column, sign)
+    if above.value is None or kind_of(table.cell(row, name_column)) is CellKind.BLANK:
+        return found
+    text = _("The price {price} in {place} is merged over this row too; say whether it holds here.")
+    said = text.format(price=above.entered, place=place(top, column.index))
+    return replace(above, doubt=said, proposed=PLAIN.write_exact(above.value))
 
 
 def _text_cell(text: str, sign: DecimalSign | None, spreadsheet: bool) -> PriceCell:

@@ -55,7 +55,7 @@ def _expired(day: datetime.date) -> str:
 def _date(row: RowReading, segment: Segment, role: ColumnRole, noted: str) -> datetime.date | None:
     """The day in a column, or else in a note over the whole table."""
     index = segment.table.first(role)
-    if index is None or kind_of(row.raw.cell(row.row, index)) is CellKind.BLANK:
+    if index is None or kind_of(row.value(index)) is CellKind.BLANK:
         return row.read_date(noted, noted, decide_date_order([noted])) if noted else None
     return row.date(index, segment.dates.get(index))
 

@@ -3,9 +3,11 @@
 from __future__ import annotations
 
 import datetime
+from bisect import bisect_right
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from enum import Enum
+from functools import cached_property
 from typing import NamedTuple
 
 
@@ -94,6 +96,23 @@ class RawTable:
         """The value of a cell; None beyond the end of its row."""
         cells = self.rows[row]
         return cells[column] if column < len(cells) else None
+
+    def top_of_merged(self, row: int, column: int) -> int:
+        """The row in which the value of a cell stands: further up where cells are merged downwards, else the same."""
+        ranges = self._downwards.get(column)
+        if not ranges:
+            return row
+        found = bisect_right(ranges, (row, 1 << 30)) - 1
+        return ranges[found][0] if found >= 0 and row <= ranges[found][1] else row
+
+    @cached_property
+    def _downwards(self) -> dict[int, list[tuple[int, int]]]:
+        """First and last row of the cells that are merged downwards, by their first column, from the top."""
+        found: dict[int, list[tuple[int, int]]] = {}
+        for one in sorted(self.merged):
+            if one.first_row < one.last_row:
+                found.setdefault(one.first_column, []).append((one.first_row, one.last_row))
+        return found
 
     def is_blank(self, row: int) -> bool:
         return all(kind_of(value) is CellKind.BLANK for value in self.rows[row])
