@@ -31,6 +31,8 @@ def weighing_table(batch: Batch, page: BatchPage, width: float) -> list[Block]:
     total = notation().write(*_sum_shown(groups))
     layout = Layout(batch, page, groups, total, width)
     blocks: list[Block] = []
+    if page is not BatchPage.MASTER and any(group.band(line) for group in groups for line in group.lines):
+        blocks += paragraph(_("In small figures: what may be weighed."), LABEL, width, gap=14, keep_next=True)
     number, titles = 0, None
     for group in groups:
         rows = layout.rows(group)

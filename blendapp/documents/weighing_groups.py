@@ -29,6 +29,8 @@ _MOST_SPARE = 40.0
 # Names keep this width; places to write in give up to a quarter of theirs for it.
 _LEAST_NAME = 110.0
 _LEAST_ROOM = 0.75
+# What may be weighed takes a second line beyond this.
+_MOST_BAND = 88.0
 # Nothing is written into a master record.
 _LEAST_RECORD_ROW = 8.5 * MM
 
@@ -98,15 +100,25 @@ class Group:
             return with_unit(figures.write_volume(line.target_l, line.step_l), self.volume_unit)
         return self.mass(line)
 
-    def tolerance(self, line: BatchLine, unit: str) -> str:
-        """"± 5 kg": in whole steps of the scale, since it shows no others; "" where none is known."""
+    def band(self, line: BatchLine) -> list[str]:
+        """"0.904 to 0.921 kg": what may be weighed, in steps of the scale and the unit that it shows; [] if not known.
+
+        It lies around the share, not around the target, which is itself off by what a step leaves. A long one has two
+        lines.
+        """
         if line.tolerance_kg is None or not line.target_kg:
-            return ""
-        steps = figures.within_steps(line.tolerance_kg, line.step_kg)
+            return []
+        band = figures.band_in_steps(line.share_kg, line.tolerance_kg, line.step_kg, line.target_kg)
         if line.step_l is not None:
-            figure = figures.write_volume(steps * line.step_l, line.step_l)
-            return "±\u00a0" + with_unit(figure, self.volume_unit)
-        return "±\u00a0" + with_unit(figures.write_mass(steps * line.step_kg, line.step_kg, unit), unit)
+            unit, texts = self.volume_unit, [figures.write_volume(n * line.step_l, line.step_l) for n in band]
+        else:
+            unit = self.own_unit
+            texts = [figures.write_mass(n * line.step_kg, line.step_kg, unit) for n in band]
+        least, most = texts
+        if least == most:
+            return [_("exactly {value}").format(value=with_unit(least, unit))]
+        words = _("{least} to {greatest}").format(least=least, greatest=with_unit(most, unit))
+        return DETAIL.wrap(words, max(_MOST_BAND, DETAIL.width(with_unit(most, unit))))
 
 
 def in_order(lines: Sequence[BatchLine]) -> list[list[BatchLine]]:
@@ -137,9 +149,10 @@ class Layout:
         self._number = LABEL.width(str(len(batch.lines))) + 2
         shown = [(group, line) for group in groups for line in group.lines]
         figure_widths = [TARGET.width(group.target(line)) for group, line in shown]
-        tolerances = [DETAIL.width(self._tolerance_words(group, line)) for group, line in shown]
-        self._tolerance = max([*tolerances, 54.0]) + 2
-        self._target = max([*figure_widths, *([] if self._master else tolerances), TARGET.width(total), 52.0]) + 2
+        bands = [(group, DETAIL.width(text)) for group, line in shown for text in group.band(line)]
+        self._band = max([*(width for _group, width in bands), 54.0]) + 2
+        under = [width for group, width in bands if not group.foreign and not self._master]
+        self._target = max([*figure_widths, *under, TARGET.width(total), 52.0]) + 2
         tails = [self._tail(group) for group in groups]
         self._tail_width = max((_taken(tail) for tail in tails), default=0.0)
 
@@ -159,20 +172,18 @@ class Layout:
 
     def cells(self, group: Group, number: int, line: BatchLine, running: str) -> list[list[Text]]:
         target = [(group.target(line), TARGET)]
-        tolerance = self._tolerance_words(group, line)
-        if tolerance and not self._master:
-            target.append((tolerance, DETAIL))
+        band: list[Text] = [(text, DETAIL) for text in group.band(line)]
+        # What may be weighed stands under the figure that the scale shows.
+        if not self._master and not group.foreign:
+            target += band
         name = [(line.ingredient, NAME), *((words, DETAIL) for words in details(line, self._page))]
         tail: list[list[Text]] = [[] for _column in self._tail(group)]
         beside = self._beside(group, line, running)
         if beside:
             tail[0] = beside
         if self._master:
-            tail[-2:] = [[(tolerance, DETAIL)], [(write_share(line.target_kg / self._total_kg), BESIDE)]]
+            tail[-2:] = [band, [(write_share(line.target_kg / self._total_kg), BESIDE)]]
         return [[(str(number), LABEL)], name, target, *tail]
-
-    def _tolerance_words(self, group: Group, line: BatchLine) -> str:
-        return group.tolerance(line, group.own_unit if self._master else group.unit)
 
     def has_running(self, group: Group) -> bool:
         """A running total helps on a scale that stands at it; on one that shows another unit it would mislead."""
@@ -189,8 +200,8 @@ class Layout:
             return [(group.mass(line), BESIDE)]
         if group.foreign:
             mass = figures.write_mass(line.target_kg, line.step_kg, group.own_unit)
-            tolerance = "" if self._master else group.tolerance(line, group.own_unit)
-            return [(mass, BESIDE), *([(tolerance, DETAIL)] if tolerance else [])]
+            band: list[Text] = [] if self._master else [(text, DETAIL) for text in group.band(line)]
+            return [(mass, BESIDE), *band]
         return [(running, BESIDE)] if self.has_running(group) else []
 
     def _tail(self, group: Group) -> list[Column]:
@@ -200,7 +211,7 @@ class Layout:
             found.append(self._beside_column(group))
         if self._master:
             share = Column(_("% of the total"), 62.0, right=True)
-            return [*found, Column(_("Tolerance"), self._tolerance, right=True), share]
+            return [*found, Column(_("May be weighed"), self._band, right=True), share]
         lot = _("Bin, lot") if self._page is BatchPage.BLANK else _("Lot")
         weighed = _("Dosed {unit}") if group.by_volume else _("Weighed {unit}")
         unit = group.volume_unit if group.by_volume else group.own_unit

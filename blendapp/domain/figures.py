@@ -118,9 +118,15 @@ def write_volume(litres: float, step_l: float) -> str:
     return notation().write(litres / unit_l, decimals_of_step(step_l / unit_l))
 
 
-def within_steps(tolerance_kg: float, step_kg: float) -> int:
-    """How many steps of its scale a weighing may be off: what a tolerance comes to on that scale."""
-    return math.floor(tolerance_kg / step_kg + 1e-6)
+def band_in_steps(share_kg: float, tolerance_kg: float, step_kg: float, target_kg: float) -> tuple[float, float]:
+    """The least and the most that may be weighed, in steps of the scale: what lies within the tolerance of the share.
+
+    The target is always in it, even where a person set it outside; a line that is weighed at all is at least a step.
+    """
+    target = round(target_kg / step_kg, 6)
+    least = max(1, math.ceil((share_kg - tolerance_kg) / step_kg - 1e-6))
+    most = math.floor((share_kg + tolerance_kg) / step_kg + 1e-6)
+    return min(least, target), max(most, target)
 
 
 def _is_plain(step: float, most_decimals: int) -> bool:

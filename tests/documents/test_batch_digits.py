@@ -113,20 +113,58 @@ def test_a_residue_stands_in_pounds() -> None:
     assert float(found[2]) == pytest.approx(abs(residue_lb), rel=1e-3)
 
 
-@pytest.mark.parametrize(("batch", "least"), [(made.FULL, 5.0), (made.US, 5 * LB_KG)])
-def test_the_tolerance_under_a_target_is_the_most_whole_steps_within_it(batch: Batch, least: float) -> None:
-    shown = [p.text.strip() for p in pieces(batch_sheet(batch)) if p.size == 10 and p.text.startswith("±")]
-    hopper = [line for line in batch.lines if line.scale == made.HOPPER]
-    for text, line in zip(shown, hopper, strict=False):
-        number, unit = re.fullmatch(r"±\s([\d.]+)\s(kg|lb)", text).groups()  # type: ignore[union-attr]
-        kg = float(number) * (LB_KG if unit == "lb" else 1)
-        assert unit == batch.mass_unit
-        assert kg <= line.tolerance_kg + 1e-9 < kg + least  # type: ignore[operator]
+def bands(pdf: bytes) -> list[tuple[float, float, str]]:
+    """Least, most and unit of what may be weighed, line by line."""
+    found = [re.fullmatch(r"([\d.]+) to ([\d.]+)\s(kg|lb|l|US gal)\s*", p.text) for p in pieces(pdf) if p.size == 10]
+    return [(float(m[1]), float(m[2]), m[3]) for m in found if m]
+
+
+@every_page
+@every_paper
+@pytest.mark.parametrize("batch", [made.FULL, made.US, dataclasses.replace(made.FULL, mass_unit="lb")])
+def test_what_may_be_weighed_is_every_step_of_the_scale_within_the_tolerance_of_the_share(
+    draw: Page, paper: Paper, batch: Batch
+) -> None:
+    sizes = {"kg": 1.0, "lb": LB_KG, "l": 1.0, "US gal": made.GALLON_L}
+    lines = lines_in_order(batch)
+    for (least, most, unit), line in zip(bands(draw(batch, paper)), lines, strict=True):
+        assert line.tolerance_kg is not None
+        step = line.step_kg if line.step_l is None else line.step_l
+        steps = range(1, 3000)
+        allowed = [n for n in steps if abs(n * line.step_kg - line.share_kg) <= line.tolerance_kg + 1e-9]
+        assert least * sizes[unit] == pytest.approx(allowed[0] * step, rel=1e-9)
+        assert most * sizes[unit] == pytest.approx(allowed[-1] * step, rel=1e-9)
+        assert allowed[0] * line.step_kg - 1e-9 <= line.target_kg <= allowed[-1] * line.step_kg + 1e-9
+
+
+def test_a_medicated_line_near_the_end_of_its_tolerance_may_not_be_weighed_beyond_it() -> None:
+    line = dataclasses.replace(
+        made.FULL.lines[-1], step_kg=0.001, share_kg=0.9125, target_kg=0.921, tolerance_kg=0.009125
+    )
+    for draw in (batch_sheet, master_record, blank_record):
+        assert "0.904to0.921kg" in squeezed(page_text(draw(dataclasses.replace(made.FULL, lines=(line,)))))
+
+
+def test_a_line_with_one_step_within_its_tolerance_is_to_be_weighed_exactly() -> None:
+    line = dataclasses.replace(made.FULL.lines[0], share_kg=102.0, target_kg=100.0, tolerance_kg=2.04)
+    assert "exactly100kg" in squeezed(page_text(batch_sheet(dataclasses.replace(made.FULL, lines=(line,)))))
+
+
+def test_very_long_figures_of_what_may_be_weighed_stand_in_two_lines() -> None:
+    line = dataclasses.replace(
+        made.FULL.lines[0], step_kg=0.000001, share_kg=12345.123456, target_kg=12345.123456, tolerance_kg=246.902469
+    )
+    pdf = batch_sheet(dataclasses.replace(made.FULL, lines=(line,)))
+    small = [squeezed(p.text) for p in pieces(pdf) if p.size == 10]
+    assert "12098.220987to" in small
+    assert "12592.025925kg" in small
 
 
 def test_a_line_without_a_tolerance_shows_none() -> None:
     lines = tuple(dataclasses.replace(line, tolerance_kg=None) for line in made.FULL.lines)
-    assert "±" not in squeezed(page_text(batch_sheet(dataclasses.replace(made.FULL, lines=lines))))
+    pdf = batch_sheet(dataclasses.replace(made.FULL, lines=lines))
+    assert bands(pdf) == []
+    assert "maybeweighed" not in squeezed(page_text(pdf))
 
 
 def test_running_totals_of_a_scale_add_up_what_stands_above_them() -> None:

@@ -3,13 +3,13 @@ from __future__ import annotations
 import pytest
 
 from blendapp.domain.figures import (
+    band_in_steps,
     decimals_of,
     decimals_of_mass,
     decimals_of_step,
     mass_in,
     unit_of_meter,
     unit_of_scale,
-    within_steps,
     write_kg,
     write_mass,
     write_measure,
@@ -102,7 +102,20 @@ def test_a_meter_shows_the_unit_in_which_its_step_is_plain() -> None:
 
 
 @pytest.mark.parametrize(
-    ("tolerance", "step", "steps"), [(9.4, 5, 1), (10, 5, 2), (0.3, 0.1, 3), (5, 5, 1), (4.9, 5, 0)]
+    ("share", "tolerance", "step", "target", "band"),
+    [
+        (0.9125, 0.009125, 0.001, 0.921, (904, 921)),
+        (0.3, 0.1, 0.1, 0.3, (2, 4)),
+        (7.5, 5, 5, 10, (1, 2)),
+        (12, 5, 5, 10, (2, 3)),
+        # A line that is weighed at all is not weighed as nothing.
+        (3, 5, 5, 5, (1, 1)),
+        # What a person set outside its tolerance stays the target.
+        (100, 2, 5, 120, (20, 24)),
+        (102, 1, 5, 100, (20, 20)),
+    ],
 )
-def test_a_tolerance_comes_to_the_whole_steps_within_it(tolerance: float, step: float, steps: int) -> None:
-    assert within_steps(tolerance, step) == steps
+def test_what_may_be_weighed_lies_within_the_tolerance_of_the_share_in_whole_steps(
+    share: float, tolerance: float, step: float, target: float, band: tuple[float, float]
+) -> None:
+    assert band_in_steps(share, tolerance, step, target) == band
