@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import threading
 from pathlib import Path
 
 import pytest
@@ -11,6 +12,7 @@ from PySide6.QtWidgets import QApplication
 
 from blendapp.desk.bench import Bench
 from blendapp.desk.prices.asking import answer_words
+from blendapp.desk.prices.reader import read_list
 from blendapp.domain.list_rows import TAKE, Fate
 from blendapp.domain.mills import Asked
 from tests.desk.arriving import (
@@ -109,11 +111,19 @@ def test_the_enter_that_answers_the_last_question_does_not_take_the_list(
     bench: Bench, hands: Hands, tmp_path: Path
 ) -> None:
     open_list(bench, tmp_path / "list.xlsx", TEN_TIMES)
+    go = threading.Event()
+
+    def slow(*arguments):  # type: ignore[no-untyped-def]
+        go.wait(20)
+        return read_list(*arguments)
+
+    bench.prices.reader.read = slow
     hands.key(Qt.Key.Key_Down)
     assert bench.prices.questions.choices.marked is not None
     hands.key(ENTER)
     # Pressed again before the list is read with the answer.
     hands.key(ENTER)
+    go.set()
     wait(bench)
     assert bench.prices.questions.current is None
     assert QApplication.focusWidget() is not bench.prices.take

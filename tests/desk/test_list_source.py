@@ -88,7 +88,7 @@ def test_another_role_is_given_to_a_column_by_keys_by_a_click_and_by_the_finder(
     source.setFocus()
     source.setCurrentIndex(source.rows.index(1, 2))
     hands.key(Qt.Key.Key_Return)
-    choose(bench, hands, "not to be read")
+    choose(bench, hands, "not read")
     assert roles(bench)[2] == "not read"
     # By a click on the words above it.
     x = source.head.sectionViewportPosition(1) + 20
@@ -196,3 +196,25 @@ def test_only_the_cells_in_view_of_a_long_wide_list_are_made_and_painted(
                                                 (702, "AAA"), (16383, "XFD")])
 def test_columns_are_lettered_as_spreadsheets_letter_them(index: int, letters: str) -> None:
     assert column_letters(index) == letters
+
+
+def test_a_word_that_is_no_role_is_said_to_be_none_and_the_roles_are_listed(
+    bench: Bench, hands: Hands, tmp_path: Path
+) -> None:
+    read(bench, write(tmp_path / "list.xlsx", MOVED))
+    source, finder = bench.prices.source, bench.finder
+    source.setFocus()
+    source.setCurrentIndex(source.rows.index(1, 2))
+    hands.key(Qt.Key.Key_Return)
+    offered = [one.words for one in finder.found.found]
+    assert "This column is: not read" in offered
+    assert not finder.none.isVisible()
+    hands.write("xyzzy")
+    assert finder.none.isVisible()
+    assert finder.none.text() == "No such role. There are these:"
+    assert [one.words for one in finder.found.found] == offered
+    # Nothing that was not asked for is done by Enter.
+    hands.key(Qt.Key.Key_Return)
+    assert finder.isVisible()
+    hands.key(Qt.Key.Key_Down)
+    assert finder.list.currentIndex().row() == 0

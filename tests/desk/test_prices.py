@@ -2,19 +2,29 @@
 
 from __future__ import annotations
 
+import datetime
 import threading
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QFontMetrics
 from pytestqt.qtbot import QtBot
 
 from blendapp.desk.bench import Bench
 from blendapp.desk.prices import effect
+from blendapp.desk.table.cell import PAD_PX
+from blendapp.desk.theme import text_font
 from blendapp.domain.list_rows import Fate
+from blendapp.domain.mills import Asked, ListAbout
+from blendapp.domain.plant import Site
+from blendapp.domain.records import Change, added
+from blendapp.services import price_history
 from blendapp.services.formulate import formulate
+from blendapp.services.lists import roll_back
 from blendapp.services.movers import movers
-from tests.desk.arriving import price, read, wait, watch
+from tests.desk.arriving import DUPLICATES, count, price, read, wait, watch, write
 from tests.desk.conftest import Hands
 
 
@@ -85,6 +95,82 @@ def test_a_file_that_cannot_be_read_is_named_in_a_sentence(bench: Bench, tmp_pat
     read(bench, path)
     assert bench.frame.middle.currentWidget() is bench.frame.bench
     assert "photo.xlsx" in bench.strip.words.text()
+
+
+def test_a_refused_file_takes_the_place_of_the_list_that_was_in_view_and_offers_nothing_to_take(
+    bench: Bench, hands: Hands, price_list: Path, tmp_path: Path
+) -> None:
+    testers = watch(bench)
+    read(bench, price_list)
+    assert bench.prices.take.isEnabled()
+    path = tmp_path / "photo.xlsx"
+    path.write_bytes(b"PK\x03\x04 half a workbook")
+    read(bench, path)
+    parts = bench.prices.parts
+    assert bench.frame.middle.currentWidget() is bench.prices
+    assert parts.title.text() == "photo.xlsx"
+    assert parts.notes.text().startswith("photo.xlsx: ")
+    assert parts.counts.read.text() == "0 rows read:"
+    assert (bench.prices.take.text(), bench.prices.take.isEnabled()) == ("Nothing to take yet", False)
+    assert not bench.prices.look.isEnabled()
+    assert not bench.prices.rows.owners
+    assert not parts.whose.isVisible()
+    for keys in (Qt.KeyboardModifier.NoModifier, Qt.KeyboardModifier.ControlModifier):
+        hands.key(Qt.Key.Key_Return, keys)
+    assert bench.work.mill.undo_text is None
+    # The list that was in view is read again like any other.
+    read(bench, price_list)
+    assert bench.prices.take.isEnabled()
+    assert parts.whose.isVisible()
+    assert testers
+
+
+def test_while_another_file_is_read_the_list_in_view_is_not_taken_in_its_place(
+    bench: Bench, hands: Hands, price_list: Path, tmp_path: Path
+) -> None:
+    read(bench, price_list)
+    bench.arrivals.choose(ListAbout.PRICES, write(tmp_path / "other.xlsx", DUPLICATES))
+    hands.key(Qt.Key.Key_Return, Qt.KeyboardModifier.ControlModifier)
+    assert bench.work.mill.undo_text is None
+    wait(bench)
+    assert bench.prices.parts.title.text() == "other.xlsx"
+
+
+def test_a_refused_file_that_was_mended_is_read_by_the_same_key(
+    bench: Bench, hands: Hands, price_list: Path, tmp_path: Path
+) -> None:
+    read(bench, price_list)
+    path = tmp_path / "list.xlsx"
+    path.write_bytes(b"PK\x03\x04 half a workbook")
+    read(bench, path)
+    write(path, DUPLICATES)
+    hands.key(Qt.Key.Key_F5)
+    wait(bench)
+    assert bench.prices.questions.count.text() == "2 questions left"
+
+
+def test_a_list_that_stays_open_over_midnight_is_read_for_the_new_day(bench: Bench, tmp_path: Path) -> None:
+    work = bench.work
+    today = work.on
+    work.day = lambda: today
+    last = today.isoformat()
+    read(bench, write(tmp_path / "list.xlsx", [
+        ["Ingredient", "USD/t", "Valid to"], ["Maize", 201, last], ["Limestone", 51, "2999-01-31"]]))
+    assert count(bench, Fate.ACCEPTED) == 2
+    work.day = lambda: today + datetime.timedelta(days=1)
+    bench.day.look()
+    wait(bench)
+    assert count(bench, Fate.ACCEPTED) == 1
+    assert bench.prices.questions.current is not None
+    assert bench.prices.questions.current.question.asked is Asked.EXPIRED
+
+
+def test_a_price_ten_times_too_high_has_room_for_its_change(bench: Bench, tmp_path: Path) -> None:
+    read(bench, write(tmp_path / "list.xlsx", [["Ingredient", "USD/t"], ["Maize", 2000]]))
+    cell = bench.prices.rows.cell(0, "change")
+    assert cell.data() == "+1800.00"
+    room = bench.prices.table.columnWidth(cell.column()) - 2 * PAD_PX
+    assert QFontMetrics(text_font()).horizontalAdvance("+18000.00") <= room
 
 
 def test_days_terms_and_a_price_for_dry_matter_stand_below_the_row(bench: Bench, tmp_path: Path) -> None:
@@ -214,10 +300,53 @@ def test_what_prices_did_can_be_come_back_to_and_says_when_it_is_of_before_an_ed
     worked_out(bench, qtbot)
     assert bench.effect.remark.whole == "2 mixes kept, 0 changed"
     hands.key(Qt.Key.Key_Escape)
-    hands.key(Qt.Key.Key_Z, Qt.KeyboardModifier.ControlModifier)
-    assert bench.work.library.price_per_t(1, bench.work.on) == 200
+    bench.work.do(lambda mill: price_history.add_quote(mill, 1, 205.0, bench.work.on))
     command = next(one for one in bench.things() if one.words == "What the last prices did")
     command.run()
     assert bench.frame.middle.currentWidget() is bench.effect
-    assert "edited since" in bench.effect.remark.whole
+    assert bench.effect.remark.whole == "2 mixes kept, 0 changed; edited since"
     assert text(bench, 1, "most")
+
+
+def test_what_prices_did_says_so_once_they_are_taken_back_and_no_longer_when_they_count_again(
+    bench: Bench, hands: Hands, price_list: Path, qtbot: QtBot
+) -> None:
+    read(bench, price_list)
+    hands.click(bench.prices.take)
+    worked_out(bench, qtbot)
+    assert bench.effect.title.text() == "What the new prices do"
+    hands.key(Qt.Key.Key_Z, Qt.KeyboardModifier.ControlModifier)
+    assert bench.frame.middle.currentWidget() is bench.effect
+    assert price(bench, 1) == 200
+    assert bench.effect.title.text() == "Taken back: what the new prices did"
+    assert bench.effect.remark.whole == "the prices before them count again; they had: 2 mixes kept, 0 changed"
+    hands.key(Qt.Key.Key_Z, Qt.KeyboardModifier.ControlModifier | Qt.KeyboardModifier.ShiftModifier)
+    assert price(bench, 1) == 210
+    assert bench.effect.title.text() == "What the new prices do"
+    assert bench.effect.remark.whole == "2 mixes kept, 0 changed"
+    bench.work.do(lambda mill: roll_back(mill, max(mill.library.records["price_list"])))
+    assert bench.effect.title.text() == "Taken back: what the new prices did"
+
+
+def test_prices_that_are_taken_back_while_they_are_worked_out_are_said_to_be(
+    bench: Bench, hands: Hands, price_list: Path, qtbot: QtBot
+) -> None:
+    read(bench, price_list)
+    hands.click(bench.prices.take)
+    bench.work.undo()
+    worked_out(bench, qtbot)
+    assert bench.effect.title.text() == "Taken back: what the new prices did"
+
+
+def test_what_prices_did_is_of_the_site_that_the_mill_had(
+    bench: Bench, hands: Hands, price_list: Path, qtbot: QtBot
+) -> None:
+    read(bench, price_list)
+    hands.click(bench.prices.take)
+    worked_out(bench, qtbot)
+    place = bench.work.do(lambda mill: mill.apply("Add a site", [added(Site(1, "Larkwater"))]))
+    assert place.changes
+    assert bench.effect.remark.whole == "2 mixes kept, 0 changed"
+    info = bench.work.library.mill
+    bench.work.do(lambda mill: mill.apply("The site", [Change(info, replace(info, site_id=1))]))
+    assert bench.effect.remark.whole == "2 mixes kept, 0 changed; edited since"

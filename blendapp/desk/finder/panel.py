@@ -18,6 +18,7 @@ from PySide6.QtCore import (
 )
 from PySide6.QtGui import QKeyEvent, QPainter
 from PySide6.QtWidgets import (
+    QLabel,
     QLineEdit,
     QListView,
     QStyle,
@@ -100,6 +101,9 @@ class Finder(Raised):
         self.field = QLineEdit()
         self.field.setAccessibleName(_("Find"))
         self.field.setObjectName("find")
+        # What is said where nothing fits; all things then stand below it.
+        self.none = QLabel()
+        self.none.setObjectName("quiet")
         self.found = FoundModel(self)
         self.list = QListView()
         self.list.setModel(self.found)
@@ -115,6 +119,7 @@ class Finder(Raised):
         inset = QVBoxLayout()
         inset.setContentsMargins(12, 0, 12, 0)
         inset.addWidget(self.field)
+        inset.addWidget(self.none)
         column.addLayout(inset)
         column.addWidget(self.list)
         self.field.textChanged.connect(self._narrow)
@@ -122,9 +127,11 @@ class Finder(Raised):
         self.list.clicked.connect(self._run)
         self.list.entered.connect(self.list.setCurrentIndex)
 
-    def open(self, things: Sequence[Found], prompt: str, below: QWidget | None = None) -> None:
-        """Offer things; below: a button under which the panel stands, else it is centred."""
+    def open(self, things: Sequence[Found], prompt: str, below: QWidget | None = None, none: str = "") -> None:
+        """Offer things; below: a button under which the panel stands, else it is centred. none: said above all of them
+        where nothing fits."""
         self._return.remember(self)
+        self.none.setText(none)
         self.things = list(things)
         self.field.setPlaceholderText(prompt)
         self.field.clear()
@@ -147,8 +154,13 @@ class Finder(Raised):
             self._shut()
 
     def _narrow(self, typed: str) -> None:
-        self.found.show(best(self.things, typed))
-        if self.found.found:
+        found = best(self.things, typed)
+        lacking = not found and bool(self.none.text())
+        self.none.setVisible(lacking)
+        self.found.show(self.things if lacking else found)
+        if lacking:
+            self.list.setCurrentIndex(QModelIndex())
+        elif found:
             self.list.setCurrentIndex(self.found.index(0))
 
     def _run(self, index: QModelIndex) -> None:

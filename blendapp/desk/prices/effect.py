@@ -80,6 +80,10 @@ class EffectPane(QWidget):
         self._of = 0
         self.found: list[Mover] = []
         self._on = work.on
+        # The lists that stand after these prices and not before: of a preview none.
+        self._brought: frozenset[int] = frozenset()
+        self._title = ""
+        self._is_edited = False
         self.running = False
         self._aside = Aside(self, (Refused, ValueError))
         self._aside.done.connect(self._take)
@@ -95,7 +99,10 @@ class EffectPane(QWidget):
     def begin(self, before: Library, after: Library, title: str, leave: str) -> None:
         """Work out what prices do between two libraries that nobody edits. leave: words of the way back."""
         self._both = (before, after)
+        self._brought = frozenset(after.records["price_list"]) - frozenset(before.records["price_list"])
+        self._is_edited = False
         self._answers = self.work.mill.answers.view()
+        self._title = title
         self.title.setText(title)
         self.leave.setText(leave)
         self.rows.show([], self.work.library.mill.currency)
@@ -150,11 +157,32 @@ class EffectPane(QWidget):
         self.write.setEnabled(bool(found))
         self.rows.show(found, self.work.library.mill.currency)
         if len(found) < self._of:
-            self.remark.say(_("stopped after {done} of {count} formulas").format(done=len(found), count=self._of))
             self.stop.setText(_("Work them all out"))
+        else:
+            self.stop.hide()
+        self._say()
+
+    def _say(self) -> None:
+        """Say what was worked out, and whether the mill still stands so."""
+        if self._both is None or self.running:
             return
-        self.stop.hide()
-        self.remark.say(summary(found))
+        what = summary(self.found)
+        if len(self.found) < self._of:
+            what = _("stopped after {done} of {count} formulas").format(done=len(self.found), count=self._of)
+        back = self._is_taken_back
+        self.title.setText(_("Taken back: what the new prices did") if back else self._title)
+        if back:
+            what = _("the prices before them count again; they had: {what}").format(what=what)
+        elif self._is_edited:
+            what = _("{what}; edited since").format(what=what)
+        if self._on != self.work.on:
+            what = _("{what}; at the prices of {day}").format(what=what, day=self._on.isoformat())
+        self.remark.say(what)
+
+    @property
+    def _is_taken_back(self) -> bool:
+        lists = self.work.library.records["price_list"]
+        return any(key not in lists or lists[key].withdrawn is not None for key in self._brought)
 
     def _fit_mix(self) -> None:
         """Let what changes in a mix take the width that the other columns leave."""
@@ -178,13 +206,14 @@ class EffectPane(QWidget):
 
     def _edited(self, edit: Edit) -> None:
         """What stands here is of two sets of prices, and stays so; it says when they are no longer today's."""
-        if self._both is not None and not self.running and edit.touches("quote", "value", "limit", "ingredient"):
-            self.remark.say(_("{what}; edited since").format(what=summary(self.found)))
+        lists = [one for one in edit.changes if one.kind == "price_list"]
+        is_own = any(record.id in self._brought for one in lists for record in (one.before, one.after) if record)
+        if not is_own and edit.touches("quote", "value", "limit", "ingredient", "formula", "mill"):
+            self._is_edited = True
+        self._say()
 
     def _day_came(self) -> None:
-        if self._both is not None and not self.running:
-            self.remark.say(_("{what}; at the prices of {day}").format(
-                what=summary(self.found), day=self._on.isoformat()))
+        self._say()
 
     def stop_all(self) -> None:
         """Nobody waits any more: the window closes, or another mill is opened."""

@@ -206,6 +206,7 @@ class Parts:
         self.title.setText(reading.file_name)
         self.other.setText(_("Read it as analyses") if prices else _("Read it as prices"))
         self.whose.show_reading(reading, library)
+        self.whose.show()
         self.notes.setText("\n".join(reading.notes))
         self.notes.setVisible(bool(reading.notes))
         self.sheets.show_names([sheet.name for sheet in reading.sheets])
@@ -216,6 +217,17 @@ class Parts:
         """Show the rows of one fate, or all but those left alone."""
         self.counts.buttons[only].setChecked(True)
         self.model.show(reading, only)
+
+    def show_refusal(self, file_name: str, sentence: str) -> None:
+        """Show the name of a file that cannot be read, and why."""
+        self.show_nothing()
+        self.title.setText(file_name)
+        self.remark.say(_("nothing was read and nothing is changed"))
+        self.notes.setText(sentence)
+        self.notes.show()
+        self.whose.hide()
+        self.sheets.show_names([])
+        self.counts.show_reading(ListReading(file_name, "", ()))
 
     def show_nothing(self) -> None:
         """Forget the list."""

@@ -19,11 +19,12 @@ class PriceRows(UnderstoodRows):
     def make_headings(self, reading: ListReading) -> list[Heading]:
         assert isinstance(reading, PriceListReading)
         per_t = _("{currency}/t").format(currency=reading.currency)
+        # Wide enough for a price that came out ten times too high, which is the one that has to be read.
         return [
             Heading("fate", "", 72), Heading("place", _("row"), 40, True), Heading("ingredient", _("Ingredient"), 170),
-            Heading("entered", _("as listed"), 112, True), Heading("price", per_t, 78, True),
-            Heading("old", _("was"), 68, True), Heading("change", _("change"), 66, True),
-            Heading("percent", "%", 58, True),
+            Heading("entered", _("as listed"), 132, True), Heading("price", per_t, 78, True),
+            Heading("old", _("was"), 74, True), Heading("change", _("change"), 84, True),
+            Heading("percent", "%", 66, True),
         ]
 
     def line_look(self, row: ListRow, line: int, key: str) -> Look:

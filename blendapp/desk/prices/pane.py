@@ -82,6 +82,7 @@ class ListPane(QWidget):
         self.reader.failed.connect(self._failed)
         self.work.edited.connect(self._edited)
         self.work.opened.connect(self._forget)
+        self.work.day_came.connect(self._read_when_seen)
 
     # -- reading
 
@@ -99,6 +100,8 @@ class ListPane(QWidget):
         """Read a list, with what was answered for it before; arrived follows, or a sentence."""
         self._go_to = None
         self.reader.begin(path, about)
+        # Until it is read, the list that still stands here is not taken in its place.
+        self._say_state()
 
     def again(self) -> None:
         """Read the list in view again, as its file and the mill are now."""
@@ -112,6 +115,10 @@ class ListPane(QWidget):
             self.arrived.emit()
 
     def _failed(self, sentence: str) -> None:
+        if self.reader.refused is not None and self.isVisible():
+            self.reader.look_at_refused()
+            self._show_refusal(sentence)
+            return
         self.said.emit(sentence, [])
         if self.reading is not None:
             # What was answered meanwhile is kept for the next reading; until then the list stands as it was read.
@@ -123,12 +130,18 @@ class ListPane(QWidget):
         self.changed.emit()
 
     def _edited(self, edit: Edit) -> None:
-        if self.session is None or self._taking or not edit.changes:
+        if self.reading is None or self._taking or not edit.changes:
             return
         for change in edit.changes:
             if change.kind == "ingredient" and change.after is None:
                 # An ingredient that was added for this list is gone again: its name is asked about once more.
                 self._go_to = Answer(Asked.INGREDIENT, change.before.name)  # type: ignore[union-attr]
+        self._read_when_seen()
+
+    def _read_when_seen(self) -> None:
+        """Read again, now or when the page is next looked at: the mill is another, or the day, whose prices count."""
+        if self.reading is None:
+            return
         if self.isVisible():
             self.again()
         else:
@@ -249,6 +262,20 @@ class ListPane(QWidget):
         if first or self.questions.has_keyboard():
             self.focus_first()
 
+    def _show_refusal(self, sentence: str) -> None:
+        """A file that cannot be read stands on the page with its sentence and nothing else: there is nothing to take.
+        """
+        assert self.session is not None
+        self._only = None
+        self.parts.show_refusal(self.session.path.name, sentence)
+        self.questions.show_questions([], self.work.library, "", False, self.work.on)
+        self.questions.say_last("")
+        self.take.setText(take_words(self.session.about, 0))
+        self.take.setEnabled(False)
+        self.look.setEnabled(False)
+        self.leave.setFocus()
+        self.changed.emit()
+
     def focus_first(self) -> None:
         """Put the keyboard on the question in view, else where the list is taken.
 
@@ -339,7 +366,7 @@ class ListPane(QWidget):
         self.questions.setFocus()
 
     def _offer_roles(self, row: int, column: int) -> None:
-        self.finder.open(self.sayings(row, column), _("What stands here"))
+        self.finder.open(self.sayings(row, column), _("What stands here"), none=_("No such role. There are these:"))
 
     def sayings(self, row: int, column: int) -> list[Found]:
         """What a person may say of a place in the source."""

@@ -23,7 +23,7 @@ Read = Callable[..., ListReading]
 class ListReader(QObject):
     """session, reading: of the list in view, None before the first. came: after another reading, with whether it is
     the first of its list. unsettled: an answer that changed nothing and was dropped. failed: the sentence why there is
-    no reading. read can be replaced by a test.
+    no reading. refused: whose first reading that was, None where it was a further one. read can be replaced by a test.
     """
 
     came = Signal(bool)
@@ -36,6 +36,7 @@ class ListReader(QObject):
         self.session: Session | None = None
         self.reading: ListReading | None = None
         self.unsettled: Answer | None = None
+        self.refused: Session | None = None
         self.running = False
         self.read: Read = read_list
         self._coming: Session | None = None
@@ -85,7 +86,7 @@ class ListReader(QObject):
         """Another mill file is opened: its lists are not these."""
         self.forget()
         self.sessions.clear()
-        self.session = self._coming = self.reading = self.unsettled = None
+        self.session = self._coming = self.reading = self.unsettled = self.refused = None
 
     def is_taken(self, session: Session) -> bool:
         """Whether the list of a session was taken, and stands."""
@@ -120,6 +121,11 @@ class ListReader(QObject):
         self.session, self._coming, self.reading = session, None, reading
         self.came.emit(first)
 
+    def look_at_refused(self) -> None:
+        """The file that was refused is the one in view; there is no reading of it."""
+        if self.refused is not None:
+            self.session, self.reading = self.refused, None
+
     def _fail(self, sentence: str) -> None:
-        self._coming = None
+        self.refused, self._coming = self._coming, None
         self.failed.emit(sentence)

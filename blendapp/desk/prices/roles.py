@@ -39,7 +39,7 @@ def heading_answer(sheet: SourceSheet, row: int) -> Answer:
 
 def role_words(role: ColumnRole) -> str:
     """What is said of a column, after "this column is": "a price"."""
-    return _("not to be read") if role is ColumnRole.OTHER else role.label
+    return _("not read") if role is ColumnRole.OTHER else role.label
 
 
 def sayings(

@@ -25,7 +25,7 @@ class SampleRows(UnderstoodRows):
             Heading("fate", "", 72), Heading("place", _("row"), 40, True), Heading("ingredient", _("Ingredient"), 130),
             Heading("sample", _("sample"), 84), Heading("sampled", _("day"), 88),
             Heading("nutrient", _("nutrient"), 130), Heading("value", _("value"), 74, True),
-            Heading("old", _("was"), 70, True), Heading("change", _("change"), 70, True),
+            Heading("old", _("was"), 70, True), Heading("change", _("change"), 78, True),
         ]
 
     def lines_of(self, row: ListRow) -> int:
