@@ -23,7 +23,10 @@ _OF_SOMETHING_ELSE = re.compile(
 _OF_ALL = re.compile(r"\b(?:all|our|these|the)\s+(?:prices|quotes|offers|quotations)\b|\ball\s+in\b", re.IGNORECASE)
 _PRICED_PER = re.compile(r"(?:[$€£¢]|\b[A-Z]{3}\b|\bc(?:en)?ts?\b)\s*(?:/|per\b)")
 _CLAUSES = re.compile(r"[;,.](?=\s|$)|\s[-–—]\s")
-_FREIGHT = re.compile(r"\b(?:freight|haulage|carriage|delivery|transport)\b", re.IGNORECASE)
+_ON_TOP = re.compile(
+    r"\b(?:freight|haulage|carriage|delivery|transport|surcharges?|levy|levies|handling|bagging|packing)\b",
+    re.IGNORECASE,
+)
 _DATE = (
     r"([0-9]{4}-[0-9]{1,2}-[0-9]{1,2}|[0-9]{1,2}[./-][0-9]{1,2}[./-](?:[0-9]{4}|[0-9]{2})|"
     r"[0-9]{1,2}(?:st|nd|rd|th)?\s+[a-z]{3,9}\.?,?\s+[0-9]{4}|[a-z]{3,9}\.?\s+[0-9]{1,2}(?:st|nd|rd|th)?,?\s+[0-9]{4})"
@@ -38,7 +41,7 @@ MOST_TEXTS_IN_A_TITLE = 3
 class Notes:
     """units: what notes say of all prices, each once. valid_from, valid_to: the texts of their dates, "" if none.
 
-    without_freight: a note about freight, to be looked at with each price.
+    without_freight: a note about freight or a surcharge, to be looked at with each price.
     """
 
     units: tuple[Words, ...] = ()
@@ -70,7 +73,7 @@ def read_notes(table: RawTable, rows: Iterable[int], headings: int = 0) -> Notes
     first = last = freight = ""
     for text in _texts(table, rows, headings):
         if _OF_SOMETHING_ELSE.search(text):
-            freight = freight or (text if _FREIGHT.search(text) else "")
+            freight = freight or (text if _ON_TOP.search(text) else "")
             text = "; ".join(part for part in _CLAUSES.split(text) if not _OF_SOMETHING_ELSE.search(part))
         speaks = _SPEAKS_OF_PRICES.search(text) or _PRICED_PER.search(text)
         if speaks:

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 
 from blendapp.domain.ingredients import Basis, Ingredient
 from blendapp.domain.library import Library
-from blendapp.domain.list_rows import LEAVE_OUT, TAKE, ColumnRole, Fate
+from blendapp.domain.list_rows import ADD, LEAVE_OUT, TAKE, ColumnRole, Fate
 from blendapp.domain.mills import Asked
 from blendapp.domain.names import fold
 from blendapp.domain.notation import PLAIN
@@ -24,9 +24,10 @@ from blendapp.exchange.price_cells import MOST_PAID, PriceCell, read_merged_pric
 from blendapp.exchange.price_choice import Priced, choose_price
 from blendapp.exchange.price_columns import PriceColumn
 from blendapp.exchange.price_days import read_days
+from blendapp.exchange.price_extras import on_top, with_added
 from blendapp.exchange.price_money import own_money
 from blendapp.exchange.price_sections import under
-from blendapp.exchange.price_terms import WITHOUT_FREIGHT, read_terms
+from blendapp.exchange.price_terms import read_terms
 from blendapp.exchange.price_units import AmbiguousPriceUnit, UnknownPriceUnit, bag_with_weight, read_price_unit
 from blendapp.exchange.price_units_read import TonnePrice, UnitReading, bushel_said, per_tonne, read_unit
 from blendapp.exchange.price_words import NO_WORDS, Words, read_unit_words, split_dry
@@ -127,10 +128,12 @@ class _Reading(RowReading):
             text = _("The price {price} is 0 or below; type it for the ingredient if it is meant.")
             self.confirm(Asked.SIGN, text.format(price=PLAIN.write_exact(value)))
         terms = self._terms(parts, ingredient)
-        self._ask_about_what_is_added(parts)
+        added = self._what_is_added(parts)
         dry = None
         if found is not None and any(part.dry for part in read):
             found, dry = self._of_dry_matter(found, ingredient)
+        if found is not None and added is not None:
+            found, terms = with_added(found, added), Terms.DELIVERED
         if any(cell.as_text for _column, cell in parts):
             self.remarks.append(_("The number is stored as text."))
         old = None if ingredient is None else self.library.price_per_t(ingredient.id, self.today)
@@ -300,15 +303,34 @@ class _Reading(RowReading):
             self.confirm(Asked.TERMS, text.format(new=_(str(found)), old=_(str(quote.terms))))
         return found
 
-    def _ask_about_what_is_added(self, parts: tuple[Priced, ...]) -> None:
-        """A price that is said to be without freight, or a discount or surcharge beside it, is not the whole price."""
-        texts = [self.text(self.table.first(ColumnRole.TERMS)), self.segment.notes.without_freight]
-        if len(parts) == 1:
-            texts.append(parts[0][0].heading)
-        found = next((text for text in texts if WITHOUT_FREIGHT.search(text)), "") if len(parts) == 1 else ""
-        if found:
+    def _what_is_added(self, parts: tuple[Priced, ...]) -> float | None:
+        """A price that is said to be without freight, or a discount or surcharge beside it, is not the whole price.
+
+        The money per tonne that was answered to be added; None for nothing.
+        """
+        self._ask_about_adjustment()
+        if len(parts) > 1 or self.answers.of_row(Asked.AMOUNT, self.raw.sheet, self.row + 1):
+            return None
+        beside, noted = self.text(self.table.first(ColumnRole.TERMS)), self.segment.notes.without_freight
+        texts = ((beside, False), (noted, False), (parts[0][0].heading, True))
+        mill = self.library.mill
+        found = next((one for text, is_heading in texts if text and (one := on_top(text, mill, is_heading))), None)
+        if found is None:
+            return None
+        if found.per_t is None:
             said = _("“{text}”: freight comes on top; give the price with it, or say that this one is to be taken.")
-            self._take_as_it_is(found, said.format(text=found))
+            self._take_as_it_is(found.text, said.format(text=found.text))
+            return None
+        answer = self.answers.find(Asked.PRICE, found.text)
+        if answer is not None and answer.answer == ADD:
+            said = _("{amount} per t was added, as answered.")
+            self.remarks.append(said.format(amount=f"{found.per_t:.2f}"))
+            return found.per_t
+        said = _("“{text}”: {amount} per t comes on top; say whether it is to be added, or the price taken as it is.")
+        self._take_as_it_is(found.text, said.format(text=found.text, amount=f"{found.per_t:.2f}"), (ADD, TAKE))
+        return None
+
+    def _ask_about_adjustment(self) -> None:
         index = self.table.first(ColumnRole.ADJUSTMENT)
         value = None if index is None else self.raw.cell(self.row, index)
         if index is not None and kind_of(value) is not CellKind.BLANK and value != 0:
@@ -316,10 +338,10 @@ class _Reading(RowReading):
             said = _("“{name}” changes the price; give the price that holds, or say that this one is to be taken.")
             self._take_as_it_is(heading, said.format(name=heading))
 
-    def _take_as_it_is(self, about: str, text: str) -> None:
+    def _take_as_it_is(self, about: str, text: str, choices: tuple[str, ...] = (TAKE,)) -> None:
         answer = self.answers.find(Asked.PRICE, about)
         if answer is None or answer.answer != TAKE:
-            self.ask(Asked.PRICE, about, text, (TAKE,))
+            self.ask(Asked.PRICE, about, text, choices)
 
 
 def _names_unit(words: Words) -> bool:

@@ -94,7 +94,9 @@ def offered(one: Synonym, library: Library) -> tuple[str, ...]:
 def _fixed(one: Synonym) -> tuple[str, ...]:
     """The answers of which one holds, as they are kept."""
     if one.asked is Asked.PRICE:
-        return (*one.name.split(_JOIN), ADD) if _JOIN in one.name else (TAKE,)
+        if _JOIN in one.name:
+            return (*one.name.split(_JOIN), ADD)
+        return (ADD, TAKE) if one.answer == ADD else (TAKE,)
     return {
         Asked.DECIMAL: (".", ","), Asked.DATES: (DAY_FIRST, MONTH_FIRST), Asked.BASIS: tuple(Basis),
         Asked.HIDDEN_COLUMN: (TAKE, LEAVE_OUT), Asked.COLUMN: tuple(ColumnRole), Asked.CENTS: (TAKE,),
