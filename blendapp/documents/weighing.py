@@ -79,11 +79,15 @@ def _sum_shown(groups: Sequence[Group]) -> tuple[float, int]:
 
 
 def _total(batch: Batch, page: BatchPage, groups: Sequence[Group], rows: Rows) -> list[Block]:
-    """The sum of the lines in the unit of the page; what the scales show beside it is said below."""
+    """The sum of the lines in the unit of the page, beside it the sum in that of the scales where all show another."""
     words = letters.plain(_("Total {unit}").format(unit=batch.mass_unit))
     total = letters.plain(notation().write(*_sum_shown(groups)))
     whole = letters.plain(write_share(1.0)) if page is BatchPage.MASTER else ""
     name, target = rows.spans[1], rows.spans[2]
+    own, written_unit = _units(groups)
+    beside = ""
+    if own and own != batch.mass_unit and not any(group.by_volume for group in groups):
+        beside = letters.plain(notation().write_short(figures.mass_in(batch.total_kg, own)))
     # The places to write in are the lot, then the mass.
     written = [span for column, span in zip(rows.columns, rows.spans, strict=True) if column.write]
     indent = name[0]
@@ -96,13 +100,25 @@ def _total(batch: Batch, page: BatchPage, groups: Sequence[Group], rows: Rows) -
         pen.text(left + indent, middle - above - _GROUP.line / 2, words, _GROUP)
         pen.text_right(left + target[1], middle - TARGET.line / 2, total, TARGET)
         pen.text_right(left + rows.width, middle - BESIDE.line / 2, whole, BESIDE)
+        if beside:
+            pen.text_right(left + rows.spans[3][1], middle - BESIDE.line / 2, beside, BESIDE)
         for start, end in written[1:2]:
             bottom = top + above + _TOTAL_LINE
-            pen.text_right(left + end, bottom - LABEL.line - 2, letters.plain(batch.mass_unit), LABEL)
+            pen.text_right(left + end, bottom - LABEL.line - 2, letters.plain(written_unit), LABEL)
             pen.rule(left + start, left + end, bottom, 0.9, INK)
 
     block = Block(above + _TOTAL_LINE + 5, draw, keep_next=True, heads=[rows.head()])
     return [block, *_rounding(batch, groups, rows, indent), *_residue(batch, groups, rows, indent)]
+
+
+def _units(groups: Sequence[Group]) -> tuple[str, str]:
+    """The unit that all scales show, "" where they differ; what stands at the place for the total that was weighed."""
+    unit = groups[0].unit
+    shown = {group.own_unit for group in groups if not group.by_volume} or {unit}
+    if len(shown) == 1:
+        own = shown.pop()
+        return own, own
+    return "", _("all in {unit}").format(unit=unit)
 
 
 def _rounding(batch: Batch, groups: Sequence[Group], rows: Rows, indent: float) -> list[Block]:

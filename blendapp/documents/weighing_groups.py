@@ -37,11 +37,16 @@ _LEAST_RECORD_ROW = 8.5 * MM
 
 @dataclass(frozen=True)
 class Group:
-    """Lines of one scale or meter. unit: in which masses are shown; own_unit: in which this scale shows them."""
+    """Lines of one scale or meter. unit: in which masses are shown; own_unit: in which this scale shows them.
+
+    rounded: the decimals of masses that are not whole steps in `unit`, the same for all lines of the page, so that
+    they add up.
+    """
 
     lines: Sequence[BatchLine]
     unit: str
     own_unit: str
+    rounded: int = 0
 
     @property
     def hand_add(self) -> bool:
@@ -91,7 +96,7 @@ class Group:
         """
         steps = max(figures.decimals_of_mass(line.step_kg, self.unit) for line in self.lines)
         if not self.by_volume or self.unit != "kg":
-            return steps
+            return max(steps, self.rounded) if _is_rounded(self.lines[0], self.unit) else steps
         return min(steps, max(figures.decimals_of_step(line.target_kg) for line in self.lines), 6)
 
     def target(self, line: BatchLine) -> str:
@@ -132,10 +137,17 @@ def in_order(lines: Sequence[BatchLine]) -> list[list[BatchLine]]:
 
 def groups_of(batch: Batch) -> list[Group]:
     unit = batch.mass_unit
-    return [
-        Group(lines, unit, figures.unit_of_scale(lines[0].step_kg, unit) if lines[0].step_l is None else unit)
-        for lines in in_order(batch.lines)
-    ]
+    rounded = figures.decimals_to_add_up([line.step_kg for line in batch.lines if _is_rounded(line, unit)], unit)
+    return [Group(lines, unit, _own_unit(lines[0], unit), rounded) for lines in in_order(batch.lines)]
+
+
+def _own_unit(line: BatchLine, unit: str) -> str:
+    return figures.unit_of_scale(line.step_kg, unit) if line.step_l is None else unit
+
+
+def _is_rounded(line: BatchLine, unit: str) -> bool:
+    """Whether its mass in the unit of the page is not a whole step: another scale's, or a liquid's in pounds."""
+    return _own_unit(line, unit) != unit or (line.step_l is not None and unit != "kg")
 
 
 class Layout:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 
 from blendapp.domain.notation import notation
 from blendapp.domain.units import LB_KG, VOLUME_L
@@ -91,6 +92,13 @@ def decimals_of_mass(step_kg: float, unit: str) -> int:
     if _is_plain(step, _PLAIN_DECIMALS[unit]) or (unit == "kg" and unit_of_scale(step_kg, unit) == "kg"):
         return decimals_of_step(step)
     return max(0, math.ceil(-math.log10(step / 5)))
+
+
+def decimals_to_add_up(steps_kg: Sequence[float], unit: str) -> int:
+    """The decimals with which so many masses in a unit, each rounded, add up to within the finest of their steps."""
+    if not steps_kg:
+        return 0
+    return max(0, math.ceil(math.log10(0.5 * len(steps_kg) / mass_in(min(steps_kg), unit)) - 1e-9))
 
 
 def write_mass(kg: float, step_kg: float, unit: str) -> str:

@@ -83,6 +83,43 @@ def test_the_total_is_the_sum_of_the_masses_on_the_page(draw: Page, batch: Batch
     assert sum(map(Decimal, masses + liquids)) == Decimal(total)
 
 
+def kg_mill_in_lb(*, liquids: bool) -> Batch:
+    lines = tuple(line for line in made.FULL.lines if liquids or line.step_l is None)
+    total = round(sum(line.target_kg for line in lines), 9)
+    return dataclasses.replace(made.FULL, lines=lines, mass_unit="lb", batch_kg=total)
+
+
+@every_page
+@pytest.mark.parametrize("liquids", [True, False])
+def test_pounds_of_kg_scales_add_up_to_the_batch_within_the_finest_step(draw: Page, liquids: bool) -> None:
+    batch = kg_mill_in_lb(liquids=liquids)
+    *targets, total = large(draw(batch))
+    masses = [text for text in targets if not text.endswith("l")] + beside(draw(batch), "That is lb")
+    assert len(masses) == len(batch.lines)
+    assert sum(map(Decimal, masses)) == Decimal(total)
+    finest_lb = min(line.step_kg for line in batch.lines) / LB_KG
+    assert abs(float(total) - batch.total_kg / LB_KG) <= finest_lb
+
+
+@pytest.mark.parametrize("draw", [batch_sheet, blank_record])
+def test_the_place_for_the_total_has_the_unit_in_which_the_lines_are_weighed(draw: Page) -> None:
+    def units(batch: Batch) -> list[str]:
+        found = [p.text.strip() for p in pieces(draw(batch)) if p.size == 9]
+        return [text for text in found if text in ("kg", "lb", "all in lb", "all in kg")]
+
+    assert units(made.FULL) == units(kg_mill_in_lb(liquids=True)) == ["kg"]
+    # A hopper in pounds and a bench scale in kilograms.
+    assert units(made.US) == ["all in lb"]
+
+
+@every_page
+def test_kg_of_a_mill_that_prints_pounds_add_up_to_the_total_beside_it(draw: Page) -> None:
+    batch = kg_mill_in_lb(liquids=False)
+    *lines, total = beside(draw(batch), "That is kg")
+    assert len(lines) == len(batch.lines)
+    assert sum(map(Decimal, lines)) == Decimal(total) == Decimal(str(batch.total_kg))
+
+
 @every_page
 def test_a_total_of_rounded_lines_says_so_with_the_unrounded_one_and_the_kg(draw: Page) -> None:
     text = squeezed(page_text(draw(made.US)))
@@ -206,7 +243,8 @@ def test_a_pound_scale_in_a_mill_of_kilograms_has_its_pounds_beside_the_kg() -> 
     line = made.US.lines[1]
     batch = dataclasses.replace(made.US, lines=(line,), batch_kg=line.target_kg, mass_unit="kg")
     pdf = batch_sheet(batch)
-    assert beside(pdf, "That is lb") == ["305"]
+    # The line and the total.
+    assert beside(pdf, "That is lb") == ["305", "305"]
     steps = float(large(pdf)[0]) / line.step_kg
     assert round(steps) == 61
     assert abs(steps - 61) < 0.1

@@ -7,6 +7,7 @@ from blendapp.domain.figures import (
     decimals_of,
     decimals_of_mass,
     decimals_of_step,
+    decimals_to_add_up,
     mass_in,
     unit_of_meter,
     unit_of_scale,
@@ -83,6 +84,15 @@ def test_kilograms_of_a_pound_scale_are_fine_enough_and_no_finer() -> None:
     assert write_mass(305 * LB_KG, 5 * LB_KG, "kg") == "138.3"
     # 2.268 kg is a step of kilograms that is near 5 lb, and not 5 lb.
     assert unit_of_scale(2.268, "lb") == "kg"
+
+
+@pytest.mark.parametrize(("count", "step_kg"), [(1, 5), (20, 5), (20, 0.5), (25, 0.001), (200, 0.005)])
+def test_rounded_masses_add_up_to_within_a_step(count: int, step_kg: float) -> None:
+    decimals = decimals_to_add_up([20, *[step_kg] * (count - 1), step_kg], "lb")
+    # Each could be off by half of its last digit, all to the same side.
+    assert (count + 1) * 0.5 * 10.0**-decimals <= step_kg / LB_KG
+    assert decimals == 0 or (count + 1) * 0.5 * 10.0 ** -(decimals - 1) > step_kg / LB_KG
+    assert decimals_to_add_up([], "lb") == 0
 
 
 def test_a_mass_typed_in_pounds_shows_as_typed() -> None:
