@@ -184,6 +184,12 @@ QLabel#page { background: #ffffff; border: 1px solid $hairline; }
 QListView#found { background: $raised; }
 QListView#offered { background: $raised; border: 1px solid $quiet; }
 QListView#offered::item { padding: 0 8px; }
+QCheckBox { spacing: 8px; padding: 3px 6px; border: 1px solid transparent; border-radius: 4px; }
+QCheckBox::indicator { width: 13px; height: 13px; border: 1px solid $quiet; border-radius: 3px; background: $raised; }
+QCheckBox::indicator:hover, QCheckBox::indicator:focus { border: 1px solid $text; }
+QCheckBox::indicator:checked { background: $text; border: 1px solid $text; }
+QCheckBox::indicator:checked:disabled { background: $quiet; border: 1px solid $quiet; }
+QCheckBox:focus { border: 1px solid $text; }
 QToolButton#quiet { color: $quiet; }
 QToolButton::menu-indicator { image: none; }
 QMenu { background: $raised; border: 1px solid $hairline; padding: 6px 0; }

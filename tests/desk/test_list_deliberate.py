@@ -183,3 +183,15 @@ def test_what_was_said_of_a_list_that_has_expired_does_not_outlive_a_change_of_i
     wait(bench)
     assert count(bench, Fate.ACCEPTED) == 0
     assert bench.prices.questions.current is not None
+
+
+def test_a_price_that_is_typed_is_said_to_replace_the_freight_beside_it(
+    bench: Bench, hands: Hands, tmp_path: Path
+) -> None:
+    rows = [["Ingredient", "Price USD/t", "Freight USD/t"], ["Maize", 190, 12], ["Limestone", "51-53", 4]]
+    open_list(bench, tmp_path / "list.xlsx", rows)
+    panel = bench.prices.questions
+    panel.go_to(next(one for one in panel.open if one.question.asked is Asked.AMOUNT))
+    assert panel.field.placeholderText() == "type the whole price, freight and all, or choose with the arrows"
+    assert "a freight or other sum beside it is not added" in panel.kept.text()
+    assert "Give the price per t with all that comes on top" in panel.kept.text()

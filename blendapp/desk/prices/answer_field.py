@@ -36,7 +36,8 @@ class AnswerField(QLineEdit):
         if typed == NAMES:
             words = _("or type a name") if has_choices else _("type a name")
         elif typed == FIGURE:
-            words = _("type the price, or choose with the arrows")
+            # What is typed stands in place of the whole price of the row, a freight beside it included.
+            words = _("type the whole price, freight and all, or choose with the arrows")
         else:
             words = _("or type another unit") if has_choices else _("type a unit")
         self.setPlaceholderText(words)

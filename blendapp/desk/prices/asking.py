@@ -201,6 +201,12 @@ def listed_price(row: ListRow) -> str:
     return f"{entered} / {unit}" if entered and unit else entered
 
 
+def unit_words(row: ListRow) -> str:
+    """The unit of the price of a row, "per t"; as the list has it where it was not understood."""
+    unit = getattr(row, "per", None) or (getattr(row, "unit", None) or "").lstrip("/ ")
+    return _("per {unit}").format(unit=unit) if unit else _("in the unit of the row")
+
+
 def place_words(one: Open, several_sheets: bool) -> str:
     """Where a question stands: "row 7, “Wheat fd 210 / t”, and 11 more rows"."""
     row = one.row
@@ -218,7 +224,7 @@ def place_words(one: Open, several_sheets: bool) -> str:
 def choose_words(one: Open, count: int) -> str:
     """What is said where Enter is pressed and nothing was chosen. count: of the choices in view."""
     if one.typed == FIGURE:
-        return _("Type the price, or choose with the arrows; Enter alone answers nothing.")
+        return _("Type the whole price, or choose with the arrows; Enter alone answers nothing.")
     if not count:
         return _("Type the answer first; Enter alone answers nothing.")
     if count == 1:
@@ -228,11 +234,15 @@ def choose_words(one: Open, count: int) -> str:
     return _("Choose 1 to {count}, or with the arrows; Enter alone answers nothing.").format(count=min(count, 9))
 
 
-def kept_words(asked: Asked, source: str) -> str:
-    """Whether an answer will be remembered, and for whom."""
+def kept_words(asked: Asked, source: str, unit: str = "") -> str:
+    """Whether an answer will be remembered, and for whom. unit: of the price of its row, "per t"."""
     if asked is Asked.RATE:
         return _("Holds for the lists of {source} on that day; another day it is proposed and asked again."
                  ).format(source=source)
+    if asked is Asked.AMOUNT:
+        return _("The price that you type replaces all that the row says: a freight or other sum beside it is not added. "
+                 "Give the price {unit} with all that comes on top. Holds for this row of this list alone."
+                 ).format(unit=unit)
     if asked.is_remembered:
         return _("Remembered for {source}: its next list is not asked.").format(source=source)
     if not asked.is_of_row:

@@ -27,6 +27,7 @@ from blendapp.desk.prices.asking import (
     names_of,
     place_words,
     row_words,
+    unit_words,
 )
 from blendapp.desk.prices.choices import LINE_PX, ChoiceList
 from blendapp.desk.shell.zone import Elided
@@ -184,7 +185,8 @@ class QuestionPanel(QWidget):
                            if count else _("No questions"))
         self.count.setAccessibleName(self.count.text())
         self.place.say("" if one is None else place_words(one, self.several_sheets))
-        self.kept.setText("" if one is None else kept_words(one.question.asked, self.source))
+        self.kept.setText("" if one is None else kept_words(
+            one.question.asked, self.source, unit_words(one.row)))
         # In the order in which Page Down comes to them.
         others = self.open[self.at + 1:] + self.open[: self.at]
         self.others.show_choices(
