@@ -187,6 +187,7 @@ def _refuse_effect(given: argparse.Namespace) -> None:
 
 def _sheet(given: argparse.Namespace) -> int:
     from blendapp.cli.ordering import ordered
+    from blendapp.services.accepting import accepted_by
     from blendapp.services.batch import clean_out_question, lacks_clean_out, print_sheet
     from blendapp.services.formulate import FailedCertificate
     from blendapp.services.sheets import write_page
@@ -198,6 +199,7 @@ def _sheet(given: argparse.Namespace) -> int:
     with _Open(given.mill) as mill:
         if recorded and not mill.writable:
             raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
+        by = accepted_by(mill.library, given.by or "")
         try:
             batch = ordered(mill, given, datetime.date.today())
         except FailedCertificate as failure:
@@ -205,10 +207,10 @@ def _sheet(given: argparse.Namespace) -> int:
         if batch.cause is None and recorded and lacks_clean_out(batch, given.accept or ""):
             batch = replace(batch, cause=clean_out_question(batch))
         if batch.cause is None and recorded:
-            batch = print_sheet(mill, batch, Path(given.pdf), reason=given.accept or "", by=given.by or "")
+            batch = print_sheet(mill, batch, Path(given.pdf), reason=given.accept or "", by=by)
             pdf = given.pdf
         elif batch.cause is None:
-            batch = replace(batch, accepted_reason=given.accept or "", accepted_by=given.by or "")
+            batch = replace(batch, accepted_reason=given.accept or "", accepted_by=by)
             write_page(batch, Path(given.pdf), given.page)
             pdf = given.pdf
     _print(as_json.text_of(as_json.sheet(batch, pdf)) if given.json else sheet_text.sheet(batch, pdf))

@@ -34,6 +34,7 @@ from blendapp.optimise.build.weigh import (
     weigh,
 )
 from blendapp.services import batch_cautions, sheets
+from blendapp.services.accepting import accepted_by
 from blendapp.services.batch_mix import BatchMix, batch_mix
 from blendapp.services.formulate import formulate
 from blendapp.services.making import CannotBeMade, Makers
@@ -270,22 +271,24 @@ def _order(line: BatchLine) -> tuple[bool, float, str, float, str]:
 def print_sheet(mill: Mill, batch: Batch, path: Path, *, reason: str = "", by: str = "", paper: str = "") -> Batch:
     """Give a batch the next number and write its sheet; the number and the record are stored with it or not at all.
 
-    reason, by: why and by whom broken limits, and a mixer that is not cleaned out, are accepted; both or neither.
+    reason, by: why and by whom broken limits, and a mixer that is not cleaned out, are accepted; both or neither. In a
+    mill with active persons it is one of them, see accepting.
     paper: "" is the batch's own. The file is written before the number is stored and takes its place only after, so
     that no sheet carries a number that the mill does not know. Raises Refused for a batch without lines, half an
-    acceptance, a mixer that must be cleaned out where nobody says how, or why not, and for one through which
-    something harmful went since the batch was made.
+    acceptance, a name that is nobody's, a mixer that must be cleaned out where nobody says how, or why not, and for
+    one through which something harmful went since the batch was made.
     """
     if batch.cause is not None:
         raise Refused(batch.cause)
     if bool(reason.strip()) != bool(by.strip()):
         raise Refused(_("Accepting broken limits needs both a reason and a name."))
+    by = accepted_by(mill.library, by)
     batch = _as_it_stands(mill, batch)
     if lacks_clean_out(batch, reason):
         raise Refused(clean_out_question(batch))
     number = mill.store.next_batch_number()
     printed = replace(
-        batch, number=number, accepted_reason=reason.strip(), accepted_by=by.strip(), paper=paper or batch.paper
+        batch, number=number, accepted_reason=reason.strip(), accepted_by=by, paper=paper or batch.paper
     )
     with sheets.unfinished(path, sheets.batch_pdf(printed)) as finish:
         record = PrintedBatch(

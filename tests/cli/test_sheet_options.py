@@ -215,6 +215,22 @@ def test_an_approved_version_that_was_altered_from_outside_is_unusable_and_says_
     assert not (tmp_path / "a.pdf").exists()
 
 
+def test_an_acceptance_by_nobody_of_the_mill_is_unusable_on_every_page(
+    sheet: Callable[..., Run], mill: Path, tmp_path: Path
+) -> None:
+    opened = open_mill(mill)
+    staffed(opened)
+    opened.close()
+    for page in ("sheet", "master"):
+        (line,) = sheet("Feed", 1000, "--fix", "Premix=21", "--accept", "seen", "--by", "Bem", "--page", page).faults
+        assert "Nobody active in this mill is called “Bem”; did you mean Ben?" in line
+        assert not (tmp_path / "a.pdf").exists()
+    assert sheet("Feed", 1000, "--fix", "Premix=21", "--accept", "seen", "--by", "BEN").status == 0
+    opened = open_mill(mill)
+    assert [record.accepted_by for record in opened.library.all("batch")] == ["Ben"]
+    opened.close()
+
+
 def test_paper_and_mass_are_chosen_for_the_page(sheet: Callable[..., Run], tmp_path: Path) -> None:
     assert sheet("Feed", 1000).status == 0
     metric, size = pages(tmp_path / "a.pdf")

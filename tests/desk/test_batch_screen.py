@@ -19,7 +19,7 @@ from blendapp.domain.library import Library
 from blendapp.domain.plant import Bin, Lot, Mixer, Scale
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import KINDS, Change, added
-from blendapp.services import edits
+from blendapp.services import edits, people
 from blendapp.storage import create
 from tests.desk.conftest import Hands, small_mill
 
@@ -364,3 +364,24 @@ def test_an_ingredient_without_a_scale_leads_to_where_it_gets_one(screen: Bench,
     screen.show_sheet()
     settled(screen, qtbot)
     assert not screen.sheet.give_scale.isVisible()
+
+
+def test_who_accepts_is_chosen_among_the_persons_of_the_mill(screen: Bench, qtbot: QtBot, tmp_path: Path) -> None:
+    work, pane = screen.work, screen.sheet
+    for name in ("Ann Ågren", "Ben Marsh"):
+        people.add_person(work.mill, name)
+    pane.lines.fixed[PREMIX] = 15.0  # far above its greatest share
+    pane.make()
+    qtbot.waitUntil(lambda: pane.batch is not None and bool(pane.batch.broken), timeout=20000)
+    assert pane.accepting.isVisible()
+    assert pane.accepting.names.stringList() == ["Ann Ågren", "Ben Marsh"]
+    assert pane.by.completer() is not None
+    pane.printing.ask_save = lambda _title, _name: str(tmp_path / "sheet.pdf")
+    pane.reason.setText("seen")
+    pane.by.setText("Ben Mash")
+    pane.to_file()
+    assert "did you mean Ben Marsh?" in screen.strip.words.text()
+    assert not work.library.all("batch")
+    pane.by.setText("ben marsh")
+    pane.to_file()
+    assert [record.accepted_by for record in work.library.all("batch")] == ["Ben Marsh"]

@@ -18,7 +18,7 @@ from blendapp.domain.ingredients import Tag
 from blendapp.domain.library import Library
 from blendapp.domain.plant import Scale
 from blendapp.domain.problems import Refused
-from blendapp.services import edits, sheets
+from blendapp.services import edits, people, sheets
 from blendapp.services.batch import make_batch, print_copy, print_sheet
 from blendapp.services.mill import Mill, MillFileError
 from tests.mills import TODAY, Maker
@@ -218,3 +218,39 @@ def test_a_page_becomes_pictures_for_preview(opened: Opened) -> None:
     images = sheets.page_images(sheets.batch_pdf(batch_of(mill)), 40)
     assert images
     assert all(image.startswith(b"\x89PNG") for image in images)
+
+
+def test_where_the_mill_has_persons_one_of_them_accepts_and_is_named_as_the_mill_writes_it(
+    opened: Opened, tmp_path: Path
+) -> None:
+    mill = opened(library())
+    for name in ("Ann Ågren", "Ben Marsh", "Cy Left"):
+        person = people.add_person(mill, name)
+    people.change_person(mill, person.id, active=False)
+    broken = batch_of(mill, 2)
+    assert broken.broken
+
+    def printed(by: str) -> str:
+        return print_sheet(mill, broken, tmp_path / "a.pdf", reason="seen", by=by).accepted_by
+
+    for by, words in (
+        ("Ben Mash", "Nobody active in this mill is called “Ben Mash”; did you mean Ben Marsh?"),
+        ("the boss", "nothing is accepted in that name. Name one of: Ann Ågren, Ben Marsh."),
+        ("Cy Left", "Nobody active in this mill is called “Cy Left”"),
+    ):
+        with pytest.raises(Refused) as refused:
+            printed(by)
+        assert words in str(refused.value)
+    assert not (tmp_path / "a.pdf").exists()
+    assert mill.library.all("batch") == []
+    assert printed("  ann  ÅGREN ") == "Ann Ågren"
+    (record,) = mill.library.all("batch")
+    assert record.accepted_by == "Ann Ågren"
+
+
+def test_where_the_mill_has_no_active_person_anybody_may_be_named(opened: Opened, tmp_path: Path) -> None:
+    mill = opened(library())
+    gone = people.add_person(mill, "Cy Left")
+    people.change_person(mill, gone.id, active=False)
+    done = print_sheet(mill, batch_of(mill, 2), tmp_path / "a.pdf", reason="seen", by=" the shift leader ")
+    assert done.accepted_by == "the shift leader"

@@ -5,10 +5,8 @@ from __future__ import annotations
 from PySide6.QtCore import Qt, QTimer, Signal
 from PySide6.QtGui import QHideEvent, QKeyEvent
 from PySide6.QtWidgets import (
-    QFormLayout,
     QHBoxLayout,
     QLabel,
-    QLineEdit,
     QPushButton,
     QScrollArea,
     QVBoxLayout,
@@ -16,6 +14,7 @@ from PySide6.QtWidgets import (
 )
 
 from blendapp.desk.aside import Aside
+from blendapp.desk.sheet.accepting import Accepting
 from blendapp.desk.sheet.asked import AskedBatch
 from blendapp.desk.sheet.form import BatchForm
 from blendapp.desk.sheet.lines import LineModel
@@ -57,7 +56,8 @@ class SheetPane(QWidget):
         self.view = BatchView(self.lines)
         self.words = QLabel()
         self.words.setWordWrap(True)
-        self.reason, self.by = QLineEdit(), QLineEdit()
+        self.accepting = Accepting(work)
+        self.reason, self.by = self.accepting.reason, self.accepting.by
         self._last_fixed: int | None = None
         self._order_wrong = False
         self._came_from: list[tuple[int, float]] = []
@@ -79,17 +79,6 @@ class SheetPane(QWidget):
         self.give_scale = QPushButton(_("Choose its scale…"))
         self.give_scale.setObjectName("plain")
         self.give_scale.hide()
-        self.accepting = QWidget()
-        accept = QFormLayout(self.accepting)
-        accept.setContentsMargins(0, 0, 0, 0)
-        accept.setSpacing(GAP_PX)
-        for words, field in ((_("Reason"), self.reason), (_("Accepted by"), self.by)):
-            label = QLabel(words)
-            label.setObjectName("quiet")
-            label.setBuddy(field)
-            field.setAccessibleName(words)
-            accept.addRow(label, field)
-        self.accepting.hide()
         self.printed = QPushButton(_("Printed sheets…"))
         self.leave = QPushButton(_("Back to the bench"))
         inside = QWidget()
@@ -141,8 +130,7 @@ class SheetPane(QWidget):
         """Show a batch of the chosen formula: the usual one, unless a mass is given."""
         self._forget()
         self.form.begin(self.form.usual_kg() if order_kg is None else order_kg)
-        self.reason.clear()
-        self.by.clear()
+        self.accepting.clear()
         self._say_back()
         self.make()
         self.form.order.selectAll()
@@ -305,7 +293,7 @@ class SheetPane(QWidget):
         self.words.setFont(text_font())
         self.words.setText(words)
         batch = self.batch
-        self.accepting.setVisible(ready and batch is not None and (bool(batch.broken) or batch.lacks_clean_out))
+        self.accepting.ask(ready and batch is not None and (bool(batch.broken) or batch.lacks_clean_out))
         for button in (self.view.print_button, self.view.save_button):
             button.setEnabled(ready and self.work.mill.writable)
 
