@@ -87,6 +87,8 @@ class ColumnRole(StrEnum):
     PACK = "weight of a bag"
     TERMS = "terms"
     ADJUSTMENT = "discount or surcharge"
+    SITE = "site"
+    SUPPLIER = "supplier"
     NOTE = "note"
     OTHER = "other"
 

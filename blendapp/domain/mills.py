@@ -114,7 +114,9 @@ class Asked(StrEnum):
     TAKE.
     DECIMAL: a heading; "." or ",". DATES: a heading; DAY_FIRST or MONTH_FIRST. HIDDEN_COLUMN: a heading; TAKE.
     TABLE: a sheet; "row 5", the row of its headings, or "row 0" where it has none. COLUMN: a heading, or "column 3"
-    where it has none; one of list_rows.ColumnRole. SUPPLIER, SITE: ""; a name, whose list it is and for which site.
+    where it has none; one of list_rows.ColumnRole.
+    SUPPLIER, SITE: ""; a name, whose list it is and for which site, or LEAVE_OUT: none, whatever its title says. Or a
+    name in the list that the mill has not; its own name for it, or LEAVE_OUT.
     NUTRIENT: a heading; a nutrient's name, "Dry matter", or LEAVE_OUT. CONCENTRATION: a heading, or "" for all
     without a unit that are kept in % or g/kg; a unit. BASIS: a heading, or "" for all; one of ingredients.Basis.
     USUAL_CHANGE, of every source: a class of ingredients, "" for all others; by how many percent a price may change

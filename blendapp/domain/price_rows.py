@@ -16,7 +16,7 @@ class PriceRow(ListRow):
     price: as read, money per `per`; entered: the cell as it stands. price_per_t, old_price_per_t: money of the mill per
     tonne as fed. dry_matter_price_per_t: likewise of dry matter, where the list gives the price so. unit: what the list
     said, as it said it. None: not known. currency: code, sign or word of another currency, in which `price` still
-    stands; then it has no price per tonne.
+    stands; then it has no price per tonne. site_id, supplier_id: where the row names them, None where the list counts.
     """
 
     price: float | None = None
@@ -31,6 +31,8 @@ class PriceRow(ListRow):
     terms: Terms | None = None
     dry_matter_price_per_t: float | None = None
     currency: str = ""
+    site_id: int | None = None
+    supplier_id: int | None = None
 
 
 @dataclass(frozen=True)

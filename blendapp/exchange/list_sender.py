@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from blendapp.domain.library import Library
+from blendapp.domain.list_rows import LEAVE_OUT
 from blendapp.domain.mills import Asked
 from blendapp.domain.wording import _
 from blendapp.exchange.list_answers import Answers
@@ -21,17 +22,25 @@ class Sender:
     notes: tuple[str, ...] = ()
 
 
-def read_sender(answers: Answers, library: Library) -> Sender:
-    """Supplier and site of a list; no question is asked for them."""
+def read_sender(answers: Answers, library: Library, titled_site: str = "") -> Sender:
+    """Supplier and site of a list; no question is asked for them.
+
+    titled_site: the site that a title of the list names, which counts where nobody has said anything else.
+    """
     notes: list[str] = []
     supplier = _named(answers, library, Asked.SUPPLIER, notes, _("The mill has no supplier “{name}”; add it there."))
     site = _named(answers, library, Asked.SITE, notes, _("The mill has no site “{name}”; add it there."))
+    if titled_site and answers.find(Asked.SITE, "") is None:
+        site = int(next(one.id for one in library.all("site") if one.name == titled_site))
+        text = _("After its title, the prices are for the site “{name}”; answer “site=leave out” if they are for the "
+                 "whole mill.")
+        notes.append(text.format(name=titled_site))
     return Sender(supplier, site, tuple(notes))
 
 
 def _named(answers: Answers, library: Library, asked: Asked, notes: list[str], text: str) -> int | None:
     answer = answers.find(asked, "")
-    if answer is None or not answer.answer.strip():
+    if answer is None or answer.answer.strip() in ("", LEAVE_OUT):
         return None
     known = {match_key(one.name): one for one in library.all(asked.value)}
     found = known.get(match_key(answer.answer))

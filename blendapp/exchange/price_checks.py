@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections import defaultdict
 from collections.abc import Sequence
 
 from blendapp.domain.library import Library
@@ -13,14 +14,29 @@ from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.list_checks import ask_about_twins, asked, leaps, near_power
 
 
-def ask_about_duplicates(rows: Sequence[PriceRow], answers: Answers) -> list[PriceRow]:
+def ask_about_duplicates(rows: Sequence[PriceRow], answers: Answers, library: Library) -> list[PriceRow]:
     """Every row of an ingredient that several rows price becomes a question that names the others.
 
-    Prices that begin on different days to come are no twins. Where one row was answered to hold, others are ignored.
+    Prices that begin on different days to come, or that are for different sites, are no twins; those of different
+    suppliers neither, where the ingredient's own supplier is among them, whose price then is in force. Where one row
+    was answered to hold, others are ignored.
     """
-    def goods(row: PriceRow) -> object | None:
+    offered: dict[object, set[int | None]] = defaultdict(set)
+
+    def place(row: PriceRow) -> tuple[object, ...]:
         begins = row.valid_from if row.valid_from is not None and row.valid_from > answers.today else None
-        return None if row.ingredient_id is None else (row.ingredient_id, begins)
+        return row.ingredient_id, begins, row.site_id
+
+    for one in rows:
+        if one.ingredient_id is not None:
+            offered[place(one)].add(one.supplier_id)
+
+    def goods(row: PriceRow) -> object | None:
+        if row.ingredient_id is None:
+            return None
+        own = library.ingredient(row.ingredient_id).supplier_id
+        by_supplier = own is not None and own in offered[place(row)] and None not in offered[place(row)]
+        return (*place(row), row.supplier_id if by_supplier else None)
 
     return ask_about_twins(
         rows, goods, answers, _("Left out, as answered: the price in {place} holds."),

@@ -48,7 +48,8 @@ _TO_HEADINGS = frozenset({
 })
 _NOTE_HEADINGS = frozenset({
     "note", "notes", "remark", "remarks", "comment", "comments", "origin", "supplier", "code", "sku",
-    "item no", "item number", "product code", "place", "location", "port", "quality", "specification", "spec", "class",
+    "item no", "item number", "product code", "place", "location", "port", "site", "depot", "store", "destination",
+    "delivered to", "deliver to", "delivery to", "delivery site", "quality", "specification", "spec", "class",
 })
 _PACK_HEADINGS = frozenset({
     "bag weight", "pack size", "pack", "packing", "bag size", "pack weight", "bag", "packaging", "bag kg", "kg bag",

@@ -18,6 +18,7 @@ from blendapp.exchange.list_walk import TooManyTables, rows_of_table, too_many_t
 from blendapp.exchange.price_checks import ask_about_duplicates, ask_about_leaps
 from blendapp.exchange.price_columns import LIST_ROLES
 from blendapp.exchange.price_days import ask_once_about_expired
+from blendapp.exchange.price_places import placed, site_in_titles
 from blendapp.exchange.price_row import read_row
 from blendapp.exchange.price_segments import Segment, pointed_out_table, read_segments, source_table
 from blendapp.exchange.price_sides import beside, unsettled_row
@@ -41,7 +42,7 @@ def read_price_list(
     opened = open_list(path, sheet, source)
     source = opened.source
     answered = Answers(library, source, answers, today)
-    sender = read_sender(answered, library)
+    sender = read_sender(answered, library, site_in_titles(opened.tables, library))
     if sender.site_id is not None:
         library = library.at_site(sender.site_id)
     names = NameFinder(library, answered)
@@ -58,7 +59,7 @@ def read_price_list(
     placing.note_what_was_not_used(
         column.heading for shown in sheets for table in shown.tables for column in table.columns
     )
-    rows = ask_once_about_expired(ask_about_leaps(ask_about_duplicates(rows, answered), answered, library))
+    rows = ask_once_about_expired(ask_about_leaps(ask_about_duplicates(rows, answered, library), answered, library))
     return PriceListReading(
         opened.file.name, opened.file.digest, tuple(rows), (*opened.notes, *sender.notes, *placing.notes), source,
         tuple(answers), tuple(sheets), sender.supplier_id, sender.site_id, currency=library.mill.currency,
@@ -90,7 +91,8 @@ def _rows(
     def read(row: int) -> PriceRow:
         if table.sides and table.side is None:
             return unsettled_row(raw, row, table)
-        return beside(raw, read_row(raw, row, segment, library, names, today), table)
+        found = read_row(raw, row, segment, library, names, today)
+        return beside(raw, placed(raw, found, table, library, names.answers, today), table)
 
     return rows_of_table(
         raw, range(segment.first, segment.last), table.heading_rows, table.first_row, PriceRow, read

@@ -40,7 +40,7 @@ if TYPE_CHECKING:
 # What stands in these columns changes what a price means.
 _TELLING = frozenset({
     ColumnRole.UNIT, ColumnRole.CURRENCY, ColumnRole.VALID_FROM, ColumnRole.VALID_TO, ColumnRole.PACK, ColumnRole.TERMS,
-    ColumnRole.ADJUSTMENT,
+    ColumnRole.ADJUSTMENT, ColumnRole.SITE, ColumnRole.SUPPLIER,
 })
 
 

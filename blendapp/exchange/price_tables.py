@@ -13,6 +13,7 @@ from blendapp.exchange.list_names import NameFinder
 from blendapp.exchange.list_placing import NO_HEADINGS, Placing, column_name
 from blendapp.exchange.price_columns import PRICE_ROLES, PriceColumn, RoleOf, Table, role_of
 from blendapp.exchange.price_headings import read_headings
+from blendapp.exchange.price_places import settle_places
 from blendapp.exchange.price_sides import settle_sides
 from blendapp.exchange.price_units import is_price_unit
 from blendapp.exchange.price_words import NO_WORDS, Words, read_heading_words
@@ -91,6 +92,7 @@ def _settle(found: Table, raw: RawTable, names: NameFinder, placing: Placing) ->
         _add_columns_without_heading(found, raw, placing)
     settle_sides(found, raw, names.is_known, names.answers, placing)
     settle_name_column(found, raw, names.is_known, placing)
+    settle_places(found, raw, names.library, placing)
     if found.name is not None:
         drop_empty_prices(found, raw)
 

@@ -72,9 +72,9 @@ def _question(reading: ListReading, key: str) -> tuple[Question, ListRow]:
     for name, question, row in _open(reading):
         if fold(name) == fold(key):
             return question, row
-    # A table or the role of a column may be set without being asked about.
+    # A table, the role of a column, and whose list it is may be set without being asked about.
     asked, _colon, about = (part.strip() for part in key.partition(":"))
-    if asked in (Asked.TABLE, Asked.COLUMN):
+    if asked in (Asked.TABLE, Asked.COLUMN) or (asked in (Asked.SUPPLIER, Asked.SITE) and not about):
         return Question(Asked(asked), about, ""), ListRow("", 0, Fate.QUESTION)
     names = list(dict.fromkeys(name for name, _question, _row in _open(reading)))
     if not names:

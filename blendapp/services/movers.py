@@ -131,8 +131,10 @@ def with_prices(library: Library, reading: PriceListReading, on: datetime.date) 
     copy = library.copy()
     first = max(library.records["quote"], default=0) + 1
     copy.apply([
-        added(Quote(first + at, row.ingredient_id or 0, row.price, row.per or "t", row.bushel_lb, reading.site_id,
-                    reading.supplier_id, valid_from=row.valid_from or on, valid_to=row.valid_to, recorded=on,
+        added(Quote(first + at, row.ingredient_id or 0, row.price, row.per or "t", row.bushel_lb,
+                    reading.site_id if row.site_id is None else row.site_id,
+                    reading.supplier_id if row.supplier_id is None else row.supplier_id,
+                    valid_from=row.valid_from or on, valid_to=row.valid_to, recorded=on,
                     source=reading.file_name))
         for at, row in enumerate(reading.accepted)
     ])

@@ -51,8 +51,10 @@ def apply_price_list(mill: Mill, reading: PriceListReading, on: datetime.date) -
         assert row.price is not None
         assert row.per is not None
         changes.append(added(Quote(
-            mill.new_id("quote"), row.ingredient_id, row.price, row.per, row.bushel_lb, reading.site_id,
-            reading.supplier_id, terms=row.terms, valid_from=row.valid_from or on, valid_to=row.valid_to, recorded=on,
+            mill.new_id("quote"), row.ingredient_id, row.price, row.per, row.bushel_lb,
+            reading.site_id if row.site_id is None else row.site_id,
+            reading.supplier_id if row.supplier_id is None else row.supplier_id,
+            terms=row.terms, valid_from=row.valid_from or on, valid_to=row.valid_to, recorded=on,
             source=reading.file_name, entered=row.entered, price_list_id=kept.id,
         )))
     changes += memory_changes(mill, reading)

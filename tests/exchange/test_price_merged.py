@@ -37,7 +37,8 @@ def test_a_name_over_two_prices_makes_both_a_question(tmp_path: Path, library: L
     assert [row.fate for row in reading.rows] == [IGNORED, Q, Q, A]
     assert [row.ingredient for row in reading.rows] == [None, "Maize", "Maize", "Wheat"]
     assert {one.asked for one in reading.questions} == {Asked.TWIN}
-    taken = merged(tmp_path / "Larkwater.xlsx", library, LOADS, "A2:A3", Answer(Asked.TWIN, "", TAKE, sheet="Prices", row=3))
+    holds = Answer(Asked.TWIN, "", TAKE, sheet="Prices", row=3)
+    taken = merged(tmp_path / "Larkwater.xlsx", library, LOADS, "A2:A3", holds)
     assert [row.price_per_t for row in taken.accepted] == [204, 212]
 
 

@@ -232,3 +232,20 @@ def test_an_expired_list_is_asked_about_again_the_next_time(mill: Mill, tmp_path
     apply_price_list(mill, answered, TODAY)
     assert mill.library.price_per_t(1, TODAY) == 205
     assert [one.asked for one in read(mill, tmp_path, "Larkwater.csv", text).questions] == [Asked.EXPIRED_LIST]
+
+
+def test_a_row_that_names_its_site_and_its_supplier_is_recorded_for_them(opened: Opened, tmp_path: Path) -> None:
+    maker = Maker()
+    maker.put(Site(1, "Larkwater"))
+    maker.put(Site(2, "Fellgate"))
+    maker.put(Supplier(1, "Marram Grain"))
+    maker.ingredient("Maize", 200.0)
+    mill = opened(maker.library)
+    text = "Product,Site,Supplier,Price $/t\nMaize,Larkwater,Marram Grain,205\nMaize,Fellgate,,208\n"
+    reading = read(mill, tmp_path, "Broker.csv", text, Answer(Asked.SUPPLIER, "", "Marram Grain"))
+    apply_price_list(mill, reading, TODAY)
+    quotes = [quote for quote in mill.library.all("quote") if quote.price_list_id is not None]
+    assert [(one.site_id, one.supplier_id, one.price) for one in quotes] == [(1, 1, 205), (2, 1, 208)]
+    prices = [mill.library.price_per_t(1, TODAY, site) for site in (None, 1, 2)]
+    assert prices == [200, 205, 208]
+    assert [row.site_id for row in open_list(mill, 1)] == [None, 1, 2]
