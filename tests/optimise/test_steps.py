@@ -118,7 +118,9 @@ def test_the_rest_of_a_batch_is_solved_around_a_fixed_line(order: Order, at: int
         assert found.reasons[0].why in ("fixed load", "fixed total")
         return
     assert found.kilograms[j] == n * free.placed[j].step
-    assert found.error_kg <= free.error_kg  # a person may go further than the tolerance
+    # A person may go further than the tolerance; what is left is what rounding the free lines explains.
+    coarsest = max((p.step for p in found.placed if not p.fixed), default=Fraction(0))
+    assert found.error_kg <= max(free.error_kg, coarsest / 2)
     error, fewest, deviation, _cost = by_trying_all(fixed, found)
     assert (found.error_kg, len(found.broken)) == (error, fewest)
     assert found.deviation == pytest.approx(deviation, abs=1e-6)

@@ -211,6 +211,38 @@ def test_a_fixed_line_that_keeps_the_batch_from_its_total_is_refused() -> None:
         batch_of(made, 1000.0, fixed={maize: 650.0})
 
 
+def test_fixed_lines_that_leave_no_more_than_rounding_does_are_made_and_the_residue_shown() -> None:
+    """The free line weighs 5 kg steps, so that any mass beside the fixed one is missed by up to 2.5 kg."""
+    made = mill({"Maize": 96.0, "Salt": 4.0}, {"Maize": BIG, "Salt": SMALL}, mixers=())
+    salt = key_of(made[0], "Salt")
+    assert batch_of(made, 1000.0).residue_kg == 0.0
+    for fixed, residue in ((42.5, 2.5), (41.0, 1.0), (39.0, -1.0), (45.0, 0.0)):
+        batch = batch_of(made, 1000.0, fixed={salt: fixed})
+        assert abs(batch.residue_kg) == abs(residue)
+        assert lines(batch)["Salt"] == fixed
+
+
+def test_fixed_lines_beside_which_the_others_are_at_the_end_of_their_tolerances_are_refused() -> None:
+    """Maize gives and takes 15 kg at most (2 % of 960 kg, in 5 kg steps)."""
+    made = mill({"Maize": 96.0, "Salt": 4.0}, {"Maize": BIG, "Salt": SMALL}, mixers=())
+    salt = key_of(made[0], "Salt")
+    assert batch_of(made, 1000.0, fixed={salt: 57.5}).residue_kg == 2.5
+    with pytest.raises(Refused, match="With Salt fixed, the other lines bring the batch to 1003 kg at the nearest"):
+        batch_of(made, 1000.0, fixed={salt: 58.0})
+
+
+def test_a_fixed_line_that_leaves_no_total_that_the_mixer_holds_is_refused_by_name() -> None:
+    made = mill({"Maize": 60.0, "Meal": 40.0}, {"Maize": BIG, "Meal": BIG}, mixers=(Mixer(1, "Mixer", 500.0, 2000.0),))
+    with pytest.raises(Refused, match="With Maize fixed, the other lines bring the batch to 2035 kg at the nearest"):
+        batch_of(made, 1000.0, fixed={key_of(made[0], "Maize"): 1640.0})
+
+
+def test_a_fixed_line_beside_a_full_mixer_may_leave_a_step_less() -> None:
+    made = mill({"Maize": 96.0, "Salt": 4.0}, {"Maize": BIG, "Salt": SMALL}, mixers=(Mixer(1, "Mixer", 500.0, 1000.0),))
+    salt = key_of(made[0], "Salt")
+    assert batch_of(made, 1000.0, fixed={salt: 41.0}).residue_kg == -4.0
+
+
 def test_a_ration_is_made_in_the_proportions_of_its_kilograms() -> None:
     made = mill(
         {"Hay": 6.0, "Barley": 3.5, "Minerals": 0.1}, {"Hay": BIG, "Barley": BIG, "Minerals": SMALL},

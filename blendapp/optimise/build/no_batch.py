@@ -70,8 +70,13 @@ def _whole(order: Order, reason: Reason, ingredients: Sequence[Ingredient]) -> s
             "With {ingredients} fixed, the other lines bring the batch to {total} kg at the nearest, not to {batch} "
             "kg; fix nearer masses, or fewer lines."
         )
-        total = None if reason.total_kg is None else float(reason.total_kg)
-        return text.format(ingredients=", ".join(names), total=kg(total), batch=kg(order.batch_kg))
+        if reason.total_kg is None:
+            text = _("With {ingredients} fixed, the other lines do not bring the batch to {batch} kg; fix nearer "
+                     "masses, or fewer lines.")
+            return text.format(ingredients=", ".join(names), batch=kg(order.batch_kg))
+        return text.format(
+            ingredients=", ".join(names), total=kg(float(reason.total_kg)), batch=kg(order.batch_kg)
+        )
     text = _(
         "No total between {least} and {greatest} kg, which the mixer holds, can be weighed in the steps of the scales; "
         "order another mass, or enter a finer scale."

@@ -88,8 +88,9 @@ class Reason:
 
     line: index, None for the whole batch. why: the share is too small or too large for every scale, or lies between
     two of their loads; a step is not above 0; a fixed mass is no multiple of a step, outside a load, or too far from
-    the share of a line that must stay; the fixed lines make the total worse than it could be, or no total lies where
-    it must ("total"); "none": there is no line. total_kg: the total nearest to the batch, where one exists.
+    the share of a line that must stay; the fixed lines keep the total further from the batch than rounding explains,
+    or no total lies where it must ("total"); "none": there is no line. total_kg: the total nearest to the batch, where
+    one exists.
     """
 
     line: int | None

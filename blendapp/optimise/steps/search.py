@@ -6,7 +6,7 @@ import time
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
-from typing import Literal
+from typing import Literal, NamedTuple
 
 from blendapp.optimise.steps.integers import Found, Integers
 from blendapp.optimise.steps.problem import Order, Placed, Reason, Task, exact, place, place_fixed, task
@@ -87,12 +87,12 @@ def whole_batch(order: Order, time_limit_s: float = 1.5) -> WholeBatch | NoBatch
     placed = _placed(order)
     if isinstance(placed, NoBatch):
         return placed
-    totals = nearest_totals(order, placed)
-    if totals is not None and not totals:
-        return NoBatch((Reason(None, "total"),))
     worse = _fixed_spoils(order, placed)
     if worse is not None:
         return worse
+    totals = nearest_totals(order, placed)
+    if totals is not None and not totals:
+        return NoBatch((Reason(None, "total"),))
     return _Search(task(order, placed), totals, began, time_limit_s).run()
 
 
@@ -105,28 +105,56 @@ def _placed(order: Order) -> tuple[Placed, ...] | NoBatch:
 
 
 def _fixed_spoils(order: Order, placed: Sequence[Placed]) -> NoBatch | None:
-    """Where the fixed lines keep the total further from the batch than the same lines could come unfixed."""
+    """Where the fixed lines keep the total further from the batch than rounding explains.
+
+    What the free lines must come to beside fixed ones is any mass, and whole steps reach it to half a step of the
+    coarsest of them while that one may still give and take; to a whole step where an end of the order lies that near
+    and shuts out the other side. An error up to that, or up to what the same lines unfixed leave, is shown as any
+    residue is. A greater one means that the free lines are at the end of what their tolerances let them make up for.
+    """
     if all(line.fixed_kg is None for line in order.lines):
         return None
     free = replace(order, lines=tuple(replace(line, fixed_kg=None) for line in order.lines))
     unfixed = _placed(free)
     if isinstance(unfixed, NoBatch):
         return None
-    here, play = _nearest(order, placed)
-    best, its_play = _nearest(free, unfixed)
-    wanted = exact(order.batch_kg)
-    if here is None or best is None or abs(here - wanted) <= abs(best - wanted) + max(play, its_play):
+    here, best = _nearest(order, placed), _nearest(free, unfixed)
+    if here is None or best is None or best.total is None:
         return None
-    return NoBatch((Reason(None, "fixed total", here),))
+    if here.total is None:  # no total between the ends of the order, and without the fixed lines there is one
+        open_ended = _nearest(replace(order, least_total_kg=None, greatest_total_kg=None), placed)
+        return NoBatch((Reason(None, "fixed total", None if open_ended is None else open_ended.total),))
+    wanted = exact(order.batch_kg)
+    explained = max(abs(best.total - wanted) + max(here.play, best.play), _rounding(order, placed))
+    if abs(here.total - wanted) <= explained:
+        return None
+    return NoBatch((Reason(None, "fixed total", here.total),))
 
 
-def _nearest(order: Order, placed: Sequence[Placed]) -> tuple[Fraction | None, Fraction]:
-    """The total nearest to the batch, None where it is not known, and how far another one is as near."""
+def _rounding(order: Order, placed: Sequence[Placed]) -> Fraction:
+    """How far from the batch a total may lie for the steps of the lines that are free."""
+    step = max((p.step for p in placed if not p.fixed), default=Fraction(0))
+    ends = (end for end in (order.least_total_kg, order.greatest_total_kg) if end is not None)
+    near = any(abs(exact(end) - exact(order.batch_kg)) < step / 2 for end in ends)
+    return step if near else step / 2
+
+
+class _Nearest(NamedTuple):
+    """The total nearest to the batch, None where none lies between the ends; play: how far another one is as near."""
+
+    total: Fraction | None
+    play: Fraction
+
+
+def _nearest(order: Order, placed: Sequence[Placed]) -> _Nearest | None:
+    """None where it is not known."""
     totals = nearest_totals(order, placed)
     if totals is not None:
-        return (totals[0] if totals else None), Fraction(0)
+        return _Nearest(totals[0] if totals else None, Fraction(0))
     mixed = nearest_mixed(order, placed)
-    return (None if mixed is None else mixed.total), _PLAY * min(p.step for p in placed)
+    if mixed is None or (mixed.total is None and not mixed.whole):
+        return None
+    return _Nearest(mixed.total, _PLAY * min(p.step for p in placed))
 
 
 class _Search:
