@@ -11,7 +11,7 @@ from blendapp.documents.letters import BOLD
 from blendapp.documents.paper import MM
 from blendapp.documents.pen import Pen
 from blendapp.documents.phrases import with_unit
-from blendapp.documents.sections import BODY
+from blendapp.documents.sections import BODY, STRONG
 from blendapp.domain import figures
 from blendapp.domain.batches import Batch, BatchPage
 from blendapp.domain.wording import _, plural
@@ -31,6 +31,11 @@ def number_words(batch: Batch, page: BatchPage) -> str:
     if batch.batches < 2 or not batch.place:
         return words
     return _("{batch}, {place} of {count}").format(batch=words, place=batch.place, count=batch.batches)
+
+
+def to_be_copied(batch: Batch, page: BatchPage) -> bool:
+    """Whether one sheet stands for all the equal batches of an order."""
+    return page is BatchPage.SHEET and bool(batch.lines) and not batch.place and batch.batches > 1
 
 
 def _one_batch(batch: Batch) -> str:
@@ -102,9 +107,19 @@ def places_to_name(batch: Batch, page: BatchPage, width: float) -> list[Block]:
         row = [
             Field(_("Made on")), Field(_("Made by"), 1.8),
         ]
-        if not batch.place:
+        if to_be_copied(batch, page):
             row.insert(0, Field(_("Which of the {count} equal batches").format(count=batch.batches), 1.2))
-    return [forms.fields(row, width, gap=10)] if row and batch.lines else []
+    if not row or not batch.lines:
+        return []
+    return [*_for_each(batch, page, width), forms.fields(row, width, gap=10)]
+
+
+def _for_each(batch: Batch, page: BatchPage, width: float) -> list[Block]:
+    """That a sheet which names none of its equal batches is to be copied for each of them."""
+    if not to_be_copied(batch, page):
+        return []
+    words = _("This one sheet is for each of the {count} equal batches: copy it before use, one copy for each batch.")
+    return paragraph(words.format(count=batch.batches), STRONG, width, gap=10, keep_next=True)
 
 
 def _facts(batch: Batch, page: BatchPage) -> list[tuple[str, str]]:

@@ -10,7 +10,7 @@ from __future__ import annotations
 import dataclasses
 
 from blendapp.documents import closing, making, phrases, sections
-from blendapp.documents.batch_head import code, facts, number_words, places_to_name
+from blendapp.documents.batch_head import code, facts, number_words, places_to_name, to_be_copied
 from blendapp.documents.flow import Block, Style, paragraph
 from blendapp.documents.frame import Frame, Mark, draw_all
 from blendapp.documents.letters import BOLD
@@ -48,6 +48,9 @@ def _document(batch: Batch, page: BatchPage, paper: Paper) -> tuple[Frame, list[
         BatchPage.BLANK: _("Blank batch record"),
     }
     of = number_words(batch, page)
+    if to_be_copied(batch, page):
+        # Pages of two copies are told apart by what is written here.
+        of = _("{batch}, {place} of {count}").format(batch=of, place="_" * 7, count=batch.batches)
     frame = Frame(
         paper,
         title=" · ".join([batch.formula, batch.version, of]),
@@ -84,9 +87,17 @@ def _blocks(batch: Batch, page: BatchPage, width: float) -> list[Block]:
         blocks += weighing_table(batch, page, width) + _proof(batch, width) + ([] if before else cautions)
         blocks += making.mixing(batch, page, width) + closing.yields(batch, page, width)
         blocks += closing.signatures(batch, width) if page is BatchPage.MASTER else closing.sample_and_release(width)
-    if page is not BatchPage.BLANK:
-        blocks += sections.nutrients(batch.nutrients, _("Nutrients that result"), width)
-    return blocks
+    return blocks if page is BatchPage.BLANK else blocks + _nutrients(batch, width)
+
+
+def _nutrients(batch: Batch, width: float) -> list[Block]:
+    """What the mix holds, first of what the formula limits."""
+    limited = [found for found in batch.nutrients if found.limited]
+    if not limited:
+        return sections.nutrients(batch.nutrients, _("Nutrients that result"), width)
+    others = [found for found in batch.nutrients if not found.limited]
+    blocks = sections.nutrients(limited, _("Nutrients that the formula limits"), width)
+    return blocks + sections.nutrients(others, _("Other nutrients that result"), width)
 
 
 def _pointer(batch: Batch, width: float) -> list[Block]:

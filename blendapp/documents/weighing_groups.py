@@ -13,7 +13,7 @@ from blendapp.documents.paper import MM
 from blendapp.documents.phrases import with_unit
 from blendapp.documents.rows import GUTTER, Column, Rows, Text
 from blendapp.documents.sections import LABEL
-from blendapp.documents.weighing_words import details
+from blendapp.documents.weighing_words import details, is_medicated
 from blendapp.domain import figures
 from blendapp.domain.batches import Batch, BatchLine, BatchPage
 from blendapp.domain.notation import notation
@@ -53,6 +53,16 @@ class Group:
         return self.lines[0].hand_add
 
     @property
+    def medicated(self) -> bool:
+        """Whether its lines carry a drug and stand apart for it; hand-adds stand apart already."""
+        return not self.hand_add and is_medicated(self.lines[0])
+
+    @property
+    def second_check(self) -> bool:
+        """Whether one person weighs and another checks."""
+        return self.hand_add or self.medicated
+
+    @property
     def by_volume(self) -> bool:
         return self.lines[0].step_l is not None
 
@@ -74,6 +84,8 @@ class Group:
             step = with_unit(figures.write_mass(first.step_kg, first.step_kg, self.own_unit), self.own_unit)
         if first.hand_add:
             named, bare = _("Hand-adds on {scale}, in steps of {step}"), _("Hand-adds, in steps of {step}")
+        elif self.medicated:
+            named, bare = _("Medicated, on {scale}, in steps of {step}"), _("Medicated, in steps of {step}")
         else:
             named, bare = _("{scale}, in steps of {step}"), _("In steps of {step}")
         return (named if first.scale else bare).format(scale=first.scale, step=step)
@@ -127,11 +139,15 @@ class Group:
 
 
 def in_order(lines: Sequence[BatchLine]) -> list[list[BatchLine]]:
-    """The lines by scale, the coarsest scale first, then liquid meters, hand-adds last; else they keep their order."""
-    groups: dict[tuple[bool, bool, float, str], list[BatchLine]] = {}
+    """The lines by scale, the coarsest scale first, then meters, medicated lines apart, hand-adds last.
+
+    Else they keep their order.
+    """
+    groups: dict[tuple[bool, bool, bool, float, str], list[BatchLine]] = {}
     for line in lines:
         step = line.step_kg if line.step_l is None else line.step_l
-        groups.setdefault((line.hand_add, line.step_l is not None, -step, line.scale), []).append(line)
+        apart = not line.hand_add and is_medicated(line)
+        groups.setdefault((line.hand_add, apart, line.step_l is not None, -step, line.scale), []).append(line)
     return [groups[key] for key in sorted(groups)]
 
 
@@ -199,7 +215,7 @@ class Layout:
 
     def has_running(self, group: Group) -> bool:
         """A running total helps on a scale that stands at it; on one that shows another unit it would mislead."""
-        few = len(group.lines) < 2 or group.hand_add or group.by_volume or group.foreign
+        few = len(group.lines) < 2 or group.second_check or group.by_volume or group.foreign
         return not self._master and not few
 
     def _target_column(self, group: Group) -> Column:
@@ -228,7 +244,7 @@ class Layout:
         weighed = _("Dosed {unit}") if group.by_volume else _("Weighed {unit}")
         unit = group.volume_unit if group.by_volume else group.own_unit
         found += [Column(lot, _LOT, write=True), Column(weighed.format(unit=unit), _WEIGHED, write=True)]
-        if group.hand_add:
+        if group.second_check:
             weigher, checker = _("Weighed by"), _("Checked by")
             return [*found, Column(weigher, _CHECK, write=True), Column(checker, _CHECK, write=True)]
         return [*found, Column(_("Initials"), _INITIALS, write=True)]

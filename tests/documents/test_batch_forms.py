@@ -4,15 +4,17 @@ from __future__ import annotations
 
 import dataclasses
 import itertools
+from collections.abc import Callable
 
 import batch_cases as made
 import pytest
 from page_reading import Piece, figures_under, pieces, places_under, rules, squeezed
 
-from blendapp.documents import batch_sheet, blank_record, master_record, page_count, page_text
+from blendapp.documents import Paper, batch_sheet, blank_record, master_record, page_count, page_text
 from blendapp.documents.batch_head import code_text
 from blendapp.domain.batches import BatchPage, CleanOut
 from blendapp.domain.cautions import GENERAL_CAUTION
+from blendapp.domain.results import NutrientResult
 
 
 def words(pdf: bytes) -> str:
@@ -223,6 +225,52 @@ def test_an_order_of_very_many_batches_has_one_sheet_with_room_to_write_which_it
     assert page_count(batch_sheet(many)) < 2 * page_count(batch_sheet(made.FULL))
     assert squeezed("Which of the 61 equal batches") in words(batch_sheet(many))
     assert squeezed("Which of the") not in words(batch_sheet(made.FULL))
+
+
+@pytest.mark.parametrize("paper", list(Paper))
+def test_one_sheet_for_many_batches_says_that_it_is_copied_and_leaves_room_on_each_page(paper: Paper) -> None:
+    many = dataclasses.replace(made.FULL, batches=100, place=0)
+    pages = page_text(batch_sheet(many, paper))
+    said = "This one sheet is for each of the 100 equal batches: copy it before use, one copy for each batch."
+    assert squeezed(said) in squeezed(pages[0])
+    label = found(batch_sheet(many, paper), "Which of the 100 equal batches")[0]
+    place = max(places_under(batch_sheet(many, paper), label.text.strip()), key=lambda rule: rule.y)
+    assert 15 < label.bottom - place.y < 35
+    assert len(pages) > 2
+    for text in pages[1:]:
+        assert "Batch 1041, _______ of 100" in text
+    for batch in (made.FULL, dataclasses.replace(made.FULL, place=0), dataclasses.replace(made.FULL, batches=1)):
+        assert squeezed("copy it before use") not in words(batch_sheet(batch, paper))
+
+
+def test_a_medicated_line_of_any_scale_stands_apart_and_is_weighed_by_one_and_checked_by_another() -> None:
+    drug = dataclasses.replace(made.FULL.lines[11], drug="fenbendazole 20 g/kg")
+    others = [line for line in made.FULL.lines if not line.hand_add and line is not made.FULL.lines[11]]
+    for draw in (batch_sheet, blank_record):
+        pdf = draw(dataclasses.replace(made.FULL, lines=(drug, *others), steps=()))
+        assert squeezed("Medicated, on Minor scale, in steps of 0.5 kg") in words(pdf)
+        assert [len(found(pdf, text)) for text in ("Weighed", "Checked", "by")] == [1, 1, 2]
+        assert len(places_under(pdf, "by")) == 2
+    apart = words(batch_sheet(dataclasses.replace(made.FULL, lines=(*made.FULL.lines, drug))))
+    titles = ("Fat pump, in", "Medicated, on Minor scale", "Hand-adds on Bench")
+    places = [apart.index(squeezed(title)) for title in titles]
+    assert places == sorted(places)
+
+
+@pytest.mark.parametrize("draw", [batch_sheet, master_record])
+def test_what_the_formula_limits_stands_before_the_other_nutrients(draw: Callable[..., bytes]) -> None:
+    def order(nutrients: tuple[NutrientResult, ...]) -> list[str]:
+        text = words(draw(dataclasses.replace(made.FULL, nutrients=nutrients)))
+        names = [n.name for n in nutrients]
+        heads = ("Nutrients that the formula limits", "Other nutrients that result", "Nutrients that result")
+        known = {part: text.rindex(squeezed(part)) for part in (*names, *heads) if squeezed(part) in text}
+        return sorted(known, key=lambda part: known[part])
+
+    limited, free = NutrientResult(1, "Zinc", "mg/kg", 90, (), True), NutrientResult(2, "Ash", "%", 5, (), False)
+    first, second = "Nutrients that the formula limits", "Other nutrients that result"
+    assert order((free, limited)) == [first, "Zinc", second, "Ash"]
+    assert order((free,)) == ["Nutrients that result", "Ash"]
+    assert order((limited,)) == [first, "Zinc"]
 
 
 def test_many_cautions_follow_the_lines_and_the_sheet_says_so_above_them() -> None:
