@@ -14,7 +14,6 @@ from typing import TYPE_CHECKING
 from blendapp.domain import yields
 from blendapp.domain.batches import Batch, BatchLine, CleanOut, Step
 from blendapp.domain.formulas import Formula
-from blendapp.domain.ingredients import Ingredient
 from blendapp.domain.library import Library
 from blendapp.domain.mills import PrintedBatch
 from blendapp.domain.notation import notation
@@ -30,7 +29,6 @@ from blendapp.optimise.build.weigh import (
     NotWeighable,
     WeighedLine,
     Weighing,
-    scales_for,
     weigh,
 )
 from blendapp.services import batch_cautions, sheets
@@ -40,6 +38,7 @@ from blendapp.services.formulate import formulate
 from blendapp.services.making import CannotBeMade, Makers
 from blendapp.services.order_split import mixer_taking, mixers_for, no_split, split_order, totals_held
 from blendapp.services.previous_feed import clean_out_reason, feed_text, previous_sheet, tags_of
+from blendapp.services.scaleless import without_scale
 from blendapp.services.versions import standing
 
 if TYPE_CHECKING:
@@ -100,7 +99,7 @@ def make_batch(
     if split is None:
         return replace(empty, cause=no_split(mixers, order_kg))
     empty = replace(empty, batches=split, batch_kg=order_kg / split)
-    unscaled = _unscaled(library, mix)
+    unscaled = without_scale(library, mix.contents.amounts, empty.batch_kg)
     if unscaled is not None:
         return replace(empty, cause=unscaled)
     built = build(
@@ -160,31 +159,6 @@ def _no_mix(formula: Formula, answer: Result) -> str:
         text = _("The answer to {formula} was stopped before it was proven; it is not made as if it were the answer.")
         return text.format(formula=formula.name)
     return _("{formula} is a mix of nothing; there is nothing to weigh.").format(formula=formula.name)
-
-
-def _unscaled(library: Library, mix: BatchMix) -> str | None:
-    """The question where an ingredient has no scale, with a proposal; None where each has one, or the mill has none."""
-    every = library.records["scale"]
-    if not every:
-        return None
-    usable = [scale for scale in library.scales if not scale.by_volume and (scale.step_kg or 0.0) > 0]
-    lacking: list[Ingredient] = [
-        one for one in map(library.ingredient, mix.contents.amounts)
-        if one.scale_id not in every or not scales_for(library, one)
-    ]
-    names = ", ".join(one.name for one in lacking)
-    if not library.scales:
-        text = _("No scale stands at {site}; enter one there, or one of no site.")
-        return text.format(site=_site(library, library.mill.site_id))
-    if not lacking:
-        return None
-    if not usable:
-        return _("No scale weighs {ingredients}. Enter one with a step in kg, and choose it under Scale.").format(
-            ingredients=names
-        )
-    finest = min(usable, key=lambda scale: scale.step_kg or 0.0)
-    text = _("No scale weighs {ingredients}. Enter one under Scale, for example {scale} in steps of {step} kg.")
-    return text.format(ingredients=names, scale=finest.name, step=notation().write_short(finest.step_kg))
 
 
 def _before(batch: Batch, formula: Formula, makers: Makers, mix: BatchMix, said: str | None) -> Batch:

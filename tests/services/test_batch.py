@@ -100,6 +100,21 @@ def test_a_batch_is_whole_steps_near_its_shares_and_off_its_total_by_less_than_a
     assert abs(batch.residue_kg) <= coarsest / 2 + 1e-9 or batch.unproven == "total"
 
 
+@pytest.mark.parametrize(("kg", "words"), [  # of 450 kg a half is 225 kg, of which 5 kg are more than 2 %
+    (1000.0, "No scale weighs Wheat. Choose one under Scale, for example Coarse in steps of 5 kg."),
+    (450.0, "No scale weighs Wheat. Choose one under Scale, for example Middle in steps of 0.5 kg."),
+    (30.0, "No scale weighs Wheat. Choose one under Scale, for example By hand in steps of 0.001 kg."),
+    (0.1, "Enter one with a step of at most 0.001 kg that holds 0.05 kg, and choose it under Scale."),
+])
+def test_the_scale_proposed_is_the_coarsest_that_takes_the_share_within_its_tolerance(kg: float, words: str) -> None:
+    make = mill({"Maize": 50.0, "Wheat": 50.0}, {"Maize": 0.001})
+    make.put(Scale(2, "Coarse", 5.0, 20.0, 2000.0))
+    make.put(Scale(3, "Middle", 0.5, 20.0, 300.0))
+    make.put(Scale(4, "By hand", 0.001, 0.1, 15.0, hand_add=True))
+    make.library.apply([Change(make.library.records["scale"][1], Scale(1, "Own", 0.001, 0.0, 0.01))])
+    assert words in (make_batch(make.library, 1, kg, TODAY).cause or "")
+
+
 @pytest.mark.parametrize(
     ("order", "mixers", "count"),
     [
@@ -145,7 +160,7 @@ def test_a_line_without_a_scale_stops_the_sheet_with_a_proposal() -> None:
     batch = make_batch(make.library, 1, 1000, TODAY)
     assert batch.lines == ()
     assert "No scale weighs Wheat." in (batch.cause or "")
-    assert "Scale of Salt in steps of 0.1 kg" in (batch.cause or "")
+    assert "Scale of Maize in steps of 5 kg" in (batch.cause or "")
 
 
 def test_an_unused_ingredient_needs_no_scale() -> None:

@@ -110,11 +110,14 @@ def test_a_scale_with_a_step_of_0_is_named_once(scale_id: int, fields: dict[str,
 def test_a_proposal_names_no_meter_and_no_scale_without_a_step() -> None:
     library = changed(mill(), HAND, step_kg=0.0)
     library.apply([Change(library.ingredient(2), replace(library.ingredient(2), scale_id=None))])
-    assert batch_of(library).cause == (
-        "No scale weighs Meal. Enter one under Scale, for example Big scale in steps of 5 kg."
+    assert batch_of(library, 1100.0).cause == (
+        "No scale weighs Meal. Choose one under Scale, for example Big scale in steps of 5 kg."
     )
     only = changed(library, BIG, step_kg=0.0)
-    assert batch_of(only).cause == "No scale weighs Meal. Enter one with a step in kg, and choose it under Scale."
+    assert batch_of(only).cause == (
+        "No scale weighs Meal, and none here takes its share of 243 kg within its tolerance. Enter one with a step of "
+        "at most 4.8 kg that holds 243 kg, and choose it under Scale."
+    )
 
 
 def test_where_only_pumps_stand_what_they_do_not_dose_is_a_question() -> None:
@@ -122,9 +125,11 @@ def test_where_only_pumps_stand_what_they_do_not_dose_is_a_question() -> None:
     library.apply([Change(None, Site(1, "North")), Change(None, Site(2, "South"))])
     for scale_id, site_id in ((BIG, 2), (HAND, 2), (PUMP, 1)):
         changed(library, scale_id, site_id=site_id)
-    assert batch_of(library.at_site(1)).cause == (
-        "No scale weighs Maize, Meal. Enter one with a step in kg, and choose it under Scale."
-    )
+    cause = batch_of(library.at_site(1)).cause or ""
+    for name, kg, step in (("Maize", "730", "14"), ("Meal", "243", "4.8")):
+        assert f"No scale weighs {name}, and none here takes its share of {kg} kg within its tolerance." in cause
+        assert f"a step of at most {step} kg that holds {kg} kg" in cause
+    assert "Oil" not in cause
 
 
 def test_a_mass_read_from_the_sheet_in_grams_fixes_whole_steps_of_litres() -> None:

@@ -173,5 +173,5 @@ def test_rework_without_a_scale_is_a_question_with_a_proposal() -> None:
     make = mill()
     returns = make.library.ingredient(RETURNS)
     make.library.apply([Change(returns, replace(returns, scale_id=None))])
-    assert "No scale weighs Returns. Enter one under Scale" in (batch_of(make, rework={RETURNS: 5.0}).cause or "")
+    assert "No scale weighs Returns. Choose one under Scale" in (batch_of(make, rework={RETURNS: 5.0}).cause or "")
     assert batch_of(make).cause is None
