@@ -51,7 +51,7 @@ class ListPane(QWidget):
         self.take, self.look, self.leave = self.parts.take, self.parts.look, self.parts.leave
         self._go_to: Answer | None = None
         self._only: Fate | None = None
-        self._stale = self._taking = False
+        self._stale = self._taking = self._was_on_take = False
         self._connect()
 
     def _connect(self) -> None:
@@ -106,6 +106,8 @@ class ListPane(QWidget):
     def again(self) -> None:
         """Read the list in view again, as its file and the mill are now."""
         self._stale = False
+        # A button that cannot be pressed while the list is read loses the keyboard; it gets it back.
+        self._was_on_take |= self.take.hasFocus()
         self.reader.again()
         self._say_state()
 
@@ -259,8 +261,9 @@ class ListPane(QWidget):
         self._go_to = None
         self._mark_question(self.questions.current)
         self._say_state()
-        if first or self.questions.has_keyboard():
+        if first or self._was_on_take or self.questions.has_keyboard():
             self.focus_first()
+        self._was_on_take = False
 
     def _show_refusal(self, sentence: str) -> None:
         """A file that cannot be read stands on the page with its sentence and nothing else: there is nothing to take.
@@ -433,6 +436,8 @@ class ListPane(QWidget):
             self.take_back()
         elif event.key() == Qt.Key.Key_F5:
             self.again()
+        elif event.key() == Qt.Key.Key_F6:
+            self.parts.whose.take_proposed()
         elif enter and event.modifiers() & Qt.KeyboardModifier.ControlModifier:
             self.apply()
         else:

@@ -11,6 +11,7 @@ from PySide6.QtWidgets import QHBoxLayout, QPushButton, QWidget
 from blendapp.desk.finder.ask import Ask
 from blendapp.desk.finder.panel import Finder
 from blendapp.desk.finder.search import Found
+from blendapp.desk.prices.proposed import proposed_supplier
 from blendapp.desk.theme import GAP_PX
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import Answer, ListReading, source_of
@@ -30,13 +31,17 @@ class Whose(QWidget):
         super().__init__()
         self.finder, self.ask = finder, ask
         self.library = Library()
-        self.source_name = ""
+        self.source_name = self._proposal = ""
         self.source, self.supplier = QPushButton(_("Whose list it is")), QPushButton(_("Supplier"))
         self.site, self.memory = QPushButton(_("Site")), QPushButton(_("Answers remembered"))
         row = QHBoxLayout(self)
         row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(GAP_PX)
-        for button in (self.source, self.supplier, self.site, self.memory):
+        self.proposed = QPushButton()
+        self.proposed.setToolTip(_("As the list names it; nothing is said of its supplier until you take this"))
+        self.proposed.clicked.connect(self.take_proposed)
+        self.proposed.hide()
+        for button in (self.source, self.supplier, self.proposed, self.site, self.memory):
             button.setObjectName("order")
             row.addWidget(button)
         self.source.setToolTip(_("Whom answers are remembered for; press to say another"))
@@ -61,6 +66,15 @@ class Whose(QWidget):
             record = None if key is None else library.records[kind].get(key)
             button.setText(words.format(name=_("none said") if record is None else record.name))
             button.setVisible(bool(library.records[kind]))
+        self._proposal = proposed_supplier(reading, library)
+        self.proposed.setText(_("{name}? F6 takes it").format(name=self._proposal))
+        self.proposed.setVisible(bool(self._proposal))
+
+    def take_proposed(self) -> None:
+        """Say that the list is of the supplier that it names."""
+        if self._proposal and self.isVisible():
+            name, self._proposal = self._proposal, ""
+            self.answered.emit(Answer(Asked.SUPPLIER, "", name))
 
     def _ask_source(self) -> None:
         known = sorted({one.source for one in self.library.all("price_list")} |
