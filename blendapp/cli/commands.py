@@ -6,6 +6,7 @@ import argparse
 import datetime
 import os
 import sys
+import time
 from collections.abc import Callable, Sequence
 from dataclasses import replace
 from pathlib import Path
@@ -98,7 +99,7 @@ def _prices(given: argparse.Namespace) -> int:
     from blendapp.services.prices import apply_price_list, read_price_list
 
     today = datetime.date.today()
-    with _Open(given.mill) as mill:
+    with _Open(given.mill, writes=given.apply) as mill:
         if given.apply and not mill.writable:
             raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
         if given.effect is not None:
@@ -131,7 +132,7 @@ def _composition(given: argparse.Namespace) -> int:
     from blendapp.services.composition import apply_composition_list, read_composition_list
 
     today = datetime.date.today()
-    with _Open(given.mill) as mill:
+    with _Open(given.mill, writes=given.apply) as mill:
         if given.apply and not mill.writable:
             raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
         reading = answered(
@@ -156,7 +157,7 @@ def _lists(given: argparse.Namespace) -> int:
 
     if given.roll_back and given.number is None:
         raise CallFault(_("blendapp lists: --roll-back needs the number of a list; see blendapp lists MILL."))
-    with _Open(given.mill) as mill:
+    with _Open(given.mill, writes=given.roll_back) as mill:
         if given.roll_back and not mill.writable:
             raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
         rows = [] if given.number is None else open_list(mill, given.number)
@@ -196,7 +197,7 @@ def _sheet(given: argparse.Namespace) -> int:
         raise CallFault(_("blendapp sheet: --accept and --by go together; give both or neither."))
     recorded = given.page == "sheet"
     pdf = None
-    with _Open(given.mill) as mill:
+    with _Open(given.mill, writes=recorded) as mill:
         if recorded and not mill.writable:
             raise Refused(Problem(mill.why_read_only or "", Place(file=given.mill)))
         by = accepted_by(mill.library, given.by or "")
@@ -230,14 +231,25 @@ def _export(given: argparse.Namespace) -> int:
     return DONE
 
 
-class _Open:
-    """An open mill that is closed again."""
+# How long a command that writes waits for another process to let the file go, and how often it looks: another command
+# has it for a second or two, a window for as long as somebody works in it.
+WAIT_S = 3.0
+_LOOK_S = 0.1
 
-    def __init__(self, path: str) -> None:
-        self.path = path
+
+class _Open:
+    """An open mill that is closed again. writes: the command needs to write, and waits a while until it can."""
+
+    def __init__(self, path: str, writes: bool = False) -> None:
+        self.path, self.writes = path, writes
 
     def __enter__(self) -> Mill:
+        ends = time.monotonic() + WAIT_S
         self.mill = open_mill(self.path)
+        while self.writes and self.mill.held_elsewhere and time.monotonic() < ends:
+            self.mill.close()
+            time.sleep(_LOOK_S)
+            self.mill = open_mill(self.path)
         return self.mill
 
     def __exit__(self, *_error: object) -> None:

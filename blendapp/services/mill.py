@@ -76,6 +76,11 @@ class Mill:
         return self.store.why_read_only
 
     @property
+    def held_elsewhere(self) -> bool:
+        """Whether it can only be read because another process has it open, which may let it go."""
+        return self.store.held_elsewhere
+
+    @property
     def composition(self) -> Composition:
         """The composition as arrays, kept up to date with the library."""
         if self._composition is None:

@@ -52,6 +52,11 @@ class Store:
     def why_read_only(self) -> str | None:
         return None if self._read_only is None else str(self._read_only)
 
+    @property
+    def held_elsewhere(self) -> bool:
+        """Whether it can only be read because another process has it open, which may let it go."""
+        return self._read_only is not None and self._read_only.cause is Cause.HELD
+
     # -- reading
 
     def read_all(self) -> dict[str, list[Record]]:
