@@ -124,8 +124,8 @@ class Asked(StrEnum):
     SIDE, of this list alone, since both tables are read, one after the other: the names' headings of tables that stand
     side by side; "columns A to B", those of the one that is read now.
     EXPIRED_LIST, of this list alone, and not remembered: a day as 2026-03-09, on which all of its prices ended; TAKE or
-    LEAVE_OUT. Of a row: TAKE or LEAVE_OUT; for AMOUNT also the price, as a plain number in the unit of the row, and for
-    NAMELESS an ingredient.
+    LEAVE_OUT. Of a row: TAKE or LEAVE_OUT; for AMOUNT and REMARK also the price, as a plain number in the unit of the
+    row, and for NAMELESS an ingredient.
     """
 
     INGREDIENT = "ingredient"
@@ -156,6 +156,7 @@ class Asked(StrEnum):
     TERMS = "terms"
     TWIN = "twin"
     AMOUNT = "amount"
+    REMARK = "remark"
     NAMELESS = "nameless"
 
     @property
@@ -163,7 +164,7 @@ class Asked(StrEnum):
         """Whether the answer holds for one row of one list."""
         return self in (
             Asked.HIDDEN, Asked.STRUCK, Asked.CHANGE, Asked.EXPIRED, Asked.SIGN, Asked.TERMS, Asked.TWIN, Asked.AMOUNT,
-            Asked.NAMELESS,
+            Asked.REMARK, Asked.NAMELESS,
         )
 
     @property

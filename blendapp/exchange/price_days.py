@@ -28,10 +28,15 @@ class Days:
     left_out: bool = False
 
 
-def read_days(row: RowReading, segment: Segment, today: datetime.date) -> Days:
-    """The days of a price; one that expired and is taken all the same holds from the day on which it is applied."""
-    first = _date(row, segment, ColumnRole.VALID_FROM, segment.notes.valid_from)
-    last = _date(row, segment, ColumnRole.VALID_TO, segment.notes.valid_to)
+def read_days(
+    row: RowReading, segment: Segment, today: datetime.date, said: Sequence[datetime.date | None] = (None, None)
+) -> Days:
+    """The days of a price; one that expired and is taken all the same holds from the day on which it is applied.
+
+    said: from and to, as a remark beside the price says, which counts where no column does.
+    """
+    first = _date(row, segment, ColumnRole.VALID_FROM, segment.notes.valid_from, said[0])
+    last = _date(row, segment, ColumnRole.VALID_TO, segment.notes.valid_to, said[1])
     if first is not None and last is not None and last < first:
         text = _("The price ends on {last}, before it begins on {first}; say whether it counts all the same.")
         row.confirm(Asked.EXPIRED, text.format(last=last.isoformat(), first=first.isoformat()))
@@ -52,10 +57,14 @@ def _expired(day: datetime.date) -> str:
     return _("The price expired on {day}; ask for a new one.").format(day=day.isoformat())
 
 
-def _date(row: RowReading, segment: Segment, role: ColumnRole, noted: str) -> datetime.date | None:
-    """The day in a column, or else in a note over the whole table."""
+def _date(
+    row: RowReading, segment: Segment, role: ColumnRole, noted: str, said: datetime.date | None
+) -> datetime.date | None:
+    """The day in a column, or else in a remark, or in a note over the whole table."""
     index = segment.table.first(role)
     if index is None or kind_of(row.value(index)) is CellKind.BLANK:
+        if said is not None:
+            return said
         return row.read_date(noted, noted, decide_date_order([noted])) if noted else None
     return row.date(index, segment.dates.get(index))
 

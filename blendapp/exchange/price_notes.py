@@ -7,6 +7,7 @@ from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 
 from blendapp.exchange.list_numbers import date_readings
+from blendapp.exchange.price_units import is_price_unit
 from blendapp.exchange.price_words import Words, read_heading_words
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
 
@@ -75,9 +76,10 @@ def read_notes(table: RawTable, rows: Iterable[int], headings: int = 0) -> Notes
         if _OF_SOMETHING_ELSE.search(text):
             freight = freight or (text if _ON_TOP.search(text) else "")
             text = "; ".join(part for part in _CLAUSES.split(text) if not _OF_SOMETHING_ELSE.search(part))
-        speaks = _SPEAKS_OF_PRICES.search(text) or _PRICED_PER.search(text)
+        bare = re.match(r"\W*(?:/|per\b)", text) or is_price_unit(text.lstrip("*†‡ "))
+        speaks = _SPEAKS_OF_PRICES.search(text) or _PRICED_PER.search(text) or bare
         if speaks:
-            words = read_heading_words(text)
+            words = read_heading_words(f"per {text.lstrip('*†‡/ ')}" if bare else text)
             if words.unit or words.money.currencies or words.dry or words.at_dry:
                 units.append(Words(words.money, words.unit, "", words.dry, words.as_fed, words.at_dry))
         if speaks or re.search(r"\bvalid\b|\beffective\b", text, re.IGNORECASE):
@@ -91,6 +93,16 @@ def _texts(table: RawTable, rows: Iterable[int], headings: int) -> Iterator[str]
         cells = [value for value in table.rows[row] if kind_of(value) is not CellKind.BLANK]
         if len(cells) <= (MOST_TEXTS_IN_A_TITLE if row < headings else 1):
             yield from (" ".join(cell.split()) for cell in cells if isinstance(cell, str))
+
+
+def first_day(text: str) -> str:
+    """The text of the day from which words say that a price holds, "" for none."""
+    return _found(_FROM, text)
+
+
+def last_day(text: str) -> str:
+    """The text of the day until which words say that a price holds, "" for none."""
+    return _found(_TO, text)
 
 
 def _found(pattern: re.Pattern[str], text: str) -> str:

@@ -26,6 +26,7 @@ from blendapp.exchange.price_columns import PriceColumn
 from blendapp.exchange.price_days import read_days
 from blendapp.exchange.price_extras import on_top, with_added
 from blendapp.exchange.price_money import own_money
+from blendapp.exchange.price_remarks import mark_of, read_remark
 from blendapp.exchange.price_sections import under
 from blendapp.exchange.price_terms import read_terms
 from blendapp.exchange.price_units import AmbiguousPriceUnit, UnknownPriceUnit, bag_with_weight, read_price_unit
@@ -55,13 +56,14 @@ def read_row(
 class _Part:
     """found: None where the price cannot be reckoned. unit: of the list. dry: the price is for dry matter.
 
-    foreign: the other currency in which the price still stands.
+    foreign: the other currency in which the price still stands. cents: the price is in hundredths.
     """
 
     found: TonnePrice | None
     unit: UnitReading
     dry: bool
     foreign: str = ""
+    cents: bool = False
 
 
 class _Reading(RowReading):
@@ -120,7 +122,7 @@ class _Reading(RowReading):
         ingredient = match.ingredient
         read = [self._part(column, cell, ingredient) for column, cell in parts]
         found, unit = (read[0].found, read[0].unit) if len(read) == 1 else (_added(read), read[0].unit)
-        days = read_days(self, self.segment, self.today)
+        days = read_days(self, self.segment, self.today, self._remark(parts, read[0]))
         if days.left_out:
             return self._entry(Fate.IGNORED, _("Left out, as answered."))
         value = found.price if found else parts[0][1].value
@@ -168,7 +170,7 @@ class _Reading(RowReading):
     def _parts(self, prices: list[Priced]) -> tuple[Priced, ...]:
         """The price that counts, or a base price and a freight to be added, with what is to be asked about them."""
         choice = choose_price(self.table, prices, self.answers)
-        answer = self.answers.of_row(Asked.AMOUNT, self.raw.sheet, self.row + 1)
+        answer = self._typed(Asked.AMOUNT) or self._typed(Asked.REMARK)
         if answer:
             try:
                 amount = PLAIN.read(answer)
@@ -189,6 +191,34 @@ class _Reading(RowReading):
             self.remarks.append(choice.remark)
         return choice.parts
 
+    def _typed(self, asked: Asked) -> str:
+        """The price that was typed for the row in answer to a question, "" if none was."""
+        answer = self.answers.of_row(asked, self.raw.sheet, self.row + 1)
+        return "" if answer in (TAKE, LEAVE_OUT) else answer
+
+    def _remark(self, parts: tuple[Priced, ...], read: _Part) -> tuple[datetime.date | None, datetime.date | None]:
+        """Asks about a remark, a footnote or a comment that may say that the price is another one.
+
+        The days from and to which it says that the price holds.
+        """
+        segment, used = self.segment, [column.index for column, _cell in parts]
+        texts = [self.text(index) for index in segment.remark_columns]
+        if segment.footnotes:
+            led = [self.name, *(cell.entered for _column, cell in parts)]
+            led += [self.table.headings.get(index, "") for index in used]
+            texts += [segment.footnotes[mark][1] for mark in map(mark_of, led) if mark in segment.footnotes]
+        if self.raw.comments:
+            place = [self.table.name, *used, self.table.first(ColumnRole.UNIT)]
+            texts += [self.raw.comments.get((self.row, index), "") for index in place if index is not None]
+        mill = self.library.mill
+        found = [(text, read_remark(text, mill)) for text in dict.fromkeys(texts) if text]
+        doubtful = [text for text, one in found if one.is_in_doubt(read.unit.unit, read.dry, read.cents, mill)]
+        if doubtful and not self._typed(Asked.REMARK):
+            said = _("{remark} stands beside the price; say whether it counts as it is, or give the price that holds.")
+            self.confirm(Asked.REMARK, said.format(remark=", ".join(f"“{text}”" for text in doubtful)))
+        first = next((one.first for _text, one in found if one.first), None)
+        return first, next((one.last for _text, one in found if one.last), None)
+
     def _ask_about_cell(self, column: PriceColumn, cell: PriceCell) -> None:
         if cell.both_ways:
             self.ask(Asked.DECIMAL, column.heading, cell.doubt, tuple(sign.value for sign in DecimalSign))
@@ -208,12 +238,13 @@ class _Reading(RowReading):
             self.text(self.table.first(ColumnRole.CURRENCY)), [note.money for note in notes],
             self.library.mill.currency,
         )
+        cents = any(one.cents for one in (cell.money, head.money, words.money, *(note.money for note in notes)))
         basis, _rest = split_dry(self.text(self.table.first(ColumnRole.TERMS)))
         says_as_fed = head.as_fed and not head.dry
         dry = cell.dry or head.dry or words.dry or basis or (any(note.dry for note in notes) and not says_as_fed)
         dry = self._basis(dry, head, column.words, notes)
         if money.value is None or unit.unit is None:
-            return _Part(None, unit, dry, money.foreign)
+            return _Part(None, unit, dry, money.foreign, cents)
         name = "" if ingredient is None else ingredient.name
         answer = self.answers.find(Asked.UNIT, name) if name else None
         found = per_tonne(money.value, unit.unit, ingredient, None if answer is None else bushel_said(answer.answer))
@@ -221,7 +252,7 @@ class _Reading(RowReading):
             self.ask(Asked.UNIT, name, found.doubt)
         if found.remark:
             self.remarks.append(found.remark)
-        return _Part(found, unit, dry)
+        return _Part(found, unit, dry, cents=cents)
 
     def _unit(self, column: PriceColumn, cell: PriceCell, words: Words) -> UnitReading:
         beside = Words(words.money, words.unit, "/" + words.rest if words.rest else "")
@@ -309,7 +340,7 @@ class _Reading(RowReading):
         The money per tonne that was answered to be added; None for nothing.
         """
         self._ask_about_adjustment()
-        if len(parts) > 1 or self.answers.of_row(Asked.AMOUNT, self.raw.sheet, self.row + 1):
+        if len(parts) > 1 or self._typed(Asked.AMOUNT) or self._typed(Asked.REMARK):
             return None
         beside, noted = self.text(self.table.first(ColumnRole.TERMS)), self.segment.notes.without_freight
         texts = ((beside, False), (noted, False), (parts[0][0].heading, True))

@@ -11,10 +11,9 @@ from blendapp.exchange.list_row import TOTALS
 from blendapp.exchange.price_columns import Table
 from blendapp.exchange.price_notes import speaks_of_all, speaks_of_something_else
 from blendapp.exchange.price_numbers import NO_PRICE
+from blendapp.exchange.price_remarks import FOOTNOTE
 from blendapp.exchange.price_words import NO_WORDS, Words, read_heading_words
 from blendapp.exchange.tables import CellKind, RawTable, kind_of
-
-FOOTNOTE = re.compile(r"\s*([*†‡#§]+|[(\[]?[0-9a-z][)\]]|[¹²³⁴⁵])\s*(?=\S)")
 
 
 @dataclass(frozen=True)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 from blendapp.domain.list_rows import ColumnRole, SourceColumn, SourceTable
 from blendapp.domain.wording import _
@@ -14,7 +14,8 @@ from blendapp.exchange.list_placing import Placing
 from blendapp.exchange.list_walk import MOST_TABLES, TooManyTables
 from blendapp.exchange.price_cells import column_sign
 from blendapp.exchange.price_columns import Table
-from blendapp.exchange.price_notes import Notes, read_notes, speaks_of_prices
+from blendapp.exchange.price_notes import Notes, read_notes, speaks_of_all, speaks_of_prices
+from blendapp.exchange.price_remarks import mark_of, read_footnotes, remark_columns
 from blendapp.exchange.price_sections import NO_SECTION, Section, Sections, read_sections
 from blendapp.exchange.price_tables import headed_table
 from blendapp.exchange.price_words import Words
@@ -23,7 +24,10 @@ from blendapp.exchange.tables import CellKind, RawTable, kind_of
 
 @dataclass(frozen=True)
 class Segment:
-    """The rows of one table: from its heading row to the next one, with what was decided over its columns."""
+    """The rows of one table: from its heading row to the next one, with what was decided over its columns.
+
+    footnotes: by their mark, with their row, those that a row or a heading leads to.
+    """
 
     table: Table
     first: int
@@ -32,6 +36,8 @@ class Segment:
     dates: dict[int, DateOrder | None]
     notes: Notes
     sections: Sections
+    remark_columns: tuple[int, ...] = ()
+    footnotes: dict[str, tuple[int, str]] = field(default_factory=dict)
 
 
 def read_segments(raw: RawTable, table: Table, names: NameFinder, placing: Placing) -> Iterator[Segment]:
@@ -87,12 +93,19 @@ def _segment(
         one.row for one in sections.found
         if one.row < end or (last < len(raw.rows) and not speaks_of_prices(one.text))
     }
+    footnotes = read_footnotes(raw, body)
+    if footnotes:
+        marked = {mark_of(text) for text in table.headings.values()}
+        marked |= {mark_of(text) for row in body for text in raw.rows[row] if isinstance(text, str)}
+        footnotes = {mark: found for mark, found in footnotes.items() if mark in marked}
+        taken |= {row for row, text in footnotes.values() if not speaks_of_all(text)}
     notes = read_notes(raw, [row for row in range(first, last) if row not in taken], headings)
     notes = Notes(
         notes.units or titles.units, notes.valid_from or titles.valid_from, notes.valid_to or titles.valid_to,
         notes.without_freight or titles.without_freight,
     )
-    return Segment(table, first, last, signs, dates, notes, sections)
+    remarks = remark_columns(raw, table, body)
+    return Segment(table, first, last, signs, dates, notes, sections, remarks, footnotes)
 
 
 def _section_below(raw: RawTable, segment: Segment) -> Section:

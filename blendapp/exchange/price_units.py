@@ -16,7 +16,8 @@ _CWT_100, _CWT_112 = "100 lb", "112 lb"
 
 # Every word of one meaning; the key is the unit of domain.units, or a word that the mill must explain.
 _WORDS: dict[str, tuple[str, ...]] = {
-    "t": ("t", "tonne", "tonnes", "metric ton", "metric tons", "metric tonne", "metric tonnes", "mt", "1000 kg", "to"),
+    "t": ("t", "tonne", "tonnes", "metric ton", "metric tons", "metric tonne", "metric tonnes", "mt", "mts", "1000 kg",
+          "to"),
     "kg": ("kg", "kgs", "kilo", "kilos", "kilogram", "kilograms", "kilogramme", "kilogrammes"),
     "100 kg": ("100 kg", "100 kgs", "dt", "100 kilograms"),
     "lb": ("lb", "lbs", "pound", "pounds"),
@@ -30,6 +31,14 @@ _WORDS: dict[str, tuple[str, ...]] = {
     CWT: ("cwt", "cwts", "hundredweight", "hundredweights"),
 }
 _MEANING = {word: meaning for meaning, words in _WORDS.items() for word in words}
+# "ton (2000 lb)" and "60 lb bushel" say what they are; a stone is 14 lb, and "st" may be one.
+_NAMED = re.compile(
+    r"(?:(?:tons?|cwts?|hundredweights?|bushels?|bu|bsh|stones?|units?)(?: of| @|,| =)? "
+    r"([0-9]+(?:[.,][0-9]+)?) ?(kgs?|lbs?)|([0-9]+(?:[.,][0-9]+)?) ?(kgs?|lbs?)[ -]?"
+    r"(?:tons?|cwts?|hundredweights?|bushels?|bu|bsh))"
+)
+_STONE, _STONE_LB = frozenset({"stone", "stones"}), 14.0
+ST = "st"
 
 
 @dataclass(frozen=True)
@@ -55,7 +64,14 @@ def unit_choices(words: str) -> tuple[str, ...]:
     """What plain words in doubt may mean, as units to choose from."""
     if _MEANING.get(words) == TON:
         return ("short ton", "long ton", "t")
+    if words == ST:
+        return ("short ton", "14 lb")
     return (_CWT_100, _CWT_112) if _MEANING.get(words) == CWT else units.PRICE_PER
+
+
+def _means_long_ton(text: str) -> bool:
+    """LT in capitals; small letters may be a litre."""
+    return re.sub(r"^\s*(?:/|per\b)|[\s.()]", "", text) in ("LT", "LTS")
 
 
 def plain_words(text: str) -> str:
@@ -70,7 +86,7 @@ def plain_words(text: str) -> str:
 def is_price_unit(text: str) -> bool:
     """Whether words name a mass that a price may be per, if perhaps one with two meanings."""
     words = plain_words(text)
-    return words in _MEANING or _bag(words) is not None
+    return words in _MEANING or words == ST or _means_long_ton(text) or _bag(words) is not None
 
 
 _BAG_NAMES = r"(?:bags?|sacks?|big bags?|totes?|super ?sacks?|drums?)"
@@ -83,14 +99,31 @@ _BAG_OF_MASS = re.compile(_MASS)
 
 
 def _bag(words: str) -> PriceUnit | None:
-    """The price unit behind a bag whose weight is said, as a whole number of a known unit where there is one."""
-    found = _BAGS.fullmatch(words)
-    if found is None:
+    """The price unit behind a mass that is said, of a bag or of anything else; None where none is."""
+    if words in _MEANING:
         return None
-    mass = float((found[1] or found[3]).replace(",", "."))
+    if words in _STONE:
+        return PriceUnit("cwt", 100 / _STONE_LB)
+    found = _BAGS.fullmatch(words) or _NAMED.fullmatch(words)
+    said = (found[1] or found[3], found[2] or found[4]) if found else None
+    if found is None and (alone := _BAG_OF_MASS.fullmatch(words)):
+        said = alone[1], alone[2]
+    if said is None:
+        return None
+    mass = float(said[0].replace(",", "."))
     if not _LEAST_BAG < mass < _GREATEST_BAG:
         return None
-    return PriceUnit("t", 1000 / mass) if (found[2] or found[4]).startswith("kg") else PriceUnit("cwt", 100 / mass)
+    known = _MEANING.get(f"{said[0]} {said[1]}")
+    if known is not None and not _BAGS.fullmatch(words):
+        return _unit_of(known)
+    return PriceUnit("t", 1000 / mass) if said[1].startswith("kg") else PriceUnit("cwt", 100 / mass)
+
+
+def _unit_of(meaning: str) -> PriceUnit:
+    """The unit of a meaning that is no doubt."""
+    if meaning == _CWT_100:
+        return PriceUnit("cwt")
+    return _LONG_CWT if meaning == _CWT_112 else PriceUnit(meaning)
 
 
 def bag_with_weight(words: str, pack: str) -> str:
@@ -109,6 +142,11 @@ def read_price_unit(text: str, mill: MillInfo, cwt_is_100_lb: bool) -> PriceUnit
     bag = _bag(words)
     if bag is not None:
         return bag
+    if _means_long_ton(text):
+        return PriceUnit("long ton")
+    if words == ST:
+        sentence = _("“{text}” may be a short ton or a stone of 14 lb; say which.")
+        raise AmbiguousPriceUnit(sentence.format(text=text.strip("/ ")))
     meaning = _MEANING.get(words)
     if meaning is None:
         sentence = _("“{text}” is not known as the mass of a price; use one of {known}.")
@@ -130,6 +168,4 @@ def read_price_unit(text: str, mill: MillInfo, cwt_is_100_lb: bool) -> PriceUnit
         raise AmbiguousPriceUnit(
             _("“{text}” may be 100 lb or 112 lb; say which, or set Cwt means for the mill.").format(text=text.strip())
         )
-    if meaning == _CWT_100:
-        return PriceUnit("cwt")
-    return _LONG_CWT if meaning == _CWT_112 else PriceUnit(meaning)
+    return _unit_of(meaning)

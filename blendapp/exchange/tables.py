@@ -81,6 +81,7 @@ class RawTable:
     rows: may be ragged; a blank cell is None or an empty text. visible: whether the sheet is. hidden_rows and
     hidden_columns: from 0; None where the format does not tell. formats: number formats other than the general one,
     by (row, column), where the format of the file keeps them. struck: cells that are struck through, likewise.
+    comments: texts that are attached to cells, likewise.
     """
 
     sheet: str
@@ -91,6 +92,7 @@ class RawTable:
     formats: Mapping[tuple[int, int], str] = field(default_factory=dict)
     struck: frozenset[tuple[int, int]] = frozenset()
     merged: tuple[MergedRange, ...] = ()
+    comments: Mapping[tuple[int, int], str] = field(default_factory=dict)
 
     def cell(self, row: int, column: int) -> CellValue:
         """The value of a cell; None beyond the end of its row."""

@@ -99,7 +99,7 @@ def _answer(library: Library, question: Question, row: ListRow, words: str, on: 
         words = LEAVE_OUT
     elif offered := _offered(question, words):
         words = offered
-    elif asked is Asked.AMOUNT:
+    elif asked in (Asked.AMOUNT, Asked.REMARK):
         words = f"{_number(question, words)!r}".removesuffix(".0")
     elif asked not in _TYPED and question.choices:
         raise Refused(_unfit(question, words, question.choices))

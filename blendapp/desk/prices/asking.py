@@ -29,8 +29,9 @@ NEW = "new"
 Key = tuple[Asked, str, str, int]
 # Answers of a name or of a unit may also be typed.
 NAMES, RATE, TEXT, FIGURE = "names", "rate", "text", "figure"
-_TYPED = {Asked.INGREDIENT: NAMES, Asked.NAMELESS: NAMES, Asked.AMOUNT: FIGURE, Asked.NUTRIENT: NAMES,
-          Asked.SUPPLIER: NAMES, Asked.SITE: NAMES, Asked.UNIT: TEXT, Asked.CONCENTRATION: TEXT, Asked.RATE: RATE}
+_TYPED = {Asked.INGREDIENT: NAMES, Asked.NAMELESS: NAMES, Asked.AMOUNT: FIGURE, Asked.REMARK: FIGURE,
+          Asked.NUTRIENT: NAMES, Asked.SUPPLIER: NAMES, Asked.SITE: NAMES, Asked.UNIT: TEXT, Asked.CONCENTRATION: TEXT,
+          Asked.RATE: RATE}
 
 
 @dataclass(frozen=True)
@@ -153,7 +154,7 @@ def _take_words(asked: Asked) -> str:
         Asked.EXPIRED: lambda: _("Take it all the same"), Asked.DATES: lambda: _("It counts as no day"),
         Asked.EXPIRED_LIST: lambda: _("They count: take them all the same"),
         Asked.TERMS: lambda: _("Take it with its new terms"),
-        Asked.PRICE: lambda: _("Take the price as it is"),
+        Asked.PRICE: lambda: _("Take the price as it is"), Asked.REMARK: lambda: _("Take the price as it is"),
     }
     return said.get(asked, lambda: _("Take it"))()
 
@@ -239,9 +240,9 @@ def kept_words(asked: Asked, source: str, unit: str = "") -> str:
     if asked is Asked.RATE:
         return _("Holds for the lists of {source} on that day; another day it is proposed and asked again."
                  ).format(source=source)
-    if asked is Asked.AMOUNT:
-        return _("The price that you type replaces all that the row says: a freight or other sum beside it is not added. "
-                 "Give the price {unit} with all that comes on top. Holds for this row of this list alone."
+    if asked in (Asked.AMOUNT, Asked.REMARK):
+        return _("The price that you type replaces all that the row says: a freight or other sum beside it is not "
+                 "added. Give the price {unit} with all that comes on top. Holds for this row of this list alone."
                  ).format(unit=unit)
     if asked.is_remembered:
         return _("Remembered for {source}: its next list is not asked.").format(source=source)

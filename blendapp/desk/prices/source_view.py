@@ -29,7 +29,8 @@ _RIGHT = Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
 # Which column a question is about, where it is not about the name.
 _ABOUT = {Asked.UNIT: ColumnRole.UNIT, Asked.RATE: ColumnRole.PRICE, Asked.CENTS: ColumnRole.PRICE,
           Asked.CHANGE: ColumnRole.PRICE, Asked.SIGN: ColumnRole.PRICE, Asked.EXPIRED: ColumnRole.VALID_TO,
-          Asked.TERMS: ColumnRole.TERMS, Asked.PRICE: ColumnRole.PRICE}
+          Asked.TERMS: ColumnRole.TERMS, Asked.PRICE: ColumnRole.PRICE,
+          Asked.REMARK: ColumnRole.NOTE}
 
 
 class _Cell(QStyledItemDelegate):
