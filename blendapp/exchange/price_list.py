@@ -17,6 +17,7 @@ from blendapp.exchange.list_sender import read_sender
 from blendapp.exchange.list_walk import TooManyTables, rows_of_table, too_many_tables
 from blendapp.exchange.price_checks import ask_about_duplicates, ask_about_leaps
 from blendapp.exchange.price_columns import LIST_ROLES
+from blendapp.exchange.price_dated import ListDay, dated, day_of_titles
 from blendapp.exchange.price_days import ask_once_about_expired
 from blendapp.exchange.price_places import placed, site_in_titles
 from blendapp.exchange.price_row import read_row
@@ -77,14 +78,17 @@ def read_table(
         return list(without_columns(raw, table, placing)), source_sheet(raw, [pointed_out_table(raw, table)])
     rows: list[PriceRow] = []
     tables = []
+    day: ListDay | None = None
     for segment in read_segments(raw, table, names, placing):
-        rows += _rows(raw, segment, library, names, today)
+        headings = segment.table.heading_rows.start if segment.table.heading_rows else segment.first
+        day = day_of_titles(raw, segment.first, headings, segment.last, today) or day
+        rows += _rows(raw, segment, library, names, today, day)
         tables.append(source_table(raw, segment))
     return rows, source_sheet(raw, tables)
 
 
 def _rows(
-    raw: RawTable, segment: Segment, library: Library, names: NameFinder, today: datetime.date
+    raw: RawTable, segment: Segment, library: Library, names: NameFinder, today: datetime.date, day: ListDay | None
 ) -> Iterator[PriceRow]:
     table = segment.table
 
@@ -92,7 +96,7 @@ def _rows(
         if table.sides and table.side is None:
             return unsettled_row(raw, row, table)
         found = read_row(raw, row, segment, library, names, today)
-        return beside(raw, placed(raw, found, table, library, names.answers, today), table)
+        return beside(raw, placed(raw, dated(found, table, day, names.answers), table, library, names.answers, today), table)
 
     return rows_of_table(
         raw, range(segment.first, segment.last), table.heading_rows, table.first_row, PriceRow, read
