@@ -220,7 +220,7 @@ def _odd_lot(record: Lot, library: Library) -> list[Finding]:
 
 def _formula(record: Formula, library: Library) -> list[Finding]:
     found: list[Finding] = []
-    if record.loss_percent is not None and record.loss_percent >= 100:
+    if record.loss_percent == 100:  # what lies above is out of the range of the field
         found.append(("loss_percent", _("A loss of 100 % leaves nothing; enter less.")))
     dry = record.product_dry_matter_percent
     if dry is not None and dry > 100:

@@ -36,7 +36,7 @@ from blendapp.services.accepting import accepted_by
 from blendapp.services.batch_mix import BatchMix, batch_mix
 from blendapp.services.formulate import formulate
 from blendapp.services.making import CannotBeMade, Makers
-from blendapp.services.order_split import mixer_taking, mixers_for, no_split, split_order, totals_held
+from blendapp.services.order_split import mixer_taking, mixers_elsewhere, mixers_for, no_split, split_order, totals_held
 from blendapp.services.previous_feed import clean_out_reason, feed_text, previous_sheet, tags_of
 from blendapp.services.scaleless import without_scale
 from blendapp.services.versions import standing
@@ -97,7 +97,8 @@ def make_batch(
         return replace(empty, cause=_no_mix(formula, answer))
     split = split_order(mixers, order_kg)
     if split is None:
-        return replace(empty, cause=no_split(mixers, order_kg))
+        other = mixers_elsewhere(library, mixers, order_kg)
+        return replace(empty, cause=" ".join(filter(None, (no_split(mixers, order_kg), other))))
     empty = replace(empty, batches=split, batch_kg=order_kg / split)
     unscaled = without_scale(library, mix.contents.amounts, empty.batch_kg)
     if unscaled is not None:

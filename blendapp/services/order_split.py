@@ -85,3 +85,19 @@ def no_split(mixers: Sequence[Mixer], order_kg: float) -> str:
     ]
     orders = _(" or ").join(map(kg, nearest_orders(mixers, order_kg)))
     return text.format(order=kg(order_kg), mixers="; ".join(said), orders=orders)
+
+
+def mixers_elsewhere(library: Library, mixers: Sequence[Mixer], order_kg: float) -> str:
+    """A sentence on the other mixers of the mill that take an order, each with its site; "" where none does."""
+    tried = {mixer.id for mixer in mixers}
+    every: list[Mixer] = [mixer for mixer in library.all("mixer") if mixer.id not in tried]
+    taking = [mixer for mixer in every if split_order([mixer], order_kg) is not None]
+    if not taking:
+        return ""
+    sites = library.records["site"]
+    at = _("{name} at {site}")
+    names = [
+        at.format(name=mixer.name, site=sites[mixer.site_id].name) if mixer.site_id in sites else mixer.name
+        for mixer in taking
+    ]
+    return _("It would fit {mixers}.").format(mixers=_(" or ").join(names))

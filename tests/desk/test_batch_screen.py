@@ -16,6 +16,7 @@ from blendapp.domain.batches import CleanOut
 from blendapp.domain.formulas import Admits, Animal
 from blendapp.domain.ingredients import Basis, Ingredient, Tag, Value
 from blendapp.domain.library import Library
+from blendapp.domain.notation import notation
 from blendapp.domain.plant import Bin, Lot, Mixer, Scale
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import KINDS, Change, added
@@ -121,6 +122,8 @@ def test_a_line_says_where_it_stands_on_what_it_is_weighed_and_how_near_it_comes
     assert lines.owners.index(HAND_ADDS) < lines.owners.index(PREMIX)
     assert all(lines.owners.index(key) < lines.owners.index(HAND_ADDS) for key in (1, 2, OIL))
     assert lines.owners[-1] == TOTAL
+    # The finest step is 0.01 kg by hand.
+    assert text(screen, TOTAL, "kg") == notation().write(batch.total_kg, 2)
     assert "Expected yield" in screen.sheet.view.yielding.text()
     assert screen.sheet.view.yielding.isVisible()
     assert "Paddle mixer" in screen.sheet.words.text()

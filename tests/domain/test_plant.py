@@ -120,6 +120,7 @@ def test_a_scale_gives_kg_and_a_meter_what_its_litres_weigh() -> None:
     (MillInfo(paper="A3"), "paper", "A4, letter"),
     (Formula(9, "F", loss_percent=100.0), "loss_percent", "leaves nothing"),
     (Formula(9, "F", loss_percent=-1.0), "loss_percent", "between 0 and 100"),
+    (Formula(9, "F", loss_percent=120.0), "loss_percent", "between 0 and 100"),
     (Formula(9, "F", product_dry_matter_percent=0.0), "product_dry_matter_percent", "above 0"),
     (Formula(9, "F", product_dry_matter_percent=101.0), "product_dry_matter_percent", "at most 100"),
     (Ingredient(9, "I", opened=True), "opened", "name the formula"),

@@ -123,3 +123,14 @@ def test_no_order_nearer_than_those_named_has_an_equal_split(seed: int) -> None:
         if split_order(made, float(one)):
             assert not any(min(order, end) < one < max(order, end) for end in found), (order, found, one)
             assert one > order or len(found) == 2, (order, found, one)
+
+
+def test_an_order_that_fits_no_mixer_here_names_one_of_another_site_that_takes_it() -> None:
+    def cause(make: Maker) -> str:
+        return make_batch(make.library, 1, 80.0, TODAY).cause or ""
+
+    assert "It would fit" not in cause(mill(site_id=2)), "the mixer at North takes no 80 kg either"
+    make = mill(site_id=1)
+    make.put(Mixer(5, "Little mixer", 10.0, 90.0, site_id=2))
+    assert cause(make).startswith("No equal batches of 80 kg fit a mixer: North mixer holds 100 to 1000 kg")
+    assert cause(make).endswith("Order 100 kg. It would fit Little mixer at South.")

@@ -74,7 +74,9 @@ class LineModel(Grid):
         if key == "share_kg":
             return _mass(batch.batch_kg)
         if key == "kg":
-            return replace(_mass(batch.total_kg), strong=True, quiet=False)
+            # With the decimals of the finest step, so that the targets above it add up to what is shown.
+            decimals = max((fitting_decimals(line.step_kg, 0, WIDEST) for line in batch.lines), default=0)
+            return number_look(batch.total_kg, decimals, widest=WIDEST, strong=True)
         if key == "deviation" and batch.residue_kg:
             return _signed(batch.residue_kg)
         return EMPTY
