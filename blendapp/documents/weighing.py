@@ -36,7 +36,7 @@ def weighing_table(batch: Batch, page: BatchPage, width: float) -> list[Block]:
     number, titles = 0, None
     for group in groups:
         rows = layout.rows(group)
-        head = rows.head()
+        head = rows.head(gap=4.0) if number == 0 and blocks else rows.head()
         if titles != (titles := [(column.title, span) for column, span in zip(rows.columns, rows.spans, strict=True)]):
             blocks.append(head)
         blocks += _group_heading(group.title, width, [head])
@@ -126,9 +126,10 @@ def _rounding(batch: Batch, groups: Sequence[Group], rows: Rows, indent: float) 
     unit, (shown, decimals) = batch.mass_unit, _sum_shown(groups)
     exact = figures.mass_in(batch.total_kg, unit)
     said = []
-    if abs(exact - shown) >= 0.5 * 10.0**-max(decimals, 6):
+    unrounded = round(exact, max(decimals, 3))
+    if unrounded != shown:
         text = _("The total is the sum of the lines as they are shown, rounded; unrounded it is {mass}.")
-        said.append(text.format(mass=with_unit(notation().write_short(exact, max(decimals, 3)), unit)))
+        said.append(text.format(mass=with_unit(notation().write_short(unrounded, max(decimals, 3)), unit)))
     if unit != "kg":
         text = _("All lines are {kg} kg together.")
         said.append(text.format(kg=notation().write_short(batch.total_kg)))

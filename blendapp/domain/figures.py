@@ -95,10 +95,13 @@ def decimals_of_mass(step_kg: float, unit: str) -> int:
 
 
 def decimals_to_add_up(steps_kg: Sequence[float], unit: str) -> int:
-    """The decimals with which so many masses in a unit, each rounded, add up to within the finest of their steps."""
+    """The decimals with which so many masses in a unit, each rounded, add up to within the finest of their steps.
+
+    At least two, so that the sum of a few coarse ones is near enough to the batch to be added up by hand.
+    """
     if not steps_kg:
         return 0
-    return max(0, math.ceil(math.log10(0.5 * len(steps_kg) / mass_in(min(steps_kg), unit)) - 1e-9))
+    return max(2, math.ceil(math.log10(0.5 * len(steps_kg) / mass_in(min(steps_kg), unit)) - 1e-9))
 
 
 def write_mass(kg: float, step_kg: float, unit: str) -> str:

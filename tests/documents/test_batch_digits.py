@@ -132,6 +132,24 @@ def test_a_total_of_rounded_lines_says_so_with_the_unrounded_one_and_the_kg(draw
     assert "rounded" not in squeezed(page_text(draw(made.FULL)))
 
 
+def test_a_total_that_is_the_unrounded_one_to_its_last_digit_says_nothing_of_rounding() -> None:
+    def sheet_of(first_kg: float, second_kg: float) -> tuple[list[str], str]:
+        lines = tuple(
+            dataclasses.replace(made.FULL.lines[0], target_kg=kg, share_kg=kg) for kg in (first_kg, second_kg)
+        )
+        pdf = batch_sheet(dataclasses.replace(made.FULL, lines=lines, batch_kg=first_kg + second_kg, mass_unit="lb"))
+        return large(pdf), squeezed(page_text(pdf))
+
+    # 970.034 and 804.687 lb.
+    figures, text = sheet_of(440.0, 365.0)
+    assert figures == ["970.03", "804.69", "1774.72"]
+    assert "unroundeditis1774.721lb.Alllinesare805kgtogether." in text
+    # 45359.237 kg are 100000 lb, on a scale of grams.
+    figures, text = sheet_of(45359.237, 90718.474)
+    assert figures == ["100000.00", "200000.00", "300000.00"]
+    assert "unrounded" not in text
+
+
 def test_a_batch_all_in_pounds_adds_up_without_a_word_of_rounding() -> None:
     lines = tuple(line for line in made.US.lines if line.scale in (made.HOPPER, made.MINOR))
     total = round(sum(line.target_kg for line in lines) / LB_KG)
