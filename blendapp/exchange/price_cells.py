@@ -13,7 +13,7 @@ from blendapp.exchange.list_cells import number_doubt, place
 from blendapp.exchange.list_numbers import DecimalSign, decide_decimal_sign, value_in_column
 from blendapp.exchange.price_columns import PriceColumn
 from blendapp.exchange.price_numbers import NO_PRICE, read_price_text
-from blendapp.exchange.price_words import NO_MONEY, Money, money_of_format
+from blendapp.exchange.price_words import NO_MONEY, NO_WORDS, Money, words_of_format
 from blendapp.exchange.tables import CellKind, PercentCell, RawTable, kind_of
 
 # Nobody pays so much for any unit; beyond it sums are no longer exact.
@@ -54,15 +54,23 @@ def read_price_cell(table: RawTable, row: int, column: PriceColumn, sign: Decima
     if kind is CellKind.BLANK:
         return PriceCell(empty=True)
     if kind is CellKind.TEXT:
-        return _text_cell(str(value).strip(), sign, spreadsheet=bool(table.sheet))
+        found = _text_cell(str(value).strip(), sign, spreadsheet=bool(table.sheet))
+        if found.value is None or (row, column.index) not in table.struck:
+            return found
+        # Which of its figures are struck through is not told, so that they may be two prices.
+        text = _("“{text}” is struck through, perhaps in part; say what the price is.").format(text=found.entered)
+        return replace(found, value=None, doubt=text)
     if kind is CellKind.NUMBER:
         assert isinstance(value, float | int)
         number_format = table.formats.get((row, column.index), "")
-        money = money_of_format(number_format) if number_format else NO_MONEY
+        words = words_of_format(number_format) if number_format else NO_WORDS
+        money = words.money
         if not abs(value) < MOST_PAID:
             shown = PLAIN.write_exact(float(value)) if math.isfinite(value) else str(value)
             return PriceCell(entered=shown, doubt=_("“{text}” is not one price.").format(text=shown), money=money)
-        return PriceCell(float(value), entered=PLAIN.write_exact(float(value)), money=money)
+        return PriceCell(
+            float(value), entered=PLAIN.write_exact(float(value)), money=money, unit=words.unit, dry=words.dry
+        )
     text = _("The cell {place} holds a date, a time, a percentage or a truth value; say what the price is.")
     entered = f"{value.amount:%}" if isinstance(value, PercentCell) else str(value)
     return PriceCell(entered=entered, doubt=text.format(place=place(row, column.index)))

@@ -44,7 +44,11 @@ def own_money(
             unknown = beside
     if not unknown and all(money.currencies is None for money in sources):
         sources += notes
-    if any(money.cents for money in sources):
+    named = [money for money in sources if money.cents]
+    if named and all(money.are_hundredths_of(own) for money in named):
+        row.remarks.append(_("Hundredths of {own} were turned into whole ones.").format(own=own))
+        value = None if value is None else value / 100
+    elif named:
         value = _hundredths(row, value, own)
     if unknown:
         return _unknown(row, value, unknown, own)

@@ -10,7 +10,8 @@ from blendapp.exchange.price_words import Money, read_unit_words
 
 # What stands in a price cell where there is no price.
 NO_PRICE = frozenset({
-    "", "-", "--", "---", "n/q", "nq", "n.q.", "call", "n/a", "na", "n.a.", "tba", "tbc", "tbd", "poa", "p.o.a.",
+    "", "-", "--", "---", "–", "—", "−",
+    "n/q", "nq", "n.q.", "call", "n/a", "na", "n.a.", "tba", "tbc", "tbd", "poa", "p.o.a.",
     "on request", "on application", "price on request", "see note", "see notes", "none", "no offer",
     "no quote", "no price", "not quoted", "not available", "unavailable", "sold out", "out of stock", "nil", "x",
     ".", "?", "call for price", "please call", "ask", "nominal", "unquoted", "*",

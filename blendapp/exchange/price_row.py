@@ -263,7 +263,11 @@ class _Reading(RowReading):
         else:
             heads = [under(section.words, column.words)]
         sources = [*of_row, *heads]
-        if not any(map(_names_unit, sources)):
+        pack = self._pack()
+        if pack and not any(map(_names_unit, [*sources, *notes, section.words])):
+            self.remarks.append(_("The price was read as that of {pack}.").format(pack=pack))
+            reading = read_unit([Words(words.money, pack, "")], self.library.mill)
+        elif not any(map(_names_unit, sources)):
             reading = read_unit([] if section.ended and section.words.unit else notes, self.library.mill)
         else:
             by_heading = not section.words.unit and not any(map(_names_unit, of_row))
@@ -281,6 +285,15 @@ class _Reading(RowReading):
                 return UnitReading(unit, reading.said)
         self.ask(Asked.UNIT, reading.about, reading.doubt, reading.choices)
         return reading
+
+    def _pack(self) -> str:
+        """The mass of a pack in a column of its own, which a price without any unit is for; "" if none is told."""
+        text = self.text(self.table.first(ColumnRole.PACK))
+        return read_unit_words(text).unit if any(letter.isdigit() for letter in text) else ""
+
+    def is_taken(self, asked: Asked) -> bool:
+        """As RowReading; a price that was typed settles too which of its figures are struck through."""
+        return super().is_taken(asked) or (asked is Asked.STRUCK and bool(self._typed(Asked.AMOUNT)))
 
     def _basis(self, dry: bool, head: Words, column: Words, notes: Sequence[Words]) -> bool:
         """Whether a price is for dry matter; asked where the list says a share of it beside the price."""

@@ -90,7 +90,7 @@ def is_price_unit(text: str) -> bool:
 
 
 _BAG_NAMES = r"(?:bags?|sacks?|big bags?|totes?|super ?sacks?|drums?)"
-_MASS = r"([0-9]+(?:[.,][0-9]+)?) ?(kgs?|lbs?)"
+_MASS = r"([0-9]+(?:[.,][0-9]+)?)[ -]?(kgs?|lbs?)"
 _BAGS = re.compile(rf"{_BAG_NAMES}(?: of| a| @|,)? {_MASS}|{_MASS}[ -]?{_BAG_NAMES}")
 # Of any unit; what is no bag is no number to reckon with either.
 _LEAST_BAG, _GREATEST_BAG = 1e-3, 1e5

@@ -32,17 +32,28 @@ _WORDS: dict[str, frozenset[str]] = {
     "sterling": frozenset({"GBP"}), "kr": _CROWNS, "fr": frozenset({"CHF"}), "sfr": frozenset({"CHF"}),
 }
 _CENTS = re.compile(r"[¢]|\b(?:us\s*)?(?:cents?|cts?|pence)\b|(?<![\w])(?:c|p)\s*(?=/|per\b)", re.IGNORECASE)
+# Whose hundredths are called so; from memory.
+_WITH_CENTS = frozenset({"USD", "CAD", "AUD", "NZD", "EUR", "ZAR", "SGD", "HKD", "KES"})
+_WITH_PENCE = frozenset({"GBP"})
 _AFTER_PER = re.compile(r"(?:/|\bper\b)\s*([^,;]+)", re.IGNORECASE)
 _WORD = re.compile(r"[A-Za-zÀ-ž$€£¥₹₽₺₴₩₦₫฿]+")
 
 
 @dataclass(frozen=True)
 class Money:
-    """What words say about money. currencies: codes that they may mean, None if they name none; sign: as written."""
+    """What words say about money. currencies: codes that they may mean, None if they name none; sign: as written.
+
+    cents: they speak of hundredths. pence: and call them pence.
+    """
 
     currencies: frozenset[str] | None = None
     sign: str = ""
     cents: bool = False
+    pence: bool = False
+
+    def are_hundredths_of(self, currency: str) -> bool:
+        """Whether nobody calls hundredths of another currency so in a list for a mill that reckons in that one."""
+        return self.cents and currency in (_WITH_PENCE if self.pence else _WITH_CENTS)
 
     def is_foreign(self, currency: str) -> bool:
         """Whether the words name a currency and it cannot be that one."""
@@ -94,20 +105,22 @@ def split_dry(text: str) -> tuple[bool, str]:
 
 def split_money(text: str) -> tuple[Money, str]:
     """The money in words, and the words without it."""
-    cents = bool(_CENTS.search(text))
+    named = _CENTS.search(text)
+    cents, pence = named is not None, named is not None and named[0].strip().casefold().startswith("p")
     rest = _CENTS.sub(" ", text)
     for sign, codes in _SIGNS:
         if sign in rest:
             code = _code_in(rest)
-            return Money((code and frozenset({code})) or codes, sign, cents), _without_code(rest.replace(sign, " "))
+            named_codes = (code and frozenset({code})) or codes
+            return Money(named_codes, sign, cents, pence), _without_code(rest.replace(sign, " "))
     code = _code_in(rest)
     if code:
-        return Money(frozenset({code}), code, cents), _without_code(rest)
+        return Money(frozenset({code}), code, cents, pence), _without_code(rest)
     for word in _WORD.findall(rest):
         if word.casefold() in _WORDS:
             found = _WORDS[word.casefold()]
-            return Money(found, word, cents), re.sub(rf"\b{re.escape(word)}\b\.?", " ", rest)
-    return Money(cents=cents), rest
+            return Money(found, word, cents, pence), re.sub(rf"\b{re.escape(word)}\b\.?", " ", rest)
+    return Money(cents=cents, pence=pence), rest
 
 
 def _code_in(text: str) -> str:
@@ -157,6 +170,16 @@ def read_heading_words(text: str) -> Words:
 
 def _tidy(text: str) -> str:
     return " ".join(re.sub(r"^\s*(?:/|per\b)", "", text.strip(), flags=re.IGNORECASE).split()).strip("()[] ")
+
+
+@lru_cache(1024)
+def words_of_format(number_format: str) -> Words:
+    """What a number format prints beside the number: a currency, a mass, "DM"; for example [$€-2] #,##0.00" /t"."""
+    money = money_of_format(number_format)
+    first = number_format.partition(";")[0]
+    printed = [read_unit_words(text) for text in re.findall(r'"([^"]*)"', first)]
+    unit = next((words.unit for words in printed if words.unit), "")
+    return Words(money, unit, "", any(words.dry for words in printed))
 
 
 def money_of_format(number_format: str) -> Money:

@@ -41,6 +41,7 @@ def parse_spreadsheet(data: bytes, found: Format) -> list[RawTable]:
         table.hidden_columns = frozenset(scan.hidden_columns)
         for (row, column), mark in scan.marks.items():
             _place(table.rows, row, column, mark)
+        table.comments = scan.comments
         table.formats, table.struck, table.merged = scan.formats, frozenset(scan.struck), _ranges(scan.merged)
         for (row, column), number_format in scan.formats.items():
             if shows_percent(number_format):

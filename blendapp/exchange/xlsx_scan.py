@@ -9,6 +9,7 @@ import zipfile
 from dataclasses import dataclass, field
 
 from blendapp.exchange.tables import NO_STORED_VALUE, ErrorCell, NoStoredValue, column_number
+from blendapp.exchange.xlsx_comments import read_comments
 from blendapp.exchange.xlsx_parser import ForbiddenEntities, careful_parser
 from blendapp.exchange.xlsx_styles import CellStyles, is_set, read_struck_texts, read_styles
 
@@ -40,7 +41,7 @@ class SheetScan:
 
     formats: number formats that tell something, of cells with a number. struck: filled cells that are struck through,
     wholly or in part.
-    merged: ranges of merged cells as the file writes them, B1:C1.
+    merged: ranges of merged cells as the file writes them, B1:C1. comments: texts that are attached to cells.
     """
 
     marks: dict[tuple[int, int], ErrorCell | NoStoredValue] = field(default_factory=dict)
@@ -51,6 +52,7 @@ class SheetScan:
     formats: dict[tuple[int, int], str] = field(default_factory=dict)
     struck: set[tuple[int, int]] = field(default_factory=set)
     merged: list[str] = field(default_factory=list)
+    comments: dict[tuple[int, int], str] = field(default_factory=dict)
 
 
 def scan_sheets(data: bytes) -> dict[str, SheetScan]:
@@ -71,6 +73,7 @@ def scan_sheets(data: bytes) -> dict[str, SheetScan]:
             except TooFarOut as far:
                 far.sheet = name
                 raise
+            found[name].comments = read_comments(archive, part)
         for part in parts - set(by_name.values()) - texts:
             if part.startswith("xl/") and part.endswith((".xml", ".rels")):
                 careful_parser().Parse(archive.read(part), True)  # so that no other parser meets a broken part

@@ -51,7 +51,22 @@ MESSES: dict[str, tuple[Rows, list[Fate], list[float]]] = {
     "a column of currencies": (
         [[*HEAD, "Currency"], ["Maize", 205, "t", "USD"], ["Wheat", 200, "t", "eur"], ["Limestone", 44, "t", None]],
         [IGNORED, A, Q, A], [205, 44]),
-    "cents in the heading": ([["Ingredient", "Price cts/lb"], ["Maize", 9.3]], [IGNORED, Q], []),
+    "cents in the heading": ([["Ingredient", "Price cts/lb"], ["Maize", 9.3]], [IGNORED, A], [205.03]),
+    "cents a bushel, and pence of another country": (
+        [HEAD[:2], ["Maize", "510 c/bu"], ["Wheat", "570 cents per bushel"], ["Soybean meal", "18 p/lb"]],
+        [IGNORED, A, A, Q], [200.78, 209.44]),
+    "dollars under a heading of cents": ([["Ingredient", "c/bu"], ["Maize", 5.1]], [IGNORED, Q], []),
+    "packs of a mass and no other unit": (
+        [["Item", "Pack", "Price"], ["Maize", "25 kg bag", 5.1], ["Wheat", "25-kg sack", 5.3],
+         ["Limestone", "25 kg", 1.1], ["Molasses", "bag", 2], ["Soybean meal", "50 lb bag", 9]],
+        [IGNORED, A, A, A, Q, A], [204, 212, 44, 396.83]),
+    "packs beside a unit": (
+        [["Item", "Pack", "Price $/t"], ["Maize", "25 kg bag", 205]], [IGNORED, A], [205]),
+    "packs below a title with a unit": (
+        [["All prices per tonne"], ["Item", "Pack", "Price"], ["Maize", "25 kg bag", 205]], [IGNORED, IGNORED, A],
+        [205]),
+    "a dash of any length for a price": (
+        [HEAD, ["Maize", "–", "t"], ["Wheat", "—", "t"], ["Limestone", 44, "t"]], [IGNORED, IGNORED, IGNORED, A], [44]),
     "a currency in the title": ([["All prices in GBP per tonne"], HEAD[:2], ["Maize", 205]], [IGNORED, IGNORED, Q], []),
     "the mill's currency in the title": (
         [["All prices in USD per tonne"], HEAD[:2], ["Maize", 205]], [IGNORED, IGNORED, A], [205]),

@@ -179,7 +179,7 @@ def test_a_bushel_of_unknown_weight_is_a_question(read: Callable[..., list[Price
 @pytest.mark.parametrize(
     ("heading", "cell", "unit"),
     [("Price EUR/t", 200, None), ("Price", "€ 200", "t"), ("Price", 200, "GBP/t"), ("Price", "C$ 200", "t"),
-     ("Price", "550 ¢/bu", None), ("US cents/lb", 9.1, None)],
+     ("Price", "550 p/bu", None), ("Pence/lb", 9.1, None)],
 )
 def test_another_currency_or_cents_are_a_question(
     read: Callable[..., list[PriceRow]], heading: str, cell: Any, unit: str | None

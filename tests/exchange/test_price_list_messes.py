@@ -182,7 +182,7 @@ def test_another_currency_wants_a_rate_and_its_day(read: Read) -> None:
 
 
 def test_hundredths_are_asked_once_and_divided(read: Read) -> None:
-    rows: Rows = [["Product", "Price"], ["Maize", "510 ¢/bu"]]
+    rows: Rows = [["Product", "Price"], ["Maize", "510 p/bu"]]
     assert asked(read(rows).rows[1]) == [Asked.CENTS]
     assert prices(read(rows, Answer(Asked.CENTS, "", TAKE))) == [200.78]
 

@@ -11,6 +11,7 @@ import openpyxl
 import pytest
 from openpyxl.cell.rich_text import CellRichText, TextBlock
 from openpyxl.cell.text import InlineFont
+from openpyxl.comments import Comment
 from openpyxl.styles import Font, PatternFill
 from openpyxl.utils.datetime import CALENDAR_MAC_1904
 
@@ -202,3 +203,52 @@ def test_a_hidden_column_on_which_prices_hang_is_asked_about(
     assert fates(reading) == expected
     answer = Answer(Asked.HIDDEN_COLUMN, {"C": "Unit", "D": "Currency", "E": "Remark"}[letter], TAKE)
     assert fates(built(tmp_path / "list.xlsx", library, hidden_column, rows, answer)) == [IGNORED, A, A]
+
+
+def with_format(number_format: str) -> Build:
+    def build(book: openpyxl.Workbook) -> None:
+        book["Prices"]["B2"].number_format = number_format
+
+    return build
+
+
+@pytest.mark.parametrize(("number_format", "rows", "fate", "price"), [
+    ('0.00" /short ton"', [HEAD[:2], ["Maize", 186]], A, 205.03),
+    ('"$"0.00" per 100 kg"', [HEAD[:2], ["Maize", 20.5]], A, 205),
+    ('0.00" /short ton"', ROWS, Q, None), ('0.00" /t"', ROWS, A, 205), ('0.00" each"', ROWS, A, 205),
+    ('0.00" DM"', [HEAD, ["Maize", 233, "t"]], A, 205.04), ('0.00', ROWS, A, 205),
+])
+def test_a_unit_or_basis_that_a_number_format_shows_counts(
+    tmp_path: Path, library: Library, number_format: str, rows: Rows, fate: Fate, price: float | None
+) -> None:
+    row = built(tmp_path / "list.xlsx", library, with_format(number_format), rows).rows[1]
+    assert row.fate is fate
+    assert price is None or row.price_per_t == pytest.approx(price, abs=0.005)
+
+
+@pytest.mark.parametrize(("cell", "words", "fate"), [
+    ("B2", "per short ton", Q), ("B2", "A. Miller:\nper short ton", Q), ("A2", "discontinued", Q),
+    ("B2", "per tonne", A), ("B2", "checked on Monday", A), ("E9", "per short ton", A),
+    ("C2", "old price, do not use", Q),
+    ("B2", "[Threaded comment]\n\nYour version shows this only.\n\nComment:\n    plus freight", Q),
+])
+def test_a_comment_on_a_cell_of_a_price_is_read(
+    tmp_path: Path, library: Library, cell: str, words: str, fate: Fate
+) -> None:
+    def build(book: openpyxl.Workbook) -> None:
+        book["Prices"][cell].comment = Comment(words, "A. Miller")
+
+    reading = built(tmp_path / "list.xlsx", library, build)
+    assert fates(reading) == [IGNORED, fate, A]
+    said = words.split("\n")[-1].strip()
+    assert fate is A or f"“{said}”" in reading.rows[1].questions[0].text
+
+
+def test_two_prices_of_which_one_is_struck_are_never_read_as_one(tmp_path: Path, library: Library) -> None:
+    row = built(tmp_path / "list.xlsx", library, struck_price).rows[1]
+    assert (row.price, row.price_per_t, row.entered.replace(" ", "")) == (None, None, "199205")
+    assert [one.asked for one in row.questions] == [Asked.STRUCK, Asked.AMOUNT]
+    taken = Answer(Asked.STRUCK, "", TAKE, sheet="Prices", row=2)
+    assert built(tmp_path / "list.xlsx", library, struck_price, ROWS, taken).rows[1].fate is Q
+    typed = Answer(Asked.AMOUNT, "", "205", sheet="Prices", row=2)
+    assert built(tmp_path / "list.xlsx", library, struck_price, ROWS, typed).rows[1].price_per_t == 205

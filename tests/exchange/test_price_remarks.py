@@ -19,7 +19,8 @@ CHANGING = [
     "haulage extra", "carriage not included", "old price, do not use", "EUR", "price in GBP", "€", "price on DM basis",
     "DM basis", "per t dry matter", "discontinued", "withdrawn", "expired", "sold out", "out of stock",
     "indicative only", "tbc", "now 212.50", "should read 250", "corrected: 195", "less 5.00 discount",
-    "plus levy of 2.00", "valid until 1/2/2026", "from next week", "valid to end March", "not available", "cents per lb",
+    "plus levy of 2.00", "valid until 1/2/2026", "from next week", "valid to end March", "not available",
+    "cents per lb",
 ]
 HARMLESS = [
     "subject to unsold", "new crop", "origin Ukraine", "ex port", "delivered Larkwater", "per tonne", "per t, new crop",
