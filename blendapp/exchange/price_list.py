@@ -8,6 +8,7 @@ from pathlib import Path
 
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import Answer, SourceSheet
+from blendapp.domain.mills import Asked
 from blendapp.domain.price_rows import PriceListReading, PriceRow
 from blendapp.exchange.list_answers import Answers
 from blendapp.exchange.list_files import open_list
@@ -23,8 +24,8 @@ from blendapp.exchange.price_places import placed, site_in_titles
 from blendapp.exchange.price_row import read_row
 from blendapp.exchange.price_segments import Segment, pointed_out_table, read_segments, source_table
 from blendapp.exchange.price_sides import beside, unsettled_row
-from blendapp.exchange.price_tables import find_table
-from blendapp.exchange.price_unplaced import without_columns, without_table
+from blendapp.exchange.price_tables import find_table, holds_price_of_known
+from blendapp.exchange.price_unplaced import above_headings, without_columns, without_table
 from blendapp.exchange.source_sheets import source_sheet
 from blendapp.exchange.tables import RawTable
 
@@ -96,8 +97,13 @@ def _rows(
         if table.sides and table.side is None:
             return unsettled_row(raw, row, table)
         found = read_row(raw, row, segment, library, names, today)
-        return beside(raw, placed(raw, dated(found, table, day, names.answers), table, library, names.answers, today), table)
+        found = dated(found, table, day, names.answers)
+        return beside(raw, placed(raw, found, table, library, names.answers, today), table)
 
-    return rows_of_table(
-        raw, range(segment.first, segment.last), table.heading_rows, table.first_row, PriceRow, read
-    )
+    headings = table.heading_rows
+    said = names.answers.find(Asked.TABLE, raw.sheet) is not None
+    for found in rows_of_table(raw, range(segment.first, segment.last), headings, table.first_row, PriceRow, read):
+        is_title = headings and found.row <= headings.start
+        if is_title and not said and holds_price_of_known(raw, found.row - 1, names.is_known):
+            found = above_headings(raw, found)
+        yield found

@@ -10,9 +10,11 @@ from blendapp.domain.mills import Asked
 from blendapp.domain.wording import _
 from blendapp.exchange.list_headings import FURTHEST, best_name_column, is_known_text, known_names
 from blendapp.exchange.list_names import NameFinder
+from blendapp.exchange.list_numbers import date_readings
 from blendapp.exchange.list_placing import NO_HEADINGS, Placing, column_name
 from blendapp.exchange.price_columns import PRICE_ROLES, PriceColumn, RoleOf, Table, role_of
 from blendapp.exchange.price_headings import read_headings
+from blendapp.exchange.price_numbers import read_price_text
 from blendapp.exchange.price_places import settle_places
 from blendapp.exchange.price_sides import settle_sides
 from blendapp.exchange.price_units import is_price_unit
@@ -48,10 +50,25 @@ def find_table(raw: RawTable, names: NameFinder, placing: Placing) -> Table | No
 def headed_table(raw: RawTable, row: int, names: NameFinder, placing: Placing) -> Table | None:
     """The table whose headings begin in a row, None where they head no name or no price."""
     found = read_headings(raw, row, role_reader(placing))
-    if found is None:
+    if found is None or any(holds_price_of_known(raw, one, names.is_known) for one in found.heading_rows):
         return None
     _settle(found, raw, names, placing)
     return found if found.is_complete else None
+
+
+def holds_price_of_known(raw: RawTable, row: int, is_known: Callable[[str], bool]) -> bool:
+    """Whether a row holds the name of an ingredient and, in another cell, a number, and so is no heading."""
+    cells = raw.rows[row]
+    named = [index for index, value in enumerate(cells) if is_known_text(value, is_known)]
+    return bool(named) and any(_is_number(value) for index, value in enumerate(cells) if index != named[0])
+
+
+def _is_number(value: CellValue) -> bool:
+    kind = kind_of(value)
+    if kind is CellKind.TEXT:
+        text = str(value).strip()
+        return not date_readings(text) and read_price_text(text) is not None
+    return kind is CellKind.NUMBER
 
 
 def role_reader(placing: Placing) -> RoleOf:

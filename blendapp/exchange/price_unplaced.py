@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 from blendapp.domain.list_rows import ColumnRole, Fate, Question
 from blendapp.domain.mills import Asked
@@ -23,6 +24,13 @@ def without_table(raw: RawTable) -> Iterator[PriceRow]:
     text = _("No heading row with a name and a price was found; say in which row the headings stand, or add one.")
     question = Question(Asked.TABLE, raw.sheet, text, _likely_rows(raw))
     return _rows(raw, 0, text, (question,))
+
+
+def above_headings(raw: RawTable, row: PriceRow) -> PriceRow:
+    """A row above the headings that holds the name of an ingredient and a number: it is asked about, and not lost."""
+    text = _("The row stands above the headings and holds a price; say in which row the headings stand.")
+    question = Question(Asked.TABLE, raw.sheet, text, _likely_rows(raw))
+    return replace(row, fate=Fate.QUESTION, reason=text, questions=(question,))
 
 
 def without_columns(raw: RawTable, table: Table, placing: Placing) -> Iterator[PriceRow]:
