@@ -12,6 +12,7 @@ from blendapp.domain.library import Library
 from blendapp.domain.list_rows import ListReading, source_of
 from blendapp.domain.mills import ListAbout, PriceList
 from blendapp.domain.price_rows import PriceListReading
+from blendapp.services.already_taken import without_taken
 from blendapp.services.composition import apply_composition_list
 from blendapp.services.mill import Edit, Mill
 from blendapp.services.prices import apply_price_list
@@ -26,12 +27,13 @@ def read_list(
 ) -> ListReading:
     """As read_price_list or read_composition_list, for a library that nobody edits meanwhile.
 
+    Prices that were taken from this very file already are left alone, so that taking it records only what is new.
     Raises Refused for a file that cannot be read.
     """
     if about is ListAbout.PRICES:
         from blendapp.exchange import read_price_list
 
-        return read_price_list(path, library, on, None, answers, source)
+        return without_taken(library, read_price_list(path, library, on, None, answers, source))
     from blendapp.exchange import read_composition_list
 
     return read_composition_list(path, library, on, None, answers, source)

@@ -179,11 +179,12 @@ def test_days_terms_and_a_price_for_dry_matter_stand_below_the_row(bench: Bench,
     limestone = bench.work.library.ingredient(3)
     bench.work.do(lambda mill: edits.change(mill, limestone, dry_matter_percent=90.0))
     path = tmp_path / "list.csv"
-    path.write_text("Ingredient,USD/t DM,Terms,Valid from,Valid to\nLimestone,60,delivered,2030-01-07,2030-01-31\n")
+    first, last = (bench.work.on + datetime.timedelta(days=days) for days in (7, 31))
+    path.write_text(f"Ingredient,USD/t DM,Terms,Valid from,Valid to\nLimestone,60,delivered,{first},{last}\n")
     read(bench, path)
     assert shown(bench, "price") == ["54.00"]
     detail = bench.prices.rows.detail_of(0)
-    assert detail.startswith("from 2030-01-07, to 2030-01-31, delivered, 60.00 per t of dry matter.")
+    assert detail.startswith(f"from {first}, to {last}, delivered, 60.00 per t of dry matter.")
     assert "54.00 per t as fed at 90 % of dry matter" in detail
 
 

@@ -56,3 +56,22 @@ def test_a_list_is_likely_about_what_the_last_one_of_its_source_was(mill: Mill) 
     assert likely_about(library, "Bay Grain 11.csv") is ListAbout.PRICES
     library.apply([Change(analyses, replace(analyses, source="bay grain"))])
     assert likely_about(library, "Bay Grain 11.csv") is ListAbout.COMPOSITION
+
+
+def test_only_what_is_not_on_record_from_the_very_file_is_left_to_take(mill: Mill, tmp_path: Path) -> None:
+    path = tmp_path / "Bay Grain 10.csv"
+    path.write_text("Ingredient,USD/t\nMaize,212\nCorn,213\n")
+    apply_list(mill, read_list(mill.library, path, TODAY), TODAY)
+    day = TODAY + datetime.timedelta(days=1)
+    again = read_list(mill.library, path, day)
+    assert [row.fate for row in again.rows] == [Fate.IGNORED, Fate.IGNORED, Fate.QUESTION]
+    assert again.rows[1].reason.startswith("Taken on ")
+    settled = read_list(mill.library, path, day, answers=[Answer(Asked.INGREDIENT, "Corn", ingredient_id=1)])
+    # Of two prices of one ingredient it is still asked which holds, the one on record or the other.
+    assert [row.fate for row in settled.rows] == [Fate.IGNORED, Fate.IGNORED, Fate.QUESTION]
+    # The same prices in another file are another list.
+    other = tmp_path / "Bay Grain 11.csv"
+    other.write_text(path.read_text() + "\n")
+    assert read_list(mill.library, other, day).rows[1].fate is Fate.ACCEPTED
+    roll_back(mill, max(mill.library.records["price_list"]))
+    assert read_list(mill.library, path, day).rows[1].fate is Fate.ACCEPTED

@@ -307,15 +307,18 @@ class ListPane(QWidget):
         self.questions.say_last(added or (self.last_answer and _("Answered {what}").format(what=self.last_answer)))
         taken, running = self.reader.is_taken(session), self.reader.running
         count = reading.count(Fate.ACCEPTED)
-        self.take.setText(_("Taken") if taken else take_words(session.about, count))
-        ready = count > 0 and not taken and not running and self.work.is_open and self.work.mill.writable
+        # What was settled since a list of prices was taken can be taken too; what was taken stands apart by then.
+        over = taken and (running or self._stale or not count or session.about is not ListAbout.PRICES)
+        self.take.setText(_("Taken") if over else take_words(session.about, count))
+        ready = count > 0 and not over and not running and self.work.is_open and self.work.mill.writable
         self.take.setEnabled(ready)
         if self.questions.current is None and ready and self._needed_answers:
             self.questions.place.say(_("Enter goes to “{button}”").format(button=self.take.text()))
         self.look.setVisible(session.about is ListAbout.PRICES)
         self.look.setEnabled(count > 0 and not running)
         before = taken_before(self.work.library, reading.digest) is not None
-        self.parts.remark.say(state_words(session.about, running=running, taken=taken, before=before))
+        self.parts.remark.say(state_words(
+            session.about, running=running, taken=taken, before=before, more=count > 0 and not over))
 
     def _show_only(self, fate: Fate | None) -> None:
         self._only = fate
@@ -408,6 +411,8 @@ class ListPane(QWidget):
         finally:
             self._taking = False
         session.taken_as = max(self.work.library.records["price_list"], default=None)
+        # Read again when it is next looked at, with what was taken set apart.
+        self._stale = True
         self._say_state()
         self.changed.emit()
         if session.about is ListAbout.PRICES:

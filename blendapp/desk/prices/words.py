@@ -16,10 +16,15 @@ def take_words(about: ListAbout, count: int) -> str:
     return plural("Take {count} sample", "Take {count} samples", count).format(count=count)
 
 
-def state_words(about: ListAbout, *, running: bool, taken: bool, before: bool) -> str:
-    """How far a list has come. before: whether this very file was taken already."""
+def state_words(about: ListAbout, *, running: bool, taken: bool, before: bool, more: bool) -> str:
+    """How far a list has come. before: whether this very file was taken already. more: whether there is anything left
+    to take."""
     if running:
         return _("reading…")
+    if about is ListAbout.PRICES and (taken or before):
+        if more:
+            return _("taken before; what was settled since is taken alone")
+        return _("taken; Ctrl+Z takes it back") if taken else _("taken before; all that it settles is on record")
     if taken:
         return _("taken; Ctrl+Z takes it back")
     if before:
