@@ -6,6 +6,7 @@ from collections.abc import Iterable, Sequence
 
 from blendapp.domain.figures import write_measure, write_shadow_price
 from blendapp.domain.formulas import Amounts
+from blendapp.domain.making import given_by_formula
 from blendapp.domain.notation import notation
 from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.results import Conflict, LimitResult, Result, Side
@@ -39,6 +40,8 @@ def formula(result: Result) -> str:
         lines += ["", f"  {result.tie}"]
     if result.unpriced:
         lines += ["", "  " + _("Left out for want of a price: {names}.").format(names=", ".join(result.unpriced))]
+    if result.by_formula:
+        lines += ["", f"  {given_by_formula(result.by_formula)}"]
     lines += ["", *(f"  ! {caution}" for caution in result.cautions)]
     return "\n".join(lines)
 

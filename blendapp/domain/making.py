@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 
 from blendapp.domain.formulas import Formula, LimitKind
 from blendapp.domain.ingredients import Ingredient, Tag
 from blendapp.domain.library import Library
-from blendapp.domain.wording import _
+from blendapp.domain.wording import _, plural
 
 
 def used_ids(library: Library, formula: Formula) -> set[int]:
@@ -67,6 +67,18 @@ def cycle_fault(library: Library, ingredient_id: int) -> str | None:
         "ingredients only."
     )
     return text.format(name=chain[0], chain=" < ".join(chain))
+
+
+def given_by_formula(names: Sequence[str]) -> str:
+    """What to say of made ingredients that lack a price or values; "" for none."""
+    if not names:
+        return ""
+    text = plural(
+        "The formula that makes {names} can give its price and composition: in the window, “Take composition and price "
+        "from its formula”.",
+        "The formulas that make {names} can give their prices and compositions: in the window, “Take composition and "
+        "price from its formula”.", len(names))
+    return text.format(names=", ".join(names))
 
 
 def parts(library: Library, ingredient_id: int) -> list[Ingredient]:

@@ -148,7 +148,8 @@ class Result:
     cost: money per tonne of mix (blend) or per head and day (ration). cause: why there is no answer, in a sentence.
     given_ingredients: whether shadow prices hold for the chosen ingredients only. unpriced: admitted ingredients
     without a price in force. general_caution stands first in cautions. tie: what can be exchanged at the same cost, in
-    a sentence. proof: the sentence of an exact proof, where one was asked for.
+    a sentence. proof: the sentence of an exact proof, where one was asked for. by_formula: names of the ingredients
+    without a price or with unknown values that another formula makes, which can give them.
     """
 
     formula_id: int
@@ -171,6 +172,7 @@ class Result:
     conflict: Conflict | None = None
     tie: str | None = None
     proof: str | None = None
+    by_formula: tuple[str, ...] = ()
 
     @property
     def cost_per(self) -> str:

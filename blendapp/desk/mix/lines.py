@@ -10,6 +10,7 @@ from blendapp.desk.mix import why
 from blendapp.domain.cautions import general_caution
 from blendapp.domain.figures import decimals_of, write_measure
 from blendapp.domain.formulas import Amounts
+from blendapp.domain.making import given_by_formula
 from blendapp.domain.notation import notation
 from blendapp.domain.results import Conflict, IngredientResult, NutrientResult, Repair, Result, Status
 from blendapp.domain.wording import _, plural
@@ -70,6 +71,8 @@ def lines_of(result: Result, opened: frozenset[str], opened_ids: frozenset[int])
         lines += _no_answer(result)
     lines += _unpriced(result)
     lines += _unknown(result)
+    if result.by_formula:
+        lines.append(Line(Part.SENTENCE, given_by_formula(result.by_formula)))
     # The general caution stands in the footer at all times, so it is not said twice.
     lines += [Line(Part.CAUTION, text) for text in result.cautions if text != general_caution()]
     if result.has_answer:

@@ -53,6 +53,7 @@ def without_answer(
         nutrients=(),
         unpriced=tuple(i.name for i in built.unpriced),
         unknown=tuple(unknown),
+        by_formula=_by_formula(library, built, unknown),
         cautions=tuple(cautions),
         cause=cause,
     )
@@ -92,11 +93,21 @@ def answered(
         nutrients=nutrients_of(library, built, x),
         unpriced=tuple(i.name for i in built.unpriced),
         unknown=tuple(unknown),
+        by_formula=_by_formula(library, built, unknown),
         cautions=tuple(cautions),
         cost=float(money.sum()),
         gap=solution.gap,
         given_ingredients=solution.given,
         check=check,
+    )
+
+
+def _by_formula(library: Library, built: FormulaProgram, unknown: Sequence[UnknownValue]) -> tuple[str, ...]:
+    """The ingredients of which something is not known that the formula which makes them knows."""
+    lacking = {i.name for i in built.unpriced} | {one.ingredient for one in unknown}
+    return tuple(
+        i.name for i in (*built.ingredients, *built.unpriced)
+        if i.name in lacking and i.made_by_formula_id in library.records["formula"]
     )
 
 
