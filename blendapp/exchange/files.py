@@ -70,6 +70,7 @@ def _sentence(unfit: Unfit) -> str:
         "entities": _("The file declares entities, which no workbook needs, and was not opened; ask for a clean copy."),
         "repeats": _("The file repeats a filled cell far more often than a table does; ask for a clean copy."),
         "far": _("The sheet {sheet} reaches to row {row} and column {column}; delete what stands far out."),
+        "long": _("A sheet has more than {count} filled rows, more than a mill buys by; keep only those needed."),
         "slow": _("The file takes too long to read; keep only the sheets needed, or save it again as .xlsx or .csv."),
         "memory": _("The file needs more memory than a table does; keep only the sheets needed."),
         "no process": _("No process can be started here to open the file safely; save the table as .csv."),

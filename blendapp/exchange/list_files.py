@@ -62,6 +62,8 @@ def _check_extent(tables: list[RawTable], file: str) -> None:
             if len(cells) > MOST_COLUMNS:
                 text = _("Row {row} reaches to column {column}, further than lists do; keep only the columns needed.")
                 raise refusal(file, text.format(row=number, column=column_letters(len(cells) - 1)))
+    if not filled:
+        raise refusal(file, _("No cell is filled where a list is looked for; check that this is the right file."))
     if filled > MOST_ROWS:
         text = _("The list has {count} filled rows, more than a mill buys by; keep only those needed.")
         raise refusal(file, text.format(count=filled))

@@ -67,6 +67,8 @@ def _scans(data: bytes) -> dict[str, xlsx_scan.SheetScan]:
         return xlsx_scan.scan_sheets(data)
     except xlsx_scan.ForbiddenEntities:
         raise Unfit("entities") from None
+    except xlsx_scan.TooLong:
+        raise Unfit("long", count=xlsx_scan.MOST_ROWS) from None
     except xlsx_scan.TooFarOut as far:
         raise Unfit("far", sheet=far.sheet, row=far.row + 1, column=far.column + 1) from None
     except (expat.ExpatError, KeyError, ValueError, OverflowError, zipfile.BadZipFile):

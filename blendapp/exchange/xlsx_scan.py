@@ -19,8 +19,10 @@ GREATEST_AREA = 5_000_000
 MOST_COLUMNS = 16_384
 # Only those of headings are looked at, and they come first.
 MOST_MERGED = 20_000
+# Filled rows of one sheet, twice those of the longest list: looking further would take a second for every 50,000.
+MOST_ROWS = 100_000
 
-__all__ = ["ForbiddenEntities", "SheetScan", "TooFarOut", "careful_parser", "scan_sheets", "sheet_parts"]
+__all__ = ["ForbiddenEntities", "SheetScan", "TooFarOut", "TooLong", "careful_parser", "scan_sheets", "sheet_parts"]
 
 _REFERENCE = re.compile(r"([A-Z]{1,3})([0-9]{1,7})")
 _ROW = re.compile(r"[0-9]{1,7}")
@@ -33,6 +35,10 @@ class TooFarOut(Exception):
     def __init__(self, row: int, column: int) -> None:
         super().__init__(row, column)
         self.row, self.column, self.sheet = row, column, ""
+
+
+class TooLong(Exception):
+    """A sheet has more filled rows than any table of a mill."""
 
 
 @dataclass
@@ -131,6 +137,7 @@ class _Cells:
         self.struck_run = False
         self.style = "0"
         self.row, self.column = -1, -1
+        self.filled_row, self.filled_rows = -1, 0
         self.kind = ""
         self.formula = self.holds = self.in_value = False
         self.text: list[str] = []
@@ -180,6 +187,10 @@ class _Cells:
             if not self.holds and not self.formula:
                 return
             scan = self.scan
+            if self.row != self.filled_row:
+                self.filled_row, self.filled_rows = self.row, self.filled_rows + 1
+                if self.filled_rows > MOST_ROWS:
+                    raise TooLong
             if self.row > scan.last_row or self.column > scan.last_column:
                 scan.last_row = max(scan.last_row, self.row)
                 scan.last_column = max(scan.last_column, self.column)
