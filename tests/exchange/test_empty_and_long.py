@@ -1,4 +1,4 @@
-"""Files in which nothing stands, and sheets that are too long: refused in one sentence, and without reading them all."""
+"""Files in which nothing stands, and sheets that are too long: refused in one sentence, without reading on."""
 
 from __future__ import annotations
 
@@ -15,7 +15,9 @@ from tests.mills import TODAY
 
 
 @pytest.mark.parametrize("text", ["\ufeff", "\ufeff\r\n", " , ,\r\n", ";;;\r\n\r\n", "\t\r\n \t \r\n"])
-def test_a_text_that_holds_nothing_but_a_mark_and_blanks_X:
+def test_a_text_that_holds_nothing_but_a_mark_and_blanks_is_refused(
+    tmp_path: Path, library: Library, text: str
+) -> None:
     (tmp_path / "Larkwater.csv").write_text(text, encoding="utf-8")
     with pytest.raises(Refused, match=r"empty|No cell is filled"):
         read_price_list(tmp_path / "Larkwater.csv", library, TODAY)
