@@ -21,7 +21,7 @@ from blendapp.domain.wording import _
 from blendapp.optimise.build.batch import broken_by, weighed
 from blendapp.optimise.build.formula import build, unknown_values
 from blendapp.services.batch import SEARCH_S, make_batch
-from blendapp.services.making import CannotBeMade, Makers
+from blendapp.services.makers import CannotBeMade, Makers
 from blendapp.services.versions import approval_text, version_text
 
 if TYPE_CHECKING:

@@ -35,7 +35,7 @@ from blendapp.services import batch_cautions, sheets
 from blendapp.services.accepting import accepted_by
 from blendapp.services.batch_mix import BatchMix, batch_mix
 from blendapp.services.formulate import formulate
-from blendapp.services.making import CannotBeMade, Makers
+from blendapp.services.makers import CannotBeMade, Makers
 from blendapp.services.order_split import mixer_taking, mixers_elsewhere, mixers_for, no_split, split_order, totals_held
 from blendapp.services.previous_feed import clean_out_reason, feed_text, previous_sheet, tags_of
 from blendapp.services.scaleless import without_scale

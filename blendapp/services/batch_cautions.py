@@ -13,7 +13,7 @@ from blendapp.domain.results import UnknownValue
 from blendapp.domain.wording import _
 from blendapp.optimise.build.formula import FormulaProgram, unknown_values
 from blendapp.services.batch_mix import BatchMix
-from blendapp.services.making import Makers
+from blendapp.services.makers import Makers
 
 
 def forbidden(formula: Formula, library: Library, makers: Makers, weighed: Mapping[int, float]) -> str | None:

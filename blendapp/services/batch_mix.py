@@ -11,7 +11,7 @@ from blendapp.domain.notation import notation
 from blendapp.domain.problems import Place, Problem, Refused
 from blendapp.domain.wording import _
 from blendapp.optimise.build.contents import Contents
-from blendapp.services.making import Makers
+from blendapp.services.makers import Makers
 
 
 @dataclass(frozen=True)

@@ -12,7 +12,7 @@ from blendapp.domain.ingredients import Ingredient, Tag
 from blendapp.domain.library import Library
 from blendapp.domain.mills import PrintedBatch
 from blendapp.domain.wording import _
-from blendapp.services.making import Makers
+from blendapp.services.makers import Makers
 from blendapp.services.sheets import printed_batch
 
 

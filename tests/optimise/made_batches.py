@@ -16,7 +16,7 @@ from blendapp.optimise.build.formula import FormulaProgram, build
 from blendapp.optimise.build.weigh import order_of, scales_for
 from blendapp.optimise.steps.problem import Order
 from blendapp.services.batch_mix import BatchMix, batch_mix
-from blendapp.services.making import Makers
+from blendapp.services.makers import Makers
 from tests.mills import TODAY, Maker
 
 BIG, MIDDLE, SMALL, HAND, PUMP, FINE_PUMP = 1, 2, 3, 4, 5, 6

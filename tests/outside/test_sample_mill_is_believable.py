@@ -16,7 +16,7 @@ from blendapp.domain.formulas import Amounts
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import Fate
 from blendapp.domain.results import Result, Status
-from blendapp.services import composition, made, prices, workbook
+from blendapp.services import composition, from_formula, prices, workbook
 from blendapp.services.formulate import formulate
 from blendapp.services.mill import Mill
 
@@ -171,7 +171,7 @@ def test_the_workbook_warns_only_of_its_own_notes_and_of_admits_left_blank(tmp_p
 
 def test_what_the_mill_makes_itself_is_what_its_formula_makes(mill: Mill) -> None:
     assert [i.name for i in mill.library.ingredients if i.made_by_formula_id is not None] == ["Horse minerals"]
-    assert made.stale(mill, TODAY) == []
+    assert from_formula.stale(mill, TODAY) == []
 
 
 def test_an_ingredient_stands_in_two_bins_and_every_liquid_has_a_meter_and_a_density(library: Library) -> None:

@@ -9,7 +9,7 @@ from blendapp.desk.table.view import DeskTable
 from blendapp.desk.work import Work
 from blendapp.domain.problems import Refused
 from blendapp.domain.wording import _
-from blendapp.services import made
+from blendapp.services import from_formula
 
 
 class Making(QObject):
@@ -52,7 +52,7 @@ class Making(QObject):
         """Write into an ingredient what its formula makes, as one undo."""
         name, formula = self.work.library.ingredient(ingredient_id).name, self.maker(ingredient_id)
         try:
-            edit = self.work.do(lambda mill: made.take_from_formula(mill, ingredient_id, self.work.on))
+            edit = self.work.do(lambda mill: from_formula.take_from_formula(mill, ingredient_id, self.work.on))
         except (Refused, ValueError) as fault:
             self.work.said.emit(sentence_of(fault), [])
             return
@@ -69,7 +69,7 @@ class Making(QObject):
 
     def compare_all(self) -> None:
         """Say which made ingredients are no longer what their formula makes."""
-        found = made.stale(self.work.mill, self.work.on)
+        found = from_formula.stale(self.work.mill, self.work.on)
         if found:
             self.work.said.emit(_("Made ingredients that differ from what their formula makes today:"),
                                 [one.text for one in found])

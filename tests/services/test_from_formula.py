@@ -15,7 +15,7 @@ from blendapp.domain.problems import Refused
 from blendapp.domain.quotes import Quote
 from blendapp.domain.records import added
 from blendapp.domain.results import Status
-from blendapp.services import edits, made
+from blendapp.services import edits, from_formula
 from blendapp.services.formulate import formulate
 from blendapp.services.mill import Mill
 from tests.mills import TODAY, Maker
@@ -53,7 +53,7 @@ def held(mill: Mill) -> dict[str, float]:
 
 
 def test_composition_dry_matter_and_price_are_those_of_the_mix_in_one_undo(mill: Mill) -> None:
-    edit = made.take_from_formula(mill, PREMIX, TODAY)
+    edit = from_formula.take_from_formula(mill, PREMIX, TODAY)
     # 0.75 x 38; 0.25 x 281; 0.75 x 95 + 0.25 x 27; 0.75 x 98 + 0.25 x 90; 0.75 x 100 + 0.25 x 500
     assert held(mill) == pytest.approx({"Calcium": 28.5, "Protein": 70.25, "Ash": 78.0})
     assert mill.library.ingredient(PREMIX).dry_matter_percent == pytest.approx(96.0)
@@ -71,18 +71,18 @@ def test_composition_dry_matter_and_price_are_those_of_the_mix_in_one_undo(mill:
 
 
 def test_what_stands_already_is_not_taken_again_and_keeps_its_day(mill: Mill) -> None:
-    made.take_from_formula(mill, PREMIX, TODAY)
+    from_formula.take_from_formula(mill, PREMIX, TODAY)
     later = TODAY + datetime.timedelta(days=30)
-    assert made.take_from_formula(mill, PREMIX, later).changes == ()
+    assert from_formula.take_from_formula(mill, PREMIX, later).changes == ()
     edits.set_value(mill, 1, 2, 40.0)
-    made.take_from_formula(mill, PREMIX, later)
+    from_formula.take_from_formula(mill, PREMIX, later)
     days = {mill.library.nutrient(key).name: value.date for key, value in mill.library.values_of(PREMIX).items()}
     assert days == {"Calcium": later, "Protein": TODAY, "Ash": TODAY}
 
 
 def test_a_nutrient_that_one_part_has_no_value_of_stays_unknown_and_is_said(mill: Mill) -> None:
     edits.set_value(mill, 2, 2, None)
-    edit = made.take_from_formula(mill, PREMIX, TODAY)
+    edit = from_formula.take_from_formula(mill, PREMIX, TODAY)
     assert "Calcium" not in held(mill)
     assert [one.text for one in edit.oddities] == [
         "Not taken from Core, since a part has no value: Calcium (Feed grade N)."
@@ -90,24 +90,24 @@ def test_a_nutrient_that_one_part_has_no_value_of_stays_unknown_and_is_said(mill
 
 
 def test_a_value_once_taken_is_forgotten_when_the_formula_no_longer_knows_it(mill: Mill) -> None:
-    made.take_from_formula(mill, PREMIX, TODAY)
+    from_formula.take_from_formula(mill, PREMIX, TODAY)
     edits.set_value(mill, PREMIX, 4, 5000.0, origin=Origin.MEASURED, source="own laboratory")
     edits.change(mill, mill.library.formulas[0], name="Core 2")
     edits.set_value(mill, 2, 2, None)
-    made.take_from_formula(mill, PREMIX, TODAY)
+    from_formula.take_from_formula(mill, PREMIX, TODAY)
     assert held(mill) == pytest.approx({"Protein": 70.25, "Ash": 78.0, "Vitamin": 5000.0})
 
 
 def test_a_loss_makes_a_tonne_dearer_and_leaves_what_it_holds(mill: Mill) -> None:
     edits.change(mill, mill.library.formulas[0], loss_percent=20.0)
-    made.take_from_formula(mill, PREMIX, TODAY)
+    from_formula.take_from_formula(mill, PREMIX, TODAY)
     assert mill.library.price_per_t(PREMIX, TODAY) == pytest.approx(200 / 0.8)
     assert held(mill)["Calcium"] == pytest.approx(28.5)
 
 
 def test_a_product_that_takes_up_water_holds_less_of_everything_per_kg(mill: Mill) -> None:
     edits.change(mill, mill.library.formulas[0], product_dry_matter_percent=48.0)  # the mix has 96 %
-    made.take_from_formula(mill, PREMIX, TODAY)
+    from_formula.take_from_formula(mill, PREMIX, TODAY)
     assert mill.library.ingredient(PREMIX).dry_matter_percent == pytest.approx(48.0)
     assert held(mill) == pytest.approx({"Calcium": 14.25, "Protein": 35.125, "Ash": 39.0})
     assert mill.library.price_per_t(PREMIX, TODAY) == pytest.approx(100.0)
@@ -117,13 +117,13 @@ def test_a_stated_product_dry_matter_needs_that_of_every_part(mill: Mill) -> Non
     edits.change(mill, mill.library.formulas[0], product_dry_matter_percent=90.0)
     edits.change(mill, mill.library.ingredient(1), dry_matter_percent=None)
     with pytest.raises(Refused, match="enter the dry matter of Chalk"):
-        made.take_from_formula(mill, PREMIX, TODAY)
+        from_formula.take_from_formula(mill, PREMIX, TODAY)
 
 
 def test_an_unknown_dry_matter_of_a_part_leaves_that_of_the_premix_alone(mill: Mill) -> None:
     edits.change(mill, mill.library.ingredient(PREMIX), dry_matter_percent=95.0)
     edits.change(mill, mill.library.ingredient(1), dry_matter_percent=None)
-    edit = made.take_from_formula(mill, PREMIX, TODAY)
+    edit = from_formula.take_from_formula(mill, PREMIX, TODAY)
     assert mill.library.ingredient(PREMIX).dry_matter_percent == 95.0
     assert "dry matter" in edit.oddities[0].text
 
@@ -132,9 +132,9 @@ def test_without_an_answer_nothing_is_taken_and_the_reason_is_said(mill: Mill) -
     limit = mill.library.limits(1)[0]
     edits.set_bounds(mill, "more", [(limit.id, "minimum", 80.0), (limit.id, "maximum", 80.0)])
     with pytest.raises(Refused, match="Core has no answer to take: No mix"):
-        made.take_from_formula(mill, PREMIX, TODAY)
+        from_formula.take_from_formula(mill, PREMIX, TODAY)
     with pytest.raises(Refused, match="No formula makes Chalk"):
-        made.take_from_formula(mill, 1, TODAY)
+        from_formula.take_from_formula(mill, 1, TODAY)
     assert held(mill) == {}
 
 
@@ -145,7 +145,7 @@ def test_an_approved_version_is_taken_before_todays_answer(mill: Mill, quick_has
         edits.set_bounds(mill, "half", [(limit.id, "minimum", share), (limit.id, "maximum", share)])
     edits.set_value(mill, 1, 2, 40.0)  # a new analysis of chalk counts: 0.75 x 40
     edits.set_price(mill, 2, 900.0, TODAY)  # and so does a new price: 0.75 x 100 + 0.25 x 900
-    made.take_from_formula(mill, PREMIX, TODAY)
+    from_formula.take_from_formula(mill, PREMIX, TODAY)
     assert held(mill)["Calcium"] == pytest.approx(30.0)
     assert mill.library.price_per_t(PREMIX, TODAY) == pytest.approx(300.0)
 
@@ -155,32 +155,32 @@ def test_an_approved_mix_of_which_a_price_is_unknown_today_is_not_taken(mill: Mi
     approve(mill, 1)
     edits.set_price(mill, 2, None, TODAY)
     with pytest.raises(Refused, match="takes Feed grade N, whose price is not known today"):
-        made.take_from_formula(mill, PREMIX, TODAY)
+        from_formula.take_from_formula(mill, PREMIX, TODAY)
 
 
 def test_a_price_worked_out_from_prices_of_a_site_holds_at_that_site(opened: Opened) -> None:
     mill = opened(premix_library())
     mill.apply("site", [added(Site(1, "North")), added(Quote(mill.new_id("quote"), 2, 900.0, site_id=1))])
     edits.set_mill(mill, site_id=1)
-    made.take_from_formula(mill, PREMIX, TODAY)
+    from_formula.take_from_formula(mill, PREMIX, TODAY)
     assert mill.library.price_per_t(PREMIX, TODAY) == pytest.approx(300.0)
     edits.set_mill(mill, site_id=None)
     assert mill.library.price_per_t(PREMIX, TODAY) is None
 
 
 def test_what_an_edit_elsewhere_makes_stale_is_said_until_it_is_taken_again(mill: Mill) -> None:
-    assert len(made.stale(mill, TODAY)) == 1  # nothing was taken yet
-    made.take_from_formula(mill, PREMIX, TODAY)
-    assert made.stale(mill, TODAY) == []
+    assert len(from_formula.stale(mill, TODAY)) == 1  # nothing was taken yet
+    from_formula.take_from_formula(mill, PREMIX, TODAY)
+    assert from_formula.stale(mill, TODAY) == []
     edits.set_value(mill, 1, 2, 40.0)
     edits.set_price(mill, 1, 120.0, TODAY)
-    (one,) = made.stale(mill, TODAY)
+    (one,) = from_formula.stale(mill, TODAY)
     assert one.text == (
         "Core premix is no longer what Core makes: price 215 instead of 200; Calcium 30 instead of 28.5. Take it from "
         "its formula again."
     )
-    made.take_from_formula(mill, PREMIX, TODAY)
-    assert made.stale(mill, TODAY) == []
+    from_formula.take_from_formula(mill, PREMIX, TODAY)
+    assert from_formula.stale(mill, TODAY) == []
 
 
 def medicated_library() -> Library:
@@ -214,10 +214,10 @@ def test_a_feed_for_horses_admits_nothing_that_is_made_with_an_ionophore_however
 
 def test_the_tags_of_the_parts_come_along_with_what_they_hold(opened: Opened) -> None:
     mill = opened(medicated_library())
-    assert "also medicated, ionophore" in made.stale(mill, TODAY)[0].text
-    made.take_from_formula(mill, 3, TODAY)
+    assert "also medicated, ionophore" in from_formula.stale(mill, TODAY)[0].text
+    from_formula.take_from_formula(mill, 3, TODAY)
     assert mill.library.ingredient(3).tags == (Tag.MEDICATED, Tag.IONOPHORE)
-    made.take_from_formula(mill, 4, TODAY)
+    from_formula.take_from_formula(mill, 4, TODAY)
     assert mill.library.ingredient(4).tags == (Tag.MEDICATED, Tag.IONOPHORE)
     mill.undo()
     assert mill.library.ingredient(4).tags == ()
