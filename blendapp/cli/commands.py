@@ -95,6 +95,7 @@ def _formulate(given: argparse.Namespace) -> int:
 
 def _prices(given: argparse.Namespace) -> int:
     from blendapp.services.answering import answered
+    from blendapp.services.arriving import with_note_of_earlier
     from blendapp.services.effect_table import effect_of, summary, write_effect
     from blendapp.services.prices import apply_price_list, read_price_list
 
@@ -108,6 +109,7 @@ def _prices(given: argparse.Namespace) -> int:
             mill.library, lambda known: read_price_list(mill, given.list, today, given.sheet, known, given.source),
             given.answer, today, lists.sender_answers(mill.library, given),
         )
+        reading = with_note_of_earlier(mill.library, reading)
         if given.effect is not None:
             # Before anything is recorded, so that a file that cannot be written leaves the mill as it was.
             moved = effect_of(mill.library, reading, today, mill.answers.view())
@@ -129,6 +131,7 @@ def _prices(given: argparse.Namespace) -> int:
 def _composition(given: argparse.Namespace) -> int:
     from blendapp.services.answering import answered
     from blendapp.services.approved import outside_their_limits
+    from blendapp.services.arriving import with_note_of_earlier
     from blendapp.services.composition import apply_composition_list, read_composition_list
 
     today = datetime.date.today()
@@ -140,6 +143,7 @@ def _composition(given: argparse.Namespace) -> int:
             lambda known: read_composition_list(mill, given.list, today, given.sheet, known, given.source),
             given.answer, today,
         )
+        reading = with_note_of_earlier(mill.library, reading)
         applied = bool(given.apply and reading.accepted)
         if applied:
             apply_composition_list(mill, reading, today)

@@ -51,14 +51,29 @@ def answered(
     """
     answers = list(known)
     reading = read(answers)
+    said: set[tuple[str, str]] = set()
     for text in written:
         key, sign, words = (part.strip() for part in text.rpartition("="))
         if not sign or not key or not words:
             raise Refused(_("“{text}” is no answer; write QUESTION=ANSWER, such as “unit: ton=t”.").format(text=text))
+        if (fold(key), fold(words)) in said:  # said twice, and settled the first time
+            continue
+        said.add((fold(key), fold(words)))
         question, row = _question(reading, key)
         answers.append(_answer(library, question, row, words, on))
         reading = read(answers)
+        if question.text and _is_still_open(reading, question, row):
+            raise Refused(_unfit(question, words, question.choices or [_("another answer")]))
     return reading
+
+
+def _is_still_open(reading: ListReading, question: Question, of: ListRow) -> bool:
+    """Whether what was answered is asked again in the same words: the answer was not understood."""
+    return any(
+        (one.asked, one.about, one.text) == (question.asked, question.about, question.text)
+        and (not one.asked.is_of_row or (row.sheet, row.row) == (of.sheet, of.row))
+        for _name, one, row in _open(reading)
+    )
 
 
 def _open(reading: ListReading) -> Iterator[tuple[str, Question, ListRow]]:

@@ -4,14 +4,16 @@ from __future__ import annotations
 
 import datetime
 from collections.abc import Sequence
+from dataclasses import replace
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TypeVar
 
 from blendapp.domain.composition_rows import CompositionReading
 from blendapp.domain.library import Library
 from blendapp.domain.list_rows import ListReading, source_of
 from blendapp.domain.mills import ListAbout, PriceList
 from blendapp.domain.price_rows import PriceListReading
+from blendapp.domain.wording import _
 from blendapp.services.already_taken import without_taken
 from blendapp.services.composition import apply_composition_list
 from blendapp.services.mill import Edit, Mill
@@ -19,6 +21,8 @@ from blendapp.services.prices import apply_price_list
 
 if TYPE_CHECKING:
     from blendapp.domain.list_rows import Answer
+
+AnyReading = TypeVar("AnyReading", bound=ListReading)
 
 
 def read_list(
@@ -58,3 +62,15 @@ def taken_before(library: Library, digest: str) -> PriceList | None:
     """The record of this very file where it was taken already and stands."""
     known: list[PriceList] = library.all("price_list")
     return next((one for one in reversed(known) if one.digest == digest and one.withdrawn is None), None)
+
+
+def with_note_of_earlier(library: Library, reading: AnyReading) -> AnyReading:
+    """A reading with a note where this very file was taken before."""
+    before = taken_before(library, reading.digest)
+    if before is None:
+        return reading
+    text = _("This very file was taken before, on {day}, as list {number}; taken again, its prices are recorded twice.")
+    if before.about is not ListAbout.PRICES:
+        text = _("This very file was taken before, on {day}, as list {number}; taken again, it is recorded twice.")
+    note = text.format(day=before.applied.date().isoformat(), number=before.id)
+    return replace(reading, notes=(*reading.notes, note))

@@ -169,3 +169,11 @@ def test_whose_prices_and_for_which_site_is_said_once(run: Runner, mill: Path, t
     lines = run("prices", mill, path, "--supplier", "Bay Grian", "--site", "South").faults
     assert len(lines) == 2
     assert "Bay Grain" in lines[0]
+
+
+def test_the_very_same_file_taken_a_second_time_is_said_to_be_so(run: Runner, mill: Path, lab: Path) -> None:
+    assert "taken before" not in run("composition", mill, lab, "--apply").out
+    again = run("composition", mill, lab)
+    assert "This very file was taken before, on " in again.out
+    lab.write_text(LAB.replace("8.3", "8.4"))
+    assert "taken before" not in run("composition", mill, lab).out

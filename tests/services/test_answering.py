@@ -78,19 +78,26 @@ def test_a_rate_has_a_day_today_unless_one_is_written(mill: Mill, tmp_path: Path
     ("=short ton", "QUESTION=ANSWER"),
     ("cents=take", "does not ask “cents”; open are: unit: ton; ingredient: Corn gluten"),
     ("ingredient: Corn gluten=Unobtainium", "does not answer"),
-    ("unit: ton=stone", ""),
+    ("unit: ton=furlong", "does not answer"),
 ])
 def test_an_answer_that_fits_no_question_is_refused_with_what_may_be_answered(
     mill: Mill, tmp_path: Path, written: str, said: str
 ) -> None:
-    if said:
-        with pytest.raises(Refused, match=said):
-            read(mill, tmp_path / "hill.csv", LIST, written)
-    else:  # a unit may be typed; one that is none leaves the question open
-        assert read(mill, tmp_path / "hill.csv", LIST, written).count(Fate.ACCEPTED) == 0
+    with pytest.raises(Refused, match=said):
+        read(mill, tmp_path / "hill.csv", LIST, written)
 
 
 def test_the_heading_row_may_be_said_without_being_asked(mill: Mill, tmp_path: Path) -> None:
     text = "Commodity,USD/t\nold,list\nCommodity,USD/t\nMaize,210\n"
     found = read(mill, tmp_path / "hill.csv", text, "table=row 3")
     assert [row.ingredient for row in found.accepted] == ["Maize"]
+
+
+def test_an_answer_that_leaves_its_question_open_is_refused_with_the_choices(mill: Mill, tmp_path: Path) -> None:
+    with pytest.raises(Refused, match=r"“furlong” does not answer: .* Use one of: .*short ton"):
+        read(mill, tmp_path / "hill.csv", LIST, "unit: ton=furlong")
+
+
+def test_the_same_answer_given_twice_is_harmless(mill: Mill, tmp_path: Path) -> None:
+    found = read(mill, tmp_path / "hill.csv", LIST, "unit: ton=t", "unit: ton=t", "Unit: TON = T")
+    assert [row.price_per_t for row in found.accepted] == [210.5]
