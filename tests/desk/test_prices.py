@@ -111,7 +111,7 @@ def test_a_refused_file_takes_the_place_of_the_list_that_was_in_view_and_offers_
     assert parts.title.text() == "photo.xlsx"
     assert parts.notes.text().startswith("photo.xlsx: ")
     assert parts.counts.read.text() == "0 rows read:"
-    assert (bench.prices.take.text(), bench.prices.take.isEnabled()) == ("Nothing to take yet", False)
+    assert (bench.prices.take.text(), bench.prices.take.isEnabled()) == ("Nothing to take", False)
     assert not bench.prices.look.isEnabled()
     assert not bench.prices.rows.owners
     assert not parts.whose.isVisible()

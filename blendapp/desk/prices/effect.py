@@ -164,13 +164,15 @@ class EffectPane(QWidget):
 
     def _say(self) -> None:
         """Say what was worked out, and whether the mill still stands so."""
-        if self._both is None or self.running:
+        if self._both is None:
+            return
+        back = self._is_taken_back
+        self.title.setText(_("Taken back: what the new prices did") if back else self._title)
+        if self.running:
             return
         what = summary(self.found)
         if len(self.found) < self._of:
             what = _("stopped after {done} of {count} formulas").format(done=len(self.found), count=self._of)
-        back = self._is_taken_back
-        self.title.setText(_("Taken back: what the new prices did") if back else self._title)
         if back:
             what = _("the prices before them count again; they had: {what}").format(what=what)
         elif self._is_edited:

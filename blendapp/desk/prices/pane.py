@@ -273,7 +273,7 @@ class ListPane(QWidget):
         self.parts.show_refusal(self.session.path.name, sentence)
         self.questions.show_questions([], self.work.library, "", False, self.work.on)
         self.questions.say_last("")
-        self.take.setText(take_words(self.session.about, 0))
+        self.take.setText(_("Nothing to take"))
         self.take.setEnabled(False)
         self.look.setEnabled(False)
         self.leave.setFocus()
