@@ -90,7 +90,8 @@ def adds_up(library: Library, feed: Formula, batch: Batch) -> None:
             scale = here[line.scale]
             assert (line.step_l, line.hand_add) == (scale.step_l, scale.hand_add)
         if line.target_l is not None:
-            assert scale.id == ingredient.scale_id
+            own = library.records["scale"][ingredient.scale_id]
+            assert scale == own or (own.by_volume and own not in library.scales), "another's meter"
             assert Fraction(str(line.target_l)) % Fraction(str(line.step_l)) == 0
             assert abs(line.target_kg - line.target_l * (ingredient.density_kg_per_l or 0.0)) < 1e-9
         steps = line.target_kg / line.step_kg
