@@ -18,6 +18,11 @@ _SPEAKS_OF_ALL = re.compile(
     r"\b(?:results?|values?|figures|analys[ei]s|contents?|concentrations?|all)\b.*\b(?:in|as|on|are|per)\b|"
     r"\b(?:results?|values?|figures|units?)\s*:", re.IGNORECASE,
 )
+# "Results as fed" alone in a title is the basis of all of them.
+_RESULTS_AS_FED = re.compile(
+    r"(?:all\s+)?(?:results?|values|figures|analys[ei]s)\s*[:,–-]?\s*(?:are\s+)?as[ -](?:fed|received|is)\b\W*",
+    re.IGNORECASE,
+)
 _ABOUT_SAMPLES = re.compile(
     r"\b(?:samples?|specimens?)\s+(?:\w+\s+)?as\s+(?:received|delivered|submitted)\b", re.IGNORECASE
 )
@@ -56,7 +61,7 @@ def read_notes(
         speaks = _SPEAKS_OF_ALL.search(text) is not None
         of_all = speaks and bool(words.unit)
         basis = read_basis(_ABOUT_SAMPLES.sub(" ", text))
-        if basis is not None and (of_all or _SPEAKS_OF_BASIS.search(text)):
+        if basis is not None and (of_all or _SPEAKS_OF_BASIS.search(text) or _RESULTS_AS_FED.fullmatch(text)):
             bases.add(basis)
         if of_all:
             units[words.unit, words.factor] = None

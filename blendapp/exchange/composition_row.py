@@ -198,11 +198,20 @@ class _Reading(RowReading):
         if faults:
             self.refused += [text for _field, text in faults]
             return
-        if units.concentration(unit).family is units.Family.MASS and units.convert(amount, unit, "%") > 100:
+        if self._is_above_the_whole(amount, unit, nutrient, basis, ingredient):
             text = _("{nutrient} of {value} {unit} is more than the whole; check the unit.")
             said = text.format(nutrient=nutrient.name, value=PLAIN.write_short(amount), unit=unit)
             self.confirm(Asked.CHANGE, said)
         self._take(nutrient, amount, unit, basis, cell, ingredient)
+
+    def _is_above_the_whole(
+        self, amount: float, unit: str, nutrient: Nutrient, basis: Basis, ingredient: Ingredient | None
+    ) -> bool:
+        """Whether an amount is more than 100 %, and the mill's own is not (urea has 281 % of protein, as reckoned)."""
+        if units.concentration(unit).family is not units.Family.MASS or units.convert(amount, unit, "%") <= 100:
+            return False
+        old = None if ingredient is None else self.segment.old(self.library, ingredient, nutrient, unit, basis)
+        return old is None or units.convert(old, unit, "%") <= 100
 
     def _take(
         self, nutrient: Nutrient, amount: float, unit: str, basis: Basis, cell: ResultCell,
