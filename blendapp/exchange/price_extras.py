@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from functools import lru_cache
 
@@ -75,3 +76,14 @@ def with_added(found: TonnePrice, per_t: float) -> TonnePrice:
     if found.per == "t":
         return replace(found, price=found.price + per_t, per_t=found.per_t + per_t)
     return TonnePrice(found.per_t + per_t, "t", None, found.per_t + per_t)
+
+
+def sum_of(prices: Sequence[TonnePrice | None]) -> TonnePrice | None:
+    """A base price and its freight as one, per tonne where their units differ; None where one cannot be reckoned."""
+    known = [one for one in prices if one is not None and one.per_t is not None]
+    if len(known) < len(prices) or not known:
+        return None
+    per_t = sum(one.per_t for one in known if one.per_t is not None)
+    if len({(one.per, one.bushel_lb) for one in known}) == 1:
+        return replace(known[0], price=sum(one.price for one in known), per_t=per_t)
+    return TonnePrice(per_t, "t", None, per_t)

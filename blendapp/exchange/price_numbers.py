@@ -38,7 +38,7 @@ def read_price_text(text: str) -> PriceText | None:
         return None
     number, before, after = found
     first, second = read_unit_words(before), read_unit_words(after)
-    if first.unit or first.rest or second.rest:
+    if first.unit or first.rest or second.rest or first.as_fed or second.as_fed:
         return None
     one, other = first.money.currencies, second.money.currencies
     if one and other and one.isdisjoint(other):

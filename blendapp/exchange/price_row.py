@@ -24,7 +24,7 @@ from blendapp.exchange.price_cells import MOST_PAID, PriceCell, read_merged_pric
 from blendapp.exchange.price_choice import Priced, choose_price
 from blendapp.exchange.price_columns import PriceColumn
 from blendapp.exchange.price_days import read_days
-from blendapp.exchange.price_extras import on_top, with_added
+from blendapp.exchange.price_extras import on_top, sum_of, with_added
 from blendapp.exchange.price_money import own_money
 from blendapp.exchange.price_remarks import mark_of, read_remark
 from blendapp.exchange.price_sections import under
@@ -121,7 +121,8 @@ class _Reading(RowReading):
         match = self.match(_("The price has no name; say which ingredient it is for."))
         ingredient = match.ingredient
         read = [self._part(column, cell, ingredient) for column, cell in parts]
-        found, unit = (read[0].found, read[0].unit) if len(read) == 1 else (_added(read), read[0].unit)
+        unit = read[0].unit
+        found = read[0].found if len(read) == 1 else sum_of([part.found for part in read])
         days = read_days(self, self.segment, self.today, self._remark(parts, read[0]))
         if days.left_out:
             return self._entry(Fate.IGNORED, _("Left out, as answered."))
@@ -240,9 +241,10 @@ class _Reading(RowReading):
         )
         cents = any(one.cents for one in (cell.money, head.money, words.money, *(note.money for note in notes)))
         basis, _rest = split_dry(self.text(self.table.first(ColumnRole.TERMS)))
-        says_as_fed = head.as_fed and not head.dry
-        dry = cell.dry or head.dry or words.dry or basis or (any(note.dry for note in notes) and not says_as_fed)
-        dry = self._basis(dry, head, column.words, notes)
+        noted = any(note.dry for note in notes) and not (head.as_fed and not head.dry)
+        dry = cell.dry or words.dry or basis or ((head.dry or noted) and not words.as_fed)
+        if not words.as_fed:
+            dry = self._basis(dry, head, column.words, notes)
         if money.value is None or unit.unit is None:
             return _Part(None, unit, dry, money.foreign, cents)
         name = "" if ingredient is None else ingredient.name
@@ -390,17 +392,3 @@ class _Reading(RowReading):
 
 def _names_unit(words: Words) -> bool:
     return bool(words.unit) or words.rest.startswith("/")
-
-
-def _added(parts: list[_Part]) -> TonnePrice | None:
-    """A base price and its freight as one; per tonne where their units differ."""
-    prices = [part.found for part in parts]
-    first = prices[0]
-    if first is None or any(one is None or one.per_t is None for one in prices):
-        return None
-    known = [one for one in prices if one is not None and one.per_t is not None]
-    if len({(one.per, one.bushel_lb) for one in known}) == 1:
-        whole = sum(one.price for one in known)
-        return replace(first, price=whole, per_t=sum(one.per_t for one in known if one.per_t is not None))
-    per_t = sum(one.per_t for one in known if one.per_t is not None)
-    return TonnePrice(per_t, "t", None, per_t)

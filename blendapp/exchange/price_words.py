@@ -136,11 +136,14 @@ def _without_code(text: str) -> str:
 def read_unit_words(text: str) -> Words:
     """The words of a cell that holds a unit, or of what stands beside a number: "USD / short ton"."""
     dry, text = split_dry(text)
-    money, rest = split_money(text)
+    as_fed = _AS_FED.search(text) is not None
+    money, rest = split_money(_AS_FED.sub(" ", text))
     plain = plain_words(rest)
     if not plain:
-        return Words(money, "", "", dry)
-    return Words(money, _tidy(rest), "", dry) if is_price_unit(plain) else Words(money, "", _tidy(rest), dry)
+        return Words(money, "", "", dry, as_fed)
+    if is_price_unit(plain):
+        return Words(money, _tidy(rest), "", dry, as_fed)
+    return Words(money, "", _tidy(rest), dry, as_fed)
 
 
 def read_heading_words(text: str) -> Words:

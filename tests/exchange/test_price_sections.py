@@ -69,6 +69,11 @@ TITLES: dict[str, tuple[Rows, Fate, Asked | None, float | None]] = {
     "dry matter of an analysis": ([["Protein values on dry matter"], PER_T, MAIZE], A, None, 205),
     "as fed over prices, dry matter over all": (
         [["Prices on dry matter basis"], ["Ingredient", "Price $/t as fed"], MAIZE], A, None, 205),
+    "a unit as fed under a heading of dry matter": (
+        [["Ingredient", "Price DM", "Unit"], ["Maize", 205, "$/t as fed"]], A, None, 205),
+    "a unit as fed": ([["Ingredient", "Price", "Unit"], ["Maize", 205, "$/t as fed"]], A, None, 205),
+    "a price as fed beside the number under a heading of dry matter": (
+        [["Ingredient", "Price $/t DM"], ["Maize", "205 /t as fed"]], Q, Asked.AMOUNT, None),
     "a share of dry matter that the price is at": (
         [["Grain", "Price $/t at 85 % DM"], MAIZE], Q, Asked.BASIS, None),
     "a share of dry matter of the goods": ([["Grain", "Price $/t, 85 % DM"], MAIZE], A, None, 205),
