@@ -112,7 +112,7 @@ def make_parser() -> argparse.ArgumentParser:
     sheet.add_argument(
         "--accept", metavar="REASON", help=_("why limits that the weighing breaks, or no clean-out, are accepted")
     )
-    sheet.add_argument("--by", metavar="NAME", help=_("who accepts them"))
+    sheet.add_argument("--by", metavar="NAME", help=_("who accepts them; a person of the mill where it has any"))
     _of_a_batch(sheet)
 
     export = _command(
