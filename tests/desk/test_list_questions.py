@@ -143,7 +143,7 @@ def test_a_unit_is_chosen_or_typed_for_all_rows_at_once(bench: Bench, clerk: Cle
     panel = bench.prices.questions
     assert clerk.asked == "unit: ton"
     assert panel.place.whole == "row 2, “Maize 190 / ton”, and 1 more row"
-    clerk.write("stone")
+    clerk.write("heap")
     clerk.press(Qt.Key.Key_Return)
     assert panel.fault.text().startswith("That does not answer it")
     assert bench.prices.session is not None
