@@ -61,7 +61,7 @@ def test_f6_takes_the_proposal_and_the_next_list_of_the_source_knows_it(
     hands.key(Qt.Key.Key_Return, Qt.KeyboardModifier.ControlModifier)
     quotes = [one for one in bench.work.library.all("quote") if one.price_list_id]
     assert {bench.work.library.records["supplier"][one.supplier_id].name for one in quotes} == {"Marramgate Grain"}
-    read(bench, write(tmp_path / "marramgate 49.xlsx", TITLED))
+    read(bench, write(tmp_path / "marramgate 49.xlsx", [*TITLED, ["Soybean meal", 421]]))
     assert whose.supplier.text() == "supplier: Marramgate Grain"
     assert QApplication.focusWidget() is bench.prices.take
 
