@@ -24,6 +24,7 @@ from blendapp.exchange.price_cells import MOST_PAID, PriceCell, read_merged_pric
 from blendapp.exchange.price_choice import Priced, choose_price
 from blendapp.exchange.price_columns import PriceColumn
 from blendapp.exchange.price_days import read_days
+from blendapp.exchange.price_dry import dry_fraction_of_row
 from blendapp.exchange.price_extras import on_top, sum_of, with_added
 from blendapp.exchange.price_money import own_money
 from blendapp.exchange.price_remarks import mark_of, read_remark
@@ -319,7 +320,12 @@ class _Reading(RowReading):
 
     def _of_dry_matter(self, found: TonnePrice, ingredient: Ingredient | None) -> tuple[TonnePrice, float | None]:
         """A price for dry matter as one as fed, and the price for dry matter per tonne."""
-        fraction = None if ingredient is None else ingredient.dry_matter_fraction
+        listed = dry_fraction_of_row(self.raw, self.row, self.table.headings)
+        of_mill = None if ingredient is None else ingredient.dry_matter_fraction
+        fraction = of_mill if listed is None else listed
+        if listed is not None and of_mill is not None and abs(listed - of_mill) > 1e-9:
+            text = _("The list gives {listed} % of dry matter, the mill {own} %; the list's own was taken.")
+            self.remarks.append(text.format(listed=f"{listed * 100:g}", own=f"{of_mill * 100:g}"))
         if fraction is None or found.per_t is None:
             if ingredient is not None and found.per_t is not None:
                 answer = self.answers.find(Asked.BASIS, ingredient.name)

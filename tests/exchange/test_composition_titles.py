@@ -9,7 +9,7 @@ from tests.exchange.composition_cases import asked, fates, mill, read, values_of
 
 
 @pytest.mark.parametrize(
-    "title", ["Results as fed", "All results as fed", "All results are as received", "Analysis: as is", "Values as-fed"],
+    "title", ["Results as fed", "All results as fed", "All results are as received", "Analysis: as is", "Values as fed"]
 )
 def test_a_title_of_results_as_fed_is_their_basis(title: str) -> None:
     reading = read([[title], ["Sample", "Lab no", "Dry matter %", "Crude protein %"], ["Maize", "A1", 88, 8.4]])
