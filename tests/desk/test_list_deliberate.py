@@ -68,8 +68,8 @@ def test_enter_alone_answers_no_question_and_takes_nothing(
         assert panel.current == asked
         assert panel.fault.text()
         hands.key(Qt.Key.Key_PageDown)
-    assert bench.prices.session is not None
-    assert bench.prices.session.answers == []
+    assert bench.prices.replies is not None
+    assert bench.prices.replies.answers == []
     assert bench.work.mill.undo_text is None
 
 

@@ -146,8 +146,8 @@ def test_a_unit_is_chosen_or_typed_for_all_rows_at_once(bench: Bench, clerk: Cle
     clerk.write("heap")
     clerk.press(Qt.Key.Key_Return)
     assert panel.fault.text().startswith("That does not answer it")
-    assert bench.prices.session is not None
-    assert bench.prices.session.answers == []
+    assert bench.prices.replies is not None
+    assert bench.prices.replies.answers == []
     clerk.press(Qt.Key.Key_3)
     assert count(bench, Fate.ACCEPTED) == 3
     clerk.press(Qt.Key.Key_Backspace)
@@ -361,4 +361,4 @@ def test_the_next_question_does_not_wait_for_the_list_and_a_list_being_read_is_n
     wait(bench)
     assert clerk.asked == "ingredient: Oddity"
     assert count(bench, Fate.ACCEPTED) == 2
-    assert [one.asked for one in bench.prices.session.answers] == [Asked.INGREDIENT] * 2  # type: ignore[union-attr]
+    assert [one.asked for one in bench.prices.replies.answers] == [Asked.INGREDIENT] * 2  # type: ignore[union-attr]

@@ -104,7 +104,7 @@ def test_another_role_is_given_to_a_column_by_keys_by_a_click_and_by_the_finder(
     assert count(bench, Fate.ACCEPTED) == 2
     hands.key(Qt.Key.Key_Z, Qt.KeyboardModifier.ControlModifier)
     wait(bench)
-    assert len(bench.prices.session.answers) == 2  # type: ignore[union-attr]
+    assert len(bench.prices.replies.answers) == 2  # type: ignore[union-attr]
 
 
 def test_headings_are_said_to_be_in_another_row(bench: Bench, hands: Hands, tmp_path: Path) -> None:

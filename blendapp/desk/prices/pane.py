@@ -14,8 +14,8 @@ from blendapp.desk.finder.search import Found
 from blendapp.desk.prices.asking import Open, open_questions, said_words
 from blendapp.desk.prices.layout import Parts
 from blendapp.desk.prices.reader import ListReader
+from blendapp.desk.prices.replies import Replies
 from blendapp.desk.prices.roles import sayings
-from blendapp.desk.prices.session import Session
 from blendapp.desk.prices.words import left_open, state_words, take_words, taken_words, unsettled_words
 from blendapp.desk.work import Work
 from blendapp.domain.list_rows import Answer, Fate, ListReading, SourceSheet
@@ -87,9 +87,9 @@ class ListPane(QWidget):
     # -- reading
 
     @property
-    def session(self) -> Session | None:
+    def replies(self) -> Replies | None:
         """What was answered for the list in view."""
-        return self.reader.session
+        return self.reader.replies
 
     @property
     def reading(self) -> ListReading | None:
@@ -168,22 +168,22 @@ class ListPane(QWidget):
 
     def give(self, answer: Answer) -> None:
         """Take an answer in and read the list again with it."""
-        if self.session is not None:
-            self.session.give(answer)
+        if self.replies is not None:
+            self.replies.give(answer)
             self._go_to = None
             self.again()
             self.changed.emit()
 
     def add_ingredient(self, name: str) -> None:
         """Add an ingredient to the mill under the name that the list has for it; one undo of the mill."""
-        if self.session is None:
+        if self.replies is None:
             return
         try:
             edit = self.work.do(lambda mill: edits.add_ingredient(mill, name))
         except Refused as refusal:
             self.questions.say_fault(" ".join(one.text for one in refusal.problems))
             return
-        self.session.edits.append((len(self.session.answers), edit.what))
+        self.replies.edits.append((len(self.replies.answers), edit.what))
         self._say_state()
         self.changed.emit()
 
@@ -193,11 +193,11 @@ class ListPane(QWidget):
         if self._is_edit_last:
             self.work.undo()
             return True
-        return self._step(None if self.session is None else self.session.take_back())
+        return self._step(None if self.replies is None else self.replies.take_back())
 
     def give_again(self) -> bool:
         """Give the answer again that was taken back last."""
-        return self._step(None if self.session is None else self.session.give_again())
+        return self._step(None if self.replies is None else self.replies.give_again())
 
     def _step(self, answer: Answer | None) -> bool:
         if answer is None:
@@ -209,30 +209,30 @@ class ListPane(QWidget):
 
     @property
     def _is_edit_last(self) -> bool:
-        return self.session is not None and self.work.is_open and self.session.is_edit_last(self.work.mill.undo_text)
+        return self.replies is not None and self.work.is_open and self.replies.is_edit_last(self.work.mill.undo_text)
 
     @property
     def last_answer(self) -> str:
         """What taking back would take back, in words; "" for nothing."""
-        if self.session is None or not self.session.answers or self.reader.is_taken(self.session) or self._is_edit_last:
+        if self.replies is None or not self.replies.answers or self.reader.is_taken(self.replies) or self._is_edit_last:
             return ""
-        return said_words(self.session.answers[-1], self.work.library)
+        return said_words(self.replies.answers[-1], self.work.library)
 
     @property
     def last_taken_back(self) -> str:
         """What would be answered again, in words; "" for nothing."""
-        back = [] if self.session is None else self.session.back
+        back = [] if self.replies is None else self.replies.back
         return said_words(back[-1], self.work.library) if back else ""
 
     def _say_source(self, source: str) -> None:
-        if self.session is not None:
-            self.session.source = source
+        if self.replies is not None:
+            self.replies.source = source
             self.again()
 
     def _read_as_other(self) -> None:
-        if self.session is not None:
-            other = ListAbout.COMPOSITION if self.session.about is ListAbout.PRICES else ListAbout.PRICES
-            self.begin(self.session.path, other)
+        if self.replies is not None:
+            other = ListAbout.COMPOSITION if self.replies.about is ListAbout.PRICES else ListAbout.PRICES
+            self.begin(self.replies.path, other)
 
     # -- showing
 
@@ -268,9 +268,9 @@ class ListPane(QWidget):
     def _show_refusal(self, sentence: str) -> None:
         """A file that cannot be read stands on the page with its sentence and nothing else: there is nothing to take.
         """
-        assert self.session is not None
+        assert self.replies is not None
         self._only = None
-        self.parts.show_refusal(self.session.path.name, sentence)
+        self.parts.show_refusal(self.replies.path.name, sentence)
         self.questions.show_questions([], self.work.library, "", False, self.work.on)
         self.questions.say_last("")
         self.take.setText(_("Nothing to take"))
@@ -293,32 +293,32 @@ class ListPane(QWidget):
 
     @property
     def _needed_answers(self) -> bool:
-        return self.session is not None and bool(self.session.answers or self.session.edits)
+        return self.replies is not None and bool(self.replies.answers or self.replies.edits)
 
     def _go_to_take(self) -> None:
         if self.take.isEnabled():
             self.take.setFocus()
 
     def _say_state(self) -> None:
-        reading, session = self.reading, self.session
-        if reading is None or session is None:
+        reading, replies = self.reading, self.replies
+        if reading is None or replies is None:
             return
         added = self.work.mill.undo_text if self._is_edit_last else None
         self.questions.say_last(added or (self.last_answer and _("Answered {what}").format(what=self.last_answer)))
-        taken, running = self.reader.is_taken(session), self.reader.running
+        taken, running = self.reader.is_taken(replies), self.reader.running
         count = reading.count(Fate.ACCEPTED)
         # What was settled since a list of prices was taken can be taken too; what was taken stands apart by then.
-        over = taken and (running or self._stale or not count or session.about is not ListAbout.PRICES)
-        self.take.setText(_("Taken") if over else take_words(session.about, count))
+        over = taken and (running or self._stale or not count or replies.about is not ListAbout.PRICES)
+        self.take.setText(_("Taken") if over else take_words(replies.about, count))
         ready = count > 0 and not over and not running and self.work.is_open and self.work.mill.writable
         self.take.setEnabled(ready)
         if self.questions.current is None and ready and self._needed_answers:
             self.questions.place.say(_("Enter goes to “{button}”").format(button=self.take.text()))
-        self.look.setVisible(session.about is ListAbout.PRICES)
+        self.look.setVisible(replies.about is ListAbout.PRICES)
         self.look.setEnabled(count > 0 and not running)
         before = taken_before(self.work.library, reading.digest) is not None
         self.parts.remark.say(state_words(
-            session.about, running=running, taken=taken, before=before, more=count > 0 and not over))
+            replies.about, running=running, taken=taken, before=before, more=count > 0 and not over))
 
     def _show_only(self, fate: Fate | None) -> None:
         self._only = fate
@@ -376,10 +376,10 @@ class ListPane(QWidget):
 
     def sayings(self, row: int, column: int) -> list[Found]:
         """What a person may say of a place in the source."""
-        sheet, session = self._sheet(None), self.session
-        if sheet is None or session is None:
+        sheet, replies = self._sheet(None), self.replies
+        if sheet is None or replies is None:
             return []
-        return sayings(sheet, self.source.rows.table_at(max(row, 1)), row, column, session.about, self.give)
+        return sayings(sheet, self.source.rows.table_at(max(row, 1)), row, column, replies.about, self.give)
 
     def found(self) -> list[Found]:
         """What can be found while this page is in view: what stands where the keyboard is in the source."""
@@ -398,8 +398,8 @@ class ListPane(QWidget):
 
     def apply(self) -> None:
         """Record every accepted row as one undo; of prices, show what they do."""
-        reading, session = self.reading, self.session
-        if reading is None or session is None or not self.take.isEnabled():
+        reading, replies = self.reading, self.replies
+        if reading is None or replies is None or not self.take.isEnabled():
             return
         before = self.work.library.copy()
         self._taking = True
@@ -410,16 +410,16 @@ class ListPane(QWidget):
             return
         finally:
             self._taking = False
-        session.taken_as = max(self.work.library.records["price_list"], default=None)
+        replies.taken_as = max(self.work.library.records["price_list"], default=None)
         # Read again when it is next looked at, with what was taken set apart.
         self._stale = True
         self._say_state()
         self.changed.emit()
-        if session.about is ListAbout.PRICES:
+        if replies.about is ListAbout.PRICES:
             self.effect_wanted.emit(before, self.work.library.copy(), True)
         else:
             self.closed.emit()
-        words = taken_words(session.about, reading.count(Fate.ACCEPTED), reading.file_name)
+        words = taken_words(replies.about, reading.count(Fate.ACCEPTED), reading.file_name)
         self.said.emit(words, left_open(reading))
 
     # -- keys

@@ -11,7 +11,7 @@ from blendapp.domain.names import fold
 
 
 @dataclass
-class Session:
+class Replies:
     """One file that is looked at. answers: in the order in which they were given; back: those taken back, the last
     one last. digest: of the file that the answers were given for. taken_as: the record of the list once it is taken.
     edits: what was done to the mill from the page of the list, with how many answers there were before it.
@@ -84,21 +84,21 @@ def _rows_asking(reading: ListReading, answer: Answer) -> set[tuple[str, int]]:
     }
 
 
-class Sessions:
+class AllReplies:
     """The lists of one open mill file that were looked at."""
 
     def __init__(self) -> None:
-        self._found: dict[tuple[Path, ListAbout], Session] = {}
+        self._found: dict[tuple[Path, ListAbout], Replies] = {}
 
-    def of(self, path: Path, about: ListAbout) -> Session:
-        """The session of a file, a new one where it was not looked at before."""
+    def of(self, path: Path, about: ListAbout) -> Replies:
+        """The replies to a file, empty where it was not looked at before."""
         key = (path.resolve(), about)
-        return self._found.setdefault(key, Session(path, about))
+        return self._found.setdefault(key, Replies(path, about))
 
-    def begin_anew(self, session: Session) -> Session:
-        """A session without answers in place of one whose list was taken."""
-        key = (session.path.resolve(), session.about)
-        self._found[key] = Session(session.path, session.about, session.source)
+    def begin_anew(self, replies: Replies) -> Replies:
+        """No answers yet, in place of those to a list that was taken."""
+        key = (replies.path.resolve(), replies.about)
+        self._found[key] = Replies(replies.path, replies.about, replies.source)
         return self._found[key]
 
     def clear(self) -> None:
