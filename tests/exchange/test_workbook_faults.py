@@ -263,7 +263,7 @@ def places(lines: list[str]) -> list[str]:
 
 def test_a_row_with_a_repeated_name_is_read_to_its_end(tmp_path: Path) -> None:
     sheets = small_mill()
-    sheets["Ingredients"].append(["MAIZE", None, 120, "abc", "stone", "wet", None, "high", None])
+    sheets["Ingredients"].append(["MAIZE", None, 120, "abc", "heap", "wet", None, "high", None])
     set_cell(sheets, "Ingredients", 4, "Tags", "medicted")
     set_cell(sheets, "Ingredients", 4, "Made by formula", "Starter")
     assert sorted(places(refused(tmp_path, sheets))) == [

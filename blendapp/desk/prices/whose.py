@@ -37,7 +37,7 @@ class Whose(QWidget):
         row = QHBoxLayout(self)
         row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(GAP_PX)
-        self.proposed = QPushButton()
+        self.proposed = QPushButton(_("Supplier that the list names"))
         self.proposed.setToolTip(_("As the list names it; nothing is said of its supplier until you take this"))
         self.proposed.clicked.connect(self.take_proposed)
         self.proposed.hide()
