@@ -19,21 +19,23 @@ if __name__ == "__main__":  # run as a script: the program is found from here, w
 if TYPE_CHECKING:
     from queue import SimpleQueue
 
-    from blendapp.exchange.file_guard import Format
     from blendapp.exchange.tables import RawTable
 
 FLAG = "--parse-table"
 LENGTH_BYTES = 8
 
 
-def parsed(data: bytes) -> tuple[Format, list[RawTable]] | tuple[str, dict[str, object]]:
-    """Format and sheets of a packed file, or why it is not opened: the reason and values of a file_guard.Unfit."""
+def parsed(data: bytes) -> tuple[str, list[RawTable]] | tuple[str, dict[str, object]]:
+    """Format and sheets of a packed file, or why it is not opened: the reason and values of a file_guard.Unfit.
+
+    The format goes by its text, since some versions of Python pickle an enumeration by a call.
+    """
     from blendapp.exchange.file_guard import Unfit, packed_format
     from blendapp.exchange.spreadsheets import parse_spreadsheet
 
     try:
         found = packed_format(data)
-        return found, parse_spreadsheet(data, found)
+        return found.value, parse_spreadsheet(data, found)
     except Unfit as unfit:
         return unfit.reason, unfit.values
     except MemoryError:

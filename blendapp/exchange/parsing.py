@@ -33,7 +33,7 @@ _PLAIN = {
     ("blendapp.exchange.tables", name)
     for name in ("RawTable", "ErrorCell", "NoStoredValue", "PercentCell", "MergedRange")
 } | {("datetime", name) for name in ("date", "datetime", "time", "timedelta")} | {
-    ("blendapp.exchange.file_guard", "Format"), ("builtins", "frozenset"),
+    ("builtins", "frozenset"),
 }
 
 
@@ -67,8 +67,8 @@ def parse_packed(data: bytes) -> tuple[Format, list[RawTable]]:
         spare, _kept = (_kept, child) if sound else (child, _kept)
     if spare is not None:
         spare.close()
-    if isinstance(first, Format):
-        return first, second
+    if isinstance(second, list):
+        return Format(first), second
     raise Unfit(first, **second)
 
 
