@@ -183,4 +183,5 @@ def test_what_the_process_answers_holds_no_enumeration(tmp_path: Path) -> None:
     """Python 3.11.0 to 3.11.3 pickles one as a call of getattr, which is not taken back."""
     first, tables = parse_child.parsed(write_xlsx(tmp_path / "list.xlsx", ROWS).read_bytes())
     assert type(first) is str
+    assert isinstance(tables, list)
     assert not any(isinstance(value, Enum) for table in tables for row in table.rows for value in row)
