@@ -9,6 +9,7 @@ from typing import Any
 
 from blendapp.domain.batches import Batch
 from blendapp.domain.formulas import Amounts
+from blendapp.domain.list_rows import ListRow
 from blendapp.domain.price_rows import PriceRow
 from blendapp.domain.results import Conflict, IngredientResult, LimitResult, Result
 
@@ -105,7 +106,8 @@ def _conflict(conflict: Conflict) -> dict[str, Any]:
     }
 
 
-def price_row(row: PriceRow) -> dict[str, Any]:
+def list_row(row: ListRow) -> dict[str, Any]:
+    """What the rows of every list have."""
     return {
         "sheet": row.sheet or None,
         "row": row.row,
@@ -113,6 +115,12 @@ def price_row(row: PriceRow) -> dict[str, Any]:
         "reason": row.reason or None,
         "source_name": row.source_name or None,
         "ingredient": row.ingredient,
+    }
+
+
+def price_row(row: PriceRow) -> dict[str, Any]:
+    return {
+        **list_row(row),
         "price_per_t": row.price_per_t,
         "unit": row.unit or None,
         "valid_from": None if row.valid_from is None else row.valid_from.isoformat(),

@@ -80,12 +80,7 @@ def composition_json(reading: CompositionReading, applied: bool) -> dict[str, An
 
 def _row_json(row: CompositionRow) -> dict[str, Any]:
     return {
-        "sheet": row.sheet or None,
-        "row": row.row,
-        "fate": str(row.fate),
-        "reason": row.reason or None,
-        "source_name": row.source_name or None,
-        "ingredient": row.ingredient,
+        **as_json.list_row(row),
         "sample": row.sample or None,
         "sampled": None if row.sampled is None else row.sampled.isoformat(),
         "values": [_value_json(one) for one in row.values],

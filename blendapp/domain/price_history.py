@@ -85,13 +85,6 @@ class PriceHistory:
     def in_force(self) -> QuoteLine | None:
         return next((line for line in self.lines if line.standing is Standing.IN_FORCE), None)
 
-    def step_on(self, day: datetime.date) -> Step | None:
-        """The step that holds a day."""
-        return next((
-            step for step in self.steps
-            if (step.first is None or step.first <= day) and (step.last is None or day <= step.last)
-        ), None)
-
 
 def steps(quotes: Iterable[Quote], site_id: int | None = None, supplier_id: int | None = None) -> tuple[Step, ...]:
     """What quotes.in_force gives on every day, as stretches of days; next to each other they differ.

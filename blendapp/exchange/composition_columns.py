@@ -11,6 +11,7 @@ from blendapp.domain.nutrients import DRY_MATTER, MOISTURE
 from blendapp.exchange.composition_nutrients import NutrientFinder, NutrientMatch
 from blendapp.exchange.composition_words import HeadingWords, read_heading
 from blendapp.exchange.list_placing import Placing, column_name
+from blendapp.exchange.list_table import ListTable
 
 # What a column of a list of analyses may hold.
 COMPOSITION_ROLES = (
@@ -71,40 +72,16 @@ class ValueColumn:
 
 
 @dataclass
-class AnalysisTable:
-    """A table of analyses within a sheet. heading_row: from 0, None where it has no headings.
+class AnalysisTable(ListTable):
+    """A table of analyses within a sheet. count: the column of how many samples a row stands for."""
 
-    name, count: the columns of the names, and of how many samples a row stands for.
-    """
-
-    heading_row: int | None
-    roles: dict[int, ColumnRole] = field(default_factory=dict)
-    headings: dict[int, str] = field(default_factory=dict)
     values: list[ValueColumn] = field(default_factory=list)
-    name: int | None = None
     count: int | None = None
-    first_heading_row: int | None = None
-    last_heading_row: int | None = None
-
-    @property
-    def first_row(self) -> int:
-        """The first row below the headings."""
-        last = self.heading_row if self.last_heading_row is None else self.last_heading_row
-        return 0 if last is None else last + 1
-
-    @property
-    def heading_rows(self) -> range:
-        if self.heading_row is None:
-            return range(0)
-        return range(self.heading_row if self.first_heading_row is None else self.first_heading_row, self.first_row)
 
     @property
     def known(self) -> int:
         """How many columns hold what the mill knows."""
         return sum(column.match.is_settled for column in self.values)
-
-    def first(self, role: ColumnRole) -> int | None:
-        return next((index for index, found in sorted(self.roles.items()) if found is role), None)
 
     def twins_of(self, column: ValueColumn) -> list[ValueColumn]:
         """The columns that hold the same as a column of a settled match, itself among them."""

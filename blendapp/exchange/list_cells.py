@@ -43,16 +43,20 @@ def holds_number(value: CellValue) -> bool:
     return kind not in (CellKind.BLANK, CellKind.BOOLEAN)
 
 
+def cell_text(value: CellValue) -> str:
+    """A text or a number as the person sees it; "" for anything else."""
+    kind = kind_of(value)
+    if kind is CellKind.TEXT:
+        return " ".join(str(value).split())
+    if kind is CellKind.NUMBER:
+        assert isinstance(value, float | int)
+        return PLAIN.write_exact(float(value))
+    return ""
+
+
 def first_text(raw: RawTable, row: int) -> str:
     """What stands first in a row, as the person sees it."""
-    for value in raw.rows[row]:
-        kind = kind_of(value)
-        if kind is CellKind.TEXT:
-            return " ".join(str(value).split())
-        if kind is CellKind.NUMBER:
-            assert isinstance(value, float | int)
-            return PLAIN.write_exact(float(value))
-    return ""
+    return next((text for text in map(cell_text, raw.rows[row]) if text), "")
 
 
 def number_doubt(text: str, found: NumberText) -> str:

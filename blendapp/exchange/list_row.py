@@ -7,9 +7,8 @@ from collections.abc import Iterable, Mapping
 
 from blendapp.domain.list_rows import LEAVE_OUT, TAKE, Question
 from blendapp.domain.mills import Asked
-from blendapp.domain.notation import PLAIN
 from blendapp.domain.wording import _
-from blendapp.exchange.list_cells import error_in, shortened
+from blendapp.exchange.list_cells import cell_text, error_in, shortened
 from blendapp.exchange.list_names import Match, NameFinder
 from blendapp.exchange.list_numbers import DateOrder, date_in_column, date_readings
 from blendapp.exchange.tables import CellKind, CellValue, RawTable, column_letters, kind_of
@@ -52,14 +51,7 @@ class RowReading:
 
     def text(self, column: int | None) -> str:
         """What stands in a column, as the person sees it."""
-        value = None if column is None else self.value(column)
-        kind = kind_of(value)
-        if kind is CellKind.TEXT:
-            return " ".join(str(value).split())
-        if kind is CellKind.NUMBER:
-            assert isinstance(value, float | int)
-            return PLAIN.write_exact(float(value))
-        return ""
+        return "" if column is None else cell_text(self.value(column))
 
     def ask(self, asked: Asked, about: str, text: str, choices: tuple[str, ...] = (), reason: str = "") -> None:
         """Asks. reason: what is said of this row, where that is more than the question."""

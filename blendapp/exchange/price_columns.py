@@ -9,6 +9,7 @@ from functools import lru_cache
 from typing import TYPE_CHECKING
 
 from blendapp.domain.list_rows import ColumnRole
+from blendapp.exchange.list_table import ListTable
 from blendapp.exchange.price_words import Words, read_heading_words, split_dry
 
 if TYPE_CHECKING:
@@ -84,36 +85,17 @@ class PriceColumn:
 
 
 @dataclass
-class Table:
-    """A table within a sheet. heading_row: from 0, None where the columns were told by their content alone.
+class Table(ListTable):
+    """A table of prices within a sheet.
 
     sides: where several tables stand side by side, all of them; side: the one that is read, None until that is said.
     sides_key: what the question is about.
     """
 
-    heading_row: int | None
-    roles: dict[int, ColumnRole] = field(default_factory=dict)
-    headings: dict[int, str] = field(default_factory=dict)
     prices: list[PriceColumn] = field(default_factory=list)
-    name: int | None = None
     sides: tuple[Side, ...] = ()
     side: Side | None = None
     sides_key: str = ""
-    first_heading_row: int | None = None
-    last_heading_row: int | None = None
-
-    @property
-    def first_row(self) -> int:
-        """The first row below the headings."""
-        last = self.heading_row if self.last_heading_row is None else self.last_heading_row
-        return 0 if last is None else last + 1
-
-    @property
-    def heading_rows(self) -> range:
-        """The rows that the headings take; none where the columns were told by their content."""
-        if self.heading_row is None:
-            return range(0)
-        return range(self.heading_row if self.first_heading_row is None else self.first_heading_row, self.first_row)
 
     @property
     def is_complete(self) -> bool:
@@ -124,9 +106,6 @@ class Table:
     def prices_key(self) -> str:
         """What the choice between the columns of prices is remembered by."""
         return " | ".join(column.heading for column in self.prices)
-
-    def first(self, role: ColumnRole) -> int | None:
-        return next((index for index, found in sorted(self.roles.items()) if found is role), None)
 
 
 # Heading and column, from 0, to the role of the column and the words of the heading.

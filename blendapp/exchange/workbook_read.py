@@ -76,18 +76,13 @@ def _is_empty(library: Library) -> bool:
 
 def _read(draft: Draft, sheets: _Sheets, today: datetime.date, valid_from: datetime.date | None) -> None:
     """Reads sheet after sheet, in an order in which names are known before they are used."""
-    if sites := sheets.open(SITES):
-        workbook_plant.read_sites(draft, sites)
-    if suppliers := sheets.open(SUPPLIERS):
-        workbook_plant.read_suppliers(draft, suppliers)
-    if mill := sheets.open(MILL):
-        workbook_library.read_mill(draft, mill)
-    if scales := sheets.open(SCALES):
-        workbook_plant.read_scales(draft, scales)
-    if mixers := sheets.open(MIXERS):
-        workbook_plant.read_mixers(draft, mixers)
-    if nutrients := sheets.open(NUTRIENTS):
-        workbook_library.read_nutrients(draft, nutrients)
+    for layout, read in (
+        (SITES, workbook_plant.read_sites), (SUPPLIERS, workbook_plant.read_suppliers),
+        (MILL, workbook_library.read_mill), (SCALES, workbook_plant.read_scales), (MIXERS, workbook_plant.read_mixers),
+        (NUTRIENTS, workbook_library.read_nutrients),
+    ):
+        if sheet := sheets.open(layout):
+            read(draft, sheet)
     formulas_sheet = sheets.open(FORMULAS)
     formulas = workbook_formulas.read_formulas(draft, formulas_sheet) if formulas_sheet else []
     columns = workbook_values.NutrientColumns(draft, sheets.table(INGREDIENTS), sheets.problems)
@@ -103,14 +98,12 @@ def _read(draft: Draft, sheets: _Sheets, today: datetime.date, valid_from: datet
     workbook_formulas.settle_admits(draft, formulas)
     workbook_formulas.say_odd_limits(draft, limits)
     workbook_library.read_made_by(draft, rows)
-    if lots := sheets.open(LOTS):
-        workbook_plant.read_lots(draft, lots)
-    if lot_values := sheets.open(LOT_VALUES):
-        workbook_plant.read_lot_values(draft, lot_values)
-    if bins := sheets.open(BINS):
-        workbook_plant.read_bins(draft, bins)
-    if steps := sheets.open(STEPS):
-        workbook_steps.read_steps(draft, steps)
+    for layout, read in (
+        (LOTS, workbook_plant.read_lots), (LOT_VALUES, workbook_plant.read_lot_values),
+        (BINS, workbook_plant.read_bins), (STEPS, workbook_steps.read_steps),
+    ):
+        if sheet := sheets.open(layout):
+            read(draft, sheet)
 
 
 class _Sheets:

@@ -9,11 +9,10 @@ import datetime
 from collections.abc import Callable, Iterable
 
 from blendapp.domain.library import Library
-from blendapp.domain.mills import Asked, Synonym
 from blendapp.domain.names import fold
 from blendapp.domain.plant import Bin, Lot, Mixer, Scale, Site, Supplier
 from blendapp.domain.problems import Place, Problem, Refused
-from blendapp.domain.records import Change, Record, added, removed
+from blendapp.domain.records import Record, added, removed
 from blendapp.domain.wording import _
 from blendapp.services.mill import Edit, Mill
 
@@ -98,16 +97,6 @@ def remove(mill: Mill, kind: str, record_id: int) -> Edit:
     return mill.apply(_("Remove {name}").format(name=record.name), [*map(removed, gone), removed(record)])
 
 
-def remove_scale(mill: Mill, scale_id: int) -> Edit:
-    """See remove."""
-    return remove(mill, "scale", scale_id)
-
-
-def remove_mixer(mill: Mill, mixer_id: int) -> Edit:
-    """See remove."""
-    return remove(mill, "mixer", mixer_id)
-
-
 def _with(text: str, others: Iterable[str]) -> str:
     """The sentence with the names that rest on a record; {name} stays, for the record's own."""
     found = list(dict.fromkeys(others))
@@ -181,14 +170,3 @@ _RESTING: dict[str, Callable[[Library, int], list[str]]] = {
     "site": _on_site, "supplier": _on_supplier, "scale": _on_scale, "mixer": _on_mixer, "lot": _on_lot,
     "bin": lambda _library, _id: [],
 }
-
-
-def name_means(mill: Mill, source: str, name: str, ingredient_id: int) -> Edit:
-    """Remember which ingredient a source means by a name, so that its next list is not asked about it."""
-    old = next(
-        (one for one in mill.library.all("synonym")
-         if one.asked is Asked.INGREDIENT and one.source == source and one.name == name), None
-    )
-    new = Synonym(mill.new_id("synonym") if old is None else old.id, source, name, ingredient_id)
-    what = _("“{name}” means {ingredient}").format(name=name, ingredient=mill.library.ingredient(ingredient_id).name)
-    return mill.apply(what, [Change(old, new)])

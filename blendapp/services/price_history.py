@@ -128,11 +128,6 @@ def buy_from(mill: Mill, ingredient_id: int, supplier: str) -> Edit:
     return mill.apply(what, [*changes, Change(ingredient, replace(ingredient, supplier_id=supplier_id))])
 
 
-def is_new_supplier(library: Library, name: str) -> bool:
-    """Whether a name would add a supplier."""
-    return bool(name.strip()) and library.named("supplier", name) is None
-
-
 def expired(library: Library, ingredient_id: int, on: datetime.date) -> Quote | None:
     """The quote whose price ended last, of an ingredient for which none is in force any more; else None."""
     if library.quote_in_force(ingredient_id, on) is not None:

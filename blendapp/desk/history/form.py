@@ -7,11 +7,12 @@ from dataclasses import dataclass
 
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QKeyEvent
-from PySide6.QtWidgets import QFormLayout, QLabel, QLineEdit, QPushButton, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QLabel, QLineEdit, QPushButton, QVBoxLayout, QWidget
 
 from blendapp.desk.choice import Choice
 from blendapp.desk.have.reading import read_price
 from blendapp.desk.history.model import read_day
+from blendapp.desk.shell.page import labelled
 from blendapp.desk.theme import GAP_PX, text_font
 from blendapp.domain.fields import field_of
 from blendapp.domain.library import Library
@@ -127,14 +128,14 @@ class PriceForm(QWidget):
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(GAP_PX)
-        column.addLayout(_form([(_("Bought from"), self.buy)]))
+        column.addLayout(labelled([(_("Bought from"), self.buy)]))
         column.addSpacing(GAP_PX)
         column.addWidget(head)
         rows: list[tuple[str, QWidget]] = [(_("Price"), self.price)]
         rows += [(field_of("quote", key).label, field) for key, field in (
             ("supplier_id", self.supplier), ("site_id", self.site), ("valid_from", self.first),
             ("valid_to", self.last), ("terms", self.terms), ("kind", self.kind))]
-        column.addLayout(_form(rows))
+        column.addLayout(labelled(rows))
         column.addWidget(self.take)
         column.addWidget(self.fault)
         self.buy.chosen.connect(self.bought_from)
@@ -183,16 +184,3 @@ class PriceForm(QWidget):
             self.add.emit()
         else:
             super().keyPressEvent(event)
-
-
-def _form(rows: list[tuple[str, QWidget]]) -> QFormLayout:
-    form = QFormLayout()
-    form.setSpacing(GAP_PX)
-    form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft)
-    for words, field in rows:
-        label = QLabel(words)
-        label.setObjectName("quiet")
-        label.setBuddy(field)
-        field.setAccessibleName(words)
-        form.addRow(label, field)
-    return form

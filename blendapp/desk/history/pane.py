@@ -5,21 +5,19 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QEvent, QModelIndex, Qt, QTimer, Signal
-from PySide6.QtGui import QKeyEvent
+from PySide6.QtCore import QEvent, QModelIndex, QTimer, Signal
 from PySide6.QtWidgets import (
     QButtonGroup,
     QHBoxLayout,
     QLabel,
     QPushButton,
-    QScrollArea,
     QVBoxLayout,
-    QWidget,
 )
 
 from blendapp.desk.history.form import PriceForm
 from blendapp.desk.history.marks import legend
 from blendapp.desk.history.model import QuoteRows
+from blendapp.desk.shell.page import Page, side_column
 from blendapp.desk.shell.zone import Elided
 from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.table.view import DeskTable
@@ -38,11 +36,10 @@ if TYPE_CHECKING:
 SIDE_PX = 320
 
 
-class HistoryPane(QWidget):
+class HistoryPane(Page):
     """closed: back to the bench. said: a sentence with what can be listed below it. list_wanted: the list that a price
     came with is to be opened."""
 
-    closed = Signal()
     said = Signal(str, list)
     list_wanted = Signal(int)
 
@@ -96,18 +93,7 @@ class HistoryPane(QWidget):
         work.reversed.connect(self.rows.forgive_all)
 
     def _lay(self) -> None:
-        inside = QWidget()
-        side = QVBoxLayout(inside)
-        side.setContentsMargins(0, 0, GAP_PX, GAP_PX)
-        side.setSpacing(GAP_PX + 4)
-        for widget in (self.title, self.why, self.form, self.leave, self.rule):
-            side.addWidget(widget)
-        side.addStretch(1)
-        scroll = QScrollArea()
-        scroll.setWidget(inside)
-        scroll.setWidgetResizable(True)
-        scroll.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        scroll.setFixedWidth(SIDE_PX)
+        scroll = side_column((self.title, self.why, self.form, self.leave, self.rule), SIDE_PX)
         head = QHBoxLayout()
         head.setSpacing(2)
         head.addWidget(self.remark, 1)
@@ -320,9 +306,3 @@ class HistoryPane(QWidget):
         super().changeEvent(event)
         if event.type() == QEvent.Type.PaletteChange and self.plot is not None:
             self.plot.draw()
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
-            self.closed.emit()
-        else:
-            super().keyPressEvent(event)

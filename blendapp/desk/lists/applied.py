@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QKeyEvent
-from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QVBoxLayout
 
 from blendapp.desk.lists.model import AppliedRows, OpenedRows, fate_words
+from blendapp.desk.shell.page import Page
 from blendapp.desk.shell.zone import Elided
 from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.table.view import DeskTable
@@ -20,11 +20,10 @@ from blendapp.services.lists import applied_lists, open_list, roll_back
 from blendapp.services.mill import Edit
 
 
-class AppliedPane(QWidget):
+class AppliedPane(Page):
     """closed: back to the bench. said: a sentence with what can be listed below it. memory_wanted: what is remembered
     of a source is to be shown."""
 
-    closed = Signal()
     said = Signal(str, list)
     memory_wanted = Signal(str)
 
@@ -151,9 +150,3 @@ class AppliedPane(QWidget):
         self._shown = None
         self.rows.show([])
         self.opened.show([], "")
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
-            self.closed.emit()
-        else:
-            super().keyPressEvent(event)

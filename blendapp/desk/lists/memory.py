@@ -4,12 +4,12 @@ from __future__ import annotations
 
 from collections.abc import Callable
 
-from PySide6.QtCore import Qt, QTimer, Signal
-from PySide6.QtGui import QKeyEvent
-from PySide6.QtWidgets import QFormLayout, QHBoxLayout, QLabel, QLineEdit, QPushButton, QVBoxLayout, QWidget
+from PySide6.QtCore import QTimer, Signal
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QLineEdit, QPushButton, QVBoxLayout
 
 from blendapp.desk.choice import Choice
 from blendapp.desk.lists.model import MemoryRows
+from blendapp.desk.shell.page import Page, labelled
 from blendapp.desk.shell.zone import Elided
 from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.table.view import DeskTable
@@ -26,10 +26,9 @@ from blendapp.services.mill import Edit
 SIDE_PX = 300
 
 
-class MemoryPane(QWidget):
+class MemoryPane(Page):
     """closed: back to the bench. said: a sentence with what can be listed below it."""
 
-    closed = Signal()
     said = Signal(str, list)
 
     def __init__(self, work: Work) -> None:
@@ -94,10 +93,10 @@ class MemoryPane(QWidget):
         for label in (title, about):
             side.addWidget(label)
         side.addWidget(_head(_("Usual change of a price")))
-        side.addLayout(_form([(_("Class"), self.class_name), (_("by %"), self.percent)]))
+        side.addLayout(labelled([(_("Class"), self.class_name), (_("by %"), self.percent)]))
         side.addWidget(self.set_change)
         side.addWidget(_head(_("Another name of an ingredient")))
-        side.addLayout(_form([(_("In the lists of"), self.source), (_("Name there"), self.name),
+        side.addLayout(labelled([(_("In the lists of"), self.source), (_("Name there"), self.name),
                               (_("Ingredient"), self.ingredient)]))
         side.addWidget(self.keep)
         side.addWidget(self.fault)
@@ -198,31 +197,12 @@ class MemoryPane(QWidget):
         if self._try(job):
             self.name.clear()
 
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
-            self.closed.emit()
-        else:
-            super().keyPressEvent(event)
-
 
 def _head(words: str) -> QLabel:
     label = QLabel(words)
     label.setFont(text_font(strong=True))
     label.setContentsMargins(0, GAP_PX, 0, 0)
     return label
-
-
-def _form(rows: list[tuple[str, QWidget]]) -> QFormLayout:
-    form = QFormLayout()
-    form.setSpacing(GAP_PX)
-    form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft)
-    for words, field in rows:
-        label = QLabel(words)
-        label.setObjectName("quiet")
-        label.setBuddy(field)
-        field.setAccessibleName(words)
-        form.addRow(label, field)
-    return form
 
 
 def _offer(box: Choice, items: list[tuple[str, object]]) -> None:

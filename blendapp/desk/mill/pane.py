@@ -17,6 +17,7 @@ from blendapp.desk.mill.people import PasswordForm, PeopleTable
 from blendapp.desk.mill.sections import SectionList
 from blendapp.desk.mill.steps import StepRows, StepTable
 from blendapp.desk.shell.glyphs import GlyphButton
+from blendapp.desk.shell.page import Page
 from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
@@ -29,13 +30,12 @@ from blendapp.services.mill import Edit, Mill
 PASSWORDS_PX = 420
 
 
-class MillPane(QWidget):
+class MillPane(Page):
     """closed: back to the bench. said: a sentence with what can be listed below it. wanted: the page is to be shown.
 
     tables: by what they show, "meter", "general step" and "own step" beside the kinds of records.
     """
 
-    closed = Signal()
     said = Signal(str, list)
     wanted = Signal()
 
@@ -345,9 +345,7 @@ class MillPane(QWidget):
             return None
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
-            self.closed.emit()
-        elif event.key() == Qt.Key.Key_Insert:
+        if event.key() == Qt.Key.Key_Insert:
             self._add_here()
         else:
             super().keyPressEvent(event)

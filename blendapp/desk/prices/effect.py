@@ -6,12 +6,12 @@ import threading
 from collections.abc import Callable
 from pathlib import Path
 
-from PySide6.QtCore import QModelIndex, Qt, Signal
-from PySide6.QtGui import QKeyEvent
-from PySide6.QtWidgets import QHBoxLayout, QLabel, QProgressBar, QPushButton, QVBoxLayout, QWidget
+from PySide6.QtCore import QModelIndex, Signal
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QProgressBar, QPushButton, QVBoxLayout
 
 from blendapp.desk.aside import Aside
 from blendapp.desk.prices.effect_model import EffectRows
+from blendapp.desk.shell.page import Page
 from blendapp.desk.shell.zone import Elided
 from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
@@ -27,11 +27,10 @@ from blendapp.services.movers import Mover, movers
 LEAST_MIX_PX = 260
 
 
-class EffectPane(QWidget):
+class EffectPane(Page):
     """closed: away from here, to the bench or back to the list. chosen: the identifier of a formula to show. said: a
     sentence with a list below it. table_wanted: the rows are to be written into a file, see write_table."""
 
-    closed = Signal()
     table_wanted = Signal()
     chosen = Signal(int)
     said = Signal(str, list)
@@ -229,9 +228,3 @@ class EffectPane(QWidget):
         self._both = None
         self.running = False
         self.rows.show([], "")
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
-            self.closed.emit()
-        else:
-            super().keyPressEvent(event)

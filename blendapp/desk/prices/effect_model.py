@@ -44,10 +44,6 @@ class EffectRows(Grid):
         """The rows in the order in which they stand."""
         return [self._row[owner] for owner in self.owners]
 
-    def mover(self, owner: int) -> Mover | None:
-        """The row of a formula."""
-        return self._row.get(owner)
-
     def make_look(self, owner: int, key: str) -> Look:
         row = self._row.get(owner)
         if row is None:

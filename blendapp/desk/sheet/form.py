@@ -9,6 +9,7 @@ from blendapp.desk.choice import Choice
 from blendapp.desk.sheet.asked import AskedBatch
 from blendapp.desk.sheet.rework import NEXT, ReworkRows
 from blendapp.desk.sheet.words import clean_out_words
+from blendapp.desk.shell.page import add_labelled, labelled
 from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import GAP_PX, ROW_PX, text_font
 from blendapp.desk.work import Work
@@ -58,17 +59,13 @@ class BatchForm(QWidget):
         self._connect()
 
     def _lay(self) -> None:
-        form = QFormLayout()
-        form.setSpacing(GAP_PX)
-        form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft)
+        form = labelled()
         for words, field in (
             (_("Order, kg"), self.order), (_("Made"), self.made), (_("Mixer"), self.mixer),
             (_("Went before"), self.before), (_("Clean-out"), self.clean_out),
         ):
             self._row(form, words, field)
-        paper = QFormLayout()
-        paper.setSpacing(GAP_PX)
-        paper.setLabelAlignment(Qt.AlignmentFlag.AlignLeft)
+        paper = labelled()
         self.order.setToolTip(_("In kg, or with a unit behind it: 2 t, 4000 lb"))
         self._row(paper, _("Paper"), self.paper)
         self._row(paper, _("Masses in"), self.mass)
@@ -82,12 +79,7 @@ class BatchForm(QWidget):
         self._fit_rework()
 
     def _row(self, form: QFormLayout, words: str, field: QWidget) -> None:
-        label = QLabel(words)
-        label.setObjectName("quiet")
-        label.setBuddy(field)
-        field.setAccessibleName(words)
-        self._labels[field] = label
-        form.addRow(label, field)
+        self._labels[field] = add_labelled(form, words, field)
 
     def _connect(self) -> None:
         self.order.textEdited.connect(lambda _text: self.changed.emit())

@@ -8,9 +8,6 @@ from PySide6.QtWidgets import (
     QHBoxLayout,
     QLabel,
     QPushButton,
-    QScrollArea,
-    QVBoxLayout,
-    QWidget,
 )
 
 from blendapp.desk.aside import Aside
@@ -21,6 +18,7 @@ from blendapp.desk.sheet.lines import LineModel
 from blendapp.desk.sheet.printing import Printing
 from blendapp.desk.sheet.view import LINES, BatchView
 from blendapp.desk.sheet.words import batch_words
+from blendapp.desk.shell.page import Page, side_column
 from blendapp.desk.table.grid import sentence_of
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
 from blendapp.desk.work import Work
@@ -37,11 +35,10 @@ REST_MS = 200
 SIDE_PX = 312
 
 
-class SheetPane(QWidget):
+class SheetPane(Page):
     """closed: back to the bench. printed_wanted: to the printed sheets. scale_wanted: to where an ingredient gets its
     scale. said: a sentence and a list below it."""
 
-    closed = Signal()
     printed_wanted = Signal()
     scale_wanted = Signal(int)
     said = Signal(str, list)
@@ -81,21 +78,12 @@ class SheetPane(QWidget):
         self.give_scale.hide()
         self.printed = QPushButton(_("Printed sheets…"))
         self.leave = QPushButton(_("Back to the bench"))
-        inside = QWidget()
-        side = QVBoxLayout(inside)
-        side.setContentsMargins(0, 0, GAP_PX, GAP_PX)
-        side.setSpacing(GAP_PX + 4)
-        for widget in (title, self.back, self.form, self.words, self.give_scale, self.accepting):
-            side.addWidget(widget)
-        side.addStretch(1)
         for button in (self.printed, self.leave):
             button.setObjectName("plain")
-            side.addWidget(button)
-        scroll = QScrollArea()
-        scroll.setWidget(inside)
-        scroll.setWidgetResizable(True)
-        scroll.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        scroll.setFixedWidth(SIDE_PX)
+        scroll = side_column(
+            (title, self.back, self.form, self.words, self.give_scale, self.accepting), SIDE_PX,
+            (self.printed, self.leave),
+        )
         row = QHBoxLayout(self)
         row.setContentsMargins(MARGIN_PX, GAP_PX * 2, MARGIN_PX - GAP_PX, 0)
         row.setSpacing(MARGIN_PX - GAP_PX)
@@ -364,9 +352,7 @@ class SheetPane(QWidget):
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         control = bool(event.modifiers() & Qt.KeyboardModifier.ControlModifier)
-        if event.key() == Qt.Key.Key_Escape:
-            self.closed.emit()
-        elif control and event.key() in (Qt.Key.Key_PageDown, Qt.Key.Key_PageUp):
+        if control and event.key() in (Qt.Key.Key_PageDown, Qt.Key.Key_PageUp):
             self.view.turn_by(1 if event.key() == Qt.Key.Key_PageDown else -1)
         else:
             super().keyPressEvent(event)

@@ -7,12 +7,12 @@ from functools import partial
 from typing import TYPE_CHECKING, Any
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QLineEdit, QPushButton, QVBoxLayout, QWidget
 
 from blendapp.desk.finder.search import Found
 from blendapp.desk.sheet.pages import PageView
 from blendapp.desk.sheet.printing import Printing
+from blendapp.desk.shell.page import Page
 from blendapp.desk.table.grid import Grid, Heading
 from blendapp.desk.table.look import EMPTY, Look, fitting_decimals, number_look
 from blendapp.desk.table.view import DeskTable
@@ -85,10 +85,9 @@ class PrintedRows(Grid):
         raise ValueError(_("A printed sheet never changes; make another batch."))
 
 
-class PrintedPane(QWidget):
+class PrintedPane(Page):
     """closed: back to the bench. sheet_wanted: to the batch of the chosen formula. said: a sentence and a list."""
 
-    closed = Signal()
     sheet_wanted = Signal()
     said = Signal(str, list)
 
@@ -225,9 +224,3 @@ class PrintedPane(QWidget):
     def _again(self) -> None:
         self.rows.refresh()
         self._look()
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
-            self.closed.emit()
-        else:
-            super().keyPressEvent(event)

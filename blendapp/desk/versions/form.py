@@ -4,10 +4,11 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from PySide6.QtCore import Qt, Signal
-from PySide6.QtWidgets import QFormLayout, QLabel, QLineEdit, QPushButton, QVBoxLayout, QWidget
+from PySide6.QtCore import Signal
+from PySide6.QtWidgets import QLabel, QLineEdit, QPushButton, QVBoxLayout, QWidget
 
 from blendapp.desk.choice import Choice
+from blendapp.desk.shell.page import labelled
 from blendapp.desk.theme import GAP_PX, text_font
 from blendapp.domain.mills import Person
 from blendapp.domain.wording import _
@@ -38,16 +39,10 @@ class VersionForm(QWidget):
         self.approve_button = QPushButton(_("Approve"))
         self.approve_button.setObjectName("first")
         self.approve_button.clicked.connect(self.approve)
-        form = QFormLayout()
-        form.setSpacing(GAP_PX)
-        form.setLabelAlignment(Qt.AlignmentFlag.AlignLeft)
-        for words, field in ((_("Person"), self.person), (_("Password"), self.password),
-                             (_("Approves as"), self.capacity), (_("Note"), self.note)):
-            label = QLabel(words)
-            label.setObjectName("quiet")
-            label.setBuddy(field)
-            field.setAccessibleName(words)
-            form.addRow(label, field)
+        form = labelled((
+            (_("Person"), self.person), (_("Password"), self.password), (_("Approves as"), self.capacity),
+            (_("Note"), self.note),
+        ))
         self.taking_on = QVBoxLayout()
         self.taking_on.setSpacing(4)
         column = QVBoxLayout(self)

@@ -6,11 +6,11 @@ import datetime
 from collections.abc import Callable
 from typing import Any
 
-from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QKeyEvent
-from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtCore import Signal
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QVBoxLayout
 
 from blendapp.desk.aside import Aside
+from blendapp.desk.shell.page import Page, side_column
 from blendapp.desk.shell.zone import Elided
 from blendapp.desk.table.view import DeskTable
 from blendapp.desk.theme import GAP_PX, MARGIN_PX, text_font
@@ -30,10 +30,9 @@ from blendapp.services.mill import Mill, MillFileError
 SIDE_PX = 340
 
 
-class VersionsPane(QWidget):
+class VersionsPane(Page):
     """closed: back to the bench. people_wanted: to where the mill's persons are kept."""
 
-    closed = Signal()
     people_wanted = Signal()
     said = Signal(str, list)
 
@@ -75,18 +74,7 @@ class VersionsPane(QWidget):
             signal.connect(lambda *_what: self.fill() if self.isVisible() else None)
 
     def _lay(self) -> None:
-        inside = QWidget()
-        side = QVBoxLayout(inside)
-        side.setContentsMargins(0, 0, GAP_PX, GAP_PX)
-        side.setSpacing(GAP_PX + 4)
-        for widget in (self.title, self.standing, self.form, self.people, self.leave):
-            side.addWidget(widget)
-        side.addStretch(1)
-        scroll = QScrollArea()
-        scroll.setWidget(inside)
-        scroll.setWidgetResizable(True)
-        scroll.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        scroll.setFixedWidth(SIDE_PX)
+        scroll = side_column((self.title, self.standing, self.form, self.people, self.leave), SIDE_PX)
         right = QVBoxLayout()
         right.setSpacing(GAP_PX)
         right.addWidget(self.table, 2)
@@ -260,9 +248,3 @@ class VersionsPane(QWidget):
             return
         self.form.password.setFocus()
         self.form.password.selectAll()
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        if event.key() == Qt.Key.Key_Escape:
-            self.closed.emit()
-        else:
-            super().keyPressEvent(event)
