@@ -12,7 +12,7 @@ from blendapp.domain.list_rows import ADD, DAY_FIRST, LEAVE_OUT, Answer
 from blendapp.domain.mills import Asked
 from blendapp.domain.quotes import QuoteKind, Terms
 from blendapp.services import edits, list_memory, plant, price_history
-from blendapp.services.lists import roll_back
+from blendapp.services.lists import applied_lists, roll_back
 from blendapp.services.prices import apply_price_list, read_price_list
 
 if TYPE_CHECKING:
@@ -83,7 +83,7 @@ def lists(studio: Studio, bench: Bench, price_list: Path) -> None:
     for _time in range(2):
         reading = read_price_list(work.mill, price_list, work.on)
         work.do(partial(apply_price_list, reading=reading, on=work.on))
-    work.do(lambda mill: roll_back(mill, 1))
+    work.do(lambda mill: roll_back(mill, applied_lists(mill)[-1].id))
     bench.show_applied()
     studio.settle()
     studio.take(bench.frame, "33-applied-lists")
